@@ -1,0 +1,2 @@
+//! Emulated board.
+fn main() {}

@@ -1,0 +1,2 @@
+//! Host library of Strake.
+#![forbid(unsafe_code)]

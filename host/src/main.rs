@@ -1,0 +1,3 @@
+//! Command line of Strake.
+#![forbid(unsafe_code)]
+fn main() {}

@@ -1,0 +1,3 @@
+//! Core of Strake.
+#![cfg_attr(not(test), no_std)]
+#![forbid(unsafe_code)]
