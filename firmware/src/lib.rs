@@ -1,3 +1,8 @@
-//! Device application of Strake.
+//! The Strake device application: sense, evaluate, alarm, journal, serve, sleep.
+//!
+//! A `no_std` library over embedded-hal, embedded-io and embedded-storage traits and the few of
+//! [`board`]. Boards only wire.
 #![cfg_attr(not(test), no_std)]
 #![forbid(unsafe_code)]
+
+pub mod board;
