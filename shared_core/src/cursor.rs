@@ -1,18 +1,32 @@
 //! Reading and writing little-endian numbers in a slice. Total: running out is a value, not a panic.
 
-/// Reads numbers off the front of a slice.
-#[derive(Clone, Copy, Debug)]
-pub(crate) struct Source<'a>(pub(crate) &'a [u8]);
+/// Hands out bytes in order.
+pub trait Fetch {
+    /// Fills `out` with the next bytes; `None` when there are not that many.
+    fn fetch(&mut self, out: &mut [u8]) -> Option<()>;
+}
 
-impl<'a> Source<'a> {
-    pub(crate) fn bytes(&mut self, length: usize) -> Option<&'a [u8]> {
-        let (head, rest) = self.0.split_at_checked(length)?;
-        self.0 = rest;
-        Some(head)
+impl Fetch for &[u8] {
+    fn fetch(&mut self, out: &mut [u8]) -> Option<()> {
+        let (head, rest) = self.split_at_checked(out.len())?;
+        out.copy_from_slice(head);
+        *self = rest;
+        Some(())
+    }
+}
+
+/// Reads numbers off something that hands out bytes.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Source<F>(pub(crate) F);
+
+impl<F: Fetch> Source<F> {
+    pub(crate) fn fill(&mut self, out: &mut [u8]) -> Option<()> {
+        self.0.fetch(out)
     }
 
     fn array<const N: usize>(&mut self) -> Option<[u8; N]> {
-        self.bytes(N)?.try_into().ok()
+        let mut bytes = [0; N];
+        self.0.fetch(&mut bytes).map(|()| bytes)
     }
 
     pub(crate) fn u8(&mut self) -> Option<u8> {

@@ -16,7 +16,7 @@ mod step;
 pub use digest::Digest;
 pub use output::{Output, Rhythm};
 pub use state::{CHECKPOINT_BYTES_MAX, State};
-pub use step::{Judged, Observer, judge, step};
+pub use step::{Judged, Moved, Observer, judge, step};
 
 use crate::lane::Lane;
 use crate::liquid::{Readings, States, states};

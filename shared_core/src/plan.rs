@@ -127,6 +127,58 @@ pub struct Plan {
 }
 
 impl Plan {
+    /// Room for a plan; it fails [`Plan::check`].
+    #[must_use]
+    pub const fn empty() -> Self {
+        let band = Band { estimate_kg_m3: 0.0, low_kg_m3: 0.0, high_kg_m3: 0.0 };
+        let never = ThresholdPlan {
+            utilisation: 1.0,
+            deadband: 0.0,
+            on_delay_ms: 0,
+            off_delay_ms: 0,
+            latch: false,
+        };
+        Self {
+            gravity_m_s2: 0.0,
+            shell_top_m: 0.0,
+            overflow_m: 0.0,
+            floor_m: 0.0,
+            closed: false,
+            highest_rise_m_s: 0.0,
+            highest_fall_m_s: 0.0,
+            liquid: LiquidPlan {
+                top: band,
+                table: DensityTable::empty(),
+                table_uncertainty: 0.0,
+                temperature: None,
+                below: Vec::new(),
+                products: Vec::new(),
+            },
+            gas: Gas { lowest_pa: 0.0, nominal_pa: 0.0, highest_pa: 0.0 },
+            outside: Vec::new(),
+            level: LevelPlan {
+                sensor: LevelSensor::Surface,
+                signal: SignalKind::CurrentLoop,
+                zero_count_16: 0,
+                value_at_zero: 0.0,
+                value_per_count_16: 0.0,
+                uncertainty: 0.0,
+                uncertainty_per_distance: 0.0,
+                reference_m: 0.0,
+                failed_after_ms: 1,
+            },
+            alarm: AlarmPlan {
+                warn: never,
+                alarm: never,
+                inward: None,
+                response_time_ms: 0,
+                sounds_again_after_ms: u32::MAX,
+            },
+            logging: LoggingPlan { interval_ms: 1000, idle_interval_ms: 1000, flush_after_ms: 0 },
+            parts: Vec::new(),
+        }
+    }
+
     /// Top of an open tank, above which no liquid can stand, m; `None` for a closed one.
     #[must_use]
     pub const fn open_top_m(&self) -> Option<f32> {

@@ -11,10 +11,10 @@ pub enum Rhythm {
     /// The device sees, and no load passes its margin. It says nothing of the tank.
     #[default]
     Healthy = 0,
-    /// A load passed its margin.
-    ActNow = 1,
     /// The device cannot see: as loud as "act now".
-    CannotSee = 2,
+    CannotSee = 1,
+    /// A load passed its margin.
+    ActNow = 2,
 }
 
 /// What the contact, the lamp and the sounder do.

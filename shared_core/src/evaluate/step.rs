@@ -8,12 +8,40 @@ use crate::plan::{Plan, ThresholdPlan};
 use crate::signal::{ReadingClass, Resolved, resolve};
 use heapless::Vec;
 
+/// A machine moved; small, so that a device can hold one for every machine.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Moved {
+    /// Which machine.
+    pub machine: MachineId,
+    /// From where to where, and why.
+    pub step: Move,
+    /// Utilisation that was judged; zero for fault machines and presses.
+    pub utilisation: f32,
+}
+
+impl Moved {
+    /// The journal's entry. `hash` is the running hash once all moves of the same sample or press
+    /// are folded in.
+    #[must_use]
+    pub const fn entry(&self, tick_ms: u64, hash: u64) -> Transition {
+        Transition {
+            tick_ms,
+            machine: self.machine,
+            from: self.step.from,
+            to: self.step.to,
+            cause: self.step.cause,
+            utilisation: self.utilisation,
+            hash,
+        }
+    }
+}
+
 /// Who watches a step: the device shows and logs, the replay compares.
 pub trait Observer {
     /// Loads of a part, in the plan's order.
     fn part(&mut self, index: usize, loads: &PartLoads<1>);
     /// A machine moved.
-    fn moved(&mut self, transition: &Transition);
+    fn moved(&mut self, moved: Moved);
 }
 
 /// The two utilisations by which one part is judged.
@@ -34,7 +62,9 @@ pub fn step(
         let _ = judged.push((part.utilisation_bound.lane(0), part.utilisation_inward.lane(0)));
         watch.part(index, part);
     });
-    judge(plan, state, sample.tick_ms, &resolved, &judged, (&digest, 0), |t| watch.moved(t));
+    judge(plan, state, sample.tick_ms, &resolved, &judged, (&digest, 0), |moved| {
+        watch.moved(moved);
+    });
     resolved
 }
 
@@ -46,7 +76,7 @@ pub fn judge<const N: usize>(
     resolved: &Resolved,
     judged: &[Judged],
     (digest, lane): (&Digest<N>, usize),
-    mut moved: impl FnMut(&Transition),
+    mut moved: impl FnMut(Moved),
 ) {
     state.fold_sample(digest, lane);
     // Before the first reading both full and empty are possible: that is "cannot see", not an alarm,
@@ -87,30 +117,12 @@ fn apply(
     settings: &Settings,
     condition: Condition,
     (tick_ms, utilisation): (u64, f32),
-    moved: &mut impl FnMut(&Transition),
+    moved: &mut impl FnMut(Moved),
 ) {
     let step = state.machine_mut(id).and_then(|m| m.sample(settings, condition, tick_ms));
     if let Some(step) = step {
-        moved(&transition(state, id, step, tick_ms, utilisation));
-    }
-}
-
-fn transition(
-    state: &mut State,
-    id: MachineId,
-    step: Move,
-    tick_ms: u64,
-    utilisation: f32,
-) -> Transition {
-    state.fold_move(id, step);
-    Transition {
-        tick_ms,
-        machine: id,
-        from: step.from,
-        to: step.to,
-        cause: step.cause,
-        utilisation,
-        hash: state.hash,
+        state.fold_move(id, step);
+        moved(Moved { machine: id, step, utilisation });
     }
 }
 
@@ -184,7 +196,7 @@ impl State {
         plan: &Plan,
         cause: FaultCause,
         tick_ms: u64,
-        mut moved: impl FnMut(&Transition),
+        mut moved: impl FnMut(Moved),
     ) {
         let settings = fault_settings(plan, cause);
         if settings.latch {
@@ -195,12 +207,13 @@ impl State {
 
     /// A person's press: acknowledges what is unacknowledged, resets latches whose condition is
     /// gone.
-    pub fn acknowledge(&mut self, tick_ms: u64, mut moved: impl FnMut(&Transition)) {
+    pub fn acknowledge(&mut self, tick_ms: u64, mut moved: impl FnMut(Moved)) {
         for number in 0_u8..=u8::MAX {
             let Some(id) = MachineId::from_number(number) else { continue };
             let step = self.machine_mut(id).and_then(|machine| machine.acknowledge(tick_ms));
             if let Some(step) = step {
-                moved(&transition(self, id, step, tick_ms, 0.0));
+                self.fold_move(id, step);
+                moved(Moved { machine: id, step, utilisation: 0.0 });
             }
         }
     }

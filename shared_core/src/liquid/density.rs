@@ -49,6 +49,12 @@ impl DensityTable {
         rising.then_some(Self { points })
     }
 
+    /// A table without points.
+    #[must_use]
+    pub const fn empty() -> Self {
+        Self { points: Vec::new() }
+    }
+
     /// The points, coolest first.
     #[must_use]
     pub fn points(&self) -> &[(f32, f32)] {

@@ -23,12 +23,15 @@ use super::{
     AlarmPlan, LevelPlan, LevelSensor, LiquidPlan, LoggingPlan, NAME_BYTES_MAX, Plan, PlanError,
     PlanHeader, Reference, SignalKind, TemperaturePlan, ThresholdPlan,
 };
+pub use crate::cursor::Fetch;
 use crate::cursor::{Sink, Source};
 use crate::liquid::{Band, DensityTable, Gas, Layer, Outside};
 use heapless::Vec;
 
 /// Most bytes of a plan: it fits one journal sector beside a slot header.
 pub const PLAN_BYTES_MAX: usize = 3840;
+/// A name: of a part, a tank or a device.
+pub type Name = heapless::String<NAME_BYTES_MAX>;
 /// Format number in the fourth byte.
 pub const PLAN_FORMAT: u8 = 1;
 const MAGIC: [u8; 3] = *b"SKP";
@@ -79,84 +82,86 @@ pub fn encode(
 /// # Errors
 /// What is wrong with the bytes or the numbers; never a guess.
 pub fn decode(bytes: &[u8]) -> Result<(PlanHeader, Plan), PlanError> {
-    let (header, plan, _) = decode_with_rest(bytes)?;
-    Ok((header, plan))
-}
-
-fn decode_with_rest(bytes: &[u8]) -> Result<(PlanHeader, Plan, Source<'_>), PlanError> {
     if bytes.len() > PLAN_BYTES_MAX {
         return Err(PlanError::TooLarge);
     }
-    let mut source = Source(bytes);
-    if source.bytes(3) != Some(&MAGIC) {
-        return Err(PlanError::NotAPlan);
-    }
-    if source.u8() != Some(PLAN_FORMAT) {
-        return Err(PlanError::Format);
-    }
-    let (header, plan) = take(&mut source).ok_or(PlanError::Damaged)?;
-    plan.check()?;
-    Ok((header, plan, source))
+    let mut plan = Plan::empty();
+    let header = decode_into(&mut { bytes }, &mut plan)?;
+    Ok((header, plan))
 }
 
-fn take(source: &mut Source<'_>) -> Option<(PlanHeader, Plan)> {
-    let serial = source.u64()?;
-    let device_id = heapless::String::try_from(take_text(source)?).ok()?;
-    let gravity_m_s2 = source.f32()?;
-    let shell_top_m = source.f32()?;
-    let overflow_m = source.f32()?;
-    let floor_m = source.f32()?;
-    let highest_rise_m_s = source.f32()?;
-    let highest_fall_m_s = source.f32()?;
-    let closed = flag(source)?;
-    let liquid = take_liquid(source)?;
-    let gas =
+/// Reads a plan from wherever its bytes come, over what `plan` holds, and checks it. The device has
+/// no room for a second plan or for all the bytes; after an error it reads the old one again.
+///
+/// # Errors
+/// What is wrong with the bytes or the numbers. `plan` is then no plan.
+pub fn decode_into(bytes: &mut impl Fetch, plan: &mut Plan) -> Result<PlanHeader, PlanError> {
+    let mut source = Source(bytes);
+    let mut start = [0; 4];
+    source.fill(&mut start).ok_or(PlanError::NotAPlan)?;
+    let [m0, m1, m2, format] = start;
+    if [m0, m1, m2] != MAGIC {
+        return Err(PlanError::NotAPlan);
+    }
+    if format != PLAN_FORMAT {
+        return Err(PlanError::Format);
+    }
+    let header = take(&mut source, plan).ok_or(PlanError::Damaged)?;
+    plan.check()?;
+    Ok(header)
+}
+
+impl<F: Fetch> Fetch for &mut F {
+    fn fetch(&mut self, out: &mut [u8]) -> Option<()> {
+        (**self).fetch(out)
+    }
+}
+
+fn take<F: Fetch>(source: &mut Source<F>, plan: &mut Plan) -> Option<PlanHeader> {
+    let header = PlanHeader { serial: source.u64()?, device_id: take_text(source)? };
+    plan.gravity_m_s2 = source.f32()?;
+    plan.shell_top_m = source.f32()?;
+    plan.overflow_m = source.f32()?;
+    plan.floor_m = source.f32()?;
+    plan.highest_rise_m_s = source.f32()?;
+    plan.highest_fall_m_s = source.f32()?;
+    plan.closed = flag(source)?;
+    plan.liquid = take_liquid(source)?;
+    plan.gas =
         Gas { lowest_pa: source.f32()?, nominal_pa: source.f32()?, highest_pa: source.f32()? };
-    let outside = take_list(source, |source| {
+    plan.outside = take_list(source, |source| {
         Some(Outside {
             highest_m: source.f32()?,
             lowest_m: source.f32()?,
             density: take_band(source)?,
         })
     })?;
-    let level = take_level(source)?;
-    let alarm = take_alarm(source)?;
-    let logging = LoggingPlan {
+    plan.level = take_level(source)?;
+    plan.alarm = take_alarm(source)?;
+    plan.logging = LoggingPlan {
         interval_ms: source.u32()?,
         idle_interval_ms: source.u32()?,
         flush_after_ms: source.u32()?,
     };
-    let parts = take_list(source, parts::take)?;
-    let plan = Plan {
-        gravity_m_s2,
-        shell_top_m,
-        overflow_m,
-        floor_m,
-        closed,
-        highest_rise_m_s,
-        highest_fall_m_s,
-        liquid,
-        gas,
-        outside,
-        level,
-        alarm,
-        logging,
-        parts,
-    };
-    Some((PlanHeader { serial, device_id }, plan))
+    plan.parts.clear();
+    for _ in 0..source.u8()? {
+        plan.parts.push(parts::take(source)?).ok()?;
+    }
+    Some(header)
 }
 
 /// The names in a plan's bytes: calls `part` with each part's index and name, and gives the tank's.
 ///
 /// # Errors
 /// What is wrong with the bytes; see [`decode`].
-pub fn names<'a>(
-    bytes: &'a [u8],
-    mut part: impl FnMut(usize, &'a str),
-) -> Result<&'a str, PlanError> {
-    let (_, plan, mut source) = decode_with_rest(bytes)?;
+pub fn names(bytes: &[u8], mut part: impl FnMut(usize, &str)) -> Result<Name, PlanError> {
+    let mut rest = bytes;
+    let mut plan = Plan::empty();
+    decode_into(&mut rest, &mut plan)?;
+    let mut source = Source(rest);
     for index in 0..plan.parts.len() {
-        part(index, take_text(&mut source).ok_or(PlanError::Names)?);
+        let name: Name = take_text(&mut source).ok_or(PlanError::Names)?;
+        part(index, &name);
     }
     let tank = take_text(&mut source).ok_or(PlanError::Names)?;
     if source.0.is_empty() { Ok(tank) } else { Err(PlanError::Damaged) }
@@ -171,21 +176,20 @@ fn text(sink: &mut Sink<'_>, text: &str) -> Result<(), PlanError> {
     Ok(())
 }
 
-fn take_text<'a>(source: &mut Source<'a>) -> Option<&'a str> {
-    let length = usize::from(source.u8()?);
-    if length > NAME_BYTES_MAX {
-        return None;
-    }
-    core::str::from_utf8(source.bytes(length)?).ok()
+fn take_text<F: Fetch>(source: &mut Source<F>) -> Option<Name> {
+    let mut bytes = [0; NAME_BYTES_MAX];
+    let text = bytes.get_mut(..usize::from(source.u8()?))?;
+    source.fill(text)?;
+    core::str::from_utf8(text).ok()?.try_into().ok()
 }
 
 fn count(length: usize) -> Result<u8, PlanError> {
     u8::try_from(length).map_err(|_| PlanError::TooLarge)
 }
 
-fn take_list<T, const N: usize>(
-    source: &mut Source<'_>,
-    mut take: impl FnMut(&mut Source<'_>) -> Option<T>,
+fn take_list<F: Fetch, T, const N: usize>(
+    source: &mut Source<F>,
+    mut take: impl FnMut(&mut Source<F>) -> Option<T>,
 ) -> Option<Vec<T, N>> {
     let mut list = Vec::new();
     for _ in 0..source.u8()? {
@@ -194,7 +198,7 @@ fn take_list<T, const N: usize>(
     Some(list)
 }
 
-fn flag(source: &mut Source<'_>) -> Option<bool> {
+fn flag<F: Fetch>(source: &mut Source<F>) -> Option<bool> {
     match source.u8()? {
         0 => Some(false),
         1 => Some(true),
@@ -208,7 +212,7 @@ fn put_band(sink: &mut Sink<'_>, band: &Band) {
     sink.f32(band.high_kg_m3);
 }
 
-fn take_band(source: &mut Source<'_>) -> Option<Band> {
+fn take_band<F: Fetch>(source: &mut Source<F>) -> Option<Band> {
     Some(Band {
         estimate_kg_m3: source.f32()?,
         low_kg_m3: source.f32()?,
@@ -257,7 +261,7 @@ fn put_liquid(sink: &mut Sink<'_>, liquid: &LiquidPlan) -> Result<(), PlanError>
     Ok(())
 }
 
-fn take_liquid(source: &mut Source<'_>) -> Option<LiquidPlan> {
+fn take_liquid<F: Fetch>(source: &mut Source<F>) -> Option<LiquidPlan> {
     let top = take_band(source)?;
     let table_uncertainty = source.f32()?;
     let points: Vec<(f32, f32), 8> =
@@ -334,7 +338,7 @@ fn put_level(sink: &mut Sink<'_>, level: &LevelPlan) {
     sink.u32(level.failed_after_ms);
 }
 
-fn take_level(source: &mut Source<'_>) -> Option<LevelPlan> {
+fn take_level<F: Fetch>(source: &mut Source<F>) -> Option<LevelPlan> {
     let sensor = match source.u8()? {
         0 => LevelSensor::Surface,
         1 => LevelSensor::Head { at_m: source.f32()?, reference: Reference::GasSpace },
@@ -376,7 +380,7 @@ fn put_threshold(sink: &mut Sink<'_>, threshold: &ThresholdPlan) {
     sink.u8(u8::from(threshold.latch));
 }
 
-fn take_threshold(source: &mut Source<'_>) -> Option<ThresholdPlan> {
+fn take_threshold<F: Fetch>(source: &mut Source<F>) -> Option<ThresholdPlan> {
     Some(ThresholdPlan {
         utilisation: source.f32()?,
         deadband: source.f32()?,
@@ -397,7 +401,7 @@ fn put_alarm(sink: &mut Sink<'_>, alarm: &AlarmPlan) {
     sink.u32(alarm.sounds_again_after_ms);
 }
 
-fn take_alarm(source: &mut Source<'_>) -> Option<AlarmPlan> {
+fn take_alarm<F: Fetch>(source: &mut Source<F>) -> Option<AlarmPlan> {
     Some(AlarmPlan {
         warn: take_threshold(source)?,
         alarm: take_threshold(source)?,

@@ -11,7 +11,7 @@
 //! | design states u8, 3 f32 each | |
 
 use super::{PlanError, count, flag, take_list};
-use crate::cursor::{Sink, Source};
+use crate::cursor::{Fetch, Sink, Source};
 use crate::part::{BoltPattern, Bolts, Capacities, DesignState, Geometry, Part};
 use crate::shape::{Circle, Rectangle, Shape};
 
@@ -58,7 +58,7 @@ pub(super) fn put(sink: &mut Sink<'_>, part: &Part) -> Result<(), PlanError> {
     Ok(())
 }
 
-pub(super) fn take(source: &mut Source<'_>) -> Option<Part> {
+pub(super) fn take<F: Fetch>(source: &mut Source<F>) -> Option<Part> {
     let kind = source.u8()?;
     let bottom_m = source.f32()?;
     let top_m = source.f32()?;
@@ -76,7 +76,7 @@ pub(super) fn take(source: &mut Source<'_>) -> Option<Part> {
     Some(Part { geometry, bottom_m, top_m, outward, inward, designed_for, outside })
 }
 
-fn take_geometry(source: &mut Source<'_>, kind: u8) -> Option<Geometry> {
+fn take_geometry<F: Fetch>(source: &mut Source<F>, kind: u8) -> Option<Geometry> {
     let (shape, sine) = match kind {
         0 => {
             return Some(Geometry::Course {
@@ -114,7 +114,7 @@ fn put_bolts(sink: &mut Sink<'_>, bolts: Option<&Bolts>) {
 }
 
 #[expect(clippy::option_option, reason = "outer: bytes ran out; inner: no bolts")]
-fn take_bolts(source: &mut Source<'_>) -> Option<Option<BoltPattern>> {
+fn take_bolts<F: Fetch>(source: &mut Source<F>) -> Option<Option<BoltPattern>> {
     let count = source.u16()?;
     if count == 0 {
         return Some(None);
@@ -141,7 +141,7 @@ fn put_capacities(sink: &mut Sink<'_>, capacities: &Capacities) {
     all.iter().flatten().for_each(|&capacity| sink.f32(capacity));
 }
 
-fn take_capacities(source: &mut Source<'_>) -> Option<Capacities> {
+fn take_capacities<F: Fetch>(source: &mut Source<F>) -> Option<Capacities> {
     let mask = source.u8()?;
     if mask > 0b1111 {
         return None;
