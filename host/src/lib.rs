@@ -1,2 +1,6 @@
 //! Host library of Strake.
 #![forbid(unsafe_code)]
+
+pub mod nearest;
+pub mod tank;
+pub mod units;
