@@ -40,7 +40,8 @@ pub struct Damage {
 pub enum DamageKind {
     /// No block with a right check; the rest of the page is passed over.
     Torn,
-    /// A right check, but a form this version does not know; passed over.
+    /// A right check, but a form this version does not know, or samples that chain to such a block;
+    /// passed over.
     UnknownForm,
     /// A right check, but an entry this version does not know; the rest of the block is passed over.
     UnknownEntry,
@@ -70,9 +71,15 @@ impl<'a> PageReader<'a> {
     /// the header, which is passed over.
     #[must_use]
     pub fn new(page: &'a [u8], index: u8, header: &SectorHeader) -> Self {
-        let place =
-            Place { sequence: header.sequence, offset: u16::from(index) * 256, word: header.word };
-        let skip = if index == 0 { HEADER_BYTES } else { 0 };
+        let offset = u16::from(index) * 256;
+        let place = Place { sequence: header.sequence, offset, word: header.word };
+        Self::at(page, if index == 0 { HEADER_BYTES } else { 0 }, place)
+    }
+
+    /// The items of a page outside any sector: its blocks begin behind `skip` bytes and their checks
+    /// are seeded as for `place`.
+    #[must_use]
+    pub fn at(page: &'a [u8], skip: usize, place: Place) -> Self {
         Self {
             blocks: Blocks::new(page, skip, place),
             chain: Chain::default(),
