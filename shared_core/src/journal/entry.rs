@@ -111,6 +111,18 @@ pub enum Presser {
     Link = 2,
 }
 
+impl Presser {
+    /// The presser with this number.
+    #[must_use]
+    pub const fn from_number(number: u8) -> Option<Self> {
+        Some(match number {
+            1 => Self::Button,
+            2 => Self::Link,
+            _ => return None,
+        })
+    }
+}
+
 /// One entry of the journal. The numbers (see [`Entry::number`]) are never reused.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub enum Entry {
