@@ -8,3 +8,4 @@
 pub mod alarm;
 pub mod journal;
 pub mod signal;
+pub mod wire;
