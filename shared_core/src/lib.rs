@@ -16,3 +16,4 @@ pub mod plan;
 pub mod pressure;
 pub mod shape;
 pub mod signal;
+pub mod wire;
