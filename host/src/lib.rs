@@ -1,2 +1,4 @@
 //! Host library of Strake.
 #![forbid(unsafe_code)]
+
+pub mod sim;
