@@ -4,3 +4,4 @@
 pub mod nearest;
 pub mod tank;
 pub mod units;
+pub mod sim;
