@@ -1,2 +1,5 @@
 //! Host library of Strake.
 #![forbid(unsafe_code)]
+
+pub mod journal_file;
+pub mod link;
