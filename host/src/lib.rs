@@ -5,3 +5,5 @@ pub mod nearest;
 pub mod tank;
 pub mod units;
 pub mod sim;
+pub mod journal_file;
+pub mod link;
