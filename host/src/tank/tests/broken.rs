@@ -75,9 +75,17 @@ fn limits_are_met_exactly() {
 #[test]
 fn keys_of_later_versions_are_refused_by_name() {
     let later = |from: &str, to: &str, words: &str| slip(from, to, Code::NotOffered, words);
-    later("[gas]", "[gas]\nsignal = 1", "`signal` is not offered");
-    later("[[course]]", "[[level.check]]\nsensor = \"head\"\n[[course]]", "`check` is not offered");
-    later("[fill]", "strapping = [[\"0 m\", \"0 m3\"]]\n[fill]", "`strapping` is not offered");
+    later("[gas]", "[gas]\nsignal = 1", "`signal` in [gas] is not offered");
+    later(
+        "[[course]]",
+        "[[level.check]]\nsensor = \"head\"\n[[course]]",
+        "`check` in [level] is not offered",
+    );
+    later(
+        "[fill]",
+        "strapping = [[\"0 m\", \"0 m3\"]]\n[fill]",
+        "`strapping` in [tank] is not offered",
+    );
     later("opens     = \"outward\"", "opens = \"outward\"\ncover_mass = \"9 kg\"", "`cover_mass`");
     later("[alarm]", "[[curved]]\nname = \"cone\"\n[alarm]", "curved parts are not offered");
     for shape in ["ellipse", "obround", "triangle", "trapezoid", "polygon", "hole"] {

@@ -72,7 +72,8 @@ fn deep_nesting_and_many_findings_end() {
             .collect::<Vec<_>>()
             .as_slice(),
     );
-    let many: String = (0..15_000).map(|n| format!("key{n} = {n}\n")).collect();
+    let lines: Vec<String> = (0..15_000).map(|n| format!("key{n} = {n}")).collect();
+    let many = lines.join("\n");
     let findings = parse("many.toml", many.as_bytes()).unwrap_err();
     assert_eq!(findings.list().len(), crate::tank::MAX_FINDINGS);
     assert!(findings.omitted() > 14_000);
