@@ -1,9 +1,10 @@
 //! Host library of Strake.
 #![forbid(unsafe_code)]
 
-pub mod nearest;
-pub mod tank;
-pub mod units;
-pub mod sim;
 pub mod journal_file;
 pub mod link;
+pub mod nearest;
+pub mod replay;
+pub mod sim;
+pub mod tank;
+pub mod units;
