@@ -41,6 +41,11 @@ pub struct Resultant {
     pub force_n: Vec3,
     /// Moment about the reference point, N m.
     pub moment_nm: Vec3,
+    /// Integral of z dFx from the reference point, N m: over Fx it gives the height of the line of
+    /// the horizontal component.
+    pub z_of_fx_nm: f64,
+    /// Integral of x dFz from the reference point, N m.
+    pub x_of_fz_nm: f64,
     /// Integral of |p| dA, N: the scale against which errors are judged.
     pub pressed_n: f64,
 }
@@ -62,6 +67,8 @@ pub fn resultant(patches: &[Patch], pressure: &dyn Pressure, about: Vec3) -> Res
                 let arm = add_scaled((patch.point)(u, v), -1.0, about);
                 sum.force_n = add_scaled(sum.force_n, 1.0, push);
                 sum.moment_nm = add_scaled(sum.moment_nm, 1.0, cross(arm, push));
+                sum.z_of_fx_nm += arm[2] * push[0];
+                sum.x_of_fz_nm += arm[0] * push[2];
                 sum.pressed_n += p.abs() * crate::vector::norm(area) * du * dv;
             });
         });
