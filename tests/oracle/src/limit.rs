@@ -66,8 +66,42 @@ pub fn limit_level(
         return Limit::None;
     }
     let at = |i: u32| lowest_m + (highest_m - lowest_m) * f64::from(i) / f64::from(steps);
-    (1..=steps)
-        .find(|i| utilisation(at(*i)) > 1.0)
-        .and_then(|i| root(at(i - 1), at(i), |h| utilisation(h) - 1.0))
-        .map_or(Limit::Beyond, Limit::Level)
+    let Some(passed) = (1..=steps).find(|i| utilisation(at(*i)) > 1.0) else {
+        return Limit::Beyond;
+    };
+    let (mut kept, mut over) = (at(passed - 1), at(passed));
+    for _ in 0..100 {
+        let middle = 0.5 * (kept + over);
+        if utilisation(middle) > 1.0 {
+            over = middle;
+        } else {
+            kept = middle;
+        }
+    }
+    Limit::Level(kept)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_first_passing_counts_and_a_flat_stretch_at_one_does_not() {
+        // Rises to 1 at 2, stays there to 3, passes at 3, falls below again at 4.
+        let use_of = |h: f64| match h {
+            h if h < 2.0 => 0.5 * h,
+            h if h <= 3.0 => 1.0,
+            h if h < 4.0 => 1.5,
+            _ => 0.5,
+        };
+        let Limit::Level(level) = limit_level(0.0, 10.0, 1000, use_of) else {
+            panic!("a limit exists");
+        };
+        assert!((level - 3.0).abs() < 1e-9);
+        assert_eq!(limit_level(3.5, 10.0, 1000, use_of), Limit::None);
+        assert_eq!(limit_level(4.0, 10.0, 1000, use_of), Limit::Beyond);
+        let place = place_of_largest(-1.0, 4.0, 20, |x| -(x - 1.25) * (x - 1.25));
+        assert!((place - 1.25).abs() < 1e-6);
+        assert_eq!(root(0.0, 1.0, |x| x + 1.0), None);
+    }
 }

@@ -28,6 +28,9 @@ pub type Reason = &'static str;
 /// # Errors
 /// The class of rows it belongs to when the oracle has no answer.
 pub fn oracle_answer(row: &Row) -> Result<Answer, Reason> {
-    let degrees = solve(&problem_of(row)?)?;
-    Ok(Answer::Number(if row.unit == "rad" { degrees.to_radians() } else { degrees }))
+    let answer = solve(&problem_of(row)?)?;
+    Ok(match answer {
+        Answer::Number(degrees) if row.unit == "rad" => Answer::Number(degrees.to_radians()),
+        other => other,
+    })
 }

@@ -9,6 +9,7 @@ use crate::patch::Wetted;
 use crate::plane::PlanePart;
 use crate::securing::Door;
 use crate::vector::Vec3;
+use crate::vessel::Vessel;
 
 pub use super::rules::Rule;
 
@@ -77,6 +78,28 @@ pub enum Problem {
         /// What is asked.
         ask: DensityAsk,
     },
+    /// A wall of one metre width held against the state it was designed for.
+    DesignedFor {
+        /// The state it was designed for.
+        design: Liquid,
+        /// The state now.
+        now: Liquid,
+        /// Lower and upper edge, m.
+        edges_m: (f64, f64),
+        /// What is asked.
+        ask: DesignedForAsk,
+    },
+    /// Time until inflow brings a vessel from one level to another.
+    Filling {
+        /// The vessel.
+        vessel: Vessel,
+        /// Levels, m.
+        levels_m: (f64, f64),
+        /// Inflow, m3/s.
+        inflow_m3_s: f64,
+    },
+    /// Class of a loop current, A.
+    LoopClass(f64),
     /// A rule of a document, with its constants.
     Rule(Rule),
 }
@@ -106,6 +129,8 @@ pub struct Securing {
 pub enum PlaneAsk {
     /// Force, N.
     Force,
+    /// Horizontal component of the force, N.
+    Horizontal,
     /// Force over area, Pa.
     MeanPressure,
     /// Depth of the centre of pressure below the top surface, m.
@@ -149,6 +174,22 @@ pub enum PlaneAsk {
     LeastMoment(Line),
     /// Highest level reached from empty without passing a moment capacity on the way, m.
     LimitLevel(Line, f64),
+    /// Lowest level at which the force has a value, N, found from below, m.
+    LevelOfForce(f64),
+}
+
+/// What is asked of a part known by its design state.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum DesignedForAsk {
+    /// Highest level up to which no height carries more than in the design state, m, or `none`.
+    LimitByPressure,
+    /// Level at which the force equals that of the design state, m. Not sufficient.
+    LimitByForce,
+    /// Level at which the moment about the lower edge equals that of the design state, m. Not
+    /// sufficient.
+    LimitByMoment,
+    /// Largest ratio over the height of the pressure now to that of the design state.
+    LargestRatio,
 }
 
 /// Reactions of a door.

@@ -97,6 +97,42 @@ pub enum Rule {
     },
     /// The conventional value, m/s2 (ISO 80000-3).
     StandardGravity,
+    /// A quantity read on a 4 to 20 mA loop.
+    LoopLevel {
+        /// Current, A.
+        current_a: f64,
+        /// Value at 4 mA and at 20 mA.
+        ends: (f64, f64),
+    },
+    /// start + rate x time, kept between two ends.
+    Projected {
+        /// Value at the start.
+        start: f64,
+        /// Change per second.
+        rate_per_s: f64,
+        /// Time, s.
+        time_s: f64,
+        /// Least and largest value it can take.
+        ends: (f64, f64),
+    },
+    /// Inflow of an upright cylinder at a rate of rise, m3/s.
+    Inflow {
+        /// Diameter, m.
+        diameter_m: f64,
+        /// Rise, m/s.
+        rise_m_s: f64,
+    },
+    /// Limit less a rise less uncertainties, which are added straight or in quadrature, m.
+    AlarmLevel {
+        /// Limit level, m.
+        limit_m: f64,
+        /// Rise in the whole delay, m.
+        rise_m: f64,
+        /// Half-widths of sensor, datum and density, m.
+        half_widths_m: [f64; 3],
+        /// Whether they are added straight.
+        straight: bool,
+    },
     /// Largest radial moment of a clamped round plate under pressure linear over its height, on
     /// its lowest edge: q a^2/8 from the mean and q1 a^2/24 from the slope (Timoshenko and
     /// Woinowsky-Krieger, articles 16 and 63), N m/m.
@@ -173,6 +209,23 @@ impl Rule {
                 9.780_327 * (1.0 + (5.2792e-3 + 2.32e-5 * sine2) * sine2)
             }
             Self::StandardGravity => crate::liquid::STANDARD_GRAVITY,
+            Self::LoopLevel { current_a, ends: (low, high) } => {
+                low + (high - low) * (1e3 * current_a - 4.0) / 16.0
+            }
+            Self::Projected { start, rate_per_s, time_s, ends: (low, high) } => {
+                (start + rate_per_s * time_s).clamp(low, high)
+            }
+            Self::Inflow { diameter_m, rise_m_s } => {
+                std::f64::consts::PI * diameter_m.powi(2) / 4.0 * rise_m_s
+            }
+            Self::AlarmLevel { limit_m, rise_m, half_widths_m, straight } => {
+                let together = if straight {
+                    half_widths_m.iter().sum()
+                } else {
+                    half_widths_m.iter().map(|u| u * u).sum::<f64>().sqrt()
+                };
+                limit_m - rise_m - together
+            }
             Self::ClampedDiscMoment { radius_m, centre_pa, rise_pa } => {
                 radius_m * radius_m * (centre_pa / 8.0 + rise_pa / 24.0)
             }

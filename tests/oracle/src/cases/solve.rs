@@ -2,20 +2,31 @@
 
 mod bound;
 mod curved;
+mod designed_for;
 mod plane;
 
 use crate::limit::root;
 use crate::liquid::{Liquid, Pressure};
 use crate::membrane::hoop_tension;
 
-use super::Reason;
 use super::problem::{CourseAsk, DensityAsk, Plate, Problem};
+use super::{Answer, Reason};
 
-/// The number asked for, SI units, angles in degrees.
+/// What is asked for, in SI units, angles in degrees.
 ///
 /// # Errors
 /// The reason when the load has no such quantity, such as a centre of pressure of a couple.
-pub fn solve(problem: &Problem) -> Result<f64, Reason> {
+pub fn solve(problem: &Problem) -> Result<Answer, Reason> {
+    match problem {
+        Problem::LoopClass(current_a) => Ok(Answer::Text(loop_class(*current_a).to_owned())),
+        Problem::DesignedFor { design, now, edges_m, ask } => {
+            designed_for::answer(design, now, *edges_m, *ask)
+        }
+        other => number(other).map(Answer::Number),
+    }
+}
+
+fn number(problem: &Problem) -> Result<f64, Reason> {
     match problem {
         Problem::Plane { part, liquid, ask } => plane::answer(part, liquid, ask),
         Problem::Curved { part, liquid, ask } => curved::answer(part, liquid, ask),
@@ -36,7 +47,23 @@ pub fn solve(problem: &Problem) -> Result<f64, Reason> {
             let boxed = (*pressure_pa, *gas_pa, (span, *level_half_width_m));
             Ok(density(boxed, *gravity_m_s2, *ask))
         }
+        Problem::Filling { vessel, levels_m: (from, to), inflow_m3_s } => {
+            Ok((vessel.volume_below(*to) - vessel.volume_below(*from)) / inflow_m3_s)
+        }
         Problem::Rule(rule) => Ok(rule.value()),
+        Problem::LoopClass(_) | Problem::DesignedFor { .. } => Err("not a number"),
+    }
+}
+
+/// Classes of a loop current (NAMUR NE 43; 0.5 mA as the limit of a broken wire).
+fn loop_class(current_a: f64) -> &'static str {
+    match 1e3 * current_a {
+        ma if ma < 0.5 => "wire_break",
+        ma if ma <= 3.6 => "failure_low",
+        ma if ma >= 21.0 => "failure_high",
+        ma if !(3.8..=20.5).contains(&ma) => "held",
+        ma if !(4.0..=20.0).contains(&ma) => "out_of_specification",
+        _ => "measurement",
     }
 }
 

@@ -58,7 +58,7 @@ impl fmt::Display for Tally {
             }
             writeln!(f)?;
         }
-        writeln!(f, "largest share of a tolerance: {:.3} ({})", self.closest.0, self.closest.1)?;
+        writeln!(f, "largest share of a tolerance: {:.2e} ({})", self.closest.0, self.closest.1)?;
         self.disagreements.iter().try_for_each(|line| writeln!(f, "{line}"))
     }
 }

@@ -1,12 +1,12 @@
 //! Rows about what sensors allow, and densities found from two of them.
 
-use crate::cases::problem::{BoundAsk, DensityAsk, Problem};
+use crate::cases::problem::{BoundAsk, DensityAsk, DesignedForAsk, Problem};
 use crate::cases::row::numbers;
 use crate::cases::{Reason, Row};
 use crate::envelope::{Band, Head};
 use crate::liquid::{Liquid, STANDARD_GRAVITY};
 
-use super::{UNREAD, first_word, interval};
+use super::{UNREAD, first_word, interval, layer, liquid};
 
 pub(super) fn problem(row: &Row) -> Result<Problem, Reason> {
     let number = |key: &str| row.number(key).ok_or(UNREAD);
@@ -94,6 +94,24 @@ pub(super) fn density(row: &Row) -> Result<Problem, Reason> {
         gravity_m_s2: number("g")?,
         ask,
     })
+}
+
+/// A wall against the state it was designed for.
+pub(super) fn designed_for(row: &Row) -> Result<Problem, Reason> {
+    let number = |key: &str| row.number(key).ok_or(UNREAD);
+    let now = liquid(row)?;
+    let layer = row.get("design").and_then(layer).ok_or(UNREAD)?;
+    let design =
+        Liquid { gas_pa: row.number_or_zero("design_gas_Pa"), layers: vec![layer], ..now.clone() };
+    let ask = match row.quantity() {
+        "limit level by pressure everywhere" => DesignedForAsk::LimitByPressure,
+        "limit level by force" => DesignedForAsk::LimitByForce,
+        "limit level by moment about the bottom" => DesignedForAsk::LimitByMoment,
+        "largest ratio of pressures" => DesignedForAsk::LargestRatio,
+        _ => return Err(UNREAD),
+    };
+    let edges_m = (number("part_from_m")?, number("part_to_m")?);
+    Ok(Problem::DesignedFor { design, now, edges_m, ask })
 }
 
 /// rho = rho_ref / (1 + beta dT), at the same level reading or the same pressure reading.

@@ -112,7 +112,7 @@ fn pyramid(row: &Row) -> Result<CurvedPart, Reason> {
     let apex: Vec3 = [x, y, z];
     // "(0 +-0.4 0.6) (0 +-0.4 1.4)": the doubled sign is no number of its own.
     let words = row.get("base").ok_or(UNREAD)?.replace("+-", " ");
-    let [_, half, low, _, _, high] = numbers(&words)[..] else { return Err(UNREAD) };
+    let [_, half, low, _, _, high, ..] = numbers(&words)[..] else { return Err(UNREAD) };
     let base = [[0.0, -half, low], [0.0, half, low], [0.0, half, high], [0.0, -half, high]];
     let next = |i: usize| base[(i + 1) % 4];
     // Seen from the wall (from smaller x), counter-clockwise is with y running to the left.

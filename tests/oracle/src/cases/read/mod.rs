@@ -7,6 +7,7 @@ mod plane;
 mod rule;
 mod shape;
 mod shell;
+mod time;
 
 use crate::liquid::{Layer, Liquid, STANDARD_GRAVITY};
 
@@ -32,6 +33,9 @@ pub fn problem_of(row: &Row) -> Result<Problem, Reason> {
         "shell" => shell::problem(row),
         "bound" => bound::problem(row),
         "density" => bound::density(row),
+        "designed_for" => bound::designed_for(row),
+        "time" => time::problem(row),
+        "signal" => time::signal(row),
         "gravity" => rule::gravity(row),
         "plate" => rule::plate(row),
         _ => Err("another topic than loads"),

@@ -23,14 +23,14 @@ pub(super) fn problem(row: &Row) -> Result<Problem, Reason> {
     if row.has("layer1_h_m") {
         return layered(row);
     }
-    let published = row.number("level_m").is_none() && !row.has("layers");
-    let (part, liquid) = if published {
+    let in_tank_coordinates = ["level_m", "layers", "bottom_m"].iter().any(|key| row.has(key));
+    let (part, liquid) = if in_tank_coordinates {
+        (by_height(row)?, liquid(row)?)
+    } else {
         let (density, gravity_m_s2) = weight(row);
         let (part, surface) = by_depth(row, density * gravity_m_s2)?;
         let gas = row.number_or_zero("gas_gauge_Pa");
         (part, Liquid { gravity_m_s2, ..Liquid::uniform(density, surface) }.with_gas(gas))
-    } else {
-        (by_height(row)?, liquid(row)?)
     };
     let ask = ask(row, &part)?;
     Ok(Problem::Plane { part, liquid, ask })
@@ -40,6 +40,8 @@ pub(super) fn problem(row: &Row) -> Result<Problem, Reason> {
 fn ask(row: &Row, part: &PlanePart) -> Result<PlaneAsk, Reason> {
     Ok(match first_word(row) {
         "F" => PlaneAsk::Force,
+        "F_horizontal" => PlaneAsk::Horizontal,
+        "level_of_force" => PlaneAsk::LevelOfForce(row.number("force_N").ok_or(UNREAD)?),
         "p_mean" => PlaneAsk::MeanPressure,
         "cp_depth" | "cp_depth_below_virtual_surface" => PlaneAsk::CentreDepth,
         "cp_height" | "cp_height_above_base" | "cp_height_above_bottom_edge" => {

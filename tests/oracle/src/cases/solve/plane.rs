@@ -16,6 +16,7 @@ pub(super) fn answer(part: &PlanePart, liquid: &Liquid, ask: &PlaneAsk) -> Resul
     };
     match *ask {
         PlaneAsk::Force => Ok(force),
+        PlaneAsk::Horizontal => Ok(force * part.rise()),
         PlaneAsk::MeanPressure => Ok(force / part.area()),
         PlaneAsk::CentreDepth
         | PlaneAsk::CentreHeight
@@ -56,6 +57,11 @@ pub(super) fn answer(part: &PlanePart, liquid: &Liquid, ask: &PlaneAsk) -> Resul
         PlaneAsk::LeastMoment(line) => {
             let at = |level: f64| moment(line, &liquid.clone().filled_to(level));
             Ok(at(least_level(part, at)))
+        }
+        PlaneAsk::LevelOfForce(target) => {
+            let low = part.heights().0;
+            root(low, low + 50.0, |level| part.force(&liquid.clone().filled_to(level)) - target)
+                .ok_or("no level gives that force")
         }
         PlaneAsk::LimitLevel(line, capacity) => {
             let low = part.heights().0;
