@@ -9,7 +9,7 @@ use std::fmt;
 
 use crate::liquid::Pressure;
 use crate::quadrature::visit;
-use crate::vector::{Vec3, add_scaled, cross};
+use crate::vector::{Vec3, add_scaled, cross, norm};
 
 type OneParameter<T> = Box<dyn Fn(f64) -> T>;
 type TwoParameters<T> = Box<dyn Fn(f64, f64) -> T>;
@@ -46,6 +46,10 @@ pub struct Resultant {
     pub z_of_fx_nm: f64,
     /// Integral of x dFz from the reference point, N m.
     pub x_of_fz_nm: f64,
+    /// For each axis the integral of |p| |w|, w being the projected width of a patch summed along
+    /// its level line, N. Where two patches share a height this is at least the integral over the
+    /// height.
+    pub pressed_by_axis_n: Vec3,
     /// Integral of |p| dA, N: the scale against which errors are judged.
     pub pressed_n: f64,
 }
@@ -61,16 +65,20 @@ pub fn resultant(patches: &[Patch], pressure: &dyn Pressure, about: Vec3) -> Res
             let (low, high) = (patch.across)(u);
             // A turn is cut in four so that the sines stay within the order of the rule.
             let quarters = [0.25, 0.5, 0.75].map(|part| low + part * (high - low));
+            let mut across = [0.0; 3];
             visit(low, high, &quarters, |v, dv| {
                 let area = (patch.into_liquid)(u, v);
+                across = add_scaled(across, dv, area);
                 let push = area.map(|a| -p * a * du * dv);
                 let arm = add_scaled((patch.point)(u, v), -1.0, about);
                 sum.force_n = add_scaled(sum.force_n, 1.0, push);
                 sum.moment_nm = add_scaled(sum.moment_nm, 1.0, cross(arm, push));
                 sum.z_of_fx_nm += arm[2] * push[0];
                 sum.x_of_fz_nm += arm[0] * push[2];
-                sum.pressed_n += p.abs() * crate::vector::norm(area) * du * dv;
+                sum.pressed_n += p.abs() * norm(area) * du * dv;
             });
+            let weighed = across.map(f64::abs);
+            sum.pressed_by_axis_n = add_scaled(sum.pressed_by_axis_n, p.abs() * du, weighed);
         });
     }
     sum

@@ -68,7 +68,7 @@ impl PlanePart {
     /// Rise per unit length up the slope; exactly 0 for level parts.
     #[must_use]
     pub fn rise(&self) -> f64 {
-        let level = self.slope_deg == 0.0 || self.slope_deg == 180.0;
+        let level = self.slope_deg <= 0.0 || self.slope_deg >= 180.0;
         if level { 0.0 } else { self.slope_deg.to_radians().sin() }
     }
 

@@ -12,7 +12,8 @@ use crate::random::Random;
 use crate::shape::Shape;
 use crate::vector::Vec3;
 
-/// Closed solutions for a covered circle: F = gamma z_c A, moment gamma sin I_c about the centre.
+/// Closed solutions for a covered circle: `F = gamma z_c A`, moment `gamma sin I_c` about the
+/// centre.
 #[test]
 fn covered_circles_follow_the_closed_formula() {
     let mut random = Random::new(3);
@@ -208,10 +209,15 @@ fn shell_top_and_surface_reading_only_lower_the_upper_bound() {
 }
 
 #[test]
-fn levels_below_a_quarter_turn_stay_in_the_arc() {
+fn the_force_on_an_arc_passes_through_its_axis() {
     let patches = crate::patch::arc(2.0, 3.0, 0.5, (FRAC_PI_2, PI), crate::patch::Wetted::Outside);
     let found = resultant(&patches, &Liquid::uniform(1025.0, 1.8), [0.0, 0.0, 0.5]);
     // Pressures on a circle pass through its axis: no moment about it.
     assert!(found.moment_nm[1].abs() < 1e-9 * found.pressed_n);
     assert!(found.force_n[0] > 0.0 && found.force_n[2] < 0.0);
+    // One arc, one sign of w: the weighed force is the force.
+    let [x, _, z] = found.pressed_by_axis_n;
+    assert!((x - found.force_n[0].abs()).abs() < 1e-12 * x);
+    assert!((z - found.force_n[2].abs()).abs() < 1e-12 * z);
+    assert!(found.pressed_n > x && found.pressed_n > z && found.pressed_n < x + z);
 }

@@ -157,6 +157,10 @@ pub enum Rule {
     },
 }
 
+/// The seating load of ASME VIII-1 appendix 2 is written with two decimals of pi.
+#[expect(clippy::approx_constant, reason = "the rule states 3.14")]
+const PI_OF_RULE: f64 = 3.14;
+
 /// Metres to an inch, exact.
 const INCH_M: f64 = 0.0254;
 
@@ -198,7 +202,7 @@ impl Rule {
             }
             Self::EndForce { diameter_m, pressure_pa } => 0.785 * diameter_m.powi(2) * pressure_pa,
             Self::SeatingLoad { width_m, diameter_m, seating_pa } => {
-                3.14 * width_m * diameter_m * seating_pa
+                PI_OF_RULE * width_m * diameter_m * seating_pa
             }
             Self::NormalGravity { equator, k, eccentricity_squared, latitude_deg } => {
                 let sine2 = latitude_deg.to_radians().sin().powi(2);

@@ -34,7 +34,7 @@ fn number(problem: &Problem) -> Result<f64, Reason> {
             course(*diameter_m, *at_m, liquid, plate, *ask)
         }
         Problem::Pressure { liquid, at_m } => Ok(liquid.at(*at_m)),
-        Problem::Bound { wall_m, head, ask } => bound::answer(*wall_m, head, ask),
+        Problem::Bound { wall_m, head, ask } => Ok(bound::answer(*wall_m, head, ask)),
         Problem::InferredDensity {
             heights_m,
             pressure_pa,

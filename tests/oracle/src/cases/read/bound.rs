@@ -114,7 +114,7 @@ pub(super) fn designed_for(row: &Row) -> Result<Problem, Reason> {
     Ok(Problem::DesignedFor { design, now, edges_m, ask })
 }
 
-/// rho = rho_ref / (1 + beta dT), at the same level reading or the same pressure reading.
+/// `rho = rho_ref / (1 + beta dT)`, at the same level reading or the same pressure reading.
 fn after_temperature(row: &Row) -> Result<Problem, Reason> {
     let number = |key: &str| row.number(key).ok_or(UNREAD);
     let density = number("rho_20degC")? / (1.0 + number("expansion")? * number("dT_K")?);

@@ -1,6 +1,5 @@
 //! Head sensors over a wall of one metre width.
 
-use crate::cases::Reason;
 use crate::cases::problem::BoundAsk;
 use crate::envelope::{Bound, Head};
 use crate::limit::place_of_largest;
@@ -8,13 +7,13 @@ use crate::liquid::{Layer, Liquid, Pressure};
 use crate::plane::PlanePart;
 use crate::shape::Shape;
 
-pub(super) fn answer(wall_m: f64, head: &Head, ask: &BoundAsk) -> Result<f64, Reason> {
+pub(super) fn answer(wall_m: f64, head: &Head, ask: &BoundAsk) -> f64 {
     let wall = PlanePart::new(Shape::Rectangle { width: 1.0, length: wall_m }, 0.0, 90.0);
     let at_interface = |interface: f64| wall.force(&two_layers(head, interface));
     let at_density = |density: f64| wall.force(&one_liquid(head, density));
     let band = head.density_kg_m3;
     let least = || place_of_largest(band.low, band.high, 200, |density| -at_density(density));
-    Ok(match *ask {
+    match *ask {
         BoundAsk::ForceAtInterface(interface) => at_interface(interface),
         BoundAsk::LargestOverInterfaces(low, high) => {
             at_interface(place_of_largest(low, high, 200, at_interface))
@@ -25,7 +24,7 @@ pub(super) fn answer(wall_m: f64, head: &Head, ask: &BoundAsk) -> Result<f64, Re
         BoundAsk::LargestOverProfiles => wall.force(&Bound::Upper(*head)),
         BoundAsk::LargestPressure(height) => Bound::Upper(*head).at(height),
         BoundAsk::PressureAtDensity(density, height) => one_liquid(head, density).at(height),
-    })
+    }
 }
 
 /// One liquid whose pressure at the sensor is the reading.
