@@ -81,11 +81,13 @@ fn head<const N: usize>(
 ) -> States<N> {
     let g = plan.gravity_m_s2;
     let gas = plan.gas;
-    let band = plan.liquid.whole_band();
-    let [estimate, low, high] = readings.density;
+    let [estimate, mut low, mut high] = readings.density;
     // Layers always belong to the band.
-    let light = low.at_most(Lane::splat(band.low_kg_m3)) * g;
-    let heavy = high.at_least(Lane::splat(band.high_kg_m3)) * g;
+    for layer in &plan.liquid.below {
+        low = low.at_most(Lane::splat(layer.density.low_kg_m3));
+        high = high.at_least(Lane::splat(layer.density.high_kg_m3));
+    }
+    let (light, heavy) = (low * g, high * g);
 
     // Pressure at the diaphragm above the gas pressure, by what the transmitter refers to.
     let (excess, excess_high, wet, excess_low) = match reference {
