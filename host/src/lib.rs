@@ -7,4 +7,5 @@ pub mod nearest;
 pub mod replay;
 pub mod sim;
 pub mod tank;
+pub mod trial;
 pub mod units;
