@@ -3,3 +3,8 @@
 mod collecting;
 mod exchanges;
 mod fake;
+mod line;
+mod messages;
+#[cfg(unix)]
+mod serial;
+mod throughput;

@@ -1,0 +1,1 @@
+//! Every error in words.
