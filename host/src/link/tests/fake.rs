@@ -206,7 +206,7 @@ impl Served for FakeDevice {
 pub(super) type Shared = Rc<RefCell<FakeDevice>>;
 
 /// The device behind a channel.
-pub(super) fn in_process(device: &Shared) -> impl Port + use<> {
+pub(super) fn in_process(device: &Shared) -> impl Port + std::fmt::Debug + use<> {
     let wire = Wire::new();
     let (mut end, mut server) = (wire.device_end(), Server::new());
     let device = Rc::clone(device);
