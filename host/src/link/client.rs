@@ -1,7 +1,7 @@
 //! Asking the device, one exchange at a time.
 
 use super::error::doing;
-use super::{LinkError, Port, VersionMismatch};
+use super::{LinkError, Port, VersionMismatch, Versioned};
 use std::time::Duration;
 use strake_core::wire::{
     Acknowledge, ClockSet, Done, ErrorCode, ErrorReply, FaultStatus, FaultStatusRequest, Frame,
@@ -72,10 +72,30 @@ impl<P: Port> Client<P> {
     /// As [`Self::connect`].
     pub fn hello(&mut self) -> Result<&Identity, LinkError> {
         self.identity = self.ask(&Hello { protocol: PROTOCOL_VERSION }, |_: &Identity| true)?;
-        if self.identity.protocol != PROTOCOL_VERSION {
-            return Err(LinkError::Version(VersionMismatch { device: self.identity }));
-        }
+        self.same(Versioned::Protocol, PROTOCOL_VERSION, self.identity.protocol)?;
         Ok(&self.identity)
+    }
+
+    /// Checks that the device writes the journal that this program reads.
+    ///
+    /// # Errors
+    /// [`LinkError::Version`].
+    pub fn require_journal_format(&self, ours: u8) -> Result<(), LinkError> {
+        self.same(Versioned::Journal, ours.into(), self.identity.journal_format.into())
+    }
+
+    /// Checks that the device takes the plans that this program makes.
+    ///
+    /// # Errors
+    /// [`LinkError::Version`].
+    pub fn require_plan_format(&self, ours: u8) -> Result<(), LinkError> {
+        self.same(Versioned::Plan, ours.into(), self.identity.plan_format.into())
+    }
+
+    fn same(&self, of: Versioned, ours: u16, theirs: u16) -> Result<(), LinkError> {
+        let device = self.identity;
+        let mismatch = LinkError::Version(VersionMismatch { of, ours, device });
+        if ours == theirs { Ok(()) } else { Err(mismatch) }
     }
 
     /// What the device said at the last greeting.

@@ -8,3 +8,4 @@ mod messages;
 #[cfg(unix)]
 mod serial;
 mod throughput;
+mod transfer;

@@ -142,6 +142,18 @@ fn what_the_device_overwrote_is_counted() {
 }
 
 #[test]
+fn a_sector_the_device_cannot_read_is_counted_and_does_not_hold_up_the_rest() {
+    let (_directory, path, device) = fresh();
+    device.borrow_mut().torn = Some((45, 1024));
+    let collected = visit(in_process(&device), &path).unwrap();
+    assert_eq!((collected.unreadable, collected.gone, collected.sectors), (1, 0, 22));
+    let mut file = JournalFile::open(&path.with_extension("journal")).unwrap();
+    let begun = file.sector(45).unwrap().unwrap().bytes;
+    assert_eq!(begun, device.borrow().sectors[&45][..1024], "what could be read is kept");
+    assert_eq!(file.sectors().count(), 22);
+}
+
+#[test]
 fn another_device_does_not_go_on_with_the_file() {
     let (_directory, path, device) = fresh();
     visit(Noisy::new(in_process(&device), 0.0, 0.0, 0).cut_after(9_000), &path).unwrap_err();

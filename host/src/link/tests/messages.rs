@@ -2,7 +2,7 @@
 
 use super::fake::{FakeDevice, in_process, shared};
 use crate::link::serial::{choose, permission_remedy};
-use crate::link::{Client, LinkError, Noisy, Port, PortError, VersionMismatch};
+use crate::link::{Client, LinkError, Noisy, Port, PortError, VersionMismatch, Versioned};
 use std::time::Duration;
 use strake_core::wire::{ErrorCode, Identity, Text};
 
@@ -41,7 +41,8 @@ fn chatter(text: &'static [u8]) -> LinkError {
 fn silence_and_strangers_are_told_apart() {
     assert_eq!(
         chatter(b"").to_string(),
-        "nothing answers on ttyUSB3 within 2.4 s; switch the device on, check the cable and the port"
+        "nothing answers on ttyUSB3 within 2.4 s; switch the device on, check the cable and the \
+         port"
     );
     assert_eq!(
         chatter(b"$GPGGA,\r\n").to_string(),
@@ -74,13 +75,13 @@ fn mismatch(protocol: u16, firmware: &str) -> String {
 fn a_version_mismatch_names_both_sides_and_the_remedy() {
     assert_eq!(
         mismatch(2, "0.9.0"),
-        "version mismatch: strake 0.1.0 speaks link protocol 1, device 'tank-7' with firmware 0.9.0 \
-         speaks 2; install strake 0.9.0 or later"
+        "version mismatch: strake 0.1.0 speaks link protocol 1, device 'tank-7' with firmware \
+         0.9.0 speaks 2; install strake 0.9.0 or later"
     );
     assert_eq!(
         mismatch(0, "0.0.1"),
-        "version mismatch: strake 0.1.0 speaks link protocol 1, device 'tank-7' with firmware 0.0.1 \
-         speaks 0; update the device's firmware to 0.1.0, or install strake 0.0.1"
+        "version mismatch: strake 0.1.0 speaks link protocol 1, device 'tank-7' with firmware \
+         0.0.1 speaks 0; update the device's firmware to 0.1.0, or install strake 0.0.1"
     );
 }
 
@@ -105,6 +106,21 @@ fn one_device_is_chosen_and_several_are_listed() {
     assert_eq!(told(vec![], vec![busy()]), busy().to_string());
 }
 
+fn version(of: Versioned, ours: u16) -> LinkError {
+    let device = Identity { journal_format: 1, plan_format: 1, ..FakeDevice::new(0, 0).identity };
+    LinkError::Version(VersionMismatch { of, ours, device })
+}
+
+#[test]
+fn formats_are_compared_by_who_needs_them() {
+    let client = Client::connect(in_process(&shared(FakeDevice::new(0, 0)))).unwrap();
+    assert!(client.require_journal_format(1).is_ok() && client.require_plan_format(1).is_ok());
+    let error = client.require_journal_format(2).unwrap_err();
+    assert_eq!(error.to_string(), version(Versioned::Journal, 2).to_string());
+    let error = client.require_plan_format(0).unwrap_err();
+    assert_eq!(error.to_string(), version(Versioned::Plan, 0).to_string());
+}
+
 #[test]
 fn every_other_error_in_words() {
     let port = || "ttyUSB0".to_owned();
@@ -116,7 +132,8 @@ fn every_other_error_in_words() {
         PortError::NoPermission { port: port(), remedy }.into(),
         PortError::NoPermission { port: port(), remedy: permission_remedy(None) }.into(),
         PortError::Failed { port: port(), cause: "broken pipe".into() }.into(),
-        LinkError::Version(VersionMismatch { device: Identity::default() }),
+        version(Versioned::Journal, 2),
+        version(Versioned::Plan, 0),
         LinkError::UnknownCode { doing: "acknowledging", code: 99, detail: 7 },
         LinkError::Nonsense { doing: "reading the status", what: "its length or a value in it" },
         LinkError::Interrupted,

@@ -85,7 +85,9 @@ proptest! {
     }
 
     #[test]
-    fn streams(bytes in proptest::collection::vec(prop_oneof![3 => any::<u8>(), 1 => Just(0)], 0..600)) {
+    fn streams(
+        bytes in proptest::collection::vec(prop_oneof![3 => any::<u8>(), 1 => Just(0)], 0..600),
+    ) {
         let mut receiver = Receiver::<64>::new();
         for byte in &bytes {
             if let Some(Ok(frame)) = receiver.accept(*byte) {
@@ -96,7 +98,8 @@ proptest! {
         let mut out = [0; 64];
         let length = Done { token: 9 }.encode(&mut out).unwrap();
         receiver.accept(0);
-        let found = out[..length].iter().filter_map(|byte| receiver.accept(*byte).map(|f| f.is_ok()));
+        let mut sound = |byte: &u8| receiver.accept(*byte).map(|frame| frame.is_ok());
+        let found = out[..length].iter().filter_map(&mut sound);
         prop_assert_eq!(found.collect::<Vec<_>>(), [true]);
         prop_assert_eq!(receiver.last().map(|frame| frame.kind), Some(Kind::Done.number()));
     }
