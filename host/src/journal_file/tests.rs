@@ -3,8 +3,10 @@
 mod damage;
 mod writing;
 
-use super::{DeviceIdentity, HeadRecord, JournalFile, JournalFileError, MAGIC, Record};
-use super::{StoredPlan, StoredSector};
+use super::{
+    DeviceIdentity, HeadRecord, JournalFile, JournalFileError, MAGIC, Record, StoredPlan,
+    StoredSector,
+};
 use std::io::Cursor;
 use std::path::Path;
 

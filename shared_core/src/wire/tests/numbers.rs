@@ -79,7 +79,6 @@ fn no_serde_attributes() {
         include_str!("../error_code.rs"),
     ] {
         assert!(!source.contains("#[serde"));
-        let messages = source.split("derive(Clone, Copy, Debug").skip(1);
-        assert!(messages.filter(|text| text.contains("Deserialize")).count() > 0);
+        assert!(source.contains("Deserialize)]"));
     }
 }
