@@ -11,6 +11,8 @@ const READ_ONLY: u32 = 0b110 << 24;
 const NO_ACCESS: u32 = 0b000 << 24;
 const FULL_ACCESS: u32 = 0b011 << 24;
 const EXECUTE_NEVER: u32 = 1 << 28;
+/// Normal memory, write-through.
+const NORMAL: u32 = 1 << 17;
 const ENABLE: u32 = 1;
 /// The address register takes the region's number along.
 const VALID: u32 = 1 << 4;
@@ -26,9 +28,9 @@ struct Region {
 pub const GUARD_BASE: u32 = 0x1FF0_0000;
 
 const REGIONS: [Region; 3] = [
-    Region { base: 0x0000_0000, size_log2: 22, attributes: READ_ONLY },
+    Region { base: 0x0000_0000, size_log2: 22, attributes: READ_ONLY | NORMAL },
     Region { base: GUARD_BASE, size_log2: 20, attributes: NO_ACCESS | EXECUTE_NEVER },
-    Region { base: 0x2000_0000, size_log2: 22, attributes: FULL_ACCESS | EXECUTE_NEVER },
+    Region { base: 0x2000_0000, size_log2: 22, attributes: FULL_ACCESS | EXECUTE_NEVER | NORMAL },
 ];
 
 #[expect(unsafe_code, reason = "the regions decide which accesses fault")]

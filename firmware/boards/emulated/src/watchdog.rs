@@ -71,7 +71,9 @@ impl Watchdog for Running {
     }
 }
 
+// It comes through critical sections; a single volatile store is all it does.
+#[expect(unsafe_code, reason = "cortex-m-rt wants this handler marked")]
 #[cortex_m_rt::exception]
-fn NonMaskableInt() {
+unsafe fn NonMaskableInt() {
     retained::leave_mark(retained::Mark::Watchdog);
 }

@@ -1,0 +1,50 @@
+//! Ways to fail on purpose.
+
+use core::hint::black_box;
+
+use crate::commands::Refused;
+
+/// Runs the failure of this name, if there is one; those that are known never return.
+pub(crate) fn run(word: &str) -> Result<(), Refused> {
+    match word {
+        "hang" => loop {
+            core::hint::spin_loop();
+        },
+        "panic" => panic!("provoked"),
+        "overflow" => {
+            overflow(0);
+            Ok(())
+        }
+        "wild" => wild(),
+        "jump" => jump(),
+        _ => Err(Refused("unknown command")),
+    }
+}
+
+/// Needs more stack than there is.
+#[inline(never)]
+fn overflow(depth: u32) -> u32 {
+    let frame = black_box([depth; 16]);
+    let [first, ..] = frame;
+    overflow(first.wrapping_add(1)).wrapping_add(black_box(frame)[1])
+}
+
+/// Stores into the program.
+#[expect(unsafe_code, reason = "a wild store is the purpose")]
+fn wild() -> Result<(), Refused> {
+    // SAFETY: none is claimed; the protection must end the run before the store takes effect.
+    unsafe { core::ptr::write_volatile(core::ptr::with_exposed_provenance_mut(0x400), 0_u32) };
+    Err(Refused("the store was taken"))
+}
+
+/// Executes data.
+#[expect(unsafe_code, reason = "a wild jump is the purpose")]
+fn jump() -> Result<(), Refused> {
+    // `bx lr` in RAM.
+    let code = black_box([0x4770_4770_u32]);
+    let entry = code.as_ptr().addr() | 1;
+    // SAFETY: none is claimed; the protection must end the run at the first instruction.
+    let go: extern "C" fn() = unsafe { core::mem::transmute(entry) };
+    go();
+    Err(Refused("data was executed"))
+}
