@@ -3,6 +3,8 @@
 use core::cell::UnsafeCell;
 use core::sync::atomic::{AtomicBool, Ordering};
 
+use strake_firmware::board::Clock;
+
 use crate::uart;
 
 const BAUD: u32 = 115_200;
@@ -24,6 +26,8 @@ pub(crate) fn abandon_frame() {
         uart::LOG.send_polled(0);
     }
 }
+
+defmt::timestamp!("{=u64:ms}", crate::timer::MonotonicClock::new().now_ms());
 
 /// Whether a frame is being written.
 static OPEN: AtomicBool = AtomicBool::new(false);

@@ -77,21 +77,26 @@ struct Queues {
     to_send: Deque<u8, QUEUE>,
 }
 
+type SharedQueues = Mutex<RefCell<Queues>>;
+
+const EMPTY: SharedQueues =
+    Mutex::new(RefCell::new(Queues { received: Deque::new(), to_send: Deque::new() }));
+
+// Apart from the registers' addresses: all zero, they need no copy in flash.
+static LINK_QUEUES: SharedQueues = EMPTY;
+static SENSOR_BUS_QUEUES: SharedQueues = EMPTY;
+
 /// A UART with its queues, shared between a [`SerialPort`] and the interrupts.
 pub(crate) struct Buffered {
     uart: Uart,
-    queues: Mutex<RefCell<Queues>>,
+    queues: &'static SharedQueues,
 }
 
-pub(crate) static LINK: Buffered = Buffered::at(0x4000_4000);
-pub(crate) static SENSOR_BUS: Buffered = Buffered::at(0x4000_5000);
+pub(crate) static LINK: Buffered = Buffered { uart: Uart::at(0x4000_4000), queues: &LINK_QUEUES };
+pub(crate) static SENSOR_BUS: Buffered =
+    Buffered { uart: Uart::at(0x4000_5000), queues: &SENSOR_BUS_QUEUES };
 
 impl Buffered {
-    const fn at(base: usize) -> Self {
-        let queues = Queues { received: Deque::new(), to_send: Deque::new() };
-        Self { uart: Uart::at(base), queues: Mutex::new(RefCell::new(queues)) }
-    }
-
     pub(crate) fn start(&self, baud: u32) {
         self.uart.enable(baud, TX_ENABLE | RX_ENABLE | TX_INTERRUPT | RX_INTERRUPT);
     }

@@ -71,9 +71,13 @@ impl Watchdog for Running {
     }
 }
 
-// It comes through critical sections; a single volatile store is all it does.
 #[expect(unsafe_code, reason = "cortex-m-rt wants this handler marked")]
-#[cortex_m_rt::exception]
-unsafe fn NonMaskableInt() {
-    retained::leave_mark(retained::Mark::Watchdog);
+mod half_time {
+    use super::retained::{Mark, leave_mark};
+
+    // It comes through critical sections; a single volatile store is all it does.
+    #[cortex_m_rt::exception]
+    unsafe fn NonMaskableInt() {
+        leave_mark(Mark::Watchdog);
+    }
 }

@@ -66,6 +66,7 @@ pub(crate) fn serve(board: Board) -> ! {
         running: None,
         greeting,
     };
+    send(&mut link, &["start ", &parts.greeting, "\n"]);
     let mut command: Vec<u8, 96> = Vec::new();
     loop {
         let mut byte = [0];
@@ -95,7 +96,11 @@ fn answer(link: &mut SerialPort, parts: &mut Parts, line: &str) {
         Ok(()) => ("ok ", text.as_str()),
         Err(Refused(why)) => ("no ", why),
     };
-    for piece in [verdict, text, "\n"] {
+    send(link, &[verdict, text, "\n"]);
+}
+
+fn send(link: &mut SerialPort, pieces: &[&str]) {
+    for piece in pieces {
         // The line cannot fail, its error type has no value.
         let _ = link.write_all(piece.as_bytes());
     }
@@ -146,6 +151,7 @@ fn run(parts: &mut Parts, word: &str, rest: &str, out: &mut Line) -> Result<(), 
             defmt::info!("count {=u32}, text {=str}", 4711, rest);
             defmt::warn!("a second frame");
         }
+        "count" => provoke::counted_loop(number(rest)?),
         "restart" => restart(),
         _ => provoke::run(word)?,
     }

@@ -1,5 +1,6 @@
-//! Ways to fail on purpose.
+//! Ways to fail on purpose, and a loop of a known number of instructions.
 
+use core::arch::naked_asm;
 use core::hint::black_box;
 
 use crate::commands::Refused;
@@ -22,6 +23,7 @@ pub(crate) fn run(word: &str) -> Result<(), Refused> {
 }
 
 /// Needs more stack than there is.
+#[expect(unconditional_recursion, reason = "an overflow is the purpose")]
 #[inline(never)]
 fn overflow(depth: u32) -> u32 {
     let frame = black_box([depth; 16]);
@@ -47,4 +49,23 @@ fn jump() -> Result<(), Refused> {
     let go: extern "C" fn() = unsafe { core::mem::transmute(entry) };
     go();
     Err(Refused("data was executed"))
+}
+
+#[expect(unsafe_code, reason = "a loop of known instructions")]
+mod counted {
+    use super::naked_asm;
+
+    /// Executes 2 n + 1 instructions, for n of at least 1.
+    #[unsafe(naked)]
+    #[unsafe(no_mangle)]
+    pub(super) extern "C" fn counted_loop(n: u32) {
+        naked_asm!("0:", "subs r0, r0, #1", "bne 0b", "bx lr")
+    }
+}
+
+/// Runs the loop of known length; at least once.
+pub(crate) fn counted_loop(n: u32) {
+    counted::counted_loop(if n == 0 { 1 } else { n });
+    // Keeps the call from becoming a jump.
+    black_box(n);
 }
