@@ -4,15 +4,15 @@ use std::error::Error;
 use std::fs;
 use std::sync::Arc;
 
-use crate::Outcome;
 use crate::flash_file::{FlashFile, PLANS_OFFSET};
 use crate::image::Image;
 use crate::machine::{Machine, Setup};
 use crate::plugin::{CUT_STATUS, Span, instruction_count, power_cut};
 use crate::sensor::Mood;
 use crate::toolchain;
+use crate::{Outcome, Test};
 
-pub(crate) const TESTS: &[(&str, fn() -> Outcome)] = &[
+pub(crate) const TESTS: &[Test] = &[
     ("drivers::every_driver_passes_its_check", every_driver_passes_its_check),
     ("drivers::cold_and_warm_starts_are_told_apart", cold_and_warm_starts_are_told_apart),
     ("drivers::an_unfed_watchdog_restarts_the_device", an_unfed_watchdog_restarts_the_device),
@@ -290,8 +290,7 @@ fn long_lines_cross_the_link_unaltered() -> Outcome {
     let mut machine = start(Setup::new(&image()?), "PowerOn None")?;
     // More than the queues hold, sent without waiting for any answer.
     let lines: Vec<String> = (0..200).map(|n| format!("{n:03} {}", "x-".repeat(n % 40))).collect();
-    let commands: String = lines.iter().map(|line| format!("echo {line}\n")).collect();
-    machine.send(commands.as_bytes())?;
+    machine.send(format!("echo {}\n", lines.join("\necho ")).as_bytes())?;
     for line in &lines {
         same(&machine.receive_line()?, &format!("ok {line}"))?;
     }

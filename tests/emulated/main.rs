@@ -18,8 +18,11 @@ use libtest_mimic::{Arguments, Failed, Trial};
 /// What a test gives back; any error fails it.
 type Outcome = Result<(), Box<dyn std::error::Error>>;
 
+/// A test: its name and what it runs.
+type Test = (&'static str, fn() -> Outcome);
+
 /// A test of this name, ignored when `missing` says what this machine lacks.
-fn trial(missing: Option<&'static str>, name: &'static str, run: fn() -> Outcome) -> Trial {
+fn trial(missing: Option<&'static str>, (name, run): Test) -> Trial {
     let trial = Trial::test(name, move || run().map_err(|error| Failed::from(error.to_string())));
     match missing {
         Some(what) => trial.with_kind(format!("needs {what}")).with_ignored_flag(true),
@@ -32,12 +35,12 @@ fn main() {
     let missing = toolchain::missing();
     let trials: Vec<Trial> = drivers::TESTS
         .iter()
-        .map(|&(name, run)| trial(missing.as_ref().map(|(what, _)| *what), name, run))
+        .map(|&test| trial(missing.as_ref().map(|(what, _)| *what), test))
         .collect();
     if let Some((what, remedy)) = &missing
         && !arguments.list
     {
-        eprintln!("left out: {} tests on the emulated machine, no {what}; {remedy}", trials.len());
+        eprintln!("left out: {} tests that need {what}: {remedy}", trials.len());
     }
     libtest_mimic::run(&arguments, trials).exit();
 }

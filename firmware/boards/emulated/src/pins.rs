@@ -7,6 +7,7 @@
 //! It gives no interrupt; a sleeping program looks at it four times a second.
 
 use core::convert::Infallible;
+use core::sync::atomic::{AtomicBool, Ordering};
 
 use embedded_hal::digital::{ErrorType, InputPin, OutputPin, StatefulOutputPin};
 
@@ -44,8 +45,19 @@ pub(crate) fn open_contact() {
     set(CONTACT_BIT, false);
 }
 
-pub(crate) fn button_is_pressed() -> bool {
-    BUTTON.read() == BUTTON_PRESSED
+/// What the application was last told about the button.
+static TOLD_PRESSED: AtomicBool = AtomicBool::new(false);
+
+fn button_is_pressed() -> bool {
+    let pressed = BUTTON.read() == BUTTON_PRESSED;
+    TOLD_PRESSED.store(pressed, Ordering::Relaxed);
+    pressed
+}
+
+/// Whether the button differs from what the application was last told: a change just before a
+/// sleep ends it as one during the sleep does.
+pub(crate) fn button_has_changed() -> bool {
+    (BUTTON.read() == BUTTON_PRESSED) != TOLD_PRESSED.load(Ordering::Relaxed)
 }
 
 /// One output: high lights the lamp, and lets the contact conduct.

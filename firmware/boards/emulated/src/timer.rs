@@ -43,8 +43,9 @@ impl Timer {
         }
     }
 
-    fn start(&self, ticks: u32) {
-        self.reload.write(ticks);
+    /// Counts down from `ticks`, then from `reload` again and again; never again when that is 0.
+    fn start(&self, ticks: u32, reload: u32) {
+        self.reload.write(reload);
         self.value.write(ticks);
         self.control.write(ENABLE | INTERRUPT_ENABLE);
     }
@@ -63,7 +64,7 @@ static ELAPSED: Mutex<Cell<Elapsed>> =
     Mutex::new(Cell::new(Elapsed { ticks: 0, last_value: u32::MAX }));
 
 pub(crate) fn start() {
-    TIME.start(u32::MAX);
+    TIME.start(u32::MAX, u32::MAX);
 }
 
 /// Ticks since the start. The interrupt at each wrap of the counter (172 s) calls this too, so no
@@ -105,11 +106,10 @@ impl Clock for MonotonicClock {
     }
 }
 
-/// Sleeps until `wake_ms` on the clock; ends early when the host link has bytes or the button
-/// changes.
+/// Sleeps until `wake_ms` on the clock; ends early when the host link has bytes, or the button is
+/// not as the application last read it.
 pub fn sleep_until(clock: MonotonicClock, wake_ms: u64) {
-    let pressed = pins::button_is_pressed();
-    while nap(clock, wake_ms) && pins::button_is_pressed() == pressed {}
+    while nap(clock, wake_ms) {}
 }
 
 /// One stretch of sleep; false when there is no reason to sleep on.
@@ -118,12 +118,12 @@ fn nap(clock: MonotonicClock, wake_ms: u64) -> bool {
     // ends the wait, and is served after it.
     critical_section::with(|_| {
         let left_ms = wake_ms.saturating_sub(clock.now_ms());
-        if left_ms == 0 || uart::LINK.has_received() {
+        if left_ms == 0 || uart::LINK.has_received() || pins::button_has_changed() {
             return false;
         }
         let nap_ms = u32::try_from(left_ms).unwrap_or(NAP_MS);
         let nap_ms = if nap_ms < NAP_MS { nap_ms } else { NAP_MS };
-        WAKE.start(nap_ms.wrapping_mul(TICKS_PER_MS));
+        WAKE.start(nap_ms.wrapping_mul(TICKS_PER_MS), 0);
         cortex_m::asm::dsb();
         cortex_m::asm::wfi();
         true

@@ -79,12 +79,13 @@ struct Queues {
 
 type SharedQueues = Mutex<RefCell<Queues>>;
 
-const EMPTY: SharedQueues =
-    Mutex::new(RefCell::new(Queues { received: Deque::new(), to_send: Deque::new() }));
+const fn empty() -> SharedQueues {
+    Mutex::new(RefCell::new(Queues { received: Deque::new(), to_send: Deque::new() }))
+}
 
 // Apart from the registers' addresses: all zero, they need no copy in flash.
-static LINK_QUEUES: SharedQueues = EMPTY;
-static SENSOR_BUS_QUEUES: SharedQueues = EMPTY;
+static LINK_QUEUES: SharedQueues = empty();
+static SENSOR_BUS_QUEUES: SharedQueues = empty();
 
 /// A UART with its queues, shared between a [`SerialPort`] and the interrupts.
 pub(crate) struct Buffered {

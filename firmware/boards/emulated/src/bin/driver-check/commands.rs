@@ -6,7 +6,7 @@ use embedded_hal::digital::{InputPin, OutputPin};
 use embedded_io::{Read, ReadReady, Write};
 use embedded_storage::nor_flash::NorFlash;
 use heapless::{String, Vec};
-use strake_board_emulated::flash::{NorRegion, WORD_BYTES};
+use strake_board_emulated::flash::NorRegion;
 use strake_board_emulated::pins::{Button, Output};
 use strake_board_emulated::retained::Retained;
 use strake_board_emulated::timer::{MonotonicClock, sleep_until};
@@ -168,8 +168,7 @@ fn store(flash: &mut NorRegion, count: u32) -> Result<(), Refused> {
     let failed = |_| Refused("flash failed");
     flash.erase(0, 4096).map_err(failed)?;
     for value in 1..=count {
-        let offset = (value - 1).wrapping_mul(WORD_BYTES as u32);
-        flash.write(offset, &value.to_le_bytes()).map_err(failed)?;
+        flash.write((value - 1).saturating_mul(4), &value.to_le_bytes()).map_err(failed)?;
     }
     Ok(())
 }

@@ -1,9 +1,12 @@
 //! The rules of the flash, tried on the last block of a region.
 
 use embedded_storage::nor_flash::{NorFlash, NorFlashErrorKind, ReadNorFlash};
-use strake_board_emulated::flash::{BLOCK_BYTES, NorRegion};
+use strake_board_emulated::flash::NorRegion;
 
 use crate::commands::Refused;
+
+/// Bytes of an erase block, stated here again so that the driver's own figure is tried.
+const BLOCK: u32 = 4096;
 
 fn expect(held: bool, rule: &'static str) -> Result<(), Refused> {
     if held { Ok(()) } else { Err(Refused(rule)) }
@@ -11,8 +14,8 @@ fn expect(held: bool, rule: &'static str) -> Result<(), Refused> {
 
 pub(crate) fn check(flash: &mut NorRegion) -> Result<(), Refused> {
     let end = u32::try_from(flash.capacity()).unwrap_or(u32::MAX);
-    let block = end.saturating_sub(BLOCK_BYTES as u32);
-    let before = end.saturating_sub(2 * BLOCK_BYTES as u32);
+    let block = end.saturating_sub(BLOCK);
+    let before = block.saturating_sub(BLOCK);
     bits(flash, block, before).map_err(|error| match error {
         Failure::Rule(refused) => refused,
         Failure::Flash => Refused("flash: an access in range was refused"),
@@ -24,7 +27,7 @@ pub(crate) fn check(flash: &mut NorRegion) -> Result<(), Refused> {
     expect(flash.write(block, &[0; 3]) == aligned, "flash: three bytes were taken")?;
     expect(flash.write(end, &[0; 4]) == bounds, "flash: a word beyond the end was taken")?;
     expect(flash.erase(block, block + 4) == aligned, "flash: a part of a block was erased")?;
-    expect(flash.erase(block, end + 4096) == bounds, "flash: erased beyond the end")?;
+    expect(flash.erase(block, end + BLOCK) == bounds, "flash: erased beyond the end")?;
     expect(flash.read(end, &mut byte) == bounds, "flash: read beyond the end")?;
     expect(flash.read(u32::MAX, &mut byte) == bounds, "flash: read far beyond the end")
 }
@@ -51,7 +54,7 @@ fn bits(flash: &mut NorRegion, block: u32, before: u32) -> Result<(), Failure> {
     let mut word = [0; 4];
     flash.erase(before, block)?;
     flash.write(block.saturating_sub(4), &[0x11; 4])?;
-    flash.erase(block, block + 4096)?;
+    flash.erase(block, block + BLOCK)?;
     flash.read(block.saturating_sub(2), &mut word)?;
     expect(word == [0x11, 0x11, 0xFF, 0xFF], "flash: erase left its block")?;
     flash.write(block, &[0x0F, 0xF0, 0xFF, 0x12])?;
@@ -61,7 +64,7 @@ fn bits(flash: &mut NorRegion, block: u32, before: u32) -> Result<(), Failure> {
     flash.write(block + 4, &[1, 2, 3, 4, 5, 6, 7, 8])?;
     flash.read(block + 7, &mut word)?;
     expect(word == [4, 5, 6, 7], "flash: bytes off a word read wrong")?;
-    flash.erase(block, block + 4096)?;
+    flash.erase(block, block + BLOCK)?;
     flash.read(block + 4, &mut word)?;
     expect(word == [0xFF; 4], "flash: erase left bits")?;
     Ok(())
