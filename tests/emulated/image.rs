@@ -35,19 +35,21 @@ impl Image {
         Ok(Self { path: path.to_owned(), elf, sha256 })
     }
 
-    /// Address and size of the symbol whose name is `name`, or ends in `::name` before its hash.
+    /// Address and size of the one symbol called `name`: exactly, or as the path of a mangled name
+    /// (`modbus::value`), whichever mangling it has.
     pub(crate) fn symbol(&self, name: &str) -> Result<(u64, u64), Box<dyn Error>> {
         let file = object::File::parse(&*self.elf)?;
-        let inner = format!("{}{name}17h", name.len());
-        let found: Vec<_> = file
-            .symbols()
-            .filter(|symbol| symbol.name().is_ok_and(|full| full == name || full.contains(&inner)))
-            // Bit 0 says Thumb, it is no part of the address.
-            .map(|symbol| (symbol.address() & !1, symbol.size()))
-            .collect();
-        match found[..] {
-            [one] => Ok(one),
-            _ => Err(format!("{} symbols are called {name}", found.len()).into()),
+        let mut found = Vec::new();
+        for symbol in file.symbols() {
+            let full = symbol.name().unwrap_or_default();
+            if full == name || has_path(full, name) {
+                // Bit 0 says Thumb, it is no part of the address.
+                found.push((full.to_owned(), (symbol.address() & !1, symbol.size())));
+            }
+        }
+        match &found[..] {
+            [(_, place)] => Ok(*place),
+            _ => Err(format!("one symbol {name} wanted, found {found:x?}").into()),
         }
     }
 
@@ -69,4 +71,15 @@ impl Image {
         }
         Ok(footprint)
     }
+}
+
+/// Both manglings write each part of a path behind its length, one behind the other.
+fn has_path(mangled: &str, path: &str) -> bool {
+    let parts: Vec<String> = path.split("::").map(|part| format!("{}{part}", part.len())).collect();
+    let parts = parts.concat();
+    // A digit in front would belong to another length.
+    mangled.starts_with('_')
+        && mangled
+            .match_indices(&*parts)
+            .any(|(at, _)| !mangled[..at].ends_with(|last: char| last.is_ascii_digit()))
 }

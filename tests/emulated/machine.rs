@@ -38,6 +38,7 @@ pub(crate) struct Setup {
     sensor: Sensor,
     link_is_terminal: bool,
     instruction_time: Option<String>,
+    stops_at_reset: bool,
     plugins: Vec<Plugin>,
 }
 
@@ -50,6 +51,7 @@ impl Setup {
             sensor: Sensor::default(),
             link_is_terminal: false,
             instruction_time: None,
+            stops_at_reset: false,
             plugins: Vec::new(),
         }
     }
@@ -72,6 +74,12 @@ impl Setup {
     pub(crate) fn instruction_time(mut self, shift: u8, jump: bool) -> Self {
         let sleep = if jump { "off" } else { "on" };
         self.instruction_time = Some(format!("shift={shift},sleep={sleep}"));
+        self
+    }
+
+    /// Stands still where the device resets itself, see [`Machine::wait_for_reset`].
+    pub(crate) fn stop_at_reset(mut self) -> Self {
+        self.stops_at_reset = true;
         self
     }
 
@@ -106,6 +114,9 @@ impl Setup {
         }
         if let Some(time) = &self.instruction_time {
             command.args(["-icount", time]);
+        }
+        if self.stops_at_reset {
+            command.args(["-action", "reboot=shutdown,shutdown=pause"]);
         }
         for plugin in &self.plugins {
             command.arg("-plugin").arg(plugin.argument(flash.folder()));
@@ -259,6 +270,32 @@ impl Machine {
     /// Resets the machine from outside, as a reset pin would.
     pub(crate) fn reset(&mut self) -> io::Result<()> {
         self.qmp.run("system_reset", &json!({})).map(drop)
+    }
+
+    /// Waits until the device has asked for its reset; its outputs stand as it left them.
+    pub(crate) fn wait_for_reset(&mut self) -> Result<(), Box<dyn Error>> {
+        self.wait_for_status("shutdown")
+    }
+
+    /// Carries out the reset that was waited for; the next one stops the machine again.
+    pub(crate) fn resume(&mut self) -> Result<(), Box<dyn Error>> {
+        self.qmp.run("set-action", &json!({ "reboot": "reset" }))?;
+        self.reset()?;
+        self.wait_for_status("prelaunch")?;
+        self.qmp.run("set-action", &json!({ "reboot": "shutdown" }))?;
+        self.qmp.run("cont", &json!({}))?;
+        Ok(())
+    }
+
+    fn wait_for_status(&mut self, status: &str) -> Result<(), Box<dyn Error>> {
+        let start = Instant::now();
+        while start.elapsed() < PATIENCE {
+            if self.qmp.run("query-status", &json!({}))?["status"] == status {
+                return Ok(());
+            }
+            thread::sleep(Duration::from_millis(2));
+        }
+        Err(format!("the machine did not come to the state {status}").into())
     }
 
     /// The log so far.

@@ -52,6 +52,13 @@ fn store(word: &AtomicU32, value: u32) {
     compiler_fence(Ordering::SeqCst);
 }
 
+/// Fills `to` from the beginning of `from`.
+fn copy(to: &mut [u8], from: Option<&[u8]>) {
+    for (to, from) in to.iter_mut().zip(from.unwrap_or_default()) {
+        *to = *from;
+    }
+}
+
 /// Index from an offset that was checked against the capacity.
 fn index(offset: u32) -> usize {
     usize::try_from(offset).unwrap_or(usize::MAX)
@@ -68,9 +75,21 @@ impl ReadNorFlash for NorRegion {
         check_read(self, offset, bytes.len())?;
         let offset = index(offset);
         let words = self.words.get(offset / WORD_BYTES..).unwrap_or_default();
-        let stored = words.iter().flat_map(|word| word.load(Ordering::Relaxed).to_le_bytes());
-        for (byte, stored) in bytes.iter_mut().zip(stored.skip(offset % WORD_BYTES)) {
-            *byte = stored;
+        let mut stored = words.iter().map(|word| word.load(Ordering::Relaxed).to_le_bytes());
+        // Up to the first whole word, whole words, and what is left of the last.
+        let skipped = offset % WORD_BYTES;
+        let head = if skipped == 0 { 0 } else { WORD_BYTES - skipped };
+        let head = if head < bytes.len() { head } else { bytes.len() };
+        let (head, rest) = bytes.split_at_mut_checked(head).unwrap_or_default();
+        if !head.is_empty() {
+            copy(head, stored.next().unwrap_or_default().get(skipped..));
+        }
+        let (whole, tail) = rest.as_chunks_mut::<WORD_BYTES>();
+        for (bytes, word) in whole.iter_mut().zip(&mut stored) {
+            *bytes = word;
+        }
+        if !tail.is_empty() {
+            copy(tail, stored.next().as_ref().map(<[u8; WORD_BYTES]>::as_slice));
         }
         Ok(())
     }

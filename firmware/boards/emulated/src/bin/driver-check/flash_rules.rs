@@ -64,8 +64,24 @@ fn bits(flash: &mut NorRegion, block: u32, before: u32) -> Result<(), Failure> {
     flash.write(block + 4, &[1, 2, 3, 4, 5, 6, 7, 8])?;
     flash.read(block + 7, &mut word)?;
     expect(word == [4, 5, 6, 7], "flash: bytes off a word read wrong")?;
+    every_stretch(flash, block)?;
     flash.erase(block, block + BLOCK)?;
     flash.read(block + 4, &mut word)?;
     expect(word == [0xFF; 4], "flash: erase left bits")?;
+    Ok(())
+}
+
+/// Every stretch of the nine bytes from `block + 3` on reads as itself.
+fn every_stretch(flash: &mut NorRegion, block: u32) -> Result<(), Failure> {
+    const CONTENT: [u8; 9] = [0x12, 1, 2, 3, 4, 5, 6, 7, 8];
+    for from in 0..CONTENT.len() {
+        for until in from..=CONTENT.len() {
+            let expected = CONTENT.get(from..until).unwrap_or_default();
+            let mut bytes = [0; CONTENT.len()];
+            let bytes = bytes.get_mut(from..until).unwrap_or_default();
+            flash.read(block + 3 + u32::try_from(from).unwrap_or(0), bytes)?;
+            expect(bytes == expected, "flash: a stretch reads wrong")?;
+        }
+    }
     Ok(())
 }
