@@ -2,6 +2,8 @@
 
 use std::error::Error;
 use std::fs;
+use std::io::{BufRead as _, BufReader};
+use std::process::{Command, Stdio};
 use std::sync::Arc;
 
 use crate::flash_file::{FlashFile, PLANS_OFFSET};
@@ -12,24 +14,22 @@ use crate::sensor::Mood;
 use crate::toolchain;
 use crate::{Outcome, Test};
 
-pub(crate) const TESTS: &[Test] = &[
-    ("drivers::every_driver_passes_its_check", every_driver_passes_its_check),
-    ("drivers::cold_and_warm_starts_are_told_apart", cold_and_warm_starts_are_told_apart),
-    ("drivers::an_unfed_watchdog_restarts_the_device", an_unfed_watchdog_restarts_the_device),
-    ("drivers::a_panic_opens_the_contact", a_panic_opens_the_contact),
-    ("drivers::faults_open_the_contact", faults_open_the_contact),
-    ("drivers::flash_outlives_the_power", flash_outlives_the_power),
-    (
-        "drivers::a_cut_leaves_exactly_the_stores_before_it",
-        a_cut_leaves_exactly_the_stores_before_it,
-    ),
-    ("drivers::a_modbus_register_is_read", a_modbus_register_is_read),
-    ("drivers::outputs_and_button", outputs_and_button),
-    ("drivers::the_link_is_a_terminal_too", the_link_is_a_terminal_too),
-    ("drivers::long_lines_cross_the_link_unaltered", long_lines_cross_the_link_unaltered),
-    ("drivers::an_hour_asleep_passes_in_virtual_time", an_hour_asleep_passes_in_virtual_time),
-    ("drivers::instructions_are_counted_exactly", instructions_are_counted_exactly),
-    ("drivers::the_image_fits_its_memories", the_image_fits_its_memories),
+pub(crate) const TESTS: &[Test] = tests![
+    every_driver_passes_its_check,
+    cold_and_warm_starts_are_told_apart,
+    an_unfed_watchdog_restarts_the_device,
+    a_panic_opens_the_contact,
+    faults_open_the_contact,
+    flash_outlives_the_power,
+    a_cut_leaves_exactly_the_stores_before_it,
+    a_modbus_register_is_read,
+    outputs_and_button,
+    the_link_is_a_terminal_too,
+    the_script_starts_a_device_and_prints_its_port,
+    long_lines_cross_the_link_unaltered,
+    an_hour_asleep_passes_in_virtual_time,
+    instructions_are_counted_exactly,
+    the_image_fits_its_memories,
 ];
 
 fn image() -> Result<Arc<Image>, Box<dyn Error>> {
@@ -109,11 +109,10 @@ fn an_unfed_watchdog_restarts_the_device() -> Outcome {
     let mut machine = start(Setup::new(&image()?), "PowerOn None")?;
     ask(&mut machine, "contact on")?;
     ask(&mut machine, "keep fed-once")?;
-    ask(&mut machine, "watchdog 400")?;
+    ask(&mut machine, "watchdog 2000")?;
     // Fed after the half that leaves the mark, it must not restart.
-    for _ in 0..4 {
-        ask(&mut machine, "sleep 250")?;
-        ask(&mut machine, "feed")?;
+    for _ in 0..2 {
+        ask(&mut machine, "feed 1250")?;
     }
     hold(machine.contact()?, "the contact opened although the watchdog was fed")?;
     machine.send(b"hang\n")?;
@@ -122,7 +121,7 @@ fn an_unfed_watchdog_restarts_the_device() -> Outcome {
     hold(ask(&mut machine, "kept")?.starts_with("fed-once"), "retained memory was lost")?;
     // The mark of the first half is taken back by feeding.
     ask(&mut machine, "watchdog 60000")?;
-    ask(&mut machine, "feed")?;
+    ask(&mut machine, "feed 0")?;
     machine.reset()?;
     expect_start(&mut machine, "Other None")
 }
@@ -340,4 +339,23 @@ fn the_image_fits_its_memories() -> Outcome {
     same(size, "12288")?;
     let peak: u32 = peak.parse()?;
     hold((256..4096).contains(&peak), &format!("stack peak {peak} B"))
+}
+
+fn the_script_starts_a_device_and_prints_its_port() -> Outcome {
+    let image = image()?;
+    let flash = FlashFile::erased()?;
+    let mut script = Command::new(toolchain::root().join(".ci/emulated-device"))
+        .args(["--image".as_ref(), image.path.as_os_str()])
+        .args(["--flash".as_ref(), flash.path().as_os_str()])
+        .stdout(Stdio::piped())
+        .stderr(Stdio::null())
+        .spawn()?;
+    let mut line = String::new();
+    let read = BufReader::new(script.stdout.take().ok_or("no output")?).read_line(&mut line);
+    // The script takes the emulator down with it when it is asked to end, not when it is killed.
+    Command::new("kill").arg(script.id().to_string()).status()?;
+    let status = script.wait()?;
+    read?;
+    hold(line.starts_with("port /dev/"), &line)?;
+    same(&status.code(), &Some(130))
 }

@@ -3,6 +3,11 @@
 //! They need a compiler for the target and the emulator. Where one is missing every test is listed
 //! as ignored with the reason, and with the variable CI set, as failed.
 
+/// The tests of a module, each under its own name.
+macro_rules! tests {
+    ($($name:ident,)*) => { &[$((stringify!($name), $name),)*] };
+}
+
 mod drivers;
 mod flash_file;
 mod image;

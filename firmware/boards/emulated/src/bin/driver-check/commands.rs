@@ -19,7 +19,7 @@ use crate::{flash_rules, provoke};
 
 /// The register that the command `level` reads.
 const LEVEL: Place = Place { unit: 1, function: Function::Input, register: 0, form: Form::U16 };
-const WAITS: Waits = Waits { answer_ms: 300, silence_ms: 4 };
+const WAITS: Waits = Waits { answer_ms: 2000, silence_ms: 4 };
 
 /// Longest command and longest answer.
 type Line = String<96>;
@@ -146,7 +146,11 @@ fn run(parts: &mut Parts, word: &str, rest: &str, out: &mut Line) -> Result<(), 
             let stopped = parts.stopped.take().ok_or(Refused("already started"))?;
             parts.running = Some(stopped.start(timeout_ms));
         }
-        "feed" => parts.running.as_mut().ok_or(Refused("not started"))?.feed(),
+        "feed" => {
+            let wake_ms = parts.clock.now_ms().saturating_add(u64::from(number(rest)?));
+            sleep_until(parts.clock, wake_ms);
+            parts.running.as_mut().ok_or(Refused("not started"))?.feed();
+        }
         "log" => {
             defmt::info!("count {=u32}, text {=str}", 4711, rest);
             defmt::warn!("a second frame");
