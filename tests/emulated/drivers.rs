@@ -120,8 +120,8 @@ fn an_unfed_watchdog_restarts_the_device() -> Outcome {
     hold(!machine.contact()?, "the contact conducts after a reset")?;
     hold(ask(&mut machine, "kept")?.starts_with("fed-once"), "retained memory was lost")?;
     // The mark of the first half is taken back by feeding.
-    ask(&mut machine, "watchdog 60000")?;
-    ask(&mut machine, "feed 0")?;
+    ask(&mut machine, "watchdog 4000")?;
+    ask(&mut machine, "feed 2500")?;
     machine.reset()?;
     expect_start(&mut machine, "Other None")
 }

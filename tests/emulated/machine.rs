@@ -234,7 +234,10 @@ impl Machine {
             let mut bytes = [0; 512];
             let link = self.link()?;
             link.set_read_timeout(Some(PATIENCE))?;
-            let count = link.read(&mut bytes)?;
+            let count = link.read(&mut bytes).map_err(|error| match error.kind() {
+                io::ErrorKind::WouldBlock => format!("the device was silent for {PATIENCE:?}"),
+                _ => error.to_string(),
+            })?;
             if count == 0 {
                 return Err("the emulator closed the link".into());
             }
