@@ -3,23 +3,8 @@
 //! A board is a thin package: it wires pins, buses and memories to these traits and hands them to
 //! the application. It holds no decision of its own; the application holds no register address.
 
-use core::fmt;
-
-/// Why the controller started, as far as the hardware can tell.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-#[cfg_attr(feature = "defmt", derive(defmt::Format))]
-pub enum ResetCause {
-    /// Power came (back); RAM was lost.
-    PowerOn,
-    /// The watchdog was not fed in time.
-    Watchdog,
-    /// The program reset itself after a panic; the panic handler left its mark.
-    Panic,
-    /// The program asked for a restart.
-    Software,
-    /// A reset pin, a debugger, or a cause the hardware does not name.
-    Other,
-}
+pub use strake_core::journal::entry::ResetCause;
+pub use strake_core::signal::SensorError;
 
 /// Monotonic time.
 pub trait Clock {
@@ -42,35 +27,6 @@ pub trait RetainedMemory {
 pub trait Watchdog {
     /// Starts the count anew.
     fn feed(&mut self);
-}
-
-/// Why a sensor channel gave no count. The numbers stand in the journal and never change.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-#[cfg_attr(feature = "defmt", derive(defmt::Format))]
-#[repr(u8)]
-pub enum SensorError {
-    /// Nothing answered within the bounded wait.
-    Silent = 1,
-    /// Bytes came, but no frame with a right check sum.
-    Garbled = 2,
-    /// A valid frame that is not the answer asked for (unit, function or length).
-    Unexpected = 3,
-    /// The sensor answered with an exception code.
-    Exception = 4,
-    /// The converter or its bus failed.
-    Converter = 5,
-}
-
-impl fmt::Display for SensorError {
-    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        f.write_str(match self {
-            Self::Silent => "no answer",
-            Self::Garbled => "garbled answer",
-            Self::Unexpected => "unexpected answer",
-            Self::Exception => "exception answer",
-            Self::Converter => "converter failed",
-        })
-    }
 }
 
 /// A channel that delivers raw counts. What a count means stands in the plan, never here.

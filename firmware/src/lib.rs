@@ -6,4 +6,6 @@
 #![forbid(unsafe_code)]
 
 pub mod board;
+pub mod journal;
 pub mod sensor;
+pub mod serve;

@@ -48,14 +48,14 @@ pub(crate) fn missing() -> Option<(&'static str, String)> {
 
 /// The image of a program of the emulated board as it is shipped, built once in a run.
 pub(crate) fn image(program: &'static str) -> Result<Arc<Image>, Box<dyn Error>> {
-    static IMAGES: Mutex<BTreeMap<&str, Arc<Image>>> = Mutex::new(BTreeMap::new());
+    type Built = Result<Arc<Image>, String>;
+    static IMAGES: Mutex<BTreeMap<&str, Built>> = Mutex::new(BTreeMap::new());
     let mut images = IMAGES.lock().unwrap_or_else(PoisonError::into_inner);
-    if let Some(image) = images.get(program) {
-        return Ok(Arc::clone(image));
-    }
-    let image = Arc::new(Image::read(&build(program)?)?);
-    images.insert(program, Arc::clone(&image));
-    Ok(image)
+    let built = images.entry(program).or_insert_with(|| {
+        let image = build(program).and_then(|path| Image::read(&path));
+        image.map(Arc::new).map_err(|error| error.to_string())
+    });
+    Ok(built.clone()?)
 }
 
 fn build(program: &str) -> Result<PathBuf, Box<dyn Error>> {

@@ -1,4 +1,4 @@
-//! The whole board, taken once.
+//! The parts of the whole board, taken once.
 
 use cortex_m::Peripherals;
 use cortex_m::peripheral::SCB;
@@ -17,7 +17,7 @@ const SENSOR_BAUD: u32 = 9_600;
 
 /// Every part of the board, ready to use; the alarm contact is still open.
 #[expect(missing_debug_implementations, reason = "the serial ports have none")]
-pub struct Board {
+pub struct Parts {
     /// Monotonic time.
     pub clock: MonotonicClock,
     /// Line to the host.
@@ -32,7 +32,7 @@ pub struct Board {
     pub contact: Output,
     /// Lamp: high is lit.
     pub lamp: Output,
-    /// Button: high while pressed.
+    /// Button: low while pressed.
     pub button: Button,
     /// Memory that survives a warm restart.
     pub retained: Retained,
@@ -44,7 +44,7 @@ pub struct Board {
     pub last_failure: Option<Failure>,
 }
 
-impl Board {
+impl Parts {
     /// Starts every part, the first time it is called; later none is left to take.
     #[must_use]
     pub fn take() -> Option<Self> {

@@ -98,7 +98,7 @@ impl StatefulOutputPin for Output {
     }
 }
 
-/// The button: high while pressed.
+/// The button: low while pressed, as a contact to ground under a pull-up would be.
 #[derive(Debug)]
 pub struct Button(());
 
@@ -114,10 +114,10 @@ impl ErrorType for Button {
 
 impl InputPin for Button {
     fn is_high(&mut self) -> Result<bool, Infallible> {
-        Ok(button_is_pressed())
+        Ok(!button_is_pressed())
     }
 
     fn is_low(&mut self) -> Result<bool, Infallible> {
-        Ok(!button_is_pressed())
+        Ok(button_is_pressed())
     }
 }

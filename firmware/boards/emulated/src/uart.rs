@@ -8,7 +8,7 @@ use core::cell::RefCell;
 use core::convert::Infallible;
 
 use critical_section::Mutex;
-use embedded_io::{ErrorType, Read, ReadReady, Write};
+use embedded_io::{ErrorType, Read, ReadReady, Write, WriteReady};
 use heapless::Deque;
 
 use crate::register::Register;
@@ -182,6 +182,12 @@ impl Read for SerialPort {
                 return Ok(taken);
             }
         }
+    }
+}
+
+impl WriteReady for SerialPort {
+    fn write_ready(&mut self) -> Result<bool, Infallible> {
+        Ok(self.port.with(|queues| !queues.to_send.is_full()))
     }
 }
 

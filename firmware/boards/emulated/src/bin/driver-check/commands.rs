@@ -11,7 +11,7 @@ use strake_board_emulated::pins::{Button, Output};
 use strake_board_emulated::retained::Retained;
 use strake_board_emulated::timer::{MonotonicClock, sleep_until};
 use strake_board_emulated::uart::SerialPort;
-use strake_board_emulated::{Board, restart, stack, watchdog};
+use strake_board_emulated::{Parts, restart, stack, watchdog};
 use strake_firmware::board::{Clock, CountSource, RetainedMemory, Watchdog};
 use strake_firmware::sensor::modbus::{Form, Function, ModbusSource, Place, Waits};
 
@@ -24,7 +24,7 @@ const WAITS: Waits = Waits { answer_ms: 2000, silence_ms: 4 };
 /// Longest command and longest answer.
 type Line = String<96>;
 
-struct Parts {
+struct Bench {
     clock: MonotonicClock,
     level: ModbusSource<SerialPort, MonotonicClock>,
     journal: NorRegion,
@@ -48,12 +48,12 @@ impl From<fmt::Error> for Refused {
     }
 }
 
-pub(crate) fn serve(board: Board) -> ! {
+pub(crate) fn serve(board: Parts) -> ! {
     let mut link = board.link;
     let mut greeting = Line::new();
     // A greeting cut short is still one.
     let _ = write!(greeting, "{:?} {:?}", board.reset_cause, board.last_failure);
-    let mut parts = Parts {
+    let mut bench = Bench {
         clock: board.clock,
         level: ModbusSource::new(board.sensor_bus, board.clock, LEVEL, WAITS),
         journal: board.journal,
@@ -66,12 +66,12 @@ pub(crate) fn serve(board: Board) -> ! {
         running: None,
         greeting,
     };
-    send(&mut link, &["start ", &parts.greeting, "\n"]);
+    send(&mut link, &["start ", &bench.greeting, "\n"]);
     let mut command: Vec<u8, 96> = Vec::new();
     loop {
         let mut byte = [0];
         while link.read_ready() == Ok(false) {
-            sleep_until(parts.clock, parts.clock.now_ms().saturating_add(1000));
+            sleep_until(bench.clock, bench.clock.now_ms().saturating_add(1000));
         }
         if link.read(&mut byte) != Ok(1) {
             continue;
@@ -79,7 +79,7 @@ pub(crate) fn serve(board: Board) -> ! {
         if byte == *b"\n" {
             let line = core::str::from_utf8(&command).unwrap_or("");
             defmt::debug!("command {=str}", line);
-            answer(&mut link, &mut parts, line);
+            answer(&mut link, &mut bench, line);
             command.clear();
         } else {
             // A command too long to keep is answered as unknown.
@@ -89,10 +89,10 @@ pub(crate) fn serve(board: Board) -> ! {
     }
 }
 
-fn answer(link: &mut SerialPort, parts: &mut Parts, line: &str) {
+fn answer(link: &mut SerialPort, bench: &mut Bench, line: &str) {
     let mut text = Line::new();
     let (word, rest) = line.split_once(' ').unwrap_or((line, ""));
-    let (verdict, text) = match run(parts, word, rest, &mut text) {
+    let (verdict, text) = match run(bench, word, rest, &mut text) {
         Ok(()) => ("ok ", text.as_str()),
         Err(Refused(why)) => ("no ", why),
     };
@@ -111,45 +111,45 @@ fn number(text: &str) -> Result<u32, Refused> {
     text.parse().map_err(|_| Refused("number expected"))
 }
 
-fn run(parts: &mut Parts, word: &str, rest: &str, out: &mut Line) -> Result<(), Refused> {
+fn run(bench: &mut Bench, word: &str, rest: &str, out: &mut Line) -> Result<(), Refused> {
     match word {
-        "cause" => out.push_str(&parts.greeting).map_err(|_| Refused("answer too long"))?,
+        "cause" => out.push_str(&bench.greeting).map_err(|_| Refused("answer too long"))?,
         "echo" => out.push_str(rest).map_err(|_| Refused("answer too long"))?,
-        "time" => write!(out, "{}", parts.clock.now_ms())?,
+        "time" => write!(out, "{}", bench.clock.now_ms())?,
         "sleep" => {
-            let before_ms = parts.clock.now_ms();
-            sleep_until(parts.clock, before_ms.saturating_add(u64::from(number(rest)?)));
-            write!(out, "{}", parts.clock.now_ms().saturating_sub(before_ms))?;
+            let before_ms = bench.clock.now_ms();
+            sleep_until(bench.clock, before_ms.saturating_add(u64::from(number(rest)?)));
+            write!(out, "{}", bench.clock.now_ms().saturating_sub(before_ms))?;
         }
         "flash" => {
-            flash_rules::check(&mut parts.journal)?;
-            flash_rules::check(&mut parts.plans)?;
+            flash_rules::check(&mut bench.journal)?;
+            flash_rules::check(&mut bench.plans)?;
         }
-        "store" => store(&mut parts.journal, number(rest)?)?,
-        "keep" => parts.retained.write(5, rest.as_bytes()),
+        "store" => store(&mut bench.journal, number(rest)?)?,
+        "keep" => bench.retained.write(5, rest.as_bytes()),
         "kept" => {
             let mut bytes = [0; 8];
-            parts.retained.read(5, &mut bytes);
+            bench.retained.read(5, &mut bytes);
             write!(out, "{}", core::str::from_utf8(&bytes).unwrap_or("not text"))?;
         }
-        "retained" => check_retained(&mut parts.retained)?,
-        "contact" => set(&mut parts.contact, rest),
-        "lamp" => set(&mut parts.lamp, rest),
-        "button" => write!(out, "{}", parts.button.is_high() == Ok(true))?,
-        "level" => match parts.level.read_count() {
+        "retained" => check_retained(&mut bench.retained)?,
+        "contact" => set(&mut bench.contact, rest),
+        "lamp" => set(&mut bench.lamp, rest),
+        "button" => write!(out, "{}", bench.button.is_low() == Ok(true))?,
+        "level" => match bench.level.read_count() {
             Ok(count) => write!(out, "{count}")?,
             Err(error) => write!(out, "{error}")?,
         },
         "stack" => write!(out, "{} of {}", stack::peak_bytes(), stack::size_bytes())?,
         "watchdog" => {
             let timeout_ms = number(rest)?;
-            let stopped = parts.stopped.take().ok_or(Refused("already started"))?;
-            parts.running = Some(stopped.start(timeout_ms));
+            let stopped = bench.stopped.take().ok_or(Refused("already started"))?;
+            bench.running = Some(stopped.start(timeout_ms));
         }
         "feed" => {
-            let wake_ms = parts.clock.now_ms().saturating_add(u64::from(number(rest)?));
-            sleep_until(parts.clock, wake_ms);
-            parts.running.as_mut().ok_or(Refused("not started"))?.feed();
+            let wake_ms = bench.clock.now_ms().saturating_add(u64::from(number(rest)?));
+            sleep_until(bench.clock, wake_ms);
+            bench.running.as_mut().ok_or(Refused("not started"))?.feed();
         }
         "log" => {
             defmt::info!("count {=u32}, text {=str}", 4711, rest);

@@ -17,8 +17,8 @@ mod provoke;
 #[cfg(target_os = "none")]
 #[cortex_m_rt::entry]
 fn main() -> ! {
-    match strake_board_emulated::Board::take() {
-        Some(board) => commands::serve(board),
+    match strake_board_emulated::Parts::take() {
+        Some(parts) => commands::serve(parts),
         None => strake_board_emulated::restart(),
     }
 }

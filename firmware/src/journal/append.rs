@@ -1,0 +1,221 @@
+//! Appending: samples wait, events are written at once with all that waits.
+
+use super::error::JournalError;
+use super::ring::Ring;
+use super::{Journal, Snapshot, Waiting};
+use embedded_storage::nor_flash::NorFlash;
+use strake_core::journal::block::{Encoded, Place, encode_events, encode_samples};
+use strake_core::journal::samples::{Chain, SAMPLE_BYTES_MAX};
+use strake_core::journal::{Entry, PAGE_BYTES, SECTOR_BYTES, Sample};
+
+/// Pages that hold all that may wait, whatever the samples are: a block of 11 and its frame fill at
+/// most a page, and the page begun may have no room.
+const PAGES_FOR_WAITING: usize = 1 + super::WAITING_MAX.div_ceil(11);
+const _: () = assert!(11 * SAMPLE_BYTES_MAX + 6 <= 254);
+/// Programs tried before an append is given up.
+const TRIES: u8 = 2;
+
+impl<F: NorFlash> Journal<F> {
+    /// Takes a sample, **before** it is evaluated. It waits in RAM until [`flush`](Self::flush), an
+    /// event, or [`WAITING_MAX`](super::WAITING_MAX) samples.
+    ///
+    /// # Errors
+    /// When the flash refuses. The sample waits all the same, unless
+    /// [`lost_samples`](super::Counters::lost_samples) counts it.
+    pub fn push(
+        &mut self,
+        sample: &Sample,
+        now: &mut impl Snapshot,
+    ) -> Result<(), JournalError<F::Error>> {
+        let mut result = Ok(());
+        if self.waiting.is_full() {
+            result = self.flush();
+        }
+        if !self.fits(sample) {
+            result = self.flush().and(result);
+            self.give_up_waiting();
+            if let Err(error) = self.open_sector(now) {
+                self.lose(1);
+                return Err(error);
+            }
+        }
+        if !self.waiting.push(sample) {
+            self.lose(1);
+        }
+        result
+    }
+
+    /// Writes all that waits.
+    ///
+    /// # Errors
+    /// When the flash refuses twice. The samples go on waiting, unless the open sector has no room
+    /// left; then they are given up and counted.
+    pub fn flush(&mut self) -> Result<(), JournalError<F::Error>> {
+        let mut tries = TRIES;
+        while !self.waiting.is_empty() {
+            let mut block = [0; PAGE_BYTES];
+            let Some((place, mut chain)) = self.place() else {
+                self.give_up_waiting();
+                return Err(JournalError::GivenUp);
+            };
+            let samples = self.waiting.iter();
+            let Some(encoded) = encode_samples(place, samples, &mut chain, &mut block) else {
+                self.next_page();
+                continue;
+            };
+            match self.append(place, &block, encoded) {
+                Ok(()) => {
+                    self.waiting.drop_first(encoded.taken);
+                    if let Some(open) = self.open.as_mut().filter(|open| open.offset % 256 != 0) {
+                        open.chain = chain;
+                    }
+                }
+                Err(error) => {
+                    tries -= 1;
+                    if tries == 0 {
+                        return Err(JournalError::Flash(error));
+                    }
+                }
+            }
+        }
+        Ok(())
+    }
+
+    /// Writes an event, behind all that waits.
+    ///
+    /// # Errors
+    /// As [`append_events`](Self::append_events).
+    pub fn append_event(
+        &mut self,
+        entry: &Entry,
+        now: &mut impl Snapshot,
+    ) -> Result<(), JournalError<F::Error>> {
+        self.append_events(core::slice::from_ref(entry), now)
+    }
+
+    /// Writes events, behind all that waits. A sample among them is refused.
+    ///
+    /// # Errors
+    /// When the flash refuses twice. What waited and was not written goes on waiting; of the events
+    /// those up to some point may be written.
+    pub fn append_events(
+        &mut self,
+        mut entries: &[Entry],
+        now: &mut impl Snapshot,
+    ) -> Result<(), JournalError<F::Error>> {
+        if entries.iter().any(|entry| matches!(entry, Entry::Sample(_))) {
+            return Err(JournalError::Unencodable);
+        }
+        self.flush()?;
+        let mut tries = TRIES;
+        while !entries.is_empty() {
+            let Some((place, _)) = self.place() else {
+                self.open_sector(now)?;
+                continue;
+            };
+            let mut block = [0; PAGE_BYTES];
+            let Some(encoded) = encode_events(place, entries, &mut block) else {
+                self.next_page();
+                continue;
+            };
+            match self.append(place, &block, encoded) {
+                Ok(()) => entries = entries.get(encoded.taken..).unwrap_or(&[]),
+                Err(error) => {
+                    tries -= 1;
+                    if tries == 0 {
+                        return Err(JournalError::Flash(error));
+                    }
+                }
+            }
+        }
+        Ok(())
+    }
+
+    /// Programs a block at the end of the open sector. After a refusal the end is the next page.
+    fn append(
+        &mut self,
+        place: Place,
+        block: &[u8; PAGE_BYTES],
+        encoded: Encoded,
+    ) -> Result<(), F::Error> {
+        let result = self.program(place, block, encoded);
+        if result.is_err() {
+            self.counters.flash_errors = self.counters.flash_errors.saturating_add(1);
+            self.next_page();
+            return result;
+        }
+        self.appended = true;
+        let taken = u32::try_from(encoded.taken).unwrap_or(0);
+        self.next_entry = self.next_entry.wrapping_add(taken);
+        if let Some(open) = self.open.as_mut() {
+            open.offset = end_of(place, encoded);
+            if open.offset.is_multiple_of(256) {
+                open.chain = Chain::default();
+            }
+        }
+        Ok(())
+    }
+
+    /// Where the next block goes, and what its samples chain to; `None` when no sector is open or
+    /// the open one is full.
+    fn place(&self) -> Option<(Place, Chain)> {
+        let open = self.open.filter(|open| usize::from(open.offset) < SECTOR_BYTES)?;
+        let (sequence, offset) = (open.sequence, open.offset);
+        Some((Place { sequence, offset, word: Ring::<F>::WORD }, open.chain))
+    }
+
+    /// Goes on at the next page of the open sector.
+    fn next_page(&mut self) {
+        if let Some(open) = self.open.as_mut() {
+            open.offset = page_behind(open.offset);
+            open.chain = Chain::default();
+        }
+    }
+
+    /// Whether all that waits and one more sample have room in the open sector.
+    fn fits(&self, sample: &Sample) -> bool {
+        let Some(open) = self.open else { return false };
+        if usize::from(open.offset) + PAGES_FOR_WAITING * PAGE_BYTES <= SECTOR_BYTES {
+            return true;
+        }
+        let (mut offset, mut chain, mut placed) = (open.offset, open.chain, 0);
+        while placed <= self.waiting.len() {
+            if usize::from(offset) >= SECTOR_BYTES {
+                return false;
+            }
+            let mut block = [0; PAGE_BYTES];
+            let place = Place { sequence: open.sequence, offset, word: Ring::<F>::WORD };
+            let rest = self.waiting.iter().chain([sample]).skip(placed);
+            if let Some(encoded) = encode_samples(place, rest, &mut chain, &mut block) {
+                placed += encoded.taken;
+                offset = end_of(place, encoded);
+            } else {
+                offset = page_behind(offset);
+            }
+            if offset.is_multiple_of(256) {
+                chain = Chain::default();
+            }
+        }
+        true
+    }
+
+    /// Gives up what waits: after refusals the open sector has no room for it, and the next one
+    /// begins with a checkpoint that contains it already.
+    fn give_up_waiting(&mut self) {
+        self.lose(u32::try_from(self.waiting.len()).unwrap_or(u32::MAX));
+        self.waiting = Waiting::default();
+    }
+
+    fn lose(&mut self, samples: u32) {
+        self.counters.lost_samples = self.counters.lost_samples.saturating_add(samples);
+    }
+}
+
+fn end_of(place: Place, encoded: Encoded) -> u16 {
+    place.offset.saturating_add(u16::try_from(encoded.len).unwrap_or(u16::MAX))
+}
+
+/// Beginning of the page behind the one that the next byte at `offset` belongs to.
+fn page_behind(offset: u16) -> u16 {
+    (offset | 255).saturating_add(1)
+}

@@ -1,0 +1,3 @@
+//! Simulated hardware for trials and tests.
+
+pub mod nor;
