@@ -7,8 +7,8 @@
 //! The plugin interface is version 1 of QEMU's `qemu-plugin.h`.
 
 use std::ffi::{CStr, c_char, c_int, c_uint, c_void};
-use std::sync::atomic::{AtomicU64, Ordering::Relaxed};
 use std::sync::OnceLock;
+use std::sync::atomic::{AtomicU64, Ordering::Relaxed};
 
 const CUT: c_int = 77;
 
