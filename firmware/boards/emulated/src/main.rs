@@ -20,8 +20,7 @@ mod device {
     use strake_firmware::sensor::modbus::{Form, Function, ModbusSource, Place, Waits};
 
     /// Where the level stands unless the plan says otherwise.
-    const LEVEL: Place =
-        Place { unit: 1, function: Function::Input, register: 0, form: Form::U16 };
+    const LEVEL: Place = Place { unit: 1, function: Function::Input, register: 0, form: Form::U16 };
     /// Long enough for an answer while the emulator skips sleep.
     const WAITS: Waits = Waits { answer_ms: 2000, silence_ms: 4 };
     /// Many times what the slowest cycle takes, which waits for a silent sensor.
@@ -45,7 +44,11 @@ mod device {
 
     /// Apart from `main`, so that what the start needs of the stack is given back.
     #[inline(never)]
-    fn start(parts: Parts, space: &'static mut Space) -> App<Emulated> {
+    fn start(
+        parts: Parts,
+        space: &'static mut Space,
+        place: &'static mut MaybeUninit<App<Emulated>>,
+    ) -> &'static mut App<Emulated> {
         let Space { memory, server, waiting } = space;
         let hardware = Hardware {
             clock: parts.clock,
@@ -61,7 +64,7 @@ mod device {
             device_id: Text::new("EMULATED").unwrap_or_default(),
             reset_cause: parts.reset_cause,
         };
-        App::start(hardware, Rooms { memory, server, waiting })
+        place.write(App::start(hardware, Rooms { memory, server, waiting }))
     }
 
     #[cortex_m_rt::entry]
@@ -71,7 +74,7 @@ mod device {
         let Some(parts) = Parts::take() else { restart() };
         let clock = parts.clock;
         // Static too, so that its size counts as what it is.
-        let app = APP.write(start(parts, SPACE));
+        let app = start(parts, SPACE, APP);
         loop {
             sleep_until(clock, app.poll());
         }
