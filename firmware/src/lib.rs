@@ -7,3 +7,4 @@
 
 pub mod board;
 pub mod journal;
+pub mod plan_store;

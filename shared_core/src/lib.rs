@@ -7,4 +7,5 @@
 
 pub mod alarm;
 pub mod journal;
+pub mod plan_slot;
 pub mod signal;

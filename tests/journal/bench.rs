@@ -305,7 +305,9 @@ impl<F: Medium> Bench<F> {
         let whole = places.get(whole_from).copied();
         let whole = whole.unwrap_or(if whole_from > 0 { self.log.len() } else { 0 });
         let mut kept = vec![false; self.log.len()];
-        places.into_iter().for_each(|place| kept[place] = true);
+        for place in places {
+            kept[place] = true;
+        }
         let lost = (whole..self.log.len()).find(|&at| self.log[at].durable && !kept[at]);
         if let Some(lost) = lost {
             return Err(format!("lost: {:?}", self.log[lost]));

@@ -134,7 +134,7 @@ fn every_pair_of_cuts_around_sector_changes() {
         turn += 1;
         // Every step of every operation is cut first; every thirteenth such cut is cut again at
         // every step behind it.
-        if turn % 13 == 0 {
+        if turn.is_multiple_of(13) {
             second += fails_again(bench, index)?;
         }
         Ok(())

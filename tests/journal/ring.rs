@@ -1,6 +1,6 @@
 //! The ring on a healthy and on a worn flash: wrap-around, erasing ahead, holds, refusals, RAM.
 
-use crate::bench::{Bench, op};
+use crate::bench::{Bench, Op, Remembered, op};
 use core::mem::size_of;
 use strake::sim::nor::Nor;
 use strake_core::journal::Sample;
@@ -58,15 +58,15 @@ fn a_worn_sector_is_passed_over() {
     let mut bench = Bench::new(Nor::<4>::new(6), 100);
     bench.journal.flash_mut().wear_out(2);
     for index in 0..6_000 {
-        bench.run(op(index)).unwrap_or_else(|error| {
-            assert!(matches!(op(index), crate::bench::Op::Housekeep), "{error:?}")
-        });
+        // Only the idle erase may say so; every append finds another place.
+        if let Err(error) = bench.run(op(index)) {
+            assert!(matches!(op(index), Op::Housekeep), "{error:?}");
+        }
     }
     assert!(bench.journal.newest_sequence().unwrap() > 8);
     assert_eq!(bench.journal.counters().lost_samples, 0);
     let (journal, _) =
-        Journal::open(bench.journal.flash().clone(), &mut crate::bench::Remembered::default())
-            .unwrap();
+        Journal::open(bench.journal.flash().clone(), &mut Remembered::default()).unwrap();
     assert_eq!(journal.newest_sequence(), bench.journal.newest_sequence());
     assert_eq!(journal.next_entry(), bench.journal.next_entry());
 }
@@ -83,7 +83,7 @@ fn a_dead_flash_is_an_error_every_time() {
 
 #[test]
 fn two_sectors_are_too_few() {
-    let outcome = Journal::open(Nor::<4>::new(2), &mut crate::bench::Remembered::default());
+    let outcome = Journal::open(Nor::<4>::new(2), &mut Remembered::default());
     assert_eq!(outcome.unwrap_err(), OpenError::TooSmall { sectors: 2 });
 }
 
