@@ -1,329 +1,273 @@
-//! The plans on flash: five slots, so that the last four stay while a fifth is being written.
+//! The last plans, each in a slot of its own.
 //!
-//! A plan comes in pieces into the slot that can best be spared, is read back and compared with its
-//! fingerprint, and counts only once the commit word behind it stands. So a cut at any moment leaves
-//! the plan before in force. Slots have the format of [`strake_core::plan_slot`].
+//! Four are kept and one slot is free for the next. The plan is programmed as it comes and its
+//! header last; a slot that a cut left without a sound header and a sound plan never wins.
 
 use core::fmt;
-use embedded_storage::nor_flash::{NorFlash, ReadNorFlash};
-use strake_core::plan_slot::{
-    BODY_MAX, BODY_OFFSET, COMMIT, COMMIT_OFFSET, Fingerprint, HEADER_BYTES, SlotHeader,
-};
+use embedded_storage::nor_flash::NorFlash;
+use heapless::Vec;
+use strake_core::journal::SECTOR_BYTES;
+use strake_core::plan::PLAN_BYTES_MAX;
+use strake_core::plan_slot::{Fingerprint, PLAN_OFFSET, SLOT_HEADER_BYTES, SlotHeader};
 
-/// Slots, each one sector of 4,096 bytes.
-pub const SLOTS: u8 = 5;
-const SLOT_BYTES: u32 = 4096;
-/// The plan's first byte in its slot, as an address.
-const BODY: u32 = 256;
-const _: () = assert!(BODY_OFFSET == 256 && COMMIT_OFFSET == 96);
-const COMMIT_AT: u32 = 96;
+/// Slots.
+pub const SLOTS: usize = 5;
+/// Plans that are kept.
+pub const KEPT: usize = SLOTS - 1;
+/// Most bytes of a plan.
+const LENGTH_MAX: u16 = 3840;
+const _: () = assert!(LENGTH_MAX as usize == PLAN_BYTES_MAX);
+/// Bytes programmed at once: the larger of the two words, which serves both.
+const WORD: u32 = 4;
 
-/// Why a plan could not be stored or read.
+/// Why a plan cannot be stored or read.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 #[cfg_attr(feature = "defmt", derive(defmt::Format))]
-pub enum PlanStoreError<E> {
-    /// The region has fewer than [`SLOTS`] sectors.
-    TooSmall,
-    /// A plan has 1 to 3,840 bytes.
-    Length {
-        /// Bytes announced.
-        len: u16,
+pub enum StoreError<E> {
+    /// Longer than a slot holds.
+    TooLong {
+        /// Most bytes.
+        most: u16,
     },
-    /// A piece does not follow the one before, or ends behind the plan.
-    OutOfOrder {
-        /// Offset that is due.
-        due: u16,
-    },
-    /// A piece that is not the last must be a multiple of the flash's word.
-    Unaligned,
-    /// No plan is being written.
-    NotBegun,
-    /// What came, or what the flash kept of it, has another fingerprint.
-    Fingerprint {
-        /// Fingerprint of the bytes on flash.
-        found: u64,
-    },
-    /// The bytes asked for do not lie in a stored plan.
-    OutOfRange,
-    /// The sequence numbers are used up: a slot holds a forged one.
-    SequenceExhausted,
+    /// Bytes came out of order, or without a beginning.
+    OutOfOrder,
+    /// The stored bytes do not have the fingerprint that was announced.
+    Damaged,
+    /// No stored plan has this fingerprint, or it is shorter than asked.
+    Unknown,
     /// The flash refused.
     Flash(E),
 }
 
-impl<E> From<E> for PlanStoreError<E> {
+impl<E> From<E> for StoreError<E> {
     fn from(error: E) -> Self {
         Self::Flash(error)
     }
 }
 
-impl<E> fmt::Display for PlanStoreError<E> {
-    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        match self {
-            Self::TooSmall => write!(f, "plan region has fewer than {SLOTS} sectors"),
-            Self::Length { len } => write!(f, "plan of {len} bytes, at most {BODY_MAX} fit"),
-            Self::OutOfOrder { due } => write!(f, "piece of a plan out of order, {due} is due"),
-            Self::Unaligned => f.write_str("piece of a plan is no multiple of the flash's word"),
-            Self::NotBegun => f.write_str("no plan is being written"),
-            Self::Fingerprint { found } => write!(f, "plan has fingerprint {found:016x}"),
-            Self::OutOfRange => f.write_str("bytes asked for lie outside the stored plan"),
-            Self::SequenceExhausted => f.write_str("sequence numbers of plans are used up"),
-            Self::Flash(_) => f.write_str("flash refused"),
-        }
-    }
-}
-
-impl<E: fmt::Debug> core::error::Error for PlanStoreError<E> {}
-
-/// A committed plan. Whether its bytes are sound is another question; see
-/// [`newest_valid`](PlanStore::newest_valid).
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-#[cfg_attr(feature = "defmt", derive(defmt::Format))]
-pub struct StoredPlan {
-    /// Slot, below [`SLOTS`].
-    pub slot: u8,
-    /// Counts the plans this device took, from 1.
-    pub sequence: u32,
-    /// UTC seconds at which the plan was sealed.
-    pub serial: u64,
-    /// Fingerprint that its bytes must have.
-    pub fingerprint: u64,
-    /// Bytes of the plan.
-    pub len: u16,
-}
-
-/// A plan on its way in.
+/// A plan being written.
 #[derive(Clone, Copy, Debug)]
-struct Incoming {
-    plan: StoredPlan,
-    received: u16,
+struct Writing {
+    slot: usize,
+    header: SlotHeader,
+    /// Bytes that came.
+    received: u32,
+    /// Bytes of an unfinished word.
+    word: [u8; WORD as usize],
 }
 
-/// The plans in a flash region of which every byte belongs to them.
-#[derive(Clone, Debug)]
+/// The slots in a flash region of at least [`SLOTS`] sectors.
 pub struct PlanStore<F> {
     flash: F,
-    incoming: Option<Incoming>,
+    slots: [Option<SlotHeader>; SLOTS],
+    writing: Option<Writing>,
 }
 
-impl<F: ReadNorFlash> PlanStore<F> {
-    /// The store over `flash`. Changes nothing.
-    ///
-    /// # Errors
-    /// When the region is too small.
-    pub fn open(flash: F) -> Result<Self, PlanStoreError<F::Error>> {
-        if flash.capacity() < usize::from(SLOTS) * 4096 {
-            return Err(PlanStoreError::TooSmall);
-        }
-        Ok(Self { flash, incoming: None })
-    }
-
-    /// The committed plan in `slot`.
-    ///
-    /// # Errors
-    /// When the flash cannot be read.
-    pub fn slot(&mut self, slot: u8) -> Result<Option<StoredPlan>, F::Error> {
-        if slot >= SLOTS {
-            return Ok(None);
-        }
-        let mut bytes = [0; HEADER_BYTES + COMMIT.len()];
-        self.flash.read(u32::from(slot) * SLOT_BYTES, &mut bytes)?;
-        Ok(SlotHeader::decode(&bytes).map(|header| StoredPlan {
-            slot,
-            sequence: header.sequence,
-            serial: header.serial,
-            fingerprint: header.fingerprint,
-            len: header.body_len,
-        }))
-    }
-
-    /// The committed plans, newest first.
-    ///
-    /// # Errors
-    /// When the flash cannot be read.
-    pub fn list(&mut self) -> Result<heapless::Vec<StoredPlan, 5>, F::Error> {
-        let mut plans = heapless::Vec::new();
-        for slot in 0..SLOTS {
-            if let Some(plan) = self.slot(slot)? {
-                // As many places as slots.
-                let _ = plans.push(plan);
+impl<F: NorFlash> PlanStore<F> {
+    /// Looks at every slot. What cannot be read holds no plan.
+    pub fn open(mut flash: F) -> Self {
+        let mut slots = [None; SLOTS];
+        for (slot, found) in slots.iter_mut().enumerate() {
+            let mut bytes = [0; SLOT_HEADER_BYTES];
+            if flash.read(base(slot), &mut bytes).is_ok() {
+                *found = SlotHeader::decode(&bytes);
             }
         }
-        plans.sort_unstable_by_key(|plan| core::cmp::Reverse(plan.sequence));
-        Ok(plans)
+        Self { flash, slots, writing: None }
     }
 
-    /// The newest committed plan whose bytes have their fingerprint. Takes one SHA-512 per plan
-    /// looked at.
-    ///
-    /// # Errors
-    /// When the flash cannot be read.
-    pub fn newest_valid(&mut self) -> Result<Option<StoredPlan>, F::Error> {
-        for plan in self.list()? {
-            if self.body_fingerprint(&plan)? == plan.fingerprint {
-                return Ok(Some(plan));
+    /// The newest plan whose bytes have their fingerprint. Newer ones without it are forgotten: their
+    /// slots are free.
+    pub fn newest(&mut self) -> Option<SlotHeader> {
+        loop {
+            let newest = self.newest_where(|_| true)?;
+            let header = self.slots.get(newest).copied().flatten()?;
+            if self.fingerprint_of(newest, header.length).ok() == Some(header.fingerprint) {
+                return Some(header);
             }
+            *self.slots.get_mut(newest)? = None;
         }
-        Ok(None)
     }
 
-    /// Fills `out` from `offset` of a stored plan; both in units of the flash's reads. What lies
-    /// behind the plan's end reads as 0xFF.
+    /// The stored plan with this fingerprint.
+    #[must_use]
+    pub fn find(&self, fingerprint: u64) -> Option<SlotHeader> {
+        self.slots.get(self.slot_of(fingerprint)?).copied().flatten()
+    }
+
+    /// Every stored plan, in the order of the slots.
+    #[must_use]
+    pub fn list(&self) -> Vec<SlotHeader, SLOTS> {
+        self.slots.iter().flatten().copied().collect()
+    }
+
+    /// Fills `out` from `offset` of a stored plan.
     ///
     /// # Errors
-    /// When the bytes do not lie in the slot or the flash cannot be read.
+    /// [`StoreError::Unknown`], [`StoreError::Flash`].
     pub fn read(
         &mut self,
-        plan: &StoredPlan,
-        offset: u16,
+        fingerprint: u64,
+        offset: u32,
         out: &mut [u8],
-    ) -> Result<(), PlanStoreError<F::Error>> {
-        if plan.slot >= SLOTS || usize::from(offset) + out.len() > BODY_MAX {
-            return Err(PlanStoreError::OutOfRange);
+    ) -> Result<(), StoreError<F::Error>> {
+        let slot = self.slot_of(fingerprint).ok_or(StoreError::Unknown)?;
+        let header = self.find(fingerprint).ok_or(StoreError::Unknown)?;
+        let end = u32::try_from(out.len()).ok().and_then(|length| offset.checked_add(length));
+        if end.is_none_or(|end| end > u32::from(header.length)) {
+            return Err(StoreError::Unknown);
         }
-        let address = u32::from(plan.slot) * SLOT_BYTES + BODY + u32::from(offset);
-        Ok(self.flash.read(address, out)?)
+        self.read_slot(slot, offset, out)
     }
 
-    fn body_fingerprint(&mut self, plan: &StoredPlan) -> Result<u64, F::Error> {
+    /// Makes room for a plan; one that was being written is dropped.
+    ///
+    /// # Errors
+    /// [`StoreError::TooLong`], [`StoreError::Flash`].
+    pub fn begin(
+        &mut self,
+        length: u32,
+        serial: u64,
+        fingerprint: u64,
+    ) -> Result<(), StoreError<F::Error>> {
+        self.writing = None;
+        let length = u16::try_from(length)
+            .ok()
+            .filter(|&length| usize::from(length) <= PLAN_BYTES_MAX)
+            .ok_or(StoreError::TooLong { most: LENGTH_MAX })?;
+        let slot = self.free_slot();
+        if let Some(found) = self.slots.get_mut(slot) {
+            *found = None;
+        }
+        self.flash.erase(base(slot), base(slot + 1))?;
+        let newest = self.slots.iter().flatten().map(|header| header.sequence).max();
+        let sequence = newest.map_or(1, |newest| newest.saturating_add(1));
+        let header = SlotHeader { sequence, serial, fingerprint, length };
+        self.writing = Some(Writing { slot, header, received: 0, word: [0xFF; WORD as usize] });
+        Ok(())
+    }
+
+    /// Stores the next bytes.
+    ///
+    /// # Errors
+    /// [`StoreError::OutOfOrder`], [`StoreError::Flash`].
+    pub fn write_chunk(&mut self, offset: u32, bytes: &[u8]) -> Result<(), StoreError<F::Error>> {
+        let mut writing = self.writing.ok_or(StoreError::OutOfOrder)?;
+        let length = u32::try_from(bytes.len()).unwrap_or(u32::MAX);
+        let end = offset.checked_add(length).filter(|&end| end <= writing.header.length.into());
+        if offset != writing.received || end.is_none() {
+            return Err(StoreError::OutOfOrder);
+        }
+        for &byte in bytes {
+            let at = writing.received % WORD;
+            if let Some(slot) = writing.word.get_mut(at as usize) {
+                *slot = byte;
+            }
+            writing.received += 1;
+            if at == WORD - 1 {
+                self.program_word(&mut writing)?;
+            }
+        }
+        self.writing = Some(writing);
+        Ok(())
+    }
+
+    /// Checks the whole plan against its fingerprint and programs the header: from now on it is
+    /// the newest.
+    ///
+    /// # Errors
+    /// [`StoreError::OutOfOrder`] when bytes are missing; [`StoreError::Damaged`];
+    /// [`StoreError::Flash`].
+    pub fn commit(&mut self) -> Result<SlotHeader, StoreError<F::Error>> {
+        let mut writing = self.writing.take().ok_or(StoreError::OutOfOrder)?;
+        let Writing { slot, header, received, .. } = writing;
+        if received != u32::from(header.length) {
+            return Err(StoreError::OutOfOrder);
+        }
+        if !received.is_multiple_of(WORD) {
+            writing.received = received.next_multiple_of(WORD);
+            self.program_word(&mut writing)?;
+        }
+        if self.fingerprint_of(slot, header.length)? != header.fingerprint {
+            return Err(StoreError::Damaged);
+        }
+        self.flash.write(base(slot), &header.encode())?;
+        if let Some(found) = self.slots.get_mut(slot) {
+            *found = Some(header);
+        }
+        Ok(header)
+    }
+
+    /// Programs the word that ends at `received`.
+    fn program_word(&mut self, writing: &mut Writing) -> Result<(), StoreError<F::Error>> {
+        let start = writing.received.saturating_sub(WORD);
+        self.flash.write(base(writing.slot) + PLAN_OFFSET + start, &writing.word)?;
+        writing.word = [0xFF; WORD as usize];
+        Ok(())
+    }
+
+    /// A slot without a plan, else the oldest.
+    fn free_slot(&self) -> usize {
+        let age = |slot: &Option<SlotHeader>| slot.map_or(0, |header| header.sequence);
+        let oldest = self.slots.iter().enumerate().min_by_key(|(_, slot)| age(slot));
+        oldest.map_or(0, |(index, _)| index)
+    }
+
+    fn slot_of(&self, fingerprint: u64) -> Option<usize> {
+        self.newest_where(|header| header.fingerprint == fingerprint)
+    }
+
+    /// The slot of the newest plan of those that `matches` picks.
+    fn newest_where(&self, matches: impl Fn(&SlotHeader) -> bool) -> Option<usize> {
+        let stored = self.slots.iter().enumerate();
+        let picked = stored.filter_map(|(slot, header)| header.filter(&matches).map(|h| (slot, h)));
+        picked.max_by_key(|(_, header)| header.sequence).map(|(slot, _)| slot)
+    }
+
+    fn fingerprint_of(&mut self, slot: usize, length: u16) -> Result<u64, StoreError<F::Error>> {
         let mut fingerprint = Fingerprint::default();
-        let mut address = u32::from(plan.slot) * SLOT_BYTES + BODY;
-        let mut left = usize::from(plan.len);
-        while left > 0 {
-            let mut bytes = [0; 64];
-            self.flash.read(address, &mut bytes)?;
-            let part = bytes.get(..left).unwrap_or(&bytes);
-            fingerprint.update(part);
-            left = left.saturating_sub(part.len());
-            address = address.wrapping_add(64);
+        let mut buffer = [0; 64];
+        let mut offset = 0;
+        while offset < u32::from(length) {
+            let left = u32::from(length) - offset;
+            let piece = buffer.get_mut(..left.min(64) as usize).unwrap_or_default();
+            self.read_slot(slot, offset, piece)?;
+            fingerprint.update(piece);
+            offset += left.min(64);
         }
         Ok(fingerprint.finish())
     }
 
-    /// The flash.
-    #[must_use]
-    pub const fn flash(&self) -> &F {
-        &self.flash
-    }
-
-    /// The flash, for what its traits do not offer.
-    pub const fn flash_mut(&mut self) -> &mut F {
-        &mut self.flash
-    }
-}
-
-impl<F: NorFlash> PlanStore<F> {
-    /// Begins a plan of `len` bytes: erases the slot that can best be spared and writes its header.
-    /// A plan that was on its way is given up.
-    ///
-    /// # Errors
-    /// For a length out of range, or when the flash refuses.
-    pub fn begin(
+    /// Reads from a slot's plan, whatever the flash's read granularity up to a word.
+    fn read_slot(
         &mut self,
-        len: u16,
-        serial: u64,
-        fingerprint: u64,
-    ) -> Result<(), PlanStoreError<F::Error>> {
-        const {
-            assert!(F::ERASE_SIZE == 4096, "a slot is one sector of 4,096 bytes");
-            assert!(F::WRITE_SIZE <= 4 && F::READ_SIZE <= 4, "the format needs words up to 4");
+        slot: usize,
+        offset: u32,
+        out: &mut [u8],
+    ) -> Result<(), StoreError<F::Error>> {
+        let mut at = base(slot) + PLAN_OFFSET + offset;
+        let mut out = out;
+        while !out.is_empty() {
+            let skip = at % WORD;
+            let mut word = [0; WORD as usize];
+            self.flash.read(at - skip, &mut word)?;
+            let bytes = word.get(skip as usize..).unwrap_or_default();
+            let count = bytes.len().min(out.len());
+            let (head, rest) = out.split_at_mut(count);
+            head.copy_from_slice(bytes.get(..count).unwrap_or_default());
+            out = rest;
+            at += WORD - skip;
         }
-        self.incoming = None;
-        if !(1..=BODY_MAX).contains(&len.into()) {
-            return Err(PlanStoreError::Length { len });
-        }
-        let (slot, newest) = self.spare()?;
-        let sequence = newest.checked_add(1).ok_or(PlanStoreError::SequenceExhausted)?;
-        let header = SlotHeader { sequence, serial, fingerprint, body_len: len, signature: None };
-        let from = u32::from(slot) * SLOT_BYTES;
-        self.flash.erase(from, from + SLOT_BYTES)?;
-        self.flash.write(from, &header.encode())?;
-        let plan = StoredPlan { slot, sequence, serial, fingerprint, len };
-        self.incoming = Some(Incoming { plan, received: 0 });
         Ok(())
     }
-
-    /// Writes the next piece. Pieces come in order; all but the last are multiples of the flash's
-    /// word.
-    ///
-    /// # Errors
-    /// When the piece is not the next one or the flash refuses.
-    pub fn write_chunk(
-        &mut self,
-        offset: u16,
-        bytes: &[u8],
-    ) -> Result<(), PlanStoreError<F::Error>> {
-        let incoming = self.incoming.as_mut().ok_or(PlanStoreError::NotBegun)?;
-        let due = incoming.received;
-        let end = usize::from(due) + bytes.len();
-        let end = u16::try_from(end).ok().filter(|&end| end <= incoming.plan.len);
-        let Some(end) = end.filter(|_| offset == due) else {
-            return Err(PlanStoreError::OutOfOrder { due });
-        };
-        if !usize::from(due).is_multiple_of(F::WRITE_SIZE) {
-            return Err(PlanStoreError::Unaligned);
-        }
-        let address = u32::from(incoming.plan.slot) * SLOT_BYTES + BODY + u32::from(due);
-        let (whole, rest) = bytes.split_at(bytes.len() - bytes.len() % F::WRITE_SIZE);
-        if !rest.is_empty() && end != incoming.plan.len {
-            return Err(PlanStoreError::Unaligned);
-        }
-        incoming.received = end;
-        let outcome = write_padded(&mut self.flash, address, whole, rest);
-        if outcome.is_err() {
-            self.incoming = None;
-        }
-        Ok(outcome?)
-    }
-
-    /// Reads the plan back and commits it when its fingerprint is the announced one.
-    ///
-    /// # Errors
-    /// When pieces are missing, the fingerprint differs, or the flash refuses. The plan before stays
-    /// in force.
-    pub fn commit(&mut self) -> Result<StoredPlan, PlanStoreError<F::Error>> {
-        let Incoming { plan, received } = self.incoming.take().ok_or(PlanStoreError::NotBegun)?;
-        if received != plan.len {
-            return Err(PlanStoreError::OutOfOrder { due: received });
-        }
-        let found = self.body_fingerprint(&plan)?;
-        if found != plan.fingerprint {
-            return Err(PlanStoreError::Fingerprint { found });
-        }
-        self.flash.write(u32::from(plan.slot) * SLOT_BYTES + COMMIT_AT, &COMMIT)?;
-        Ok(plan)
-    }
-
-    /// The slot to write next, and the highest sequence number in use: an empty or broken slot, else
-    /// the oldest plan's. Never the newest valid one, even when newer ones are broken.
-    fn spare(&mut self) -> Result<(u8, u32), F::Error> {
-        let plans = self.list()?;
-        let newest = plans.first().map_or(0, |plan| plan.sequence);
-        let free = (0..SLOTS).find(|&slot| plans.iter().all(|plan| plan.slot != slot));
-        if let Some(slot) = free {
-            return Ok((slot, newest));
-        }
-        let mut oldest_first = plans.iter().rev();
-        let oldest = oldest_first.next().map_or(0, |plan| plan.slot);
-        let valid = self.newest_valid()?.map(|plan| plan.slot);
-        let second = oldest_first.next().map_or(0, |plan| plan.slot);
-        Ok((if valid == Some(oldest) { second } else { oldest }, newest))
-    }
 }
 
-/// Writes whole words, then the rest in a word padded with 0xFF.
-fn write_padded<F: NorFlash>(
-    flash: &mut F,
-    address: u32,
-    whole: &[u8],
-    rest: &[u8],
-) -> Result<(), F::Error> {
-    flash.write(address, whole)?;
-    let mut word = [0xFF; 4];
-    let (Some(place), false) = (word.get_mut(..rest.len()), rest.is_empty()) else {
-        return Ok(());
-    };
-    place.copy_from_slice(rest);
-    let behind = u32::try_from(whole.len()).unwrap_or(0);
-    flash.write(address.wrapping_add(behind), word.get(..F::WRITE_SIZE).unwrap_or(&word))
+fn base(slot: usize) -> u32 {
+    u32::try_from(slot * SECTOR_BYTES).unwrap_or(u32::MAX)
+}
+
+impl<F> fmt::Debug for PlanStore<F> {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.debug_struct("PlanStore").field("slots", &self.slots).finish_non_exhaustive()
+    }
 }

@@ -4,7 +4,9 @@
 //! judged at samples only; the machines know ticks, never a clock.
 
 mod ids;
+mod machine;
 mod state;
 
 pub use ids::{FAULT_CAUSES, FaultCause, MACHINES, MachineId, PARTS_MAX, Threshold};
-pub use state::AlarmState;
+pub use machine::{Condition, Machine, Move, Settings};
+pub use state::{AlarmEvent, AlarmState};

@@ -6,6 +6,15 @@
 #![forbid(unsafe_code)]
 
 pub mod alarm;
+mod cursor;
+pub mod evaluate;
 pub mod journal;
+pub mod lane;
+pub mod liquid;
+pub mod part;
+pub mod plan;
 pub mod plan_slot;
+pub mod pressure;
+pub mod shape;
 pub mod signal;
+pub mod wire;

@@ -1,209 +1,152 @@
-//! The format of a plan slot: one sector of flash that holds one sealed plan.
+//! How a plan stands in flash: a slot of one sector, outside the journal's ring.
 //!
-//! | offset | bytes | field | content |
-//! | ---: | ---: | --- | --- |
-//! | 0 | 3 | magic | "SKP" |
-//! | 3 | 1 | version | 1 |
-//! | 4 | 4 | sequence | counts the plans this device took, from 1 |
-//! | 8 | 8 | serial | UTC seconds at which the plan was sealed |
-//! | 16 | 8 | fingerprint | of the plan's bytes, see [`fingerprint`] |
-//! | 24 | 2 | length | bytes of the plan, 1 to 3,840 |
-//! | 26 | 2 | reserved | 0xFF |
-//! | 28 | 64 | signature | of the plan; all 0xFF = none |
-//! | 92 | 4 | check | CRC-32/ISO-HDLC of the 92 bytes before |
-//! | 96 | 4 | commit | all zero, written last of all; a torn one has bits left |
-//! | 100 | 156 | reserved | 0xFF |
-//! | 256 | length | plan | its bytes, then 0xFF |
+//! | offset | bytes | field |
+//! | --- | --- | --- |
+//! | 0 | 3 | magic `SKS` |
+//! | 3 | 1 | version 1 |
+//! | 4 | 4 | sequence u32: counts the plans a device has taken |
+//! | 8 | 8 | serial u64: UTC seconds at sealing |
+//! | 16 | 8 | fingerprint u64 |
+//! | 24 | 2 | length of the plan u16 |
+//! | 26 | 2 | zero |
+//! | 28 | 64 | signature; all 0xFF while unsigned |
+//! | 92 | 4 | CRC-32 (ISO-HDLC) over bytes 0 to 91: the commit, programmed last |
+//! | 256 | up to 3,840 | the plan |
 //!
-//! All integers are little endian. A slot counts only when check and commit are right and the
-//! plan's bytes have the fingerprint.
+//! The plan is programmed first and the header last, so a half-written slot has no header. A header
+//! whose plan does not have its fingerprint is passed over, and the plan before it stays in force.
 
-use crate::journal::check::CRC32;
-use crate::journal::is_blank;
+use crate::cursor::{Sink, Source};
+use crate::plan::PLAN_BYTES_MAX;
+use crc::{CRC_32_ISO_HDLC, Crc};
 use sha2::{Digest, Sha512};
 
-/// Bytes of the header that [`SlotHeader::encode`] gives; the commit follows.
-pub const HEADER_BYTES: usize = 96;
-/// Offset of the commit word.
-pub const COMMIT_OFFSET: usize = HEADER_BYTES;
-/// The commit word.
-pub const COMMIT: [u8; 4] = [0; 4];
-/// Offset of the plan's bytes.
-pub const BODY_OFFSET: usize = 256;
-/// Most bytes of a plan.
-pub const BODY_MAX: usize = 4096 - BODY_OFFSET;
-const CHECKED_BYTES: usize = HEADER_BYTES - 4;
-const START: [u8; 4] = *b"SKP\x01";
+/// Bytes of a header.
+pub const SLOT_HEADER_BYTES: usize = 96;
+/// Where the plan begins in its slot.
+pub const PLAN_OFFSET: u32 = 256;
+const MAGIC: [u8; 3] = *b"SKS";
+const VERSION: u8 = 1;
+const UNSIGNED: [u8; 64] = [0xFF; 64];
+const CHECK: Crc<u32> = Crc::<u32>::new(&CRC_32_ISO_HDLC);
 
-/// What a slot says about its plan.
-#[derive(Clone, Debug, PartialEq, Eq)]
+const _: () = assert!(PLAN_OFFSET as usize + PLAN_BYTES_MAX <= crate::journal::SECTOR_BYTES);
+
+/// A plan in a slot.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub struct SlotHeader {
-    /// Counts the plans this device took, from 1.
+    /// Counts the plans a device has taken; the highest is the newest.
     pub sequence: u32,
-    /// UTC seconds at which the plan was sealed.
+    /// UTC seconds at sealing.
     pub serial: u64,
     /// Fingerprint of the plan's bytes.
     pub fingerprint: u64,
-    /// Bytes of the plan, 1 to [`BODY_MAX`].
-    pub body_len: u16,
-    /// Signature of the plan, when there is one.
-    pub signature: Option<[u8; 64]>,
+    /// Bytes of the plan.
+    pub length: u16,
 }
 
 impl SlotHeader {
-    /// The bytes of the header, without the commit.
+    /// The header's bytes.
     #[must_use]
-    pub fn encode(&self) -> [u8; HEADER_BYTES] {
-        let fields: [&[u8]; 7] = [
-            &START,
-            &self.sequence.to_le_bytes(),
-            &self.serial.to_le_bytes(),
-            &self.fingerprint.to_le_bytes(),
-            &self.body_len.to_le_bytes(),
-            &[0xFF; 2],
-            self.signature.as_ref().unwrap_or(&[0xFF; 64]),
-        ];
-        let mut out = [0xFF; HEADER_BYTES];
-        for (place, &byte) in out.iter_mut().zip(fields.into_iter().flatten()) {
-            *place = byte;
-        }
-        let check = out.first_chunk::<CHECKED_BYTES>().map_or(0, |checked| CRC32.checksum(checked));
-        if let Some(place) = out.last_chunk_mut() {
-            *place = check.to_le_bytes();
-        }
-        out
+    pub fn encode(&self) -> [u8; SLOT_HEADER_BYTES] {
+        let mut bytes = [0; SLOT_HEADER_BYTES];
+        let mut sink = Sink::new(&mut bytes);
+        sink.bytes(&MAGIC);
+        sink.u8(VERSION);
+        sink.u32(self.sequence);
+        sink.u64(self.serial);
+        sink.u64(self.fingerprint);
+        sink.u16(self.length);
+        sink.u16(0);
+        sink.bytes(&UNSIGNED);
+        let (fields, check) = bytes.split_at_mut(SLOT_HEADER_BYTES - 4);
+        check.copy_from_slice(&CHECK.checksum(fields).to_le_bytes());
+        bytes
     }
 
-    /// The header of a committed slot, from its first 100 bytes; `None` when it is not committed,
-    /// or no version of this format can have written it.
+    /// The header in `bytes`; `None` when there is none.
     #[must_use]
-    pub fn decode(bytes: &[u8]) -> Option<Self> {
-        let (header, rest) = bytes.split_first_chunk::<HEADER_BYTES>()?;
-        let (checked, check) = header.split_first_chunk::<CHECKED_BYTES>()?;
-        if CRC32.checksum(checked).to_le_bytes() != check || !rest.starts_with(&COMMIT) {
+    pub fn decode(bytes: &[u8; SLOT_HEADER_BYTES]) -> Option<Self> {
+        let (fields, check) = bytes.split_at_checked(SLOT_HEADER_BYTES - 4)?;
+        if Source(check).u32()? != CHECK.checksum(fields) {
             return None;
         }
-        let (start, rest) = checked.split_first_chunk()?;
-        let (sequence, rest) = rest.split_first_chunk()?;
-        let (serial, rest) = rest.split_first_chunk()?;
-        let (fingerprint, rest) = rest.split_first_chunk()?;
-        let (body_len, rest) = rest.split_first_chunk()?;
-        let signature: &[u8; 64] = rest.last_chunk()?;
-        let body_len = u16::from_le_bytes(*body_len);
-        (*start == START && (1..=BODY_MAX).contains(&body_len.into())).then(|| Self {
-            sequence: u32::from_le_bytes(*sequence),
-            serial: u64::from_le_bytes(*serial),
-            fingerprint: u64::from_le_bytes(*fingerprint),
-            body_len,
-            signature: (!is_blank(signature)).then_some(*signature),
-        })
+        let mut source = Source(fields);
+        let mut start = [0; 4];
+        source.fill(&mut start)?;
+        let [m0, m1, m2, version] = start;
+        if [m0, m1, m2] != MAGIC || version != VERSION {
+            return None;
+        }
+        let header = Self {
+            sequence: source.u32()?,
+            serial: source.u64()?,
+            fingerprint: source.u64()?,
+            length: source.u16()?,
+        };
+        (usize::from(header.length) <= PLAN_BYTES_MAX).then_some(header)
     }
 }
 
-/// Fingerprint of a plan: the first eight bytes of its SHA-512 (FIPS 180-4), little endian.
-#[must_use]
-pub fn fingerprint(plan: &[u8]) -> u64 {
-    let mut fingerprint = Fingerprint::default();
-    fingerprint.update(plan);
-    fingerprint.finish()
-}
-
-/// [`fingerprint`] of bytes that come piece by piece.
+/// The fingerprint of a plan, bytes taken in any pieces: the first eight bytes of SHA-512 (FIPS
+/// 180-4), little endian.
 #[derive(Clone, Debug, Default)]
-pub struct Fingerprint {
-    hash: Sha512,
-}
+pub struct Fingerprint(Sha512);
 
 impl Fingerprint {
     /// Takes the next bytes.
     pub fn update(&mut self, bytes: &[u8]) {
-        self.hash.update(bytes);
+        self.0.update(bytes);
     }
 
-    /// The fingerprint of all that came.
+    /// The fingerprint of all bytes taken.
     #[must_use]
     pub fn finish(self) -> u64 {
-        let digest: [u8; 64] = self.hash.finalize().into();
-        digest.first_chunk().map_or(0, |first| u64::from_le_bytes(*first))
+        let digest = self.0.finalize();
+        digest.iter().take(8).rev().fold(0, |value, &byte| value << 8 | u64::from(byte))
     }
+}
+
+/// The fingerprint of a plan's bytes.
+#[must_use]
+pub fn fingerprint(bytes: &[u8]) -> u64 {
+    let mut fingerprint = Fingerprint::default();
+    fingerprint.update(bytes);
+    fingerprint.finish()
 }
 
 #[cfg(test)]
 mod tests {
-    use super::{Fingerprint, SlotHeader, fingerprint};
-    use proptest::prelude::*;
+    use super::*;
 
-    /// FIPS 180-4 example: SHA-512 of "abc" begins DD AF 35 A1 93 61 7A BA.
     #[test]
-    fn fingerprint_of_the_standards_example() {
-        assert_eq!(fingerprint(b"abc"), u64::from_le_bytes(*b"\xDD\xAF\x35\xA1\x93\x61\x7A\xBA"));
+    fn fingerprint_is_the_start_of_sha_512() {
+        // FIPS 180-4 example, message "abc": ddaf35a193617aba...
+        assert_eq!(
+            fingerprint(b"abc"),
+            u64::from_le_bytes([0xdd, 0xaf, 0x35, 0xa1, 0x93, 0x61, 0x7a, 0xba])
+        );
         let mut pieces = Fingerprint::default();
         pieces.update(b"a");
         pieces.update(b"bc");
         assert_eq!(pieces.finish(), fingerprint(b"abc"));
     }
 
-    fn header() -> SlotHeader {
-        SlotHeader {
-            sequence: 5,
-            serial: 1_754_000_000,
-            fingerprint: 0x0102_0304_0506_0708,
-            body_len: 1234,
-            signature: None,
-        }
-    }
-
-    fn committed(header: &SlotHeader) -> Vec<u8> {
-        [&header.encode()[..], &[0; 4]].concat()
-    }
-
-    /// Written down from the table above; the check by another implementation of CRC-32.
     #[test]
-    fn pinned_bytes() {
-        let mut expected = b"SKP\x01\x05\x00\x00\x00\x80\xEA\x8B\x68\x00\x00\x00\x00".to_vec();
-        expected.extend(b"\x08\x07\x06\x05\x04\x03\x02\x01\xD2\x04\xFF\xFF");
-        expected.extend([0xFF; 64]);
-        expected.extend(b"\xF1\x23\x80\xD2");
-        assert_eq!(header().encode()[..], expected);
-    }
-
-    #[test]
-    fn a_torn_commit_is_no_commit() {
-        let whole = committed(&header());
-        assert_eq!(SlotHeader::decode(&whole), Some(header()));
-        for bit in 0..32 {
-            let mut torn = whole.clone();
-            torn[96 + bit / 8] |= 1 << (bit % 8);
-            assert_eq!(SlotHeader::decode(&torn), None);
+    fn header_bytes_are_pinned_and_any_flipped_bit_is_seen() {
+        let header =
+            SlotHeader { sequence: 7, serial: 0x0102, fingerprint: 0xA1B2_C3D4, length: 300 };
+        let bytes = header.encode();
+        assert_eq!(
+            &bytes[..28],
+            b"SKS\x01\x07\0\0\0\x02\x01\0\0\0\0\0\0\xD4\xC3\xB2\xA1\0\0\0\0\x2C\x01\0\0"
+        );
+        assert_eq!(SlotHeader::decode(&bytes), Some(header));
+        for bit in 0..bytes.len() * 8 {
+            let mut damaged = bytes;
+            damaged[bit / 8] ^= 1 << (bit % 8);
+            assert_eq!(SlotHeader::decode(&damaged), None, "bit {bit}");
         }
-        assert_eq!(SlotHeader::decode(&whole[..99]), None);
-    }
-
-    proptest! {
-        #[test]
-        fn headers_come_back(
-            sequence: u32, serial: u64, fingerprint: u64, body_len in 1_u16..=3840,
-            signature in prop::option::of(prop::array::uniform32(0_u8..255))
-        ) {
-            let signature = signature.map(|half| {
-                let mut whole = [0; 64];
-                whole[..32].copy_from_slice(&half);
-                whole
-            });
-            let header = SlotHeader { sequence, serial, fingerprint, body_len, signature };
-            prop_assert_eq!(SlotHeader::decode(&committed(&header)), Some(header));
-        }
-
-        #[test]
-        fn no_flipped_bit_passes(bit in 0_usize..96 * 8) {
-            let mut bytes = committed(&header());
-            bytes[bit / 8] ^= 1 << (bit % 8);
-            prop_assert_eq!(SlotHeader::decode(&bytes), None);
-        }
-
-        #[test]
-        fn any_bytes_decode(bytes: Vec<u8>) {
-            let _ = SlotHeader::decode(&bytes);
-        }
+        assert_eq!(SlotHeader::decode(&[0xFF; SLOT_HEADER_BYTES]), None);
     }
 }

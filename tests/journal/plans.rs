@@ -1,96 +1,114 @@
 //! The plan slots: four plans stay, and a cut anywhere leaves the plan before in force.
 
 use strake::sim::nor::{Cut, Nor, NorError, Tear};
-use strake_core::plan_slot::fingerprint;
-use strake_firmware::plan_store::{PlanStore, PlanStoreError, StoredPlan};
+use strake_core::plan_slot::{SlotHeader, fingerprint};
+use strake_firmware::plan_store::{PlanStore, StoreError};
 
 fn plan(number: u8, len: usize) -> Vec<u8> {
     (0..=u8::MAX).cycle().map(|at| at.wrapping_mul(31).wrapping_add(number)).take(len).collect()
 }
 
 fn store<const WORD: usize>(
-    store: &mut PlanStore<Nor<WORD>>,
+    flash: &mut Nor<WORD>,
     bytes: &[u8],
     serial: u64,
-) -> Result<StoredPlan, PlanStoreError<NorError>> {
-    store.begin(u16::try_from(bytes.len()).unwrap(), serial, fingerprint(bytes))?;
-    for (index, chunk) in bytes.chunks(192).enumerate() {
-        store.write_chunk(u16::try_from(index * 192).unwrap(), chunk)?;
+) -> Result<SlotHeader, StoreError<NorError>> {
+    let mut plans = PlanStore::open(flash);
+    plans.newest();
+    plans.begin(u32::try_from(bytes.len()).unwrap(), serial, fingerprint(bytes))?;
+    let mut offset = 0;
+    for chunk in bytes.chunks(193) {
+        plans.write_chunk(offset, chunk)?;
+        offset += u32::try_from(chunk.len()).unwrap();
     }
-    store.commit()
+    plans.commit()
 }
 
-fn content<const WORD: usize>(plans: &mut PlanStore<Nor<WORD>>, plan: &StoredPlan) -> Vec<u8> {
-    let mut bytes = vec![0; usize::from(plan.len).next_multiple_of(4)];
-    plans.read(plan, 0, &mut bytes).unwrap();
-    bytes.truncate(plan.len.into());
-    bytes
+/// The plan in force and its bytes.
+fn in_force<const WORD: usize>(flash: &mut Nor<WORD>) -> Option<(SlotHeader, Vec<u8>)> {
+    let mut plans = PlanStore::open(flash);
+    let header = plans.newest()?;
+    let mut bytes = vec![0; header.length.into()];
+    plans.read(header.fingerprint, 0, &mut bytes).unwrap();
+    Some((header, bytes))
+}
+
+fn serials<const WORD: usize>(flash: &mut Nor<WORD>) -> Vec<u64> {
+    let mut serials: Vec<_> =
+        PlanStore::open(flash).list().iter().map(|header| header.serial).collect();
+    serials.sort_unstable();
+    serials
 }
 
 #[test]
 fn the_last_plans_stay() {
-    let mut plans = PlanStore::open(Nor::<4>::new(5)).unwrap();
-    assert_eq!(plans.newest_valid().unwrap(), None);
+    let mut flash = Nor::<4>::new(5);
+    assert_eq!(in_force(&mut flash), None);
     for number in 1..=12_u8 {
         let len = [1, 3, 4, 191, 192, 193, 1000, 3840][usize::from(number % 8)];
         let bytes = plan(number, len);
-        let stored = store(&mut plans, &bytes, u64::from(number)).unwrap();
-        assert_eq!(plans.newest_valid().unwrap(), Some(stored));
-        assert_eq!(content(&mut plans, &stored), bytes);
+        let stored = store(&mut flash, &bytes, number.into()).unwrap();
+        assert_eq!(in_force(&mut flash), Some((stored, bytes)));
     }
-    let serials: Vec<u64> = plans.list().unwrap().iter().map(|plan| plan.serial).collect();
-    assert_eq!(serials, [12, 11, 10, 9, 8]);
-    // While a sixth comes in, the last four stay.
-    plans.begin(100, 13, 0).unwrap();
-    let serials: Vec<u64> = plans.list().unwrap().iter().map(|plan| plan.serial).collect();
-    assert_eq!(serials, [12, 11, 10, 9]);
+    assert_eq!(serials(&mut flash), [8, 9, 10, 11, 12]);
+    // While another one comes in, the last four stay.
+    PlanStore::open(&mut flash).begin(100, 13, 0).unwrap();
+    assert_eq!(serials(&mut flash), [9, 10, 11, 12]);
 }
 
 #[test]
 fn a_wrong_fingerprint_is_refused() {
-    let mut plans = PlanStore::open(Nor::<1>::new(5)).unwrap();
+    let mut flash = Nor::<1>::new(5);
     let bytes = plan(1, 500);
-    let first = store(&mut plans, &bytes, 1).unwrap();
+    let first = store(&mut flash, &bytes, 1).unwrap();
+    let mut plans = PlanStore::open(&mut flash);
     plans.begin(500, 2, fingerprint(&bytes) ^ 1).unwrap();
     plans.write_chunk(0, &bytes).unwrap();
-    let found = fingerprint(&bytes);
-    assert_eq!(plans.commit(), Err(PlanStoreError::Fingerprint { found }));
-    assert_eq!(plans.newest_valid().unwrap(), Some(first));
+    assert_eq!(plans.commit(), Err(StoreError::Damaged));
+    assert_eq!(in_force(&mut flash), Some((first, bytes)));
 }
 
 #[test]
 fn pieces_come_in_order() {
-    let mut plans = PlanStore::open(Nor::<4>::new(5)).unwrap();
-    assert_eq!(plans.begin(0, 1, 1), Err(PlanStoreError::Length { len: 0 }));
-    assert_eq!(plans.begin(3841, 1, 1), Err(PlanStoreError::Length { len: 3841 }));
-    assert_eq!(plans.write_chunk(0, &[0; 4]), Err(PlanStoreError::NotBegun));
-    assert_eq!(plans.commit(), Err(PlanStoreError::NotBegun));
+    let mut flash = Nor::<4>::new(5);
+    let mut plans = PlanStore::open(&mut flash);
+    assert_eq!(plans.begin(3841, 1, 1), Err(StoreError::TooLong { most: 3840 }));
+    assert_eq!(plans.write_chunk(0, &[0; 4]), Err(StoreError::OutOfOrder));
+    assert_eq!(plans.commit(), Err(StoreError::OutOfOrder));
     plans.begin(10, 1, 1).unwrap();
-    assert_eq!(plans.write_chunk(4, &[0; 4]), Err(PlanStoreError::OutOfOrder { due: 0 }));
-    assert_eq!(plans.write_chunk(0, &[0; 6]), Err(PlanStoreError::Unaligned));
+    assert_eq!(plans.write_chunk(4, &[0; 4]), Err(StoreError::OutOfOrder));
     plans.write_chunk(0, &[0; 4]).unwrap();
-    assert_eq!(plans.write_chunk(4, &[0; 7]), Err(PlanStoreError::OutOfOrder { due: 4 }));
-    assert_eq!(plans.commit(), Err(PlanStoreError::OutOfOrder { due: 4 }));
-    assert!(matches!(PlanStore::open(Nor::<4>::new(4)), Err(PlanStoreError::TooSmall)));
+    assert_eq!(plans.write_chunk(4, &[0; 7]), Err(StoreError::OutOfOrder));
+    assert_eq!(plans.commit(), Err(StoreError::OutOfOrder));
 }
 
-/// A plan that rots after it was committed: the one before wins, and keeps its slot.
+/// Plans that rot after they were committed: the one before wins, and keeps its slot.
 #[test]
-fn a_rotten_plan_gives_way() {
-    let mut plans = PlanStore::open(Nor::<4>::new(5)).unwrap();
-    let old = store(&mut plans, &plan(1, 700), 1).unwrap();
+fn rotten_plans_give_way() {
+    let mut flash = Nor::<4>::new(5);
+    let old = plan(1, 700);
+    store(&mut flash, &old, 1).unwrap();
     for number in 2..=5 {
-        let stored = store(&mut plans, &plan(number, 700), number.into()).unwrap();
-        plans.flash_mut().corrupt(u32::from(stored.slot) * 4096 + 300, 1, |byte| byte ^ 0x10);
+        // The last one is the old plan once more: its sound copy must be the one that is read.
+        let bytes = if number == 5 { old.clone() } else { plan(number, 700) };
+        store(&mut flash, &bytes, number.into()).unwrap();
     }
-    assert_eq!(plans.newest_valid().unwrap(), Some(old));
-    let newest = store(&mut plans, &plan(6, 700), 6).unwrap();
-    assert_ne!(newest.slot, old.slot);
-    assert_eq!(plans.newest_valid().unwrap(), Some(newest));
+    for slot in 1..5 {
+        flash.corrupt(slot * 4096 + 300, 1, |byte| byte ^ 0x10);
+    }
+    let (header, bytes) = in_force(&mut flash).unwrap();
+    assert_eq!((header.serial, bytes), (1, old.clone()));
+    let newest = store(&mut flash, &plan(6, 700), 6).unwrap();
+    assert_eq!(in_force(&mut flash), Some((newest, plan(6, 700))));
+    assert_eq!(
+        PlanStore::open(&mut flash).find(fingerprint(&old)).map(|old| old.length),
+        Some(700)
+    );
+    assert!(serials(&mut flash).contains(&1));
 }
 
 fn every_cut<const WORD: usize>() -> u64 {
-    let mut before = PlanStore::open(Nor::<WORD>::new(5)).unwrap();
+    let mut before = Nor::<WORD>::new(5);
     for number in 1..=7 {
         store(&mut before, &plan(number, 400), number.into()).unwrap();
     }
@@ -98,23 +116,19 @@ fn every_cut<const WORD: usize>() -> u64 {
     let mut cuts = 0;
     for tear in [Tear::Before, Tear::During] {
         for steps in 0.. {
-            let mut plans = before.clone();
-            plans.flash_mut().seed(steps);
-            plans.flash_mut().cut_after(Some(Cut { steps, tear, scattered: steps % 2 == 0 }));
-            let outcome = store(&mut plans, &new, 8);
-            if outcome.is_ok() {
+            let mut flash = before.clone();
+            flash.seed(steps);
+            flash.cut_after(Some(Cut { steps, tear, scattered: steps % 2 == 0 }));
+            if store(&mut flash, &new, 8).is_ok() {
                 break;
             }
             cuts += 1;
-            let mut flash = plans.flash().clone();
             flash.power_on();
-            let mut plans = PlanStore::open(flash).unwrap();
-            let in_force = plans.newest_valid().unwrap().unwrap();
-            let bytes = content(&mut plans, &in_force);
-            assert!(in_force.serial == 7 && bytes == old, "{steps} {tear:?}: {in_force:?}");
-            assert!(plans.list().unwrap().len() >= 4);
-            store(&mut plans, &new, 8).unwrap();
-            assert_eq!(plans.newest_valid().unwrap().unwrap().serial, 8);
+            let (header, bytes) = in_force(&mut flash).unwrap();
+            assert!(header.serial == 7 && bytes == old, "{steps} {tear:?}: {header:?}");
+            assert!(serials(&mut flash).ends_with(&[4, 5, 6, 7]), "{steps} {tear:?}");
+            store(&mut flash, &new, 8).unwrap();
+            assert_eq!(in_force(&mut flash).unwrap().0.serial, 8);
         }
     }
     cuts
@@ -136,9 +150,8 @@ fn any_content_opens() {
             value = value.wrapping_mul(1_664_525).wrapping_add(1_013_904_223);
             value.to_le_bytes()[3]
         });
-        let mut plans = PlanStore::open(flash).unwrap();
-        assert_eq!(plans.newest_valid().unwrap(), None);
-        store(&mut plans, &plan(1, 50), 1).unwrap();
-        assert!(plans.newest_valid().unwrap().is_some());
+        assert_eq!(in_force(&mut flash), None);
+        store(&mut flash, &plan(1, 50), 1).unwrap();
+        assert!(in_force(&mut flash).is_some());
     }
 }

@@ -55,11 +55,13 @@ pub enum FaultCause {
     JournalDamaged = 11,
     /// There is no plan, or the stored one is damaged.
     Plan = 12,
+    /// The reading is above what an open tank can hold.
+    AboveShell = 13,
 }
 
 impl FaultCause {
     /// Every cause, in the order of the numbers.
-    pub const ALL: [Self; 13] = [
+    pub const ALL: [Self; 14] = [
         Self::CurrentLow,
         Self::CurrentHigh,
         Self::WireBreak,
@@ -73,6 +75,7 @@ impl FaultCause {
         Self::Journal,
         Self::JournalDamaged,
         Self::Plan,
+        Self::AboveShell,
     ];
 
     /// The number that stands in the journal; below [`FAULT_CAUSES`].
@@ -104,6 +107,7 @@ impl fmt::Display for FaultCause {
             Self::Journal => "journal cannot be written",
             Self::JournalDamaged => "damaged places in the journal",
             Self::Plan => "no valid plan",
+            Self::AboveShell => "reading above the shell of an open tank",
         })
     }
 }

@@ -96,7 +96,7 @@ pub struct Transition {
     pub cause: TransitionCause,
     /// Utilisation bound that was judged (dimensionless); zero for fault machines.
     pub utilisation: f32,
-    /// Running hash of all results up to and with this sample.
+    /// Running hash of all results up to and with this sample or press.
     pub hash: u64,
 }
 

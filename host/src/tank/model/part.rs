@@ -1,0 +1,326 @@
+//! The parts of a tank that carry the liquid.
+
+use super::capacity::Rating;
+use crate::tank::finding::{Located, Span};
+
+/// One part.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Part {
+    /// Ring of a cylindrical shell.
+    Course(Course),
+    /// Flat piece of wall, floor or roof.
+    Panel(Panel),
+    /// Cover over an opening.
+    Hatch(Hatch),
+}
+
+/// The kind of a part.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum PartKind {
+    /// Ring of a cylindrical shell.
+    Course,
+    /// Flat piece of wall, floor or roof.
+    Panel,
+    /// Cover over an opening.
+    Hatch,
+}
+
+impl PartKind {
+    /// The kind as files and outputs write it.
+    #[must_use]
+    pub const fn as_str(self) -> &'static str {
+        match self {
+            Self::Course => "course",
+            Self::Panel => "panel",
+            Self::Hatch => "hatch",
+        }
+    }
+}
+
+impl Part {
+    /// Its kind.
+    #[must_use]
+    pub const fn kind(&self) -> PartKind {
+        match self {
+            Self::Course(_) => PartKind::Course,
+            Self::Panel(_) => PartKind::Panel,
+            Self::Hatch(_) => PartKind::Hatch,
+        }
+    }
+
+    /// Its name.
+    #[must_use]
+    pub fn name(&self) -> &str {
+        &self.located_name().value
+    }
+
+    /// Its name and where it is written.
+    #[must_use]
+    pub const fn located_name(&self) -> &Located<String> {
+        match self {
+            Self::Course(part) => &part.name,
+            Self::Panel(part) => &part.name,
+            Self::Hatch(part) => &part.name,
+        }
+    }
+
+    /// Where the part begins in the file.
+    #[must_use]
+    pub const fn span(&self) -> Span {
+        match self {
+            Self::Course(part) => part.span,
+            Self::Panel(part) => part.span,
+            Self::Hatch(part) => part.span,
+        }
+    }
+
+    /// Heights of what the liquid presses on: of a hatch the surface inside the gasket line.
+    #[must_use]
+    pub const fn heights(&self) -> Heights {
+        match self {
+            Self::Course(part) => part.heights,
+            Self::Panel(part) => part.plane.heights,
+            Self::Hatch(part) => part.sealed.heights,
+        }
+    }
+
+    /// Where the key that places the part stands.
+    #[must_use]
+    pub const fn placed_at(&self) -> Span {
+        match self {
+            Self::Course(part) => part.bottom_m.span,
+            Self::Panel(part) => part.placed_at,
+            Self::Hatch(part) => part.placed_at,
+        }
+    }
+
+    /// What it may carry outwards, one entry at least.
+    #[must_use]
+    pub fn capacity(&self) -> &[Rating] {
+        match self {
+            Self::Course(part) => &part.capacity,
+            Self::Panel(part) => &part.capacity,
+            Self::Hatch(part) => &part.capacity,
+        }
+    }
+
+    /// What it may carry inwards; empty when not stated, then it is not judged inward.
+    #[must_use]
+    pub fn capacity_inward(&self) -> &[Rating] {
+        match self {
+            Self::Course(part) => &part.capacity_inward,
+            Self::Panel(part) => &part.capacity_inward,
+            Self::Hatch(part) => &part.capacity_inward,
+        }
+    }
+}
+
+/// Where a part stands, above the datum. For a level part the three are one.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Heights {
+    /// Lowest point.
+    pub bottom_m: f64,
+    /// Centroid.
+    pub centre_m: f64,
+    /// Highest point.
+    pub top_m: f64,
+}
+
+/// Ring of a cylindrical shell.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Course {
+    /// Its name.
+    pub name: Located<String>,
+    /// Height of its lower edge.
+    pub bottom_m: Located<f64>,
+    /// Height of the ring itself.
+    pub height_m: Located<f64>,
+    /// Lower edge, middle, upper edge.
+    pub heights: Heights,
+    /// Where its tension is taken.
+    pub design_point: DesignPoint,
+    /// What it may carry outwards.
+    pub capacity: Vec<Rating>,
+    /// What it may carry inwards.
+    pub capacity_inward: Vec<Rating>,
+    /// Loss of thickness.
+    pub corrosion_rate_m_s: Option<Located<f64>>,
+    /// Where it begins in the file.
+    pub span: Span,
+}
+
+/// The point of a course at which its tension is taken.
+#[derive(Clone, Debug, PartialEq)]
+pub struct DesignPoint {
+    /// Height above the lower edge: 0, 0.3 or 0.3048.
+    pub above_edge_m: f64,
+    /// The rule that allows a point above the edge.
+    pub rule: Option<Located<String>>,
+}
+
+impl Course {
+    /// Height of the design point above the datum.
+    #[must_use]
+    pub fn design_height_m(&self) -> f64 {
+        self.bottom_m.value + self.design_point.above_edge_m
+    }
+}
+
+/// Outline of a flat surface.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Shape {
+    /// Circle.
+    Circle {
+        /// Diameter.
+        diameter_m: f64,
+    },
+    /// Rectangle with one level pair of edges.
+    Rectangle {
+        /// Level extent.
+        width_m: f64,
+        /// Extent along the slope.
+        length_m: f64,
+    },
+}
+
+impl Shape {
+    /// Area, m².
+    #[must_use]
+    pub fn area_m2(&self) -> f64 {
+        match *self {
+            Self::Circle { diameter_m } => std::f64::consts::FRAC_PI_4 * diameter_m * diameter_m,
+            Self::Rectangle { width_m, length_m } => width_m * length_m,
+        }
+    }
+
+    /// Extent along the slope.
+    #[must_use]
+    pub const fn length_m(&self) -> f64 {
+        match *self {
+            Self::Circle { diameter_m } => diameter_m,
+            Self::Rectangle { length_m, .. } => length_m,
+        }
+    }
+
+    /// Level extent.
+    #[must_use]
+    pub const fn width_m(&self) -> f64 {
+        match *self {
+            Self::Circle { diameter_m } => diameter_m,
+            Self::Rectangle { width_m, .. } => width_m,
+        }
+    }
+
+    /// Whether `inner` lies inside this outline when both share centre and direction.
+    #[must_use]
+    pub fn encloses(&self, inner: &Self) -> bool {
+        match (*self, *inner) {
+            (Self::Circle { diameter_m }, Self::Rectangle { width_m, length_m }) => {
+                width_m.hypot(length_m) <= diameter_m
+            }
+            _ => inner.width_m() <= self.width_m() && inner.length_m() <= self.length_m(),
+        }
+    }
+}
+
+/// A flat surface in its place.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Plane {
+    /// Its outline.
+    pub shape: Shape,
+    /// Angle through the liquid from the level floor, degrees: 0 floor, 90 wall, above 90
+    /// overhang, 180 roof. Either 0 or 180, or from 1 to 179.
+    pub slope_deg: f64,
+    /// Its heights.
+    pub heights: Heights,
+}
+
+impl Plane {
+    /// A surface with its centroid at a height.
+    #[must_use]
+    pub fn centred(shape: Shape, slope_deg: f64, centre_m: f64) -> Self {
+        let half = 0.5 * shape.length_m() * sine(slope_deg);
+        let heights = Heights { bottom_m: centre_m - half, centre_m, top_m: centre_m + half };
+        Self { shape, slope_deg, heights }
+    }
+
+    /// Whether it is level, so that one height describes it.
+    #[must_use]
+    pub fn is_level(&self) -> bool {
+        self.slope_deg <= 0.0 || self.slope_deg >= 180.0
+    }
+}
+
+/// Sine of a slope, exact where people write exact angles.
+pub(in crate::tank) fn sine(slope_deg: f64) -> f64 {
+    if slope_deg <= 0.0 || slope_deg >= 180.0 { 0.0 } else { slope_deg.to_radians().sin() }
+}
+
+/// Flat piece of wall, floor or roof.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Panel {
+    /// Its name.
+    pub name: Located<String>,
+    /// The surface.
+    pub plane: Plane,
+    /// Where its height is written.
+    pub placed_at: Span,
+    /// What it may carry outwards.
+    pub capacity: Vec<Rating>,
+    /// What it may carry inwards.
+    pub capacity_inward: Vec<Rating>,
+    /// Where it begins in the file.
+    pub span: Span,
+}
+
+/// Cover over an opening.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Hatch {
+    /// Its name.
+    pub name: Located<String>,
+    /// The clear opening.
+    pub opening: Plane,
+    /// The surface inside the gasket line, concentric with the opening; the liquid presses on it.
+    pub sealed: Plane,
+    /// Where its height is written.
+    pub placed_at: Span,
+    /// To which side it opens.
+    pub opens: Located<Opens>,
+    /// The bolts that hold it, when stated.
+    pub bolts: Option<Located<Bolts>>,
+    /// What it may carry outwards.
+    pub capacity: Vec<Rating>,
+    /// What it may carry inwards.
+    pub capacity_inward: Vec<Rating>,
+    /// Where it begins in the file.
+    pub span: Span,
+}
+
+/// To which side a cover opens.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Opens {
+    /// Away from the liquid: an outward load pulls at what secures it.
+    Outward,
+    /// Into the liquid: an outward load presses it on its seat.
+    Inward,
+}
+
+/// Bolts on a circle, concentric with the cover.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Bolts {
+    /// Number of bolts, 3 at least.
+    pub count: u32,
+    /// Diameter of the circle through their axes.
+    pub circle_diameter_m: f64,
+    /// Where the first one stands.
+    pub first: FirstBolt,
+}
+
+/// Where the first bolt of a circle stands.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum FirstBolt {
+    /// At the lowest point.
+    Lowest,
+    /// Half a pitch beside the lowest point.
+    Astride,
+}

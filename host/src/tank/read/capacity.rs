@@ -1,0 +1,360 @@
+//! `capacity` and `capacity_inward`: which capacities a part may have, and what each says.
+
+use super::field::{Range, field};
+use super::section::{Section, shorten};
+use crate::tank::finding::{Code, Located, Span};
+use crate::tank::model::{Basis, BasisKind, Capacity, Opens, PartKind, Rating};
+use crate::units::Quantity::{Density, Force, Length, LineLoad, Pressure};
+
+/// Every capacity that a file may name, also those for a later version.
+const KINDS: [&str; 11] = [
+    "plate",
+    "hoop_tension",
+    "designed_for",
+    "bolt",
+    "force",
+    "pressure",
+    "none",
+    "latch",
+    "hinge",
+    "moment",
+    "cover",
+];
+
+/// The part that carries, as far as it decides which capacities mean something.
+#[derive(Clone, Copy)]
+pub(super) struct Bearer {
+    pub(super) kind: PartKind,
+    /// To which side a hatch opens, when that could be read.
+    pub(super) opens: Option<Opens>,
+    /// Whether `secured` stands.
+    pub(super) bolted: bool,
+}
+
+impl Bearer {
+    /// A part without a cover.
+    pub(super) const fn plain(kind: PartKind) -> Self {
+        Self { kind, opens: None, bolted: false }
+    }
+}
+
+/// The outward and the inward list; `None` when either could not be read.
+pub(super) fn both(
+    section: &mut Section<'_>,
+    bearer: Bearer,
+) -> Option<(Vec<Rating>, Vec<Rating>)> {
+    let outward = list(section, "capacity", bearer);
+    if outward.as_ref().is_some_and(Vec::is_empty) {
+        let message = format!("{} has no capacity, it would never be judged", section.place);
+        let example = match bearer.kind {
+            PartKind::Course => "hoop_tension = \"419 kN/m\"",
+            PartKind::Panel | PartKind::Hatch => "force = \"20 kN\"",
+        };
+        let hint = format!(
+            "write capacity = [ {{ {example}, basis = \"drawing\" }} ], or say why there is none: \
+             capacity = [ {{ none = \"rated by others\" }} ]"
+        );
+        section.report(Code::MissingCapacity, section.span, message, hint);
+        return None;
+    }
+    let inward = list(section, "capacity_inward", bearer);
+    Some((outward?, inward?))
+}
+
+/// Empty when the key is absent or its list is.
+fn list(section: &mut Section<'_>, key: &'static str, bearer: Bearer) -> Option<Vec<Rating>> {
+    const WRITE: &str = "[ { force = \"20 kN\", basis = \"drawing\" } ]";
+    if section.item(key).is_none() {
+        return Some(Vec::new());
+    }
+    let (items, _) = section.items(key, WRITE)?;
+    let entries = section.tables(key, WRITE);
+    let inward = key == "capacity_inward";
+    let read: Vec<Rating> =
+        entries.into_iter().filter_map(|entry| rating(entry, bearer, inward)).collect();
+    (read.len() == items.len()).then_some(read)
+}
+
+fn rating(mut entry: Section<'_>, bearer: Bearer, inward: bool) -> Option<Rating> {
+    const WRITE: &str = "write one kind of capacity in each entry";
+    let kind = entry.at_most_one(&KINDS, WRITE);
+    if kind.is_none() {
+        let message = format!("{} names no capacity", entry.place);
+        let hint =
+            format!("a {} may have {}", bearer.kind.as_str(), offered(bearer, inward).join(", "));
+        entry.report(Code::MissingKey, entry.span, message, hint);
+    }
+    let basis = entry.text("basis", WRITE_BASIS);
+    let basis_stated = entry.item("basis").is_some();
+    let material_stated = entry.item("material").is_some();
+    let material = material(&mut entry);
+    entry.refuse("valid", "a capacity with a date or a wall temperature is not offered");
+    let remaining_stated = entry.item("remaining").is_some();
+    let remaining = entry.take_ratio(
+        "remaining",
+        Range::SHARE,
+        "0.9, thickness now as a share of that when new",
+    );
+    let span = kind.and_then(|kind| entry.key_span(kind)).unwrap_or(entry.span);
+    let allowed = kind.is_some_and(|kind| may_have(&entry, kind, span, bearer, inward));
+    let capacity =
+        if allowed { kind.and_then(|kind| capacity(&mut entry, kind, remaining)) } else { None };
+    if let (Some(kind), true) = (kind, remaining_stated && kind != Some("designed_for")) {
+        let span = entry.key_span("remaining").unwrap_or(span);
+        let message = format!("`remaining` means nothing beside `{kind}`");
+        entry.report(Code::ConflictingKeys, span, message, "it goes with designed_for only");
+    }
+    let checked = check_basis(&entry, kind, basis, basis_stated);
+    entry.finish();
+    if (material_stated && material.is_none()) || (remaining_stated && remaining.is_none()) {
+        return None;
+    }
+    Some(Rating { capacity: Located::new(capacity?, span), basis: checked?, material })
+}
+
+const WRITE_BASIS: &str =
+    "\"surveyed 2026-05\", or beginning with drawing, code default or assumed";
+
+/// The outer option is whether it could be read.
+#[expect(clippy::option_option, reason = "no basis and an unreadable basis differ")]
+fn check_basis(
+    entry: &Section<'_>,
+    kind: Option<&str>,
+    basis: Option<Located<String>>,
+    stated: bool,
+) -> Option<Option<Located<Basis>>> {
+    let Some(basis) = basis else {
+        if !stated && kind != Some("none") {
+            let message = format!("`basis` is missing in {}", entry.place);
+            entry.report(Code::Basis, entry.span, message, format!("write basis = {WRITE_BASIS}"));
+        }
+        return (!stated && kind == Some("none")).then_some(None);
+    };
+    let lower = basis.value.to_lowercase();
+    let begins = |word: &str| {
+        lower.strip_prefix(word).is_some_and(|rest| !rest.starts_with(char::is_alphanumeric))
+    };
+    if let Some(&(_, kind)) = BasisKind::WORDS.iter().find(|(word, _)| begins(word)) {
+        return Some(Some(basis.map(|text| Basis { kind, text })));
+    }
+    let message = format!(
+        "`basis` begins with none of surveyed, drawing, code default and assumed: `{}`",
+        shorten(&basis.value)
+    );
+    entry.report(Code::Basis, basis.span, message, format!("write basis = {WRITE_BASIS}"));
+    None
+}
+
+/// The capacities that mean something for this part and this side.
+fn offered(bearer: Bearer, inward: bool) -> &'static [&'static str] {
+    match (bearer.kind, inward) {
+        (PartKind::Course, false) => &["plate", "hoop_tension", "designed_for", "pressure", "none"],
+        (PartKind::Course, true) => &["pressure", "none"],
+        (PartKind::Panel, false) => &["force", "pressure", "designed_for", "none"],
+        (PartKind::Panel, true) => &["force", "pressure", "none"],
+        (PartKind::Hatch, false) => &["bolt", "force", "pressure", "designed_for", "none"],
+        (PartKind::Hatch, true) => &["bolt", "force", "pressure", "none"],
+    }
+}
+
+/// Reports and returns false when the part cannot have this capacity.
+fn may_have(entry: &Section<'_>, key: &str, span: Span, bearer: Bearer, inward: bool) -> bool {
+    let part = bearer.kind.as_str();
+    let offered = offered(bearer, inward);
+    let hint = format!("a {part} may have {} here", offered.join(", "));
+    let later = match bearer.kind {
+        PartKind::Course => false,
+        PartKind::Panel => key == "plate" && !inward,
+        PartKind::Hatch => ["latch", "hinge", "moment", "cover"].contains(&key),
+    };
+    if later {
+        let message = format!("capacity `{key}` of a {part} is not offered by this version");
+        entry.report(Code::NotOffered, span, message, hint);
+        return false;
+    }
+    if !offered.contains(&key) {
+        let side = if inward { "inward" } else { "outward" };
+        let message = format!("capacity `{key}` means nothing for the {side} load of a {part}");
+        entry.report(Code::CapacityKind, span, message, hint);
+        return false;
+    }
+    key != "bolt" || bolts_carry(entry, span, bearer, inward)
+}
+
+/// Bolts carry only the load that pulls the cover off its seat.
+fn bolts_carry(entry: &Section<'_>, span: Span, bearer: Bearer, inward: bool) -> bool {
+    if !bearer.bolted {
+        let message = "capacity `bolt` needs the bolts of the cover";
+        let hint = "write secured = { bolts = 28, bolt_circle_diameter = \"0.77 m\" } in the hatch";
+        entry.report(Code::MissingKey, span, message, hint);
+        return false;
+    }
+    let on_seat = match bearer.opens {
+        Some(Opens::Outward) => inward,
+        Some(Opens::Inward) => !inward,
+        None => false,
+    };
+    if on_seat {
+        let (load, side) = if inward { ("inward", "outward") } else { ("outward", "inward") };
+        let message = format!("an {load} load presses a cover that opens {side} on its seat");
+        let hint = "its bolts carry nothing of it: rate the cover by force or pressure";
+        entry.report(Code::CapacityKind, span, message, hint);
+    }
+    !on_seat
+}
+
+fn capacity(
+    entry: &mut Section<'_>,
+    kind: &'static str,
+    remaining: Option<Located<f64>>,
+) -> Option<Capacity> {
+    let mut single = |quantity, write| {
+        entry.need(field(kind, quantity, Range::POSITIVE, write)).map(|value| value.value)
+    };
+    match kind {
+        "hoop_tension" => single(LineLoad, "\"419 kN/m\"").map(|n_m| Capacity::HoopTension { n_m }),
+        "bolt" => single(Force, "\"18 kN\", on one bolt").map(|n| Capacity::Bolt { n }),
+        "force" => single(Force, "\"20 kN\", on the whole part").map(|n| Capacity::Force { n }),
+        "pressure" => single(Pressure, "\"60 kPa\"").map(|pa| Capacity::Pressure { pa }),
+        "plate" => plate(entry),
+        "designed_for" => designed_for(entry, remaining),
+        _ => {
+            let reason = entry.need_text("none", "\"rated by others\", why there is none")?;
+            Some(Capacity::None { reason: reason.value })
+        }
+    }
+}
+
+fn plate(entry: &mut Section<'_>) -> Option<Capacity> {
+    let mut plate = entry.table("plate", "{ thickness = \"4.6 mm\", .. }")?;
+    let thickness = plate.need(field(
+        "thickness",
+        Length,
+        Range::above(0.0, 0.2),
+        "\"4.6 mm\", as measured or drawn",
+    ));
+    let allowance = plate.need(field(
+        "corrosion_allowance",
+        Length,
+        Range::NOT_NEGATIVE,
+        "\"1 mm\", kept for corrosion; \"0 mm\" when none is",
+    ));
+    let stress = plate.need(field(
+        "allowable_stress",
+        Pressure,
+        Range::POSITIVE,
+        "\"137 MPa\", of the plate, by the design code",
+    ));
+    let joint = plate.need_ratio(
+        "joint_efficiency",
+        Range::SHARE,
+        "0.85, by the design code and the radiographs",
+    );
+    if plate.item("edges").is_some() {
+        let span = plate.key_span("edges").unwrap_or(plate.span);
+        let message = "`edges` means nothing for the plate of a course";
+        plate.report(Code::UnknownKey, span, message, "remove it: a course is a closed ring");
+    }
+    plate.finish();
+    let (thickness_m, corrosion_allowance_m) = (thickness?, allowance?);
+    if corrosion_allowance_m.value >= thickness_m.value {
+        let message = "`corrosion_allowance` takes the whole thickness, nothing is left to carry";
+        let hint = "give the thickness as measured, and the allowance that is kept of it";
+        entry.report(Code::NoStrength, corrosion_allowance_m.span, message, hint);
+        return None;
+    }
+    Some(Capacity::Plate {
+        thickness_m,
+        corrosion_allowance_m,
+        allowable_stress_pa: stress?,
+        joint_efficiency: joint?,
+    })
+}
+
+fn designed_for(entry: &mut Section<'_>, remaining: Option<Located<f64>>) -> Option<Capacity> {
+    const WRITE: &str = "{ level = \"9.0 m\", density = \"1000 kg/m3\", gas = \"0 kPa\" }";
+    let mut state = entry.table("designed_for", WRITE)?;
+    let level = state.need(field(
+        "level",
+        Length,
+        Range::ANY,
+        "\"9.0 m\", the level of the design, above the datum",
+    ));
+    let density = state.need(field("density", Density, Range::POSITIVE, "\"1000 kg/m3\""));
+    let gas = state.need(field(
+        "gas",
+        Pressure,
+        Range::above(-101_325.0, 1e7),
+        "\"0 kPa\", the gas pressure of the design, gauge",
+    ));
+    state.finish();
+    Some(Capacity::DesignedFor {
+        level_m: level?,
+        density_kg_m3: density?,
+        gas_pa: gas?,
+        remaining,
+    })
+}
+
+/// The metal or concrete that a capacity is for. Plastics are refused by name.
+fn material(entry: &mut Section<'_>) -> Option<Located<String>> {
+    const SOUND: [&str; 10] = [
+        "steel",
+        "stainless",
+        "iron",
+        "aluminium",
+        "aluminum",
+        "copper",
+        "brass",
+        "bronze",
+        "titanium",
+        "concrete",
+    ];
+    const PLASTICS: [&str; 22] = [
+        "plastic",
+        "plastics",
+        "polyethylene",
+        "polythene",
+        "polypropylene",
+        "pe",
+        "pe80",
+        "pe100",
+        "hdpe",
+        "pp",
+        "pvc",
+        "cpvc",
+        "pvdf",
+        "grp",
+        "frp",
+        "fibreglass",
+        "fiberglass",
+        "nylon",
+        "polyester",
+        "epoxy",
+        "acrylic",
+        "polycarbonate",
+    ];
+    let text = entry.text("material", "\"steel\"")?;
+    let lower = text.value.to_lowercase();
+    let has = |list: &[&str]| {
+        lower.split(|c: char| !c.is_alphanumeric()).any(|word| list.contains(&word))
+    };
+    if has(&PLASTICS) {
+        let message = format!(
+            "`{}`: the strength of plastics falls with time and temperature, rules for steel do \
+             not hold",
+            shorten(&text.value)
+        );
+        let hint = "not offered by this version: it would have to ask for a date and for the \
+                    temperature of the wall";
+        entry.report(Code::Plastics, text.span, message, hint);
+        return None;
+    }
+    if has(&SOUND) {
+        return Some(text);
+    }
+    let message = format!("material `{}` is not known", shorten(&text.value));
+    let hint = "name a metal, as in material = \"steel\", or concrete; or leave it out";
+    entry.report(Code::BadChoice, text.span, message, hint);
+    None
+}

@@ -1,0 +1,75 @@
+//! The one step that the device, the replay and every what-if take.
+//!
+//! ```text
+//! channels -> resolve (per sample) -> states and loads (in lanes) -> machines (per sample)
+//! ```
+//!
+//! The middle stage is plain arithmetic over lanes and the same for one sample or sixty-four; the
+//! outer two go sample by sample. Inputs are the integers, the tick, the plan and the events before
+//! it in the order of the journal; nothing else.
+
+mod digest;
+mod output;
+mod state;
+mod step;
+
+pub use digest::Digest;
+pub use output::{Output, Rhythm};
+pub use state::{CHECKPOINT_BYTES_MAX, State};
+pub use step::{Judged, Moved, judge, step};
+
+use crate::lane::Lane;
+use crate::liquid::{Readings, States, states};
+use crate::part::{PartLoads, evaluate as evaluate_part};
+use crate::plan::Plan;
+use crate::signal::Resolved;
+use core::array;
+
+/// The three pressure states of `N` readings.
+#[must_use]
+pub fn pressures<const N: usize>(plan: &Plan, resolved: &[Resolved; N]) -> States<N> {
+    let lane = |pick: fn(&Resolved) -> f32| {
+        let mut values = resolved.iter().map(pick);
+        Lane(array::from_fn(|_| values.next().unwrap_or(0.0)))
+    };
+    let readings = Readings {
+        estimate: lane(|r| r.estimate),
+        low: lane(|r| r.low),
+        high: lane(|r| r.high),
+        density: [
+            lane(|r| r.density.estimate_kg_m3),
+            lane(|r| r.density.low_kg_m3),
+            lane(|r| r.density.high_kg_m3),
+        ],
+    };
+    states(plan, &readings)
+}
+
+/// Heights of the surface that a reading allows, m above the datum: lowest, estimated, highest. At or
+/// below the diaphragm of a head sensor the lowest is the diaphragm's own height: what lies below is
+/// not seen.
+#[must_use]
+pub fn levels_m(plan: &Plan, resolved: &Resolved) -> [f32; 3] {
+    let states = pressures(plan, &[*resolved]);
+    let top = |pressure: &crate::pressure::Pressure<1>| {
+        pressure.surfaces().first().map_or(0.0, |surface| surface.height_m.lane(0))
+    };
+    [top(&states.lower), states.level_m.lane(0), top(&states.upper)]
+}
+
+/// Loads of every part under `N` readings, handed to `part` in the plan's order, and the digest of
+/// all their bits per lane.
+pub fn loads<const N: usize>(
+    plan: &Plan,
+    resolved: &[Resolved; N],
+    mut part: impl FnMut(usize, &PartLoads<N>),
+) -> Digest<N> {
+    let states = pressures(plan, resolved);
+    let mut digest = Digest::new();
+    for (index, one) in plan.parts.iter().enumerate() {
+        let loads = evaluate_part(plan, one, &states);
+        digest.add(one, &loads);
+        part(index, &loads);
+    }
+    digest
+}

@@ -1,0 +1,164 @@
+//! Everything that one step hands to the next, and its bytes in a checkpoint.
+//!
+//! | checkpoint field, version 1 | bytes |
+//! | --- | --- |
+//! | version u8 = 1 | 1 |
+//! | running hash u64, samples u32 | 12 |
+//! | flags u8: 1 level count, 2 temperature count, 4 level ok, 8 product known | 1 |
+//! | last level count i32 and tick u64; last temperature count i32; start tick u64; product u8; always present, zero where the flag is off | 25 |
+//! | number of machines u8, each: number u8, state u8 (bit 7: pending), since u32, entered u32 | 1 + 10 n |
+//!
+//! Only machines that are not normal stand in the list.
+
+use super::digest::{Digest, fold};
+use crate::alarm::{AlarmState, MACHINES, Machine, MachineId, Move};
+use crate::cursor::{Sink, Source};
+use crate::signal::Sight;
+
+/// Most bytes of a checkpoint.
+pub const CHECKPOINT_BYTES_MAX: usize = 40 + 10 * MACHINES;
+const VERSION: u8 = 1;
+const PENDING: u8 = 0x80;
+
+/// State of [`super::step`].
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct State {
+    /// What is remembered of the sensors.
+    pub sight: Sight,
+    machines: [Machine; MACHINES],
+    /// Running hash of all results.
+    pub hash: u64,
+    /// Samples evaluated since the journal began.
+    pub samples: u32,
+}
+
+impl Default for State {
+    fn default() -> Self {
+        Self {
+            sight: Sight::default(),
+            machines: [Machine::default(); MACHINES],
+            hash: 0,
+            samples: 0,
+        }
+    }
+}
+
+impl State {
+    /// All machines, by number.
+    #[must_use]
+    pub const fn machines(&self) -> &[Machine; MACHINES] {
+        &self.machines
+    }
+
+    /// One machine.
+    #[must_use]
+    pub fn machine(&self, id: MachineId) -> Machine {
+        self.machines.get(usize::from(id.number())).copied().unwrap_or_default()
+    }
+
+    pub(super) fn machine_mut(&mut self, id: MachineId) -> Option<&mut Machine> {
+        self.machines.get_mut(usize::from(id.number()))
+    }
+
+    /// A new start of the controller at `tick_ms` of its own count: nothing is read yet, delays
+    /// start anew, every alarm stays as it stands.
+    pub fn restart(&mut self, tick_ms: u64) {
+        self.sight = Sight { started_ms: tick_ms, product: self.sight.product, ..Sight::default() };
+        for machine in &mut self.machines {
+            machine.restart(tick_ms);
+        }
+    }
+
+    /// Another plan took over: machines belong to the old plan's parts and start anew; faults stay.
+    pub fn change_plan(&mut self, tick_ms: u64) {
+        self.restart(tick_ms);
+        self.sight.product = None;
+        for (number, machine) in (0_u8..).zip(&mut self.machines) {
+            if MachineId::from_number(number).is_some_and(|id| id.part().is_some()) {
+                *machine = Machine::default();
+            }
+        }
+    }
+
+    pub(super) fn fold_sample<const N: usize>(&mut self, digest: &Digest<N>, lane: usize) {
+        self.hash = fold(self.hash, digest.lane(lane));
+        self.samples = self.samples.wrapping_add(1);
+    }
+
+    pub(super) fn fold_move(&mut self, id: MachineId, moved: Move) {
+        let bits = u64::from(id.number()) << 16
+            | u64::from(moved.from.number()) << 8
+            | u64::from(moved.to.number());
+        self.hash = fold(self.hash, bits);
+    }
+
+    /// Writes the checkpoint; gives its length, or `None` when `out` is too small
+    /// ([`CHECKPOINT_BYTES_MAX`] is always enough).
+    #[must_use]
+    pub fn encode(&self, out: &mut [u8]) -> Option<usize> {
+        let mut sink = Sink::new(out);
+        let sight = &self.sight;
+        sink.u8(VERSION);
+        sink.u64(self.hash);
+        sink.u32(self.samples);
+        let flags = [
+            sight.last_level.is_some(),
+            sight.last_temperature.is_some(),
+            sight.level_ok,
+            sight.product.is_some(),
+        ];
+        sink.u8(flags.iter().rev().fold(0, |mask, &flag| mask << 1 | u8::from(flag)));
+        let (count_16, read_ms) = sight.last_level.unwrap_or_default();
+        sink.i32(count_16);
+        sink.u64(read_ms);
+        sink.i32(sight.last_temperature.unwrap_or_default());
+        sink.u64(sight.started_ms);
+        sink.u8(sight.product.unwrap_or_default());
+        let listed = || (0_u8..).zip(&self.machines).filter(|(_, machine)| !machine.is_normal());
+        sink.u8(u8::try_from(listed().count()).unwrap_or(u8::MAX));
+        for (number, machine) in listed() {
+            sink.u8(number);
+            sink.u8(machine.state.number() | if machine.pending { PENDING } else { 0 });
+            sink.u32(machine.since_ms);
+            sink.u32(machine.entered_ms);
+        }
+        sink.finish()
+    }
+
+    /// Reads a checkpoint; `None` when the bytes are none or of another version.
+    #[must_use]
+    pub fn decode(bytes: &[u8]) -> Option<Self> {
+        let mut source = Source(bytes);
+        if source.u8()? != VERSION {
+            return None;
+        }
+        let mut state = Self { hash: source.u64()?, samples: source.u32()?, ..Self::default() };
+        let flags = source.u8()?;
+        if flags > 0b1111 {
+            return None;
+        }
+        let level = (source.i32()?, source.u64()?);
+        let temperature = source.i32()?;
+        let started_ms = source.u64()?;
+        let product = source.u8()?;
+        state.sight = Sight {
+            last_level: (flags & 1 != 0).then_some(level),
+            last_temperature: (flags & 2 != 0).then_some(temperature),
+            level_ok: flags & 4 != 0,
+            product: (flags & 8 != 0).then_some(product),
+            started_ms,
+        };
+        for _ in 0..source.u8()? {
+            let id = MachineId::from_number(source.u8()?)?;
+            let byte = source.u8()?;
+            let machine = Machine {
+                state: AlarmState::from_number(byte & !PENDING)?,
+                pending: byte & PENDING != 0,
+                since_ms: source.u32()?,
+                entered_ms: source.u32()?,
+            };
+            *state.machine_mut(id)? = machine;
+        }
+        source.0.is_empty().then_some(state)
+    }
+}

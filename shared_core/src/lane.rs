@@ -1,0 +1,193 @@
+//! Arithmetic over a fixed number of samples at once.
+//!
+//! The device evaluates one sample (`Lane<1>`), the replay 64. Each lane goes through the same
+//! operations in the same order, so the bits of a lane do not depend on the number of lanes. Only
+//! `+ - * /`, comparisons and the correctly rounded square root stand here: these give the same bits
+//! on every IEEE 754 machine.
+#![expect(
+    clippy::inline_always,
+    reason = "a call per operation would cost more than the operation"
+)]
+
+use core::array;
+use core::ops::{Add, Div, Mul, Neg, Sub};
+
+/// `N` numbers that go through the same arithmetic.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Lane<const N: usize>(pub [f32; N]);
+
+impl<const N: usize> Lane<N> {
+    /// Zero in every lane.
+    pub const ZERO: Self = Self([0.0; N]);
+
+    /// The same number in every lane.
+    #[must_use]
+    #[inline(always)]
+    pub const fn splat(value: f32) -> Self {
+        Self([value; N])
+    }
+
+    #[must_use]
+    #[inline(always)]
+    fn map(self, f: impl Fn(f32) -> f32) -> Self {
+        Self(self.0.map(f))
+    }
+
+    #[must_use]
+    #[inline(always)]
+    fn zip(self, other: Self, f: impl Fn(f32, f32) -> f32) -> Self {
+        let mut pairs = self.0.into_iter().zip(other.0);
+        Self(array::from_fn(|_| pairs.next().map_or(0.0, |(a, b)| f(a, b))))
+    }
+
+    /// The larger of the two; `self` where both are equal or one is not a number.
+    #[must_use]
+    #[inline(always)]
+    pub fn at_least(self, floor: Self) -> Self {
+        self.zip(floor, at_least)
+    }
+
+    /// The smaller of the two; `self` where both are equal or one is not a number.
+    #[must_use]
+    #[inline(always)]
+    pub fn at_most(self, ceiling: Self) -> Self {
+        self.zip(ceiling, at_most)
+    }
+
+    /// `self` where positive, else zero: the ramp of the one formula.
+    #[must_use]
+    #[inline(always)]
+    pub fn ramp(self) -> Self {
+        self.map(ramp)
+    }
+
+    /// The absolute value.
+    #[must_use]
+    #[inline(always)]
+    pub fn magnitude(self) -> Self {
+        self.map(|x| if x < 0.0 { -x } else { x })
+    }
+
+    /// The correctly rounded square root.
+    #[must_use]
+    #[inline(always)]
+    pub fn root(self) -> Self {
+        self.map(libm::sqrtf)
+    }
+
+    /// `then` where `self` is positive, else `otherwise`.
+    #[must_use]
+    #[inline(always)]
+    pub fn positive_selects(self, then: Self, otherwise: Self) -> Self {
+        let mut pairs = then.0.into_iter().zip(otherwise.0).zip(self.0);
+        Self(array::from_fn(|_| {
+            pairs.next().map_or(0.0, |((yes, no), switch)| if switch > 0.0 { yes } else { no })
+        }))
+    }
+
+    /// Whether every lane is greater than zero.
+    #[must_use]
+    #[inline(always)]
+    pub fn all_positive(self) -> bool {
+        self.0.iter().all(|&x| x > 0.0)
+    }
+
+    /// Whether no lane is greater than zero.
+    #[must_use]
+    #[inline(always)]
+    pub fn none_positive(self) -> bool {
+        !self.0.iter().any(|&x| x > 0.0)
+    }
+
+    /// The number in one lane; zero beyond the last.
+    #[must_use]
+    #[inline(always)]
+    pub fn lane(&self, index: usize) -> f32 {
+        self.0.get(index).copied().unwrap_or(0.0)
+    }
+}
+
+/// The larger; `value` where both are equal or one is not a number.
+#[must_use]
+#[inline(always)]
+pub fn at_least(value: f32, floor: f32) -> f32 {
+    if floor > value { floor } else { value }
+}
+
+/// The smaller; `value` where both are equal or one is not a number.
+#[must_use]
+#[inline(always)]
+pub fn at_most(value: f32, ceiling: f32) -> f32 {
+    if ceiling < value { ceiling } else { value }
+}
+
+/// `value` where positive, else zero.
+#[must_use]
+#[inline(always)]
+pub fn ramp(value: f32) -> f32 {
+    if value > 0.0 { value } else { 0.0 }
+}
+
+impl<const N: usize> Add for Lane<N> {
+    type Output = Self;
+    #[inline(always)]
+    fn add(self, other: Self) -> Self {
+        self.zip(other, |a, b| a + b)
+    }
+}
+
+impl<const N: usize> Sub for Lane<N> {
+    type Output = Self;
+    #[inline(always)]
+    fn sub(self, other: Self) -> Self {
+        self.zip(other, |a, b| a - b)
+    }
+}
+
+impl<const N: usize> Mul for Lane<N> {
+    type Output = Self;
+    #[inline(always)]
+    fn mul(self, other: Self) -> Self {
+        self.zip(other, |a, b| a * b)
+    }
+}
+
+impl<const N: usize> Div for Lane<N> {
+    type Output = Self;
+    #[inline(always)]
+    fn div(self, other: Self) -> Self {
+        self.zip(other, |a, b| a / b)
+    }
+}
+
+impl<const N: usize> Neg for Lane<N> {
+    type Output = Self;
+    #[inline(always)]
+    fn neg(self) -> Self {
+        self.map(|x| -x)
+    }
+}
+
+impl<const N: usize> Mul<f32> for Lane<N> {
+    type Output = Self;
+    #[inline(always)]
+    fn mul(self, factor: f32) -> Self {
+        self.map(|x| x * factor)
+    }
+}
+
+impl<const N: usize> Add<f32> for Lane<N> {
+    type Output = Self;
+    #[inline(always)]
+    fn add(self, other: f32) -> Self {
+        self.map(|x| x + other)
+    }
+}
+
+impl<const N: usize> Sub<f32> for Lane<N> {
+    type Output = Self;
+    #[inline(always)]
+    fn sub(self, other: f32) -> Self {
+        self.map(|x| x - other)
+    }
+}

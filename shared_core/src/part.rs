@@ -1,0 +1,133 @@
+//! Parts: what is judged, and against what.
+//!
+//! Each part has a geometry, and for each direction the capacities that the engineer states. The
+//! loads of a part are elementary loads (one weighting each) or the largest of several.
+
+mod bolts;
+mod evaluate;
+
+pub use bolts::{BoltPattern, Bolts};
+pub use evaluate::{Loads, PartLoads, evaluate};
+
+use crate::shape::Shape;
+use heapless::Vec;
+
+/// Design states a part can be compared with.
+pub const DESIGN_STATES_MAX: usize = 2;
+/// Largest utilisation reported; a load without any design pressure against it shows as this.
+pub const UTILISATION_MAX: f32 = 999.0;
+/// Design pressures below this, Pa, count as this (about 1 mm of water): at the very surface of the
+/// design liquid the ratio of two pressures near zero means nothing.
+pub const DESIGN_PRESSURE_FLOOR_PA: f32 = 10.0;
+
+/// What a part is.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Geometry {
+    /// A ring of shell plates: hoop tension at its design point.
+    Course {
+        /// Half the diameter, m.
+        half_diameter_m: f32,
+        /// Height of the design point above the datum, m.
+        design_point_m: f32,
+        /// Height of the course itself, m.
+        height_m: f32,
+    },
+    /// A plane part: panel or hatch cover, to the line to which the liquid presses.
+    Plane {
+        /// Shape on its slope.
+        shape: Shape,
+        /// Sine of the slope, zero for a level part.
+        sine: f32,
+        /// Height of the centroid above the lowest point, m.
+        centroid_above_m: f32,
+        /// Equal bolts that hold it, if any.
+        bolts: Option<Bolts>,
+    },
+}
+
+impl Geometry {
+    /// A plane part on a slope with the sine `sine` (zero: level, the shape must be
+    /// [`Shape::Level`]).
+    #[must_use]
+    pub const fn plane(shape: Shape, sine: f32, bolts: Option<Bolts>) -> Self {
+        let centroid_above_m = 0.5 * shape.rise_m();
+        Self::Plane { shape, sine, centroid_above_m, bolts }
+    }
+}
+
+/// Capacities in one direction, each absent where the engineer states none.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+pub struct Capacities {
+    /// Largest pressure on the part, Pa.
+    pub pressure_pa: Option<f32>,
+    /// Hoop tension of a course, N/m.
+    pub hoop_tension_n_m: Option<f32>,
+    /// Force on a plane part, N.
+    pub force_n: Option<f32>,
+    /// Largest bolt share, N.
+    pub bolt_n: Option<f32>,
+}
+
+impl Capacities {
+    /// Whether nothing is stated.
+    #[must_use]
+    pub const fn is_empty(&self) -> bool {
+        self.pressure_pa.is_none()
+            && self.hoop_tension_n_m.is_none()
+            && self.force_n.is_none()
+            && self.bolt_n.is_none()
+    }
+}
+
+/// A state that the part was designed for: one liquid to one level, and gas.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct DesignState {
+    /// Surface height, m above the datum.
+    pub level_m: f32,
+    /// Specific weight times the remaining share of strength, N/m³.
+    pub weight_n_m3: f32,
+    /// Gas pressure times the remaining share of strength, Pa.
+    pub gas_pa: f32,
+}
+
+impl DesignState {
+    /// Pressure the part is good for at a height, Pa, not below [`DESIGN_PRESSURE_FLOOR_PA`].
+    #[must_use]
+    pub fn pressure_pa(&self, z_m: f32) -> f32 {
+        let p = self.gas_pa + self.weight_n_m3 * crate::lane::ramp(self.level_m - z_m);
+        crate::lane::at_least(p, DESIGN_PRESSURE_FLOOR_PA)
+    }
+}
+
+/// One part of the plan.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Part {
+    /// What it is.
+    pub geometry: Geometry,
+    /// Height of its lowest point above the datum, m.
+    pub bottom_m: f32,
+    /// Height of its highest point above the datum, m.
+    pub top_m: f32,
+    /// Against load from the liquid outwards.
+    pub outward: Capacities,
+    /// Against load from outside inwards.
+    pub inward: Capacities,
+    /// States it was designed for; the pressure at every height must stay within each.
+    pub designed_for: Vec<DesignState, DESIGN_STATES_MAX>,
+    /// Bit `i` set: the plan's outside liquid `i` stands against it.
+    pub outside: u8,
+}
+
+impl Part {
+    /// Whether any outward capacity is stated.
+    #[must_use]
+    pub fn judged_outward(&self) -> bool {
+        !self.outward.is_empty() || !self.designed_for.is_empty()
+    }
+
+    /// Whether an inward capacity is stated.
+    #[must_use]
+    pub const fn judged_inward(&self) -> bool {
+        !self.inward.is_empty()
+    }
+}

@@ -1,0 +1,236 @@
+//! One part under the three pressure states: its loads and its utilisation.
+
+use super::{Capacities, DESIGN_PRESSURE_FLOOR_PA, DesignState, Geometry, Part, UTILISATION_MAX};
+use crate::lane::Lane;
+use crate::liquid::States;
+use crate::plan::Plan;
+use crate::pressure::Pressure;
+
+/// Loads of a part under one state. What a part does not have stays zero.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Loads<const N: usize> {
+    /// At the design point of a course, else the largest on the part (the least under the inward
+    /// bound), Pa gauge.
+    pub pressure_pa: Lane<N>,
+    /// Hoop tension of a course, N/m.
+    pub hoop_tension_n_m: Lane<N>,
+    /// Force on a plane part, N, positive from the liquid outwards.
+    pub force_n: Lane<N>,
+    /// Moment about the level line through the centroid, N m; of the estimate only.
+    pub moment_centroid_n_m: Lane<N>,
+    /// Largest bolt share (the least under the inward bound), N.
+    pub bolt_n: Lane<N>,
+}
+
+/// What is computed of a part.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct PartLoads<const N: usize> {
+    /// Under the estimated state.
+    pub estimate: Loads<N>,
+    /// Largest signed loads over all states that the reading allows.
+    pub outward: Loads<N>,
+    /// Least signed loads over all states that the reading allows.
+    pub inward: Loads<N>,
+    /// Outward utilisation of the estimate.
+    pub utilisation: Lane<N>,
+    /// Outward utilisation of the bound.
+    pub utilisation_bound: Lane<N>,
+    /// Inward utilisation of the bound; zero without an inward capacity.
+    pub utilisation_inward: Lane<N>,
+}
+
+impl<const N: usize> Loads<N> {
+    const NONE: Self = Self {
+        pressure_pa: Lane::ZERO,
+        hoop_tension_n_m: Lane::ZERO,
+        force_n: Lane::ZERO,
+        moment_centroid_n_m: Lane::ZERO,
+        bolt_n: Lane::ZERO,
+    };
+}
+
+/// All loads and utilisations of one part.
+///
+/// Error of each load against the exact integral: 2e-6 of `integral |p| |w| dz`.
+#[must_use]
+pub fn evaluate<const N: usize>(plan: &Plan, part: &Part, states: &States<N>) -> PartLoads<N> {
+    if part.outside == 0 {
+        return judge(part, &states.estimate, &states.upper, &states.lower);
+    }
+    let mut with = *states;
+    for (bit, outside) in plan.outside.iter().enumerate() {
+        if part.outside & (1 << bit) == 0 {
+            continue;
+        }
+        let g = plan.gravity_m_s2;
+        let relief_m = Lane::splat(outside.lowest_m);
+        let band = outside.density;
+        // Relief counts at the proven lowest level only, load from outside at the highest.
+        with.estimate.add(relief_m, Lane::splat(-(band.estimate_kg_m3 * g)));
+        with.upper.add(relief_m, Lane::splat(-(band.low_kg_m3 * g)));
+        with.lower.add(Lane::splat(outside.highest_m), Lane::splat(-(band.high_kg_m3 * g)));
+    }
+    judge(part, &with.estimate, &with.upper, &with.lower)
+}
+
+fn judge<const N: usize>(
+    part: &Part,
+    estimate: &Pressure<N>,
+    upper: &Pressure<N>,
+    lower: &Pressure<N>,
+) -> PartLoads<N> {
+    let [estimate_loads, outward, inward] = match &part.geometry {
+        Geometry::Course { .. } => [estimate, upper, lower].map(|state| course(part, state)),
+        Geometry::Plane { .. } => plane(part, estimate, upper, lower),
+    };
+    let utilisation = outward_utilisation(part, estimate, &estimate_loads);
+    let utilisation_bound = outward_utilisation(part, upper, &outward);
+    let utilisation_inward =
+        if part.judged_inward() { inward_utilisation(part, lower, &inward) } else { Lane::ZERO };
+    PartLoads {
+        estimate: estimate_loads,
+        outward,
+        inward,
+        utilisation,
+        utilisation_bound,
+        utilisation_inward,
+    }
+}
+
+/// Hoop tension `p D / 2` at the design point (thin cylinder; Timoshenko, Strength of Materials).
+fn course<const N: usize>(part: &Part, state: &Pressure<N>) -> Loads<N> {
+    let Geometry::Course { half_diameter_m, design_point_m, .. } = part.geometry else {
+        return Loads::NONE;
+    };
+    let pressure_pa = state.at(Lane::splat(design_point_m));
+    Loads { pressure_pa, hoop_tension_n_m: pressure_pa * half_diameter_m, ..Loads::NONE }
+}
+
+fn plane<const N: usize>(
+    part: &Part,
+    estimate: &Pressure<N>,
+    upper: &Pressure<N>,
+    lower: &Pressure<N>,
+) -> [Loads<N>; 3] {
+    let Geometry::Plane { shape, bolts, .. } = &part.geometry else {
+        return [Loads::NONE; 3];
+    };
+    let [middle, most, least] =
+        [estimate, upper, lower].map(|state| state.on(shape, part.bottom_m));
+    let mut estimate_loads = Loads {
+        pressure_pa: largest_pressure(part, estimate),
+        force_n: middle.force_n,
+        moment_centroid_n_m: middle.moment_n_m,
+        ..Loads::NONE
+    };
+    let mut outward =
+        Loads { pressure_pa: largest_pressure(part, upper), force_n: most.force_n, ..Loads::NONE };
+    let mut inward =
+        Loads { pressure_pa: least_pressure(part, lower), force_n: least.force_n, ..Loads::NONE };
+    if let Some(bolts) = bolts {
+        estimate_loads.bolt_n = bolts.largest(&middle);
+        [outward.bolt_n, inward.bolt_n] =
+            bolts.bounds(shape, part.bottom_m, (upper, &most), (lower, &least));
+    }
+    [estimate_loads, outward, inward]
+}
+
+/// Heights at which a pressure difference can be extreme on a part: its ends and every surface
+/// between them. Without liquid outside the pressure falls with height, and the ends are enough.
+fn extremes<const N: usize>(
+    part: &Part,
+    state: &Pressure<N>,
+    at_end: f32,
+    pick: impl Fn(Lane<N>, Lane<N>) -> Lane<N>,
+) -> Lane<N> {
+    let mut found = state.at(Lane::splat(at_end));
+    if part.outside != 0 {
+        let (bottom, top) = (Lane::splat(part.bottom_m), Lane::splat(part.top_m));
+        found = pick(pick(found, state.at(bottom)), state.at(top));
+        for surface in state.surfaces() {
+            found = pick(found, state.at(surface.height_m.at_least(bottom).at_most(top)));
+        }
+    }
+    found
+}
+
+fn largest_pressure<const N: usize>(part: &Part, state: &Pressure<N>) -> Lane<N> {
+    extremes(part, state, part.bottom_m, Lane::at_least)
+}
+
+fn least_pressure<const N: usize>(part: &Part, state: &Pressure<N>) -> Lane<N> {
+    extremes(part, state, part.top_m, Lane::at_most)
+}
+
+/// Largest ratio of a load to its capacity; zero where the loads act inwards.
+fn outward_utilisation<const N: usize>(
+    part: &Part,
+    state: &Pressure<N>,
+    loads: &Loads<N>,
+) -> Lane<N> {
+    let pressure_pa = match part.geometry {
+        Geometry::Plane { .. } => loads.pressure_pa,
+        // The stated pressure of a course holds for all of it, not for its design point alone.
+        Geometry::Course { .. } if part.outward.pressure_pa.is_some() => {
+            largest_pressure(part, state)
+        }
+        Geometry::Course { .. } => Lane::ZERO,
+    };
+    let mut utilisation = ratio(&part.outward, pressure_pa, loads, 1.0);
+    for design in &part.designed_for {
+        utilisation = utilisation.at_least(design_ratio(part, state, design));
+    }
+    utilisation.at_most(Lane::splat(UTILISATION_MAX))
+}
+
+fn inward_utilisation<const N: usize>(
+    part: &Part,
+    state: &Pressure<N>,
+    loads: &Loads<N>,
+) -> Lane<N> {
+    let pressure_pa = least_pressure(part, state);
+    ratio(&part.inward, pressure_pa, loads, -1.0).at_most(Lane::splat(UTILISATION_MAX))
+}
+
+/// `max over the stated capacities of sign * load / capacity`, not below zero.
+fn ratio<const N: usize>(
+    capacities: &Capacities,
+    pressure_pa: Lane<N>,
+    loads: &Loads<N>,
+    sign: f32,
+) -> Lane<N> {
+    let pairs = [
+        (capacities.pressure_pa, pressure_pa),
+        (capacities.hoop_tension_n_m, loads.hoop_tension_n_m),
+        (capacities.force_n, loads.force_n),
+        (capacities.bolt_n, loads.bolt_n),
+    ];
+    let mut largest = Lane::ZERO;
+    for (capacity, load) in pairs {
+        if let Some(capacity) = capacity {
+            largest = largest.at_least(load * sign / Lane::splat(capacity));
+        }
+    }
+    largest
+}
+
+/// Largest ratio of the pressure to the design pressure over the heights of the part. Both are
+/// straight between their kinks, so the ratio is extreme at a kink of either or at an end.
+fn design_ratio<const N: usize>(part: &Part, state: &Pressure<N>, design: &DesignState) -> Lane<N> {
+    let (bottom, top) = (Lane::splat(part.bottom_m), Lane::splat(part.top_m));
+    let at = |z_m: Lane<N>| {
+        let designed =
+            (Lane::splat(design.level_m) - z_m).ramp() * design.weight_n_m3 + design.gas_pa;
+        state.at(z_m) / designed.at_least(Lane::splat(DESIGN_PRESSURE_FLOOR_PA))
+    };
+    let mut largest = at(bottom).at_least(at(top));
+    largest = largest.at_least(at(Lane::splat(design.level_m).at_least(bottom).at_most(top)));
+    // Where the floor of the design pressure sets in.
+    let floor_m = design.level_m
+        - crate::lane::ramp(DESIGN_PRESSURE_FLOOR_PA - design.gas_pa) / design.weight_n_m3;
+    largest = largest.at_least(at(Lane::splat(floor_m).at_least(bottom).at_most(top)));
+    for surface in state.surfaces() {
+        largest = largest.at_least(at(surface.height_m.at_least(bottom).at_most(top)));
+    }
+    largest.ramp()
+}

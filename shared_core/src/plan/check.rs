@@ -1,0 +1,296 @@
+//! What makes a plan a plan: every number in its range, every reference met.
+
+use super::{AlarmPlan, LevelPlan, LevelSensor, LoggingPlan, Plan, Reference, ThresholdPlan};
+use crate::liquid::Band;
+use crate::part::{Capacities, Geometry, Part};
+use core::fmt;
+
+/// Why bytes are no plan. The numbers travel over the link and never change.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[cfg_attr(feature = "defmt", derive(defmt::Format))]
+#[repr(u8)]
+pub enum PlanError {
+    /// The first bytes are not a plan's.
+    NotAPlan = 1,
+    /// A format this version does not know.
+    Format = 2,
+    /// The bytes end early, or a field holds a value no version writes.
+    Damaged = 3,
+    /// More than fits.
+    TooLarge = 4,
+    /// A name is missing, too long, or there is not one per part.
+    Names = 5,
+    /// A number of the site is out of range.
+    Site = 6,
+    /// A density, its band or a layer is out of range.
+    Liquid = 7,
+    /// Gas pressures are out of range or order.
+    Gas = 8,
+    /// Liquid outside is out of range.
+    Outside = 9,
+    /// The level sensor's numbers are out of range.
+    Level = 10,
+    /// An alarm setting is out of range.
+    Alarm = 11,
+    /// A logging setting is out of range.
+    Logging = 12,
+    /// There is no part.
+    NoPart = 13,
+    /// A part's geometry is out of range.
+    Geometry = 14,
+    /// A part's capacity is out of range, or does not belong to its kind.
+    Capacity = 15,
+}
+
+impl PlanError {
+    /// The number that travels over the link.
+    #[must_use]
+    pub const fn number(self) -> u8 {
+        self as u8
+    }
+}
+
+impl fmt::Display for PlanError {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(match self {
+            Self::NotAPlan => "these bytes are no plan",
+            Self::Format => "the plan has a format this version does not know",
+            Self::Damaged => "the plan is damaged",
+            Self::TooLarge => "the plan is larger than 3840 bytes",
+            Self::Names => "the plan's names are missing or longer than 24 bytes",
+            Self::Site => "a height, rate or gravity of the plan is out of range",
+            Self::Liquid => "a density or layer of the plan is out of range",
+            Self::Gas => "the plan's gas pressures are out of range or order",
+            Self::Outside => "the plan's liquid outside is out of range",
+            Self::Level => "the plan's level sensor is out of range",
+            Self::Alarm => "an alarm setting of the plan is out of range",
+            Self::Logging => "a logging setting of the plan is out of range",
+            Self::NoPart => "the plan has no part",
+            Self::Geometry => "a part's geometry is out of range",
+            Self::Capacity => "a part's capacity is out of range or not of its kind",
+        })
+    }
+}
+
+impl core::error::Error for PlanError {}
+
+/// Largest height, length or level, m.
+const LENGTH_M_MAX: f32 = 200.0;
+/// Largest pressure, Pa.
+const PRESSURE_PA_MAX: f32 = 1.0e7;
+/// Longest delay, ms (24 days: half the range of a 32-bit tick).
+const DELAY_MS_MAX: u32 = 24 * 86_400_000;
+
+fn within(value: f32, low: f32, high: f32) -> bool {
+    low <= value && value <= high
+}
+
+fn length(value: f32) -> bool {
+    within(value, -LENGTH_M_MAX, LENGTH_M_MAX)
+}
+
+fn pressure(value: f32) -> bool {
+    within(value, -PRESSURE_PA_MAX, PRESSURE_PA_MAX)
+}
+
+fn band(band: &Band) -> bool {
+    within(band.low_kg_m3, 1.0, 25_000.0)
+        && within(band.estimate_kg_m3, band.low_kg_m3, band.high_kg_m3)
+        && within(band.high_kg_m3, band.low_kg_m3, 25_000.0)
+}
+
+fn require(holds: bool, error: PlanError) -> Result<(), PlanError> {
+    if holds { Ok(()) } else { Err(error) }
+}
+
+impl Plan {
+    /// Checks every number against its range. A comparison with a number that is not one fails.
+    ///
+    /// # Errors
+    /// The first rule broken.
+    pub fn check(&self) -> Result<(), PlanError> {
+        self.check_site()?;
+        self.check_liquid()?;
+        let gas = &self.gas;
+        require(
+            pressure(gas.lowest_pa)
+                && within(gas.nominal_pa, gas.lowest_pa, gas.highest_pa)
+                && pressure(gas.highest_pa),
+            PlanError::Gas,
+        )?;
+        for outside in &self.outside {
+            require(
+                length(outside.highest_m)
+                    && length(outside.lowest_m)
+                    && outside.lowest_m <= outside.highest_m
+                    && band(&outside.density),
+                PlanError::Outside,
+            )?;
+        }
+        check_level(&self.level)?;
+        check_alarm(&self.alarm)?;
+        check_logging(self.logging)?;
+        require(!self.parts.is_empty(), PlanError::NoPart)?;
+        for part in &self.parts {
+            self.check_part(part)?;
+        }
+        Ok(())
+    }
+
+    fn check_site(&self) -> Result<(), PlanError> {
+        require(
+            within(self.gravity_m_s2, 9.7, 9.9)
+                && length(self.shell_top_m)
+                && length(self.floor_m)
+                && self.floor_m < self.shell_top_m
+                && within(self.overflow_m, self.floor_m, LENGTH_M_MAX)
+                && (self.closed || self.overflow_m <= self.shell_top_m)
+                && within(self.highest_rise_m_s, 0.0, 1.0)
+                && within(self.highest_fall_m_s, 0.0, 1.0),
+            PlanError::Site,
+        )
+    }
+
+    fn check_liquid(&self) -> Result<(), PlanError> {
+        let liquid = &self.liquid;
+        let mut sound = band(&liquid.top)
+            && within(liquid.table_uncertainty, 0.0, 0.5)
+            && liquid.products.iter().all(band)
+            && liquid
+                .table
+                .points()
+                .iter()
+                .all(|&(t, rho)| within(t, -273.15, 1000.0) && within(rho, 1.0, 25_000.0));
+        if let Some(sensor) = &liquid.temperature {
+            sound &= !liquid.table.points().is_empty()
+                && within(sensor.celsius_at_zero, -1.0e4, 1.0e4)
+                && within(sensor.celsius_per_count_16, -100.0, 100.0)
+                && within(sensor.uncertainty_k, 0.0, 100.0);
+        }
+        let mut above = (LENGTH_M_MAX, liquid.top.estimate_kg_m3);
+        for layer in &liquid.below {
+            sound &= band(&layer.density)
+                && length(layer.surface_m)
+                && within(layer.surface_uncertainty_m, 0.0, LENGTH_M_MAX)
+                && layer.surface_m < above.0
+                && layer.density.estimate_kg_m3 >= above.1;
+            above = (layer.surface_m, layer.density.estimate_kg_m3);
+        }
+        require(sound, PlanError::Liquid)
+    }
+
+    fn check_part(&self, part: &Part) -> Result<(), PlanError> {
+        let known = (1_u16 << self.outside.len()) - 1;
+        require(u16::from(part.outside) & !known == 0, PlanError::Outside)?;
+        require(
+            length(part.bottom_m) && length(part.top_m) && part.bottom_m <= part.top_m,
+            PlanError::Geometry,
+        )?;
+        let (is_course, has_bolts) = match &part.geometry {
+            Geometry::Course { half_diameter_m, design_point_m, height_m } => {
+                require(
+                    within(*half_diameter_m, 0.01, LENGTH_M_MAX)
+                        && within(*design_point_m, part.bottom_m, part.top_m)
+                        && within(*height_m, 0.001, LENGTH_M_MAX),
+                    PlanError::Geometry,
+                )?;
+                (true, false)
+            }
+            Geometry::Plane { shape, sine, bolts, .. } => {
+                require(
+                    within(shape.area_m2(), 1.0e-6, 1.0e5)
+                        && within(shape.rise_m(), 0.0, LENGTH_M_MAX)
+                        && within(*sine, 0.0, 1.0)
+                        && bolts.as_ref().is_none_or(|bolts| bolts.pattern().is_sound()),
+                    PlanError::Geometry,
+                )?;
+                (false, bolts.is_some())
+            }
+        };
+        for capacities in [&part.outward, &part.inward] {
+            check_capacities(capacities, is_course, has_bolts)?;
+        }
+        for state in &part.designed_for {
+            require(
+                length(state.level_m)
+                    && within(state.weight_n_m3, 1.0, 2.5e5)
+                    && pressure(state.gas_pa),
+                PlanError::Capacity,
+            )?;
+        }
+        require(!part.judged_inward() || self.alarm.inward.is_some(), PlanError::Alarm)
+    }
+}
+
+fn check_capacities(
+    capacities: &Capacities,
+    is_course: bool,
+    has_bolts: bool,
+) -> Result<(), PlanError> {
+    let positive =
+        |capacity: Option<f32>| capacity.is_none_or(|value| within(value, 1.0e-3, 1.0e12));
+    require(
+        positive(capacities.pressure_pa)
+            && positive(capacities.hoop_tension_n_m)
+            && positive(capacities.force_n)
+            && positive(capacities.bolt_n)
+            && (is_course || capacities.hoop_tension_n_m.is_none())
+            && (!is_course || capacities.force_n.is_none())
+            && (has_bolts || capacities.bolt_n.is_none()),
+        PlanError::Capacity,
+    )
+}
+
+fn check_level(level: &LevelPlan) -> Result<(), PlanError> {
+    let sensor = match level.sensor {
+        LevelSensor::Surface => true,
+        LevelSensor::Head { at_m, reference } => {
+            let offsets = match reference {
+                Reference::GasSpace => true,
+                Reference::Atmosphere { offset_pa: [nominal, lowest, highest] } => {
+                    pressure(lowest) && pressure(highest) && within(nominal, lowest, highest)
+                }
+            };
+            length(at_m) && offsets
+        }
+    };
+    require(
+        sensor
+            && pressure(level.value_at_zero)
+            && within(level.value_per_count_16, -1.0e6, 1.0e6)
+            && level.value_per_count_16 != 0.0
+            && within(level.uncertainty, 0.0, PRESSURE_PA_MAX)
+            && within(level.uncertainty_per_distance, 0.0, 1.0)
+            && length(level.reference_m)
+            && (1..=DELAY_MS_MAX).contains(&level.failed_after_ms),
+        PlanError::Level,
+    )
+}
+
+fn check_threshold(threshold: &ThresholdPlan) -> bool {
+    within(threshold.utilisation, 0.01, 1.0)
+        && within(threshold.deadband, 0.0, threshold.utilisation)
+        && threshold.on_delay_ms <= DELAY_MS_MAX
+        && threshold.off_delay_ms <= DELAY_MS_MAX
+}
+
+fn check_alarm(alarm: &AlarmPlan) -> Result<(), PlanError> {
+    require(
+        check_threshold(&alarm.warn)
+            && check_threshold(&alarm.alarm)
+            && alarm.inward.as_ref().is_none_or(check_threshold)
+            && alarm.warn.utilisation < alarm.alarm.utilisation
+            && alarm.response_time_ms <= DELAY_MS_MAX
+            && (1..=DELAY_MS_MAX).contains(&alarm.sounds_again_after_ms),
+        PlanError::Alarm,
+    )
+}
+
+fn check_logging(logging: LoggingPlan) -> Result<(), PlanError> {
+    require(
+        (100..=86_400_000).contains(&logging.interval_ms)
+            && (logging.interval_ms..=86_400_000).contains(&logging.idle_interval_ms)
+            && logging.flush_after_ms <= 86_400_000,
+        PlanError::Logging,
+    )
+}

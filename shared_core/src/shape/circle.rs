@@ -1,0 +1,92 @@
+//! The disc.
+//!
+//! With radius `r` and `u = (h - z_c) / (r sin(slope))` the two integrals are
+//! `q0 = r³ sin m(u)` and `q1 = r⁴ sin m1(u)`,
+//!
+//! * `m(u)  = integral from -1 to u of (u - t) 2 sqrt(1 - t²) dt`, with `m(u) - m(-u) = pi u`,
+//! * `m1(u) = integral from -1 to u of (u - t) t 2 sqrt(1 - t²) dt`,
+//!   with `m1(u) + m1(-u) = -pi/4`.
+//!
+//! So only a surface below the centre needs work. There, with `a = 1 + u` in [0, 1], both are
+//! `a² sqrt(a)` times a function that is analytic in `a`: one square root and a short polynomial.
+//! No arcsine stands on the load path.
+//!
+//! The polynomials interpolate the exact series (binomial series of `sqrt(x (2 - x))`, integrated
+//! term by term) at Chebyshev nodes of [0, 1]; largest relative error 4.9e-8 and 1.3e-7.
+
+use super::Wetted;
+use crate::lane::Lane;
+use core::f32::consts::PI;
+
+/// `m(u) / a^(5/2)` on `a` in [0, 1], lowest power first.
+const M: [f32; 6] =
+    [7.542_472_5e-1, -8.081_373e-2, -5.594_621_3e-3, -9.631_896e-4, -6.962_577e-5, -1.393_930_5e-4];
+
+/// `m1(u) / a^(5/2)` on `a` in [0, 1], lowest power first.
+const M1: [f32; 6] =
+    [-7.542_472e-1, 4.040_587e-1, -3.925_702_2e-2, -2.787_091_2e-3, -2.331_560_7e-4, -2.332_418e-4];
+
+/// A disc on a slope that is not level.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Circle {
+    /// Area, m².
+    pub(super) area_m2: f32,
+    /// Height of the highest above the lowest point, m.
+    pub(super) rise_m: f32,
+    /// Radius, m.
+    radius_m: f32,
+    /// `1 / (r sin)`, 1/m.
+    per_half_rise: f32,
+    /// `r³ sin`, m³.
+    q0_scale: f32,
+    /// `r⁴ sin`, m⁴.
+    q1_scale: f32,
+}
+
+impl Circle {
+    /// A disc of `radius_m` on a slope with the sine `sine` (above zero, at most one).
+    #[must_use]
+    pub fn new(radius_m: f32, sine: f32) -> Self {
+        let half_rise_m = radius_m * sine;
+        let square = radius_m * radius_m;
+        Self {
+            area_m2: PI * square,
+            rise_m: 2.0 * half_rise_m,
+            radius_m,
+            per_half_rise: 1.0 / half_rise_m,
+            q0_scale: square * half_rise_m,
+            q1_scale: square * radius_m * half_rise_m,
+        }
+    }
+
+    /// Radius, m.
+    #[must_use]
+    pub const fn radius_m(&self) -> f32 {
+        self.radius_m
+    }
+
+    /// See [`super::Shape::wetted`].
+    #[inline]
+    pub(super) fn wetted<const N: usize>(&self, y_m: Lane<N>) -> Wetted<N> {
+        let a = y_m * self.per_half_rise;
+        let u = a - 1.0;
+        // Distance of the surface from the nearer end of the vertical diameter: zero when dry or
+        // covered. Below the centre it is `a` itself, which keeps all digits at first wetting.
+        let end = u.positive_selects(Lane::splat(2.0) - a, a).ramp();
+        let (m, m1) = if end.none_positive() {
+            (Lane::ZERO, Lane::ZERO)
+        } else {
+            let k = end * end * end.root();
+            (k * polynomial(&M, end), k * polynomial(&M1, end))
+        };
+        let m = u.positive_selects(u * PI + m, m);
+        let m1 = u.positive_selects(Lane::splat(-PI / 4.0) - m1, m1);
+        Wetted { q0: m * self.q0_scale, q1: m1 * self.q1_scale }
+    }
+}
+
+#[inline]
+fn polynomial<const N: usize>(coefficients: &[f32; 6], x: Lane<N>) -> Lane<N> {
+    let [c0, c1, c2, c3, c4, c5] = *coefficients;
+    ((((x * c5 + c4) * x + c3) * x + c2) * x + c1) * x + c0
+}
