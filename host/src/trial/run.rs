@@ -195,14 +195,16 @@ impl<P: Port> Visits<P> {
                     self.machine.borrow_mut().happen(Happening::PowerOn);
                 }
                 progress(Stage::Collecting);
-                return self.collect(TRIAL_UTC_S + now_ms / 1000);
+                let utc_s = TRIAL_UTC_S + now_ms / 1000;
+                self.client.set_clock(utc_s)?;
+                return self.collect(utc_s);
             }
             // Without power nobody can collect; the next visit finds it all.
             if !without_power {
                 progress(Stage::Collecting);
                 let utc_s = TRIAL_UTC_S + now_ms / 1000;
-                self.collect(utc_s)?;
                 self.client.set_clock(utc_s)?;
+                self.collect(utc_s)?;
             }
             visit_ms += VISIT_EVERY_MS;
         }
