@@ -124,7 +124,7 @@ fn read_plan<S: Served>(
         plans.iter().find(|entry| entry.length > 0 && entry.fingerprint == read.fingerprint);
     let length = entry.ok_or(ErrorCode::PlanUnknown)?.length;
     let left = usize::try_from(length.saturating_sub(read.offset)).unwrap_or(usize::MAX);
-    let bytes = left.min(usize::from(read.length)).min(PLAN_DATA_BYTES);
+    let bytes = left.min(usize::from(read.length.min(PLAN_DATA_BYTES)));
     let mut result = Ok(());
     outbox.build(Kind::PlanData.number(), |body| {
         read.fingerprint.put(body);

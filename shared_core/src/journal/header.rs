@@ -24,7 +24,8 @@ pub const HEADER_BYTES: usize = 104;
 /// Bytes before the check.
 const CHECKED_BYTES: usize = HEADER_BYTES - 4;
 const MAGIC: [u8; 3] = *b"SKJ";
-const VERSION: u8 = 1;
+/// Version of the journal format.
+pub const VERSION: u8 = 1;
 /// Bytes that [`peek_sequence`] wants.
 pub const PEEK_BYTES: usize = 8;
 const CLOSED_BY_RESTART: u16 = 1 << 4;

@@ -1,0 +1,5 @@
+//! The client against a device that serves a made-up journal.
+
+mod collecting;
+mod exchanges;
+mod fake;
