@@ -97,7 +97,9 @@ fn lanes_do_not_touch_each_other() {
     two.word(Lane([0.25, 7.0]));
     for (lane, words) in [[1.5, 0.25], [-2.5, 7.0]].into_iter().enumerate() {
         let mut one = Digest::<1>::new();
-        words.into_iter().for_each(|word| one.word(Lane([word])));
+        for word in words {
+            one.word(Lane([word]));
+        }
         assert_eq!(two.lane(lane), one.lane(0));
     }
     assert_eq!(two.lane(2), 0);
