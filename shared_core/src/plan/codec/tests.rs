@@ -22,8 +22,11 @@ fn encoded(plan: &Plan) -> Vec<u8> {
     bytes[..length].to_vec()
 }
 
-fn hex(bytes: &[u8]) -> String {
-    bytes.iter().map(|byte| format!("{byte:02x}")).collect()
+/// Bytes from their two digits each.
+fn bytes_of(hex: &str) -> Vec<u8> {
+    let digits: Vec<u8> =
+        hex.chars().map(|c| c.to_digit(16).unwrap().try_into().unwrap()).collect();
+    digits.chunks(2).map(|pair| pair[0] << 4 | pair[1]).collect()
 }
 
 #[test]
@@ -56,7 +59,7 @@ fn the_bytes_of_format_1() {
         "06706172742030",                     // "part 0"
         "0474616e6b",                         // "tank"
     ];
-    assert_eq!(hex(&encoded(&plan)), fields.concat());
+    assert_eq!(encoded(&plan), bytes_of(&fields.concat()));
     let (who, again) = decode(&encoded(&plan)).unwrap();
     assert_eq!((who, again), (header(), plan));
 }
