@@ -10,4 +10,5 @@ pub mod board;
 pub mod device;
 pub mod journal;
 pub mod plan_store;
+pub mod sensor;
 pub mod serve;

@@ -1,10 +1,23 @@
 //! Host library of Strake.
 #![forbid(unsafe_code)]
+#![warn(clippy::print_stdout, clippy::print_stderr)]
 
+pub mod assess;
+pub mod cli;
+pub mod cmd;
+pub mod compile;
+pub mod exit;
+pub mod failure;
+pub mod inverse;
 pub mod journal_file;
 pub mod link;
 pub mod nearest;
+pub mod output_file;
+pub mod page;
+pub mod plan_file;
 pub mod replay;
 pub mod sim;
 pub mod tank;
+pub mod term;
+pub mod trial;
 pub mod units;

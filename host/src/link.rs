@@ -18,7 +18,7 @@ mod transfer;
 
 pub use client::Client;
 pub use collect::{Collected, Progress, collect};
-pub use error::{LinkError, PortError, VersionMismatch};
+pub use error::{LinkError, PortError, VersionMismatch, Versioned};
 pub use in_process::{DeviceEnd, InProcess, Wire};
 pub use noise::Noisy;
 pub use port::Port;

@@ -1,3 +1,8 @@
 //! Command line of Strake.
 #![forbid(unsafe_code)]
-fn main() {}
+
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    strake::cli::run(std::env::args_os()).into()
+}

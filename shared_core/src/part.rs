@@ -7,7 +7,7 @@ mod bolts;
 mod evaluate;
 
 pub use bolts::{BoltPattern, Bolts};
-pub use evaluate::{Loads, PartLoads, evaluate};
+pub use evaluate::{Loads, PartLoads, acting, evaluate};
 
 use crate::shape::Shape;
 use heapless::Vec;

@@ -12,4 +12,4 @@ mod resolve;
 
 pub use channel::{Channel, Quality, SensorError};
 pub use current_loop::{LoopClass, classify};
-pub use resolve::{ReadingClass, Resolved, Sight, resolve};
+pub use resolve::{ReadingClass, Resolved, Sight, half_width, resolve};

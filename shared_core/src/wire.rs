@@ -53,7 +53,7 @@ pub const FRAME_UNITS_MAX: u8 = 8;
 pub const PLAN_CHUNK_BYTES: usize = 192;
 /// Most bytes of a plan in one [`PlanData`].
 pub const PLAN_DATA_BYTES: u16 = 512;
-/// Sector requests that wait in the device; one more is refused as busy.
+/// Sector requests that wait in the device; one more is dropped.
 pub const SECTOR_QUEUE: usize = 8;
 
 /// Bytes of a device's receive buffer: the longest encoded request fits.

@@ -130,7 +130,9 @@ fn read_plan<S: Served>(
         read.fingerprint.put(body);
         read.offset.put(body);
         body.length(bytes);
-        result = served.read_plan(read.fingerprint, read.offset, body.reserve(bytes));
+        if bytes > 0 {
+            result = served.read_plan(read.fingerprint, read.offset, body.reserve(bytes));
+        }
     });
     if result.is_err() {
         outbox.clear();

@@ -7,7 +7,10 @@ use std::path::PathBuf;
 #[derive(Debug, thiserror::Error)]
 pub enum JournalFileError {
     /// The operating system refuses.
-    #[error("{doing} {}: {cause}; check the path, the rights and the space on the disk", path.display())]
+    #[error(
+        "{doing} {}: {cause}; check the path, the rights and the space on the disk",
+        path.display()
+    )]
     Io {
         /// What was tried.
         doing: &'static str,

@@ -11,6 +11,7 @@ use super::{
 use std::collections::BTreeMap;
 use std::fs::File;
 use std::io::{self, Read, Seek, SeekFrom};
+use std::ops::Bound;
 use std::path::{Path, PathBuf};
 
 /// An open journal file.
@@ -177,16 +178,9 @@ impl<R: Read + Seek> JournalFile<R> {
         &mut self,
         sequence: Option<u32>,
     ) -> Result<Option<StoredSector>, JournalFileError> {
-        let next = match sequence {
-            None => self.sectors.keys().next(),
-            Some(sequence) => {
-                self.sectors.range(sequence..).map(|(key, _)| key).find(|key| **key > sequence)
-            }
-        };
-        match next.copied() {
-            Some(next) => self.sector(next),
-            None => Ok(None),
-        }
+        let from = sequence.map_or(Bound::Unbounded, Bound::Excluded);
+        let next = self.sectors.range((from, Bound::Unbounded)).next().map(|(next, _)| *next);
+        next.map_or(Ok(None), |next| self.sector(next))
     }
 
     /// Every place that was not used, in the order of the file.

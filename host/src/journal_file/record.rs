@@ -1,11 +1,11 @@
 //! Records and their bytes.
 
 use super::PLAN_BYTES_MAX;
-use crc::{CRC_32_ISO_HDLC, Crc};
+use crc::{CRC_32_ISO_HDLC, Crc, Table};
 use strake_core::journal::SECTOR_BYTES;
 
 /// The check of a record, over tag, length and payload.
-pub(super) const CHECK: Crc<u32> = Crc::<u32>::new(&CRC_32_ISO_HDLC);
+pub(super) static CHECK: Crc<u32, Table<16>> = Crc::<u32, Table<16>>::new(&CRC_32_ISO_HDLC);
 /// Tag and length.
 pub(super) const RECORD_HEAD_BYTES: usize = 5;
 /// The check.

@@ -1,7 +1,7 @@
 //! Asking the device, one exchange at a time.
 
 use super::error::doing;
-use super::{LinkError, Port, VersionMismatch};
+use super::{LinkError, Port, VersionMismatch, Versioned};
 use std::time::Duration;
 use strake_core::wire::{
     Acknowledge, ClockSet, Done, ErrorCode, ErrorReply, FaultStatus, FaultStatusRequest, Frame,
@@ -15,16 +15,18 @@ use strake_core::wire::{
 const ATTEMPT: Duration = Duration::from_millis(300);
 /// How long an attempt waits that makes the device check a plan.
 const CHECK_ATTEMPT: Duration = Duration::from_secs(3);
-/// Attempts while not one byte comes: together above the second in which an emulator notices that
-/// its port was opened.
+/// Attempts where no frame has ever come: together above the second in which an emulator notices
+/// that its port was opened.
 const SILENT_ATTEMPTS: u32 = 8;
+/// Attempts while a device that has been heard is silent.
+const LOST_ATTEMPTS: u32 = 24;
 /// Attempts while bytes come: enough for a bit error rate of 1e-3.
 const NOISY_ATTEMPTS: u32 = 60;
 /// Pause before a busy device is asked again, and how often it is.
 const BUSY_PAUSE: Duration = Duration::from_millis(100);
 const BUSY_MAX: u32 = 300;
-/// Bytes of a plan in one frame after a frame was lost.
-const SMALL_CHUNK_BYTES: usize = 48;
+/// Bytes of a plan in one frame once a frame was lost.
+const SMALL_BYTES: u16 = 48;
 
 /// A connection to one device, its identity known and its protocol ours.
 #[derive(Debug)]
@@ -70,10 +72,30 @@ impl<P: Port> Client<P> {
     /// As [`Self::connect`].
     pub fn hello(&mut self) -> Result<&Identity, LinkError> {
         self.identity = self.ask(&Hello { protocol: PROTOCOL_VERSION }, |_: &Identity| true)?;
-        if self.identity.protocol != PROTOCOL_VERSION {
-            return Err(LinkError::Version(VersionMismatch { device: self.identity }));
-        }
+        self.same(Versioned::Protocol, PROTOCOL_VERSION, self.identity.protocol)?;
         Ok(&self.identity)
+    }
+
+    /// Checks that the device writes the journal that this program reads.
+    ///
+    /// # Errors
+    /// [`LinkError::Version`].
+    pub fn require_journal_format(&self, ours: u8) -> Result<(), LinkError> {
+        self.same(Versioned::Journal, ours.into(), self.identity.journal_format.into())
+    }
+
+    /// Checks that the device takes the plans that this program makes.
+    ///
+    /// # Errors
+    /// [`LinkError::Version`].
+    pub fn require_plan_format(&self, ours: u8) -> Result<(), LinkError> {
+        self.same(Versioned::Plan, ours.into(), self.identity.plan_format.into())
+    }
+
+    fn same(&self, of: Versioned, ours: u16, theirs: u16) -> Result<(), LinkError> {
+        let device = self.identity;
+        let mismatch = LinkError::Version(VersionMismatch { of, ours, device });
+        if ours == theirs { Ok(()) } else { Err(mismatch) }
     }
 
     /// What the device said at the last greeting.
@@ -154,20 +176,20 @@ impl<P: Port> Client<P> {
         let length = u32::try_from(bytes.len()).unwrap_or(u32::MAX);
         let begin = PlanBegin { length, serial, fingerprint, device_id };
         self.ask(&begin, |reply: &PlanReply| reply.fingerprint == fingerprint)?;
-        let (mut held, mut chunk_bytes) = (0, PLAN_CHUNK_BYTES);
+        let (mut held, mut most) = (0, PLAN_CHUNK_BYTES);
         while let Some(rest @ [_, ..]) = bytes.get(held..) {
-            let part = &rest[..rest.len().min(chunk_bytes)];
             let offset = u32::try_from(held).unwrap_or(u32::MAX);
-            let end = held + part.len();
-            let bad = self.heard.bad;
-            let chunk = PlanChunk { offset, bytes: part };
-            self.ask(&chunk, |reply: &PlanReply| {
-                reply.fingerprint == fingerprint && reply.received as usize >= end
+            let mut chunk = |attempt| {
+                if attempt > 0 {
+                    most = usize::from(SMALL_BYTES);
+                }
+                PlanChunk { offset, bytes: &rest[..rest.len().min(most)] }
+            };
+            let reply: PlanReply = self.exchange(&mut chunk, &mut |frame| {
+                let reply = reply::<PlanReply>(frame)?.ok()?;
+                (reply.fingerprint == fingerprint && reply.received > offset).then_some(reply)
             })?;
-            held = end;
-            if self.heard.bad > bad {
-                chunk_bytes = SMALL_CHUNK_BYTES;
-            }
+            held = usize::try_from(reply.received).unwrap_or(usize::MAX);
         }
         self.ask(&PlanCommit { fingerprint }, |reply: &PlanReply| {
             reply.fingerprint == fingerprint && reply.in_force
@@ -189,12 +211,17 @@ impl<P: Port> Client<P> {
     /// # Errors
     /// [`LinkError::Refused`] with [`ErrorCode::PlanUnknown`], or another [`LinkError`].
     pub fn read_plan(&mut self, fingerprint: u64) -> Result<Vec<u8>, LinkError> {
-        let mut plan = Vec::new();
+        let (mut plan, mut length) = (Vec::new(), PLAN_DATA_BYTES);
         loop {
-            let offset = u32::try_from(plan.len()).unwrap_or(u32::MAX);
-            let request = PlanRead { fingerprint, offset, length: PLAN_DATA_BYTES };
             let before = plan.len();
-            self.exchange(&request, &mut |frame| {
+            let offset = u32::try_from(before).unwrap_or(u32::MAX);
+            let mut request = |attempt| {
+                if attempt > 0 {
+                    length = SMALL_BYTES;
+                }
+                PlanRead { fingerprint, offset, length }
+            };
+            self.exchange(&mut request, &mut |frame| {
                 let data = reply::<PlanData<'_>>(frame)?.ok()?;
                 let asked_for = data.fingerprint == fingerprint && data.offset == offset;
                 asked_for.then(|| plan.extend(data.bytes))
@@ -215,41 +242,41 @@ impl<P: Port> Client<P> {
     }
 
     /// One request and the reply that belongs to it.
-    fn ask<'m, A>(
-        &mut self,
-        request: &impl Message<'m>,
-        belongs: impl Fn(&A) -> bool,
-    ) -> Result<A, LinkError>
+    fn ask<'m, Q, A>(&mut self, request: &Q, belongs: impl Fn(&A) -> bool) -> Result<A, LinkError>
     where
+        Q: Message<'m> + Copy,
         A: for<'a> Message<'a>,
     {
-        let answer = self.exchange(request, &mut |frame| match reply::<A>(frame)? {
+        let answer = self.exchange(&mut |_| *request, &mut |frame| match reply::<A>(frame)? {
             Ok(answer) => belongs(&answer).then_some(Ok(answer)),
             Err(malformed) => Some(Err(malformed)),
         })?;
         let what = "its length or a value in it";
-        answer.map_err(|_| LinkError::Nonsense { doing: doing_of(request), what })
+        answer.map_err(|_| LinkError::Nonsense { doing: doing(Q::KIND), what })
     }
 
-    /// Sends a request until `take` takes a frame.
+    /// Sends a request, made anew for each attempt from zero on, until `take` takes a frame.
     fn exchange<'m, Q: Message<'m>, T>(
         &mut self,
-        request: &Q,
+        request: &mut dyn FnMut(u32) -> Q,
         take: &mut dyn FnMut(&Frame<'_>) -> Option<T>,
     ) -> Result<T, LinkError> {
         let started = self.port.now();
         let before = self.heard;
-        let attempt = if Q::KIND == Kind::PlanCommit { CHECK_ATTEMPT } else { ATTEMPT };
+        let wait = if Q::KIND == Kind::PlanCommit { CHECK_ATTEMPT } else { ATTEMPT };
         let (mut attempts, mut busy) = (0, 0);
         loop {
-            let heard = self.heard.bytes > before.bytes;
-            let most = if heard { NOISY_ATTEMPTS } else { SILENT_ATTEMPTS };
+            let most = match (self.heard.bytes > before.bytes, self.heard.frames > 0) {
+                (true, _) => NOISY_ATTEMPTS,
+                (false, true) => LOST_ATTEMPTS,
+                (false, false) => SILENT_ATTEMPTS,
+            };
             if attempts >= most {
                 return Err(self.no_answer(doing(Q::KIND), before, started));
             }
+            self.send(&request(attempts))?;
             attempts += 1;
-            self.send(request)?;
-            match self.wait_for(Q::KIND, attempt, take)? {
+            match self.wait_for(Q::KIND, wait, take)? {
                 None => {}
                 Some(Ok(taken)) => return Ok(taken),
                 Some(Err(reply)) => match ErrorCode::from_number(reply.code) {
@@ -264,11 +291,11 @@ impl<P: Port> Client<P> {
     }
 
     /// Sends one request; a zero before it ends whatever garbage the device has heard.
-    pub(super) fn send<'m>(&mut self, request: &impl Message<'m>) -> Result<(), LinkError> {
+    pub(super) fn send<'m, Q: Message<'m>>(&mut self, request: &Q) -> Result<(), LinkError> {
         let mut frame = [0; REPLY_FRAME_BYTES];
         let Some(length) = request.encode(&mut frame[1..]) else {
             let what = "the request does not fit a frame";
-            return Err(LinkError::Nonsense { doing: doing_of(request), what });
+            return Err(LinkError::Nonsense { doing: doing(Q::KIND), what });
         };
         Ok(self.port.write(&frame[..=length])?)
     }
@@ -350,10 +377,6 @@ impl<P: Port> Client<P> {
             LinkError::Noisy { port, doing, bad, frames: bad + frames }
         }
     }
-}
-
-fn doing_of<'m, Q: Message<'m>>(_: &Q) -> &'static str {
-    doing(Q::KIND)
 }
 
 /// The message in a frame of its kind; `None` for another kind.

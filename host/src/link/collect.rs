@@ -30,7 +30,8 @@ pub struct Progress {
     pub bytes: u64,
 }
 
-/// What a collection brought. It is complete up to the head, except for `gone`.
+/// What a collection brought. It is complete up to the head, except
+/// for `gone` and `unreadable`.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub struct Collected {
     /// Where the journal ended; [`PartFile::finish`] takes it.
@@ -41,8 +42,10 @@ pub struct Collected {
     pub bytes: u64,
     /// Sectors that an earlier run had left in the file.
     pub resumed: u32,
-    /// Sectors that the device overwrote before they could be taken.
+    /// Sectors that the device overwrote before they could be taken whole.
     pub gone: u32,
+    /// Sectors that the device could not read.
+    pub unreadable: u32,
     /// Frames that came damaged.
     pub damaged_frames: u64,
     /// Bulk frames that were asked for again.
@@ -78,6 +81,7 @@ pub fn collect<P: Port>(
         },
         transfer: Transfer::new(wanted, unsure.as_ref().map(|sector| sector.bytes.as_slice())),
         gone: overwritten,
+        unreadable: 0,
         head,
         file,
     };
@@ -95,6 +99,7 @@ pub fn collect<P: Port>(
         bytes: run.progress.bytes,
         resumed,
         gone: run.gone,
+        unreadable: run.unreadable,
         damaged_frames: client.heard.bad - damaged_before,
         lost_frames: run.transfer.lost_frames(),
     })
@@ -104,6 +109,7 @@ struct Run<'f> {
     transfer: Transfer,
     progress: Progress,
     gone: u32,
+    unreadable: u32,
     head: Head,
     file: &'f mut PartFile,
 }
@@ -158,17 +164,30 @@ impl Run<'_> {
         while let Some(finished) = self.transfer.take_finished() {
             self.progress.sectors += 1;
             match finished {
-                Finished::Gone { .. } => self.gone += 1,
+                Finished::Lost { sequence, code, bytes } => {
+                    if code == ErrorCode::SectorGone.number() {
+                        self.gone += 1;
+                    } else {
+                        self.unreadable += 1;
+                    }
+                    if !bytes.is_empty() {
+                        self.keep(sequence, bytes)?;
+                    }
+                }
                 Finished::Sector { sequence, mut bytes } => {
                     if sequence == self.head.newest {
                         bytes.truncate(usize::from(self.head.used));
                     }
-                    self.progress.bytes += bytes.len() as u64;
-                    self.file.append(&Record::Sector(StoredSector { sequence, bytes }))?;
+                    self.keep(sequence, bytes)?;
                 }
             }
         }
         Ok(())
+    }
+
+    fn keep(&mut self, sequence: u32, bytes: Vec<u8>) -> Result<(), LinkError> {
+        self.progress.bytes += bytes.len() as u64;
+        Ok(self.file.append(&Record::Sector(StoredSector { sequence, bytes }))?)
     }
 }
 

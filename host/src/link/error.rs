@@ -3,13 +3,16 @@
 use crate::journal_file::JournalFileError;
 use std::fmt;
 use std::time::Duration;
-use strake_core::wire::{ErrorCode, Identity, Kind, PROTOCOL_VERSION};
+use strake_core::wire::{ErrorCode, Identity, Kind};
 
 /// A port cannot be used, or none was chosen.
 #[derive(Clone, Debug, PartialEq, Eq, thiserror::Error)]
 pub enum PortError {
     /// No port at all, or no device on any of them.
-    #[error("no Strake device found{}; connect it and switch it on, or name the port with --port", where_tried(.tried))]
+    #[error(
+        "no Strake device found{}; connect it and switch it on, or name the port with --port",
+        where_tried(.tried)
+    )]
     NoneFound {
         /// The ports that were tried.
         tried: Vec<String>,
@@ -58,26 +61,46 @@ fn where_tried(ports: &[String]) -> String {
     }
 }
 
+/// What a version is of.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Versioned {
+    /// Frames and messages.
+    Protocol,
+    /// The journal.
+    Journal,
+    /// The plan.
+    Plan,
+}
+
 /// The two sides speak different versions.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub struct VersionMismatch {
+    /// Of what.
+    pub of: Versioned,
+    /// This program's version of it.
+    pub ours: u16,
     /// What the device said.
     pub device: Identity,
 }
 
 impl fmt::Display for VersionMismatch {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        let (ours, theirs) = (env!("CARGO_PKG_VERSION"), self.device.firmware);
+        let Self { of, ours, device } = self;
+        let (thing, theirs) = match of {
+            Versioned::Protocol => ("link protocol", device.protocol),
+            Versioned::Journal => ("journal format", u16::from(device.journal_format)),
+            Versioned::Plan => ("plan format", u16::from(device.plan_format)),
+        };
+        let (strake, firmware, id) = (env!("CARGO_PKG_VERSION"), device.firmware, device.device_id);
         write!(
             f,
-            "version mismatch: strake {ours} speaks link protocol {PROTOCOL_VERSION}, device '{}' \
-             with firmware {theirs} speaks {}; ",
-            self.device.device_id, self.device.protocol
+            "version mismatch: strake {strake} speaks {thing} {ours}, device '{id}' with firmware \
+             {firmware} speaks {theirs}; "
         )?;
-        if self.device.protocol > PROTOCOL_VERSION {
-            write!(f, "install strake {theirs} or later")
+        if theirs > *ours {
+            write!(f, "install strake {firmware} or later")
         } else {
-            write!(f, "update the device's firmware to {ours}, or install strake {theirs}")
+            write!(f, "update the device's firmware to {strake}, or install strake {firmware}")
         }
     }
 }

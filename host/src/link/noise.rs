@@ -90,21 +90,26 @@ impl<P: Port> Port for Noisy<P> {
     }
 
     fn read(&mut self, out: &mut [u8], wait: Duration) -> Result<usize, PortError> {
-        let count = self.port.read(out, wait)?;
-        let mut kept = 0;
-        for place in 0..count {
-            if let Some(left) = &mut self.cut_after {
-                if *left == 0 {
-                    break;
+        loop {
+            let count = self.port.read(out, wait)?;
+            let mut kept = 0;
+            for place in 0..count {
+                if let Some(left) = &mut self.cut_after {
+                    if *left == 0 {
+                        break;
+                    }
+                    *left -= 1;
                 }
-                *left -= 1;
+                if let Some(byte) = self.pass(out[place]) {
+                    out[kept] = byte;
+                    kept += 1;
+                }
             }
-            if let Some(byte) = self.pass(out[place]) {
-                out[kept] = byte;
-                kept += 1;
+            // Bytes that were all lost are no end of the wait.
+            if kept > 0 || count == 0 {
+                return Ok(kept);
             }
         }
-        Ok(kept)
     }
 
     fn now(&self) -> Duration {

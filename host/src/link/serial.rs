@@ -37,7 +37,7 @@ impl SerialPort {
     /// Uses a line that is open already.
     #[must_use]
     pub fn over(name: &str, mut line: Box<dyn serialport::SerialPort>) -> Self {
-        // Some bridges send only when these stand; a pseudo-terminal has neither, which is harmless.
+        // Some bridges send only while these stand. A pseudo-terminal has neither: harmless.
         let _no_such_line = line.write_data_terminal_ready(true);
         let _no_such_line = line.write_request_to_send(true);
         Self { name: name.to_owned(), line, opened: Instant::now() }

@@ -3,3 +3,9 @@
 mod collecting;
 mod exchanges;
 mod fake;
+mod line;
+mod messages;
+#[cfg(unix)]
+mod serial;
+mod throughput;
+mod transfer;

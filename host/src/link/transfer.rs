@@ -5,7 +5,9 @@
 use super::rate::FrameSize;
 use std::collections::VecDeque;
 use strake_core::journal::SECTOR_BYTES;
-use strake_core::wire::{SECTOR_QUEUE, SectorData, SectorEnd, SectorRequest, UNIT_BYTES, UNITS};
+use strake_core::wire::{
+    ErrorCode, SECTOR_QUEUE, SectorData, SectorEnd, SectorRequest, UNIT_BYTES, UNITS,
+};
 
 /// Bytes of a unit.
 const UNIT: usize = UNIT_BYTES as usize;
@@ -27,7 +29,8 @@ struct Filling {
     come: [u8; UNITS as usize],
     /// Bytes in use, once the device has said it.
     used: Option<u16>,
-    gone: bool,
+    /// Number of the error code with which the device gave up on it.
+    given_up: Option<u8>,
 }
 
 /// A request on its way or being served.
@@ -47,8 +50,8 @@ struct Issued {
 pub(super) enum Finished {
     /// Its used part.
     Sector { sequence: u32, bytes: Vec<u8> },
-    /// The device no longer has it.
-    Gone { sequence: u32 },
+    /// The device no longer has it, or cannot read it; what came of it without a hole.
+    Lost { sequence: u32, code: u8, bytes: Vec<u8> },
 }
 
 /// A transfer of a list of sectors, finished in the order of the list.
@@ -125,7 +128,7 @@ impl Transfer {
         Some(wanted)
     }
 
-    /// A data frame came. False when it belongs to no request.
+    /// A data frame came. False when it brings nothing new.
     pub(super) fn data(&mut self, data: &SectorData<'_>) -> bool {
         let unit = u32::from(data.unit);
         let units = u32::try_from(data.bytes.len().div_ceil(UNIT)).unwrap_or(u32::MAX);
@@ -141,26 +144,30 @@ impl Transfer {
         self.size.record(u32::from(issued.frame_units).min(units), 1, lost);
         self.lost_frames += u64::from(lost);
         let sequence = issued.sequence;
-        if let Some(filling) = self.find(sequence) {
-            filling.put(usize::from(data.unit), data.bytes);
-        }
-        true
+        self.find(sequence).is_some_and(|filling| filling.put(usize::from(data.unit), data.bytes))
     }
 
-    /// A request is through. False when it belongs to none.
+    /// A request is through. False when that brings nothing new.
     pub(super) fn end(&mut self, end: SectorEnd) -> bool {
         if usize::from(end.used) > SECTOR_BYTES || !self.reach(end.ticket) {
             return false;
         }
         let Some(issued) = self.issued.pop_front() else { return false };
+        let mut fresh = false;
         if let Some(filling) = self.find(issued.sequence) {
-            filling.used = Some(end.used);
-            filling.gone = end.code != 0;
+            if end.code == 0 {
+                fresh = filling.used.is_none_or(|used| used < end.used);
+                // What is in use only grows.
+                filling.used = filling.used.max(Some(end.used));
+            } else if end.code != ErrorCode::Busy.number() {
+                fresh = true;
+                filling.given_up = Some(end.code);
+            }
         }
         let lost = frames(issued.pending & in_use(end.used), issued.frame_units);
         self.size.record(u32::from(issued.frame_units), 0, lost);
         self.lost_frames += u64::from(lost);
-        true
+        fresh
     }
 
     /// Nothing comes any more: what was asked for must be asked for again.
@@ -178,20 +185,19 @@ impl Transfer {
         if !self.filling.front()?.is_finished() {
             return None;
         }
-        let Filling { sequence, bytes, used, gone, .. } = self.filling.pop_front()?;
-        if gone {
-            return Some(Finished::Gone { sequence });
+        let first = self.filling.pop_front()?;
+        let sequence = first.sequence;
+        if let Some(code) = first.given_up {
+            return Some(Finished::Lost { sequence, code, bytes: first.without_hole() });
         }
-        let used = usize::from(used.unwrap_or_default());
-        Some(Finished::Sector { sequence, bytes: bytes[..used].to_vec() })
+        let used = usize::from(first.used.unwrap_or_default());
+        Some(Finished::Sector { sequence, bytes: first.bytes[..used].to_vec() })
     }
 
     /// What has come without a hole of the sector that is next in the list.
     pub(super) fn begun(&self) -> Option<(u32, Vec<u8>)> {
-        let first = self.filling.front().filter(|filling| !filling.gone)?;
-        let whole = first.come.iter().take_while(|come| usize::from(**come) == UNIT).count();
-        let length = whole * UNIT;
-        (length > 0).then(|| (first.sequence, first.bytes[..length].to_vec()))
+        let first = self.filling.front()?;
+        Some((first.sequence, first.without_hole())).filter(|(_, bytes)| !bytes.is_empty())
     }
 
     /// Drops the requests before this one: the line keeps order, so they are through.
@@ -219,18 +225,28 @@ impl Transfer {
 impl Filling {
     fn new(sequence: u32) -> Self {
         let bytes = Box::new([0xFF; SECTOR_BYTES]);
-        Self { sequence, bytes, come: [0; UNITS as usize], used: None, gone: false }
+        Self { sequence, bytes, come: [0; UNITS as usize], used: None, given_up: None }
     }
 
-    fn put(&mut self, unit: usize, bytes: &[u8]) {
+    /// Stores units. False when all of it was here already.
+    fn put(&mut self, unit: usize, bytes: &[u8]) -> bool {
+        let mut fresh = false;
         for (place, piece) in bytes.chunks(UNIT).enumerate() {
             let unit = unit + place;
-            let Some(come) = self.come.get_mut(unit) else { return };
-            if piece.len() >= usize::from(*come) {
+            let Some(come) = self.come.get_mut(unit) else { break };
+            if piece.len() > usize::from(*come) {
+                fresh = true;
                 self.bytes[unit * UNIT..][..piece.len()].copy_from_slice(piece);
                 *come = u8::try_from(piece.len()).unwrap_or(u8::MAX);
             }
         }
+        fresh
+    }
+
+    /// The whole units from the first one on that came without a hole.
+    fn without_hole(&self) -> Vec<u8> {
+        let whole = self.come.iter().take_while(|come| usize::from(**come) == UNIT).count();
+        self.bytes[..whole * UNIT].to_vec()
     }
 
     /// Units that are not here, or not as long as they are in the sector.
@@ -245,7 +261,7 @@ impl Filling {
     }
 
     fn is_finished(&self) -> bool {
-        self.gone || (self.used.is_some() && self.missing() == 0)
+        self.given_up.is_some() || (self.used.is_some() && self.missing() == 0)
     }
 }
 

@@ -5,12 +5,15 @@
 //! the inputs and compares the results. One sector is held in memory at a time.
 
 mod batch;
+mod document;
 mod engine;
 mod rainflow;
 mod summary;
+pub mod text;
 mod walk;
 
+pub use document::Document;
 pub use engine::{Difference, Engine, Verdict};
 pub use rainflow::Rainflow;
-pub use summary::{AlarmLine, BAND_EDGES, Band, FaultLine, PartSummary, Peak, Summary};
+pub use summary::{AlarmLine, BAND_EDGES, Band, FaultLine, Moment, PartSummary, Peak, Summary};
 pub use walk::{Replay, replay};

@@ -24,9 +24,9 @@ pub struct Peak {
     pub utilisation: f32,
     /// Estimated level, m above the datum.
     pub level_m: f32,
-    /// Tick, ms of its boot.
-    pub tick_ms: u64,
-    /// UTC seconds, when the clock was set.
+    /// When.
+    pub moment: Moment,
+    /// UTC seconds, when the clock was set in that start.
     pub utc_s: Option<u64>,
 }
 
@@ -59,9 +59,9 @@ pub struct AlarmLine {
     pub name: String,
     /// `warn`, `alarm`, `inward` or `fault`.
     pub kind: &'static str,
-    /// Tick of the raising, ms of its boot.
-    pub tick_ms: u64,
-    /// UTC seconds, when the clock was set.
+    /// When it was raised.
+    pub moment: Moment,
+    /// UTC seconds, when the clock was set in that start.
     pub utc_s: Option<u64>,
     /// Utilisation that raised it.
     pub utilisation: f32,
@@ -78,26 +78,24 @@ pub struct FaultLine {
     pub cause: FaultCause,
     /// Occurrences.
     pub count: u64,
-    /// Tick of the first entry, ms of its boot.
-    pub first_tick_ms: u64,
-    /// UTC seconds of the first entry, when the clock was set.
+    /// When the first entry was made.
+    pub first: Moment,
+    /// UTC seconds of the first entry, when the clock was set in that start.
     pub first_utc_s: Option<u64>,
 }
 
-/// Ticks to UTC, as far as the journal knows it.
+/// Ticks to UTC, as far as the journal knows it: each start counts its own ticks, and a fix serves
+/// all of its start, also what came before it.
 #[derive(Clone, Debug, Default)]
 pub(super) struct JournalClock {
-    /// UTC seconds at tick zero of the present boot.
-    offset_s: Option<i64>,
+    /// UTC seconds at tick zero, by boot.
+    offsets_s: BTreeMap<u16, i64>,
     boot: u16,
 }
 
 impl JournalClock {
     pub(super) fn sector(&mut self, header: &SectorHeader) {
-        if header.boot != self.boot {
-            self.offset_s = None;
-            self.boot = header.boot;
-        }
+        self.boot = header.boot;
         if let Some(utc_s) = header.utc_s {
             self.fix(header.tick_ms, utc_s);
         }
@@ -106,14 +104,23 @@ impl JournalClock {
     fn fix(&mut self, tick_ms: u64, utc_s: u64) {
         let (tick_s, utc_s) = (i64::try_from(tick_ms / 1000), i64::try_from(utc_s));
         if let (Ok(tick_s), Ok(utc_s)) = (tick_s, utc_s) {
-            self.offset_s = Some(utc_s - tick_s);
+            self.offsets_s.insert(self.boot, utc_s - tick_s);
         }
     }
 
-    fn utc_s(&self, tick_ms: u64) -> Option<u64> {
-        let tick_s = i64::try_from(tick_ms / 1000).ok()?;
-        u64::try_from(self.offset_s? + tick_s).ok()
+    fn utc_s(&self, moment: Moment) -> Option<u64> {
+        let tick_s = i64::try_from(moment.tick_ms / 1000).ok()?;
+        u64::try_from(self.offsets_s.get(&moment.boot)? + tick_s).ok()
     }
+}
+
+/// A tick of one start of the controller.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub struct Moment {
+    /// Number of the start.
+    pub boot: u16,
+    /// Tick, ms.
+    pub tick_ms: u64,
 }
 
 /// What happened.
@@ -133,8 +140,9 @@ pub struct Summary {
     pub alarms: Vec<AlarmLine>,
     /// Faults by cause.
     pub faults: BTreeMap<u8, FaultLine>,
-    /// First and last UTC seconds known.
+    /// UTC seconds of the first and the last sample, when both are known.
     pub utc_s: Option<(u64, u64)>,
+    ends: Option<(Moment, Moment)>,
     /// Ticks to UTC.
     pub(super) clock: JournalClock,
     plan: Option<Plan>,
@@ -173,7 +181,8 @@ impl Summary {
         self.samples += 1;
         let seen = matches!(taken.resolved.class, ReadingClass::Valid | ReadingClass::Held);
         self.measured += u64::from(seen);
-        self.span(tick_ms);
+        let moment = self.moment(tick_ms);
+        self.ends = Some(self.ends.map_or((moment, moment), |(first, _)| (first, moment)));
         let time_s = match self.last_tick_ms.replace(tick_ms) {
             // A tick counts as long as the one before it at most lasted to it.
             Some(last_ms) if last_ms < tick_ms => seconds(tick_ms - last_ms),
@@ -182,7 +191,6 @@ impl Summary {
         if !seen {
             return;
         }
-        let utc_s = self.clock.utc_s(tick_ms);
         for (&place, &[estimate, outward, _]) in self.places.iter().zip(taken.utilisations) {
             let Some(part) = self.parts.get_mut(place) else { continue };
             if outward > part.peak.utilisation_bound {
@@ -191,8 +199,8 @@ impl Summary {
                     utilisation_bound: outward,
                     utilisation: estimate,
                     level_m,
-                    tick_ms,
-                    utc_s,
+                    moment,
+                    utc_s: None,
                 };
             }
             let band = BAND_EDGES.iter().rposition(|&edge| f64::from(outward) >= edge);
@@ -209,21 +217,17 @@ impl Summary {
             Entry::StartUp { boot, .. } => {
                 self.starts += 1;
                 self.last_tick_ms = None;
-                self.clock.offset_s = None;
                 self.clock.boot = *boot;
             }
-            Entry::ClockFix { utc_s, .. } => {
-                self.clock.fix(tick_ms, *utc_s);
-                self.span(tick_ms);
-            }
+            Entry::ClockFix { utc_s, .. } => self.clock.fix(tick_ms, *utc_s),
             Entry::Acknowledge { .. } => self.acknowledgements += 1,
             Entry::Fault { cause, count, .. } => {
-                let utc_s = self.clock.utc_s(tick_ms);
+                let first = self.moment(tick_ms);
                 let line = self.faults.entry(cause.number()).or_insert(FaultLine {
                     cause: *cause,
                     count: 0,
-                    first_tick_ms: tick_ms,
-                    first_utc_s: utc_s,
+                    first,
+                    first_utc_s: None,
                 });
                 line.count += u64::from(*count);
             }
@@ -244,22 +248,23 @@ impl Summary {
         let (name, kind) = self.name(machine);
         let tick_ms = transition.tick_ms;
         if cause == TransitionCause::Raised {
-            let utc_s = self.clock.utc_s(tick_ms);
+            let moment = self.moment(tick_ms);
             self.alarms.push(AlarmLine {
                 name,
                 kind,
-                tick_ms,
-                utc_s,
+                moment,
+                utc_s: None,
                 utilisation: transition.utilisation,
                 acknowledged_after_ms: None,
                 returned_after_ms: None,
             });
             return;
         }
+        let boot = self.clock.boot;
         let line = self.alarms.iter_mut().rev().find(|line| line.name == name && line.kind == kind);
         let Some(line) = line else { return };
         // Ticks of a later boot say nothing of the time between.
-        let after = tick_ms.checked_sub(line.tick_ms);
+        let after = tick_ms.checked_sub(line.moment.tick_ms).filter(|_| line.moment.boot == boot);
         match (cause, to) {
             (TransitionCause::Acknowledged, _) if line.acknowledged_after_ms.is_none() => {
                 line.acknowledged_after_ms = after;
@@ -287,15 +292,27 @@ impl Summary {
         }
     }
 
-    fn span(&mut self, tick_ms: u64) {
-        if let Some(utc_s) = self.clock.utc_s(tick_ms) {
-            let (first, last) = self.utc_s.unwrap_or((utc_s, utc_s));
-            self.utc_s = Some((first.min(utc_s), last.max(utc_s)));
-        }
+    const fn moment(&self, tick_ms: u64) -> Moment {
+        Moment { boot: self.clock.boot, tick_ms }
     }
 
+    /// Puts UTC to every moment, now that all fixes are known.
     pub(super) fn finish(&mut self) {
         self.plan = None;
+        let clock = &self.clock;
+        for part in &mut self.parts {
+            part.peak.utc_s = clock.utc_s(part.peak.moment);
+        }
+        for line in &mut self.alarms {
+            line.utc_s = clock.utc_s(line.moment);
+        }
+        for line in self.faults.values_mut() {
+            line.first_utc_s = clock.utc_s(line.first);
+        }
+        let ends = self.ends.map(|(first, last)| (clock.utc_s(first), clock.utc_s(last)));
+        if let Some((Some(first), Some(last))) = ends {
+            self.utc_s = Some((first, last));
+        }
     }
 }
 

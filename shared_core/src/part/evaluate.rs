@@ -55,8 +55,15 @@ impl<const N: usize> Loads<N> {
 #[must_use]
 pub fn evaluate<const N: usize>(plan: &Plan, part: &Part, states: &States<N>) -> PartLoads<N> {
     if part.outside == 0 {
-        return judge(part, &states.estimate, &states.upper, &states.lower);
+        return judge(part, states);
     }
+    judge(part, &acting(plan, part, states))
+}
+
+/// The states as they act on one part: those of the tank, less the liquid that stands against the
+/// part's outside.
+#[must_use]
+pub fn acting<const N: usize>(plan: &Plan, part: &Part, states: &States<N>) -> States<N> {
     let mut with = *states;
     for (bit, outside) in plan.outside.iter().enumerate() {
         if part.outside & (1 << bit) == 0 {
@@ -70,15 +77,11 @@ pub fn evaluate<const N: usize>(plan: &Plan, part: &Part, states: &States<N>) ->
         with.upper.add(relief_m, Lane::splat(-(band.low_kg_m3 * g)));
         with.lower.add(Lane::splat(outside.highest_m), Lane::splat(-(band.high_kg_m3 * g)));
     }
-    judge(part, &with.estimate, &with.upper, &with.lower)
+    with
 }
 
-fn judge<const N: usize>(
-    part: &Part,
-    estimate: &Pressure<N>,
-    upper: &Pressure<N>,
-    lower: &Pressure<N>,
-) -> PartLoads<N> {
+fn judge<const N: usize>(part: &Part, states: &States<N>) -> PartLoads<N> {
+    let States { estimate, upper, lower, .. } = states;
     let [estimate_loads, outward, inward] = match &part.geometry {
         Geometry::Course { .. } => [estimate, upper, lower].map(|state| course(part, state)),
         Geometry::Plane { .. } => plane(part, estimate, upper, lower),

@@ -141,7 +141,8 @@ pub(crate) fn value(plan: &Plan, count_16: i32) -> f32 {
 }
 
 /// Half-width of a value, Pa or m.
-fn half_width(plan: &Plan, value: f32) -> f32 {
+#[must_use]
+pub fn half_width(plan: &Plan, value: f32) -> f32 {
     let level = &plan.level;
     let distance_m = crate::lane::ramp(level.reference_m - value);
     level.uncertainty + level.uncertainty_per_distance * distance_m

@@ -23,6 +23,8 @@ pub(super) struct FakeDevice {
     pub(super) busy: u32,
     /// The button has been pressed.
     pub(super) pressed: bool,
+    /// A sector and the offset from which it cannot be read.
+    pub(super) torn: Option<(u32, u16)>,
 }
 
 /// A number sequence for contents (Knuth, TAOCP 3.3.4, table 1, line 26).
@@ -77,6 +79,7 @@ impl FakeDevice {
             acknowledged: 0,
             busy: 0,
             pressed: true,
+            torn: None,
         }
     }
 
@@ -197,6 +200,9 @@ impl Served for FakeDevice {
     }
 
     fn read_sector(&mut self, sequence: u32, offset: u16, out: &mut [u8]) -> Result<(), Refusal> {
+        if self.torn.is_some_and(|(torn, from)| torn == sequence && offset >= from) {
+            return Err(ErrorCode::StorageFailed.into());
+        }
         let sector = self.sectors.get(&sequence).ok_or(ErrorCode::SectorGone)?;
         out.copy_from_slice(&sector[usize::from(offset)..][..out.len()]);
         Ok(())
@@ -206,7 +212,7 @@ impl Served for FakeDevice {
 pub(super) type Shared = Rc<RefCell<FakeDevice>>;
 
 /// The device behind a channel.
-pub(super) fn in_process(device: &Shared) -> impl Port + use<> {
+pub(super) fn in_process(device: &Shared) -> impl Port + std::fmt::Debug + use<> {
     let wire = Wire::new();
     let (mut end, mut server) = (wire.device_end(), Server::new());
     let device = Rc::clone(device);

@@ -244,6 +244,12 @@ impl Plane {
         Self { shape, slope_deg, heights }
     }
 
+    /// Sine of its slope; zero when level.
+    #[must_use]
+    pub fn sine(&self) -> f64 {
+        sine(self.slope_deg)
+    }
+
     /// Whether it is level, so that one height describes it.
     #[must_use]
     pub fn is_level(&self) -> bool {

@@ -1,0 +1,72 @@
+//! The load sheet's numbers: loads, capacities, utilisation and limit levels of every part.
+//!
+//! Loads come from the core's own functions, the ones that the device runs. This room states the
+//! level and what is in the tank ([`Request`]), asks ([`Desk`]), and lays the answers out
+//! ([`Document`]).
+
+mod centre;
+mod desk;
+mod document;
+mod judged;
+mod notes;
+mod part;
+mod request;
+pub mod text;
+
+pub use desk::Desk;
+pub use document::{Capacity, Centre, Document, Judgement, Loads, NotJudged, PartRow, State};
+pub use notes::{FIELD_CHECK, assumed};
+pub use request::{Overrides, Request, RequestError, Source};
+
+use crate::compile;
+use crate::inverse;
+use crate::tank::{Findings, TankFile};
+
+/// What an assessment gives.
+#[derive(Clone, Debug)]
+pub struct Assessment {
+    /// The document.
+    pub document: Document,
+    /// Whether a bound is at or above its alarm threshold now; without `[alarm]` the threshold is
+    /// the capacity itself.
+    pub above_alarm: bool,
+    /// The plan that was asked.
+    pub desk: Desk,
+}
+
+/// Assesses a tank in one state.
+///
+/// # Errors
+/// [`Findings`] when the file holds what a plan cannot.
+pub fn assess(file: &TankFile, request: &Request) -> Result<Assessment, Findings> {
+    let desk = Desk::new(compile::for_desk(file, &request.contents)?, file);
+    let parts = part::rows(file, &desk, request);
+    let not_judged = notes::not_judged(file, &desk);
+    let above_alarm = judged::above_alarm(file, &desk, &parts);
+    let cautions = notes::cautions(file, request, &desk, &parts);
+    let thresholds = file.alarm.as_ref().map(|_| &desk.plan().alarm);
+    let reached =
+        |threshold: Option<f32>| threshold.and_then(|at| inverse::first_reached(&desk, at));
+    let (warn, alarm) = (
+        reached(thresholds.map(|alarm| alarm.warn.utilisation)),
+        reached(thresholds.map(|alarm| alarm.alarm.utilisation)),
+    );
+    let document = Document {
+        schema: "strake.assess/1",
+        tank: file.name.value.clone(),
+        state: State {
+            level_m: request.level_m,
+            density_kg_m3: request.contents.density_kg_m3(),
+            gas_pressure_pa: request.contents.gas_pa[1],
+            temperature_c: request.contents.temperature_c,
+            gravity_m_s2: file.gravity.m_s2(),
+        },
+        governing: judged::governing(&parts),
+        parts,
+        not_judged,
+        warn_level_m: warn,
+        alarm_level_m: alarm,
+        cautions,
+    };
+    Ok(Assessment { document, above_alarm, desk })
+}

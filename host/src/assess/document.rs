@@ -1,0 +1,162 @@
+//! The document `strake.assess/1`. Names of keys are fixed; all quantities are SI, unrounded.
+//!
+//! Numbers of the load path stay f32 and are written with the fewest digits that give them back.
+
+use serde::Serialize;
+
+/// The whole document.
+#[derive(Clone, Debug, Serialize)]
+pub struct Document {
+    /// `strake.assess/1`.
+    pub schema: &'static str,
+    /// Name of the tank.
+    pub tank: String,
+    /// The state that was assessed.
+    pub state: State,
+    /// The parts in the order of the file.
+    pub parts: Vec<PartRow>,
+    /// Name of the part with the lowest limit level; none when no part is judged.
+    pub governing: Option<String>,
+    /// What is not judged.
+    pub not_judged: Vec<NotJudged>,
+    /// Level at which the first bound reaches the warn threshold; none when it is not reached, or
+    /// the file has no `[alarm]`.
+    pub warn_level_m: Option<f32>,
+    /// The same for the alarm threshold.
+    pub alarm_level_m: Option<f32>,
+    /// What the reader must know beside the numbers.
+    pub cautions: Vec<String>,
+}
+
+/// The state of the estimate.
+#[derive(Clone, Copy, Debug, Serialize)]
+pub struct State {
+    /// Surface above the datum.
+    pub level_m: f64,
+    /// Density of the top liquid.
+    pub density_kg_m3: f64,
+    /// Gas above it, gauge.
+    pub gas_pressure_pa: f64,
+    /// Its temperature.
+    pub temperature_c: f64,
+    /// Gravity at the site.
+    pub gravity_m_s2: f64,
+}
+
+/// One part.
+#[derive(Clone, Debug, Serialize)]
+pub struct PartRow {
+    /// Its name.
+    pub name: String,
+    /// course, panel or hatch.
+    pub kind: &'static str,
+    /// Of the estimate.
+    pub loads: Loads,
+    /// Largest signed loads that the reading allows.
+    pub loads_outward_bound: Loads,
+    /// Least signed loads that the reading allows.
+    pub loads_inward_bound: Loads,
+    /// What it may carry outwards.
+    pub capacity: Vec<Capacity>,
+    /// What it may carry inwards, as a positive number.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub capacity_inward: Vec<Capacity>,
+    /// How the loads compare; empty of a part without capacities.
+    #[serde(flatten)]
+    pub judgement: Judgement,
+}
+
+/// Loads under one state. Only what the part has.
+#[derive(Clone, Debug, Serialize)]
+pub struct Loads {
+    /// At the design point of a course, else the largest on the part; of the inward bound the least.
+    pub pressure_pa: f32,
+    /// Hoop tension of a course.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub hoop_tension_n_m: Option<f32>,
+    /// Force on a plane part, positive from the liquid outwards.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub force_n: Option<f32>,
+    /// Centre of pressure of a plane part; of the estimate only.
+    #[serde(flatten)]
+    pub centre: Option<Centre>,
+    /// About the level line through the centroid, positive when it pushes the upper side outward.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub moment_centroid_n_m: Option<f32>,
+    /// Largest bolt share; of the inward bound the least.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub bolt_n: Option<f32>,
+}
+
+/// Where the force acts; none when the pressures nearly cancel and only a couple is left.
+#[derive(Clone, Copy, Debug, Serialize)]
+pub struct Centre {
+    /// Height above the datum; may lie outside the part.
+    pub centre_of_pressure_m: Option<f64>,
+    /// From the centroid down the slope.
+    pub centre_of_pressure_slope_m: Option<f64>,
+}
+
+/// One capacity.
+#[derive(Clone, Debug, Serialize)]
+pub struct Capacity {
+    /// The load that it is compared with, by its name in [`Loads`].
+    pub load: &'static str,
+    /// Its value; of a design state the pressure at the part's lowest point.
+    pub value: f32,
+    /// Where it comes from.
+    pub basis: String,
+}
+
+/// Loads against capacities.
+#[derive(Clone, Debug, Default, Serialize)]
+pub struct Judgement {
+    /// Of the estimate, outward.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub utilisation: Option<f32>,
+    /// Of the outward bound.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub utilisation_bound: Option<f32>,
+    /// Of the inward bound.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub utilisation_inward: Option<f32>,
+    /// What limits the level.
+    #[serde(flatten)]
+    pub limits: Option<Limits>,
+    /// The lowest level that the inward capacity allows.
+    #[serde(flatten)]
+    pub lowest: Option<Lowest>,
+    /// Thickness of a plate that brings the utilisation of the estimate to one in this state,
+    /// corrosion allowance included.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub thickness_for_state_m: Option<f64>,
+}
+
+/// Limit levels.
+#[derive(Clone, Debug, Serialize)]
+pub struct Limits {
+    /// What limits the level of the estimate.
+    pub limited_by: &'static str,
+    /// For the estimate; none when no level is admissible.
+    pub limit_level_m: Option<f32>,
+    /// For the highest density and gas.
+    pub limit_level_bound_m: Option<f32>,
+    /// Admissible levels, from and to.
+    pub limit_intervals_m: Vec<[f32; 2]>,
+}
+
+/// The lowest level.
+#[derive(Clone, Copy, Debug, Serialize)]
+pub struct Lowest {
+    /// None when no level is admissible.
+    pub lowest_level_m: Option<f32>,
+}
+
+/// What is not judged.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize)]
+pub struct NotJudged {
+    /// Name of the part, or the stretch of the shell.
+    pub name: String,
+    /// Why.
+    pub why: String,
+}

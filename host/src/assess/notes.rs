@@ -1,0 +1,166 @@
+//! What is not judged, and what the reader must know beside the numbers.
+
+use super::desk::Desk;
+use super::document::{NotJudged, PartRow};
+use super::judged;
+use super::request::{Request, Source};
+use crate::tank::{Capacity, Hatch, Opens, Part as Stated, Rating, TankFile};
+use crate::units::Quantity::{Length, Temperature};
+use crate::units::format_si;
+use strake_core::lane::Lane;
+use strake_core::part::{Part, evaluate};
+
+/// The line under every output that shows a load.
+pub const FIELD_CHECK: &str = "field check: it replaces no licensed inspection and is no overfill \
+                               prevention system";
+
+/// What is not judged, part by part, then the bare stretches of the shell.
+pub(super) fn not_judged(file: &TankFile, desk: &Desk) -> Vec<NotJudged> {
+    let mut found = Vec::new();
+    for (stated, part) in file.parts.iter().zip(&desk.plan().parts) {
+        let mut note = |why: String| found.push(NotJudged { name: stated.name().to_owned(), why });
+        for reason in reasons(stated.capacity()) {
+            note(format!("outward: {reason}"));
+        }
+        for reason in reasons(stated.capacity_inward()) {
+            note(format!("inward: {reason}"));
+        }
+        if let Stated::Hatch(hatch) = stated {
+            hatch_notes(hatch, &mut note);
+        }
+        let said = !stated.capacity_inward().is_empty();
+        if !said && may_turn_inward(desk, part) {
+            note("inward: the load may turn inward and no inward capacity is stated".to_owned());
+        }
+    }
+    for (low_m, high_m) in file.uncovered_shell() {
+        found.push(NotJudged {
+            name: format!("shell {} to {}", format_si(low_m, Length), format_si(high_m, Length)),
+            why: "no course covers it".to_owned(),
+        });
+    }
+    found
+}
+
+fn reasons(ratings: &[Rating]) -> impl Iterator<Item = &str> {
+    ratings.iter().filter_map(|rating| match &rating.capacity.value {
+        Capacity::None { reason } => Some(reason.as_str()),
+        _ => None,
+    })
+}
+
+/// A cover is held by something and is something: what has no capacity is not judged.
+fn hatch_notes(hatch: &Hatch, note: &mut impl FnMut(String)) {
+    let has = |pick: fn(&Capacity) -> bool| {
+        hatch.capacity.iter().any(|rating| pick(&rating.capacity.value))
+    };
+    if has(|capacity| matches!(capacity, Capacity::None { .. } | Capacity::DesignedFor { .. })) {
+        return;
+    }
+    if !has(|capacity| matches!(capacity, Capacity::Force { .. } | Capacity::Pressure { .. })) {
+        note("outward: the cover plate, no capacity is stated".to_owned());
+    }
+    if hatch.opens.value == Opens::Outward && !has(|one| matches!(one, Capacity::Bolt { .. })) {
+        let what = if hatch.bolts.is_some() { "the bolts" } else { "what secures the cover" };
+        note(format!("outward: {what}, no capacity is stated"));
+    }
+}
+
+/// Whether the least load on an empty tank is an inward one.
+fn may_turn_inward(desk: &Desk, part: &Part) -> bool {
+    let empty = desk.at_true_level(Lane([desk.range().low_m]));
+    let inward = evaluate(desk.plan(), part, &empty).inward;
+    inward.pressure_pa.lane(0) < 0.0 || inward.force_n.lane(0) < 0.0
+}
+
+/// The cautions, the most pressing first.
+pub(super) fn cautions(
+    file: &TankFile,
+    request: &Request,
+    desk: &Desk,
+    parts: &[PartRow],
+) -> Vec<String> {
+    let mut found = Vec::new();
+    if file.is_provisional() {
+        found.push(format!("PROVISIONAL: {}", assumed(file).join("; ")));
+    }
+    let (outward, inward) = judged::thresholds(file, desk);
+    for (row, side, bound) in judged::over(file, desk, parts) {
+        let threshold = if side == "outward" { outward } else { inward };
+        let of = if file.alarm.is_some() { "its alarm threshold" } else { "its capacity" };
+        found.push(format!(
+            "{}: the {side} bound of the utilisation, {bound:.3}, is at or above {of}, {threshold}",
+            row.name
+        ));
+    }
+    if parts.iter().all(|row| row.judgement.utilisation_bound.is_none()) {
+        found.push("no part is judged outward".to_owned());
+    }
+    state_cautions(file, request, &mut found);
+    file_cautions(file, &mut found);
+    found.push(FIELD_CHECK.to_owned());
+    found
+}
+
+/// Every assumed capacity with the part that it stands for.
+#[must_use]
+pub fn assumed(file: &TankFile) -> Vec<String> {
+    let mut found = Vec::new();
+    for part in &file.parts {
+        for rating in part.capacity().iter().chain(part.capacity_inward()) {
+            if let Some(basis) = rating.basis.as_ref().filter(|_| rating.is_assumed()) {
+                found.push(format!("{}: {}", part.name(), basis.value.text));
+            }
+        }
+    }
+    found
+}
+
+fn state_cautions(file: &TankFile, request: &Request, found: &mut Vec<String>) {
+    let level = format_si(request.level_m, Length);
+    match request.level_source {
+        Source::Overflow => {
+            found.push(format!("no level stated: taken at the overflow, {level}"));
+        }
+        Source::ShellTop => {
+            found.push(format!("no level stated: taken at the shell top, {level}"));
+        }
+        Source::File | Source::Override => {
+            let overflow = file.fill.overflow_m.filter(|top| request.level_m > top.value);
+            if let Some(overflow) = overflow {
+                let top = format_si(overflow.value, Length);
+                found.push(format!("the level, {level}, stands above the overflow, {top}"));
+            }
+        }
+    }
+    let liquid = &request.contents.liquid;
+    let (cold, hot) = (liquid.coldest_c.value, liquid.hottest_c.value);
+    if !(cold..=hot).contains(&request.contents.temperature_c) {
+        found.push(format!(
+            "the temperature, {}, lies outside the liquid's range, {} to {}",
+            format_si(request.contents.temperature_c, Temperature),
+            format_si(cold, Temperature),
+            format_si(hot, Temperature)
+        ));
+    }
+}
+
+fn file_cautions(file: &TankFile, found: &mut Vec<String>) {
+    for part in &file.parts {
+        let as_new = part.capacity().iter().any(|rating| {
+            matches!(rating.capacity.value, Capacity::DesignedFor { remaining: None, .. })
+        });
+        if as_new {
+            found.push(format!("{}: designed-for is taken as new, no loss is stated", part.name()));
+        }
+    }
+    if file.level.is_none() {
+        found.push("no [level]: the bounds hold no uncertainty of a level sensor".to_owned());
+    }
+    if file.alarm.is_none() {
+        found.push("no [alarm]: bounds are compared with the capacity itself".to_owned());
+    }
+    if file.vessel.height_m().is_none() && file.fill.overflow_m.is_none() {
+        found.push("no shell and no overflow: levels are looked at up to 200 m".to_owned());
+    }
+}

@@ -1,0 +1,139 @@
+//! The table of limit levels, and the levels at which thresholds are reached.
+
+use super::{Sheet, reading};
+use crate::assess::document::PartRow;
+use crate::inverse::{Step, rounded_down, rounded_up};
+use crate::page::Page;
+use crate::units::Quantity::Length;
+use crate::units::UnitSystem;
+
+/// Columns of a name, of an unrounded and of a rounded level.
+const NAME: usize = 26;
+const UNROUNDED: usize = 13;
+const ROUNDED: usize = 16;
+
+const fn step(units: UnitSystem) -> Step {
+    match units {
+        UnitSystem::Si => Step::TenMillimetres,
+        UnitSystem::UsCustomary => Step::EighthInch,
+    }
+}
+
+/// A level as calculated.
+fn unrounded(units: UnitSystem, level_m: f32) -> String {
+    let level_m = f64::from(level_m);
+    match units {
+        UnitSystem::Si => format!("{level_m:.6} m"),
+        UnitSystem::UsCustomary => format!("{:.5} ft", level_m / 0.3048),
+    }
+}
+
+/// A rounded level.
+fn stepped(units: UnitSystem, level_m: f64) -> String {
+    match units {
+        UnitSystem::Si => format!("{level_m:.2} m"),
+        UnitSystem::UsCustomary => crate::units::format_us(level_m, Length),
+    }
+}
+
+fn down(units: UnitSystem, level_m: Option<f32>) -> String {
+    level_m.map_or_else(
+        || "no level".to_owned(),
+        |level_m| stepped(units, rounded_down(level_m, step(units))),
+    )
+}
+
+pub(super) fn limits(sheet: &Sheet<'_>, page: &mut Page) {
+    let rows = &sheet.assessment.document.parts;
+    let judged: Vec<&PartRow> = rows
+        .iter()
+        .filter(|row| row.judgement.limits.is_some() || row.judgement.lowest.is_some())
+        .collect();
+    if judged.is_empty() {
+        return;
+    }
+    let units = sheet.units;
+    page.blank();
+    let with_lowest = judged.iter().any(|row| row.judgement.lowest.is_some());
+    let line = |name: &str, unrounded: &str, cells: [&str; 3], by: &str| {
+        let [limit, bound, lowest] = cells;
+        let lowest = if with_lowest { format!("{lowest:>ROUNDED$}") } else { String::new() };
+        format!(
+            "{name:<NAME$}{unrounded:>UNROUNDED$}{limit:>ROUNDED$}{bound:>ROUNDED$}{lowest}  {by}"
+        )
+    };
+    let head = ["rounded down", "of the bound", "lowest"];
+    page.heading(&line("Calculated limit level", "unrounded", head, "limited by"));
+    for row in judged {
+        let limits = row.judgement.limits.as_ref();
+        let level_m = limits.and_then(|limits| limits.limit_level_m);
+        let exact = level_m.map_or_else(|| "-".to_owned(), |level_m| unrounded(units, level_m));
+        let (limit, bound, by) = match limits {
+            Some(limits) => (
+                down(units, limits.limit_level_m),
+                down(units, limits.limit_level_bound_m),
+                limits.limited_by.replace('_', " "),
+            ),
+            None => ("-".to_owned(), "-".to_owned(), "not judged outward".to_owned()),
+        };
+        let lowest = match &row.judgement.lowest {
+            None => "-".to_owned(),
+            Some(lowest) => lowest.lowest_level_m.map_or_else(
+                || "no level".to_owned(),
+                |level_m| stepped(units, rounded_up(level_m, step(units))),
+            ),
+        };
+        page.line(&line(&format!("  {}", row.name), &exact, [&limit, &bound, &lowest], &by));
+    }
+    let step_name = step(units).name();
+    page.paragraph(
+        "  ",
+        &format!(
+            "Levels are rounded down to {step_name}, lowest levels up. The bound has the highest \
+             density and gas pressure; it holds no uncertainty of a sensor."
+        ),
+    );
+    governing(sheet, page, rows);
+}
+
+fn governing(sheet: &Sheet<'_>, page: &mut Page, rows: &[PartRow]) {
+    let name = sheet.assessment.document.governing.as_ref();
+    let Some(row) = name.and_then(|name| rows.iter().find(|row| row.name == *name)) else {
+        return;
+    };
+    let Some(limits) = &row.judgement.limits else { return };
+    let by = limits.limited_by.replace('_', " ");
+    page.blank();
+    let text = match limits.limit_level_m {
+        None => format!("{}, no level is within its capacity (limited by {by})", row.name),
+        Some(_) => {
+            let limit = down(sheet.units, limits.limit_level_m);
+            let not = if by == "overflow" || by == "shell top" { ", not strength" } else { "" };
+            format!("{}, calculated limit level {limit} (limited by {by}{not})", row.name)
+        }
+    };
+    page.heading(&format!("Governing: {text}"));
+}
+
+/// Where the first bound reaches the thresholds of `[alarm]`.
+pub(super) fn thresholds(sheet: &Sheet<'_>, page: &mut Page) {
+    let Some(alarms) = &sheet.file.alarm else { return };
+    page.blank();
+    page.heading("Thresholds, as the sensor sees them");
+    let document = &sheet.assessment.document;
+    let pairs = [
+        ("warn", alarms.warn.utilisation.value, document.warn_level_m),
+        ("alarm", alarms.alarm.utilisation.value, document.alarm_level_m),
+    ];
+    for (name, utilisation, level_m) in pairs {
+        let at = match level_m {
+            None => "not reached".to_owned(),
+            Some(level_m) => {
+                let read = reading(sheet, f64::from(level_m));
+                let read = if read.is_empty() { read } else { format!(" (reads {read})") };
+                format!("first reached at {}{read}", sheet.show(level_m, Length))
+            }
+        };
+        page.paragraph("  ", &format!("{name:<6} bound at {utilisation} of a capacity: {at}"));
+    }
+}

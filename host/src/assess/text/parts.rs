@@ -1,0 +1,175 @@
+//! The table of loads, part by part.
+
+use super::Sheet;
+use crate::assess::document::{Capacity, Loads, PartRow};
+use crate::page::{Page, WIDTH, wrap};
+use crate::tank::{self, Part as Stated, Plane, Rating, Shape};
+use crate::units::Quantity::{self, Density, Force, Length, LineLoad, Moment, Pressure, Ratio};
+
+/// Columns of a label, of one number, and of the gap before the capacity.
+const LABEL: usize = 25;
+const NUMBER: usize = 13;
+const CAPACITY_AT: usize = LABEL + 3 * NUMBER + 2;
+
+pub(super) fn loads(sheet: &Sheet<'_>, page: &mut Page) {
+    page.blank();
+    page.heading(&line("Loads", ["estimate", "bound", "inward"].map(str::to_owned), "capacity"));
+    let rows = &sheet.assessment.document.parts;
+    for (stated, row) in sheet.file.parts.iter().zip(rows) {
+        page.blank();
+        page.paragraph("", &describe(sheet, stated));
+        part(sheet, page, stated, row);
+    }
+}
+
+/// The part in one line.
+fn describe(sheet: &Sheet<'_>, stated: &Stated) -> String {
+    let heights = stated.heights();
+    let show = |value: f64| sheet.show(value, Length);
+    let (kind, name) = (stated.kind().as_str(), stated.name());
+    let span = format!("{} to {}", show(heights.bottom_m), show(heights.top_m));
+    match stated {
+        Stated::Course(course) => {
+            let diameter = match sheet.file.vessel {
+                tank::Vessel::Cylinder { diameter_m, .. } => show(diameter_m.value),
+                _ => String::new(),
+            };
+            let rule = course.design_point.rule.as_ref();
+            let rule = rule.map_or_else(String::new, |rule| format!(" ({})", rule.value));
+            let point = show(course.design_height_m());
+            format!("{name}, {kind}: {span}, diameter {diameter}, design point {point}{rule}")
+        }
+        Stated::Panel(panel) => format!("{name}, {kind}: {}", surface(sheet, &panel.plane, &span)),
+        Stated::Hatch(hatch) => {
+            let bolts = hatch.bolts.map_or_else(String::new, |bolts| {
+                let circle = show(bolts.value.circle_diameter_m);
+                format!(", {} bolts on {circle}", bolts.value.count)
+            });
+            format!("{name}, {kind}: {} to the gasket{bolts}", surface(sheet, &hatch.sealed, &span))
+        }
+    }
+}
+
+fn surface(sheet: &Sheet<'_>, plane: &Plane, span: &str) -> String {
+    let show = |value: f64| sheet.show(value, Length);
+    let outline = match plane.shape {
+        Shape::Circle { diameter_m } => format!("circle {}", show(diameter_m)),
+        Shape::Rectangle { width_m, length_m } => {
+            format!("rectangle {} x {}", show(width_m), show(length_m))
+        }
+    };
+    let at = if plane.is_level() { show(plane.heights.centre_m) } else { span.to_owned() };
+    let slope = sheet.show(plane.slope_deg, Quantity::AngleDegrees);
+    format!("{at}, slope {slope}, {outline}")
+}
+
+fn part(sheet: &Sheet<'_>, page: &mut Page, stated: &Stated, row: &PartRow) {
+    let three = |pick: fn(&Loads) -> Option<f32>, quantity: Quantity| {
+        [&row.loads, &row.loads_outward_bound, &row.loads_inward_bound].map(|loads| {
+            pick(loads).map_or_else(|| "-".to_owned(), |value| sheet.show(value, quantity))
+        })
+    };
+    let mut put = |label: &str, cells: [String; 3], key: &str| {
+        let capacities = capacities(sheet, stated, row, key);
+        let mut capacities = capacities.iter();
+        let first = capacities.next().map_or("", String::as_str);
+        page.line(&line(&format!("  {label}"), cells, first));
+        for more in capacities {
+            page.line(&format!("{:CAPACITY_AT$}{more}", ""));
+        }
+    };
+    let course = matches!(stated, Stated::Course(_));
+    let pressure = if course { "pressure, design point" } else { "pressure, largest" };
+    put(pressure, three(|loads| Some(loads.pressure_pa), Pressure), "pressure_pa");
+    if course {
+        put("hoop tension", three(|loads| loads.hoop_tension_n_m, LineLoad), "hoop_tension_n_m");
+    } else {
+        put("force", three(|loads| loads.force_n, Force), "force_n");
+        put("moment about centroid", three(|loads| loads.moment_centroid_n_m, Moment), "");
+    }
+    if let Some(centre) = &row.loads.centre {
+        let height = centre.centre_of_pressure_m;
+        let height = height.map_or_else(|| "none".to_owned(), |at| sheet.show(at, Length));
+        put("centre of pressure", [height, String::new(), String::new()], "");
+    }
+    if row.loads_inward_bound.bolt_n.is_some() {
+        put("bolt, largest share", three(|loads| loads.bolt_n, Force), "bolt_n");
+    }
+    let judged = &row.judgement;
+    let used = [judged.utilisation, judged.utilisation_bound, judged.utilisation_inward];
+    let used = used.map(|one| one.map_or_else(|| "-".to_owned(), |u| format!("{u:.3}")));
+    put("utilisation", used, "");
+    if let Some(thickness_m) = judged.thickness_for_state_m {
+        let thickness = thickness_up(sheet, thickness_m);
+        put("thickness for this state", [thickness, String::new(), String::new()], "");
+    }
+}
+
+/// A thickness rounded up: to 0.01 mm, or 0.001 in.
+fn thickness_up(sheet: &Sheet<'_>, thickness_m: f64) -> String {
+    let steps_per_m = match sheet.units {
+        crate::units::UnitSystem::Si => 1e5,
+        crate::units::UnitSystem::UsCustomary => 1e3 / 0.0254,
+    };
+    sheet.show((thickness_m * steps_per_m).ceil() / steps_per_m, Length)
+}
+
+fn line(label: &str, cells: [String; 3], capacity: &str) -> String {
+    let [a, b, c] = cells;
+    format!("{label:<LABEL$}{a:>NUMBER$}{b:>NUMBER$}{c:>NUMBER$}  {capacity}")
+}
+
+/// The capacities that a load is compared with, in lines that fit beside it.
+fn capacities(sheet: &Sheet<'_>, stated: &Stated, row: &PartRow, key: &str) -> Vec<String> {
+    let mut lines = Vec::new();
+    let lists = [
+        ("", stated.capacity(), &row.capacity),
+        ("inward ", stated.capacity_inward(), &row.capacity_inward),
+    ];
+    for (side, ratings, values) in lists {
+        let stated = ratings.iter().filter(|rating| rating.basis.is_some());
+        for (rating, value) in stated.zip(values).filter(|(_, value)| value.load == key) {
+            let text = format!("{side}{}", capacity(sheet, rating, value));
+            lines.extend(wrap(&text, WIDTH - CAPACITY_AT));
+        }
+    }
+    lines
+}
+
+fn capacity(sheet: &Sheet<'_>, rating: &Rating, value: &Capacity) -> String {
+    let basis = &value.basis;
+    let shown = |quantity| sheet.show(value.value, quantity);
+    match &rating.capacity.value {
+        tank::Capacity::Plate {
+            thickness_m,
+            corrosion_allowance_m,
+            allowable_stress_pa,
+            joint_efficiency,
+        } => format!(
+            "{} = {} x {} x ({} - {}), {basis}",
+            shown(LineLoad),
+            sheet.show(allowable_stress_pa.value, Pressure),
+            joint_efficiency.value,
+            sheet.show(thickness_m.value, Length),
+            sheet.show(corrosion_allowance_m.value, Length)
+        ),
+        tank::Capacity::DesignedFor { level_m, density_kg_m3, gas_pa, remaining } => {
+            let share = remaining.map_or_else(
+                || "as new".to_owned(),
+                |share| format!("remaining {}", sheet.show(share.value, Ratio)),
+            );
+            format!(
+                "designed for {} of {}, gas {}, {share}, {basis}",
+                sheet.show(level_m.value, Length),
+                sheet.show(density_kg_m3.value, Density),
+                sheet.show(gas_pa.value, Pressure)
+            )
+        }
+        tank::Capacity::HoopTension { .. } => format!("{}, {basis}", shown(LineLoad)),
+        tank::Capacity::Bolt { .. } | tank::Capacity::Force { .. } => {
+            format!("{}, {basis}", shown(Force))
+        }
+        tank::Capacity::Pressure { .. } => format!("{}, {basis}", shown(Pressure)),
+        tank::Capacity::None { .. } => String::new(),
+    }
+}

@@ -1,0 +1,149 @@
+//! `strake seal`: the plan that a device loads.
+
+use super::tank_file;
+use crate::assess::{Desk, FIELD_CHECK, assumed};
+use crate::compile::{self, fingerprint};
+use crate::exit::Exit;
+use crate::failure::Failure;
+use crate::inverse::first_reached;
+use crate::output_file;
+use crate::page::Page;
+use crate::plan_file;
+use crate::tank::TankFile;
+use crate::term::{Format, Term};
+use crate::units::Quantity::Length;
+use crate::units::format;
+use serde::Serialize;
+use std::path::PathBuf;
+use strake_core::plan::PlanError;
+
+/// What `strake seal` is asked.
+#[derive(Debug, clap::Args)]
+#[command(after_help = "Examples:\n  \
+    strake seal day_tank.toml -o day_tank.plan\n  \
+    strake seal day_tank.toml -o day_tank.plan --serial 1780000000")]
+pub struct Args {
+    /// The tank file
+    #[arg(value_name = "TANK")]
+    pub tank: PathBuf,
+    /// The plan file to write
+    #[arg(short, long, value_name = "FILE")]
+    pub output: PathBuf,
+    /// Replace the file if it exists
+    #[arg(long)]
+    pub force: bool,
+    /// Serial of the plan, UTC seconds; else the time now
+    #[arg(long, value_name = "SECONDS")]
+    pub serial: Option<u64>,
+}
+
+/// The document `strake.seal/1`.
+#[derive(Debug, Serialize)]
+struct Document {
+    schema: &'static str,
+    tank: String,
+    file: String,
+    signed: bool,
+    provisional: Vec<String>,
+    fingerprint: String,
+    serial: u64,
+    device_id: Option<String>,
+    bytes: usize,
+    parts: usize,
+    warn_utilisation: f32,
+    warn_level_m: Option<f32>,
+    alarm_utilisation: f32,
+    alarm_level_m: Option<f32>,
+    cautions: Vec<String>,
+}
+
+/// Seals the plan.
+///
+/// # Errors
+/// When the file is invalid or lacks what the device needs, when the output exists, or when it
+/// cannot be written.
+pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
+    let file = tank_file::read(&args.tank)?;
+    let compiled = compile::for_device(&file)?;
+    let serial = match args.serial {
+        Some(serial) => serial,
+        None => now()?,
+    };
+    let bytes = compiled.encode(serial).map_err(|error| not_encoded(&file, error))?;
+    let sealed = plan_file::write(&bytes).map_err(|error| not_encoded(&file, error))?;
+    output_file::write(&args.output, &sealed, args.force)?;
+    let alarm = compiled.plan.alarm;
+    let parts = compiled.plan.parts.len();
+    let desk = Desk::new(compiled, &file);
+    let document = Document {
+        schema: "strake.seal/1",
+        tank: file.name.value.clone(),
+        file: args.output.display().to_string(),
+        signed: false,
+        provisional: assumed(&file),
+        fingerprint: format!("{:016x}", fingerprint(&bytes)),
+        serial,
+        device_id: file.device_id.as_ref().map(|id| id.value.clone()),
+        bytes: bytes.len(),
+        parts,
+        warn_utilisation: alarm.warn.utilisation,
+        warn_level_m: first_reached(&desk, alarm.warn.utilisation),
+        alarm_utilisation: alarm.alarm.utilisation,
+        alarm_level_m: first_reached(&desk, alarm.alarm.utilisation),
+        cautions: vec![
+            "unsigned: a device cannot tell who made this plan".to_owned(),
+            FIELD_CHECK.to_owned(),
+        ],
+    };
+    match term.settings().format {
+        Format::Json => term.document(&document)?,
+        Format::Text => term.result(&text(&document, term))?,
+    }
+    Ok(Exit::Done)
+}
+
+/// UTC seconds now.
+fn now() -> Result<u64, Failure> {
+    u64::try_from(jiff::Timestamp::now().as_second()).map_err(|_| {
+        let message = "the clock of this computer stands before 1970";
+        Failure::new(Exit::Usage, "clock", message, "set the clock, or give --serial")
+    })
+}
+
+fn not_encoded(file: &TankFile, error: PlanError) -> Failure {
+    let message = format!("{}: {error}", file.path());
+    let hint = "leave out parts that others outlast, or shorten names";
+    Failure::new(Exit::InvalidInput, "plan", message, hint)
+}
+
+fn text(document: &Document, term: &Term) -> String {
+    let units = term.settings().units;
+    let mut page = Page::new(term.colour_out());
+    page.heading(&format!("{}: plan written to {}, unsigned", document.tank, document.file));
+    if !document.provisional.is_empty() {
+        page.heading("PROVISIONAL: these capacities are assumed");
+        for one in &document.provisional {
+            page.paragraph("  - ", one);
+        }
+    }
+    let device = document.device_id.as_deref().unwrap_or("any");
+    page.line(&format!("  fingerprint  {}", document.fingerprint));
+    page.line(&format!("  serial       {}", document.serial));
+    page.line(&format!("  device       {device}"));
+    page.line(&format!("  size         {} bytes, {} parts", document.bytes, document.parts));
+    let pairs = [
+        ("warn", document.warn_utilisation, document.warn_level_m),
+        ("alarm", document.alarm_utilisation, document.alarm_level_m),
+    ];
+    for (name, utilisation, level_m) in pairs {
+        let at = level_m.map_or_else(
+            || "not reached up to the overflow".to_owned(),
+            |level_m| format!("first reached at {}", format(f64::from(level_m), Length, units)),
+        );
+        page.line(&format!("  {name:<12} {utilisation} of a capacity, {at}"));
+    }
+    for caution in &document.cautions {
+        page.paragraph("", &format!("{caution}."));
+    }
+    page.into_text()
+}

@@ -1,0 +1,234 @@
+//! Limit levels of a part, and the levels at which thresholds are reached.
+
+use super::{Criterion, Interval, intervals};
+use crate::assess::Desk;
+use strake_core::lane::Lane;
+use strake_core::part::{Capacities, Part, PartLoads, evaluate};
+use strake_core::plan::{LevelSensor, Plan};
+
+/// What ends the way up.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum LimitedBy {
+    /// A pressure, hoop tension or force.
+    Strength,
+    /// What secures the cover.
+    Securing,
+    /// A state that the part was designed for.
+    DesignState,
+    /// The least level that the inward load asks for lies above the limit.
+    Inward,
+    /// The gas alone is too much.
+    Gas,
+    /// The overflow comes first.
+    Overflow,
+    /// The shell top comes first.
+    ShellTop,
+}
+
+impl LimitedBy {
+    /// The word that stands in documents.
+    #[must_use]
+    pub const fn as_str(self) -> &'static str {
+        match self {
+            Self::Strength => "strength",
+            Self::Securing => "securing",
+            Self::DesignState => "design_state",
+            Self::Inward => "inward",
+            Self::Gas => "gas",
+            Self::Overflow => "overflow",
+            Self::ShellTop => "shell_top",
+        }
+    }
+}
+
+/// Highest level of one part.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Limit {
+    /// The level, m; `None` when no level is admissible.
+    pub level_m: Option<f32>,
+    /// What limits it.
+    pub limited_by: LimitedBy,
+}
+
+/// Levels at which a part is within its capacities.
+#[derive(Clone, Debug, PartialEq)]
+pub struct PartLimits {
+    /// Nominal density and gas, interfaces held.
+    pub estimate: Limit,
+    /// Highest density and gas, interfaces at their highest.
+    pub bound: Limit,
+    /// Levels at which the estimate keeps the outward and the bound the inward capacity.
+    pub intervals: Vec<Interval>,
+    /// Level from which upward the inward capacity is kept, of a part that has one: `Some(None)`
+    /// when there is none.
+    pub lowest_m: Option<Option<f32>>,
+}
+
+/// The utilisation that is asked for.
+#[derive(Clone, Copy)]
+enum Which {
+    Estimate,
+    Bound,
+    Inward,
+}
+
+/// A utilisation of one part at true levels of the surface, at or below one.
+struct Within<'a> {
+    desk: &'a Desk,
+    part: &'a Part,
+    which: Which,
+}
+
+impl Criterion for Within<'_> {
+    fn holds<const N: usize>(&self, level_m: Lane<N>) -> [bool; N] {
+        let states = self.desk.at_true_level(level_m);
+        let loads: PartLoads<N> = evaluate(self.desk.plan(), self.part, &states);
+        let utilisation = match self.which {
+            Which::Estimate => loads.utilisation,
+            Which::Bound => loads.utilisation_bound,
+            Which::Inward => loads.utilisation_inward,
+        };
+        utilisation.0.map(|u| u <= 1.0)
+    }
+}
+
+/// Two criteria at once.
+struct Both<A, B>(A, B);
+
+impl<A: Criterion, B: Criterion> Criterion for Both<A, B> {
+    fn holds<const N: usize>(&self, level_m: Lane<N>) -> [bool; N] {
+        let mut second = self.1.holds(level_m).into_iter();
+        self.0.holds(level_m).map(|first| second.next().unwrap_or(false) && first)
+    }
+}
+
+/// The limits of a part with an outward capacity; `None` for one without.
+#[must_use]
+pub fn of_part(desk: &Desk, part: &Part) -> Option<PartLimits> {
+    if !part.judged_outward() && !part.judged_inward() {
+        return None;
+    }
+    let within = |which| Within { desk, part, which };
+    let find = |criterion: &Within<'_>| intervals(criterion, desk.range(), kinks(desk, part));
+    let lowest_m = part.judged_inward().then(|| {
+        let found = find(&within(Which::Inward));
+        found.last().filter(|last| last.high_m >= desk.range().high_m).map(|last| last.low_m)
+    });
+    let both = Both(within(Which::Estimate), within(Which::Inward));
+    let limit = |which| {
+        let outward = outward_limit(desk, part, which);
+        match (outward.level_m, lowest_m) {
+            (Some(_), Some(None)) => Limit { level_m: None, limited_by: LimitedBy::Inward },
+            (Some(high_m), Some(Some(low_m))) if low_m > high_m => {
+                Limit { level_m: None, limited_by: LimitedBy::Inward }
+            }
+            _ => outward,
+        }
+    };
+    Some(PartLimits {
+        estimate: limit(Which::Estimate),
+        bound: limit(Which::Bound),
+        intervals: intervals(&both, desk.range(), kinks(desk, part)),
+        lowest_m,
+    })
+}
+
+/// The least of the limits that each capacity sets for itself, and which one that is.
+fn outward_limit(desk: &Desk, part: &Part, which: Which) -> Limit {
+    let range = desk.range();
+    let mut least = Limit { level_m: Some(range.high_m), limited_by: desk.limited_at_top() };
+    for (kind, alone) in one_by_one(part) {
+        let criterion = Within { desk, part: &alone, which };
+        let found = intervals(&criterion, range, kinks(desk, part));
+        let from_floor = found.first().filter(|first| first.low_m <= range.low_m);
+        let Some(first) = from_floor else {
+            return Limit { level_m: None, limited_by: LimitedBy::Gas };
+        };
+        if least.level_m.is_some_and(|level_m| first.high_m < level_m) {
+            least = Limit { level_m: Some(first.high_m), limited_by: kind };
+        }
+    }
+    least
+}
+
+/// The part with each of its outward capacities alone.
+fn one_by_one(part: &Part) -> Vec<(LimitedBy, Part)> {
+    let bare = Part {
+        outward: Capacities::default(),
+        inward: Capacities::default(),
+        designed_for: Default::default(),
+        ..part.clone()
+    };
+    let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n } = part.outward;
+    let none = Capacities::default();
+    let singles = [
+        (LimitedBy::Strength, Capacities { pressure_pa, ..none }),
+        (LimitedBy::Strength, Capacities { hoop_tension_n_m, ..none }),
+        (LimitedBy::Strength, Capacities { force_n, ..none }),
+        (LimitedBy::Securing, Capacities { bolt_n, ..none }),
+    ];
+    let stated = singles.into_iter().filter(|(_, one)| !one.is_empty());
+    let mut all: Vec<(LimitedBy, Part)> =
+        stated.map(|(kind, outward)| (kind, Part { outward, ..bare.clone() })).collect();
+    if !part.designed_for.is_empty() {
+        let designed_for = part.designed_for.clone();
+        all.push((LimitedBy::DesignState, Part { designed_for, ..bare }));
+    }
+    all
+}
+
+/// Levels at which a load of the part may change its course.
+fn kinks(desk: &Desk, part: &Part) -> Vec<f32> {
+    let plan = desk.plan();
+    let designed = part.designed_for.iter().map(|state| state.level_m);
+    plan_kinks(plan).into_iter().chain([part.bottom_m, part.top_m]).chain(designed).collect()
+}
+
+fn plan_kinks(plan: &Plan) -> Vec<f32> {
+    let layers = plan.liquid.below.iter().flat_map(|layer| {
+        let (at_m, half_m) = (layer.surface_m, layer.surface_uncertainty_m);
+        [at_m - half_m, at_m, at_m + half_m]
+    });
+    let outside = plan.outside.iter().flat_map(|one| [one.lowest_m, one.highest_m]);
+    let sensor = match plan.level.sensor {
+        LevelSensor::Head { at_m, .. } => Some(at_m),
+        LevelSensor::Surface => None,
+    };
+    layers.chain(outside).chain(sensor).collect()
+}
+
+/// Every part's bound, for the sensor at hand, below a threshold.
+struct Below<'a> {
+    desk: &'a Desk,
+    threshold: f32,
+}
+
+impl Criterion for Below<'_> {
+    fn holds<const N: usize>(&self, level_m: Lane<N>) -> [bool; N] {
+        let plan = self.desk.plan();
+        let states = self.desk.as_seen(level_m);
+        let mut holds = [true; N];
+        for part in &plan.parts {
+            let loads = evaluate(plan, part, &states);
+            for (holds, u) in holds.iter_mut().zip(loads.utilisation_bound.0) {
+                *holds &= u < self.threshold;
+            }
+        }
+        holds
+    }
+}
+
+/// The surface level at which the first part's outward bound reaches a threshold, as the sensor at
+/// hand sees it; `None` when it is not reached up to the overflow.
+#[must_use]
+pub fn first_reached(desk: &Desk, threshold: f32) -> Option<f32> {
+    let range = desk.range();
+    let parts = desk.plan().parts.iter().flat_map(|part| [part.bottom_m, part.top_m]);
+    let kinks = plan_kinks(desk.plan()).into_iter().chain(parts);
+    let found = intervals(&Below { desk, threshold }, range, kinks);
+    match found.first().filter(|first| first.low_m <= range.low_m) {
+        None => Some(range.low_m),
+        Some(first) if first.high_m >= range.high_m => None,
+        Some(first) => Some(first.high_m),
+    }
+}
