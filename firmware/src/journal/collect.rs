@@ -55,6 +55,11 @@ impl<F> Journal<F> {
         &self.ring.flash
     }
 
+    /// The flash, for what its traits do not offer, such as putting the chip to sleep.
+    pub const fn flash_mut(&mut self) -> &mut F {
+        &mut self.ring.flash
+    }
+
     /// Holds the sector back from being erased for [`HOLD_MS`], and everything behind it. A new call
     /// moves the hold.
     pub fn hold(&mut self, sequence: u32, now_ms: u64) {

@@ -16,6 +16,9 @@
 //! | 3 | part `count` less one of the checkpoint, see [`checkpoint`](super::checkpoint) |
 //!
 //! No writer makes a void; it reads as damage.
+//!
+//! Example, a checkpoint of the five bytes "abcde" at offset 104 of sector 7, words of four:
+//! `04 60 05 00 61 62 63 64 65 FF FF FF 86 42 B6 62`.
 
 use super::bytes::Sink;
 use super::check::block_check;
