@@ -106,3 +106,6 @@ fn edge(criterion: &impl Criterion, mut good: f32, mut bad: f32) -> f32 {
         }
     }
 }
+
+#[cfg(test)]
+mod tests;

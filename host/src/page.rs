@@ -38,7 +38,7 @@ impl Page {
     pub fn heading(&mut self, line: &str) {
         let line = line.trim_end();
         if self.coloured {
-            self.text.push_str(&format!("\u{1b}[1m{line}\u{1b}[0m\n"));
+            self.line(&format!("\u{1b}[1m{line}\u{1b}[0m"));
         } else {
             self.line(line);
         }

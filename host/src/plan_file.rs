@@ -105,3 +105,6 @@ pub fn read(file: &[u8]) -> Result<PlanFile, PlanFileError> {
         fingerprint: fingerprint(bytes),
     })
 }
+
+#[cfg(test)]
+mod tests;

@@ -73,3 +73,6 @@ pub fn loads<const N: usize>(
     }
     digest
 }
+
+#[cfg(test)]
+mod tests;

@@ -115,3 +115,6 @@ impl Cut {
         Wetted { q0: lower.q0 + above * self.area_m2, q1: lower.q1 + above * self.static_m3 }
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -1,6 +1,6 @@
 //! The plan on the desk: the core's pressure states at stated levels.
 
-use crate::compile::Compiled;
+use crate::compile::{Compiled, HEIGHT_MAX_M};
 use crate::inverse::{Interval, LimitedBy};
 use crate::tank::TankFile;
 use strake_core::lane::Lane;
@@ -25,6 +25,8 @@ impl Desk {
         let plan = compiled.plan;
         let mut true_level = plan.clone();
         true_level.level.sensor = LevelSensor::Surface;
+        // A level stated here is never cut; up to where a tank can be filled, `range` says.
+        true_level.closed = true;
         let limited_at_top = match file.fill.overflow_m {
             Some(_) => LimitedBy::Overflow,
             None => LimitedBy::ShellTop,
@@ -42,6 +44,12 @@ impl Desk {
     #[must_use]
     pub const fn range(&self) -> Interval {
         Interval { low_m: self.plan.floor_m, high_m: self.plan.overflow_m }
+    }
+
+    /// Levels above the range, up to where a plan ends: for a capacity that outlasts the tank.
+    #[must_use]
+    pub const fn beyond(&self) -> Interval {
+        Interval { low_m: self.plan.overflow_m, high_m: HEIGHT_MAX_M as f32 }
     }
 
     /// What ends the range.

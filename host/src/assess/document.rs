@@ -143,6 +143,9 @@ pub struct Limits {
     pub limit_level_bound_m: Option<f32>,
     /// Admissible levels, from and to.
     pub limit_intervals_m: Vec<[f32; 2]>,
+    /// Where overflow or shell top come first: what the capacities alone give. Text only.
+    #[serde(skip)]
+    pub capacity_alone_m: Option<f32>,
 }
 
 /// The lowest level.

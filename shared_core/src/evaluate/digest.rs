@@ -71,3 +71,6 @@ pub(super) const fn fold(running: u64, bits: u64) -> u64 {
     let mixed = (running ^ bits).wrapping_mul(0x9E37_79B9_7F4A_7C15);
     mixed ^ mixed >> 29
 }
+
+#[cfg(test)]
+mod tests;

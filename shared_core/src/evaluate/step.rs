@@ -86,7 +86,7 @@ pub fn judge<const N: usize>(
         }
     }
     for cause in FaultCause::ALL {
-        let stands = fault_stands(plan, resolved, cause, waited_ms);
+        let stands = fault_stands(resolved, cause);
         let condition = if stands { Condition::Stands } else { Condition::Gone };
         let settings = fault_settings(plan, cause);
         let id = MachineId::of_fault(cause);
@@ -149,11 +149,11 @@ pub(super) const fn fault_settings(plan: &Plan, cause: FaultCause) -> Settings {
 }
 
 /// Whether a fault stands by this sample.
-fn fault_stands(plan: &Plan, resolved: &Resolved, cause: FaultCause, waited_ms: u64) -> bool {
+fn fault_stands(resolved: &Resolved, cause: FaultCause) -> bool {
     match cause {
         FaultCause::Stale => match resolved.class {
-            ReadingClass::Failed => true,
-            ReadingClass::NotYetRead => waited_ms > u64::from(plan.level.failed_after_ms),
+            // Nothing known at all is as bad as nothing known for too long.
+            ReadingClass::Failed | ReadingClass::NotYetRead => true,
             ReadingClass::Valid | ReadingClass::Held | ReadingClass::Projected => false,
         },
         // Reported by the device once, see [`State::report`]; the latch keeps them.
