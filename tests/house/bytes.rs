@@ -1,7 +1,7 @@
 //! The bytes that DEVELOPERS.md shows are what the encoders write.
 //!
-//! The formats themselves are pinned beside their code, against an encoder in another language; here
-//! only the document is held.
+//! The formats themselves are pinned beside their code, against an encoder in another language;
+//! here only the document is held.
 
 use strake::journal_file::{DeviceIdentity, Record};
 use strake::{compile, plan_file, tank};

@@ -60,8 +60,8 @@ impl<F> Journal<F> {
         &mut self.ring.flash
     }
 
-    /// Holds the sector back from being erased for [`HOLD_MS`], and everything behind it. A new call
-    /// moves the hold.
+    /// Holds the sector back from being erased for [`HOLD_MS`], and everything behind it. A new
+    /// call moves the hold.
     pub fn hold(&mut self, sequence: u32, now_ms: u64) {
         self.hold = Some(Hold { sequence, until_ms: now_ms.saturating_add(HOLD_MS) });
     }
@@ -71,7 +71,8 @@ impl<F> Journal<F> {
         self.hold = None;
     }
 
-    /// Bytes of the sector that are in use: all of a closed one, up to the last block of the newest.
+    /// Bytes of the sector that are in use: all of a closed one, up to the last block of the
+    /// newest.
     ///
     /// # Errors
     /// [`ReadError::Gone`] when the ring does not hold it.
