@@ -64,6 +64,31 @@ fn every_dependency_has_its_reason() {
     none("a line in DEVELOPERS.md, but no dependency", &surplus);
 }
 
+/// Folders whose sources belong to the package of a manifest.
+fn sources(manifest: &str) -> Vec<String> {
+    let folder = manifest.trim_end_matches("Cargo.toml").to_owned();
+    // The tests across packages are built by the host's.
+    let tests = (folder == "host/").then(|| "tests/".to_owned());
+    [folder].into_iter().chain(tests).collect()
+}
+
+#[test]
+fn every_dependency_is_used() {
+    let mut findings = Vec::new();
+    for (manifest, table) in manifests() {
+        let sources = sources(&manifest.path);
+        for name in dependencies(&table, ALL_KINDS) {
+            let module = name.replace('-', "_");
+            let mut files = files::with("rs")
+                .filter(|file| sources.iter().any(|folder| file.path.starts_with(folder.as_str())));
+            if !files.any(|file| file.text.contains(&module)) {
+                findings.push(format!("{}: {name}", manifest.path));
+            }
+        }
+    }
+    none("a dependency that no source names", &findings);
+}
+
 #[test]
 fn every_version_of_the_workspace_is_used() {
     let used: BTreeSet<_> =

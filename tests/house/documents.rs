@@ -3,6 +3,7 @@
 
 use clap::{CommandFactory as _, Parser as _};
 use strake::cli::Cli;
+use strake::exit::Exit;
 
 use crate::files::{self, File};
 use crate::{none, tell};
@@ -72,8 +73,9 @@ fn words(line: &str) -> Vec<String> {
     words
 }
 
-fn exists(name: &str) -> bool {
-    Cli::command().get_subcommands().any(|known| known.get_name() == name)
+/// Names of the tool's subcommands; `help` stands beside them without one of its own.
+fn subcommands() -> Vec<String> {
+    Cli::command().get_subcommands().map(|known| known.get_name().to_owned()).collect()
 }
 
 /// Commands in a document that the tool would refuse.
@@ -92,7 +94,8 @@ fn unknown_commands(file: &File) -> (usize, Vec<String>) {
     for piece in inline_code(&file.text) {
         let Some(words) = called(piece) else { continue };
         let first = words.first().map_or("", String::as_str);
-        if !first.starts_with('-') && !exists(first) {
+        let known = first == "help" || subcommands().iter().any(|name| name == first);
+        if !first.starts_with('-') && !known {
             findings.push(format!("{}: `{piece}`", file.path));
         }
     }
@@ -138,10 +141,21 @@ fn commands_of_the_documents_exist() {
 #[test]
 fn every_command_is_in_the_readme() {
     let readme = &files::named("README.md").text;
-    let missing: Vec<_> = Cli::command()
-        .get_subcommands()
-        .map(|known| format!("strake {}", known.get_name()))
-        .filter(|command| !readme.contains(command.as_str()) && command != "strake help")
+    let missing: Vec<_> = subcommands()
+        .iter()
+        .map(|name| format!("strake {name}"))
+        .filter(|command| !readme.contains(command.as_str()))
+        .collect();
+    none("not in README.md", &missing);
+}
+
+#[test]
+fn the_readme_gives_every_exit_status() {
+    let readme = &files::named("README.md").text;
+    let missing: Vec<_> = Exit::TABLE
+        .iter()
+        .map(|(exit, what)| format!("| {} | {what}", exit.number()))
+        .filter(|row| !readme.replace('`', "").contains(row.as_str()))
         .collect();
     none("not in README.md", &missing);
 }

@@ -4,6 +4,7 @@
 //! text to findings, and is shown to find what it should before it is trusted to find nothing.
 
 mod attributes;
+mod bytes;
 mod configs;
 mod dependencies;
 mod documents;

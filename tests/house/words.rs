@@ -4,8 +4,7 @@ use crate::files::{self, File};
 use crate::none;
 
 /// What is looked for, and why it has no place. A bar in a word keeps this list from finding
-/// itself. A word of small letters is looked for as a word in either case, anything else as it
-/// stands.
+/// itself. Letters are looked for as a word, small ones in either case; anything else as it stands.
 const BANNED: &[(&str, &str)] = &[
     ("TO|DO", "do it, or leave it out"),
     ("FIX|ME", "mend it"),
@@ -39,13 +38,14 @@ fn is_letter(byte: Option<&u8>) -> bool {
 
 /// Does `line` hold `word`, by the rule of [`BANNED`]?
 fn holds(line: &str, word: &str) -> bool {
-    if !word.bytes().all(|byte| byte.is_ascii_lowercase()) {
+    if !word.bytes().all(|byte| byte.is_ascii_alphabetic()) {
         return line.contains(word);
     }
-    let lower = line.to_ascii_lowercase();
-    lower.match_indices(word).any(|(at, _)| {
-        let before = at.checked_sub(1).and_then(|before| lower.as_bytes().get(before));
-        !is_letter(before) && !is_letter(lower.as_bytes().get(at + word.len()))
+    let small = word.bytes().all(|byte| byte.is_ascii_lowercase());
+    let line = if small { line.to_ascii_lowercase() } else { line.to_owned() };
+    line.match_indices(word).any(|(at, _)| {
+        let before = at.checked_sub(1).and_then(|before| line.as_bytes().get(before));
+        !is_letter(before) && !is_letter(line.as_bytes().get(at + word.len()))
     })
 }
 
@@ -70,7 +70,13 @@ fn findings(file: &File) -> Vec<String> {
                 findings.push(format!("{}:{number}: {word}: {why}", file.path));
             }
         }
-        if names_a_number(line) {
+        // In code such a sign means something else; there only remarks are looked at.
+        let remark = if file.has_extension("rs") {
+            line.split_once("//").map_or("", |(_, remark)| remark)
+        } else {
+            line
+        };
+        if names_a_number(remark) {
             findings.push(format!("{}:{number}: a number of another list", file.path));
         }
     }

@@ -1,8 +1,8 @@
 //! The error of every load against the oracle, over the whole domain.
 //!
 //! The oracle takes the plan's and the state's f32 values as exact. The error is relative to
-//! `integral |p| |w|` of the same state, inside and outside counted apart: where they nearly cancel,
-//! no arithmetic on the two can be exact to the small difference. The bound is 2e-6.
+//! `integral |p| |w|` of the same state, inside and outside counted apart: where they nearly
+//! cancel, no arithmetic on the two can be exact to the small difference. The bound is 2e-6.
 
 use crate::core_engine::{course, loads_of, narrow, part_of};
 use strake_oracle::generate::{course as random_course, liquid, plane_part};

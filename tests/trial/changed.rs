@@ -1,5 +1,6 @@
 //! One reading, one plan bit, one stored hash changed, check sums mended: the replay must name the
-//! first difference and end with status 7. Damage that no check hides must be counted, the rest used.
+//! first difference and end with status 7. Damage that no check hides must be counted, the rest
+//! used.
 
 use crate::bench::{journal, replay, strake, trial};
 use std::ops::Range;
@@ -113,7 +114,8 @@ fn a_changed_plan_bit_is_named() {
 fn a_changed_hash_is_named() {
     let (directory, _, document) = trial(&[]);
     let mut file = std::fs::read(journal(&document)).unwrap();
-    // Entry number 2 is a move of an alarm machine; its hash is the last eight bytes before padding.
+    // Entry number 2 is a move of an alarm machine; its hash is the last eight bytes before
+    // padding.
     let is_move = |block: &[u8]| block[2] == 2;
     let hash = |block: &mut [u8]| {
         let end = block.iter().rposition(|&byte| byte != 0xFF).unwrap();

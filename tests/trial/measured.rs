@@ -27,8 +27,8 @@ fn the_recorded_tank_peaks_where_the_csv_does() {
     // The loop resolves 1 m in 16,000 microamperes; quantisation is all that stands between.
     assert!((level_m - highest(&csv)).abs() <= 0.5 / 16_000.0 + 1e-7, "{level_m}");
 
-    // The clamp slips at 7.7 kPa at the cover's lowest point, 45 mm below its centre at 70 mm; water
-    // of 998.2 kg/m3 at 59.9 degrees north, 20 m up (GRS80: 9.8191 m/s2).
+    // The clamp slips at 7.7 kPa at the cover's lowest point, 45 mm below its centre at 70 mm;
+    // water of 998.2 kg/m3 at 59.9 degrees north, 20 m up (GRS80: 9.8191 m/s2).
     let pressure_pa = 998.2 * 9.8191 * (level_m - 0.025);
     let utilisation = peak["utilisation"].as_f64().unwrap();
     assert!((utilisation - pressure_pa / 7700.0).abs() < 2e-5 * utilisation, "{utilisation}");

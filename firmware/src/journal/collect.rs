@@ -61,8 +61,8 @@ impl<F, W: DerefMut<Target = Waiting>> Journal<F, W> {
         &mut self.ring.flash
     }
 
-    /// Holds the sector back from being erased for [`HOLD_MS`], and everything behind it. A new call
-    /// moves the hold.
+    /// Holds the sector back from being erased for [`HOLD_MS`], and everything behind it. A new
+    /// call moves the hold.
     pub fn hold(&mut self, sequence: u32, now_ms: u64) {
         self.hold = Some(Hold { sequence, until_ms: now_ms.saturating_add(HOLD_MS) });
     }
@@ -72,7 +72,8 @@ impl<F, W: DerefMut<Target = Waiting>> Journal<F, W> {
         self.hold = None;
     }
 
-    /// Bytes of the sector that are in use: all of a closed one, up to the last block of the newest.
+    /// Bytes of the sector that are in use: all of a closed one, up to the last block of the
+    /// newest.
     ///
     /// # Errors
     /// [`ReadError::Gone`] when the ring does not hold it.

@@ -1,8 +1,8 @@
 //! From the integers of one cycle to a reading with its bounds.
 //!
 //! A stale reading is projected both ways: up at the highest rise and down at the highest fall,
-//! capped at overflow and at empty. A head sensor's projection is a pressure: the heaviest liquid at
-//! the highest rise, and the swing of the gas where the reading holds it.
+//! capped at overflow and at empty. A head sensor's projection is a pressure: the heaviest liquid
+//! at the highest rise, and the swing of the gas where the reading holds it.
 
 use super::{Channel, LoopClass, Quality, SensorError, classify};
 use crate::alarm::FaultCause;
