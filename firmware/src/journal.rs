@@ -29,6 +29,7 @@ pub use error::{JournalError, OpenError, ReadError};
 pub use restore::{Recovery, Restore};
 pub use waiting::{WAITING_MAX, Waiting};
 
+use crate::rooms::Within;
 use ring::Ring;
 use strake_core::journal::samples::Chain;
 
@@ -89,9 +90,10 @@ struct Hold {
     until_ms: u64,
 }
 
-/// The journal over a flash region of which every byte belongs to it.
+/// The journal over a flash region of which every byte belongs to it. The waiting samples live in
+/// the room `W`, within the journal unless said otherwise.
 #[derive(Clone, Debug)]
-pub struct Journal<F> {
+pub struct Journal<F, W = Within<Waiting>> {
     ring: Ring<F>,
     open: Option<Open>,
     /// The sequence number that the next sector gets.
@@ -104,6 +106,6 @@ pub struct Journal<F> {
     /// Something was appended since the start.
     appended: bool,
     hold: Option<Hold>,
-    waiting: Waiting,
+    waiting: W,
     counters: Counters,
 }

@@ -3,13 +3,14 @@
 use super::error::ReadError;
 use super::ring::SECTOR;
 use super::{Counters, Hold, Journal, Waiting};
+use core::ops::DerefMut;
 use embedded_storage::nor_flash::ReadNorFlash;
 use strake_core::journal::SECTOR_BYTES;
 
 /// How long a sector is held back for a collection, ms.
 pub const HOLD_MS: u64 = 2_000;
 
-impl<F> Journal<F> {
+impl<F, W: DerefMut<Target = Waiting>> Journal<F, W> {
     /// The lowest sequence number that may still stand in the ring.
     #[must_use]
     pub const fn oldest_sequence(&self) -> u32 {
@@ -39,7 +40,7 @@ impl<F> Journal<F> {
 
     /// The samples that wait.
     #[must_use]
-    pub const fn waiting(&self) -> &Waiting {
+    pub fn waiting(&self) -> &Waiting {
         &self.waiting
     }
 
@@ -86,7 +87,7 @@ impl<F> Journal<F> {
     }
 }
 
-impl<F: ReadNorFlash> Journal<F> {
+impl<F: ReadNorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
     /// Fills `out` from `offset` of a stored sector; both in units of the flash's reads.
     ///
     /// # Errors

@@ -71,6 +71,10 @@ pub struct Machine {
 }
 
 impl Machine {
+    /// Nothing to remember.
+    pub const NORMAL: Self =
+        Self { state: AlarmState::Normal, pending: false, since_ms: 0, entered_ms: 0 };
+
     /// Whether there is nothing to remember.
     #[must_use]
     pub fn is_normal(&self) -> bool {

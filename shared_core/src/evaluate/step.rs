@@ -189,6 +189,15 @@ impl State {
         }
     }
 
+    /// Whether a press now would move anything.
+    #[must_use]
+    pub fn awaits_press(&self) -> bool {
+        (0_u8..).zip(self.machines()).any(|(number, machine)| {
+            let mut trial = *machine;
+            MachineId::from_number(number).is_some() && trial.acknowledge(0).is_some()
+        })
+    }
+
     /// A person's press: acknowledges what is unacknowledged, resets latches whose condition is
     /// gone.
     pub fn acknowledge(&mut self, tick_ms: u64, mut moved: impl FnMut(Moved)) {

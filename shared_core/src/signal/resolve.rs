@@ -44,6 +44,17 @@ pub struct Sight {
     pub product: Option<u8>,
 }
 
+impl Sight {
+    /// Nothing is remembered.
+    pub const NONE: Self = Self {
+        last_level: None,
+        last_temperature: None,
+        level_ok: false,
+        started_ms: 0,
+        product: None,
+    };
+}
+
 /// A reading with its bounds, in the sensor's own quantity (Pa or m).
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Resolved {
