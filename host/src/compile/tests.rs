@@ -246,16 +246,16 @@ fn what_a_plan_cannot_hold_is_found_with_its_place() {
 
 #[test]
 fn a_temperature_register_is_refused_by_name_at_the_seal() {
-    let findings = for_device(&parse(BASIN)).unwrap_err();
-    assert_eq!(findings.list()[0].code.as_str(), "not-offered");
-    assert!(findings.list()[0].message.contains("temperature"));
     // The board's own sensor fits: sixteenths of 0.0625 K.
-    let start = BASIN.find("temperature_signal = ").unwrap();
-    let end = start + BASIN[start..].find('\n').unwrap();
-    let own = "temperature_signal = { scale = \"0.0625 K\", uncertainty = \"1 K\" }";
-    let file = parse(&BASIN.replace(&BASIN[start..end], own));
-    let liquid = for_device(&file).unwrap().plan.liquid;
+    let liquid = for_device(&parse(BASIN)).unwrap().plan.liquid;
     assert!(near(liquid.temperature.unwrap().celsius_per_count_16, 0.0625 / 16.0, 1e-7));
     let at_18 = liquid.table.at(18.0).unwrap();
     assert!(near(at_18, 1010.0, 1e-6), "{at_18}");
+
+    let register = "{ modbus = { unit = 2, function = 4, register = 8, count = \"i16\", \
+                    scale = \"0.1 K\" }, uncertainty = \"1 K\" }";
+    let own = "{ scale = \"0.0625 K\", uncertainty = \"1 K\" }";
+    let findings = for_device(&parse(&BASIN.replace(own, register))).unwrap_err();
+    assert_eq!(findings.list()[0].code.as_str(), "not-offered");
+    assert!(findings.list()[0].message.contains("temperature"));
 }
