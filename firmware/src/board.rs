@@ -3,6 +3,13 @@
 //! A board is a thin package: it wires pins, buses and memories to these traits and hands them to
 //! the application. It holds no decision of its own; the application holds no register address.
 
+use core::fmt;
+
+use embedded_hal::digital::{InputPin, OutputPin};
+use embedded_io::{Read, ReadReady, Write, WriteReady};
+use embedded_storage::nor_flash::NorFlash;
+use strake_core::wire::Text;
+
 pub use strake_core::journal::entry::ResetCause;
 pub use strake_core::signal::SensorError;
 
@@ -40,4 +47,72 @@ pub trait CountSource {
     fn read_count(&mut self) -> Result<i32, SensorError>;
     /// Switches the sensor off again.
     fn rest(&mut self) {}
+}
+
+/// The pieces that make a board: a list of types, so that the application has one parameter.
+pub trait Board {
+    /// Monotonic time.
+    type Clock: Clock;
+    /// The level sensor.
+    type Level: CountSource;
+    /// The liquid's temperature sensor; [`NoSource`] where there is none.
+    type Temperature: CountSource;
+    /// Flash region of the journal's ring: whole erase blocks of 4,096 bytes, words of 1 or 4.
+    type Journal: NorFlash;
+    /// Flash region of the plan slots, the same kind.
+    type Plans: NorFlash;
+    /// The line to the laptop.
+    type Link: Read + ReadReady + Write + WriteReady;
+    /// Drives the contact: high conducts, which means healthy. It must open by itself without power.
+    type Contact: OutputPin;
+    /// The button: low while pressed.
+    type Button: InputPin;
+    /// RAM that survives a warm restart.
+    type Retained: RetainedMemory;
+    /// The watchdog.
+    type Watchdog: Watchdog;
+}
+
+/// A board's pieces, handed to the application once.
+pub struct Hardware<B: Board> {
+    /// Monotonic time.
+    pub clock: B::Clock,
+    /// The level sensor.
+    pub level: B::Level,
+    /// The temperature sensor.
+    pub temperature: B::Temperature,
+    /// Flash of the journal.
+    pub journal: B::Journal,
+    /// Flash of the plans.
+    pub plans: B::Plans,
+    /// The line to the laptop.
+    pub link: B::Link,
+    /// The contact.
+    pub contact: B::Contact,
+    /// The button.
+    pub button: B::Button,
+    /// Retained RAM.
+    pub retained: B::Retained,
+    /// The watchdog.
+    pub watchdog: B::Watchdog,
+    /// The device's own name, unique among an owner's devices.
+    pub device_id: Text,
+    /// Why the controller started.
+    pub reset_cause: ResetCause,
+}
+
+impl<B: Board> fmt::Debug for Hardware<B> {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.debug_struct("Hardware").field("device_id", &self.device_id).finish_non_exhaustive()
+    }
+}
+
+/// A channel that the board does not have.
+#[derive(Clone, Copy, Debug, Default)]
+pub struct NoSource;
+
+impl CountSource for NoSource {
+    fn read_count(&mut self) -> Result<i32, SensorError> {
+        Err(SensorError::Silent)
+    }
 }

@@ -5,6 +5,10 @@
 #![cfg_attr(not(test), no_std)]
 #![forbid(unsafe_code)]
 
+pub mod app;
 pub mod board;
+pub mod device;
 pub mod journal;
+pub mod plan_store;
+pub mod sensor;
 pub mod serve;

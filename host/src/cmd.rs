@@ -2,8 +2,10 @@
 //! the terminal, a failure comes back with its exit status.
 
 pub mod assess;
+pub mod replay;
 pub mod seal;
 mod tank_file;
+pub mod trial;
 
 use crate::exit::Exit;
 use crate::failure::Failure;
@@ -14,8 +16,12 @@ use crate::term::Term;
 pub enum Command {
     /// Loads, utilisation and limit level of every part of a tank
     Assess(assess::Args),
+    /// Recompute a journal and compare it with what the device decided
+    Replay(replay::Args),
     /// Compile a tank file into the plan that a device loads
     Seal(seal::Args),
+    /// The whole job on a simulated device
+    Trial(trial::Args),
 }
 
 impl Command {
@@ -26,7 +32,9 @@ impl Command {
     pub fn run(&self, term: &mut Term) -> Result<Exit, Failure> {
         match self {
             Self::Assess(args) => assess::run(args, term),
+            Self::Replay(args) => replay::run(args, term),
             Self::Seal(args) => seal::run(args, term),
+            Self::Trial(args) => trial::run(args, term),
         }
     }
 }

@@ -8,7 +8,7 @@ mod bolts;
 mod contents;
 mod device;
 mod faults;
-mod fingerprint;
+
 mod level;
 mod liquid;
 mod number;
@@ -17,8 +17,8 @@ mod site;
 
 pub(crate) use bolts::centroid_cut;
 pub use contents::Contents;
-pub use fingerprint::fingerprint;
 pub(crate) use site::{HEIGHT_MAX_M, floor_m};
+pub use strake_core::plan_slot::fingerprint;
 
 use crate::tank::{Findings, TankFile};
 use faults::Faults;

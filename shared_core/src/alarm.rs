@@ -9,4 +9,4 @@ mod state;
 
 pub use ids::{FAULT_CAUSES, FaultCause, MACHINES, MachineId, PARTS_MAX, Threshold};
 pub use machine::{Condition, Machine, Move, Settings};
-pub use state::AlarmState;
+pub use state::{AlarmEvent, AlarmState};

@@ -16,7 +16,7 @@ mod step;
 pub use digest::Digest;
 pub use output::{Output, Rhythm};
 pub use state::{CHECKPOINT_BYTES_MAX, State};
-pub use step::{Judged, Moved, Observer, judge, step};
+pub use step::{Judged, Moved, judge, step};
 
 use crate::lane::Lane;
 use crate::liquid::{Readings, States, states};
@@ -43,6 +43,18 @@ pub fn pressures<const N: usize>(plan: &Plan, resolved: &[Resolved; N]) -> State
         ],
     };
     states(plan, &readings)
+}
+
+/// Heights of the surface that a reading allows, m above the datum: lowest, estimated, highest. At or
+/// below the diaphragm of a head sensor the lowest is the diaphragm's own height: what lies below is
+/// not seen.
+#[must_use]
+pub fn levels_m(plan: &Plan, resolved: &Resolved) -> [f32; 3] {
+    let states = pressures(plan, &[*resolved]);
+    let top = |pressure: &crate::pressure::Pressure<1>| {
+        pressure.surfaces().first().map_or(0.0, |surface| surface.height_m.lane(0))
+    };
+    [top(&states.lower), states.level_m.lane(0), top(&states.upper)]
 }
 
 /// Loads of every part under `N` readings, handed to `part` in the plan's order, and the digest of

@@ -13,6 +13,7 @@ pub mod lane;
 pub mod liquid;
 pub mod part;
 pub mod plan;
+pub mod plan_slot;
 pub mod pressure;
 pub mod shape;
 pub mod signal;

@@ -6,6 +6,8 @@
 
 mod density;
 mod states;
+#[cfg(test)]
+pub(crate) mod truth;
 
 pub use density::{Band, DensityTable, TABLE_POINTS_MAX};
 pub use states::{Readings, States, states};

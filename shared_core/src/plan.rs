@@ -3,6 +3,8 @@
 //! The engineer's tank file is compiled into a plan on the host; device and replay decode the same
 //! bytes ([`codec`]) and get the same numbers. A plan that fails [`check`] is not a plan.
 
+#[cfg(test)]
+pub(crate) mod builder;
 mod check;
 pub mod codec;
 mod level;
@@ -39,10 +41,11 @@ pub struct LiquidPlan {
 }
 
 impl LiquidPlan {
-    /// The band of every liquid that can stand in the tank, the layers included.
+    /// The band of all that stands in the tank with a top liquid of this band: layers always
+    /// belong to it.
     #[must_use]
-    pub fn whole_band(&self) -> Band {
-        self.below.iter().fold(self.top, |band, layer| band.hull(layer.density))
+    pub fn with_layers(&self, top: Band) -> Band {
+        self.below.iter().fold(top, |band, layer| band.hull(layer.density))
     }
 
     /// The top liquid's band while it is not confirmed which product is in the tank.

@@ -44,16 +44,16 @@ pub use text::Text;
 pub const PROTOCOL_VERSION: u16 = 1;
 
 /// Bytes of a unit, the grain in which parts of a sector are asked for and the least bulk payload.
-pub const UNIT_BYTES: usize = 128;
+pub const UNIT_BYTES: u16 = 128;
 /// Units of a sector: one bit each in [`SectorRequest::wanted`].
-pub const UNITS: usize = crate::journal::SECTOR_BYTES / UNIT_BYTES;
+pub const UNITS: u8 = 32;
 /// Most units in one frame, for a clean line.
 pub const FRAME_UNITS_MAX: u8 = 8;
 /// Most bytes of a plan in one [`PlanChunk`].
 pub const PLAN_CHUNK_BYTES: usize = 192;
 /// Most bytes of a plan in one [`PlanData`].
-pub const PLAN_DATA_BYTES: usize = 512;
-/// Sector requests that wait in the device; one more is refused as busy.
+pub const PLAN_DATA_BYTES: u16 = 512;
+/// Sector requests that wait in the device; one more is dropped.
 pub const SECTOR_QUEUE: usize = 8;
 
 /// Bytes of a device's receive buffer: the longest encoded request fits.
@@ -61,7 +61,8 @@ pub const REQUEST_FRAME_BYTES: usize = 224;
 /// Bytes in which the longest reply can be built and encoded.
 pub const REPLY_FRAME_BYTES: usize = 1056;
 
-const _: () = assert!(UNITS == 32, "one bit of a u32 per unit");
+const _: () = assert!(UNIT_BYTES as usize * UNITS as usize == crate::journal::SECTOR_BYTES);
+const _: () = assert!(UNITS as u32 == u32::BITS);
 
 /// A message: one plain struct with one kind, in postcard's encoding.
 pub trait Message<'a>: Field + serde::Deserialize<'a> {

@@ -2,7 +2,7 @@
 
 use super::error::{JournalError, OpenError};
 use super::restore::{Recovery, Restore};
-use super::ring::{Peek, Ring, SECTOR};
+use super::ring::{Ring, SECTOR};
 use super::{Counters, Journal, Open, SECTORS_MIN, Snapshot, Waiting};
 use embedded_storage::nor_flash::NorFlash;
 use strake_core::journal::block::{CHECK_BYTES, Encoded, Place, encode_state};
@@ -201,10 +201,7 @@ impl<F: NorFlash> Ring<F> {
     fn oldest(&mut self, newest: u32) -> Result<u32, F::Error> {
         let Some(next) = newest.checked_add(1) else { return Ok(newest) };
         let Some(lowest) = next.checked_sub(self.sectors()) else { return Ok(0) };
-        let place = self.place(lowest);
-        Ok(match self.peek(place)? {
-            Peek::Sequence(sequence) if sequence == lowest => lowest,
-            _ => lowest.saturating_add(1),
-        })
+        let stands = self.header_of(lowest)?.is_some();
+        Ok(if stands { lowest } else { lowest.saturating_add(1) })
     }
 }

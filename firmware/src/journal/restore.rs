@@ -143,7 +143,8 @@ impl<F: NorFlash> Ring<F> {
         Ok(met.last_tick_ms.filter(|_| met.last_boot == boot))
     }
 
-    fn header_of(&mut self, sequence: u32) -> Result<Option<SectorHeader>, F::Error> {
+    /// The header of the sector with this sequence number, when it stands in the ring.
+    pub(super) fn header_of(&mut self, sequence: u32) -> Result<Option<SectorHeader>, F::Error> {
         let header = self.header(self.place(sequence))?;
         Ok(header.filter(|header| header.sequence == sequence))
     }

@@ -124,13 +124,15 @@ fn read_plan<S: Served>(
         plans.iter().find(|entry| entry.length > 0 && entry.fingerprint == read.fingerprint);
     let length = entry.ok_or(ErrorCode::PlanUnknown)?.length;
     let left = usize::try_from(length.saturating_sub(read.offset)).unwrap_or(usize::MAX);
-    let bytes = left.min(usize::from(read.length)).min(PLAN_DATA_BYTES);
+    let bytes = left.min(usize::from(read.length.min(PLAN_DATA_BYTES)));
     let mut result = Ok(());
     outbox.build(Kind::PlanData.number(), |body| {
         read.fingerprint.put(body);
         read.offset.put(body);
         body.length(bytes);
-        result = served.read_plan(read.fingerprint, read.offset, body.reserve(bytes));
+        if bytes > 0 {
+            result = served.read_plan(read.fingerprint, read.offset, body.reserve(bytes));
+        }
     });
     if result.is_err() {
         outbox.clear();

@@ -75,12 +75,12 @@ fn absent<S: Served>(served: &mut S, sequence: u32) -> ErrorCode {
 /// The next neighbouring units that are wanted, as many as a frame may hold.
 fn next_run(request: &SectorRequest, used: u16) -> Option<Run> {
     let unit = request.wanted.trailing_zeros();
-    let start = usize::try_from(unit).ok()?.checked_mul(UNIT_BYTES)?;
+    let start = usize::try_from(unit).ok()?.checked_mul(usize::from(UNIT_BYTES))?;
     let left = usize::from(used).checked_sub(start).filter(|left| *left > 0)?;
     let together = request.wanted.checked_shr(unit)?.trailing_ones();
     let units = together.min(u32::from(request.frame_units.clamp(1, FRAME_UNITS_MAX)));
     let units_mask = 1_u32.checked_shl(units)?.wrapping_sub(1).checked_shl(unit)?;
-    let bytes = usize::try_from(units).ok()?.saturating_mul(UNIT_BYTES).min(left);
+    let bytes = usize::try_from(units).ok()?.saturating_mul(usize::from(UNIT_BYTES)).min(left);
     Some(Run {
         unit: u8::try_from(unit).ok()?,
         offset: u16::try_from(start).ok()?,

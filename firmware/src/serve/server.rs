@@ -95,13 +95,14 @@ impl Server {
             match self.receiver.accept(byte) {
                 None => {}
                 Some(Err(_)) => self.counters.bad_frames = self.counters.bad_frames.wrapping_add(1),
-                Some(Ok(frame)) => match sector_request(&frame) {
-                    Some(request) => self.sectors.push(request),
-                    None => {
+                Some(Ok(frame)) => {
+                    if let Some(request) = sector_request(&frame) {
+                        self.sectors.push(request);
+                    } else {
                         self.sectors.clear();
                         self.asked = true;
                     }
-                },
+                }
             }
         }
         Ok(())

@@ -209,7 +209,7 @@ impl Findings {
             finding.span.start = text.floor_char_boundary(start);
             finding.span.end = text.floor_char_boundary(end.max(start));
         }
-        list.sort_by(|a, b| (a.span, a.code).cmp(&(b.span, b.code)));
+        list.sort_by_key(|finding| (finding.span, finding.code));
         list.dedup();
         let omitted = list.len().saturating_sub(MAX_FINDINGS);
         list.truncate(MAX_FINDINGS);

@@ -1,5 +1,7 @@
 //! Findings as text with the line and a caret. The only file that knows the snippet renderer.
 
+use std::fmt::Write as _;
+
 use annotate_snippets::{AnnotationKind, Level, Renderer, Snippet};
 
 use super::finding::Findings;
@@ -26,9 +28,10 @@ pub(super) fn text(findings: &Findings, coloured: bool) -> String {
     }
     let count = findings.list().len();
     let noun = if count == 1 { "finding" } else { "findings" };
-    out.push_str(&format!("{}: {count} {noun}", findings.path()));
+    // Writing to a String cannot fail.
+    let _ = write!(out, "{}: {count} {noun}", findings.path());
     if findings.omitted() > 0 {
-        out.push_str(&format!(" shown, {} more left out", findings.omitted()));
+        let _ = write!(out, " shown, {} more left out", findings.omitted());
     }
     out.push('\n');
     out

@@ -1,3 +1,5 @@
+use proptest::prelude::*;
+
 use super::{Quantity as Q, UnitError, format_si, format_us, parse, table};
 
 /// Texts with the value that NIST SP 811 (2008), appendix B.8, prints for the unit.
@@ -40,7 +42,6 @@ fn factors_are_the_published_ones() {
 }
 
 #[test]
-#[expect(clippy::float_cmp, reason = "these conversions are exact in decimal and rounded once")]
 fn decimals_are_rounded_once() {
     let exact = [
         ("8.0 m", Q::Length, 8.0),
@@ -168,4 +169,41 @@ fn us_text_is_in_feet_and_eighths() {
     assert_eq!(format_us(1000.0, Q::Density), "62.43 lb/ft3");
     assert_eq!(format_us(20.0, Q::Temperature), "68.0 degF");
     assert_eq!(format_us(18_000.0, Q::Force), "4047 lbf");
+}
+
+#[test]
+fn feet_of_water_and_pounds_per_gallon_come_out_in_si() {
+    // 25 ft of water of 62.37 lb/ft3 press with 10.83 psi, 74.66 kPa.
+    let depth = parse("25 ft", Q::Length).unwrap();
+    let density = parse("62.37 lb/ft3", Q::Density).unwrap();
+    let pressure = density * 9.80665 * depth;
+    assert!((pressure - 74.66e3).abs() < 5.0);
+    assert_eq!(format_us(pressure, Q::Pressure), "10.83 psi");
+    // The two gallons are a fifth apart.
+    assert_eq!(format_si(parse("11 lb/US gal", Q::Density).unwrap(), Q::Density), "1318.1 kg/m3");
+    assert_eq!(format_si(parse("11 lb/imp gal", Q::Density).unwrap(), Q::Density), "1097.5 kg/m3");
+}
+
+proptest! {
+    #[test]
+    fn any_text_gives_a_value_or_an_error(text in "\\PC{0,24}") {
+        for quantity in [Q::Length, Q::Density, Q::Temperature, Q::Ratio] {
+            if let Ok(value) = parse(&text, quantity) {
+                prop_assert!(value.is_finite());
+            }
+        }
+    }
+
+    #[test]
+    fn a_written_value_reads_back_to_its_digits(value in 1e-2_f64..1e5) {
+        for quantity in [Q::Length, Q::Force, Q::LineLoad, Q::Pressure, Q::Density, Q::Moment] {
+            for text in [format_si(value, quantity), format_us(value, quantity)] {
+                let again = parse(&text, quantity);
+                prop_assert!(again.is_ok(), "{text}: {again:?}");
+                // Four digits at least, or an eighth of an inch, or a tenth of the unit.
+                let apart = (again.unwrap_or(f64::NAN) - value).abs();
+                prop_assert!(apart <= 5.1e-4 * value + 0.1, "{text} for {value}");
+            }
+        }
+    }
 }

@@ -142,10 +142,12 @@ fn any_system(quantity: Quantity) -> &'static [Shown] {
     }
 }
 
-/// The first row whose `least` the magnitude reaches; zero takes the first row.
+/// The first row whose `least` the magnitude reaches; zero takes the row that begins there, else
+/// the first.
 fn pick(value: f64, rows: &[Shown]) -> String {
-    let reached = |row: &&Shown| value.abs() >= row.least || value == 0.0;
-    let Some(row) = rows.iter().find(reached).or(rows.last()) else {
+    let reached = |row: &&Shown| value.abs() >= row.least;
+    let otherwise = if value == 0.0 { rows.first() } else { rows.last() };
+    let Some(row) = rows.iter().find(reached).or(otherwise) else {
         return value.to_string();
     };
     let in_unit = value / row.si;

@@ -4,7 +4,7 @@
 //! on-delay, off-delay and deadband. A delay counts from the first sample at which the condition
 //! holds; transitions happen at samples (or at a person's press) only.
 
-use super::AlarmState;
+use super::{AlarmEvent, AlarmState};
 use crate::journal::entry::TransitionCause;
 
 /// What a machine needs to know of its settings.
@@ -80,10 +80,10 @@ impl Machine {
     /// Whether the condition counts as standing (raised and not yet returned).
     #[must_use]
     pub const fn is_active(&self) -> bool {
-        matches!(self.state, AlarmState::Unacknowledged | AlarmState::Acknowledged)
+        self.state.is_active()
     }
 
-    /// Applies a sample.
+    /// Applies a sample. Hidden alarms do not move.
     pub fn sample(
         &mut self,
         settings: &Settings,
@@ -92,24 +92,19 @@ impl Machine {
     ) -> Option<Move> {
         let tick = low_bits(tick_ms);
         match (self.is_active(), condition) {
+            _ if self.state.is_hidden() => None,
             (false, Condition::Stands) => {
                 if !self.waited(settings.on_delay_ms, tick) {
                     return None;
                 }
-                Some(self.go(AlarmState::Unacknowledged, TransitionCause::Raised, tick))
+                self.go(AlarmEvent::Raise, TransitionCause::Raised, settings.latch, tick)
             }
             (true, Condition::Gone) => {
-                if !self.waited(settings.off_delay_ms, tick) {
-                    return self.sound_again(settings, tick);
+                if self.waited(settings.off_delay_ms, tick) {
+                    self.go(AlarmEvent::Return, TransitionCause::Returned, settings.latch, tick)
+                } else {
+                    self.sound_again(settings, tick)
                 }
-                let acknowledged = self.state == AlarmState::Acknowledged;
-                let to = match (settings.latch, acknowledged) {
-                    (true, true) => AlarmState::LatchedAcknowledged,
-                    (true, false) => AlarmState::LatchedUnacknowledged,
-                    (false, true) => AlarmState::Normal,
-                    (false, false) => AlarmState::ReturnedUnacknowledged,
-                };
-                Some(self.go(to, TransitionCause::Returned, tick))
             }
             (true, _) => {
                 self.stop_waiting();
@@ -125,29 +120,20 @@ impl Machine {
     /// Applies a person's press: acknowledges what is unacknowledged; resets a latch whose condition
     /// is gone.
     pub fn acknowledge(&mut self, tick_ms: u64) -> Option<Move> {
-        let tick = low_bits(tick_ms);
-        let (to, cause) = match self.state {
-            AlarmState::Unacknowledged => (AlarmState::Acknowledged, TransitionCause::Acknowledged),
-            AlarmState::ReturnedUnacknowledged => {
-                (AlarmState::Normal, TransitionCause::Acknowledged)
-            }
-            AlarmState::LatchedUnacknowledged => {
-                (AlarmState::LatchedAcknowledged, TransitionCause::Acknowledged)
-            }
-            AlarmState::LatchedAcknowledged => (AlarmState::Normal, TransitionCause::Reset),
-            AlarmState::Normal
-            | AlarmState::Acknowledged
-            | AlarmState::Shelved
-            | AlarmState::SuppressedByDesign
-            | AlarmState::OutOfService => return None,
+        let (event, cause) = if self.state == AlarmState::LatchedAcknowledged {
+            (AlarmEvent::Reset, TransitionCause::Reset)
+        } else {
+            (AlarmEvent::Acknowledge, TransitionCause::Acknowledged)
         };
-        Some(self.go(to, cause, tick))
+        self.go(event, cause, false, low_bits(tick_ms))
     }
 
-    /// Puts the ticks of a machine on the tick of a new start. States stay; delays start anew.
-    pub fn restart(&mut self) {
+    /// Puts a machine on the tick of a new start. The state stays; delays start anew.
+    pub fn restart(&mut self, tick_ms: u64) {
         self.stop_waiting();
-        self.entered_ms = 0;
+        if self.state != AlarmState::Normal {
+            self.entered_ms = low_bits(tick_ms);
+        }
     }
 
     /// Milliseconds until a pending delay expires; `None` when none runs.
@@ -182,13 +168,27 @@ impl Machine {
         {
             return None;
         }
-        Some(self.go(AlarmState::Unacknowledged, TransitionCause::SoundsAgain, tick))
+        self.go(AlarmEvent::SoundAgain, TransitionCause::SoundsAgain, settings.latch, tick)
     }
 
-    fn go(&mut self, to: AlarmState, cause: TransitionCause, tick: u32) -> Move {
+    /// Follows the table. A delay ends only when the condition's standing changes: a press, or
+    /// sounding again, must not start it anew.
+    fn go(
+        &mut self,
+        event: AlarmEvent,
+        cause: TransitionCause,
+        latch: bool,
+        tick: u32,
+    ) -> Option<Move> {
         let from = self.state;
-        *self = Self { state: to, pending: false, since_ms: 0, entered_ms: tick };
-        Move { from, to, cause }
+        let to = from.after(event, latch)?;
+        if from.is_active() != to.is_active() {
+            self.stop_waiting();
+        }
+        self.state = to;
+        // The time in "normal" decides nothing and stands in no checkpoint.
+        self.entered_ms = if to == AlarmState::Normal { 0 } else { tick };
+        Some(Move { from, to, cause })
     }
 }
 
@@ -197,3 +197,6 @@ impl Machine {
 const fn low_bits(tick_ms: u64) -> u32 {
     tick_ms as u32
 }
+
+#[cfg(test)]
+mod tests;

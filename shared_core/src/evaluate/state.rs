@@ -65,7 +65,7 @@ impl State {
     pub fn restart(&mut self, tick_ms: u64) {
         self.sight = Sight { started_ms: tick_ms, product: self.sight.product, ..Sight::default() };
         for machine in &mut self.machines {
-            machine.restart();
+            machine.restart(tick_ms);
         }
     }
 

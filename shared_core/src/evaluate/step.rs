@@ -3,7 +3,6 @@
 use super::{Digest, State, loads};
 use crate::alarm::{Condition, FaultCause, MachineId, Move, Settings, Threshold};
 use crate::journal::entry::{Sample, Transition};
-use crate::part::PartLoads;
 use crate::plan::{Plan, ThresholdPlan};
 use crate::signal::{ReadingClass, Resolved, resolve};
 use heapless::Vec;
@@ -36,35 +35,19 @@ impl Moved {
     }
 }
 
-/// Who watches a step: the device shows and logs, the replay compares.
-pub trait Observer {
-    /// Loads of a part, in the plan's order.
-    fn part(&mut self, index: usize, loads: &PartLoads<1>);
-    /// A machine moved.
-    fn moved(&mut self, moved: Moved);
-}
-
 /// The two utilisations by which one part is judged.
 pub type Judged = (f32, f32);
 
 /// Takes one sample: resolves it, evaluates every part, moves the machines.
-pub fn step(
-    plan: &Plan,
-    state: &mut State,
-    sample: &Sample,
-    watch: &mut impl Observer,
-) -> Resolved {
+pub fn step(plan: &Plan, state: &mut State, sample: &Sample, moved: impl FnMut(Moved)) -> Resolved {
     let resolved =
         resolve(plan, &mut state.sight, sample.tick_ms, sample.level, sample.temperature);
     let mut judged: Vec<Judged, { crate::alarm::PARTS_MAX }> = Vec::new();
-    let digest = loads(plan, &[resolved], |index, part| {
+    let digest = loads(plan, &[resolved], |_, part| {
         // As many parts as the plan holds, which is the capacity of the list.
         let _ = judged.push((part.utilisation_bound.lane(0), part.utilisation_inward.lane(0)));
-        watch.part(index, part);
     });
-    judge(plan, state, sample.tick_ms, &resolved, &judged, (&digest, 0), |moved| {
-        watch.moved(moved);
-    });
+    judge(plan, state, sample.tick_ms, &resolved, &judged, (&digest, 0), moved);
     resolved
 }
 

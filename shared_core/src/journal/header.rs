@@ -24,7 +24,7 @@ pub const HEADER_BYTES: usize = 104;
 /// Bytes before the check.
 const CHECKED_BYTES: usize = HEADER_BYTES - 4;
 const MAGIC: [u8; 3] = *b"SKJ";
-/// Version of the journal's format.
+/// Version of the journal format.
 pub const VERSION: u8 = 1;
 /// Bytes that [`peek_sequence`] wants.
 pub const PEEK_BYTES: usize = 8;

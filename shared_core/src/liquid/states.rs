@@ -56,19 +56,23 @@ pub fn states<const N: usize>(plan: &Plan, readings: &Readings<N>) -> States<N> 
 /// Surface sensor: everything at one end.
 fn surface<const N: usize>(plan: &Plan, readings: &Readings<N>) -> States<N> {
     let [estimate, low, high] = readings.density;
-    let cap = |level: Lane<N>| match plan.open_top_m() {
-        Some(top_m) => level.at_most(Lane::splat(top_m)),
-        None => level,
-    };
-    let level_m = cap(readings.estimate);
+    let level_m = capped(plan, readings.estimate);
     let stack = |gas_pa: f32, level_m: Lane<N>, top: Lane<N>, end: End| {
         layered(plan, gas_pa, level_m, top, end)
     };
     States {
         estimate: stack(plan.gas.nominal_pa, level_m, estimate, End::Estimate),
-        upper: stack(plan.gas.highest_pa, cap(readings.high), high, End::High),
-        lower: stack(plan.gas.lowest_pa, readings.low, low, End::Low),
+        upper: stack(plan.gas.highest_pa, capped(plan, readings.high), high, End::High),
+        lower: stack(plan.gas.lowest_pa, capped(plan, readings.low), low, End::Low),
         level_m,
+    }
+}
+
+/// A level that does not stand above the brim of an open tank.
+fn capped<const N: usize>(plan: &Plan, level_m: Lane<N>) -> Lane<N> {
+    match plan.open_top_m() {
+        Some(top_m) => level_m.at_most(Lane::splat(top_m)),
+        None => level_m,
     }
 }
 
@@ -81,11 +85,13 @@ fn head<const N: usize>(
 ) -> States<N> {
     let g = plan.gravity_m_s2;
     let gas = plan.gas;
-    let band = plan.liquid.whole_band();
-    let [estimate, low, high] = readings.density;
+    let [estimate, mut low, mut high] = readings.density;
     // Layers always belong to the band.
-    let light = low.at_most(Lane::splat(band.low_kg_m3)) * g;
-    let heavy = high.at_least(Lane::splat(band.high_kg_m3)) * g;
+    for layer in &plan.liquid.below {
+        low = low.at_most(Lane::splat(layer.density.low_kg_m3));
+        high = high.at_least(Lane::splat(layer.density.high_kg_m3));
+    }
+    let (light, heavy) = (low * g, high * g);
 
     // Pressure at the diaphragm above the gas pressure, by what the transmitter refers to.
     let (excess, excess_high, wet, excess_low) = match reference {
@@ -98,17 +104,11 @@ fn head<const N: usize>(
         Reference::GasSpace => (readings.estimate, readings.high, readings.low, readings.low),
     };
 
-    let level_m = {
-        let level = surface_from_head(plan, excess.ramp(), at_m, estimate);
-        match plan.open_top_m() {
-            Some(top_m) => level.at_most(Lane::splat(top_m)),
-            None => level,
-        }
-    };
+    let level_m = capped(plan, surface_from_head(plan, excess.ramp(), at_m, estimate));
     States {
         estimate: layered(plan, gas.nominal_pa, level_m, estimate, End::Estimate),
         upper: upper_envelope(plan, excess_high.ramp(), at_m, light, heavy),
-        lower: lower_envelope(gas.lowest_pa, wet, excess_low, at_m, light, heavy),
+        lower: lower_envelope(plan, wet, excess_low, at_m, light, heavy),
         level_m,
     }
 }
@@ -130,6 +130,8 @@ fn upper_envelope<const N: usize>(
             // From the brim down with the heavy liquid, until that meets the envelope.
             let room = heavy * (top_m - at_m) - excess;
             let meet = room.ramp() / spread.at_least(Lane::splat(1e-6)) + at_m;
+            // Lanes that are not cut have no such height: the same numbers as one lane alone.
+            let meet = over.positive_selects(meet, Lane::splat(at_m));
             upper.add(level.at_most(Lane::splat(top_m)), over.positive_selects(heavy, light));
             upper.add(meet, over.positive_selects(-spread, Lane::ZERO));
             upper.add(Lane::splat(at_m), spread);
@@ -143,15 +145,15 @@ fn upper_envelope<const N: usize>(
 
 /// `heavy` above the diaphragm, `light` below; the empty tank where the sensor may be dry.
 fn lower_envelope<const N: usize>(
-    gas_pa: f32,
+    plan: &Plan,
     wet: Lane<N>,
     excess: Lane<N>,
     at_m: f32,
     light: Lane<N>,
     heavy: Lane<N>,
 ) -> Pressure<N> {
-    let mut lower = Pressure::gas(Lane::splat(gas_pa));
-    let level = excess.ramp() / heavy + at_m;
+    let mut lower = Pressure::gas(Lane::splat(plan.gas.lowest_pa));
+    let level = capped(plan, excess.ramp() / heavy + at_m);
     lower.add(level, wet.positive_selects(heavy, Lane::ZERO));
     lower.add(Lane::splat(at_m), wet.positive_selects(light - heavy, Lane::ZERO));
     lower
@@ -169,11 +171,11 @@ fn surface_from_head<const N: usize>(
     let mut left = excess;
     let mut z_m = Lane::splat(at_m);
     for layer in plan.liquid.below.iter().rev() {
-        let weight_n_m3 = layer.density.estimate_kg_m3 * g;
+        // As in [`layered`]: at least as heavy as what stands above it.
+        let weight = Lane::splat(layer.density.estimate_kg_m3).at_least(top) * g;
         let thickness = (Lane::splat(layer.surface_m) - z_m).ramp();
-        let needed = thickness * weight_n_m3;
-        let full = left - needed;
-        let partial = z_m + left * (1.0 / weight_n_m3);
+        let full = left - thickness * weight;
+        let partial = z_m + left / weight;
         z_m = full.positive_selects(z_m + thickness, partial);
         left = full.ramp();
     }
@@ -228,3 +230,6 @@ fn layered<const N: usize>(
     }
     pressure
 }
+
+#[cfg(test)]
+mod tests;

@@ -8,13 +8,18 @@ pub const BURST_COUNTS_MIN: usize = 5;
 /// Most counts of a burst.
 pub const BURST_COUNTS_MAX: usize = 16;
 
+/// Counts beyond this, to either side, count as this: sixteenths of it fit the integer.
+const COUNT_MAX: i32 = 1 << 26;
+
 /// The mean of the middle half of the counts, about their median, rounded to a sixteenth.
 ///
 /// Spikes at both ends of the sorted burst are left out. With fewer than [`BURST_COUNTS_MIN`] counts
-/// the quality is sparse; with none the channel was not read. Counts beyond ±2^26 are clamped there,
-/// so that sixteenths fit the integer.
+/// the quality is sparse; with none the channel was not read. Counts are first clamped to ±2^26.
 #[must_use]
 pub fn filter(counts: &mut [i32]) -> Channel {
+    for count in counts.iter_mut() {
+        *count = (*count).clamp(-COUNT_MAX, COUNT_MAX);
+    }
     counts.sort_unstable();
     let Some(&median) = counts.get(counts.len() / 2) else {
         return Channel::default();
@@ -23,11 +28,10 @@ pub fn filter(counts: &mut [i32]) -> Channel {
     let middle = counts.get(quarter..counts.len() - quarter).unwrap_or(counts);
     // Differences from the median are small, so f32 holds them and their mean exactly enough.
     #[expect(clippy::cast_precision_loss, reason = "a difference within a burst is small")]
-    let mean = middle.iter().map(|&count| count.saturating_sub(median) as f32).mean();
-    #[expect(clippy::cast_possible_truncation, reason = "saturates, and is clamped below")]
+    let mean = middle.iter().map(|&count| (count - median) as f32).mean();
+    #[expect(clippy::cast_possible_truncation, reason = "saturates")]
     let sixteenths = round_half_away(mean * 16.0) as i32;
-    let limit = 1 << 26;
-    let count_16 = (median.clamp(-limit, limit) * 16).saturating_add(sixteenths);
+    let count_16 = (median * 16).saturating_add(sixteenths);
     let quality = if counts.len() < BURST_COUNTS_MIN { Quality::Sparse } else { Quality::Good };
     Channel { count_16, quality }
 }
@@ -35,3 +39,6 @@ pub fn filter(counts: &mut [i32]) -> Channel {
 fn round_half_away(value: f32) -> f32 {
     if value < 0.0 { value - 0.5 } else { value + 0.5 }
 }
+
+#[cfg(test)]
+mod tests;

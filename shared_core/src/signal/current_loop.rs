@@ -37,3 +37,6 @@ pub const fn classify(count_16: i32) -> LoopClass {
         LoopClass::Measurement { in_specification }
     }
 }
+
+#[cfg(test)]
+mod tests;

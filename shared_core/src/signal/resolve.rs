@@ -2,7 +2,7 @@
 //!
 //! A stale reading is projected both ways: up at the highest rise and down at the highest fall,
 //! capped at overflow and at empty. A head sensor's projection is a pressure: the heaviest liquid at
-//! the highest rise.
+//! the highest rise, and the swing of the gas where the reading holds it.
 
 use super::{Channel, LoopClass, Quality, SensorError, classify};
 use crate::alarm::FaultCause;
@@ -69,8 +69,11 @@ pub fn resolve(
     level: Channel,
     temperature: Channel,
 ) -> Resolved {
-    if let Quality::Good | Quality::Sparse = temperature.quality {
-        sight.last_temperature = Some(temperature.count_16);
+    match temperature.quality {
+        Quality::Good | Quality::Sparse => sight.last_temperature = Some(temperature.count_16),
+        // A temperature of some time ago must not narrow the density band.
+        Quality::Failed(_) => sight.last_temperature = None,
+        Quality::NotRead => {}
     }
     let density = density(plan, sight);
     let fault = match judge(plan, sight, level) {
@@ -113,7 +116,9 @@ fn judge(plan: &Plan, sight: &mut Sight, level: Channel) -> Result<bool, Option<
                     return Ok(!in_specification);
                 }
                 LoopClass::Between if sight.level_ok => return Ok(true),
-                LoopClass::Between => return Err(None),
+                // The last status was a failure, or there is none: it stays so, with a cause.
+                LoopClass::Between if level.count_16 < 12_000 * 16 => FaultCause::CurrentLow,
+                LoopClass::Between => FaultCause::CurrentHigh,
                 LoopClass::WireBreak => FaultCause::WireBreak,
                 LoopClass::FailureLow => FaultCause::CurrentLow,
                 LoopClass::FailureHigh => FaultCause::CurrentHigh,
@@ -163,7 +168,7 @@ fn full(plan: &Plan, density: Band, level_m: f32) -> (f32, f32) {
     match plan.level.sensor {
         LevelSensor::Surface => (plan.floor_m, level_m),
         LevelSensor::Head { at_m, reference } => {
-            let heaviest = at_least(density.high_kg_m3, plan.liquid.whole_band().high_kg_m3);
+            let heaviest = plan.liquid.with_layers(density).high_kg_m3;
             let column = heaviest * plan.gravity_m_s2 * crate::lane::ramp(level_m - at_m);
             match reference {
                 Reference::GasSpace => (0.0, column),
@@ -190,16 +195,19 @@ fn project(
     let age_ms = tick_ms.saturating_sub(read_ms);
     #[expect(clippy::cast_precision_loss, reason = "ages beyond 2^24 ms are long past every cap")]
     let age_s = age_ms as f32 * 1.0e-3;
-    let per_metre = match plan.level.sensor {
-        LevelSensor::Surface => 1.0,
-        LevelSensor::Head { .. } => {
-            plan.gravity_m_s2 * at_least(density.high_kg_m3, plan.liquid.whole_band().high_kg_m3)
+    let weight = plan.gravity_m_s2 * plan.liquid.with_layers(density).high_kg_m3;
+    // What the gas may add to a gauge or absolute head without any rise of the level.
+    let (per_metre, swing) = match plan.level.sensor {
+        LevelSensor::Surface => (1.0, 0.0),
+        LevelSensor::Head { reference: Reference::GasSpace, .. } => (weight, 0.0),
+        LevelSensor::Head { reference: Reference::Atmosphere { .. }, .. } => {
+            (weight, plan.gas.highest_pa - plan.gas.lowest_pa)
         }
     };
     let estimate = value(plan, count_16);
     let half = half_width(plan, estimate);
-    let rise = plan.highest_rise_m_s * age_s * per_metre;
-    let fall = plan.highest_fall_m_s * age_s * per_metre;
+    let rise = plan.highest_rise_m_s * age_s * per_metre + swing;
+    let fall = plan.highest_fall_m_s * age_s * per_metre + swing;
     // A cap never cuts what was measured: the projection only stops there.
     let high = at_least(at_most(estimate + half + rise, brim), estimate + half);
     let low = at_most(at_least(estimate - half - fall, empty), estimate - half);
@@ -212,12 +220,12 @@ fn project(
 }
 
 /// Density of the top liquid: of the confirmed product, else of any; narrowed by a temperature
-/// sensor where the plan has one and the plan's own liquid is confirmed.
+/// sensor where the plan has one and its own liquid is confirmed, or the only one.
 fn density(plan: &Plan, sight: &Sight) -> Band {
     let liquid = &plan.liquid;
     match sight.product {
-        None => liquid.any_product(),
-        Some(0) => at_temperature(plan, sight).unwrap_or(liquid.top),
+        None if !liquid.products.is_empty() => liquid.any_product(),
+        None | Some(0) => at_temperature(plan, sight).unwrap_or(liquid.top),
         Some(index) => {
             let product = liquid.products.get(usize::from(index) - 1);
             product.copied().unwrap_or_else(|| liquid.any_product())
@@ -225,11 +233,16 @@ fn density(plan: &Plan, sight: &Sight) -> Band {
     }
 }
 
+/// Density at the liquid's temperature; `None` when that is not known or beyond the table.
 fn at_temperature(plan: &Plan, sight: &Sight) -> Option<Band> {
     let liquid = &plan.liquid;
     let (sensor, count_16) = (liquid.temperature?, sight.last_temperature?);
     #[expect(clippy::cast_precision_loss, reason = "temperature counts are small")]
     let celsius = sensor.celsius_at_zero + count_16 as f32 * sensor.celsius_per_count_16;
+    let [(coolest_c, _), .., (warmest_c, _)] = liquid.table.points() else { return None };
+    if !(*coolest_c <= celsius && celsius <= *warmest_c) {
+        return None;
+    }
     let estimate_kg_m3 = liquid.table.at(celsius)?;
     let (low, high) =
         liquid.table.extremes(celsius - sensor.uncertainty_k, celsius + sensor.uncertainty_k)?;
@@ -239,3 +252,6 @@ fn at_temperature(plan: &Plan, sight: &Sight) -> Option<Band> {
         high_kg_m3: high * (1.0 + liquid.table_uncertainty),
     })
 }
+
+#[cfg(test)]
+mod tests;

@@ -3,8 +3,7 @@
 //! Source: S. Cheshire, M. Baker, "Consistent Overhead Byte Stuffing", IEEE/ACM Transactions on
 //! Networking 7(2), 1999. Both directions work in place.
 
-/// Code of a block of 254 bytes that no zero follows.
-const FULL: u8 = 0xFF;
+const FULL: u8 = 0xFF; // a block of 254 bytes that no zero follows
 
 /// Most bytes that encoding adds to `length` bytes, the closing zero not counted.
 #[must_use]
@@ -38,8 +37,8 @@ pub fn encode_in_place(buffer: &mut [u8], start: usize, length: usize) -> Option
     Some(write)
 }
 
-/// Decodes a frame, without its closing zero, to the front of itself and returns how many bytes
-/// there are now. `None` when it holds a zero or its last block is cut short.
+/// Decodes a frame, without its closing zero, to the front of itself and returns its new length.
+/// `None` when it is empty, holds a zero, or its last block is cut short.
 pub fn decode_in_place(frame: &mut [u8]) -> Option<usize> {
     let (mut read, mut write) = (0, 0);
     if frame.is_empty() || frame.contains(&0) {

@@ -60,7 +60,10 @@ fn fits_across(part: &Part, vessel: &Vessel, sink: &Sink) {
         Vessel::Box { length_m, width_m, .. } => length_m.value.max(width_m.value),
         Vessel::Loose => return,
     };
-    let width_m = plane.shape.width_m();
+    let mut width_m = plane.shape.width_m();
+    if plane.is_level() {
+        width_m = width_m.max(plane.shape.length_m());
+    }
     if width_m > across_m + TOGETHER_M {
         let message = format!(
             "{} `{}` is {} wide, the tank {} across",

@@ -28,7 +28,8 @@ pub(crate) fn missing(file: &TankFile) -> Vec<Finding> {
     need(capped, end, "`overflow`", "overflow = \"9.3 m\" in [fill]");
     match &file.level {
         None => {
-            need(false, end, "table [level]", "[level] with sensor, at, uncertainty and signal")
+            let write = "[level] with sensor, at, uncertainty and signal";
+            need(false, end, "table [level]", write);
         }
         Some(level) => {
             let write = "signal = { current_loop = [..] } or { modbus = {..} } in [level]";

@@ -46,8 +46,14 @@ pub(super) fn both(
     let outward = list(section, "capacity", bearer);
     if outward.as_ref().is_some_and(Vec::is_empty) {
         let message = format!("{} has no capacity, it would never be judged", section.place);
-        let hint = "write capacity = [ { force = \"20 kN\", basis = \"drawing\" } ], or say why \
-                    there is none: capacity = [ { none = \"rated by others\" } ]";
+        let example = match bearer.kind {
+            PartKind::Course => "hoop_tension = \"419 kN/m\"",
+            PartKind::Panel | PartKind::Hatch => "force = \"20 kN\"",
+        };
+        let hint = format!(
+            "write capacity = [ {{ {example}, basis = \"drawing\" }} ], or say why there is none: \
+             capacity = [ {{ none = \"rated by others\" }} ]"
+        );
         section.report(Code::MissingCapacity, section.span, message, hint);
         return None;
     }

@@ -33,7 +33,10 @@ impl Range {
 
     /// What `value` breaks, as the end of a sentence, or nothing.
     pub(crate) fn broken_by(self, value: f64, quantity: Option<Quantity>) -> Option<String> {
-        let write = |v: f64| quantity.map_or_else(|| v.to_string(), |q| format_si(v, q));
+        let write = |v: f64| match quantity {
+            Some(quantity) if v != 0.0 => format_si(v, quantity),
+            _ => v.to_string(),
+        };
         let largest = quantity.map_or(f64::MAX, largest);
         let low = self.low.max(-largest);
         let high = self.high.min(largest);
@@ -54,19 +57,16 @@ impl Range {
 /// keeps later arithmetic in range.
 fn largest(quantity: Quantity) -> f64 {
     match quantity {
-        Quantity::Length => 1e3,
-        Quantity::Volume | Quantity::Flow => 1e7,
+        Quantity::Length | Quantity::Ratio | Quantity::Voltage | Quantity::Current => 1e3,
+        Quantity::Volume | Quantity::Flow | Quantity::Time => 1e7,
         Quantity::Mass | Quantity::Force | Quantity::LineLoad | Quantity::Moment => 1e9,
         Quantity::Pressure => 1e10,
         Quantity::Density => 25e3,
-        Quantity::Time => 1e7,
         Quantity::Speed => 10.0,
         Quantity::Acceleration => 100.0,
         Quantity::Temperature | Quantity::TemperatureDifference => 2e3,
         Quantity::PerKelvin => 0.1,
         Quantity::AngleDegrees => 360.0,
-        Quantity::Ratio => 1e3,
-        Quantity::Voltage | Quantity::Current => 1e3,
         Quantity::Charge => 1e8,
     }
 }

@@ -2,7 +2,7 @@
 
 use super::field::{Field, Range, field};
 use super::section::Section;
-use crate::tank::finding::{Code, Located, Span};
+use crate::tank::finding::{Located, Span};
 use crate::tank::model::{
     Count, LevelSensor, Modbus, PressureReference, Sensing, Signal, TemperatureSignal,
     TemperatureSource,
@@ -115,17 +115,13 @@ fn signal(section: &mut Section<'_>, kind: Kind) -> Option<Located<Signal>> {
         Kind::Head => ("[\"0 kPa\", \"150 kPa\"], at 4 mA and at 20 mA", "\"10 Pa\", one count"),
         _ => ("[\"0 m\", \"10 m\"], at 4 mA and at 20 mA", "\"1 mm\", the value of one count"),
     };
-    let read = match table.one_of(&["current_loop", "modbus"], WRITE)? {
-        "modbus" => {
-            let scale = field("scale", kind.senses(), Range::POSITIVE, count_write);
-            modbus(&mut table, scale).map(Signal::Modbus)
-        }
-        _ => {
-            let ends = field("current_loop", kind.senses(), Range::ANY, span_write);
-            table
-                .need_rising_pair(ends)
-                .map(|[low, high]| Signal::CurrentLoop { at_4_ma: low.value, at_20_ma: high.value })
-        }
+    let read = if table.one_of(&["current_loop", "modbus"], WRITE)? == "modbus" {
+        let scale = field("scale", kind.senses(), Range::POSITIVE, count_write);
+        modbus(&mut table, scale).map(Signal::Modbus)
+    } else {
+        let ends = field("current_loop", kind.senses(), Range::ANY, span_write);
+        let ends = table.need_rising_pair(ends);
+        ends.map(|[low, high]| Signal::CurrentLoop { at_4_ma: low.value, at_20_ma: high.value })
     };
     table.finish();
     read.map(|signal| Located::new(signal, span))
@@ -178,11 +174,5 @@ pub(super) fn temperature_signal(liquid: &mut Section<'_>) -> Option<Temperature
         "\"1 K\", the half-width that a reading never exceeds",
     ));
     table.finish();
-    let (source, uncertainty_k) = (source?, uncertainty?);
-    if liquid.item("expansion").and_then(|item| item.get_ref().as_str()) == Some("none") {
-        let message = "`temperature_signal` has no effect beside `expansion = \"none\"`";
-        let hint = "give the expansion of the liquid, or remove the signal";
-        liquid.report(Code::ConflictingKeys, span, message, hint);
-    }
-    Some(TemperatureSignal { source, uncertainty_k, span })
+    Some(TemperatureSignal { source: source?, uncertainty_k: uncertainty?, span })
 }

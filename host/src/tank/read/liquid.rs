@@ -30,7 +30,7 @@ pub(super) fn state(root: &mut Section<'_>) -> State {
         return nothing;
     }
     let Some(mut section) = root.table("liquid", WRITE_LIQUID) else { return nothing };
-    let layers = section.tables("below", "a list: begin each layer with [[liquid.below]]");
+    let layers = section.tables("below", "[[liquid.below]] at the head of each layer");
     let below = layers.into_iter().filter_map(layer).collect();
     let temperature_signal = level::temperature_signal(&mut section);
     let liquid = liquid(&mut section);
@@ -39,7 +39,7 @@ pub(super) fn state(root: &mut Section<'_>) -> State {
 }
 
 pub(super) fn products(root: &mut Section<'_>) -> Vec<Liquid> {
-    let products = root.tables("product", "a list: begin each product with [[product]]");
+    let products = root.tables("product", "[[product]] at the head of each product");
     let read = products.into_iter().filter_map(|mut section| {
         let product = liquid(&mut section);
         section.refuse("temperature_signal", "give it in [liquid]; it holds for every product");

@@ -128,7 +128,8 @@ fn root_tables(table: &DeTable<'_>, len: usize, sink: &Sink) -> Draft {
     let outside = surroundings::outside(&mut root);
     let gravity = surroundings::gravity(&mut root);
     let level = level::level(&mut root);
-    let part::Parts { parts, names: part_names, complete: parts_complete } = part::parts(&mut root);
+    let part::Parts { read: parts, names: part_names, complete: parts_complete } =
+        part::parts(&mut root);
     let alarm = alarm::alarms(&mut root);
     let logging = service::logging(&mut root);
     let device_id = service::device(&mut root);
@@ -185,7 +186,7 @@ fn unknown_tables(root: &Section<'_>) {
             root.report(Code::NotHydrostatic, key.span, message, liquid::NOT_HYDROSTATIC_HINT);
             continue;
         }
-        let known = root.known();
+        let known = root.known().replace("curved, ", "");
         let synonym = SYNONYMS.iter().find(|(theirs, _)| *theirs == key.value);
         let near = synonym.map(|(_, ours)| *ours).or_else(|| nearest(key.value, known.split(", ")));
         let hint = match near {

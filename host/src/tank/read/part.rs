@@ -7,13 +7,14 @@ use super::secured;
 use super::shape::{self, Placed};
 use crate::tank::finding::{Code, Located};
 use crate::tank::model::{
-    Course, DesignPoint, Hatch, Heights, Opens, Panel, Part, PartKind, Plane,
+    Bolts, Course, DesignPoint, Hatch, Heights, Opens, Panel, Part, PartKind, Plane, Shape,
 };
 use crate::units::Quantity::{Length, Speed};
+use crate::units::format_si;
 
 /// The parts in the order of the file.
 pub(super) struct Parts {
-    pub(super) parts: Vec<Part>,
+    pub(super) read: Vec<Part>,
     /// Names, also of parts that could not be read.
     pub(super) names: Vec<Located<String>>,
     /// Whether all parts could be read.
@@ -24,9 +25,9 @@ pub(super) fn parts(root: &mut Section<'_>) -> Parts {
     let mut sections = Vec::new();
     let mut stated = false;
     for (key, write) in [
-        ("course", "a list: begin each course with [[course]]"),
-        ("panel", "a list: begin each panel with [[panel]]"),
-        ("hatch", "a list: begin each hatch with [[hatch]]"),
+        ("course", "[[course]] at the head of each course"),
+        ("panel", "[[panel]] at the head of each panel"),
+        ("hatch", "[[hatch]] at the head of each hatch"),
     ] {
         stated |= root.item(key).is_some();
         sections.extend(root.tables(key, write).into_iter().map(|section| (key, section)));
@@ -52,7 +53,7 @@ pub(super) fn parts(root: &mut Section<'_>) -> Parts {
         parts.extend(part);
     }
     let complete = parts.len() == count;
-    Parts { parts, names, complete }
+    Parts { read: parts, names, complete }
 }
 
 /// Refuses curved parts; whether there are any.
@@ -66,7 +67,6 @@ fn curved(root: &mut Section<'_>) -> bool {
 }
 
 fn name(section: &mut Section<'_>, kind: &str) -> Option<Located<String>> {
-    section.place = format!("[[{kind}]]");
     let name = section.need_name("name", "\"ground hatch\", a name that no other part has")?;
     section.place = format!("{kind} `{}`", name.value);
     Some(name)
@@ -186,14 +186,12 @@ fn hatch(mut section: Section<'_>, name: Option<Located<String>>) -> Option<Hatc
     })
 }
 
-type LocatedShape = Option<Located<crate::tank::model::Shape>>;
-
 /// The gasket encloses the opening, the bolts stand outside it.
 fn gasket_and_bolts(
     section: &Section<'_>,
-    shape: LocatedShape,
-    sealed: LocatedShape,
-    bolts: Option<Located<crate::tank::model::Bolts>>,
+    shape: Option<Located<Shape>>,
+    sealed: Option<Located<Shape>>,
+    bolts: Option<Located<Bolts>>,
 ) {
     let Some(shape) = shape else { return };
     if let Some(sealed) = sealed.filter(|sealed| !sealed.value.encloses(&shape.value)) {
@@ -207,12 +205,12 @@ fn gasket_and_bolts(
         section.report(Code::GasketInside, sealed.span, message, hint);
     }
     let Some(bolts) = bolts else { return };
-    let circle = crate::tank::model::Shape::Circle { diameter_m: bolts.value.circle_diameter_m };
+    let circle = Shape::Circle { diameter_m: bolts.value.circle_diameter_m };
     if !circle.encloses(&shape.value) {
         let message = format!(
-            "`bolt_circle_diameter` in {} is {}, the bolts would stand in the opening, {}",
+            "`bolt_circle_diameter` in {} is {}: the bolts would stand in the opening, {}",
             section.place,
-            shape::describe(&circle),
+            format_si(bolts.value.circle_diameter_m, Length),
             shape::describe(&shape.value)
         );
         let hint = "give the diameter of the circle through the axes of the bolts";

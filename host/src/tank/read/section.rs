@@ -32,6 +32,12 @@ impl Sink {
         self.0.borrow_mut().push(finding);
     }
 
+    /// Takes back the findings about a key missing at `span`.
+    fn withdraw(&self, span: Span, message: &str) {
+        let stays = |f: &Finding| f.span != span || f.message != message;
+        self.0.borrow_mut().retain(stays);
+    }
+
     /// All findings so far.
     pub(crate) fn into_inner(self) -> Vec<Finding> {
         self.0.into_inner()
@@ -84,21 +90,32 @@ impl<'a> Section<'a> {
 
     /// Reports a required key that is missing. `write` follows `key = ` in the hint.
     pub(crate) fn missing(&self, key: &str, write: &str) {
-        let message = format!("`{key}` is missing in {}", self.place);
-        self.report(Code::MissingKey, self.span, message, format!("write {key} = {write}"));
+        self.report(Code::MissingKey, self.span, self.lacks(key), format!("write {key} = {write}"));
+    }
+
+    fn lacks(&self, key: &str) -> String {
+        format!("`{key}` is missing in {}", self.place)
     }
 
     /// Reports a value of the wrong TOML type.
     pub(crate) fn wrong_type(&self, key: &str, item: Item<'_>, wanted: &str, write: &str) {
         let found = article(item.get_ref().type_str());
-        let message = format!("`{key}` in {} is {found}, it must be {wanted}", self.place);
-        self.report(Code::WrongType, item.span().into(), message, format!("write {key} = {write}"));
+        let place = if self.place.is_empty() { "the file" } else { &self.place };
+        let message = format!("`{key}` in {place} is {found}, it must be {wanted}");
+        // What to write is a table header, or what follows the key.
+        let header = write.trim_start_matches('[').starts_with(char::is_alphabetic);
+        let hint = if header && write.starts_with('[') {
+            format!("write {write}")
+        } else {
+            format!("write {key} = {write}")
+        };
+        self.report(Code::WrongType, item.span().into(), message, hint);
     }
 
     /// Refuses a key that is known and not offered.
     pub(crate) fn refuse(&mut self, key: &'static str, instead: &str) {
         if let Some(span) = self.key_span(key) {
-            let message = format!("`{key}` is not offered by this version");
+            let message = format!("`{key}` in {} is not offered by this version", self.place);
             self.report(Code::NotOffered, span, message, instead);
         }
     }
@@ -106,16 +123,12 @@ impl<'a> Section<'a> {
     /// A table below this one.
     pub(crate) fn table(&mut self, key: &'static str, write: &str) -> Option<Section<'a>> {
         let item = self.item(key)?;
-        let place = self.place_of(key);
-        match item.get_ref() {
-            DeValue::Table(table) => {
-                Some(Section::new(table, item.span().into(), place, self.sink))
-            }
-            _ => {
-                self.wrong_type(key, item, "a table", write);
-                None
-            }
-        }
+        let DeValue::Table(table) = item.get_ref() else {
+            self.wrong_type(key, item, "a table", write);
+            return None;
+        };
+        let place = if self.place.is_empty() { format!("[{key}]") } else { self.place_of(key) };
+        Some(Section::new(table, item.span().into(), place, self.sink))
     }
 
     /// A table below this one that must be there.
@@ -135,9 +148,10 @@ impl<'a> Section<'a> {
             return Vec::new();
         };
         let mut found = Vec::new();
-        for entry in array.iter() {
+        for entry in array {
             if let DeValue::Table(table) = entry.get_ref() {
-                let place = self.place_of(key);
+                let root = self.place.is_empty();
+                let place = if root { format!("[[{key}]]") } else { self.place_of(key) };
                 found.push(Section::new(table, entry.span().into(), place, self.sink));
             } else {
                 self.wrong_type(key, entry, "a list of tables", write);
@@ -195,7 +209,11 @@ impl<'a> Section<'a> {
             let word = key.get_ref().as_ref();
             if !self.asked.contains(&word) {
                 let hint = match nearest(word, self.asked.iter().copied()) {
-                    Some(near) => format!("write {near}, the nearest known key, or remove it"),
+                    Some(near) => {
+                        // One slip is one finding.
+                        self.sink.withdraw(self.span, &self.lacks(near));
+                        format!("write {near}, the nearest known key, or remove it")
+                    }
                     None => format!("remove it; known here: {}", self.known()),
                 };
                 let message = format!("key `{}` is not known in {}", shorten(word), self.place);
@@ -221,11 +239,7 @@ impl<'a> Section<'a> {
     }
 
     fn place_of(&self, key: &str) -> String {
-        if self.place.is_empty() {
-            format!("[{key}]")
-        } else {
-            format!("`{key}` of {}", self.place)
-        }
+        format!("`{key}` of {}", self.place)
     }
 }
 

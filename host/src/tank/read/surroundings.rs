@@ -18,14 +18,18 @@ pub(super) fn gas(root: &mut Section<'_>) -> Option<Gas> {
     }
     let mut section = root.table("gas", WRITE_GAS)?;
     section.refuse("signal", "give lowest, pressure and highest; they bound the gas without one");
+    let vented_stated = section.item("vented").is_some();
     let vented = section.flag("vented");
+    if vented_stated && vented.is_none() {
+        return None;
+    }
     let held = ["lowest", "pressure", "highest"];
-    if let Some(vented) = vented.filter(|vented| vented.value) {
+    if vented.is_some_and(|vented| vented.value) {
         for key in held {
-            if section.key_span(key).is_some() {
+            if let Some(span) = section.key_span(key) {
                 let message = format!("`{key}` stands beside `vented = true` in [gas]");
                 let hint = "a vented tank holds no pressure: remove one of the two";
-                section.report(Code::ConflictingKeys, vented.span, message, hint);
+                section.report(Code::ConflictingKeys, span, message, hint);
             }
         }
         section.finish();
@@ -40,12 +44,11 @@ pub(super) fn gas(root: &mut Section<'_>) -> Option<Gas> {
 }
 
 pub(super) fn outside(root: &mut Section<'_>) -> Vec<Outside> {
-    let tables = root.tables("outside", "a list: begin each with [[outside]]");
+    let tables = root.tables("outside", "[[outside]] at the head of each");
     tables.into_iter().filter_map(one_outside).collect()
 }
 
 fn one_outside(mut section: Section<'_>) -> Option<Outside> {
-    section.place = "[[outside]]".to_owned();
     let level = |key, write| field(key, Length, Range::ANY, write);
     let highest = section.need(level("highest", "\"1.2 m\", the level it may reach"));
     let lowest = section.take(level("lowest", "\"0 m\", the level that is proven to stand always"));

@@ -9,7 +9,7 @@ use crate::tank::NAME_BYTES;
 use crate::tank::finding::{Code, Located};
 use crate::units::{Quantity, UnitError, format_si, parse};
 
-impl<'a> Section<'a> {
+impl Section<'_> {
     /// A quantity that may be absent.
     pub(crate) fn take(&mut self, field: Field) -> Option<Located<f64>> {
         let item = self.item(field.key)?;
@@ -160,7 +160,9 @@ impl<'a> Section<'a> {
             return Some(Located::new(value, item.span().into()));
         }
         let shown = shorten(&number.to_string());
-        let message = format!("`{key}` in {} is {shown}, it must be {low} to {high}", self.place);
+        let between = if high - low == 1 { "or" } else { "to" };
+        let message =
+            format!("`{key}` in {} is {shown}, it must be {low} {between} {high}", self.place);
         self.report(
             Code::OutOfRange,
             item.span().into(),

@@ -25,7 +25,6 @@ pub(super) fn tank(root: &mut Section<'_>) -> Tank {
     let Some(mut tank) = root.table("tank", WRITE_TANK) else {
         return Tank { name: None, vessel: None, conditions: Vec::new() };
     };
-    tank.place = "[tank]".to_owned();
     let name = tank.need_name("name", "\"day tank 3\", the name that people on site use");
     let vessel = vessel(&mut tank);
     let conditions = conditions(&mut tank);
@@ -92,7 +91,8 @@ fn conditions(tank: &mut Section<'_>) -> Vec<Located<String>> {
 }
 
 pub(super) fn fill(root: &mut Section<'_>) -> Fill {
-    let Some(mut fill) = root.table("fill", "levels as in overflow = \"9.3 m\"") else {
+    let Some(mut fill) = root.table("fill", "[fill] with levels, such as overflow = \"9.3 m\"")
+    else {
         return Fill::default();
     };
     let level = |key, write| field(key, Length, Range::POSITIVE, write);

@@ -1,2 +1,0 @@
-//! Emulated board.
-fn main() {}

@@ -1,0 +1,221 @@
+//! The serial ports: CMSDK APB UART (Arm DDI 0479, section 4.3).
+//!
+//! The host link and the sensor bus are interrupt driven through a queue in each direction. When
+//! the receive queue is full the byte stays in the UART; the emulator then holds the sender back,
+//! a real line would overrun. Overrun, parity and framing errors do not exist on this machine.
+
+use core::cell::RefCell;
+use core::convert::Infallible;
+
+use critical_section::Mutex;
+use embedded_io::{ErrorType, Read, ReadReady, Write, WriteReady};
+use heapless::Deque;
+
+use crate::register::Register;
+use crate::timer::TICKS_PER_SECOND;
+
+/// Bytes that each queue holds.
+const QUEUE: usize = 256;
+
+const TX_FULL: u32 = 1 << 0;
+const RX_FULL: u32 = 1 << 1;
+
+const TX_ENABLE: u32 = 1 << 0;
+const RX_ENABLE: u32 = 1 << 1;
+const TX_INTERRUPT: u32 = 1 << 2;
+const RX_INTERRUPT: u32 = 1 << 3;
+
+/// Registers of one UART.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Uart {
+    data: Register,
+    state: Register,
+    control: Register,
+    interrupt: Register,
+    divider: Register,
+}
+
+impl Uart {
+    #[expect(unsafe_code, reason = "names the registers of a UART")]
+    const fn at(base: usize) -> Self {
+        // SAFETY: called with the base addresses of this machine's UARTs only, below.
+        unsafe {
+            Self {
+                data: Register::at(base),
+                state: Register::at(base + 0x4),
+                control: Register::at(base + 0x8),
+                interrupt: Register::at(base + 0xC),
+                divider: Register::at(base + 0x10),
+            }
+        }
+    }
+
+    fn enable(self, baud: u32, control: u32) {
+        // The divider's least value is 16 (Arm DDI 0479, table 4-7).
+        let divider = TICKS_PER_SECOND.checked_div(baud).unwrap_or(0);
+        self.divider.write(if divider < 16 { 16 } else { divider });
+        self.control.write(control);
+    }
+
+    /// Switches the transmitter on, without interrupts.
+    pub(crate) fn enable_polled_output(self, baud: u32) {
+        self.enable(baud, TX_ENABLE);
+    }
+
+    /// Sends one byte as soon as the transmitter takes it.
+    pub(crate) fn send_polled(self, byte: u8) {
+        while self.state.read() & TX_FULL != 0 {}
+        self.data.write(u32::from(byte));
+    }
+}
+
+/// The log's UART.
+pub(crate) const LOG: Uart = Uart::at(0x4000_6000);
+
+struct Queues {
+    received: Deque<u8, QUEUE>,
+    to_send: Deque<u8, QUEUE>,
+}
+
+type SharedQueues = Mutex<RefCell<Queues>>;
+
+const fn empty() -> SharedQueues {
+    Mutex::new(RefCell::new(Queues { received: Deque::new(), to_send: Deque::new() }))
+}
+
+// Apart from the registers' addresses: all zero, they need no copy in flash.
+static LINK_QUEUES: SharedQueues = empty();
+static SENSOR_BUS_QUEUES: SharedQueues = empty();
+
+/// A UART with its queues, shared between a [`SerialPort`] and the interrupts.
+pub(crate) struct Buffered {
+    uart: Uart,
+    queues: &'static SharedQueues,
+}
+
+pub(crate) static LINK: Buffered = Buffered { uart: Uart::at(0x4000_4000), queues: &LINK_QUEUES };
+pub(crate) static SENSOR_BUS: Buffered =
+    Buffered { uart: Uart::at(0x4000_5000), queues: &SENSOR_BUS_QUEUES };
+
+impl Buffered {
+    pub(crate) fn start(&self, baud: u32) {
+        self.uart.enable(baud, TX_ENABLE | RX_ENABLE | TX_INTERRUPT | RX_INTERRUPT);
+    }
+
+    fn with<R>(&self, f: impl FnOnce(&mut Queues) -> R) -> R {
+        critical_section::with(|cs| f(&mut self.queues.borrow_ref_mut(cs)))
+    }
+
+    /// Takes what the UART received, as far as the queue has room.
+    fn pump_received(&self, queues: &mut Queues) {
+        while !queues.received.is_full() && self.uart.state.read() & RX_FULL != 0 {
+            let [byte, ..] = self.uart.data.read().to_le_bytes();
+            // Cannot fail, there is room.
+            let _ = queues.received.push_back(byte);
+        }
+    }
+
+    /// Gives the UART what waits, as far as it takes it.
+    fn pump_to_send(&self, queues: &mut Queues) {
+        while self.uart.state.read() & TX_FULL == 0 {
+            let Some(byte) = queues.to_send.pop_front() else { return };
+            self.uart.data.write(u32::from(byte));
+        }
+    }
+
+    pub(crate) fn on_receive(&self) {
+        self.uart.interrupt.write(RX_FULL);
+        self.with(|queues| self.pump_received(queues));
+    }
+
+    pub(crate) fn on_transmit(&self) {
+        self.uart.interrupt.write(TX_FULL);
+        self.with(|queues| self.pump_to_send(queues));
+    }
+
+    pub(crate) fn has_received(&self) -> bool {
+        self.with(|queues| !queues.received.is_empty())
+    }
+}
+
+/// One serial line, taken through the embedded-io traits.
+#[expect(missing_debug_implementations, reason = "queues change under interrupts")]
+pub struct SerialPort {
+    port: &'static Buffered,
+}
+
+impl SerialPort {
+    pub(crate) fn new(port: &'static Buffered) -> Self {
+        Self { port }
+    }
+}
+
+impl ErrorType for SerialPort {
+    type Error = Infallible;
+}
+
+impl ReadReady for SerialPort {
+    fn read_ready(&mut self) -> Result<bool, Infallible> {
+        Ok(self.port.has_received())
+    }
+}
+
+impl Read for SerialPort {
+    /// Waits for the first byte, as embedded-io asks; ask `read_ready` first to avoid that.
+    fn read(&mut self, out: &mut [u8]) -> Result<usize, Infallible> {
+        if out.is_empty() {
+            return Ok(0);
+        }
+        loop {
+            let taken = self.port.with(|queues| {
+                let mut taken = 0;
+                for slot in out.iter_mut() {
+                    let Some(byte) = queues.received.pop_front() else { break };
+                    *slot = byte;
+                    taken += 1;
+                }
+                // A byte held back in the UART raises no second interrupt.
+                self.port.pump_received(queues);
+                taken
+            });
+            if taken > 0 {
+                return Ok(taken);
+            }
+        }
+    }
+}
+
+impl WriteReady for SerialPort {
+    fn write_ready(&mut self) -> Result<bool, Infallible> {
+        Ok(self.port.with(|queues| !queues.to_send.is_full()))
+    }
+}
+
+impl Write for SerialPort {
+    fn write(&mut self, bytes: &[u8]) -> Result<usize, Infallible> {
+        if bytes.is_empty() {
+            return Ok(0);
+        }
+        loop {
+            let given = self.port.with(|queues| {
+                let mut given = 0;
+                for &byte in bytes {
+                    if queues.to_send.push_back(byte).is_err() {
+                        break;
+                    }
+                    given += 1;
+                }
+                self.port.pump_to_send(queues);
+                given
+            });
+            if given > 0 {
+                return Ok(given);
+            }
+        }
+    }
+
+    fn flush(&mut self) -> Result<(), Infallible> {
+        while !self.port.with(|queues| queues.to_send.is_empty()) {}
+        Ok(())
+    }
+}

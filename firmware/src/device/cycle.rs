@@ -1,0 +1,142 @@
+//! One cycle: sense, append, evaluate, append, show.
+
+use super::{Device, sense};
+use crate::board::{Board, Clock};
+use heapless::Vec;
+use strake_core::alarm::{FaultCause, MACHINES};
+use strake_core::evaluate::{Moved, step};
+use strake_core::journal::{Entry, Sample};
+
+/// Every machine can move at most once in a sample.
+pub(super) type Moves = Vec<Moved, MACHINES>;
+
+impl<B: Board> Device<B> {
+    /// Takes one sample with all that follows from it.
+    pub(crate) fn cycle(&mut self, now_ms: u64) {
+        let sample = self.sense(now_ms);
+        self.take(&sample);
+        self.schedule(now_ms);
+        if self.flush_at_ms.is_none() {
+            let wait_ms = u64::from(self.plan.logging.flush_after_ms);
+            self.flush_at_ms = Some(now_ms.saturating_add(wait_ms));
+        }
+        if self.journal.as_ref().is_some_and(|journal| journal.waiting().is_empty()) {
+            self.flush_at_ms = None;
+        }
+        self.save_waiting();
+        self.show();
+    }
+
+    fn sense(&mut self, now_ms: u64) -> Sample {
+        let level = sense::channel(&mut self.level, &self.clock);
+        let temperature = if self.plan.liquid.temperature.is_some() {
+            sense::channel(&mut self.temperature, &self.clock)
+        } else {
+            strake_core::signal::Channel::default()
+        };
+        Sample { tick_ms: now_ms, level, temperature, battery_mv: self.battery_mv }
+    }
+
+    /// Appends a sample, evaluates it and appends what moved.
+    pub(super) fn take(&mut self, sample: &Sample) {
+        let tick_ms = sample.tick_ms;
+        let now = self.now(tick_ms);
+        let pushed =
+            self.journal.as_mut().map(|journal| journal.push(sample, &mut now.with(&self.state)));
+        let mut moves = Moves::new();
+        let resolved = step(&self.plan, &mut self.state, sample, |moved| {
+            let _ = moves.push(moved);
+        });
+        self.samples = self.samples.saturating_add(1);
+        if let Some(cause) = resolved.fault {
+            self.faults.seen(cause, sample.level.count_16);
+        }
+        self.reading = Some(resolved);
+        self.append_moves(tick_ms, &moves);
+        if let Some(Err(_)) = pushed {
+            self.journal_failed();
+        }
+        self.tell_faults(tick_ms);
+    }
+
+    /// Appends the entries of one sample's or one press's moves; they carry the hash behind all of
+    /// them.
+    pub(super) fn append_moves(&mut self, tick_ms: u64, moves: &Moves) {
+        let now = self.now(tick_ms);
+        let hash = self.state.hash;
+        let mut failed = false;
+        for chunk in moves.chunks(4) {
+            let entries: Vec<Entry, 4> =
+                chunk.iter().map(|moved| Entry::Transition(moved.entry(tick_ms, hash))).collect();
+            let appended = self
+                .journal
+                .as_mut()
+                .map(|journal| journal.append_events(&entries, &mut now.with(&self.state)));
+            failed |= matches!(appended, Some(Err(_)));
+        }
+        if failed {
+            self.journal_failed();
+        }
+    }
+
+    /// Appends one event; gives whether it stands in the journal.
+    pub(super) fn append(&mut self, entry: &Entry) -> bool {
+        let now = self.now(entry.tick_ms());
+        let appended = self
+            .journal
+            .as_mut()
+            .map(|journal| journal.append_event(entry, &mut now.with(&self.state)));
+        match appended {
+            Some(Ok(())) => true,
+            Some(Err(_)) => {
+                self.journal_failed();
+                false
+            }
+            None => false,
+        }
+    }
+
+    /// The journal cannot be written. The contact tells it at once; its entry and its machine follow
+    /// when the journal takes entries again, so that the replay sees what the device saw.
+    pub(super) fn journal_failed(&mut self) {
+        self.faults.seen(FaultCause::Journal, 0);
+        self.journal_failing = true;
+    }
+
+    /// Writes the fault entries that are due, and applies those that are inputs.
+    pub(super) fn tell_faults(&mut self, tick_ms: u64) {
+        while let Some(entry) = self.faults.next_due(tick_ms) {
+            if !self.append(&entry) {
+                break;
+            }
+            let Entry::Fault { cause, .. } = entry else { continue };
+            let mut moves = Moves::new();
+            self.state.report(&self.plan, cause, tick_ms, |moved| {
+                let _ = moves.push(moved);
+            });
+            self.append_moves(tick_ms, &moves);
+            if cause == FaultCause::Journal {
+                self.journal_failing = false;
+            }
+        }
+    }
+
+    /// The next cycle: on the beat of the interval, or when a pending delay expires.
+    fn schedule(&mut self, now_ms: u64) {
+        let interval_ms = u64::from(self.plan.logging.interval_ms).max(1);
+        let beats = now_ms.saturating_sub(self.beat_ms) / interval_ms;
+        self.beat_ms = self.beat_ms.saturating_add((beats + 1).saturating_mul(interval_ms));
+        let expiry_ms = self
+            .state
+            .next_expiry_ms(&self.plan, now_ms)
+            .map_or(u64::MAX, |wait_ms| now_ms.saturating_add(u64::from(wait_ms.max(1))));
+        self.next_cycle_ms = self.beat_ms.min(expiry_ms);
+        // The beat is kept as the last one that is over.
+        self.beat_ms = self.beat_ms.saturating_sub(interval_ms);
+    }
+
+    /// Looks again at once.
+    pub(super) fn look_now(&mut self) {
+        self.next_cycle_ms = self.clock.now_ms();
+    }
+}

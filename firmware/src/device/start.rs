@@ -1,0 +1,174 @@
+//! Start-up: the plan, the journal's end, the alarms as they stood, the start-up entry.
+//!
+//! A start-up always finishes and never clears a latch. The state is that of the newest checkpoint
+//! with every entry behind it applied in order, exactly as the replay does it.
+
+use super::faults::FaultLog;
+use super::plans::load;
+use super::{Device, InForce, WAITING_AREA};
+use crate::board::{Board, Clock, Hardware, ResetCause};
+use crate::journal::{Journal, Recovery, Restore};
+use crate::plan_store::PlanStore;
+use embedded_storage::nor_flash::NorFlash;
+use strake_core::alarm::FaultCause;
+use strake_core::evaluate::{Output, State, step};
+use strake_core::journal::{Entry, SectorHeader};
+use strake_core::plan::Plan;
+
+impl<B: Board> Device<B> {
+    /// Starts; gives the line and the watchdog back to the application.
+    pub(crate) fn start(hardware: Hardware<B>) -> (Self, B::Link, B::Watchdog) {
+        let Hardware { clock, level, temperature, journal, plans, link, contact, button, .. } =
+            hardware;
+        let Hardware { retained, watchdog, device_id, reset_cause, .. } = hardware;
+        let mut restored = Restored {
+            plans: PlanStore::open(plans),
+            plan: Plan::empty(),
+            in_force: None,
+            state: State::default(),
+        };
+        let (journal, recovery) = match Journal::open(journal, &mut restored) {
+            Ok((journal, recovery)) => (Some(journal), recovery),
+            Err(_) => (None, Recovery::default()),
+        };
+        let Restored { plans, plan, in_force, state } = restored;
+        let mut device = Self {
+            clock,
+            level,
+            temperature,
+            contact,
+            button,
+            retained,
+            name: device_id,
+            journal,
+            plans,
+            plan,
+            in_force,
+            state,
+            boot: recovery.last_boot.wrapping_add(1),
+            clock_fix: None,
+            reading: None,
+            battery_mv: 0,
+            samples: 0,
+            next_cycle_ms: 0,
+            beat_ms: 0,
+            flush_at_ms: None,
+            faults: FaultLog::default(),
+            journal_failing: false,
+            button_down: false,
+            output: Output::default(),
+        };
+        let carried = device.carry_over(&recovery);
+        device.begin(reset_cause, carried, &recovery);
+        device.show();
+        (device, link, watchdog)
+    }
+
+    /// Samples that waited in RAM when the controller restarted warm: pushed and evaluated like
+    /// fresh ones. They belong to the start before this one.
+    fn carry_over(&mut self, recovery: &Recovery) -> u8 {
+        let Some(journal) = &mut self.journal else { return 0 };
+        let Ok(waiting) = journal.carried(&self.retained, &WAITING_AREA, recovery) else {
+            return 0;
+        };
+        if self.in_force.is_none() {
+            return 0;
+        }
+        let boot = self.boot;
+        self.boot = recovery.last_boot;
+        let mut count = 0_u8;
+        for sample in waiting.iter() {
+            self.take(sample);
+            count = count.saturating_add(1);
+        }
+        let flushed = self.journal.as_mut().map(Journal::flush);
+        if let Some(Err(_)) = flushed {
+            self.journal_failed();
+        }
+        self.boot = boot;
+        count
+    }
+
+    fn begin(&mut self, cause: ResetCause, carried: u8, recovery: &Recovery) {
+        let tick_ms = self.clock.now_ms();
+        let missing_ms_max = match (cause, self.in_force) {
+            // Everything that waited was carried over.
+            (ResetCause::Watchdog | ResetCause::Panic | ResetCause::Software, Some(_))
+                if carried > 0 =>
+            {
+                0
+            }
+            (_, Some(_)) => {
+                self.plan.logging.flush_after_ms.saturating_add(self.plan.logging.interval_ms)
+            }
+            (_, None) => 0,
+        };
+        let boot = self.boot;
+        self.append(&Entry::StartUp { tick_ms, boot, cause, carried, missing_ms_max, count: 1 });
+        self.state.restart(tick_ms);
+        self.take_over_newest();
+        if recovery.damaged_sectors > 0 {
+            let damaged = i32::try_from(recovery.damaged_sectors).unwrap_or(i32::MAX);
+            self.faults.seen(FaultCause::JournalDamaged, damaged);
+        }
+        if self.in_force.is_some() {
+            self.tell_faults(tick_ms);
+        }
+        self.beat_ms = tick_ms;
+        self.next_cycle_ms = tick_ms;
+        self.save_waiting();
+    }
+}
+
+/// Applies what the journal remembers, with the plan that was in force then.
+struct Restored<F> {
+    plans: PlanStore<F>,
+    plan: Plan,
+    /// Which plan `plan` holds.
+    in_force: Option<InForce>,
+    state: State,
+}
+
+impl<F: NorFlash> Restored<F> {
+    /// Puts the plan with this fingerprint into force; without it samples cannot be applied.
+    fn use_plan(&mut self, fingerprint: u64) {
+        if self.in_force.is_none_or(|plan| plan.fingerprint != fingerprint) {
+            self.in_force = load(&mut self.plans, &mut self.plan, fingerprint).ok();
+        }
+    }
+}
+
+impl<F: NorFlash> Restore for Restored<F> {
+    fn sector(&mut self, header: &SectorHeader) {
+        self.use_plan(header.plan_fingerprint);
+    }
+
+    fn checkpoint(&mut self, bytes: &[u8]) {
+        // A checkpoint of another version is passed over; the entries behind it still count.
+        if let Some(state) = State::decode(bytes) {
+            self.state = state;
+        }
+    }
+
+    fn entry(&mut self, entry: &Entry) {
+        match entry {
+            Entry::Sample(sample) if self.in_force.is_some() => {
+                step(&self.plan, &mut self.state, sample, |_| {});
+            }
+            Entry::Fault { tick_ms, cause, .. } => {
+                self.state.report(&self.plan, *cause, *tick_ms, |_| {});
+            }
+            Entry::StartUp { tick_ms, .. } => self.state.restart(*tick_ms),
+            Entry::PlanChange { tick_ms, fingerprint, .. } => {
+                self.use_plan(*fingerprint);
+                self.state.change_plan(*tick_ms);
+            }
+            Entry::Acknowledge { tick_ms, .. } => self.state.acknowledge(*tick_ms, |_| {}),
+            // Results, and what the state does not depend on.
+            Entry::Sample(_)
+            | Entry::Transition(_)
+            | Entry::ClockFix { .. }
+            | Entry::Gap { .. } => {}
+        }
+    }
+}

@@ -1,0 +1,3 @@
+//! Sensors that deliver raw counts.
+
+pub mod modbus;

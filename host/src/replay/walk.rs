@@ -1,0 +1,137 @@
+//! From a journal file to the engine: sector by sector, plan by plan.
+
+use super::engine::Engine;
+use crate::journal_file::{JournalFile, JournalFileError};
+use std::io::{Read, Seek};
+use strake_core::evaluate::State;
+use strake_core::journal::{Entry, Item, STATE_BYTES_MAX, SectorReader};
+use strake_core::plan::{Plan, codec};
+
+/// Everything a replay found.
+#[derive(Debug)]
+pub struct Replay {
+    /// Comparison and summary.
+    pub engine: Engine,
+    /// Entries decoded.
+    pub records: u64,
+    /// Places that could not be read, in the file or in a sector, in words.
+    pub damage: Vec<String>,
+    /// Holes: sectors missing between those in the file, and gaps that the device states.
+    pub gaps: u64,
+    /// Fingerprints of plans that occur and are not in the file.
+    pub missing_plans: Vec<u64>,
+}
+
+/// Replays a journal file, one sector in memory at a time.
+///
+/// # Errors
+/// The system's reason when the file cannot be read. Damaged places are no error.
+pub fn replay<R: Read + Seek>(file: &mut JournalFile<R>) -> Result<Replay, JournalFileError> {
+    let mut walk = Walk {
+        replay: Replay {
+            engine: Engine::default(),
+            records: 0,
+            damage: file.damage().iter().map(ToString::to_string).collect(),
+            gaps: 0,
+            missing_plans: Vec::new(),
+        },
+        in_force: None,
+    };
+    let mut last = None;
+    while let Some(sector) = file.sector_after(last)? {
+        let connected = last.is_some_and(|last: u32| last.checked_add(1) == Some(sector.sequence));
+        if last.is_some() && !connected {
+            walk.replay.gaps += 1;
+        }
+        last = Some(sector.sequence);
+        walk.sector(file, &sector.bytes, sector.sequence, connected)?;
+    }
+    let head = file.head().map(|head| head.running_hash);
+    walk.replay.engine.finish(head);
+    Ok(walk.replay)
+}
+
+struct Walk {
+    replay: Replay,
+    /// Fingerprint of the plan that the engine has.
+    in_force: Option<u64>,
+}
+
+impl Walk {
+    fn sector<R: Read + Seek>(
+        &mut self,
+        file: &mut JournalFile<R>,
+        bytes: &[u8],
+        sequence: u32,
+        connected: bool,
+    ) -> Result<(), JournalFileError> {
+        let reader = match SectorReader::new(bytes) {
+            Ok(reader) => reader,
+            Err(error) => {
+                self.replay
+                    .damage
+                    .push(format!("sector {sequence}: its header cannot be read ({error:?})"));
+                return Ok(());
+            }
+        };
+        let mut room = [0; STATE_BYTES_MAX];
+        let state = reader.checkpoint(&mut room).and_then(State::decode);
+        if state.is_none() {
+            self.replay.damage.push(format!("sector {sequence}: its checkpoint cannot be read"));
+        }
+        let header = reader.header().clone();
+        self.replay.engine.sector(&header, state.as_ref(), connected);
+        self.use_plan(file, header.plan_fingerprint)?;
+        for item in reader {
+            match item {
+                Item::Entry(entry) => {
+                    self.replay.records += 1;
+                    if let Entry::PlanChange { fingerprint, .. } = entry {
+                        self.use_plan(file, fingerprint)?;
+                    }
+                    if matches!(entry, Entry::Gap { .. }) {
+                        self.replay.gaps += 1;
+                    }
+                    self.replay.engine.entry(&entry);
+                }
+                Item::State { .. } => {}
+                Item::Damage(damage) => {
+                    let offset = damage.offset;
+                    self.replay
+                        .damage
+                        .push(format!("sector {sequence}, offset {offset}: {:?}", damage.kind));
+                }
+            }
+        }
+        Ok(())
+    }
+
+    fn use_plan<R: Read + Seek>(
+        &mut self,
+        file: &mut JournalFile<R>,
+        fingerprint: u64,
+    ) -> Result<(), JournalFileError> {
+        if self.in_force == Some(fingerprint) || fingerprint == 0 {
+            return Ok(());
+        }
+        self.in_force = Some(fingerprint);
+        let loaded = file.plan(fingerprint)?.and_then(|stored| load(&stored.bytes));
+        if let Some((plan, names)) = loaded {
+            self.replay.engine.use_plan(Some(plan), &names);
+        } else {
+            self.replay.engine.use_plan(None, &[]);
+            if !self.replay.missing_plans.contains(&fingerprint) {
+                self.replay.missing_plans.push(fingerprint);
+            }
+        }
+        Ok(())
+    }
+}
+
+/// A plan with the names of its parts.
+fn load(bytes: &[u8]) -> Option<(Plan, Vec<String>)> {
+    let (_, plan) = codec::decode(bytes).ok()?;
+    let mut names = Vec::new();
+    codec::names(bytes, |_, name| names.push(name.to_owned())).ok()?;
+    Some((plan, names))
+}

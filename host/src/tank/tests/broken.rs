@@ -1,0 +1,112 @@
+//! Single slips in an otherwise sound file, each with its class and what the message must name.
+
+use super::{configs, tank_files};
+use crate::tank::{Code, parse};
+
+/// The brine tank with one text replaced.
+fn with(from: &str, to: &str) -> Vec<u8> {
+    let (_, bytes) =
+        tank_files(&configs()).into_iter().find(|(name, _)| name == "brine_day_tank").unwrap();
+    let text = String::from_utf8(bytes).unwrap();
+    assert!(text.contains(from), "{from}");
+    text.replacen(from, to, 1).into_bytes()
+}
+
+/// The replaced text gives this one finding, and its message or hint holds the words.
+fn slip(from: &str, to: &str, code: Code, words: &str) {
+    let findings = parse("t.toml", &with(from, to)).expect_err(to);
+    let list = findings.list();
+    assert_eq!(list.len(), 1, "{findings}");
+    assert_eq!(list[0].code, code, "{findings}");
+    let text = format!("{}\n{}", list[0].message, list[0].hint);
+    assert!(text.contains(words), "{text}");
+}
+
+#[test]
+fn nothing_that_decides_a_load_is_defaulted() {
+    let missing = |line: &str, words: &str| slip(line, "", Code::MissingKey, words);
+    missing("uncertainty = \"0.5 %\"", "never exceeds");
+    missing("uncertainty  = \"0.2 kPa\"", "as a pressure");
+    missing("expansion   = \"4.0e-4 /K\"", "expansion = \"none\"");
+    missing("range       = [\"5 degC\", \"35 degC\"] ", "coldest and hottest");
+    missing("reference    = \"atmosphere\"", "\"gas space\"");
+    missing("sealed_to = { circle = { diameter = \"0.66 m\" } }", "the line of the gasket");
+    missing("opens     = \"outward\"", "\"inward\"");
+    missing("response_time      = \"15 min\"", "until the filling has stopped");
+    missing("utilisation = 0.85, ", "share of the capacity");
+    missing("deadband = 0.02, ", "below the threshold");
+    missing("on_delay = \"10 s\", ", "before it counts");
+    missing("joint_efficiency = 0.85 ", "joint_efficiency = 0.85");
+    missing(", allowable_stress = \"137 MPa\"", "allowable_stress");
+    missing(", corrosion_allowance = \"1 mm\"", "\"0 mm\" when none is");
+    slip(", basis = \"surveyed 2026-05\"", "", Code::Basis, "code default");
+    slip("[gas]\nvented = true", "", Code::MissingTable, "never assumed");
+}
+
+#[test]
+fn a_design_point_needs_its_rule_and_its_limits() {
+    slip("\"0.3 m\"", "\"0.5 m\"", Code::DesignPoint, "\"1 ft\"");
+    slip("rule         = \"API 653 4.3.3.1\"", "", Code::DesignPoint, "needs the rule");
+    assert!(parse("t.toml", &with("design_point = \"0.3 m\"", "design_point = \"1 ft\"")).is_ok());
+    assert!(parse("t.toml", &with("design_point = \"0.3 m\"", "design_point = \"0 m\"")).is_ok());
+    // 61 m is allowed, more is not; four courses make four findings.
+    assert!(parse("t.toml", &with("\"8.0 m\"", "\"61 m\"")).is_ok());
+    let findings = parse("t.toml", &with("\"8.0 m\"", "\"61.1 m\"")).unwrap_err();
+    assert_eq!(findings.list().len(), 4, "{findings}");
+    assert!(findings.list().iter().all(|finding| finding.code == Code::DesignPoint));
+}
+
+#[test]
+fn limits_are_met_exactly() {
+    assert!(parse("t.toml", &with("\"brine day tank 3\"", "\"123456789012345678901234\"")).is_ok());
+    let long = "\"1234567890123456789012345\"";
+    slip("\"brine day tank 3\"", long, Code::NameTooLong, "25 bytes, the device holds 24");
+    assert!(parse("t.toml", &with("overflow     = \"9.3 m\"", "overflow = \"9.6 m\"")).is_ok());
+    slip("overflow     = \"9.3 m\"", "overflow = \"9.62 m\"", Code::FillOrder, "9.600 m");
+    assert!(parse("t.toml", &with("height       = \"2.4 m\"", "height = \"2.401 m\"")).is_ok());
+    slip("height       = \"2.4 m\"", "height = \"2.402 m\"", Code::CourseOverlap, "2.402 m");
+    slip("height       = \"2.4 m\"", "height = \"2.398 m\"", Code::CourseGap, "2.398 m");
+    slip("bolts = 28", "bolts = 2", Code::OutOfRange, "3 to 999");
+    assert!(parse("t.toml", &with("slope     = \"90 deg\"", "slope = \"1 deg\"")).is_ok());
+    slip("slope     = \"90 deg\"", "slope = \"0.9 deg\"", Code::Slope, "0 deg");
+    slip("slope     = \"90 deg\"", "slope = \"181 deg\"", Code::OutOfRange, "at most 180");
+}
+
+#[test]
+fn keys_of_later_versions_are_refused_by_name() {
+    let later = |from: &str, to: &str, words: &str| slip(from, to, Code::NotOffered, words);
+    later("[gas]", "[gas]\nsignal = 1", "`signal` in [gas] is not offered");
+    later(
+        "[[course]]",
+        "[[level.check]]\nsensor = \"head\"\n[[course]]",
+        "`check` in [level] is not offered",
+    );
+    later(
+        "[fill]",
+        "strapping = [[\"0 m\", \"0 m3\"]]\n[fill]",
+        "`strapping` in [tank] is not offered",
+    );
+    later("opens     = \"outward\"", "opens = \"outward\"\ncover_mass = \"9 kg\"", "`cover_mass`");
+    later("[alarm]", "[[curved]]\nname = \"cone\"\n[alarm]", "curved parts are not offered");
+    for shape in ["ellipse", "obround", "triangle", "trapezoid", "polygon", "hole"] {
+        let to = format!("{{ {shape} = {{ }} }}");
+        let words = format!("{shape} is not offered");
+        later("{ circle = { diameter = \"0.61 m\" } }", &to, &words);
+    }
+    for kind in ["latch", "hinge", "moment", "cover"] {
+        let to = format!("{{ {kind} = \"1 kN\"");
+        later("{ force = \"60 kN\"", &to, &format!("capacity `{kind}` of a hatch is not offered"));
+    }
+}
+
+#[test]
+fn a_broken_part_does_not_look_like_a_gap() {
+    slip("bottom       = \"2.4 m\"", "bottom = 2.4", Code::BareNumber, "\"2.4 m\"");
+}
+
+#[test]
+fn crlf_and_a_byte_order_mark_change_nothing() {
+    let text = String::from_utf8(with("[tank]", "[tank]")).unwrap();
+    assert!(parse("t.toml", text.replace('\n', "\r\n").as_bytes()).is_ok());
+    assert!(parse("t.toml", format!("\u{feff}{text}").as_bytes()).is_ok());
+}

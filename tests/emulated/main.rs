@@ -1,0 +1,51 @@
+//! Tests of the device's own machine code on an emulated Cortex-M4F.
+//!
+//! They need a compiler for the target and the emulator. Where one is missing every test is listed
+//! as ignored with the reason, and with the variable CI set, as failed.
+
+/// The tests of a module, each under its own name.
+macro_rules! tests {
+    ($($name:ident,)*) => { &[$((stringify!($name), $name),)*] };
+}
+
+mod drivers;
+mod flash_file;
+mod image;
+mod log;
+mod machine;
+mod plugin;
+mod qmp;
+mod sensor;
+mod toolchain;
+
+use libtest_mimic::{Arguments, Failed, Trial};
+
+/// What a test gives back; any error fails it.
+type Outcome = Result<(), Box<dyn std::error::Error>>;
+
+/// A test: its name and what it runs.
+type Test = (&'static str, fn() -> Outcome);
+
+/// A test of this name, ignored when `missing` says what this machine lacks.
+fn trial(missing: Option<&'static str>, (name, run): Test) -> Trial {
+    let trial = Trial::test(name, move || run().map_err(|error| Failed::from(error.to_string())));
+    match missing {
+        Some(what) => trial.with_kind(format!("needs {what}")).with_ignored_flag(true),
+        None => trial,
+    }
+}
+
+fn main() {
+    let arguments = Arguments::from_args();
+    let missing = toolchain::missing();
+    let trials: Vec<Trial> = drivers::TESTS
+        .iter()
+        .map(|&test| trial(missing.as_ref().map(|(what, _)| *what), test))
+        .collect();
+    if let Some((what, remedy)) = &missing
+        && !arguments.list
+    {
+        eprintln!("left out: {} tests that need {what}: {remedy}", trials.len());
+    }
+    libtest_mimic::run(&arguments, trials).exit();
+}
