@@ -54,8 +54,8 @@ impl Compiled {
     }
 }
 
-/// A plan for a calculation at the desk: what only the device needs may be missing from the file and
-/// is filled with values that touch no load at a stated level.
+/// A plan for a calculation at the desk: what only the device needs may be missing from the file
+/// and is filled with values that touch no load at a stated level.
 ///
 /// # Errors
 /// [`Findings`] with everything in the file that the plan cannot hold.

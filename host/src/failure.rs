@@ -1,5 +1,7 @@
 //! Why a command did not do what it was asked: what, where, and what to do.
 
+mod device;
+
 use crate::exit::Exit;
 use crate::tank::Findings;
 use serde_json::{Value, json};

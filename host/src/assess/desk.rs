@@ -66,7 +66,8 @@ impl Desk {
         states(&self.true_level, &self.readings(level_m, Lane::ZERO))
     }
 
-    /// The states that the plan's sensor allows when it reads what the estimate gives at that level.
+    /// The states that the plan's sensor allows when it reads what the estimate gives at that
+    /// level.
     ///
     /// A head sensor reads the estimate's pressure at its height, and the bounds are its envelope;
     /// to a surface sensor's level its uncertainty is added and taken off.

@@ -69,7 +69,8 @@ pub struct PartRow {
 /// Loads under one state. Only what the part has.
 #[derive(Clone, Debug, Serialize)]
 pub struct Loads {
-    /// At the design point of a course, else the largest on the part; of the inward bound the least.
+    /// At the design point of a course, else the largest on the part; of the inward bound the
+    /// least.
     pub pressure_pa: f32,
     /// Hoop tension of a course.
     #[serde(skip_serializing_if = "Option::is_none")]

@@ -108,8 +108,8 @@ fn the_brine_day_tank_tells_its_story() {
 
 #[test]
 fn a_wall_designed_for_water_holds_less_of_a_heavier_liquid() {
-    // Water to 6 m, now 1320 kg/m3: by the pressure at the base 6/1.32 m; the same wall by its total
-    // force 6/sqrt(1.32) m, at which the base is 14.9 % over.
+    // Water to 6 m, now 1320 kg/m3: by the pressure at the base 6/1.32 m; the same wall by its
+    // total force 6/sqrt(1.32) m, at which the base is 14.9 % over.
     let force = format!("{{ force = \"{} N\", basis = \"drawing\" }}", 1000.0 * G * 18.0);
     let parts = panel("pressure", "1 m", "6 m", "0 m", &designed("6 m", "1000 kg/m3", "0 Pa"))
         + &panel("force", "1 m", "6 m", "0 m", &force);
