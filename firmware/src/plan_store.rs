@@ -76,8 +76,8 @@ impl<F: NorFlash> PlanStore<F> {
         Self { flash, slots, writing: None }
     }
 
-    /// The newest plan whose bytes have their fingerprint. Newer ones without it are forgotten: their
-    /// slots are free.
+    /// The newest plan whose bytes have their fingerprint. Newer ones without it are forgotten:
+    /// their slots are free.
     pub fn newest(&mut self) -> Option<SlotHeader> {
         loop {
             let newest = self.newest_where(|_| true)?;

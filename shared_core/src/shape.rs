@@ -9,8 +9,8 @@
 //!
 //! Every load on a plane part is `alpha * F + beta * Mc`, so these two serve force, centre of
 //! pressure, moments about any level line, hinges and bolt shares.
-//! The wetted part is clipped first and then integrated: differences of powers of large depths would
-//! cost three digits.
+//! The wetted part is clipped first and then integrated: differences of powers of large depths
+//! would cost three digits.
 
 mod circle;
 mod rectangle;

@@ -68,7 +68,8 @@ def read_sample(cursor, chain):
     qualities = cursor.take(1)[0]
     temperature = wrap32(temperature + cursor.signed())
     battery += cursor.signed()
-    if qualities & 15 > 7 or qualities >> 4 > 7 or not 0 <= tick < 2**48 or not 0 <= battery < 2**16:
+    sound = qualities & 15 <= 7 and qualities >> 4 <= 7
+    if not (sound and 0 <= tick < 2**48 and 0 <= battery < 2**16):
         raise Malformed("sample out of range")
     return {"tick": tick, "level": level, "quality": qualities & 15}, \
         (tick, interval, level, temperature, battery)

@@ -11,18 +11,18 @@ use strake_oracle::plane::PlanePart;
 use strake_oracle::shape::Shape as Outline;
 
 #[expect(clippy::cast_possible_truncation, reason = "the core takes f32")]
-pub fn narrow(value: f64) -> f32 {
+pub(crate) fn narrow(value: f64) -> f32 {
     value as f32
 }
 
 /// A density without any doubt.
-pub fn exactly(density_kg_m3: f64) -> Band {
+pub(crate) fn exactly(density_kg_m3: f64) -> Band {
     let density = narrow(density_kg_m3);
     Band { estimate_kg_m3: density, low_kg_m3: density, high_kg_m3: density }
 }
 
 /// A plan with a surface sensor that holds these liquids; its level is the top surface.
-pub fn plan_of(liquid: &Liquid) -> Result<(Plan, f32), Reason> {
+pub(crate) fn plan_of(liquid: &Liquid) -> Result<(Plan, f32), Reason> {
     let mut plan = Plan::empty();
     plan.gravity_m_s2 = narrow(liquid.gravity_m_s2);
     plan.closed = true;
@@ -49,7 +49,7 @@ pub fn plan_of(liquid: &Liquid) -> Result<(Plan, f32), Reason> {
 }
 
 /// The states of a surface sensor that reads this level exactly.
-pub fn at_level(plan: &Plan, level_m: f32) -> States<1> {
+pub(crate) fn at_level(plan: &Plan, level_m: f32) -> States<1> {
     let top = plan.liquid.top;
     let level = Lane([level_m]);
     let density =
@@ -58,7 +58,7 @@ pub fn at_level(plan: &Plan, level_m: f32) -> States<1> {
 }
 
 /// The states of a head sensor at a height, Pa gauge between `low` and `high`.
-pub fn at_head(plan: &Plan, at_m: f64, [estimate, low, high]: [f64; 3]) -> States<1> {
+pub(crate) fn at_head(plan: &Plan, at_m: f64, [estimate, low, high]: [f64; 3]) -> States<1> {
     let mut plan = plan.clone();
     let reference = Reference::Atmosphere { offset_pa: [0.0; 3] };
     plan.level.sensor = LevelSensor::Head { at_m: narrow(at_m), reference };
@@ -73,7 +73,7 @@ pub fn at_head(plan: &Plan, at_m: f64, [estimate, low, high]: [f64; 3]) -> State
 }
 
 /// A plane part of the core; `None` for shapes and holes that it does not have yet.
-pub fn part_of(plane: &PlanePart) -> Result<Part, Reason> {
+pub(crate) fn part_of(plane: &PlanePart) -> Result<Part, Reason> {
     if !plane.holes.is_empty() {
         return Err("shape not offered by this version");
     }
@@ -92,7 +92,7 @@ pub fn part_of(plane: &PlanePart) -> Result<Part, Reason> {
 }
 
 /// A course judged at one height.
-pub fn course(diameter_m: f64, at_m: f64) -> Part {
+pub(crate) fn course(diameter_m: f64, at_m: f64) -> Part {
     let geometry = Geometry::Course {
         half_diameter_m: narrow(0.5 * diameter_m),
         design_point_m: narrow(at_m),
@@ -102,7 +102,7 @@ pub fn course(diameter_m: f64, at_m: f64) -> Part {
 }
 
 /// An upright wall of one metre width.
-pub fn wall(bottom_m: f64, top_m: f64) -> Part {
+pub(crate) fn wall(bottom_m: f64, top_m: f64) -> Part {
     let shape = Shape::Rectangle(Rectangle::new(1.0, narrow(top_m - bottom_m), 1.0));
     bare(Geometry::plane(shape, 1.0, None), narrow(bottom_m), narrow(top_m))
 }
@@ -120,13 +120,13 @@ fn bare(geometry: Geometry, bottom_m: f32, top_m: f32) -> Part {
 }
 
 /// The loads of a part under a liquid.
-pub fn loads_of(part: &Part, liquid: &Liquid) -> Result<PartLoads<1>, Reason> {
+pub(crate) fn loads_of(part: &Part, liquid: &Liquid) -> Result<PartLoads<1>, Reason> {
     let (plan, level_m) = plan_of(liquid)?;
     Ok(evaluate(&plan, part, &at_level(&plan, level_m)))
 }
 
 /// The design state of one liquid.
-pub fn design_of(liquid: &Liquid) -> Result<DesignState, Reason> {
+pub(crate) fn design_of(liquid: &Liquid) -> Result<DesignState, Reason> {
     match liquid.layers[..] {
         [layer] => Ok(DesignState {
             level_m: narrow(layer.surface_m),

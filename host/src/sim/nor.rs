@@ -2,9 +2,9 @@
 //!
 //! It refuses what a chip refuses or spoils in silence: unaligned and out-of-range accesses, and
 //! programming a word that was touched since its sector was last erased. A cut tears the word that
-//! is being programmed or leaves the sector half erased, with random bits from a seed; a sector that
-//! an erase was cut in must be erased again before anything is programmed there, whatever it shows.
-//! Memory is sparse: only touched sectors take room.
+//! is being programmed or leaves the sector half erased, with random bits from a seed; a sector
+//! that an erase was cut in must be erased again before anything is programmed there, whatever it
+//! shows. Memory is sparse: only touched sectors take room.
 
 use core::fmt;
 use embedded_storage::nor_flash::{

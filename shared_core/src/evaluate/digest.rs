@@ -1,9 +1,9 @@
 //! The running hash over the bits of every result.
 //!
-//! Per sample, all loads, bounds and utilisations are folded into two 32-bit words, lane by lane, by
-//! exclusive or, rotation and addition. The two words, and every move of an alarm machine, are then
-//! folded into one running 64-bit number. It stands in each checkpoint, each alarm entry and each
-//! collection; the replay recomputes it. It finds a differing bit; it is no seal.
+//! Per sample, all loads, bounds and utilisations are folded into two 32-bit words, lane by lane,
+//! by exclusive or, rotation and addition. The two words, and every move of an alarm machine, are
+//! then folded into one running 64-bit number. It stands in each checkpoint, each alarm entry and
+//! each collection; the replay recomputes it. It finds a differing bit; it is no seal.
 
 use crate::lane::Lane;
 use crate::part::{Geometry, Loads, Part, PartLoads};

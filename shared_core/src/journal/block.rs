@@ -136,9 +136,9 @@ pub struct Encoded {
     pub taken: usize,
 }
 
-/// As many of `samples` as fit, at most [`ENTRIES_MAX`], as one block of samples; `chain` steps over
-/// those taken. It must be the default for the first block of samples in a page. `None` when not
-/// even one fits.
+/// As many of `samples` as fit, at most [`ENTRIES_MAX`], as one block of samples; `chain` steps
+/// over those taken. It must be the default for the first block of samples in a page. `None` when
+/// not even one fits.
 pub fn encode_samples<'a>(
     place: Place,
     samples: impl IntoIterator<Item = &'a Sample>,

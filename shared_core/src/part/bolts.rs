@@ -131,7 +131,8 @@ impl BoltPattern {
         let slack_m = 1.0e-4 * half_m;
         let first_m3 = shape.area_m2() * half_m;
         let cut_is_sound = |per_moment: f32, cut: Option<[f32; 3]>| {
-            // Here `1 + n s s_i / sum s_j²` is zero; far away where no bolt stands off the centroid.
+            // Here `1 + n s s_i / sum s_j²` is zero; far away where no bolt stands off the
+            // centroid.
             let zero_m = -1.0 / (f32::from(self.count) * per_moment);
             match cut {
                 None => zero_m.abs() >= half_m - slack_m,

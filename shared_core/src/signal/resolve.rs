@@ -1,8 +1,8 @@
 //! From the integers of one cycle to a reading with its bounds.
 //!
 //! A stale reading is projected both ways: up at the highest rise and down at the highest fall,
-//! capped at overflow and at empty. A head sensor's projection is a pressure: the heaviest liquid at
-//! the highest rise, and the swing of the gas where the reading holds it.
+//! capped at overflow and at empty. A head sensor's projection is a pressure: the heaviest liquid
+//! at the highest rise, and the swing of the gas where the reading holds it.
 
 use super::{Channel, LoopClass, Quality, SensorError, classify};
 use crate::alarm::FaultCause;
@@ -42,6 +42,17 @@ pub struct Sight {
     pub started_ms: u64,
     /// Which product is confirmed to be in the tank: 0 the plan's liquid, then its products.
     pub product: Option<u8>,
+}
+
+impl Sight {
+    /// Nothing is remembered.
+    pub const NONE: Self = Self {
+        last_level: None,
+        last_temperature: None,
+        level_ok: false,
+        started_ms: 0,
+        product: None,
+    };
 }
 
 /// A reading with its bounds, in the sensor's own quantity (Pa or m).

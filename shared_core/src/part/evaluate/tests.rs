@@ -94,7 +94,8 @@ proptest! {
         }
     }
 
-    /// No stable state that the head allows gives a bolt more than the bound or less than the least.
+    /// No stable state that the head allows gives a bolt more than the bound or less than the
+    /// least.
     #[test]
     fn bolt_bounds_hold_for_every_profile(seed in any::<u64>()) {
         let mut random = Random(seed);
@@ -247,8 +248,8 @@ fn flooded(lowest_m: f32, highest_m: f32, density: f32) -> Plan {
     plan
 }
 
-/// The relief of a flooded bund counts at its proven lowest level only, its load at the highest, and
-/// only for the parts it touches.
+/// The relief of a flooded bund counts at its proven lowest level only, its load at the highest,
+/// and only for the parts it touches.
 #[test]
 fn liquid_outside_relieves_only_what_is_proven() {
     let dry = rectangle(0.0, 1.0, 1.0, 1.0);

@@ -1,4 +1,5 @@
-//! Every rule with a plan that breaks it; and no plan that passes gives anything but finite numbers.
+//! Every rule with a plan that breaks it; and no plan that passes gives anything but finite
+//! numbers.
 
 #![expect(
     clippy::cast_possible_truncation,

@@ -15,8 +15,8 @@ mod solve;
 mod tally;
 
 pub use problem::{
-    BoundAsk, CourseAsk, CurvedAsk, CurvedPart, DensityAsk, DesignedForAsk, DoorAsk, Line, PlaneAsk,
-    Plate, Problem, Securing,
+    BoundAsk, CourseAsk, CurvedAsk, CurvedPart, DensityAsk, DesignedForAsk, DoorAsk, Line,
+    PlaneAsk, Plate, Problem, Securing,
 };
 pub use read::problem_of;
 pub use row::{Row, edge_rows, open_rows, own_rows};
