@@ -9,6 +9,8 @@
     reason = "a call per operation would cost more than the operation"
 )]
 
+pub mod careless;
+
 use core::array;
 use core::ops::{Add, Div, Mul, Neg, Sub};
 
@@ -72,7 +74,7 @@ impl<const N: usize> Lane<N> {
     #[must_use]
     #[inline(always)]
     pub fn root(self) -> Self {
-        self.map(libm::sqrtf)
+        self.map(root)
     }
 
     /// `then` where `self` is positive, else `otherwise`.
@@ -111,6 +113,9 @@ impl<const N: usize> Lane<N> {
 #[must_use]
 #[inline(always)]
 pub fn at_least(value: f32, floor: f32) -> f32 {
+    if careless::MAX {
+        return careless::at_least(value, floor);
+    }
     if floor > value { floor } else { value }
 }
 
@@ -118,6 +123,9 @@ pub fn at_least(value: f32, floor: f32) -> f32 {
 #[must_use]
 #[inline(always)]
 pub fn at_most(value: f32, ceiling: f32) -> f32 {
+    if careless::MAX {
+        return careless::at_most(value, ceiling);
+    }
     if ceiling < value { ceiling } else { value }
 }
 
@@ -125,7 +133,18 @@ pub fn at_most(value: f32, ceiling: f32) -> f32 {
 #[must_use]
 #[inline(always)]
 pub fn ramp(value: f32) -> f32 {
+    if careless::MAX {
+        return careless::at_least(value, 0.0);
+    }
     if value > 0.0 { value } else { 0.0 }
+}
+
+#[inline(always)]
+fn root(value: f32) -> f32 {
+    if careless::ROOT {
+        return careless::root(value);
+    }
+    libm::sqrtf(value)
 }
 
 impl<const N: usize> Add for Lane<N> {

@@ -8,6 +8,7 @@ macro_rules! tests {
     ($($name:ident,)*) => { &[$((stringify!($name), $name),)*] };
 }
 
+mod bits;
 mod drivers;
 mod flash_file;
 mod image;
@@ -38,8 +39,9 @@ fn trial(missing: Option<&'static str>, (name, run): Test) -> Trial {
 fn main() {
     let arguments = Arguments::from_args();
     let missing = toolchain::missing();
-    let trials: Vec<Trial> = drivers::TESTS
-        .iter()
+    let trials: Vec<Trial> = [drivers::TESTS, bits::TESTS]
+        .into_iter()
+        .flatten()
         .map(|&test| trial(missing.as_ref().map(|(what, _)| *what), test))
         .collect();
     if let Some((what, remedy)) = &missing
