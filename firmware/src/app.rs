@@ -3,17 +3,26 @@
 //! [`App::poll`] never waits. It takes a cycle when one is due, answers the link, does what is left
 //! to do while idle, feeds the watchdog and says when it wants to be called again; in between the
 //! board sleeps. A byte on the link or the button may wake it earlier.
+//!
+//! The watchdog is fed at the end of a poll, and only while the last completed cycle began no longer
+//! ago than the plan's longest interval: a program that runs but measures no more is restarted, and
+//! so is one that hangs in a cycle. Where the pause between two cycles is longer than the watchdog's
+//! patience, the application asks to be called in between.
 
 use crate::board::{Board, Clock, Hardware, Watchdog};
 use crate::device::Device;
+use crate::rooms::Rooms;
 use crate::serve::Server;
 use core::fmt;
 use strake_core::wire::LinkCounters;
 
+/// The watchdog is fed at least this often within its patience.
+const PATIENCE_SHARE: u64 = 4;
+
 /// The device application.
 pub struct App<B: Board> {
     device: Device<B>,
-    server: Server,
+    server: B::Room<Server>,
     link: B::Link,
     watchdog: B::Watchdog,
 }
@@ -21,9 +30,10 @@ pub struct App<B: Board> {
 impl<B: Board> App<B> {
     /// Starts: finds the plan and the journal's end, restores the alarms, writes the start-up
     /// entry. Always finishes, whatever the flash holds.
-    pub fn start(hardware: Hardware<B>) -> Self {
-        let (device, link, watchdog) = Device::start(hardware);
-        Self { device, server: Server::new(), link, watchdog }
+    pub fn start(hardware: Hardware<B>, rooms: Rooms<B>) -> Self {
+        let Rooms { memory, server, waiting } = rooms;
+        let (device, link, watchdog) = Device::start(hardware, memory, waiting);
+        Self { device, server, link, watchdog }
     }
 
     /// Does what is due and returns the tick at which it wants to be called again, ms.
@@ -40,13 +50,17 @@ impl<B: Board> App<B> {
         if idle {
             self.device.housekeeping(now_ms);
         }
-        self.watchdog.feed();
-        if idle { self.device.next_wake_ms() } else { now_ms }
+        let now_ms = self.device.clock.now_ms();
+        if self.device.is_on_time(now_ms) {
+            self.watchdog.feed();
+        }
+        let feed_ms = now_ms.saturating_add(self.watchdog.patience_ms() / PATIENCE_SHARE);
+        if idle { self.device.next_wake_ms().min(feed_ms) } else { now_ms }
     }
 
     /// What has passed over the link.
     #[must_use]
-    pub const fn link_counters(&self) -> LinkCounters {
+    pub fn link_counters(&self) -> LinkCounters {
         self.server.counters()
     }
 

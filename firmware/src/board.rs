@@ -4,10 +4,12 @@
 //! the application. It holds no decision of its own; the application holds no register address.
 
 use core::fmt;
+use core::ops::DerefMut;
 
 use embedded_hal::digital::{InputPin, OutputPin};
 use embedded_io::{Read, ReadReady, Write, WriteReady};
 use embedded_storage::nor_flash::NorFlash;
+use strake_core::plan::SignalKind;
 use strake_core::wire::Text;
 
 pub use strake_core::journal::entry::ResetCause;
@@ -30,14 +32,21 @@ pub trait RetainedMemory {
     fn write(&mut self, offset: usize, bytes: &[u8]);
 }
 
-/// The hardware watchdog, already started by the board. Only a completed cycle may feed it.
+/// The hardware watchdog, already started by the board. Only the application feeds it.
 pub trait Watchdog {
+    /// It bites this long after it was last fed, ms.
+    fn patience_ms(&self) -> u64;
     /// Starts the count anew.
     fn feed(&mut self);
 }
 
 /// A channel that delivers raw counts. What a count means stands in the plan, never here.
 pub trait CountSource {
+    /// Told once a plan takes force: where it says that the count stands. A source whose wiring the
+    /// board fixes has no use for it.
+    fn read_from(&mut self, signal: SignalKind) {
+        let _ = signal;
+    }
     /// Switches the sensor on. Called before a burst; the board waits the warm-up it knows of.
     fn wake(&mut self) {}
     /// One raw count: microamperes of a current loop, or the register value of a bus sensor.
@@ -51,6 +60,9 @@ pub trait CountSource {
 
 /// The pieces that make a board: a list of types, so that the application has one parameter.
 pub trait Board {
+    /// Where a big member of the application lives: `&'static mut T` on a device, `Box<T>` on a
+    /// host.
+    type Room<T: 'static>: DerefMut<Target = T>;
     /// Monotonic time.
     type Clock: Clock;
     /// The level sensor.
@@ -63,7 +75,8 @@ pub trait Board {
     type Plans: NorFlash;
     /// The line to the laptop.
     type Link: Read + ReadReady + Write + WriteReady;
-    /// Drives the contact: high conducts, which means healthy. It must open by itself without power.
+    /// Drives the contact: high conducts, which means healthy. It must open by itself without
+    /// power.
     type Contact: OutputPin;
     /// The button: low while pressed.
     type Button: InputPin;

@@ -14,10 +14,11 @@ mod served;
 mod start;
 
 use crate::board::{Board, Clock};
-use crate::journal::Journal;
+use crate::journal::{Journal, Waiting};
 use crate::plan_store::PlanStore;
 use core::fmt;
 use core::ops::Range;
+use cycle::Moves;
 use embedded_hal::digital::OutputPin;
 use faults::FaultLog;
 use now::Now;
@@ -36,6 +37,33 @@ pub(crate) struct InForce {
     pub(crate) serial: u64,
 }
 
+/// The journal with the waiting samples in their room.
+type Held<B> = Journal<<B as Board>::Journal, <B as Board>::Room<Waiting>>;
+
+/// What the device remembers and computes with: the big part of it.
+#[derive(Debug)]
+pub struct Memory {
+    /// The plan; one that is not in force means nothing.
+    plan: Plan,
+    state: State,
+    /// The moves of one sample or press, until they stand in the journal.
+    moves: Moves,
+}
+
+impl Memory {
+    /// No plan, nothing read. Every bit is zero.
+    #[must_use]
+    pub const fn new() -> Self {
+        Self { plan: Plan::empty(), state: State::new(), moves: Moves::new() }
+    }
+}
+
+impl Default for Memory {
+    fn default() -> Self {
+        Self::new()
+    }
+}
+
 /// The device.
 pub struct Device<B: Board> {
     pub(crate) clock: B::Clock,
@@ -47,11 +75,10 @@ pub struct Device<B: Board> {
     /// Its own name, unique among an owner's devices.
     name: Text,
     /// `None` when the flash cannot even be read: the device alarms on, and says so.
-    journal: Option<Journal<B::Journal>>,
+    journal: Option<Held<B>>,
     plans: PlanStore<B::Plans>,
-    plan: Plan,
     in_force: Option<InForce>,
-    state: State,
+    memory: B::Room<Memory>,
     boot: u16,
     /// Tick and UTC seconds of the last clock fix.
     clock_fix: Option<(u64, u64)>,
@@ -60,6 +87,8 @@ pub struct Device<B: Board> {
     battery_mv: u16,
     samples: u32,
     next_cycle_ms: u64,
+    /// Tick of the last completed cycle, or of the moment at which the plan took force, ms.
+    completed_ms: u64,
     /// The last beat of the interval that is over, ms.
     beat_ms: u64,
     /// Tick at which the oldest waiting sample must be written.
@@ -92,13 +121,13 @@ impl<B: Board> Device<B> {
 
     /// The state that the last step left.
     #[must_use]
-    pub const fn state(&self) -> &State {
-        &self.state
+    pub fn state(&self) -> &State {
+        &self.memory.state
     }
 
     /// The journal, for what a simulated board wants to count.
     #[must_use]
-    pub const fn journal(&self) -> Option<&Journal<B::Journal>> {
+    pub const fn journal(&self) -> Option<&Held<B>> {
         self.journal.as_ref()
     }
 
@@ -136,7 +165,7 @@ impl<B: Board> Device<B> {
     /// Sets the contact by the state of the machines. Without a plan or a journal the device cannot
     /// see.
     fn show(&mut self) {
-        self.output = Output::of(&self.state);
+        self.output = Output::of(&self.memory.state);
         if self.in_force.is_none() || self.journal_failing || self.journal.is_none() {
             self.output.contact_closed = false;
             self.output.sounding |= self.output.rhythm == Rhythm::Healthy;

@@ -4,16 +4,17 @@
 //! block's body first and its check last, so a cut leaves a torn block that no reader takes for an
 //! entry; it never programs a word twice between two erases and never appends behind a torn block.
 //!
-//! What a cut may cost: what waits in RAM. What a destroyed sector may cost: that sector. The medium
-//! may program the words of one write in any order, but must finish one write before the next.
+//! What a cut may cost: what waits in RAM. What a destroyed sector may cost: that sector. The
+//! medium may program the words of one write in any order, but must finish one write before the
+//! next.
 //!
 //! # Order of calls
 //!
 //! A sector opens with a checkpoint of the caller's state, which must contain exactly what the
 //! entries before it did to it. Therefore **inputs are appended before they are applied** (a sample
 //! is pushed before it is evaluated; the same for plan changes, acknowledgements, clock fixes and
-//! start-ups) and **results after** (transitions, faults). What waits always fits in the rest of the
-//! open sector, so no checkpoint ever overtakes a waiting sample.
+//! start-ups) and **results after** (transitions, faults). What waits always fits in the rest of
+//! the open sector, so no checkpoint ever overtakes a waiting sample.
 
 mod append;
 pub mod collect;
@@ -28,6 +29,7 @@ pub use error::{JournalError, OpenError, ReadError};
 pub use restore::{Recovery, Restore};
 pub use waiting::{WAITING_MAX, Waiting};
 
+use crate::rooms::Within;
 use ring::Ring;
 use strake_core::journal::samples::Chain;
 
@@ -88,9 +90,10 @@ struct Hold {
     until_ms: u64,
 }
 
-/// The journal over a flash region of which every byte belongs to it.
+/// The journal over a flash region of which every byte belongs to it. The waiting samples live in
+/// the room `W`, within the journal unless said otherwise.
 #[derive(Clone, Debug)]
-pub struct Journal<F> {
+pub struct Journal<F, W = Within<Waiting>> {
     ring: Ring<F>,
     open: Option<Open>,
     /// The sequence number that the next sector gets.
@@ -103,6 +106,6 @@ pub struct Journal<F> {
     /// Something was appended since the start.
     appended: bool,
     hold: Option<Hold>,
-    waiting: Waiting,
+    waiting: W,
     counters: Counters,
 }

@@ -10,5 +10,6 @@ pub mod board;
 pub mod device;
 pub mod journal;
 pub mod plan_store;
+pub mod rooms;
 pub mod sensor;
 pub mod serve;

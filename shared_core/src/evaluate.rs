@@ -45,9 +45,9 @@ pub fn pressures<const N: usize>(plan: &Plan, resolved: &[Resolved; N]) -> State
     states(plan, &readings)
 }
 
-/// Heights of the surface that a reading allows, m above the datum: lowest, estimated, highest. At or
-/// below the diaphragm of a head sensor the lowest is the diaphragm's own height: what lies below is
-/// not seen.
+/// Heights of the surface that a reading allows, m above the datum: lowest, estimated, highest. At
+/// or below the diaphragm of a head sensor the lowest is the diaphragm's own height: what lies
+/// below is not seen.
 #[must_use]
 pub fn levels_m(plan: &Plan, resolved: &Resolved) -> [f32; 3] {
     let states = pressures(plan, &[*resolved]);
@@ -73,3 +73,6 @@ pub fn loads<const N: usize>(
     }
     digest
 }
+
+#[cfg(test)]
+mod tests;

@@ -130,17 +130,19 @@ pub struct Plan {
 }
 
 impl Plan {
-    /// Room for a plan; it fails [`Plan::check`].
+    /// Room for a plan; it fails [`Plan::check`]. Every bit is zero, so that a static that begins
+    /// with it takes no room in a device's image.
     #[must_use]
     pub const fn empty() -> Self {
         let band = Band { estimate_kg_m3: 0.0, low_kg_m3: 0.0, high_kg_m3: 0.0 };
         let never = ThresholdPlan {
-            utilisation: 1.0,
+            utilisation: 0.0,
             deadband: 0.0,
             on_delay_ms: 0,
             off_delay_ms: 0,
             latch: false,
         };
+        let reference = Reference::Atmosphere { offset_pa: [0.0; 3] };
         Self {
             gravity_m_s2: 0.0,
             shell_top_m: 0.0,
@@ -160,7 +162,7 @@ impl Plan {
             gas: Gas { lowest_pa: 0.0, nominal_pa: 0.0, highest_pa: 0.0 },
             outside: Vec::new(),
             level: LevelPlan {
-                sensor: LevelSensor::Surface,
+                sensor: LevelSensor::Head { at_m: 0.0, reference },
                 signal: SignalKind::CurrentLoop,
                 zero_count_16: 0,
                 value_at_zero: 0.0,
@@ -168,16 +170,17 @@ impl Plan {
                 uncertainty: 0.0,
                 uncertainty_per_distance: 0.0,
                 reference_m: 0.0,
-                failed_after_ms: 1,
+                failed_after_ms: 0,
             },
             alarm: AlarmPlan {
                 warn: never,
                 alarm: never,
-                inward: None,
+                // `None` is no zero.
+                inward: Some(never),
                 response_time_ms: 0,
-                sounds_again_after_ms: u32::MAX,
+                sounds_again_after_ms: 0,
             },
-            logging: LoggingPlan { interval_ms: 1000, idle_interval_ms: 1000, flush_after_ms: 0 },
+            logging: LoggingPlan { interval_ms: 0, idle_interval_ms: 0, flush_after_ms: 0 },
             parts: Vec::new(),
         }
     }

@@ -5,11 +5,12 @@
 //!
 //! ```text
 //! p(z) = p_g + sum_i step_i max(0, h_i - z)
-//! R    = p_g W + sum_i step_i M(h_i),   W = integral w dz,   M(h) = integral over z < h of (h - z) w dz
+//! R    = p_g W + sum_i step_i M(h_i)
+//! W    = integral w dz,   M(h) = integral over z < h of (h - z) w dz
 //! ```
 //!
-//! `p` is hydrostatics; `R` follows because the load is a linear functional of the pressure with the
-//! part's weighting `w`. A new elementary load is a new pair `(W, M)` and nothing else. Liquid
+//! `p` is hydrostatics; `R` follows because the load is a linear functional of the pressure with
+//! the part's weighting `w`. A new elementary load is a new pair `(W, M)` and nothing else. Liquid
 //! against the outside is one more surface with a negative step.
 
 use crate::lane::Lane;

@@ -1,6 +1,6 @@
 //! One cycle: sense, append, evaluate, append, show.
 
-use super::{Device, sense};
+use super::{Device, Memory, sense};
 use crate::board::{Board, Clock};
 use heapless::Vec;
 use strake_core::alarm::{FaultCause, MACHINES};
@@ -17,7 +17,7 @@ impl<B: Board> Device<B> {
         self.take(&sample);
         self.schedule(now_ms);
         if self.flush_at_ms.is_none() {
-            let wait_ms = u64::from(self.plan.logging.flush_after_ms);
+            let wait_ms = u64::from(self.memory.plan.logging.flush_after_ms);
             self.flush_at_ms = Some(now_ms.saturating_add(wait_ms));
         }
         if self.journal.as_ref().is_some_and(|journal| journal.waiting().is_empty()) {
@@ -25,11 +25,20 @@ impl<B: Board> Device<B> {
         }
         self.save_waiting();
         self.show();
+        self.completed_ms = now_ms;
+    }
+
+    /// The last completed cycle began no longer ago than the plan's longest interval. Without a plan
+    /// there is nothing to complete.
+    pub(crate) fn is_on_time(&self, now_ms: u64) -> bool {
+        let logging = &self.memory.plan.logging;
+        let longest_ms = logging.interval_ms.max(logging.idle_interval_ms);
+        self.in_force.is_none() || now_ms.saturating_sub(self.completed_ms) <= u64::from(longest_ms)
     }
 
     fn sense(&mut self, now_ms: u64) -> Sample {
         let level = sense::channel(&mut self.level, &self.clock);
-        let temperature = if self.plan.liquid.temperature.is_some() {
+        let temperature = if self.memory.plan.liquid.temperature.is_some() {
             sense::channel(&mut self.temperature, &self.clock)
         } else {
             strake_core::signal::Channel::default()
@@ -41,10 +50,11 @@ impl<B: Board> Device<B> {
     pub(super) fn take(&mut self, sample: &Sample) {
         let tick_ms = sample.tick_ms;
         let now = self.now(tick_ms);
+        let Memory { plan, state, moves } = &mut *self.memory;
         let pushed =
-            self.journal.as_mut().map(|journal| journal.push(sample, &mut now.with(&self.state)));
-        let mut moves = Moves::new();
-        let resolved = step(&self.plan, &mut self.state, sample, |moved| {
+            self.journal.as_mut().map(|journal| journal.push(sample, &mut now.with(state)));
+        moves.clear();
+        let resolved = step(plan, state, sample, |moved| {
             let _ = moves.push(moved);
         });
         self.samples = self.samples.saturating_add(1);
@@ -52,7 +62,7 @@ impl<B: Board> Device<B> {
             self.faults.seen(cause, sample.level.count_16);
         }
         self.reading = Some(resolved);
-        self.append_moves(tick_ms, &moves);
+        self.append_moves(tick_ms);
         if let Some(Err(_)) = pushed {
             self.journal_failed();
         }
@@ -61,9 +71,10 @@ impl<B: Board> Device<B> {
 
     /// Appends the entries of one sample's or one press's moves; they carry the hash behind all of
     /// them.
-    pub(super) fn append_moves(&mut self, tick_ms: u64, moves: &Moves) {
+    pub(super) fn append_moves(&mut self, tick_ms: u64) {
         let now = self.now(tick_ms);
-        let hash = self.state.hash;
+        let Memory { state, moves, .. } = &*self.memory;
+        let hash = state.hash;
         let mut failed = false;
         for chunk in moves.chunks(4) {
             let entries: Vec<Entry, 4> =
@@ -71,7 +82,7 @@ impl<B: Board> Device<B> {
             let appended = self
                 .journal
                 .as_mut()
-                .map(|journal| journal.append_events(&entries, &mut now.with(&self.state)));
+                .map(|journal| journal.append_events(&entries, &mut now.with(state)));
             failed |= matches!(appended, Some(Err(_)));
         }
         if failed {
@@ -85,7 +96,7 @@ impl<B: Board> Device<B> {
         let appended = self
             .journal
             .as_mut()
-            .map(|journal| journal.append_event(entry, &mut now.with(&self.state)));
+            .map(|journal| journal.append_event(entry, &mut now.with(&self.memory.state)));
         match appended {
             Some(Ok(())) => true,
             Some(Err(_)) => {
@@ -96,8 +107,8 @@ impl<B: Board> Device<B> {
         }
     }
 
-    /// The journal cannot be written. The contact tells it at once; its entry and its machine follow
-    /// when the journal takes entries again, so that the replay sees what the device saw.
+    /// The journal cannot be written. The contact tells it at once; its entry and its machine
+    /// follow when the journal takes entries again, so that the replay sees what the device saw.
     pub(super) fn journal_failed(&mut self) {
         self.faults.seen(FaultCause::Journal, 0);
         self.journal_failing = true;
@@ -110,11 +121,12 @@ impl<B: Board> Device<B> {
                 break;
             }
             let Entry::Fault { cause, .. } = entry else { continue };
-            let mut moves = Moves::new();
-            self.state.report(&self.plan, cause, tick_ms, |moved| {
+            let Memory { plan, state, moves } = &mut *self.memory;
+            moves.clear();
+            state.report(plan, cause, tick_ms, |moved| {
                 let _ = moves.push(moved);
             });
-            self.append_moves(tick_ms, &moves);
+            self.append_moves(tick_ms);
             if cause == FaultCause::Journal {
                 self.journal_failing = false;
             }
@@ -123,12 +135,13 @@ impl<B: Board> Device<B> {
 
     /// The next cycle: on the beat of the interval, or when a pending delay expires.
     fn schedule(&mut self, now_ms: u64) {
-        let interval_ms = u64::from(self.plan.logging.interval_ms).max(1);
+        let interval_ms = u64::from(self.memory.plan.logging.interval_ms).max(1);
         let beats = now_ms.saturating_sub(self.beat_ms) / interval_ms;
         self.beat_ms = self.beat_ms.saturating_add((beats + 1).saturating_mul(interval_ms));
         let expiry_ms = self
+            .memory
             .state
-            .next_expiry_ms(&self.plan, now_ms)
+            .next_expiry_ms(&self.memory.plan, now_ms)
             .map_or(u64::MAX, |wait_ms| now_ms.saturating_add(u64::from(wait_ms.max(1))));
         self.next_cycle_ms = self.beat_ms.min(expiry_ms);
         // The beat is kept as the last one that is over.

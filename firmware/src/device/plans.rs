@@ -1,7 +1,7 @@
 //! Plans: from a slot into force.
 
 use super::{Device, InForce};
-use crate::board::{Board, Clock};
+use crate::board::{Board, Clock, CountSource};
 use crate::plan_store::PlanStore;
 use crate::serve::Refusal;
 use embedded_storage::nor_flash::NorFlash;
@@ -49,23 +49,23 @@ impl<B: Board> Device<B> {
     /// Puts a stored plan into force; when it is no plan, the one before it stays.
     fn take_over(&mut self, fingerprint: u64) -> Result<(), Refusal> {
         let before = self.in_force;
-        match load(&mut self.plans, &mut self.plan, fingerprint) {
+        match load(&mut self.plans, &mut self.memory.plan, fingerprint) {
             Ok(in_force) => {
                 let tick_ms = self.clock.now_ms();
                 let serial = in_force.serial;
                 // An input: written before it is applied.
                 self.append(&Entry::PlanChange { tick_ms, fingerprint, serial });
                 self.in_force = Some(in_force);
-                self.state.change_plan(tick_ms);
+                self.memory.state.change_plan(tick_ms);
                 self.reading = None;
-                self.beat_ms = tick_ms;
-                self.look_now();
+                self.begin_beat(tick_ms);
                 self.show();
                 Ok(())
             }
             Err(error) => {
-                self.in_force = before
-                    .and_then(|old| load(&mut self.plans, &mut self.plan, old.fingerprint).ok());
+                self.in_force = before.and_then(|old| {
+                    load(&mut self.plans, &mut self.memory.plan, old.fingerprint).ok()
+                });
                 let code = match error {
                     PlanError::Format => ErrorCode::PlanFormat,
                     _ => ErrorCode::PlanInvalid,
@@ -73,6 +73,14 @@ impl<B: Board> Device<B> {
                 Err(Refusal { code, detail: u32::from(error.number()) })
             }
         }
+    }
+
+    /// The plan in force counts from now on: the first cycle is due.
+    pub(super) fn begin_beat(&mut self, tick_ms: u64) {
+        self.level.read_from(self.memory.plan.level.signal);
+        self.beat_ms = tick_ms;
+        self.next_cycle_ms = tick_ms;
+        self.completed_ms = tick_ms;
     }
 
     /// A plan that was stored just before the power went has no entry yet: it takes over now.

@@ -1,7 +1,6 @@
 //! A person's press: on the button or over the link.
 
-use super::Device;
-use super::cycle::Moves;
+use super::{Device, Memory};
 use crate::board::Board;
 use embedded_hal::digital::InputPin;
 use strake_core::journal::Entry;
@@ -22,18 +21,16 @@ impl<B: Board> Device<B> {
     /// Acknowledges what sounds and resets latches whose condition is gone. Gives whether anything
     /// moved; when there is nothing to do, nothing is written.
     pub(super) fn acknowledge_by(&mut self, by: Presser, tick_ms: u64) -> bool {
-        let mut trial = self.state.clone();
-        let mut anything = false;
-        trial.acknowledge(tick_ms, |_| anything = true);
-        if !anything {
+        if !self.memory.state.awaits_press() {
             return false;
         }
         self.append(&Entry::Acknowledge { tick_ms, by });
-        let mut moves = Moves::new();
-        self.state.acknowledge(tick_ms, |moved| {
+        let Memory { state, moves, .. } = &mut *self.memory;
+        moves.clear();
+        state.acknowledge(tick_ms, |moved| {
             let _ = moves.push(moved);
         });
-        self.append_moves(tick_ms, &moves);
+        self.append_moves(tick_ms);
         self.show();
         true
     }

@@ -60,7 +60,7 @@ impl<B: Board> Served for Device<B> {
             link: LinkCounters::default(),
             ..Status::default()
         };
-        for (number, machine) in (0_u8..).zip(self.state.machines()) {
+        for (number, machine) in (0_u8..).zip(self.memory.state.machines()) {
             let normal = machine.state == strake_core::alarm::AlarmState::Normal;
             match MachineId::from_number(number) {
                 Some(id) if !normal && id.part().is_some() => status.alarms += 1,
@@ -72,9 +72,10 @@ impl<B: Board> Served for Device<B> {
             return status;
         };
         status.level_reading = reading.class as u8;
-        [status.level_low_m, status.level_m, status.level_high_m] = levels_m(&self.plan, &reading);
-        status.parts = u8::try_from(self.plan.parts.len()).unwrap_or(u8::MAX);
-        loads(&self.plan, &[reading], |index, part| {
+        [status.level_low_m, status.level_m, status.level_high_m] =
+            levels_m(&self.memory.plan, &reading);
+        status.parts = u8::try_from(self.memory.plan.parts.len()).unwrap_or(u8::MAX);
+        loads(&self.memory.plan, &[reading], |index, part| {
             let bound = part.utilisation_bound.lane(0);
             if status.governing_part == u8::MAX || bound > status.utilisation_bound {
                 status.utilisation_bound = bound;
@@ -87,11 +88,11 @@ impl<B: Board> Served for Device<B> {
     fn part_status(&mut self, part: u8) -> Option<PartStatus> {
         self.in_force?;
         let reading = self.reading?;
-        let one = self.plan.parts.get(usize::from(part))?;
-        let of = evaluate(&self.plan, one, &pressures(&self.plan, &[reading]));
+        let one = self.memory.plan.parts.get(usize::from(part))?;
+        let of = evaluate(&self.memory.plan, one, &pressures(&self.memory.plan, &[reading]));
         let state = |threshold| {
             MachineId::of_part(part, threshold)
-                .map_or(0, |id| self.state.machine(id).state.number())
+                .map_or(0, |id| self.memory.state.machine(id).state.number())
         };
         Some(PartStatus {
             part,
@@ -109,8 +110,9 @@ impl<B: Board> Served for Device<B> {
         let rows = status.states.iter_mut().zip(&mut status.counts);
         for (number, (state, count)) in rows.enumerate().take(FAULT_CAUSES) {
             let cause = u8::try_from(number).ok().and_then(FaultCause::from_number);
-            *state = cause
-                .map_or(0, |cause| self.state.machine(MachineId::of_fault(cause)).state.number());
+            *state = cause.map_or(0, |cause| {
+                self.memory.state.machine(MachineId::of_fault(cause)).state.number()
+            });
             *count = self.faults.total(number);
         }
         status
@@ -199,7 +201,7 @@ impl<B: Board> Served for Device<B> {
             newest: bounds.newest,
             used: bounds.newest_used,
             next_entry,
-            running_hash: self.state.hash,
+            running_hash: self.memory.state.hash,
             boot: self.boot,
             tick_ms: self.clock.now_ms(),
         })

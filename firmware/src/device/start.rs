@@ -5,33 +5,32 @@
 
 use super::faults::FaultLog;
 use super::plans::load;
-use super::{Device, InForce, WAITING_AREA};
+use super::{Device, InForce, Memory, WAITING_AREA};
 use crate::board::{Board, Clock, Hardware, ResetCause};
-use crate::journal::{Journal, Recovery, Restore};
+use crate::journal::{Journal, Recovery, Restore, Waiting};
 use crate::plan_store::PlanStore;
 use embedded_storage::nor_flash::NorFlash;
 use strake_core::alarm::FaultCause;
-use strake_core::evaluate::{Output, State, step};
+use strake_core::evaluate::{Output, step};
 use strake_core::journal::{Entry, SectorHeader};
-use strake_core::plan::Plan;
 
 impl<B: Board> Device<B> {
     /// Starts; gives the line and the watchdog back to the application.
-    pub(crate) fn start(hardware: Hardware<B>) -> (Self, B::Link, B::Watchdog) {
+    pub(crate) fn start(
+        hardware: Hardware<B>,
+        mut memory: B::Room<Memory>,
+        waiting: B::Room<Waiting>,
+    ) -> (Self, B::Link, B::Watchdog) {
         let Hardware { clock, level, temperature, journal, plans, link, contact, button, .. } =
             hardware;
         let Hardware { retained, watchdog, device_id, reset_cause, .. } = hardware;
-        let mut restored = Restored {
-            plans: PlanStore::open(plans),
-            plan: Plan::empty(),
-            in_force: None,
-            state: State::default(),
-        };
-        let (journal, recovery) = match Journal::open(journal, &mut restored) {
+        let mut plans = PlanStore::open(plans);
+        let mut restored = Restored { plans: &mut plans, memory: &mut *memory, in_force: None };
+        let (journal, recovery) = match Journal::open_in(waiting, journal, &mut restored) {
             Ok((journal, recovery)) => (Some(journal), recovery),
             Err(_) => (None, Recovery::default()),
         };
-        let Restored { plans, plan, in_force, state } = restored;
+        let Restored { in_force, .. } = restored;
         let mut device = Self {
             clock,
             level,
@@ -42,15 +41,15 @@ impl<B: Board> Device<B> {
             name: device_id,
             journal,
             plans,
-            plan,
             in_force,
-            state,
+            memory,
             boot: recovery.last_boot.wrapping_add(1),
             clock_fix: None,
             reading: None,
             battery_mv: 0,
             samples: 0,
             next_cycle_ms: 0,
+            completed_ms: 0,
             beat_ms: 0,
             flush_at_ms: None,
             faults: FaultLog::default(),
@@ -98,14 +97,17 @@ impl<B: Board> Device<B> {
             {
                 0
             }
-            (_, Some(_)) => {
-                self.plan.logging.flush_after_ms.saturating_add(self.plan.logging.interval_ms)
-            }
+            (_, Some(_)) => self
+                .memory
+                .plan
+                .logging
+                .flush_after_ms
+                .saturating_add(self.memory.plan.logging.interval_ms),
             (_, None) => 0,
         };
         let boot = self.boot;
         self.append(&Entry::StartUp { tick_ms, boot, cause, carried, missing_ms_max, count: 1 });
-        self.state.restart(tick_ms);
+        self.memory.state.restart(tick_ms);
         self.take_over_newest();
         if recovery.damaged_sectors > 0 {
             let damaged = i32::try_from(recovery.damaged_sectors).unwrap_or(i32::MAX);
@@ -114,56 +116,52 @@ impl<B: Board> Device<B> {
         if self.in_force.is_some() {
             self.tell_faults(tick_ms);
         }
-        self.beat_ms = tick_ms;
-        self.next_cycle_ms = tick_ms;
+        self.begin_beat(tick_ms);
         self.save_waiting();
     }
 }
 
 /// Applies what the journal remembers, with the plan that was in force then.
-struct Restored<F> {
-    plans: PlanStore<F>,
-    plan: Plan,
-    /// Which plan `plan` holds.
+struct Restored<'a, F> {
+    plans: &'a mut PlanStore<F>,
+    memory: &'a mut Memory,
+    /// Which plan the memory holds.
     in_force: Option<InForce>,
-    state: State,
 }
 
-impl<F: NorFlash> Restored<F> {
+impl<F: NorFlash> Restored<'_, F> {
     /// Puts the plan with this fingerprint into force; without it samples cannot be applied.
     fn use_plan(&mut self, fingerprint: u64) {
         if self.in_force.is_none_or(|plan| plan.fingerprint != fingerprint) {
-            self.in_force = load(&mut self.plans, &mut self.plan, fingerprint).ok();
+            self.in_force = load(self.plans, &mut self.memory.plan, fingerprint).ok();
         }
     }
 }
 
-impl<F: NorFlash> Restore for Restored<F> {
+impl<F: NorFlash> Restore for Restored<'_, F> {
     fn sector(&mut self, header: &SectorHeader) {
         self.use_plan(header.plan_fingerprint);
     }
 
     fn checkpoint(&mut self, bytes: &[u8]) {
         // A checkpoint of another version is passed over; the entries behind it still count.
-        if let Some(state) = State::decode(bytes) {
-            self.state = state;
-        }
+        self.memory.state.decode_into(bytes);
     }
 
     fn entry(&mut self, entry: &Entry) {
         match entry {
             Entry::Sample(sample) if self.in_force.is_some() => {
-                step(&self.plan, &mut self.state, sample, |_| {});
+                step(&self.memory.plan, &mut self.memory.state, sample, |_| {});
             }
             Entry::Fault { tick_ms, cause, .. } => {
-                self.state.report(&self.plan, *cause, *tick_ms, |_| {});
+                self.memory.state.report(&self.memory.plan, *cause, *tick_ms, |_| {});
             }
-            Entry::StartUp { tick_ms, .. } => self.state.restart(*tick_ms),
+            Entry::StartUp { tick_ms, .. } => self.memory.state.restart(*tick_ms),
             Entry::PlanChange { tick_ms, fingerprint, .. } => {
                 self.use_plan(*fingerprint);
-                self.state.change_plan(*tick_ms);
+                self.memory.state.change_plan(*tick_ms);
             }
-            Entry::Acknowledge { tick_ms, .. } => self.state.acknowledge(*tick_ms, |_| {}),
+            Entry::Acknowledge { tick_ms, .. } => self.memory.state.acknowledge(*tick_ms, |_| {}),
             // Results, and what the state does not depend on.
             Entry::Sample(_)
             | Entry::Transition(_)

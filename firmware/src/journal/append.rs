@@ -3,6 +3,7 @@
 use super::error::JournalError;
 use super::ring::Ring;
 use super::{Journal, Snapshot, Waiting};
+use core::ops::DerefMut;
 use embedded_storage::nor_flash::NorFlash;
 use strake_core::journal::block::{Encoded, Place, encode_events, encode_samples};
 use strake_core::journal::samples::{Chain, SAMPLE_BYTES_MAX};
@@ -15,7 +16,7 @@ const _: () = assert!(11 * SAMPLE_BYTES_MAX + 6 <= 254);
 /// Programs tried before an append is given up.
 const TRIES: u8 = 2;
 
-impl<F: NorFlash> Journal<F> {
+impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
     /// Takes a sample, **before** it is evaluated. It waits in RAM until [`flush`](Self::flush), an
     /// event, or [`WAITING_MAX`](super::WAITING_MAX) samples.
     ///
@@ -203,7 +204,7 @@ impl<F: NorFlash> Journal<F> {
     /// begins with a checkpoint that contains it already.
     fn give_up_waiting(&mut self) {
         self.lose(u32::try_from(self.waiting.len()).unwrap_or(u32::MAX));
-        self.waiting = Waiting::default();
+        self.waiting.clear();
     }
 
     fn lose(&mut self, samples: u32) {

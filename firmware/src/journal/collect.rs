@@ -3,13 +3,14 @@
 use super::error::ReadError;
 use super::ring::SECTOR;
 use super::{Counters, Hold, Journal, Waiting};
+use core::ops::DerefMut;
 use embedded_storage::nor_flash::ReadNorFlash;
 use strake_core::journal::SECTOR_BYTES;
 
 /// How long a sector is held back for a collection, ms.
 pub const HOLD_MS: u64 = 2_000;
 
-impl<F> Journal<F> {
+impl<F, W: DerefMut<Target = Waiting>> Journal<F, W> {
     /// The lowest sequence number that may still stand in the ring.
     #[must_use]
     pub const fn oldest_sequence(&self) -> u32 {
@@ -39,7 +40,7 @@ impl<F> Journal<F> {
 
     /// The samples that wait.
     #[must_use]
-    pub const fn waiting(&self) -> &Waiting {
+    pub fn waiting(&self) -> &Waiting {
         &self.waiting
     }
 
@@ -55,8 +56,13 @@ impl<F> Journal<F> {
         &self.ring.flash
     }
 
-    /// Holds the sector back from being erased for [`HOLD_MS`], and everything behind it. A new call
-    /// moves the hold.
+    /// The flash, for what its traits do not offer, such as putting the chip to sleep.
+    pub const fn flash_mut(&mut self) -> &mut F {
+        &mut self.ring.flash
+    }
+
+    /// Holds the sector back from being erased for [`HOLD_MS`], and everything behind it. A new
+    /// call moves the hold.
     pub fn hold(&mut self, sequence: u32, now_ms: u64) {
         self.hold = Some(Hold { sequence, until_ms: now_ms.saturating_add(HOLD_MS) });
     }
@@ -66,7 +72,8 @@ impl<F> Journal<F> {
         self.hold = None;
     }
 
-    /// Bytes of the sector that are in use: all of a closed one, up to the last block of the newest.
+    /// Bytes of the sector that are in use: all of a closed one, up to the last block of the
+    /// newest.
     ///
     /// # Errors
     /// [`ReadError::Gone`] when the ring does not hold it.
@@ -80,7 +87,7 @@ impl<F> Journal<F> {
     }
 }
 
-impl<F: ReadNorFlash> Journal<F> {
+impl<F: ReadNorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
     /// Fills `out` from `offset` of a stored sector; both in units of the flash's reads.
     ///
     /// # Errors

@@ -4,6 +4,8 @@ use super::error::{JournalError, OpenError};
 use super::restore::{Recovery, Restore};
 use super::ring::{Ring, SECTOR};
 use super::{Counters, Journal, Open, SECTORS_MIN, Snapshot, Waiting};
+use crate::rooms::Within;
+use core::ops::DerefMut;
 use embedded_storage::nor_flash::NorFlash;
 use strake_core::journal::block::{CHECK_BYTES, Encoded, Place, encode_state};
 use strake_core::journal::header::HEADER_BYTES;
@@ -14,12 +16,26 @@ use strake_core::journal::{PAGE_BYTES, STATE_BYTES_MAX, SectorHeader};
 const PLACES_TRIED: u32 = 4;
 
 impl<F: NorFlash> Journal<F> {
-    /// Finds the end of the ring in `flash`, gives `visitor` the newest checkpoint and every entry
-    /// behind it. Changes nothing, and finishes on any content.
+    /// As [`open_in`](Self::open_in), with the waiting samples within the journal.
     ///
     /// # Errors
     /// When the region is too small or cannot be read.
     pub fn open(
+        flash: F,
+        visitor: &mut impl Restore,
+    ) -> Result<(Self, Recovery), OpenError<F::Error>> {
+        Self::open_in(Within::default(), flash, visitor)
+    }
+}
+
+impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
+    /// Finds the end of the ring in `flash`, gives `visitor` the newest checkpoint and every entry
+    /// behind it. Changes nothing, and finishes on any content. `waiting` is an empty room.
+    ///
+    /// # Errors
+    /// When the region is too small or cannot be read.
+    pub fn open_in(
+        waiting: W,
         flash: F,
         visitor: &mut impl Restore,
     ) -> Result<(Self, Recovery), OpenError<F::Error>> {
@@ -54,7 +70,7 @@ impl<F: NorFlash> Journal<F> {
             erased_ahead: false,
             appended: false,
             hold: None,
-            waiting: Waiting::default(),
+            waiting,
             counters: Counters::default(),
         };
         Ok((journal, recovery))

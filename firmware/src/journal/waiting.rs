@@ -6,7 +6,7 @@
 
 use super::{Journal, Recovery};
 use crate::board::RetainedMemory;
-use core::ops::Range;
+use core::ops::{DerefMut, Range};
 use embedded_storage::nor_flash::NorFlash;
 use heapless::Deque;
 use strake_core::journal::block::{ENTRIES_MAX, Place, encode_samples};
@@ -23,6 +23,12 @@ pub struct Waiting {
 }
 
 impl Waiting {
+    /// None waits. Every bit is zero.
+    #[must_use]
+    pub const fn new() -> Self {
+        Self { samples: Deque::new() }
+    }
+
     /// Samples that wait.
     #[must_use]
     pub fn len(&self) -> usize {
@@ -46,6 +52,10 @@ impl Waiting {
 
     pub(super) fn push(&mut self, sample: &Sample) -> bool {
         self.samples.push_back(*sample).is_ok()
+    }
+
+    pub(super) fn clear(&mut self) {
+        self.samples.clear();
     }
 
     pub(super) fn drop_first(&mut self, count: usize) {
@@ -91,7 +101,7 @@ impl Waiting {
     }
 }
 
-impl<F: NorFlash> Journal<F> {
+impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
     /// The samples that the start before this one left in `area` of the retained memory: none when
     /// the boot number or a check does not fit, and none that the journal holds already. To be
     /// pushed and evaluated like fresh ones, then flushed, before the start-up entry.

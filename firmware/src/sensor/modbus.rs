@@ -7,6 +7,7 @@
 
 use crc::{CRC_16_MODBUS, Crc, NoTable};
 use embedded_io::{Read, ReadReady, Write};
+use strake_core::plan::SignalKind;
 
 use crate::board::{Clock, CountSource, SensorError};
 
@@ -29,7 +30,7 @@ pub enum Function {
     Input = 4,
 }
 
-/// How the number lies in the registers.
+/// How the number lies in the registers. A plan names it by the number of its place here, from 0.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Form {
     /// One register without sign.
@@ -62,6 +63,27 @@ pub struct Place {
     pub form: Form,
 }
 
+impl Place {
+    /// Where a plan says that the count stands; `None` when it names no register, or one in a form
+    /// that this driver does not know.
+    #[must_use]
+    pub const fn of(signal: SignalKind) -> Option<Self> {
+        let SignalKind::Register { unit, function, register, coding } = signal else { return None };
+        let function = match function {
+            3 => Function::Holding,
+            4 => Function::Input,
+            _ => return None,
+        };
+        let form = match coding {
+            0 => Form::U16,
+            1 => Form::I16,
+            2 => Form::U32,
+            _ => return None,
+        };
+        Some(Self { unit, function, register, form })
+    }
+}
+
 /// How long the driver waits.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub struct Waits {
@@ -79,14 +101,17 @@ pub struct Waits {
 pub struct ModbusSource<L, C> {
     line: L,
     clock: C,
-    place: Place,
+    /// Where the count stands unless a plan says otherwise.
+    preset: Place,
+    /// Where the count is read; `None` when the plan names a place that this driver cannot ask for.
+    place: Option<Place>,
     waits: Waits,
 }
 
 impl<L: Read + ReadReady + Write, C: Clock> ModbusSource<L, C> {
-    /// A source that reads `place` over `line`.
+    /// A source that reads `place` over `line`, unless a plan names another register.
     pub const fn new(line: L, clock: C, place: Place, waits: Waits) -> Self {
-        Self { line, clock, place, waits }
+        Self { line, clock, preset: place, place: Some(place), waits }
     }
 
     fn next_byte(&mut self) -> Result<Option<u8>, SensorError> {
@@ -99,13 +124,13 @@ impl<L: Read + ReadReady + Write, C: Clock> ModbusSource<L, C> {
         Ok((count == 1).then_some(byte))
     }
 
-    fn ask(&mut self) -> Result<(), SensorError> {
+    fn ask(&mut self, place: Place) -> Result<(), SensorError> {
         for _ in 0..STALE_BYTES {
             if self.next_byte()?.is_none() {
                 break;
             }
         }
-        let question = question(self.place);
+        let question = question(place);
         self.line.write_all(&question).map_err(|_| SensorError::Converter)?;
         self.line.flush().map_err(|_| SensorError::Converter)
     }
@@ -134,14 +159,22 @@ impl<L: Read + ReadReady + Write, C: Clock> ModbusSource<L, C> {
 impl<L: Read + ReadReady + Write, C: Clock> CountSource for ModbusSource<L, C> {
     /// The register's value. A 32-bit value above the largest `i32` is an unexpected answer.
     fn read_count(&mut self) -> Result<i32, SensorError> {
-        self.ask()?;
+        let place = self.place.ok_or(SensorError::Silent)?;
+        self.ask(place)?;
         let answer = self.answer()?;
         if answer.heard == 0 {
             return Err(SensorError::Silent);
         }
         // More than was kept is no frame that can be checked.
         let frame = answer.bytes.get(..answer.heard).ok_or(SensorError::Garbled)?;
-        value(self.place, frame)
+        value(place, frame)
+    }
+
+    fn read_from(&mut self, signal: SignalKind) {
+        self.place = match signal {
+            SignalKind::CurrentLoop => Some(self.preset),
+            SignalKind::Register { .. } => Place::of(signal),
+        };
     }
 }
 

@@ -1,7 +1,7 @@
 //! A board made of memory: the traits that a real board implements, over virtual time.
 //!
-//! All handles are shared, so that the flash outlives a loss of power and the world outside can move
-//! the level, press the button and read the contact while the application runs unchanged.
+//! All handles are shared, so that the flash outlives a loss of power and the world outside can
+//! move the level, press the button and read the contact while the application runs unchanged.
 
 use super::nor::{Nor, NorError, SECTOR_BYTES};
 use super::sensor::Sensor;
@@ -15,6 +15,7 @@ use strake_core::wire::Text;
 use strake_firmware::board::{
     Board, Clock, CountSource, Hardware, ResetCause, RetainedMemory, SensorError, Watchdog,
 };
+use strake_firmware::rooms::Rooms;
 
 /// Bytes of a program word: as on the emulated board and the chip's own flash.
 pub const WORD_BYTES: usize = 4;
@@ -28,6 +29,7 @@ const RETAINED_BYTES: usize = 1024;
 pub struct SimBoard;
 
 impl Board for SimBoard {
+    type Room<T: 'static> = Box<T>;
     type Clock = SimClock;
     type Level = SimLevel;
     type Temperature = SimTemperature;
@@ -77,6 +79,12 @@ impl Bench {
             button: Rc::default(),
             retained: Rc::new(RefCell::new(vec![0; RETAINED_BYTES])),
         }
+    }
+
+    /// Rooms for one start of the controller.
+    #[must_use]
+    pub fn rooms() -> Rooms<SimBoard> {
+        Rooms { memory: Box::default(), server: Box::default(), waiting: Box::default() }
     }
 
     /// Virtual time at which the controller started, ms.
@@ -266,5 +274,9 @@ impl RetainedMemory for SimRetained {
 pub struct SimWatchdog;
 
 impl Watchdog for SimWatchdog {
+    fn patience_ms(&self) -> u64 {
+        u64::MAX
+    }
+
     fn feed(&mut self) {}
 }

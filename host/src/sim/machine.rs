@@ -36,7 +36,7 @@ impl Machine {
     /// Switches a device on for the first time.
     #[must_use]
     pub fn new(bench: Bench, device_id: Text) -> Self {
-        let app = App::start(bench.hardware(ResetCause::PowerOn, device_id));
+        let app = App::start(bench.hardware(ResetCause::PowerOn, device_id), Bench::rooms());
         Self { bench, device_id, app: Some(app) }
     }
 
@@ -96,6 +96,7 @@ impl Machine {
     fn restart(&mut self, cause: ResetCause) {
         // The old application ends first: it holds the flash.
         self.app = None;
-        self.app = Some(App::start(self.bench.hardware(cause, self.device_id)));
+        let hardware = self.bench.hardware(cause, self.device_id);
+        self.app = Some(App::start(hardware, Bench::rooms()));
     }
 }

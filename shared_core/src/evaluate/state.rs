@@ -8,7 +8,7 @@
 //! | last level count i32 and tick u64; last temperature count i32; start tick u64; product u8; always present, zero where the flag is off | 25 |
 //! | number of machines u8, each: number u8, state u8 (bit 7: pending), since u32, entered u32 | 1 + 10 n |
 //!
-//! Only machines that are not normal stand in the list.
+//! Only machines that are not normal stand in the list, by rising number.
 
 use super::digest::{Digest, fold};
 use crate::alarm::{AlarmState, MACHINES, Machine, MachineId, Move};
@@ -34,16 +34,17 @@ pub struct State {
 
 impl Default for State {
     fn default() -> Self {
-        Self {
-            sight: Sight::default(),
-            machines: [Machine::default(); MACHINES],
-            hash: 0,
-            samples: 0,
-        }
+        Self::new()
     }
 }
 
 impl State {
+    /// Nothing is read, every machine is normal. Every bit is zero.
+    #[must_use]
+    pub const fn new() -> Self {
+        Self { sight: Sight::NONE, machines: [Machine::NORMAL; MACHINES], hash: 0, samples: 0 }
+    }
+
     /// All machines, by number.
     #[must_use]
     pub const fn machines(&self) -> &[Machine; MACHINES] {
@@ -128,11 +129,37 @@ impl State {
     /// Reads a checkpoint; `None` when the bytes are none or of another version.
     #[must_use]
     pub fn decode(bytes: &[u8]) -> Option<Self> {
+        let mut state = Self::new();
+        state.read(bytes)?;
+        Some(state)
+    }
+
+    /// Reads a checkpoint over this state, which is new again when the bytes are none or of another
+    /// version. Gives whether they are one. For a device, which has no room for two states.
+    pub fn decode_into(&mut self, bytes: &[u8]) -> bool {
+        self.clear();
+        let read = self.read(bytes).is_some();
+        if !read {
+            self.clear();
+        }
+        read
+    }
+
+    fn clear(&mut self) {
+        self.sight = Sight::NONE;
+        self.machines.fill(Machine::NORMAL);
+        self.hash = 0;
+        self.samples = 0;
+    }
+
+    /// Reads a checkpoint into a new state; what stands in it after `None` means nothing.
+    fn read(&mut self, bytes: &[u8]) -> Option<()> {
         let mut source = Source(bytes);
         if source.u8()? != VERSION {
             return None;
         }
-        let mut state = Self { hash: source.u64()?, samples: source.u32()?, ..Self::default() };
+        self.hash = source.u64()?;
+        self.samples = source.u32()?;
         let flags = source.u8()?;
         if flags > 0b1111 {
             return None;
@@ -141,24 +168,34 @@ impl State {
         let temperature = source.i32()?;
         let started_ms = source.u64()?;
         let product = source.u8()?;
-        state.sight = Sight {
+        self.sight = Sight {
             last_level: (flags & 1 != 0).then_some(level),
             last_temperature: (flags & 2 != 0).then_some(temperature),
             level_ok: flags & 4 != 0,
             product: (flags & 8 != 0).then_some(product),
             started_ms,
         };
+        let mut least = 0;
         for _ in 0..source.u8()? {
-            let id = MachineId::from_number(source.u8()?)?;
+            let number = source.u8()?;
+            let id = MachineId::from_number(number).filter(|_| number >= least)?;
+            least = number + 1;
             let byte = source.u8()?;
             let machine = Machine {
-                state: AlarmState::from_number(byte & !PENDING)?,
+                // A device hides no alarm: these bytes are not its own.
+                state: AlarmState::from_number(byte & !PENDING).filter(|one| !one.is_hidden())?,
                 pending: byte & PENDING != 0,
                 since_ms: source.u32()?,
                 entered_ms: source.u32()?,
             };
-            *state.machine_mut(id)? = machine;
+            if machine.is_normal() {
+                return None;
+            }
+            *self.machine_mut(id)? = machine;
         }
-        source.0.is_empty().then_some(state)
+        source.0.is_empty().then_some(())
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -116,14 +116,32 @@ impl Bolts {
 }
 
 impl BoltPattern {
-    /// Whether every number is in its range.
+    /// Whether every number is in its range and each cut lies where its weighting changes sign: a
+    /// bound needs it there. `sine` is that of the slope.
     #[must_use]
-    pub fn is_sound(&self) -> bool {
+    pub fn is_sound(&self, shape: &Shape, sine: f32) -> bool {
+        let half_m = if sine > 0.0 { 0.5 * shape.rise_m() / sine } else { 0.0 };
+        let slack_m = 1.0e-4 * half_m;
+        let first_m3 = shape.area_m2() * half_m;
+        let cut_is_sound = |per_moment: f32, cut: Option<[f32; 3]>| {
+            // Here `1 + n s s_i / sum s_j²` is zero; far away where no bolt stands off the
+            // centroid.
+            let zero_m = -1.0 / (f32::from(self.count) * per_moment);
+            match cut {
+                None => zero_m.abs() >= half_m - slack_m,
+                Some([y_m, area_m2, static_m3]) => {
+                    (y_m - (half_m + zero_m) * sine).abs() <= slack_m * sine
+                        && (0.0..=shape.area_m2()).contains(&area_m2)
+                        && (-first_m3..=0.0).contains(&static_m3)
+                }
+            }
+        };
         let [lowest, highest] = self.per_moment;
-        let finite = self.cuts.iter().flatten().flatten().all(|number| number.is_finite());
+        let [low_cut, high_cut] = self.cuts;
         self.count >= 3
-            && (-1.0e6..=0.0).contains(&lowest)
-            && (0.0..=1.0e6).contains(&highest)
-            && finite
+            && (-1.0e4..=0.0).contains(&lowest)
+            && (0.0..=1.0e4).contains(&highest)
+            && cut_is_sound(lowest, low_cut)
+            && cut_is_sound(highest, high_cut)
     }
 }

@@ -192,7 +192,13 @@ fn inward_utilisation<const N: usize>(
     loads: &Loads<N>,
 ) -> Lane<N> {
     let pressure_pa = least_pressure(part, state);
-    ratio(&part.inward, pressure_pa, loads, -1.0).at_most(Lane::splat(UTILISATION_MAX))
+    let mut loads = *loads;
+    if let Geometry::Course { half_diameter_m, .. } = part.geometry {
+        // The design point is the worst of a course outwards; inwards that is where least stands
+        // against the gas.
+        loads.hoop_tension_n_m = pressure_pa * half_diameter_m;
+    }
+    ratio(&part.inward, pressure_pa, &loads, -1.0).at_most(Lane::splat(UTILISATION_MAX))
 }
 
 /// `max over the stated capacities of sign * load / capacity`, not below zero.
@@ -237,3 +243,6 @@ fn design_ratio<const N: usize>(part: &Part, state: &Pressure<N>, design: &Desig
     }
     largest.ramp()
 }
+
+#[cfg(test)]
+mod tests;

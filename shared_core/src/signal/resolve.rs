@@ -1,8 +1,8 @@
 //! From the integers of one cycle to a reading with its bounds.
 //!
 //! A stale reading is projected both ways: up at the highest rise and down at the highest fall,
-//! capped at overflow and at empty. A head sensor's projection is a pressure: the heaviest liquid at
-//! the highest rise, and the swing of the gas where the reading holds it.
+//! capped at overflow and at empty. A head sensor's projection is a pressure: the heaviest liquid
+//! at the highest rise, and the swing of the gas where the reading holds it.
 
 use super::{Channel, LoopClass, Quality, SensorError, classify};
 use crate::alarm::FaultCause;
@@ -42,6 +42,17 @@ pub struct Sight {
     pub started_ms: u64,
     /// Which product is confirmed to be in the tank: 0 the plan's liquid, then its products.
     pub product: Option<u8>,
+}
+
+impl Sight {
+    /// Nothing is remembered.
+    pub const NONE: Self = Self {
+        last_level: None,
+        last_temperature: None,
+        level_ok: false,
+        started_ms: 0,
+        product: None,
+    };
 }
 
 /// A reading with its bounds, in the sensor's own quantity (Pa or m).
@@ -116,12 +127,14 @@ fn judge(plan: &Plan, sight: &mut Sight, level: Channel) -> Result<bool, Option<
                     return Ok(!in_specification);
                 }
                 LoopClass::Between if sight.level_ok => return Ok(true),
-                // The last status was a failure, or there is none: it stays so, with a cause.
-                LoopClass::Between if level.count_16 < 12_000 * 16 => FaultCause::CurrentLow,
-                LoopClass::Between => FaultCause::CurrentHigh,
                 LoopClass::WireBreak => FaultCause::WireBreak,
-                LoopClass::FailureLow => FaultCause::CurrentLow,
-                LoopClass::FailureHigh => FaultCause::CurrentHigh,
+                // Between the bands: the last status was a failure, or there is none. It stays so.
+                LoopClass::FailureLow | LoopClass::Between if level.count_16 < 12_000 * 16 => {
+                    FaultCause::CurrentLow
+                }
+                LoopClass::FailureLow | LoopClass::FailureHigh | LoopClass::Between => {
+                    FaultCause::CurrentHigh
+                }
             },
         },
     };

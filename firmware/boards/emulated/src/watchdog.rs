@@ -52,15 +52,21 @@ impl Stopped {
         LOAD.write((timeout_ms / 2).wrapping_mul(TICKS_PER_SECOND / 1000));
         CONTROL.write(INTERRUPT_ENABLE | RESET_ENABLE);
         LOCK.write(0);
-        Running(())
+        Running { timeout_ms }
     }
 }
 
 /// A watchdog that counts; it cannot be stopped.
 #[derive(Debug)]
-pub struct Running(());
+pub struct Running {
+    timeout_ms: u32,
+}
 
 impl Watchdog for Running {
+    fn patience_ms(&self) -> u64 {
+        self.timeout_ms.into()
+    }
+
     fn feed(&mut self) {
         critical_section::with(|_| {
             LOCK.write(UNLOCK);

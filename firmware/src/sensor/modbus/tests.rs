@@ -199,3 +199,28 @@ fn no_reply_panics_and_no_wrong_one_is_accepted() {
     }
     assert!(accepted > 10_000 && refused > 10_000, "{accepted} accepted, {refused} refused");
 }
+
+#[test]
+fn a_plan_names_the_register() {
+    let preset = Place { unit: 1, function: Function::Input, register: 0, form: Form::U16 };
+    let register =
+        |function, coding| SignalKind::Register { unit: 9, function, register: 7, coding };
+    let named = [
+        (0, Function::Holding, Form::U16),
+        (1, Function::Holding, Form::I16),
+        (2, Function::Input, Form::U32),
+    ];
+    let mut source = source(preset, &[]);
+    for (coding, function, form) in named {
+        source.read_from(register(function as u8, coding));
+        assert_eq!(source.place, Some(Place { unit: 9, function, register: 7, form }));
+    }
+    // Unknown numbers: no guess.
+    for signal in [register(3, 3), register(5, 0)] {
+        source.read_from(signal);
+        assert_eq!(source.read_count(), Err(SensorError::Silent));
+        assert!(source.line.sent.is_empty(), "nothing is asked");
+    }
+    source.read_from(SignalKind::CurrentLoop);
+    assert_eq!(source.place, Some(preset));
+}

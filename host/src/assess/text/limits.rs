@@ -1,6 +1,7 @@
 //! The table of limit levels, and the levels at which thresholds are reached.
 
-use super::{Sheet, reading};
+use super::Sheet;
+use super::state::reading;
 use crate::assess::document::PartRow;
 use crate::inverse::{Step, rounded_down, rounded_up};
 use crate::page::Page;
@@ -9,7 +10,7 @@ use crate::units::UnitSystem;
 
 /// Columns of a name, of an unrounded and of a rounded level.
 const NAME: usize = 26;
-const UNROUNDED: usize = 13;
+const UNROUNDED: usize = 12;
 const ROUNDED: usize = 16;
 
 const fn step(units: UnitSystem) -> Step {
@@ -104,15 +105,17 @@ fn governing(sheet: &Sheet<'_>, page: &mut Page, rows: &[PartRow]) {
     let Some(limits) = &row.judgement.limits else { return };
     let by = limits.limited_by.replace('_', " ");
     page.blank();
-    let text = match limits.limit_level_m {
-        None => format!("{}, no level is within its capacity (limited by {by})", row.name),
-        Some(_) => {
-            let limit = down(sheet.units, limits.limit_level_m);
-            let not = if by == "overflow" || by == "shell top" { ", not strength" } else { "" };
-            format!("{}, calculated limit level {limit} (limited by {by}{not})", row.name)
-        }
+    let text = if limits.limit_level_m.is_none() {
+        format!("{}, no level is within its capacity (limited by {by})", row.name)
+    } else {
+        let limit = down(sheet.units, limits.limit_level_m);
+        format!("{}, calculated limit level {limit} (limited by {by})", row.name)
     };
     page.heading(&format!("Governing: {text}"));
+    if let Some(alone_m) = limits.capacity_alone_m {
+        let alone = down(sheet.units, Some(alone_m));
+        page.line(&format!("  its capacity alone is reached at {alone}"));
+    }
 }
 
 /// Where the first bound reaches the thresholds of `[alarm]`.
@@ -134,6 +137,9 @@ pub(super) fn thresholds(sheet: &Sheet<'_>, page: &mut Page) {
                 format!("first reached at {}{read}", sheet.show(level_m, Length))
             }
         };
-        page.paragraph("  ", &format!("{name:<6} bound at {utilisation} of a capacity: {at}"));
+        page.paragraph(
+            &format!("  {name:<7}"),
+            &format!("a bound at {utilisation} of its capacity: {at}"),
+        );
     }
 }
