@@ -75,7 +75,8 @@ pub trait Board {
     type Plans: NorFlash;
     /// The line to the laptop.
     type Link: Read + ReadReady + Write + WriteReady;
-    /// Drives the contact: high conducts, which means healthy. It must open by itself without power.
+    /// Drives the contact: high conducts, which means healthy. It must open by itself without
+    /// power.
     type Contact: OutputPin;
     /// The button: low while pressed.
     type Button: InputPin;

@@ -4,16 +4,17 @@
 //! block's body first and its check last, so a cut leaves a torn block that no reader takes for an
 //! entry; it never programs a word twice between two erases and never appends behind a torn block.
 //!
-//! What a cut may cost: what waits in RAM. What a destroyed sector may cost: that sector. The medium
-//! may program the words of one write in any order, but must finish one write before the next.
+//! What a cut may cost: what waits in RAM. What a destroyed sector may cost: that sector. The
+//! medium may program the words of one write in any order, but must finish one write before the
+//! next.
 //!
 //! # Order of calls
 //!
 //! A sector opens with a checkpoint of the caller's state, which must contain exactly what the
 //! entries before it did to it. Therefore **inputs are appended before they are applied** (a sample
 //! is pushed before it is evaluated; the same for plan changes, acknowledgements, clock fixes and
-//! start-ups) and **results after** (transitions, faults). What waits always fits in the rest of the
-//! open sector, so no checkpoint ever overtakes a waiting sample.
+//! start-ups) and **results after** (transitions, faults). What waits always fits in the rest of
+//! the open sector, so no checkpoint ever overtakes a waiting sample.
 
 mod append;
 pub mod collect;

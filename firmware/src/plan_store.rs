@@ -76,22 +76,23 @@ impl<F: NorFlash> PlanStore<F> {
         Self { flash, slots, writing: None }
     }
 
-    /// The newest plan whose bytes have their fingerprint.
+    /// The newest plan whose bytes have their fingerprint. Newer ones without it are forgotten:
+    /// their slots are free.
     pub fn newest(&mut self) -> Option<SlotHeader> {
-        let mut candidates = self.list();
-        while let Some(index) = newest_of(&candidates) {
-            let candidate = candidates.swap_remove(index);
-            if self.is_sound(&candidate) {
-                return Some(candidate);
+        loop {
+            let newest = self.newest_where(|_| true)?;
+            let header = self.slots.get(newest).copied().flatten()?;
+            if self.fingerprint_of(newest, header.length).ok() == Some(header.fingerprint) {
+                return Some(header);
             }
+            *self.slots.get_mut(newest)? = None;
         }
-        None
     }
 
     /// The stored plan with this fingerprint.
     #[must_use]
     pub fn find(&self, fingerprint: u64) -> Option<SlotHeader> {
-        self.slots.iter().flatten().copied().find(|header| header.fingerprint == fingerprint)
+        self.slots.get(self.slot_of(fingerprint)?).copied().flatten()
     }
 
     /// Every stored plan, in the order of the slots.
@@ -213,16 +214,14 @@ impl<F: NorFlash> PlanStore<F> {
     }
 
     fn slot_of(&self, fingerprint: u64) -> Option<usize> {
-        let matches = |slot: &Option<SlotHeader>| {
-            slot.is_some_and(|header| header.fingerprint == fingerprint)
-        };
-        self.slots.iter().position(matches)
+        self.newest_where(|header| header.fingerprint == fingerprint)
     }
 
-    fn is_sound(&mut self, header: &SlotHeader) -> bool {
-        let slot = self.slot_of(header.fingerprint);
-        slot.and_then(|slot| self.fingerprint_of(slot, header.length).ok())
-            == Some(header.fingerprint)
+    /// The slot of the newest plan of those that `matches` picks.
+    fn newest_where(&self, matches: impl Fn(&SlotHeader) -> bool) -> Option<usize> {
+        let stored = self.slots.iter().enumerate();
+        let picked = stored.filter_map(|(slot, header)| header.filter(&matches).map(|h| (slot, h)));
+        picked.max_by_key(|(_, header)| header.sequence).map(|(slot, _)| slot)
     }
 
     fn fingerprint_of(&mut self, slot: usize, length: u16) -> Result<u64, StoreError<F::Error>> {
@@ -265,10 +264,6 @@ impl<F: NorFlash> PlanStore<F> {
 
 fn base(slot: usize) -> u32 {
     u32::try_from(slot * SECTOR_BYTES).unwrap_or(u32::MAX)
-}
-
-fn newest_of(headers: &[SlotHeader]) -> Option<usize> {
-    headers.iter().enumerate().max_by_key(|(_, header)| header.sequence).map(|(index, _)| index)
 }
 
 impl<F> fmt::Debug for PlanStore<F> {

@@ -21,6 +21,7 @@ pub use request::{Overrides, Request, RequestError, Source};
 use crate::compile;
 use crate::inverse;
 use crate::tank::{Findings, TankFile};
+use crate::units::UnitSystem;
 
 /// What an assessment gives.
 #[derive(Clone, Debug)]
@@ -41,9 +42,9 @@ pub struct Assessment {
 pub fn assess(file: &TankFile, request: &Request) -> Result<Assessment, Findings> {
     let desk = Desk::new(compile::for_desk(file, &request.contents)?, file);
     let parts = part::rows(file, &desk, request);
-    let not_judged = notes::not_judged(file, &desk);
+    let not_judged = notes::not_judged(file, &desk, UnitSystem::Si);
     let above_alarm = judged::above_alarm(file, &desk, &parts);
-    let cautions = notes::cautions(file, request, &desk, &parts);
+    let cautions = notes::cautions(file, request, &desk, &parts, UnitSystem::Si);
     let thresholds = file.alarm.as_ref().map(|_| &desk.plan().alarm);
     let reached =
         |threshold: Option<f32>| threshold.and_then(|at| inverse::first_reached(&desk, at));
@@ -70,3 +71,6 @@ pub fn assess(file: &TankFile, request: &Request) -> Result<Assessment, Findings
     };
     Ok(Assessment { document, above_alarm, desk })
 }
+
+#[cfg(test)]
+mod tests;

@@ -118,7 +118,7 @@ fn own_bug() -> Failure {
 fn not_parsed(arguments: &[OsString], error: &clap::Error) -> Exit {
     let colour = asked(arguments, "--color").unwrap_or_default();
     let format = asked(arguments, "--format").unwrap_or_default();
-    let mut term = Term::new(Settings { colour, format, ..Settings::default() });
+    let mut term = Term::new(Settings { format, colour, ..Settings::default() });
     if !error.use_stderr() {
         term.from_parser(error);
         return Exit::Done;

@@ -17,6 +17,7 @@ mod site;
 
 pub(crate) use bolts::centroid_cut;
 pub use contents::Contents;
+pub(crate) use site::{HEIGHT_MAX_M, floor_m};
 pub use strake_core::plan_slot::fingerprint;
 
 use crate::tank::{Findings, TankFile};
@@ -53,8 +54,8 @@ impl Compiled {
     }
 }
 
-/// A plan for a calculation at the desk: what only the device needs may be missing from the file and
-/// is filled with values that touch no load at a stated level.
+/// A plan for a calculation at the desk: what only the device needs may be missing from the file
+/// and is filled with values that touch no load at a stated level.
 ///
 /// # Errors
 /// [`Findings`] with everything in the file that the plan cannot hold.
@@ -84,8 +85,8 @@ fn build(file: &TankFile, contents: &Contents, faults: &mut Faults) -> Plan {
     site::site(file, contents, &mut plan, faults);
     liquid::liquid(file, contents, &mut plan);
     level::level(file, &mut plan, faults);
-    device::alarm(file, &mut plan, faults);
-    device::logging(file, &mut plan, faults);
+    device::alarm(file, &mut plan);
+    device::logging(file, &mut plan);
     for part in &file.parts {
         if let Some(part) = part::part(file, part, faults)
             && plan.parts.push(part).is_err()
@@ -112,3 +113,6 @@ fn finish(file: &TankFile, plan: Plan, mut faults: Faults) -> Result<Compiled, F
         device_id: file.device_id.as_ref().map_or_else(String::new, |id| id.value.clone()),
     })
 }
+
+#[cfg(test)]
+mod tests;

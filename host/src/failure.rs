@@ -1,5 +1,7 @@
 //! Why a command did not do what it was asked: what, where, and what to do.
 
+mod device;
+
 use crate::exit::Exit;
 use crate::tank::Findings;
 use serde_json::{Value, json};
@@ -58,11 +60,11 @@ impl Failure {
             Self::Findings(findings) => Some(findings.to_text(coloured)),
             Self::Said(said) => {
                 let (on, off) = if coloured { ("\u{1b}[1;31m", "\u{1b}[0m") } else { ("", "") };
-                let mut text = format!("{on}error{off}: {}\n", said.message);
-                if !said.hint.is_empty() {
-                    text.push_str(&format!("  hint: {}\n", said.hint));
-                }
-                Some(text)
+                let hint = match said.hint.as_str() {
+                    "" => String::new(),
+                    hint => format!("  hint: {hint}\n"),
+                };
+                Some(format!("{on}error{off}: {}\n{hint}", said.message))
             }
         }
     }

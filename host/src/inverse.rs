@@ -34,8 +34,8 @@ pub(crate) trait Criterion {
     fn holds<const N: usize>(&self, level_m: Lane<N>) -> [bool; N];
 }
 
-/// The parts of `range` in which the criterion holds, from the bottom up. `kinks` are levels at which
-/// a load may change its course.
+/// The parts of `range` in which the criterion holds, from the bottom up. `kinks` are levels at
+/// which a load may change its course.
 pub(crate) fn intervals(
     criterion: &impl Criterion,
     range: Interval,
@@ -88,8 +88,8 @@ fn places(range: Interval, kinks: impl IntoIterator<Item = f32>) -> Vec<f32> {
     levels
 }
 
-/// The last level at which the criterion holds on the way from `good` to `bad`: its neighbour in f32
-/// towards `bad` is one at which it does not.
+/// The last level at which the criterion holds on the way from `good` to `bad`: its neighbour in
+/// f32 towards `bad` is one at which it does not.
 fn edge(criterion: &impl Criterion, mut good: f32, mut bad: f32) -> f32 {
     loop {
         let middle = good + 0.5 * (bad - good);
@@ -106,3 +106,6 @@ fn edge(criterion: &impl Criterion, mut good: f32, mut bad: f32) -> f32 {
         }
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -1,6 +1,6 @@
 //! Host library of Strake.
 #![forbid(unsafe_code)]
-#![warn(clippy::print_stdout, clippy::print_stderr)]
+#![cfg_attr(not(test), warn(clippy::print_stdout, clippy::print_stderr))]
 
 pub mod assess;
 pub mod cli;
@@ -9,15 +9,19 @@ pub mod compile;
 pub mod exit;
 pub mod failure;
 pub mod inverse;
+pub mod journal_check;
 pub mod journal_file;
 pub mod link;
 pub mod nearest;
 pub mod output_file;
 pub mod page;
 pub mod plan_file;
+pub mod plan_words;
 pub mod replay;
 pub mod sim;
+pub mod status;
 pub mod tank;
 pub mod term;
 pub mod trial;
 pub mod units;
+pub mod utc;

@@ -38,7 +38,7 @@ impl Page {
     pub fn heading(&mut self, line: &str) {
         let line = line.trim_end();
         if self.coloured {
-            self.text.push_str(&format!("\u{1b}[1m{line}\u{1b}[0m\n"));
+            self.line(&format!("\u{1b}[1m{line}\u{1b}[0m"));
         } else {
             self.line(line);
         }
@@ -55,6 +55,13 @@ impl Page {
             }
         }
     }
+}
+
+/// A number of things: `1 sector`, `2 sectors`.
+#[must_use]
+pub fn counted(count: impl Into<u64>, thing: &str) -> String {
+    let count = count.into();
+    format!("{count} {thing}{}", if count == 1 { "" } else { "s" })
 }
 
 /// Breaks a text at blanks into lines of at most `width` characters; a longer word stands alone.
@@ -78,13 +85,19 @@ pub fn wrap(text: &str, width: usize) -> Vec<String> {
 
 #[cfg(test)]
 mod tests {
-    use super::{Page, wrap};
+    use super::{Page, counted, wrap};
 
     #[test]
     fn lines_keep_to_their_width() {
         assert_eq!(wrap("one two three", 7), ["one two", "three"]);
         assert_eq!(wrap("incomprehensible it is", 5), ["incomprehensible", "it is"]);
         assert_eq!(wrap("", 5), [""]);
+    }
+
+    #[test]
+    fn one_thing_stands_alone() {
+        let shown = [0_u32, 1, 2].map(|count| counted(count, "sector"));
+        assert_eq!(shown, ["0 sectors", "1 sector", "2 sectors"]);
     }
 
     #[test]

@@ -93,15 +93,28 @@ pub fn read(file: &[u8]) -> Result<PlanFile, PlanFileError> {
     if CRC32.checksum(checked) != u32::from_le_bytes(check) {
         return Err(PlanFileError::Damaged);
     }
-    let (header, plan) = codec::decode(bytes)?;
-    let mut part_names = Vec::new();
-    let tank_name = codec::names(bytes, |_, name| part_names.push(name.to_owned()))?;
-    Ok(PlanFile {
-        header,
-        plan,
-        tank_name: tank_name.as_str().to_owned(),
-        part_names,
-        bytes: bytes.to_vec(),
-        fingerprint: fingerprint(bytes),
-    })
+    Ok(PlanFile::of_plan(bytes)?)
 }
+
+impl PlanFile {
+    /// The plan in the bytes that a device takes and keeps.
+    ///
+    /// # Errors
+    /// [`PlanError`] when they are no plan.
+    pub fn of_plan(bytes: &[u8]) -> Result<Self, PlanError> {
+        let (header, plan) = codec::decode(bytes)?;
+        let mut part_names = Vec::new();
+        let tank_name = codec::names(bytes, |_, name| part_names.push(name.to_owned()))?;
+        Ok(Self {
+            header,
+            plan,
+            tank_name: tank_name.as_str().to_owned(),
+            part_names,
+            bytes: bytes.to_vec(),
+            fingerprint: fingerprint(bytes),
+        })
+    }
+}
+
+#[cfg(test)]
+mod tests;

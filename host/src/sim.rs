@@ -3,6 +3,8 @@
 pub mod board;
 pub mod machine;
 pub mod nor;
+#[cfg(unix)]
+pub mod pty;
 pub mod sensor;
 
 #[cfg(test)]

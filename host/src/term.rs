@@ -2,10 +2,14 @@
 //!
 //! Results go to standard output, everything else to standard error, so that a result can be piped.
 
+mod meter;
+
+pub use meter::Meter;
+
 use crate::failure::Failure;
 use crate::units::UnitSystem;
 use serde::Serialize;
-use std::io::{self, Write};
+use std::io::{self, IsTerminal, Write};
 
 /// How results are written.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq, clap::ValueEnum)]
@@ -116,6 +120,27 @@ impl Term {
         if self.settings.verbosity > 0 {
             self.say(&format!("{text}\n"));
         }
+    }
+
+    /// Asks for a yes. `None` where nobody can be asked: without a terminal.
+    pub fn ask(&mut self, question: &str) -> Option<bool> {
+        if !(io::stdin().is_terminal() && io::stderr().is_terminal()) {
+            return None;
+        }
+        self.say(&format!("{question} [y/N] "));
+        let mut answer = String::new();
+        // What cannot be read is no yes.
+        let read = io::stdin().read_line(&mut answer).is_ok();
+        Some(read && matches!(answer.trim(), "y" | "Y" | "yes"))
+    }
+
+    /// A display of how far something long is. JSON output and `--quiet` have none.
+    #[must_use]
+    pub fn meter(&self, what: &'static str, unit: &'static str) -> Meter {
+        if self.settings.quiet || self.settings.format == Format::Json {
+            return Meter::silent();
+        }
+        Meter::on_standard_error(what, unit)
     }
 
     /// Says why a command failed, in the format asked for.

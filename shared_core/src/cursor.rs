@@ -1,4 +1,5 @@
-//! Reading and writing little-endian numbers in a slice. Total: running out is a value, not a panic.
+//! Reading and writing little-endian numbers in a slice. Total: running out is a value, not a
+//! panic.
 
 /// Hands out bytes in order.
 pub trait Fetch {

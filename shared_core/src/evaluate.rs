@@ -20,7 +20,7 @@ pub use step::{Judged, Moved, judge, step};
 
 use crate::lane::Lane;
 use crate::liquid::{Readings, States, states};
-use crate::part::{PartLoads, evaluate as evaluate_part};
+use crate::part::{PartLoads, evaluate_into};
 use crate::plan::Plan;
 use crate::signal::Resolved;
 use core::array;
@@ -45,9 +45,9 @@ pub fn pressures<const N: usize>(plan: &Plan, resolved: &[Resolved; N]) -> State
     states(plan, &readings)
 }
 
-/// Heights of the surface that a reading allows, m above the datum: lowest, estimated, highest. At or
-/// below the diaphragm of a head sensor the lowest is the diaphragm's own height: what lies below is
-/// not seen.
+/// Heights of the surface that a reading allows, m above the datum: lowest, estimated, highest. At
+/// or below the diaphragm of a head sensor the lowest is the diaphragm's own height: what lies
+/// below is not seen.
 #[must_use]
 pub fn levels_m(plan: &Plan, resolved: &Resolved) -> [f32; 3] {
     let states = pressures(plan, &[*resolved]);
@@ -66,10 +66,14 @@ pub fn loads<const N: usize>(
 ) -> Digest<N> {
     let states = pressures(plan, resolved);
     let mut digest = Digest::new();
+    let mut loads = PartLoads::NONE;
     for (index, one) in plan.parts.iter().enumerate() {
-        let loads = evaluate_part(plan, one, &states);
+        evaluate_into(plan, one, &states, &mut loads);
         digest.add(one, &loads);
         part(index, &loads);
     }
     digest
 }
+
+#[cfg(test)]
+mod tests;

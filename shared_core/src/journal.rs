@@ -52,3 +52,6 @@ pub const TICK_LIMIT_MS: u64 = 1 << 48;
 pub fn is_blank(bytes: &[u8]) -> bool {
     bytes.iter().all(|&byte| byte == 0xFF)
 }
+
+#[cfg(test)]
+mod tests;

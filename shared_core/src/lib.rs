@@ -1,7 +1,7 @@
 //! Loads, signals, alarms, plan, journal format and wire messages of Strake.
 //!
-//! No heap, no operating system, no unsafe code, no clock, no input or output: bytes and numbers in,
-//! bytes and numbers out. The device, the replay and every what-if call the same functions.
+//! No heap, no operating system, no unsafe code, no clock, no input or output: bytes and numbers
+//! in, bytes and numbers out. The device, the replay and every what-if call the same functions.
 #![cfg_attr(not(test), no_std)]
 #![forbid(unsafe_code)]
 

@@ -1,8 +1,8 @@
 //! The liquid: densities with their bands, layers, gas, and the pressure states they make.
 //!
-//! A *band* is the interval a density is held never to leave; the *estimate* is the one the engineer
-//! entered. A bound of a load is one evaluation of the one formula with a bounding liquid, chosen by
-//! what the sensor measures ([`states`]).
+//! A *band* is the interval a density is held never to leave; the *estimate* is the one the
+//! engineer entered. A bound of a load is one evaluation of the one formula with a bounding liquid,
+//! chosen by what the sensor measures ([`states`]).
 
 mod density;
 mod states;

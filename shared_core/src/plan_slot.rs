@@ -17,8 +17,8 @@
 //! whose plan does not have its fingerprint is passed over, and the plan before it stays in force.
 
 use crate::cursor::{Sink, Source};
+use crate::journal::check::CRC32;
 use crate::plan::PLAN_BYTES_MAX;
-use crc::{CRC_32_ISO_HDLC, Crc};
 use sha2::{Digest, Sha512};
 
 /// Bytes of a header.
@@ -28,7 +28,6 @@ pub const PLAN_OFFSET: u32 = 256;
 const MAGIC: [u8; 3] = *b"SKS";
 const VERSION: u8 = 1;
 const UNSIGNED: [u8; 64] = [0xFF; 64];
-const CHECK: Crc<u32> = Crc::<u32>::new(&CRC_32_ISO_HDLC);
 
 const _: () = assert!(PLAN_OFFSET as usize + PLAN_BYTES_MAX <= crate::journal::SECTOR_BYTES);
 
@@ -60,7 +59,7 @@ impl SlotHeader {
         sink.u16(0);
         sink.bytes(&UNSIGNED);
         let (fields, check) = bytes.split_at_mut(SLOT_HEADER_BYTES - 4);
-        check.copy_from_slice(&CHECK.checksum(fields).to_le_bytes());
+        check.copy_from_slice(&CRC32.checksum(fields).to_le_bytes());
         bytes
     }
 
@@ -68,7 +67,7 @@ impl SlotHeader {
     #[must_use]
     pub fn decode(bytes: &[u8; SLOT_HEADER_BYTES]) -> Option<Self> {
         let (fields, check) = bytes.split_at_checked(SLOT_HEADER_BYTES - 4)?;
-        if Source(check).u32()? != CHECK.checksum(fields) {
+        if Source(check).u32()? != CRC32.checksum(fields) {
             return None;
         }
         let mut source = Source(fields);

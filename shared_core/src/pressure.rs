@@ -5,11 +5,12 @@
 //!
 //! ```text
 //! p(z) = p_g + sum_i step_i max(0, h_i - z)
-//! R    = p_g W + sum_i step_i M(h_i),   W = integral w dz,   M(h) = integral over z < h of (h - z) w dz
+//! R    = p_g W + sum_i step_i M(h_i)
+//! W    = integral w dz,   M(h) = integral over z < h of (h - z) w dz
 //! ```
 //!
-//! `p` is hydrostatics; `R` follows because the load is a linear functional of the pressure with the
-//! part's weighting `w`. A new elementary load is a new pair `(W, M)` and nothing else. Liquid
+//! `p` is hydrostatics; `R` follows because the load is a linear functional of the pressure with
+//! the part's weighting `w`. A new elementary load is a new pair `(W, M)` and nothing else. Liquid
 //! against the outside is one more surface with a negative step.
 
 use crate::lane::Lane;
@@ -74,7 +75,8 @@ impl<const N: usize> Pressure<N> {
 
     /// Pressure at a height, Pa gauge. Error: 3e-7 of the largest term.
     #[must_use]
-    #[inline]
+    #[expect(clippy::inline_always, reason = "the call would cost half of what it does")]
+    #[inline(always)]
     pub fn at(&self, z_m: Lane<N>) -> Lane<N> {
         let mut p = self.gas_pa;
         for surface in self.surfaces() {

@@ -9,8 +9,8 @@
 //!
 //! Every load on a plane part is `alpha * F + beta * Mc`, so these two serve force, centre of
 //! pressure, moments about any level line, hinges and bolt shares.
-//! The wetted part is clipped first and then integrated: differences of powers of large depths would
-//! cost three digits.
+//! The wetted part is clipped first and then integrated: differences of powers of large depths
+//! would cost three digits.
 
 mod circle;
 mod rectangle;
@@ -115,3 +115,6 @@ impl Cut {
         Wetted { q0: lower.q0 + above * self.area_m2, q1: lower.q1 + above * self.static_m3 }
     }
 }
+
+#[cfg(test)]
+mod tests;

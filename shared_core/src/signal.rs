@@ -2,8 +2,9 @@
 //!
 //! A raw count is a type of its own: microamperes of a current loop, or the register value of a bus
 //! sensor. Only the plan's scale turns it into a quantity. A burst of raw counts is filtered to ONE
-//! integer ([`burst`]), and exactly that integer is judged, logged and replayed. A reading ([`resolve`])
-//! is one of: not yet read, valid, held, projected, failed; an alarm never sees a bare number.
+//! integer ([`burst`]), and exactly that integer is judged, logged and replayed. A reading
+//! ([`resolve`]) is one of: not yet read, valid, held, projected, failed; an alarm never sees a
+//! bare number.
 
 pub mod burst;
 mod channel;

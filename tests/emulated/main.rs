@@ -8,6 +8,7 @@ macro_rules! tests {
     ($($name:ident,)*) => { &[$((stringify!($name), $name),)*] };
 }
 
+mod bits;
 mod device;
 mod drivers;
 mod flash_file;
@@ -53,7 +54,7 @@ fn trial(missing: Option<&'static str>, (name, run): Test) -> Trial {
 fn main() {
     let arguments = Arguments::from_args();
     let missing = toolchain::missing();
-    let trials: Vec<Trial> = [drivers::TESTS, operation::TESTS]
+    let trials: Vec<Trial> = [drivers::TESTS, bits::TESTS, operation::TESTS]
         .into_iter()
         .flatten()
         .map(|&test| trial(missing.as_ref().map(|(what, _)| *what), test))

@@ -1,4 +1,7 @@
 //! Loads against published values, own values and the oracle.
 
 mod cases;
+mod core_cases;
+mod core_engine;
+mod core_error;
 mod states;

@@ -107,8 +107,8 @@ impl<B: Board> Device<B> {
         }
     }
 
-    /// The journal cannot be written. The contact tells it at once; its entry and its machine follow
-    /// when the journal takes entries again, so that the replay sees what the device saw.
+    /// The journal cannot be written. The contact tells it at once; its entry and its machine
+    /// follow when the journal takes entries again, so that the replay sees what the device saw.
     pub(super) fn journal_failed(&mut self) {
         self.faults.seen(FaultCause::Journal, 0);
         self.journal_failing = true;

@@ -25,7 +25,7 @@ impl<B: Board> Device<B> {
             hardware;
         let Hardware { retained, watchdog, device_id, reset_cause, .. } = hardware;
         let mut plans = PlanStore::open(plans);
-        let mut restored = Restored { plans: &mut plans, memory: &mut *memory, in_force: None };
+        let mut restored = Restored { plans: &mut plans, memory: &mut memory, in_force: None };
         let (journal, recovery) = match Journal::open_in(waiting, journal, &mut restored) {
             Ok((journal, recovery)) => (Some(journal), recovery),
             Err(_) => (None, Recovery::default()),

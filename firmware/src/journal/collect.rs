@@ -56,8 +56,13 @@ impl<F, W: DerefMut<Target = Waiting>> Journal<F, W> {
         &self.ring.flash
     }
 
-    /// Holds the sector back from being erased for [`HOLD_MS`], and everything behind it. A new call
-    /// moves the hold.
+    /// The flash, for what its traits do not offer, such as putting the chip to sleep.
+    pub const fn flash_mut(&mut self) -> &mut F {
+        &mut self.ring.flash
+    }
+
+    /// Holds the sector back from being erased for [`HOLD_MS`], and everything behind it. A new
+    /// call moves the hold.
     pub fn hold(&mut self, sequence: u32, now_ms: u64) {
         self.hold = Some(Hold { sequence, until_ms: now_ms.saturating_add(HOLD_MS) });
     }
@@ -67,7 +72,8 @@ impl<F, W: DerefMut<Target = Waiting>> Journal<F, W> {
         self.hold = None;
     }
 
-    /// Bytes of the sector that are in use: all of a closed one, up to the last block of the newest.
+    /// Bytes of the sector that are in use: all of a closed one, up to the last block of the
+    /// newest.
     ///
     /// # Errors
     /// [`ReadError::Gone`] when the ring does not hold it.

@@ -1,6 +1,7 @@
 //! The plan on the desk: the core's pressure states at stated levels.
 
-use crate::compile::Compiled;
+use super::part::single;
+use crate::compile::{Compiled, HEIGHT_MAX_M};
 use crate::inverse::{Interval, LimitedBy};
 use crate::tank::TankFile;
 use strake_core::lane::Lane;
@@ -25,6 +26,8 @@ impl Desk {
         let plan = compiled.plan;
         let mut true_level = plan.clone();
         true_level.level.sensor = LevelSensor::Surface;
+        // A level stated here is never cut; up to where a tank can be filled, `range` says.
+        true_level.closed = true;
         let limited_at_top = match file.fill.overflow_m {
             Some(_) => LimitedBy::Overflow,
             None => LimitedBy::ShellTop,
@@ -44,6 +47,12 @@ impl Desk {
         Interval { low_m: self.plan.floor_m, high_m: self.plan.overflow_m }
     }
 
+    /// Levels above the range, up to where a plan ends: for a capacity that outlasts the tank.
+    #[must_use]
+    pub fn beyond(&self) -> Interval {
+        Interval { low_m: self.plan.overflow_m, high_m: single(HEIGHT_MAX_M) }
+    }
+
     /// What ends the range.
     #[must_use]
     pub const fn limited_at_top(&self) -> LimitedBy {
@@ -57,7 +66,8 @@ impl Desk {
         states(&self.true_level, &self.readings(level_m, Lane::ZERO))
     }
 
-    /// The states that the plan's sensor allows when it reads what the estimate gives at that level.
+    /// The states that the plan's sensor allows when it reads what the estimate gives at that
+    /// level.
     ///
     /// A head sensor reads the estimate's pressure at its height, and the bounds are its envelope;
     /// to a surface sensor's level its uncertainty is added and taken off.

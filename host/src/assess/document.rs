@@ -69,7 +69,8 @@ pub struct PartRow {
 /// Loads under one state. Only what the part has.
 #[derive(Clone, Debug, Serialize)]
 pub struct Loads {
-    /// At the design point of a course, else the largest on the part; of the inward bound the least.
+    /// At the design point of a course, else the largest on the part; of the inward bound the
+    /// least.
     pub pressure_pa: f32,
     /// Hoop tension of a course.
     #[serde(skip_serializing_if = "Option::is_none")]
@@ -143,6 +144,9 @@ pub struct Limits {
     pub limit_level_bound_m: Option<f32>,
     /// Admissible levels, from and to.
     pub limit_intervals_m: Vec<[f32; 2]>,
+    /// Where overflow or shell top come first: what the capacities alone give. Text only.
+    #[serde(skip)]
+    pub capacity_alone_m: Option<f32>,
 }
 
 /// The lowest level.

@@ -5,16 +5,18 @@ use super::document::PartRow;
 use crate::tank::TankFile;
 
 /// Name of the part with the lowest limit level: one without any admissible level first; among
-/// equal levels the one that is used most now.
+/// those that overflow or shell top limit, the one whose capacities alone give the lowest.
 pub(super) fn governing(parts: &[PartRow]) -> Option<String> {
     let rank = |row: &PartRow| {
-        let level_m = row.judgement.limits.as_ref().and_then(|limits| limits.limit_level_m);
-        (level_m.unwrap_or(f32::NEG_INFINITY), -row.judgement.utilisation.unwrap_or(0.0))
+        let limits = row.judgement.limits.as_ref();
+        let level_m = limits.and_then(|limits| limits.limit_level_m);
+        let alone_m = limits.and_then(|limits| limits.capacity_alone_m);
+        (level_m.unwrap_or(f32::NEG_INFINITY), alone_m.unwrap_or(f32::INFINITY))
     };
     let judged = parts.iter().filter(|row| row.judgement.limits.is_some());
     let first = judged.min_by(|a, b| {
-        let ((level_a, used_a), (level_b, used_b)) = (rank(a), rank(b));
-        level_a.total_cmp(&level_b).then(used_a.total_cmp(&used_b))
+        let ((level_a, alone_a), (level_b, alone_b)) = (rank(a), rank(b));
+        level_a.total_cmp(&level_b).then(alone_a.total_cmp(&alone_b))
     });
     first.map(|row| row.name.clone())
 }

@@ -4,9 +4,10 @@ use super::desk::Desk;
 use super::document::{NotJudged, PartRow};
 use super::judged;
 use super::request::{Request, Source};
+use crate::compile::HEIGHT_MAX_M;
 use crate::tank::{Capacity, Hatch, Opens, Part as Stated, Rating, TankFile};
 use crate::units::Quantity::{Length, Temperature};
-use crate::units::format_si;
+use crate::units::{UnitSystem, format};
 use strake_core::lane::Lane;
 use strake_core::part::{Part, evaluate};
 
@@ -15,7 +16,7 @@ pub const FIELD_CHECK: &str = "field check: it replaces no licensed inspection a
                                prevention system";
 
 /// What is not judged, part by part, then the bare stretches of the shell.
-pub(super) fn not_judged(file: &TankFile, desk: &Desk) -> Vec<NotJudged> {
+pub(super) fn not_judged(file: &TankFile, desk: &Desk, units: UnitSystem) -> Vec<NotJudged> {
     let mut found = Vec::new();
     for (stated, part) in file.parts.iter().zip(&desk.plan().parts) {
         let mut note = |why: String| found.push(NotJudged { name: stated.name().to_owned(), why });
@@ -35,7 +36,11 @@ pub(super) fn not_judged(file: &TankFile, desk: &Desk) -> Vec<NotJudged> {
     }
     for (low_m, high_m) in file.uncovered_shell() {
         found.push(NotJudged {
-            name: format!("shell {} to {}", format_si(low_m, Length), format_si(high_m, Length)),
+            name: format!(
+                "shell {} to {}",
+                format(low_m, Length, units),
+                format(high_m, Length, units)
+            ),
             why: "no course covers it".to_owned(),
         });
     }
@@ -79,6 +84,7 @@ pub(super) fn cautions(
     request: &Request,
     desk: &Desk,
     parts: &[PartRow],
+    units: UnitSystem,
 ) -> Vec<String> {
     let mut found = Vec::new();
     if file.is_provisional() {
@@ -96,8 +102,8 @@ pub(super) fn cautions(
     if parts.iter().all(|row| row.judgement.utilisation_bound.is_none()) {
         found.push("no part is judged outward".to_owned());
     }
-    state_cautions(file, request, &mut found);
-    file_cautions(file, &mut found);
+    state_cautions(file, request, units, &mut found);
+    file_cautions(file, units, &mut found);
     found.push(FIELD_CHECK.to_owned());
     found
 }
@@ -116,8 +122,8 @@ pub fn assumed(file: &TankFile) -> Vec<String> {
     found
 }
 
-fn state_cautions(file: &TankFile, request: &Request, found: &mut Vec<String>) {
-    let level = format_si(request.level_m, Length);
+fn state_cautions(file: &TankFile, request: &Request, units: UnitSystem, found: &mut Vec<String>) {
+    let level = format(request.level_m, Length, units);
     match request.level_source {
         Source::Overflow => {
             found.push(format!("no level stated: taken at the overflow, {level}"));
@@ -125,10 +131,10 @@ fn state_cautions(file: &TankFile, request: &Request, found: &mut Vec<String>) {
         Source::ShellTop => {
             found.push(format!("no level stated: taken at the shell top, {level}"));
         }
-        Source::File | Source::Override => {
+        Source::Override => {
             let overflow = file.fill.overflow_m.filter(|top| request.level_m > top.value);
             if let Some(overflow) = overflow {
-                let top = format_si(overflow.value, Length);
+                let top = format(overflow.value, Length, units);
                 found.push(format!("the level, {level}, stands above the overflow, {top}"));
             }
         }
@@ -138,14 +144,14 @@ fn state_cautions(file: &TankFile, request: &Request, found: &mut Vec<String>) {
     if !(cold..=hot).contains(&request.contents.temperature_c) {
         found.push(format!(
             "the temperature, {}, lies outside the liquid's range, {} to {}",
-            format_si(request.contents.temperature_c, Temperature),
-            format_si(cold, Temperature),
-            format_si(hot, Temperature)
+            format(request.contents.temperature_c, Temperature, units),
+            format(cold, Temperature, units),
+            format(hot, Temperature, units)
         ));
     }
 }
 
-fn file_cautions(file: &TankFile, found: &mut Vec<String>) {
+fn file_cautions(file: &TankFile, units: UnitSystem, found: &mut Vec<String>) {
     for part in &file.parts {
         let as_new = part.capacity().iter().any(|rating| {
             matches!(rating.capacity.value, Capacity::DesignedFor { remaining: None, .. })
@@ -161,6 +167,7 @@ fn file_cautions(file: &TankFile, found: &mut Vec<String>) {
         found.push("no [alarm]: bounds are compared with the capacity itself".to_owned());
     }
     if file.vessel.height_m().is_none() && file.fill.overflow_m.is_none() {
-        found.push("no shell and no overflow: levels are looked at up to 200 m".to_owned());
+        let highest = format(HEIGHT_MAX_M, Length, units);
+        found.push(format!("no shell and no overflow: levels are looked at up to {highest}"));
     }
 }

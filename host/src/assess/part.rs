@@ -107,18 +107,19 @@ fn judgement(desk: &Desk, stated: &Stated, part: &Part, computed: &PartLoads<1>)
         utilisation: outward.then(|| computed.utilisation.lane(0)),
         utilisation_bound: outward.then(|| computed.utilisation_bound.lane(0)),
         utilisation_inward: inward.then(|| computed.utilisation_inward.lane(0)),
-        limits: limits.filter(|_| outward).map(shown),
+        limits: limits.as_ref().filter(|_| outward).map(shown),
         lowest: lowest.map(|lowest_level_m| Lowest { lowest_level_m }),
         thickness_for_state_m: thickness(stated, computed),
     }
 }
 
-fn shown(limits: PartLimits) -> Limits {
+fn shown(limits: &PartLimits) -> Limits {
     Limits {
         limited_by: limits.estimate.limited_by.as_str(),
         limit_level_m: limits.estimate.level_m,
         limit_level_bound_m: limits.bound.level_m,
         limit_intervals_m: limits.intervals.iter().map(|one| [one.low_m, one.high_m]).collect(),
+        capacity_alone_m: limits.estimate.capacity_alone_m,
     }
 }
 

@@ -1,6 +1,6 @@
 //! What is asked: at which level, with what in the tank, and where each number comes from.
 
-use crate::compile::Contents;
+use crate::compile::{Contents, HEIGHT_MAX_M, floor_m};
 use crate::nearest::nearest;
 use crate::tank::TankFile;
 use crate::units::Quantity::{Density, Length, Temperature};
@@ -24,8 +24,6 @@ pub struct Overrides {
 /// Where a number comes from.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Source {
-    /// The tank file.
-    File,
     /// The command line.
     Override,
     /// The overflow of the file, for want of a stated level.
@@ -60,9 +58,6 @@ pub struct RequestError {
 fn refuse<T>(message: String, hint: impl Into<String>) -> Result<T, RequestError> {
     Err(RequestError { message, hint: hint.into() })
 }
-
-/// Largest height that a plan holds, m.
-const HEIGHT_MAX_M: f64 = 200.0;
 
 impl Request {
     /// The state that the file describes, changed by the overrides.
@@ -119,7 +114,7 @@ fn level(file: &TankFile, stated_m: Option<f64>) -> Result<(f64, Source), Reques
         });
     };
     let shown = format_si(level_m, Length);
-    let floor_m = file.parts.iter().map(|part| part.heights().bottom_m).fold(0.0, f64::min);
+    let floor_m = floor_m(file);
     if level_m < floor_m {
         let message =
             format!("--level is {shown}, below the floor at {}", format_si(floor_m, Length));

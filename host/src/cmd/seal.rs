@@ -13,6 +13,7 @@ use crate::tank::TankFile;
 use crate::term::{Format, Term};
 use crate::units::Quantity::Length;
 use crate::units::format;
+use crate::utc;
 use serde::Serialize;
 use std::path::PathBuf;
 use strake_core::plan::PlanError;
@@ -67,7 +68,7 @@ pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
     let compiled = compile::for_device(&file)?;
     let serial = match args.serial {
         Some(serial) => serial,
-        None => now()?,
+        None => utc::now_s()?,
     };
     let bytes = compiled.encode(serial).map_err(|error| not_encoded(&file, error))?;
     let sealed = plan_file::write(&bytes).map_err(|error| not_encoded(&file, error))?;
@@ -100,14 +101,6 @@ pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
         Format::Text => term.result(&text(&document, term))?,
     }
     Ok(Exit::Done)
-}
-
-/// UTC seconds now.
-fn now() -> Result<u64, Failure> {
-    u64::try_from(jiff::Timestamp::now().as_second()).map_err(|_| {
-        let message = "the clock of this computer stands before 1970";
-        Failure::new(Exit::Usage, "clock", message, "set the clock, or give --serial")
-    })
 }
 
 fn not_encoded(file: &TankFile, error: PlanError) -> Failure {

@@ -31,7 +31,7 @@ pub(super) fn pattern(bolts: &Bolts, shape: &Shape, sine: f64) -> BoltPattern {
 /// With an odd number only one end of the upright diameter has a bolt.
 fn extremes(count: u32, first: FirstBolt) -> [f64; 2] {
     let beside = (PI / f64::from(count)).cos();
-    match (first, count % 2 == 0) {
+    match (first, count.is_multiple_of(2)) {
         (FirstBolt::Lowest, true) => [-1.0, 1.0],
         (FirstBolt::Lowest, false) => [-1.0, beside],
         (FirstBolt::Astride, true) => [-beside, beside],

@@ -1,11 +1,9 @@
 //! What only the device needs: thresholds, times, products, the temperature sensor.
 
 use super::faults::Faults;
-use super::level::DELAY_MAX_S;
 use super::liquid;
 use super::number::{located, milliseconds, single};
-use crate::tank::{Code, Located, TankFile, TemperatureSource, Threshold};
-use crate::units::Quantity::Time;
+use crate::tank::{Code, TankFile, TemperatureSource, Threshold};
 use strake_core::plan::{AlarmPlan, LoggingPlan, Plan, TemperaturePlan, ThresholdPlan};
 
 /// Threshold in place of one that the file does not state; nothing at the desk reads it.
@@ -16,10 +14,8 @@ const NOT_STATED: ThresholdPlan = ThresholdPlan {
     off_delay_ms: 0,
     latch: false,
 };
-/// Seconds of a day.
-const DAY_S: f64 = 86_400.0;
 
-pub(super) fn alarm(file: &TankFile, plan: &mut Plan, faults: &mut Faults) {
+pub(super) fn alarm(file: &TankFile, plan: &mut Plan) {
     let rated = file.parts.iter().any(|part| !part.capacity_inward().is_empty());
     plan.alarm = AlarmPlan {
         warn: ThresholdPlan { utilisation: 0.5, ..NOT_STATED },
@@ -29,38 +25,29 @@ pub(super) fn alarm(file: &TankFile, plan: &mut Plan, faults: &mut Faults) {
         sounds_again_after_ms: 600_000,
     };
     let Some(stated) = &file.alarm else { return };
-    plan.alarm.warn = threshold(&stated.warn, faults);
-    plan.alarm.alarm = threshold(&stated.alarm, faults);
+    plan.alarm.warn = threshold(&stated.warn);
+    plan.alarm.alarm = threshold(&stated.alarm);
     if let Some(inward) = &stated.inward {
-        plan.alarm.inward = Some(threshold(inward, faults));
+        plan.alarm.inward = Some(threshold(inward));
     }
-    plan.alarm.response_time_ms = delay(stated.response_time_s, "`response_time`", faults);
+    plan.alarm.response_time_ms = milliseconds(stated.response_time_s.value);
     if let Some(again) = stated.sounds_again_after_s {
-        faults.within(again, (0.001, DELAY_MAX_S), Time, "`sounds_again_after`");
         plan.alarm.sounds_again_after_ms = milliseconds(again.value);
     }
 }
 
-fn threshold(stated: &Threshold, faults: &mut Faults) -> ThresholdPlan {
+fn threshold(stated: &Threshold) -> ThresholdPlan {
     ThresholdPlan {
         utilisation: located(stated.utilisation),
         deadband: located(stated.deadband),
-        on_delay_ms: delay(stated.on_delay_s, "`on_delay`", faults),
-        off_delay_ms: delay(stated.off_delay_s, "`off_delay`", faults),
+        on_delay_ms: milliseconds(stated.on_delay_s.value),
+        off_delay_ms: milliseconds(stated.off_delay_s.value),
         latch: stated.latch,
     }
 }
 
-fn delay(seconds: Located<f64>, what: &str, faults: &mut Faults) -> u32 {
-    faults.within(seconds, (0.0, DELAY_MAX_S), Time, what);
-    milliseconds(seconds.value)
-}
-
-pub(super) fn logging(file: &TankFile, plan: &mut Plan, faults: &mut Faults) {
+pub(super) fn logging(file: &TankFile, plan: &mut Plan) {
     let Some(stated) = &file.logging else { return };
-    faults.within(stated.interval_s, (0.1, DAY_S), Time, "`interval`");
-    faults.within(stated.idle_interval_s, (0.1, DAY_S), Time, "`idle_interval`");
-    faults.within(stated.flush_after_s, (0.0, DAY_S), Time, "`flush_after`");
     plan.logging = LoggingPlan {
         interval_ms: milliseconds(stated.interval_s.value),
         idle_interval_ms: milliseconds(stated.idle_interval_s.value),

@@ -18,7 +18,7 @@ const LOOP_SPAN: f64 = 16_000.0 * 16.0;
 /// Sixteenths in one count of a register.
 const SIXTEENTHS: f64 = 16.0;
 /// Longest time that a plan holds, s.
-pub(super) const DELAY_MAX_S: f64 = 24.0 * 86_400.0;
+const DELAY_MAX_S: f64 = 24.0 * 86_400.0;
 
 pub(super) fn level(file: &TankFile, plan: &mut Plan, faults: &mut Faults) {
     // Without a sensor, or without its signal, a level stated at the desk is taken as exact or with

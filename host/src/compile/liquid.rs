@@ -33,8 +33,8 @@ fn band(estimate: f64, (low, high): (f64, f64)) -> Band {
     }
 }
 
-/// Density over temperature in straight lines, and the relative half-width of its values: the stated
-/// one and what the lines leave out.
+/// Density over temperature in straight lines, and the relative half-width of its values: the
+/// stated one and what the lines leave out.
 pub(super) fn table(liquid: &Liquid) -> Option<(DensityTable, f32)> {
     let points = points(liquid);
     let left_out = largest_miss(liquid, &points);

@@ -28,7 +28,7 @@ pub(super) fn part(file: &TankFile, stated: &Stated, faults: &mut Faults) -> Opt
         top_m: single(heights.top_m),
         outward: capacities(stated.capacity()),
         inward: capacities(stated.capacity_inward()),
-        designed_for: Default::default(),
+        designed_for: heapless::Vec::new(),
         outside: outside_mask(file, stated.name()),
     };
     for rating in stated.capacity() {

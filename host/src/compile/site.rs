@@ -9,7 +9,7 @@ use strake_core::liquid::{Band, Gas, Outside};
 use strake_core::plan::{OUTSIDE_MAX, Plan};
 
 /// Largest height a plan holds, m. A tank without shell top and overflow ends here.
-pub(super) const HEIGHT_MAX_M: f64 = 200.0;
+pub(crate) const HEIGHT_MAX_M: f64 = 200.0;
 /// Heights of a plan.
 pub(super) const HEIGHTS_M: (f64, f64) = (-HEIGHT_MAX_M, HEIGHT_MAX_M);
 

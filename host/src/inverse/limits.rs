@@ -48,6 +48,15 @@ pub struct Limit {
     pub level_m: Option<f32>,
     /// What limits it.
     pub limited_by: LimitedBy,
+    /// Where overflow or shell top come first: the level that the capacities alone give, m; `None`
+    /// when they are not reached in any tank.
+    pub capacity_alone_m: Option<f32>,
+}
+
+impl Limit {
+    const fn none(limited_by: LimitedBy) -> Self {
+        Self { level_m: None, limited_by, capacity_alone_m: None }
+    }
 }
 
 /// Levels at which a part is within its capacities.
@@ -118,10 +127,8 @@ pub fn of_part(desk: &Desk, part: &Part) -> Option<PartLimits> {
     let limit = |which| {
         let outward = outward_limit(desk, part, which);
         match (outward.level_m, lowest_m) {
-            (Some(_), Some(None)) => Limit { level_m: None, limited_by: LimitedBy::Inward },
-            (Some(high_m), Some(Some(low_m))) if low_m > high_m => {
-                Limit { level_m: None, limited_by: LimitedBy::Inward }
-            }
+            (Some(_), Some(None)) => Limit::none(LimitedBy::Inward),
+            (Some(high_m), Some(Some(low_m))) if low_m > high_m => Limit::none(LimitedBy::Inward),
             _ => outward,
         }
     };
@@ -135,20 +142,42 @@ pub fn of_part(desk: &Desk, part: &Part) -> Option<PartLimits> {
 
 /// The least of the limits that each capacity sets for itself, and which one that is.
 fn outward_limit(desk: &Desk, part: &Part, which: Which) -> Limit {
-    let range = desk.range();
-    let mut least = Limit { level_m: Some(range.high_m), limited_by: desk.limited_at_top() };
+    let Ok(reached) = least_end(desk, part, which, desk.range()) else {
+        return Limit::none(LimitedBy::Gas);
+    };
+    if let Some((level_m, limited_by)) = reached {
+        return Limit { level_m: Some(level_m), limited_by, capacity_alone_m: None };
+    }
+    let beyond = least_end(desk, part, which, desk.beyond()).ok().flatten();
+    Limit {
+        level_m: Some(desk.range().high_m),
+        limited_by: desk.limited_at_top(),
+        capacity_alone_m: beyond.map(|(level_m, _)| level_m),
+    }
+}
+
+/// A capacity that does not hold at the lower end of a range.
+struct BrokenBelow;
+
+/// The least level in a range up to which each capacity holds for itself; `None` when all hold to
+/// its upper end.
+fn least_end(
+    desk: &Desk,
+    part: &Part,
+    which: Which,
+    range: Interval,
+) -> Result<Option<(f32, LimitedBy)>, BrokenBelow> {
+    let mut least: Option<(f32, LimitedBy)> = None;
     for (kind, alone) in one_by_one(part) {
         let criterion = Within { desk, part: &alone, which };
         let found = intervals(&criterion, range, kinks(desk, part));
-        let from_floor = found.first().filter(|first| first.low_m <= range.low_m);
-        let Some(first) = from_floor else {
-            return Limit { level_m: None, limited_by: LimitedBy::Gas };
-        };
-        if least.level_m.is_some_and(|level_m| first.high_m < level_m) {
-            least = Limit { level_m: Some(first.high_m), limited_by: kind };
+        let from_below = found.first().filter(|first| first.low_m <= range.low_m);
+        let end_m = from_below.ok_or(BrokenBelow)?.high_m;
+        if end_m < range.high_m && least.is_none_or(|(level_m, _)| end_m < level_m) {
+            least = Some((end_m, kind));
         }
     }
-    least
+    Ok(least)
 }
 
 /// The part with each of its outward capacities alone.
@@ -156,7 +185,7 @@ fn one_by_one(part: &Part) -> Vec<(LimitedBy, Part)> {
     let bare = Part {
         outward: Capacities::default(),
         inward: Capacities::default(),
-        designed_for: Default::default(),
+        designed_for: heapless::Vec::new(),
         ..part.clone()
     };
     let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n } = part.outward;

@@ -104,6 +104,12 @@ impl<P: Port> Client<P> {
         &self.identity
     }
 
+    /// The port's name.
+    #[must_use]
+    pub fn port_name(&self) -> &str {
+        self.port.name()
+    }
+
     /// The device at one glance.
     ///
     /// # Errors

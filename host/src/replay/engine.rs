@@ -118,6 +118,14 @@ impl Engine {
         self.plan = plan;
     }
 
+    /// The plan in the file: its fingerprint as the device states it and as its bytes have it.
+    pub fn plan_taken(&mut self, device: u64, replay: u64) {
+        if device != replay {
+            let (device, replay) = (format!("{device:016x}"), format!("{replay:016x}"));
+            self.differ("fingerprint of a plan", &device, &replay);
+        }
+    }
+
     /// The next entry.
     pub fn entry(&mut self, entry: &Entry) {
         if let Entry::Sample(sample) = entry {

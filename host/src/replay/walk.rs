@@ -6,6 +6,7 @@ use std::io::{Read, Seek};
 use strake_core::evaluate::State;
 use strake_core::journal::{Entry, Item, STATE_BYTES_MAX, SectorReader};
 use strake_core::plan::{Plan, codec};
+use strake_core::plan_slot;
 
 /// Everything a replay found.
 #[derive(Debug)]
@@ -115,7 +116,13 @@ impl Walk {
             return Ok(());
         }
         self.in_force = Some(fingerprint);
-        let loaded = file.plan(fingerprint)?.and_then(|stored| load(&stored.bytes));
+        let stored = file.plan(fingerprint)?;
+        if let Some(stored) = &stored {
+            // A plan that is not the one the device had would judge otherwise, or the same by luck.
+            let computed = plan_slot::fingerprint(&stored.bytes);
+            self.replay.engine.plan_taken(fingerprint, computed);
+        }
+        let loaded = stored.and_then(|stored| load(&stored.bytes));
         if let Some((plan, names)) = loaded {
             self.replay.engine.use_plan(Some(plan), &names);
         } else {

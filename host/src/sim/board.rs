@@ -1,7 +1,7 @@
 //! A board made of memory: the traits that a real board implements, over virtual time.
 //!
-//! All handles are shared, so that the flash outlives a loss of power and the world outside can move
-//! the level, press the button and read the contact while the application runs unchanged.
+//! All handles are shared, so that the flash outlives a loss of power and the world outside can
+//! move the level, press the button and read the contact while the application runs unchanged.
 
 use super::nor::{Nor, NorError, SECTOR_BYTES};
 use super::sensor::Sensor;

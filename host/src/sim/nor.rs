@@ -2,9 +2,9 @@
 //!
 //! It refuses what a chip refuses or spoils in silence: unaligned and out-of-range accesses, and
 //! programming a word that was touched since its sector was last erased. A cut tears the word that
-//! is being programmed or leaves the sector half erased, with random bits from a seed; a sector that
-//! an erase was cut in must be erased again before anything is programmed there, whatever it shows.
-//! Memory is sparse: only touched sectors take room.
+//! is being programmed or leaves the sector half erased, with random bits from a seed; a sector
+//! that an erase was cut in must be erased again before anything is programmed there, whatever it
+//! shows. Memory is sparse: only touched sectors take room.
 
 use core::fmt;
 use embedded_storage::nor_flash::{
@@ -374,9 +374,17 @@ impl<const WORD: usize> ReadNorFlash for Nor<WORD> {
         self.counters.reads += 1;
         self.counters.read_bytes += bytes.len() as u64;
         self.counters.longest_read = self.counters.longest_read.max(bytes.len());
-        for (at, byte) in (offset as usize..).zip(bytes) {
-            let sector = u32::try_from(at / SECTOR_BYTES).ok().and_then(|i| self.sectors.get(&i));
-            *byte = sector.map_or(0xFF, |sector| sector.bytes[at % SECTOR_BYTES]);
+        let mut rest = bytes;
+        let mut at = offset as usize;
+        while !rest.is_empty() {
+            let (index, inside) = (at / SECTOR_BYTES, at % SECTOR_BYTES);
+            let (part, behind) = rest.split_at_mut(rest.len().min(SECTOR_BYTES - inside));
+            match u32::try_from(index).ok().and_then(|index| self.sectors.get(&index)) {
+                Some(sector) => part.copy_from_slice(&sector.bytes[inside..inside + part.len()]),
+                None => part.fill(0xFF),
+            }
+            at += part.len();
+            rest = behind;
         }
         Ok(())
     }

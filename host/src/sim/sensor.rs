@@ -5,7 +5,7 @@ use strake_core::plan::{LevelPlan, LevelSensor, Plan, Reference, SignalKind};
 use strake_firmware::board::SensorError;
 
 /// The true level over virtual time.
-pub trait Level: std::fmt::Debug {
+pub trait Level: std::fmt::Debug + Send {
     /// Level, m above the datum, at a virtual time in milliseconds.
     fn level_m(&self, now_ms: u64) -> f64;
     /// Liquid temperature, degrees Celsius.

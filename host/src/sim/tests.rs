@@ -1,4 +1,5 @@
-//! The whole line on a plan made by hand: commission, fill, alarm, acknowledge, cut, collect, replay.
+//! The whole line on a plan made by hand: commission, fill, alarm, acknowledge, cut, collect,
+//! replay.
 
 use super::board::Bench;
 use super::machine::{Happening, Machine};

@@ -1,7 +1,7 @@
 //! One alarm machine: condition, delays, latch, acknowledgement.
 //!
-//! Transitions are those of the ISA-18.2 / IEC 62682 alarm state diagram; delays as in its clause on
-//! on-delay, off-delay and deadband. A delay counts from the first sample at which the condition
+//! Transitions are those of the ISA-18.2 / IEC 62682 alarm state diagram; delays as in its clause
+//! on on-delay, off-delay and deadband. A delay counts from the first sample at which the condition
 //! holds; transitions happen at samples (or at a person's press) only.
 
 use super::{AlarmEvent, AlarmState};
@@ -32,8 +32,8 @@ pub enum Condition {
 }
 
 impl Condition {
-    /// Judges a utilisation: stands at or above `threshold`, gone below `threshold - deadband`. What
-    /// is not a number stands.
+    /// Judges a utilisation: stands at or above `threshold`, gone below `threshold - deadband`.
+    /// What is not a number stands.
     #[must_use]
     pub fn of(utilisation: f32, threshold: f32, deadband: f32) -> Self {
         if utilisation < threshold - deadband {
@@ -121,8 +121,8 @@ impl Machine {
         }
     }
 
-    /// Applies a person's press: acknowledges what is unacknowledged; resets a latch whose condition
-    /// is gone.
+    /// Applies a person's press: acknowledges what is unacknowledged; resets a latch whose
+    /// condition is gone.
     pub fn acknowledge(&mut self, tick_ms: u64) -> Option<Move> {
         let (event, cause) = if self.state == AlarmState::LatchedAcknowledged {
             (AlarmEvent::Reset, TransitionCause::Reset)

@@ -1,9 +1,9 @@
 //! The running hash over the bits of every result.
 //!
-//! Per sample, all loads, bounds and utilisations are folded into two 32-bit words, lane by lane, by
-//! exclusive or, rotation and addition. The two words, and every move of an alarm machine, are then
-//! folded into one running 64-bit number. It stands in each checkpoint, each alarm entry and each
-//! collection; the replay recomputes it. It finds a differing bit; it is no seal.
+//! Per sample, all loads, bounds and utilisations are folded into two 32-bit words, lane by lane,
+//! by exclusive or, rotation and addition. The two words, and every move of an alarm machine, are
+//! then folded into one running 64-bit number. It stands in each checkpoint, each alarm entry and
+//! each collection; the replay recomputes it. It finds a differing bit; it is no seal.
 
 use crate::lane::Lane;
 use crate::part::{Geometry, Loads, Part, PartLoads};
@@ -71,3 +71,6 @@ pub(super) const fn fold(running: u64, bits: u64) -> u64 {
     let mixed = (running ^ bits).wrapping_mul(0x9E37_79B9_7F4A_7C15);
     mixed ^ mixed >> 29
 }
+
+#[cfg(test)]
+mod tests;

@@ -29,10 +29,15 @@ pub struct Output {
 }
 
 impl Output {
-    /// The output that follows from the machines: their OR, "act now" before "cannot see".
+    /// The output that follows from the machines: their OR, "act now" before "cannot see". Until a
+    /// level is read for the first time the device cannot see, whatever the machines say.
     #[must_use]
     pub fn of(state: &State) -> Self {
-        let mut output = Self { contact_closed: true, rhythm: Rhythm::Healthy, sounding: false };
+        let mut output = if state.sight.last_level.is_some() {
+            Self { contact_closed: true, rhythm: Rhythm::Healthy, sounding: false }
+        } else {
+            Self { contact_closed: false, rhythm: Rhythm::CannotSee, sounding: false }
+        };
         for (number, machine) in (0_u8..).zip(state.machines()) {
             let (opens, shows, sounds) = match machine.state {
                 AlarmState::Normal
@@ -58,3 +63,6 @@ impl Output {
         output
     }
 }
+
+#[cfg(test)]
+mod tests;

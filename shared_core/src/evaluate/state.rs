@@ -8,7 +8,7 @@
 //! | last level count i32 and tick u64; last temperature count i32; start tick u64; product u8; always present, zero where the flag is off | 25 |
 //! | number of machines u8, each: number u8, state u8 (bit 7: pending), since u32, entered u32 | 1 + 10 n |
 //!
-//! Only machines that are not normal stand in the list.
+//! Only machines that are not normal stand in the list, by rising number.
 
 use super::digest::{Digest, fold};
 use crate::alarm::{AlarmState, MACHINES, Machine, MachineId, Move};
@@ -175,17 +175,27 @@ impl State {
             product: (flags & 8 != 0).then_some(product),
             started_ms,
         };
+        let mut least = 0;
         for _ in 0..source.u8()? {
-            let id = MachineId::from_number(source.u8()?)?;
+            let number = source.u8()?;
+            let id = MachineId::from_number(number).filter(|_| number >= least)?;
+            least = number + 1;
             let byte = source.u8()?;
             let machine = Machine {
-                state: AlarmState::from_number(byte & !PENDING)?,
+                // A device hides no alarm: these bytes are not its own.
+                state: AlarmState::from_number(byte & !PENDING).filter(|one| !one.is_hidden())?,
                 pending: byte & PENDING != 0,
                 since_ms: source.u32()?,
                 entered_ms: source.u32()?,
             };
+            if machine.is_normal() {
+                return None;
+            }
             *self.machine_mut(id)? = machine;
         }
         source.0.is_empty().then_some(())
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -62,8 +62,8 @@ pub fn judge<const N: usize>(
     mut moved: impl FnMut(Moved),
 ) {
     state.fold_sample(digest, lane);
-    // Before the first reading both full and empty are possible: that is "cannot see", not an alarm,
-    // until the plan's time is over.
+    // Before the first reading both full and empty are possible: that is "cannot see", not an
+    // alarm, until the plan's time is over.
     let unread = resolved.class == ReadingClass::NotYetRead;
     let waited_ms = tick_ms.saturating_sub(state.sight.started_ms);
     let too_early = unread && waited_ms <= u64::from(plan.level.failed_after_ms);
@@ -86,7 +86,7 @@ pub fn judge<const N: usize>(
         }
     }
     for cause in FaultCause::ALL {
-        let stands = fault_stands(plan, resolved, cause, waited_ms);
+        let stands = fault_stands(resolved, cause);
         let condition = if stands { Condition::Stands } else { Condition::Gone };
         let settings = fault_settings(plan, cause);
         let id = MachineId::of_fault(cause);
@@ -119,8 +119,8 @@ pub(super) const fn machine_settings(plan: &Plan, threshold: &ThresholdPlan) -> 
     }
 }
 
-/// Settings of a fault's machine: a sensor may miss readings for the plan's time; a level at the end
-/// of what the sensor can see, or above the shell, shows at once.
+/// Settings of a fault's machine: a sensor may miss readings for the plan's time; a level at the
+/// end of what the sensor can see, or above the shell, shows at once.
 pub(super) const fn fault_settings(plan: &Plan, cause: FaultCause) -> Settings {
     let on_delay_ms = match cause {
         FaultCause::CurrentLow
@@ -149,11 +149,11 @@ pub(super) const fn fault_settings(plan: &Plan, cause: FaultCause) -> Settings {
 }
 
 /// Whether a fault stands by this sample.
-fn fault_stands(plan: &Plan, resolved: &Resolved, cause: FaultCause, waited_ms: u64) -> bool {
+fn fault_stands(resolved: &Resolved, cause: FaultCause) -> bool {
     match cause {
         FaultCause::Stale => match resolved.class {
-            ReadingClass::Failed => true,
-            ReadingClass::NotYetRead => waited_ms > u64::from(plan.level.failed_after_ms),
+            // Nothing known at all is as bad as nothing known for too long.
+            ReadingClass::Failed | ReadingClass::NotYetRead => true,
             ReadingClass::Valid | ReadingClass::Held | ReadingClass::Projected => false,
         },
         // Reported by the device once, see [`State::report`]; the latch keeps them.
@@ -172,8 +172,9 @@ fn fault_stands(plan: &Plan, resolved: &Resolved, cause: FaultCause, waited_ms: 
 }
 
 impl State {
-    /// A fault that the device found by itself and wrote to its journal (journal, plan). Its machine
-    /// is raised at once and latches. Other causes follow from samples and are left alone here.
+    /// A fault that the device found by itself and wrote to its journal (journal, plan). Its
+    /// machine is raised at once and latches. Other causes follow from samples and are left alone
+    /// here.
     pub fn report(
         &mut self,
         plan: &Plan,

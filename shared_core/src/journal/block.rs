@@ -16,6 +16,9 @@
 //! | 3 | part `count` less one of the checkpoint, see [`checkpoint`](super::checkpoint) |
 //!
 //! No writer makes a void; it reads as damage.
+//!
+//! Example, a checkpoint of the five bytes "abcde" at offset 104 of sector 7, words of four:
+//! `04 60 05 00 61 62 63 64 65 FF FF FF 86 42 B6 62`.
 
 use super::bytes::Sink;
 use super::check::block_check;
@@ -133,9 +136,9 @@ pub struct Encoded {
     pub taken: usize,
 }
 
-/// As many of `samples` as fit, at most [`ENTRIES_MAX`], as one block of samples; `chain` steps over
-/// those taken. It must be the default for the first block of samples in a page. `None` when not
-/// even one fits.
+/// As many of `samples` as fit, at most [`ENTRIES_MAX`], as one block of samples; `chain` steps
+/// over those taken. It must be the default for the first block of samples in a page. `None` when
+/// not even one fits.
 pub fn encode_samples<'a>(
     place: Place,
     samples: impl IntoIterator<Item = &'a Sample>,

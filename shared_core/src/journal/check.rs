@@ -6,7 +6,8 @@ use crc::{CRC_32_ISO_HDLC, Crc};
 pub static CRC32: Crc<u32> = Crc::<u32>::new(&CRC_32_ISO_HDLC);
 
 /// Check of one block: over the sector's sequence (u32), the block's offset in the sector (u16) and
-/// the block's bytes before the check. So no block of an earlier lap and none that was moved passes.
+/// the block's bytes before the check. So no block of an earlier lap and none that was moved
+/// passes.
 #[must_use]
 pub fn block_check(sequence: u32, offset: u16, bytes: &[u8]) -> u32 {
     let mut digest = CRC32.digest();

@@ -43,7 +43,8 @@ pub enum DamageKind {
     /// A right check, but a form this version does not know, or samples that chain to such a block;
     /// passed over.
     UnknownForm,
-    /// A right check, but an entry this version does not know; the rest of the block is passed over.
+    /// A right check, but an entry this version does not know; the rest of the block is passed
+    /// over.
     UnknownEntry,
 }
 
@@ -76,8 +77,8 @@ impl<'a> PageReader<'a> {
         Self::at(page, if index == 0 { HEADER_BYTES } else { 0 }, place)
     }
 
-    /// The items of a page outside any sector: its blocks begin behind `skip` bytes and their checks
-    /// are seeded as for `place`.
+    /// The items of a page outside any sector: its blocks begin behind `skip` bytes and their
+    /// checks are seeded as for `place`.
     #[must_use]
     pub fn at(page: &'a [u8], skip: usize, place: Place) -> Self {
         Self {

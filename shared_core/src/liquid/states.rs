@@ -4,9 +4,9 @@
 //!   (low) end: all derivatives have one sign.
 //! * A *head sensor* at `z_s` reading `P` bounds every stable profile within the density band
 //!   `[rho-, rho+]`, layers and unknown product included: for the upper bound `rho-` above the
-//!   sensor, `rho+` below it and the surface at `z_s + (P+ - p_g+)/(rho- g)`; for the lower bound the
-//!   two swapped. The upper bound is itself a stable state, so it is attained. The lower one is only
-//!   a bound: its denser liquid lies on top.
+//!   sensor, `rho+` below it and the surface at `z_s + (P+ - p_g+)/(rho- g)`; for the lower bound
+//!   the two swapped. The upper bound is itself a stable state, so it is attained. The lower one is
+//!   only a bound: its denser liquid lies on top.
 //! * An open tank cannot be fuller than full: the upper bound is also at most
 //!   `p_g+ + rho+ g (z_top - z)`.
 //!

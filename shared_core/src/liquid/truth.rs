@@ -93,7 +93,7 @@ impl Strips {
     /// `integral of f(z, s) dA` over the part from `low_s` to `high_s`, by strips (midpoint rule;
     /// with `s = r sin t` on a disc, which leaves nothing singular at its ends).
     pub(crate) fn integral(&self, [low_s, high_s]: [f64; 2], f: impl Fn(f64, f64) -> f64) -> f64 {
-        const COUNT: i32 = 4_000;
+        const COUNT: i32 = 1_500;
         let angle = |s: f64| (s / self.half_m).clamp(-1.0, 1.0).asin();
         let (from, to) = if self.is_disc { (angle(low_s), angle(high_s)) } else { (low_s, high_s) };
         let step = (to - from) / f64::from(COUNT);

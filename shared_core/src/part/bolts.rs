@@ -72,17 +72,19 @@ impl Bolts {
 
     /// Largest share of a resultant, N: of the lowest or the highest bolt.
     #[must_use]
+    #[inline]
     pub fn largest<const N: usize>(&self, whole: &Resultant<N>) -> Lane<N> {
-        self.share(self.lowest, whole).at_least(self.share(self.highest, whole))
+        self.share(&self.lowest, whole).at_least(self.share(&self.highest, whole))
     }
 
     #[inline]
-    fn share<const N: usize>(&self, bolt: ExtremeBolt, r: &Resultant<N>) -> Lane<N> {
+    fn share<const N: usize>(&self, bolt: &ExtremeBolt, r: &Resultant<N>) -> Lane<N> {
         r.force_n * self.per_bolt + r.moment_n_m * bolt.per_moment
     }
 
     /// Bounds of the largest and the least share, N: `[largest, least]`.
     #[must_use]
+    #[inline]
     pub fn bounds<const N: usize>(
         &self,
         shape: &Shape,
@@ -90,40 +92,63 @@ impl Bolts {
         upper: (&Pressure<N>, &Resultant<N>),
         lower: (&Pressure<N>, &Resultant<N>),
     ) -> [Lane<N>; 2] {
-        let mut largest = None;
-        let mut least = None;
-        for bolt in [self.lowest, self.highest] {
-            let (high, low) = match bolt.cut {
-                None => (self.share(bolt, upper.1), self.share(bolt, lower.1)),
-                Some(cut) => {
-                    let below_upper = self.share(bolt, &upper.0.below(&cut, shape, bottom_m));
-                    let below_lower = self.share(bolt, &lower.0.below(&cut, shape, bottom_m));
-                    let above_upper = self.share(bolt, upper.1) - below_upper;
-                    let above_lower = self.share(bolt, lower.1) - below_lower;
-                    // The lowest bolt's weighting is positive below its cut, the highest's above.
-                    if bolt.per_moment < 0.0 {
-                        (below_upper + above_lower, below_lower + above_upper)
-                    } else {
-                        (above_upper + below_lower, above_lower + below_upper)
-                    }
-                }
-            };
-            largest = Some(largest.map_or(high, |other: Lane<N>| other.at_least(high)));
-            least = Some(least.map_or(low, |other: Lane<N>| other.at_most(low)));
+        let [low_most, low_least] = self.bolt_bounds(&self.lowest, shape, bottom_m, upper, lower);
+        let [high_most, high_least] =
+            self.bolt_bounds(&self.highest, shape, bottom_m, upper, lower);
+        [low_most.at_least(high_most), low_least.at_most(high_least)]
+    }
+
+    /// `[largest, least]` share of one bolt.
+    fn bolt_bounds<const N: usize>(
+        &self,
+        bolt: &ExtremeBolt,
+        shape: &Shape,
+        bottom_m: f32,
+        upper: (&Pressure<N>, &Resultant<N>),
+        lower: (&Pressure<N>, &Resultant<N>),
+    ) -> [Lane<N>; 2] {
+        let (whole_upper, whole_lower) = (self.share(bolt, upper.1), self.share(bolt, lower.1));
+        let Some(cut) = &bolt.cut else { return [whole_upper, whole_lower] };
+        let below_upper = self.share(bolt, &upper.0.below(cut, shape, bottom_m));
+        let below_lower = self.share(bolt, &lower.0.below(cut, shape, bottom_m));
+        let above_upper = whole_upper - below_upper;
+        let above_lower = whole_lower - below_lower;
+        // The lowest bolt's weighting is positive below its cut, the highest's above.
+        if bolt.per_moment < 0.0 {
+            [below_upper + above_lower, below_lower + above_upper]
+        } else {
+            [above_upper + below_lower, above_lower + below_upper]
         }
-        [largest.unwrap_or(Lane::ZERO), least.unwrap_or(Lane::ZERO)]
     }
 }
 
 impl BoltPattern {
-    /// Whether every number is in its range.
+    /// Whether every number is in its range and each cut lies where its weighting changes sign: a
+    /// bound needs it there. `sine` is that of the slope.
     #[must_use]
-    pub fn is_sound(&self) -> bool {
+    pub fn is_sound(&self, shape: &Shape, sine: f32) -> bool {
+        let half_m = if sine > 0.0 { 0.5 * shape.rise_m() / sine } else { 0.0 };
+        let slack_m = 1.0e-4 * half_m;
+        let first_m3 = shape.area_m2() * half_m;
+        let cut_is_sound = |per_moment: f32, cut: Option<[f32; 3]>| {
+            // Here `1 + n s s_i / sum s_j²` is zero; far away where no bolt stands off the
+            // centroid.
+            let zero_m = -1.0 / (f32::from(self.count) * per_moment);
+            match cut {
+                None => zero_m.abs() >= half_m - slack_m,
+                Some([y_m, area_m2, static_m3]) => {
+                    (y_m - (half_m + zero_m) * sine).abs() <= slack_m * sine
+                        && (0.0..=shape.area_m2()).contains(&area_m2)
+                        && (-first_m3..=0.0).contains(&static_m3)
+                }
+            }
+        };
         let [lowest, highest] = self.per_moment;
-        let finite = self.cuts.iter().flatten().flatten().all(|number| number.is_finite());
+        let [low_cut, high_cut] = self.cuts;
         self.count >= 3
-            && (-1.0e6..=0.0).contains(&lowest)
-            && (0.0..=1.0e6).contains(&highest)
-            && finite
+            && (-1.0e4..=0.0).contains(&lowest)
+            && (0.0..=1.0e4).contains(&highest)
+            && cut_is_sound(lowest, low_cut)
+            && cut_is_sound(highest, high_cut)
     }
 }

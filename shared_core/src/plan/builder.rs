@@ -1,6 +1,8 @@
 //! Plans for the tests of this crate, in few words.
 #![expect(clippy::cast_possible_truncation, reason = "figures of the tests fit")]
 
+pub(crate) mod random;
+
 use super::{
     AlarmPlan, LevelPlan, LevelSensor, LoggingPlan, Plan, Reference, SignalKind, ThresholdPlan,
 };

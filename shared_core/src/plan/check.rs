@@ -3,6 +3,7 @@
 use super::{AlarmPlan, LevelPlan, LevelSensor, LoggingPlan, Plan, Reference, ThresholdPlan};
 use crate::liquid::Band;
 use crate::part::{Capacities, Geometry, Part};
+use crate::shape::Shape;
 use core::fmt;
 
 /// Why bytes are no plan. The numbers travel over the link and never change.
@@ -78,6 +79,10 @@ impl core::error::Error for PlanError {}
 const LENGTH_M_MAX: f32 = 200.0;
 /// Largest pressure, Pa.
 const PRESSURE_PA_MAX: f32 = 1.0e7;
+/// Least sine of a slope; what lies flatter is level.
+const SINE_MIN: f32 = 1.0e-4;
+/// Largest difference of two statements of one length, m.
+const LENGTH_SLACK_M: f32 = 1.0e-3;
 /// Longest delay, ms (24 days: half the range of a 32-bit tick).
 const DELAY_MS_MAX: u32 = 24 * 86_400_000;
 
@@ -127,7 +132,7 @@ impl Plan {
                 PlanError::Outside,
             )?;
         }
-        check_level(&self.level)?;
+        check_level(&self.level, self.shell_top_m)?;
         check_alarm(&self.alarm)?;
         check_logging(self.logging)?;
         require(!self.parts.is_empty(), PlanError::NoPart)?;
@@ -186,7 +191,8 @@ impl Plan {
             length(part.bottom_m) && length(part.top_m) && part.bottom_m <= part.top_m,
             PlanError::Geometry,
         )?;
-        let (is_course, has_bolts) = match &part.geometry {
+        let stated_rise_m = part.top_m - part.bottom_m;
+        let (rise_m, is_course, has_bolts) = match &part.geometry {
             Geometry::Course { half_diameter_m, design_point_m, height_m } => {
                 require(
                     within(*half_diameter_m, 0.01, LENGTH_M_MAX)
@@ -194,19 +200,19 @@ impl Plan {
                         && within(*height_m, 0.001, LENGTH_M_MAX),
                     PlanError::Geometry,
                 )?;
-                (true, false)
+                (*height_m, true, false)
             }
             Geometry::Plane { shape, sine, bolts, .. } => {
+                let bolts = bolts.as_ref();
                 require(
-                    within(shape.area_m2(), 1.0e-6, 1.0e5)
-                        && within(shape.rise_m(), 0.0, LENGTH_M_MAX)
-                        && within(*sine, 0.0, 1.0)
-                        && bolts.as_ref().is_none_or(|bolts| bolts.pattern().is_sound()),
+                    check_shape(shape, *sine)
+                        && bolts.is_none_or(|bolts| bolts.pattern().is_sound(shape, *sine)),
                     PlanError::Geometry,
                 )?;
-                (false, bolts.is_some())
+                (shape.rise_m(), false, bolts.is_some())
             }
         };
+        require((stated_rise_m - rise_m).abs() <= LENGTH_SLACK_M, PlanError::Geometry)?;
         for capacities in [&part.outward, &part.inward] {
             check_capacities(capacities, is_course, has_bolts)?;
         }
@@ -220,6 +226,19 @@ impl Plan {
         }
         require(!part.judged_inward() || self.alarm.inward.is_some(), PlanError::Alarm)
     }
+}
+
+fn check_shape(shape: &Shape, sine: f32) -> bool {
+    let size = |length_m: f32| within(length_m, 0.001, LENGTH_M_MAX);
+    let (sized, sloped) = match shape {
+        Shape::Circle(circle) => (size(circle.radius_m()), true),
+        Shape::Rectangle(rectangle) => {
+            let [width_m, length_m] = rectangle.sides_m();
+            (size(width_m) && size(length_m), true)
+        }
+        Shape::Level { area_m2 } => (within(*area_m2, 1.0e-6, 1.0e5), false),
+    };
+    sized && if sloped { within(sine, SINE_MIN, 1.0) } else { within(sine, 0.0, 0.0) }
 }
 
 fn check_capacities(
@@ -241,7 +260,7 @@ fn check_capacities(
     )
 }
 
-fn check_level(level: &LevelPlan) -> Result<(), PlanError> {
+fn check_level(level: &LevelPlan, shell_top_m: f32) -> Result<(), PlanError> {
     let sensor = match level.sensor {
         LevelSensor::Surface => true,
         LevelSensor::Head { at_m, reference } => {
@@ -251,7 +270,7 @@ fn check_level(level: &LevelPlan) -> Result<(), PlanError> {
                     pressure(lowest) && pressure(highest) && within(nominal, lowest, highest)
                 }
             };
-            length(at_m) && offsets
+            length(at_m) && at_m < shell_top_m && offsets
         }
     };
     require(
@@ -269,7 +288,9 @@ fn check_level(level: &LevelPlan) -> Result<(), PlanError> {
 
 fn check_threshold(threshold: &ThresholdPlan) -> bool {
     within(threshold.utilisation, 0.01, 1.0)
-        && within(threshold.deadband, 0.0, threshold.utilisation)
+        && within(threshold.deadband, 0.0, 1.0)
+        // Nothing is below zero: such an alarm would never return.
+        && threshold.utilisation - threshold.deadband > 0.0
         && threshold.on_delay_ms <= DELAY_MS_MAX
         && threshold.off_delay_ms <= DELAY_MS_MAX
 }
@@ -294,3 +315,6 @@ fn check_logging(logging: LoggingPlan) -> Result<(), PlanError> {
         PlanError::Logging,
     )
 }
+
+#[cfg(test)]
+mod tests;

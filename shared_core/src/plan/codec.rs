@@ -6,7 +6,7 @@
 //! | serial u64, device id (length u8, bytes) | 9 + n |
 //! | gravity, shell top, overflow, floor, rise, fall: f32 | 24 |
 //! | flags u8: 1 closed | 1 |
-//! | liquid: band 3 f32; table points u8, uncertainty f32, points 2 f32 each; temperature sensor u8 (0 or 1, then 3 f32); layers u8, 5 f32 each; products u8, 3 f32 each | |
+//! | liquid: band 3 f32; table uncertainty f32, points u8, 2 f32 each; temperature sensor u8 (0 or 1, then 3 f32); layers u8, 5 f32 each; products u8, 3 f32 each | |
 //! | gas: lowest, nominal, highest f32 | 12 |
 //! | outside u8, 5 f32 each (highest, lowest, band) | |
 //! | level sensor, see the code | |
@@ -410,3 +410,6 @@ fn take_alarm<F: Fetch>(source: &mut Source<F>) -> Option<AlarmPlan> {
         sounds_again_after_ms: source.u32()?,
     })
 }
+
+#[cfg(test)]
+mod tests;

@@ -4,8 +4,8 @@
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub enum Reference {
     /// Gauge or absolute: the reading is the pressure at the diaphragm plus an offset, Pa
-    /// (`[nominal, lowest, highest]`: zero for a gauge transmitter, the air pressure for an absolute
-    /// one).
+    /// (`[nominal, lowest, highest]`: zero for a gauge transmitter, the air pressure for an
+    /// absolute one).
     Atmosphere {
         /// Offset of the reading over gauge pressure, Pa.
         offset_pa: [f32; 3],

@@ -1,7 +1,8 @@
 //! The rectangle with two level sides.
 //!
-//! With width `b`, length `l` along the slope and wetted length `x`, the surface `y` above the lower
-//! side (textbook statics, for example White, Fluid Mechanics, hydrostatic forces on plane surfaces):
+//! With width `b`, length `l` along the slope and wetted length `x`, the surface `y` above the
+//! lower side (textbook statics, for example White, Fluid Mechanics, hydrostatic forces on plane
+//! surfaces):
 //!
 //! * `q0 = b x (y - x sin / 2)`,
 //! * `q1 = b x (y (x - l) / 2 - x sin (x / 3 - l / 4))`, about the level line at half length.

@@ -13,8 +13,9 @@ const COUNT_MAX: i32 = 1 << 26;
 
 /// The mean of the middle half of the counts, about their median, rounded to a sixteenth.
 ///
-/// Spikes at both ends of the sorted burst are left out. With fewer than [`BURST_COUNTS_MIN`] counts
-/// the quality is sparse; with none the channel was not read. Counts are first clamped to ±2^26.
+/// Spikes at both ends of the sorted burst are left out. With fewer than [`BURST_COUNTS_MIN`]
+/// counts the quality is sparse; with none the channel was not read. Counts are first clamped to
+/// ±2^26.
 #[must_use]
 pub fn filter(counts: &mut [i32]) -> Channel {
     for count in counts.iter_mut() {

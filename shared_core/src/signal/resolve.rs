@@ -1,8 +1,8 @@
 //! From the integers of one cycle to a reading with its bounds.
 //!
 //! A stale reading is projected both ways: up at the highest rise and down at the highest fall,
-//! capped at overflow and at empty. A head sensor's projection is a pressure: the heaviest liquid at
-//! the highest rise, and the swing of the gas where the reading holds it.
+//! capped at overflow and at empty. A head sensor's projection is a pressure: the heaviest liquid
+//! at the highest rise, and the swing of the gas where the reading holds it.
 
 use super::{Channel, LoopClass, Quality, SensorError, classify};
 use crate::alarm::FaultCause;
@@ -127,12 +127,14 @@ fn judge(plan: &Plan, sight: &mut Sight, level: Channel) -> Result<bool, Option<
                     return Ok(!in_specification);
                 }
                 LoopClass::Between if sight.level_ok => return Ok(true),
-                // The last status was a failure, or there is none: it stays so, with a cause.
-                LoopClass::Between if level.count_16 < 12_000 * 16 => FaultCause::CurrentLow,
-                LoopClass::Between => FaultCause::CurrentHigh,
                 LoopClass::WireBreak => FaultCause::WireBreak,
-                LoopClass::FailureLow => FaultCause::CurrentLow,
-                LoopClass::FailureHigh => FaultCause::CurrentHigh,
+                // Between the bands: the last status was a failure, or there is none. It stays so.
+                LoopClass::FailureLow | LoopClass::Between if level.count_16 < 12_000 * 16 => {
+                    FaultCause::CurrentLow
+                }
+                LoopClass::FailureLow | LoopClass::FailureHigh | LoopClass::Between => {
+                    FaultCause::CurrentHigh
+                }
             },
         },
     };

@@ -13,6 +13,7 @@ mod device {
     use strake_board_emulated::timer::{MonotonicClock, sleep_until};
     use strake_board_emulated::uart::SerialPort;
     use strake_board_emulated::{Parts, restart, watchdog};
+    use strake_core::lane::careless;
     use strake_core::wire::Text;
     use strake_firmware::app::App;
     use strake_firmware::board::{Board, Hardware, NoSource};
@@ -25,6 +26,9 @@ mod device {
     const WAITS: Waits = Waits { answer_ms: 2000, silence_ms: 4 };
     /// Many times what the slowest cycle takes, which waits for a silent sensor.
     const WATCHDOG_MS: u32 = 60_000;
+
+    // The negative controls of bit-check are never shipped.
+    const _: () = assert!(!careless::MAX && !careless::ROOT);
 
     struct Emulated;
 

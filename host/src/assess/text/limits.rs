@@ -1,6 +1,7 @@
 //! The table of limit levels, and the levels at which thresholds are reached.
 
-use super::{Sheet, reading};
+use super::Sheet;
+use super::state::reading;
 use crate::assess::document::PartRow;
 use crate::inverse::{Step, rounded_down, rounded_up};
 use crate::page::Page;
@@ -9,7 +10,7 @@ use crate::units::UnitSystem;
 
 /// Columns of a name, of an unrounded and of a rounded level.
 const NAME: usize = 26;
-const UNROUNDED: usize = 13;
+const UNROUNDED: usize = 12;
 const ROUNDED: usize = 16;
 
 const fn step(units: UnitSystem) -> Step {
@@ -93,7 +94,22 @@ pub(super) fn limits(sheet: &Sheet<'_>, page: &mut Page) {
              density and gas pressure; it holds no uncertainty of a sensor."
         ),
     );
+    for row in rows {
+        let several = row.judgement.limits.as_ref().filter(|one| one.limit_intervals_m.len() > 1);
+        if let Some(limits) = several {
+            intervals(sheet, page, row, &limits.limit_intervals_m);
+        }
+    }
     governing(sheet, page, rows);
+}
+
+/// A part that is within its capacities in more than one stretch: a limit level alone misleads.
+fn intervals(sheet: &Sheet<'_>, page: &mut Page, row: &PartRow, list: &[[f32; 2]]) {
+    let stretches = list.iter().map(|&[low_m, high_m]| {
+        format!("{} to {}", sheet.show(low_m, Length), sheet.show(high_m, Length))
+    });
+    let stretches = stretches.collect::<Vec<_>>().join(" and ");
+    page.paragraph("  ", &format!("{}: within its capacities from {stretches} only.", row.name));
 }
 
 fn governing(sheet: &Sheet<'_>, page: &mut Page, rows: &[PartRow]) {
@@ -104,15 +120,17 @@ fn governing(sheet: &Sheet<'_>, page: &mut Page, rows: &[PartRow]) {
     let Some(limits) = &row.judgement.limits else { return };
     let by = limits.limited_by.replace('_', " ");
     page.blank();
-    let text = match limits.limit_level_m {
-        None => format!("{}, no level is within its capacity (limited by {by})", row.name),
-        Some(_) => {
-            let limit = down(sheet.units, limits.limit_level_m);
-            let not = if by == "overflow" || by == "shell top" { ", not strength" } else { "" };
-            format!("{}, calculated limit level {limit} (limited by {by}{not})", row.name)
-        }
+    let text = if limits.limit_level_m.is_none() {
+        format!("{}, no level is within its capacity (limited by {by})", row.name)
+    } else {
+        let limit = down(sheet.units, limits.limit_level_m);
+        format!("{}, calculated limit level {limit} (limited by {by})", row.name)
     };
     page.heading(&format!("Governing: {text}"));
+    if let Some(alone_m) = limits.capacity_alone_m {
+        let alone = down(sheet.units, Some(alone_m));
+        page.line(&format!("  its capacity alone is reached at {alone}"));
+    }
 }
 
 /// Where the first bound reaches the thresholds of `[alarm]`.
@@ -134,6 +152,9 @@ pub(super) fn thresholds(sheet: &Sheet<'_>, page: &mut Page) {
                 format!("first reached at {}{read}", sheet.show(level_m, Length))
             }
         };
-        page.paragraph("  ", &format!("{name:<6} bound at {utilisation} of a capacity: {at}"));
+        page.paragraph(
+            &format!("  {name:<7}"),
+            &format!("a bound at {utilisation} of its capacity: {at}"),
+        );
     }
 }

@@ -7,13 +7,18 @@ use crate::tank::{self, Part as Stated, Plane, Rating, Shape};
 use crate::units::Quantity::{self, Density, Force, Length, LineLoad, Moment, Pressure, Ratio};
 
 /// Columns of a label, of one number, and of the gap before the capacity.
-const LABEL: usize = 25;
-const NUMBER: usize = 13;
+const LABEL: usize = 24;
+const NUMBER: usize = 14;
 const CAPACITY_AT: usize = LABEL + 3 * NUMBER + 2;
 
 pub(super) fn loads(sheet: &Sheet<'_>, page: &mut Page) {
     page.blank();
     page.heading(&line("Loads", ["estimate", "bound", "inward"].map(str::to_owned), "capacity"));
+    page.paragraph(
+        "  ",
+        "Positive acts from the liquid outwards. Bound and inward are the largest and the least load \
+         that the level reading, the densities and the gas allow.",
+    );
     let rows = &sheet.assessment.document.parts;
     for (stated, row) in sheet.file.parts.iter().zip(rows) {
         page.blank();
@@ -66,7 +71,7 @@ fn surface(sheet: &Sheet<'_>, plane: &Plane, span: &str) -> String {
 fn part(sheet: &Sheet<'_>, page: &mut Page, stated: &Stated, row: &PartRow) {
     let three = |pick: fn(&Loads) -> Option<f32>, quantity: Quantity| {
         [&row.loads, &row.loads_outward_bound, &row.loads_inward_bound].map(|loads| {
-            pick(loads).map_or_else(|| "-".to_owned(), |value| sheet.show(value, quantity))
+            pick(loads).map_or_else(|| "-".to_owned(), |value| sheet.load(value, quantity))
         })
     };
     let mut put = |label: &str, cells: [String; 3], key: &str| {
@@ -101,7 +106,7 @@ fn part(sheet: &Sheet<'_>, page: &mut Page, stated: &Stated, row: &PartRow) {
     put("utilisation", used, "");
     if let Some(thickness_m) = judged.thickness_for_state_m {
         let thickness = thickness_up(sheet, thickness_m);
-        put("thickness for this state", [thickness, String::new(), String::new()], "");
+        put("thickness, this state", [thickness, String::new(), String::new()], "");
     }
 }
 
@@ -162,7 +167,7 @@ fn capacity(sheet: &Sheet<'_>, rating: &Rating, value: &Capacity) -> String {
                 "designed for {} of {}, gas {}, {share}, {basis}",
                 sheet.show(level_m.value, Length),
                 sheet.show(density_kg_m3.value, Density),
-                sheet.show(gas_pa.value, Pressure)
+                sheet.load(gas_pa.value, Pressure)
             )
         }
         tank::Capacity::HoopTension { .. } => format!("{}, {basis}", shown(LineLoad)),

@@ -7,7 +7,7 @@ use crate::lane::Lane;
 use crate::liquid::truth::{Profile, Random};
 use crate::liquid::{Band, Readings};
 use crate::plan::builder::{
-    G, GAUGE, band, exact, gas, head_sensor, layer, reading, surface_sensor, water_tank,
+    G, GAUGE, band, exact, gas, head_sensor, layer, random, reading, water_tank,
 };
 use crate::plan::{LevelSensor, Plan, Reference};
 use crate::pressure::Pressure;
@@ -33,49 +33,6 @@ fn head(at_m: f32, density: Band) -> Plan {
     plan.shell_top_m = 30.0;
     plan.liquid.top = density;
     plan.level = head_sensor(at_m, GAUGE, 0.0);
-    plan
-}
-
-fn random_band(random: &mut Random, least: f64) -> Band {
-    let low = random.between(least, least + 300.0);
-    let high = random.between(low, low + 400.0);
-    band(low as f32, random.between(low, high) as f32, high as f32)
-}
-
-fn random_plan(random: &mut Random) -> Plan {
-    let mut plan = water_tank();
-    plan.shell_top_m = random.between(3.0, 20.0) as f32;
-    plan.closed = random.below(2) == 0;
-    let [a, b, c] = [(); 3].map(|()| random.between(-3_000.0, 8_000.0) as f32);
-    let mut ordered = [a, b, c];
-    ordered.sort_by(f32::total_cmp);
-    plan.gas = gas(ordered[0], ordered[1], ordered[2]);
-    if random.below(3) == 0 {
-        plan.gas = gas(0.0, 0.0, 0.0);
-    }
-    plan.liquid.top = random_band(random, 600.0);
-    for _ in 0..random.below(3) {
-        plan.liquid.products.push(random_band(random, 600.0)).unwrap();
-    }
-    let mut top_m = f64::from(plan.shell_top_m);
-    let mut least = f64::from(plan.liquid.top.estimate_kg_m3);
-    for _ in 0..random.below(4) {
-        top_m -= random.between(0.1, 3.0);
-        let density = random_band(random, least);
-        least = f64::from(density.estimate_kg_m3);
-        let unsure_m = random.between(0.0, 1.5) as f32;
-        plan.liquid.below.push(layer(top_m as f32, unsure_m, density)).unwrap();
-    }
-    plan.level = match random.below(4) {
-        0 => surface_sensor(),
-        1 => head_sensor(random.between(-1.0, 3.0) as f32, Reference::GasSpace, 0.0),
-        2 => head_sensor(random.between(-1.0, 3.0) as f32, GAUGE, 0.0),
-        _ => {
-            let offset_pa = [101_000.0, 98_000.0, 104_000.0];
-            let at_m = random.between(-1.0, 3.0) as f32;
-            head_sensor(at_m, Reference::Atmosphere { offset_pa }, 0.0)
-        }
-    };
     plan
 }
 
@@ -124,7 +81,7 @@ proptest! {
     #[test]
     fn no_state_leaves_the_bounds(seed in any::<u64>()) {
         let mut random = Random(seed);
-        let plan = random_plan(&mut random);
+        let plan = random::tank(&mut random);
         for _ in 0..20 {
             let Some((profile, quantity)) = random_truth(&mut random, &plan) else { continue };
             let is_surface = plan.level.sensor == LevelSensor::Surface;
@@ -149,7 +106,7 @@ proptest! {
     #[test]
     fn the_estimate_lies_between_the_bounds(seed in any::<u64>(), far in any::<bool>()) {
         let mut random = Random(seed);
-        let plan = random_plan(&mut random);
+        let plan = random::tank(&mut random);
         let reach = if far { 1.0e15 } else { 300_000.0 };
         let scale = if plan.level.sensor == LevelSensor::Surface { 1e-4 } else { 1.0 };
         let read = random.between(-reach, reach) * scale;
@@ -175,7 +132,7 @@ proptest! {
     #[test]
     fn lanes_have_the_same_bits(seed in any::<u64>()) {
         let mut random = Random(seed);
-        let plan = random_plan(&mut random);
+        let plan = random::tank(&mut random);
         let scale = if plan.level.sensor == LevelSensor::Surface { 1e-4 } else { 1.0 };
         let resolved: [_; 8] = core::array::from_fn(|_| {
             let read = random.between(-5_000.0, 300_000.0) * scale;

@@ -14,7 +14,10 @@ mod rules;
 mod solve;
 mod tally;
 
-pub use problem::Problem;
+pub use problem::{
+    BoundAsk, CourseAsk, CurvedAsk, CurvedPart, DensityAsk, DesignedForAsk, DoorAsk, Line,
+    PlaneAsk, Plate, Problem, Securing,
+};
 pub use read::problem_of;
 pub use row::{Row, edge_rows, open_rows, own_rows};
 pub use solve::solve;

@@ -1,0 +1,94 @@
+//! The parts of a plan in words.
+
+use super::Words;
+use crate::units::Quantity::{AngleDegrees, Density, Force, Length, LineLoad, Pressure};
+use strake_core::part::{Capacities, DesignState, Geometry, Part};
+use strake_core::shape::Shape;
+
+impl Words {
+    pub(super) fn part(&mut self, part: &Part) {
+        let Part { geometry, bottom_m, top_m, outward, inward, designed_for, outside } = part;
+        self.line("is", geometry, self.geometry(geometry));
+        let heights = format!("{} to {}", self.show(*bottom_m, Length), self.show(*top_m, Length));
+        self.line("stands from", &(bottom_m, top_m), heights);
+        let mut carries = self.capacities(outward);
+        carries.extend(designed_for.iter().map(|state| self.design_state(state)));
+        self.line("carries", &(outward, designed_for), joined(&carries));
+        self.line("carries inward", inward, joined(&self.capacities(inward)));
+        if *outside != 0 {
+            let numbers: Vec<String> = (0..8)
+                .filter(|bit| outside >> bit & 1 == 1)
+                .map(|bit| format!("{}", bit + 1))
+                .collect();
+            self.line("outside against it", outside, numbers.join(" and "));
+        }
+    }
+
+    fn geometry(&self, geometry: &Geometry) -> String {
+        match geometry {
+            Geometry::Course { half_diameter_m, design_point_m, height_m } => format!(
+                "course, diameter {}, {} high, design point at {}",
+                self.show(2.0 * f64::from(*half_diameter_m), Length),
+                self.show(*height_m, Length),
+                self.show(*design_point_m, Length)
+            ),
+            Geometry::Plane { shape, sine, centroid_above_m: _, bolts } => {
+                let shape_words = match shape {
+                    Shape::Circle(circle) => {
+                        let diameter_m = 2.0 * f64::from(circle.radius_m());
+                        format!("circle, diameter {}", self.show(diameter_m, Length))
+                    }
+                    Shape::Rectangle(rectangle) => {
+                        let [width_m, length_m] = rectangle.sides_m();
+                        let (width, length) =
+                            (self.show(width_m, Length), self.show(length_m, Length));
+                        format!("rectangle, {width} wide, {length} up the slope")
+                    }
+                    // As a square of the same size, whose side any unit of length can show.
+                    Shape::Level { area_m2 } => {
+                        let side_m = f64::from(*area_m2).sqrt();
+                        format!("level, as large as a square of {}", self.show(side_m, Length))
+                    }
+                };
+                let slope = if matches!(shape, Shape::Level { .. }) {
+                    String::new()
+                } else {
+                    let degrees = f64::from(*sine).asin().to_degrees();
+                    format!(", {} from level", self.show(degrees, AngleDegrees))
+                };
+                let bolts = bolts.as_ref().map(|bolts| bolts.pattern().count);
+                let bolts = bolts.map_or_else(String::new, |count| format!(", {count} bolts"));
+                format!("{shape_words}{slope}{bolts}")
+            }
+        }
+    }
+
+    fn capacities(&self, capacities: &Capacities) -> Vec<String> {
+        let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n } = *capacities;
+        let all = [
+            ("pressure", pressure_pa, Pressure),
+            ("hoop tension", hoop_tension_n_m, LineLoad),
+            ("force", force_n, Force),
+            ("each bolt", bolt_n, Force),
+        ];
+        let stated = |(name, value, quantity): (&str, Option<f32>, _)| {
+            value.map(|value| format!("{name} {}", self.show(value, quantity)))
+        };
+        all.into_iter().filter_map(stated).collect()
+    }
+
+    /// The plan holds the specific weight; as a density at standard gravity it can be checked.
+    fn design_state(&self, state: &DesignState) -> String {
+        let DesignState { level_m, weight_n_m3, gas_pa } = *state;
+        format!(
+            "designed for {} of {} (what is left of it) under {} of gas",
+            self.show(level_m, Length),
+            self.show(f64::from(weight_n_m3) / 9.80665, Density),
+            self.show(gas_pa, Pressure)
+        )
+    }
+}
+
+fn joined(all: &[String]) -> String {
+    if all.is_empty() { "not judged".to_owned() } else { all.join(", ") }
+}

@@ -1,0 +1,153 @@
+//! Discs, rectangles and their pieces against strips in f64, over sizes, slopes and levels.
+#![expect(clippy::cast_possible_truncation, reason = "figures of the tests fit")]
+
+use super::{Circle, Cut, Rectangle, Shape, Wetted};
+use crate::lane::Lane;
+use crate::liquid::truth::{Random, Strips};
+use proptest::prelude::*;
+
+/// A shape and its strips, with the lowest point at zero.
+fn random_shape(random: &mut Random) -> (Shape, Strips) {
+    let sine = random.between(0.01, 1.0) as f32;
+    let size = random.between(0.01, 6.0) as f32;
+    let (sine_64, size_64) = (f64::from(sine), f64::from(size));
+    if random.below(2) == 0 {
+        let strips = Strips {
+            centroid_m: size_64 * sine_64,
+            sine: sine_64,
+            half_m: size_64,
+            size_m: size_64,
+            is_disc: true,
+        };
+        return (Shape::Circle(Circle::new(size, sine)), strips);
+    }
+    let width = random.between(0.01, 9.0) as f32;
+    let strips = Strips {
+        centroid_m: 0.5 * size_64 * sine_64,
+        sine: sine_64,
+        half_m: 0.5 * size_64,
+        size_m: width.into(),
+        is_disc: false,
+    };
+    (Shape::Rectangle(Rectangle::new(width, size, sine)), strips)
+}
+
+/// A surface above the lowest point: dry, just wetted, somewhere, just covered, deep.
+fn random_surface(random: &mut Random, rise_m: f32) -> f32 {
+    let close = 10.0_f64.powf(-random.between(1.0, 7.0)) * f64::from(rise_m);
+    let surface = match random.below(7) {
+        0 => -close,
+        1 => close,
+        2 => f64::from(rise_m) - close,
+        3 => f64::from(rise_m) + close,
+        4 => 0.5 * f64::from(rise_m) + close,
+        5 => f64::from(rise_m) * random.between(1.0, 4_000.0),
+        _ => f64::from(rise_m) * random.between(0.0, 1.5),
+    };
+    surface as f32
+}
+
+/// Error of `q0` and `q1` over `integral (h - z) dA` and `integral (h - z) |s| dA`.
+fn errors(found: Wetted<1>, strips: &Strips, surface_m: f32, up_to_s: f64) -> [f64; 2] {
+    let h = f64::from(surface_m);
+    let surface_s = (h - strips.centroid_m) / strips.sine;
+    let top = surface_s.clamp(-strips.half_m, up_to_s);
+    let over = |weight: fn(f64) -> f64| {
+        let depth = |z: f64, s: f64| (h - z) * weight(s);
+        let middle = if top < 0.0 { top } else { 0.0 };
+        strips.integral([-strips.half_m, middle], depth) + strips.integral([middle, top], depth)
+    };
+    let [q0, q1, arm] = [over(|_| 1.0), over(|s| s), over(f64::abs)];
+    let relative = |found: f32, exact: f64, scale: f64| {
+        if scale <= 0.0 { f64::from(found).abs() } else { (f64::from(found) - exact).abs() / scale }
+    };
+    [relative(found.q0.lane(0), q0, q0), relative(found.q1.lane(0), q1, arm)]
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(600))]
+
+    #[test]
+    fn whole_shapes(seed in any::<u64>()) {
+        let mut random = Random(seed);
+        let (shape, strips) = random_shape(&mut random);
+        let surface_m = random_surface(&mut random, shape.rise_m());
+        let found = shape.wetted(Lane([surface_m]));
+        let errors = errors(found, &strips, surface_m, strips.half_m);
+        prop_assert!(errors.iter().all(|&one| one <= 1e-6), "{errors:?} {surface_m} {shape:?}");
+    }
+
+    #[test]
+    fn pieces_below_a_cut(seed in any::<u64>()) {
+        let mut random = Random(seed);
+        let (shape, strips) = random_shape(&mut random);
+        let cut_y = random.between(0.02, 0.98) * f64::from(shape.rise_m());
+        let cut_s = (f64::from(cut_y as f32) - strips.centroid_m) / strips.sine;
+        let area = strips.integral([-strips.half_m, cut_s], |_, _| 1.0);
+        let first = strips.integral([-strips.half_m, cut_s], |_, s| s);
+        let cut = Cut::new(&shape, cut_y as f32, area as f32, first as f32);
+        let surface_m = random_surface(&mut random, shape.rise_m());
+        let found = cut.wetted(&shape, Lane([surface_m]));
+        let errors = errors(found, &strips, surface_m, cut_s);
+        prop_assert!(errors.iter().all(|&one| one <= 2e-6), "{errors:?} {surface_m} {shape:?}");
+    }
+
+    /// Eight surfaces at once, dry and deep ones among them, have the bits of each alone.
+    #[test]
+    fn lanes_have_the_same_bits(seed in any::<u64>()) {
+        let mut random = Random(seed);
+        let (shape, strips) = random_shape(&mut random);
+        let cut_y = (0.4 * f64::from(shape.rise_m())) as f32;
+        let cut = Cut::new(&shape, cut_y, shape.area_m2() * 0.4, -0.1 * strips.half_m as f32);
+        let mut surfaces: [f32; 8] =
+            core::array::from_fn(|_| random_surface(&mut random, shape.rise_m()));
+        surfaces[0] = cut_y;
+        let together = [shape.wetted(Lane(surfaces)), cut.wetted(&shape, Lane(surfaces))];
+        for (lane, surface_m) in surfaces.into_iter().enumerate() {
+            let one = Lane([surface_m]);
+            let singly = [shape.wetted(one), cut.wetted(&shape, one)];
+            for (many, alone) in together.into_iter().zip(singly) {
+                for (many, alone) in [(many.q0, alone.q0), (many.q1, alone.q1)] {
+                    let bits = [many.lane(lane), alone.lane(0)].map(|q| (q + 0.0).to_bits());
+                    prop_assert_eq!(bits[0], bits[1]);
+                }
+            }
+        }
+    }
+
+    /// Neither falls as the surface rises by more than its own error: no step where branches meet.
+    #[test]
+    fn the_volume_of_the_prism_never_falls(seed in any::<u64>()) {
+        let mut random = Random(seed);
+        let (shape, _) = random_shape(&mut random);
+        let middle = f64::from(random_surface(&mut random, shape.rise_m()));
+        let mut last = f32::NEG_INFINITY;
+        for step in -20..20 {
+            let surface = middle * (1.0 + 1e-6 * f64::from(step) * middle.signum());
+            let q0 = shape.wetted(Lane([surface as f32])).q0.lane(0);
+            prop_assert!(q0 >= last - 1e-6 * last.abs(), "{q0} after {last}");
+            last = q0;
+        }
+    }
+}
+
+#[test]
+fn a_level_shape_stands_at_one_height() {
+    let shape = Shape::Level { area_m2: 0.44 };
+    for (surface_m, volume) in [(-1.0, 0.0), (0.0, 0.0), (0.25, 0.11), (40.0, 17.6)] {
+        let found = shape.wetted(Lane([surface_m]));
+        assert!((found.q0.lane(0) - volume).abs() <= 1e-6 * volume);
+        assert!(found.q1.lane(0).abs() <= 0.0);
+    }
+}
+
+/// Half a disc: `2/3 r³`, and the moment `-pi/8 r⁴` (second moment of a semicircle about its
+/// diameter; Gere and Goodno, Mechanics of Materials, properties of plane areas).
+#[test]
+fn half_a_disc_in_closed_form() {
+    let shape = Shape::Circle(Circle::new(0.5, 1.0));
+    let found = shape.wetted(Lane([0.5]));
+    let (q0, q1) = (2.0 / 3.0 * 0.125, -core::f64::consts::PI / 8.0 * 0.0625);
+    assert!((f64::from(found.q0.lane(0)) / q0 - 1.0).abs() < 2e-7);
+    assert!((f64::from(found.q1.lane(0)) / q1 - 1.0).abs() < 2e-7);
+}

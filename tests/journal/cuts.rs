@@ -1,0 +1,145 @@
+//! Power cuts at every step, alone and in pairs: nothing durable lost, nothing invented.
+
+use crate::bench::{Bench, Medium, op};
+use core::iter::repeat_n;
+use core::ops::Range;
+use strake::sim::nor::{Cut, Nor, Tear};
+
+/// What a run over all cuts saw.
+#[derive(Debug, Default)]
+pub(crate) struct Seen {
+    pub(crate) cuts: u64,
+    pub(crate) torn_words: u64,
+    pub(crate) half_erased: u64,
+    pub(crate) failures: Vec<String>,
+}
+
+/// Runs operations 0 to the end of `ops`; for those in `ops` the power is cut at every one of their
+/// steps in a copy. `then` goes on with the copy after its restart.
+pub(crate) fn every_cut<F: Medium>(
+    flash: F,
+    ops: Range<usize>,
+    state_len: usize,
+    mut then: impl FnMut(&mut Bench<F>, usize) -> Result<(), String>,
+) -> Seen {
+    let mut seen = Seen::default();
+    let mut bench = Bench::new(flash, state_len);
+    for index in 0..ops.end {
+        let before = bench.clone();
+        bench.run(op(index)).unwrap();
+        if index < ops.start {
+            continue;
+        }
+        if index == ops.start {
+            // Forgets what the ring has forgotten.
+            bench.flush().unwrap();
+            bench.restart().unwrap();
+            continue;
+        }
+        let steps = bench.journal.flash().steps() - before.journal.flash().steps();
+        // An erase alone is one step, with many ways to end.
+        let ways = if steps == 1 { 25 } else { 1 };
+        for step in 0..steps {
+            for tear in [Tear::Before].into_iter().chain(repeat_n(Tear::During, ways)) {
+                let mut cut = before.clone();
+                let seed = seen.cuts;
+                let scattered = seed % 3 == 0;
+                let outcome = cut_in(&mut cut, Cut { steps: step, tear, scattered }, seed, index)
+                    .and_then(|()| then(&mut cut, index));
+                seen.cuts += 1;
+                seen.torn_words += cut.journal.flash().torn_words();
+                seen.half_erased += cut.journal.flash().half_erased();
+                if let Err(error) = outcome {
+                    seen.failures.push(format!("op {index} step {step} {tear:?}: {error}"));
+                }
+            }
+        }
+    }
+    seen
+}
+
+/// Runs one operation into a cut and restarts.
+fn cut_in<F: Medium>(
+    bench: &mut Bench<F>,
+    cut: Cut,
+    seed: u64,
+    index: usize,
+) -> Result<(), String> {
+    arm(bench, cut, seed);
+    bench.run(op(index)).expect_err("the cut falls into this operation");
+    bench.restart().map(|_| ())
+}
+
+fn arm<F: Medium>(bench: &mut Bench<F>, cut: Cut, seed: u64) {
+    let flash = bench.journal.flash_mut();
+    flash.seed(seed);
+    flash.cut_after(Some(cut));
+}
+
+/// Goes on cleanly after a restart, then starts again from the cold.
+fn goes_on<F: Medium>(bench: &mut Bench<F>, index: usize) -> Result<(), String> {
+    bench.start_up().map_err(|error| format!("start-up entry: {error:?}"))?;
+    for next in index..index + 7 {
+        bench.run(op(next)).map_err(|error| format!("going on: {error:?}"))?;
+    }
+    bench.restart().map(|_| ())
+}
+
+/// The power fails again at every step of the start-up entry and of the operations behind it.
+fn fails_again<F: Medium>(bench: &mut Bench<F>, index: usize) -> Result<u64, String> {
+    let mut cuts = 0;
+    for tear in [Tear::Before, Tear::During] {
+        for step in 0.. {
+            let mut again = bench.clone();
+            arm(&mut again, Cut { steps: step, tear, scattered: step % 2 == 0 }, step);
+            let outcome = again
+                .start_up()
+                .and_then(|()| (index..index + 5).try_for_each(|next| again.run(op(next))));
+            if outcome.is_ok() {
+                break;
+            }
+            cuts += 1;
+            again.restart().map_err(|error| format!("second cut {step} {tear:?}: {error}"))?;
+            goes_on(&mut again, index)
+                .map_err(|error| format!("after second cut {step} {tear:?}: {error}"))?;
+        }
+    }
+    Ok(cuts)
+}
+
+fn assert_sound(name: &str, seen: &Seen) {
+    let Seen { cuts, torn_words, half_erased, failures } = seen;
+    println!("{name}: {cuts} cuts, {torn_words} words torn, {half_erased} sectors half erased");
+    assert!(failures.is_empty(), "{} failures, first: {:?}", failures.len(), failures.first());
+    assert!(*torn_words > 1_000 && *half_erased > 40, "the cuts must do harm");
+}
+
+#[test]
+fn every_single_cut_words_of_four() {
+    let seen = every_cut(Nor::<4>::new(4), 1_900..3_400, 400, goes_on);
+    assert_sound("single, W = 4", &seen);
+}
+
+#[test]
+fn every_single_cut_words_of_one() {
+    let seen = every_cut(Nor::<1>::new(4), 2_000..2_900, 300, goes_on);
+    assert_sound("single, W = 1", &seen);
+}
+
+#[test]
+fn every_pair_of_cuts_around_sector_changes() {
+    let mut second = 0;
+    let mut turn = 0_u64;
+    let seen = every_cut(Nor::<4>::new(4), 2_000..3_000, 100, |bench, index| {
+        turn += 1;
+        // Every step of every operation is cut first; every thirteenth such cut is cut again at
+        // every step behind it.
+        if turn.is_multiple_of(13) {
+            second += fails_again(bench, index)?;
+        }
+        Ok(())
+    });
+    println!("pairs: {second} second cuts");
+    assert_sound("pairs, W = 4", &seen);
+    assert!(second > 5_000, "{second}");
+}

@@ -1,0 +1,158 @@
+//! One reading, one plan bit, one stored hash changed, check sums mended: the replay must name the
+//! first difference and end with status 7. Damage that no check hides must be counted, the rest
+//! used.
+
+use crate::bench::{journal, replay, strake, trial};
+use std::ops::Range;
+use std::path::Path;
+use strake_core::journal::check::{CRC32, block_check};
+use strake_core::journal::header::HEADER_BYTES;
+
+const TAG_PLAN: u8 = 2;
+const TAG_SECTOR: u8 = 3;
+/// Forms of blocks.
+const SAMPLES: u8 = 0;
+const EVENTS: u8 = 2;
+
+/// Places of the payloads of all records with a tag.
+fn payloads(file: &[u8], tag: u8) -> Vec<Range<usize>> {
+    let mut found = Vec::new();
+    let mut at = 8;
+    while at < file.len() {
+        let length = u32::from_le_bytes(file[at + 1..at + 5].try_into().unwrap()) as usize;
+        if file[at] == tag {
+            found.push(at + 5..at + 5 + length);
+        }
+        at += 5 + length + 4;
+    }
+    found
+}
+
+/// Puts the record's check right again.
+fn mend_record(file: &mut [u8], payload: &Range<usize>) {
+    let check = CRC32.checksum(&file[payload.start - 5..payload.end]);
+    file[payload.end..payload.end + 4].copy_from_slice(&check.to_le_bytes());
+}
+
+/// Places of the blocks of a form in a sector (words of four bytes), behind the header.
+fn blocks(sector: &[u8], form: u8) -> Vec<Range<usize>> {
+    let mut found = Vec::new();
+    let mut at = HEADER_BYTES;
+    while at < sector.len() {
+        match sector[at] {
+            0xFF => at = (at / 256 + 1) * 256,
+            words => {
+                let end = at + usize::from(words) * 4;
+                if sector[at + 1] >> 5 == form {
+                    found.push(at..end);
+                }
+                at = end;
+            }
+        }
+    }
+    found
+}
+
+/// Changes the bytes of one block and mends block and record.
+fn change_block(
+    file: &mut [u8],
+    form: u8,
+    pick: impl Fn(&[u8]) -> bool,
+    change: impl Fn(&mut [u8]),
+) {
+    for record in payloads(file, TAG_SECTOR) {
+        let sequence = u32::from_le_bytes(file[record.start..record.start + 4].try_into().unwrap());
+        let sector = record.start + 6..record.end;
+        let found = blocks(&file[sector.clone()], form);
+        let chosen = found.into_iter().find(|block| pick(&file[sector.clone()][block.clone()]));
+        let Some(block) = chosen else { continue };
+        let offset = u16::try_from(block.start).unwrap();
+        let bytes = &mut file[sector][block];
+        let check_at = bytes.len() - 4;
+        change(&mut bytes[..check_at]);
+        let check = block_check(sequence, offset, &bytes[..check_at]);
+        bytes[check_at..].copy_from_slice(&check.to_le_bytes());
+        mend_record(file, &record);
+        return;
+    }
+    panic!("the journal has no such block");
+}
+
+fn replay_of(directory: &Path, file: &[u8]) -> (i32, serde_json::Value) {
+    let path = directory.join("changed.strake-journal");
+    std::fs::write(&path, file).unwrap();
+    replay(&path)
+}
+
+#[test]
+fn a_changed_reading_is_named() {
+    let (directory, _, document) = trial(&[]);
+    let mut file = std::fs::read(journal(&document)).unwrap();
+    // The first block of samples begins a page with absolute values: its third payload byte lies in
+    // the first sample's tick or level count.
+    change_block(&mut file, SAMPLES, |_| true, |block| block[5] ^= 0x04);
+    let (status, replayed) = replay_of(directory.path(), &file);
+    assert_eq!(status, 7, "{replayed}");
+    assert_eq!(replayed["identical"], false);
+    assert!(replayed["first_difference"]["entry"].is_u64(), "{replayed}");
+    assert_eq!(replayed["damaged"], 0);
+}
+
+#[test]
+fn a_changed_plan_bit_is_named() {
+    let (directory, _, document) = trial(&[]);
+    let mut file = std::fs::read(journal(&document)).unwrap();
+    let plan = payloads(&file, TAG_PLAN)[0].clone();
+    file[plan.start + 16 + 40] ^= 1;
+    mend_record(&mut file, &plan);
+    let (status, replayed) = replay_of(directory.path(), &file);
+    assert_eq!(status, 7, "{replayed}");
+    assert_eq!(replayed["first_difference"]["what"], "fingerprint of a plan");
+}
+
+#[test]
+fn a_changed_hash_is_named() {
+    let (directory, _, document) = trial(&[]);
+    let mut file = std::fs::read(journal(&document)).unwrap();
+    // Entry number 2 is a move of an alarm machine; its hash is the last eight bytes before
+    // padding.
+    let is_move = |block: &[u8]| block[2] == 2;
+    let hash = |block: &mut [u8]| {
+        let end = block.iter().rposition(|&byte| byte != 0xFF).unwrap();
+        block[end - 2] ^= 0x10;
+    };
+    change_block(&mut file, EVENTS, is_move, hash);
+    let (status, replayed) = replay_of(directory.path(), &file);
+    assert_eq!(status, 7, "{replayed}");
+    assert_eq!(replayed["first_difference"]["what"], "running hash at an alarm");
+}
+
+#[test]
+fn flipped_bits_are_located_and_the_rest_is_used() {
+    let (directory, _, document) = trial(&[]);
+    let mut file = std::fs::read(journal(&document)).unwrap();
+    let sector = payloads(&file, TAG_SECTOR)[1].clone();
+    file[sector.start + 2000] ^= 0x40;
+    let (status, replayed) = replay_of(directory.path(), &file);
+    assert!([6, 7].contains(&status), "{replayed}");
+    assert!(replayed["damaged"].as_u64() >= Some(1));
+    assert!(replayed["samples"].as_u64() > Some(1000), "{replayed}");
+
+    file.truncate(file.len() / 2);
+    let (status, replayed) = replay_of(directory.path(), &file);
+    assert!([6, 7].contains(&status), "{replayed}");
+    assert!(replayed["damaged"].as_u64() >= Some(1));
+}
+
+#[test]
+fn foreign_and_empty_files_are_no_journals() {
+    let directory = tempfile::tempdir().unwrap();
+    for (name, bytes) in [("foreign", &b"PK\x03\x04 something else"[..]), ("empty", b"")] {
+        let path = directory.path().join(name);
+        std::fs::write(&path, bytes).unwrap();
+        let (status, _) = strake(&["replay", path.to_str().unwrap()]);
+        assert_eq!(status, 3, "{name}");
+    }
+    let missing = directory.path().join("missing");
+    assert_eq!(strake(&["replay", missing.to_str().unwrap()]).0, 3);
+}

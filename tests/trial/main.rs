@@ -1,0 +1,6 @@
+//! The main job through the real binary: trial, replay, and what a changed bit does to them.
+
+mod bench;
+mod changed;
+mod measured;
+mod story;
