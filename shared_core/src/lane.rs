@@ -1,13 +1,16 @@
 //! Arithmetic over a fixed number of samples at once.
 //!
 //! The device evaluates one sample (`Lane<1>`), the replay 64. Each lane goes through the same
-//! operations in the same order, so the bits of a lane do not depend on the number of lanes. Only
-//! `+ - * /`, comparisons and the correctly rounded square root stand here: these give the same
-//! bits on every IEEE 754 machine.
+//! operations in the same order, so its numbers do not depend on the number of lanes. The sign of a
+//! zero may: what no lane needs is left out, and a surface that does not reach a part adds a zero of
+//! either sign. Only `+ - * /`, comparisons and the correctly rounded square root stand here: these
+//! give the same bits on every IEEE 754 machine.
 #![expect(
     clippy::inline_always,
     reason = "a call per operation would cost more than the operation"
 )]
+
+pub mod careless;
 
 use core::array;
 use core::ops::{Add, Div, Mul, Neg, Sub};
@@ -72,7 +75,7 @@ impl<const N: usize> Lane<N> {
     #[must_use]
     #[inline(always)]
     pub fn root(self) -> Self {
-        self.map(libm::sqrtf)
+        self.map(root)
     }
 
     /// `then` where `self` is positive, else `otherwise`.
@@ -87,16 +90,18 @@ impl<const N: usize> Lane<N> {
 
     /// Whether every lane is greater than zero.
     #[must_use]
+    #[expect(clippy::unnecessary_fold, reason = "the short form leaves a loop for one lane")]
     #[inline(always)]
     pub fn all_positive(self) -> bool {
-        self.0.iter().all(|&x| x > 0.0)
+        self.0.into_iter().fold(true, |all, x| all && x > 0.0)
     }
 
     /// Whether no lane is greater than zero.
     #[must_use]
+    #[expect(clippy::unnecessary_fold, reason = "the short form leaves a loop for one lane")]
     #[inline(always)]
     pub fn none_positive(self) -> bool {
-        !self.0.iter().any(|&x| x > 0.0)
+        !self.0.into_iter().fold(false, |any, x| any || x > 0.0)
     }
 
     /// The number in one lane; zero beyond the last.
@@ -111,6 +116,9 @@ impl<const N: usize> Lane<N> {
 #[must_use]
 #[inline(always)]
 pub fn at_least(value: f32, floor: f32) -> f32 {
+    if careless::MAX {
+        return careless::at_least(value, floor);
+    }
     if floor > value { floor } else { value }
 }
 
@@ -118,6 +126,9 @@ pub fn at_least(value: f32, floor: f32) -> f32 {
 #[must_use]
 #[inline(always)]
 pub fn at_most(value: f32, ceiling: f32) -> f32 {
+    if careless::MAX {
+        return careless::at_most(value, ceiling);
+    }
     if ceiling < value { ceiling } else { value }
 }
 
@@ -125,7 +136,18 @@ pub fn at_most(value: f32, ceiling: f32) -> f32 {
 #[must_use]
 #[inline(always)]
 pub fn ramp(value: f32) -> f32 {
+    if careless::MAX {
+        return careless::at_least(value, 0.0);
+    }
     if value > 0.0 { value } else { 0.0 }
+}
+
+#[inline(always)]
+fn root(value: f32) -> f32 {
+    if careless::ROOT {
+        return careless::root(value);
+    }
+    libm::sqrtf(value)
 }
 
 impl<const N: usize> Add for Lane<N> {

@@ -62,6 +62,12 @@ impl Setup {
         self
     }
 
+    /// The sensor has this value in a register from the start.
+    pub(crate) fn register(self, register: u16, value: u16) -> Self {
+        self.sensor.set_register(register, value);
+        self
+    }
+
     /// Makes the link a pseudo-terminal, see [`Machine::port`].
     pub(crate) fn link_as_terminal(mut self) -> Self {
         self.link_is_terminal = true;

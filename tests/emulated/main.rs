@@ -8,11 +8,14 @@ macro_rules! tests {
     ($($name:ident,)*) => { &[$((stringify!($name), $name),)*] };
 }
 
+mod bits;
+mod device;
 mod drivers;
 mod flash_file;
 mod image;
 mod log;
 mod machine;
+mod operation;
 mod plugin;
 mod qmp;
 mod sensor;
@@ -26,6 +29,19 @@ type Outcome = Result<(), Box<dyn std::error::Error>>;
 /// A test: its name and what it runs.
 type Test = (&'static str, fn() -> Outcome);
 
+/// An error unless both are the same.
+fn same<T: PartialEq + std::fmt::Debug + ?Sized>(found: &T, expected: &T) -> Outcome {
+    if found == expected {
+        return Ok(());
+    }
+    Err(format!("found {found:?}, expected {expected:?}").into())
+}
+
+/// An error that says `what` unless the condition holds.
+fn hold(condition: bool, what: &str) -> Outcome {
+    if condition { Ok(()) } else { Err(what.into()) }
+}
+
 /// A test of this name, ignored when `missing` says what this machine lacks.
 fn trial(missing: Option<&'static str>, (name, run): Test) -> Trial {
     let trial = Trial::test(name, move || run().map_err(|error| Failed::from(error.to_string())));
@@ -38,8 +54,9 @@ fn trial(missing: Option<&'static str>, (name, run): Test) -> Trial {
 fn main() {
     let arguments = Arguments::from_args();
     let missing = toolchain::missing();
-    let trials: Vec<Trial> = drivers::TESTS
-        .iter()
+    let trials: Vec<Trial> = [drivers::TESTS, bits::TESTS, operation::TESTS]
+        .into_iter()
+        .flatten()
         .map(|&test| trial(missing.as_ref().map(|(what, _)| *what), test))
         .collect();
     if let Some((what, remedy)) = &missing

@@ -48,24 +48,36 @@ pub(crate) fn missing() -> Option<(&'static str, String)> {
 
 /// The image of a program of the emulated board as it is shipped, built once in a run.
 pub(crate) fn image(program: &'static str) -> Result<Arc<Image>, Box<dyn Error>> {
+    image_with(program, "")
+}
+
+/// The same with a feature of the board: one of its negative controls.
+pub(crate) fn image_with(
+    program: &'static str,
+    feature: &'static str,
+) -> Result<Arc<Image>, Box<dyn Error>> {
     type Built = Result<Arc<Image>, String>;
-    static IMAGES: Mutex<BTreeMap<&str, Built>> = Mutex::new(BTreeMap::new());
+    static IMAGES: Mutex<BTreeMap<(&str, &str), Built>> = Mutex::new(BTreeMap::new());
     let mut images = IMAGES.lock().unwrap_or_else(PoisonError::into_inner);
-    let built = images.entry(program).or_insert_with(|| {
-        let image = build(program).and_then(|path| Image::read(&path));
+    let built = images.entry((program, feature)).or_insert_with(|| {
+        let image = build(program, feature).and_then(|path| Image::read(&path));
         image.map(Arc::new).map_err(|error| error.to_string())
     });
     Ok(built.clone()?)
 }
 
-fn build(program: &str) -> Result<PathBuf, Box<dyn Error>> {
+fn build(program: &str, feature: &str) -> Result<PathBuf, Box<dyn Error>> {
     let output = target_cargo()
         .args(["build", "--quiet", "--package", "strake-board-emulated"])
-        .args(["--profile", "device", "--bin", program])
+        .args(["--profile", "device", "--bin", program, "--features", feature])
         .output()?;
     if !output.status.success() {
         let message = String::from_utf8_lossy(&output.stderr);
         return Err(format!("building {program} for the target failed:\n{message}").into());
     }
-    Ok(root().join("target/thumbv7em-none-eabihf/device").join(program))
+    // Every variant is linked to the same place.
+    let linked = root().join("target/thumbv7em-none-eabihf/device").join(program);
+    let kept = scratch().join(format!("{program}{feature}.elf"));
+    std::fs::copy(linked, &kept)?;
+    Ok(kept)
 }

@@ -38,6 +38,8 @@ pub struct Parts {
     pub retained: Retained,
     /// The watchdog, still to be started.
     pub watchdog: Stopped,
+    /// The processor's identification register (Armv7-M, B3.2.3).
+    pub processor_id: u32,
     /// Why the controller started.
     pub reset_cause: ResetCause,
     /// What ended the last run, where the program could say it.
@@ -69,6 +71,7 @@ impl Parts {
             button: Button::new(),
             retained: Retained::new(),
             watchdog: Stopped::new(),
+            processor_id: core.CPUID.base.read(),
             reset_cause,
             last_failure,
         })

@@ -13,6 +13,7 @@ mod device {
     use strake_board_emulated::timer::{MonotonicClock, sleep_until};
     use strake_board_emulated::uart::SerialPort;
     use strake_board_emulated::{Parts, restart, watchdog};
+    use strake_core::lane::careless;
     use strake_core::wire::Text;
     use strake_firmware::app::App;
     use strake_firmware::board::{Board, Hardware, NoSource};
@@ -20,12 +21,14 @@ mod device {
     use strake_firmware::sensor::modbus::{Form, Function, ModbusSource, Place, Waits};
 
     /// Where the level stands unless the plan says otherwise.
-    const LEVEL: Place =
-        Place { unit: 1, function: Function::Input, register: 0, form: Form::U16 };
+    const LEVEL: Place = Place { unit: 1, function: Function::Input, register: 0, form: Form::U16 };
     /// Long enough for an answer while the emulator skips sleep.
     const WAITS: Waits = Waits { answer_ms: 2000, silence_ms: 4 };
     /// Many times what the slowest cycle takes, which waits for a silent sensor.
     const WATCHDOG_MS: u32 = 60_000;
+
+    // The negative controls of bit-check are never shipped.
+    const _: () = assert!(!careless::MAX && !careless::ROOT);
 
     struct Emulated;
 
@@ -45,7 +48,11 @@ mod device {
 
     /// Apart from `main`, so that what the start needs of the stack is given back.
     #[inline(never)]
-    fn start(parts: Parts, space: &'static mut Space) -> App<Emulated> {
+    fn start(
+        parts: Parts,
+        space: &'static mut Space,
+        place: &'static mut MaybeUninit<App<Emulated>>,
+    ) -> &'static mut App<Emulated> {
         let Space { memory, server, waiting } = space;
         let hardware = Hardware {
             clock: parts.clock,
@@ -61,7 +68,7 @@ mod device {
             device_id: Text::new("EMULATED").unwrap_or_default(),
             reset_cause: parts.reset_cause,
         };
-        App::start(hardware, Rooms { memory, server, waiting })
+        place.write(App::start(hardware, Rooms { memory, server, waiting }))
     }
 
     #[cortex_m_rt::entry]
@@ -71,7 +78,7 @@ mod device {
         let Some(parts) = Parts::take() else { restart() };
         let clock = parts.clock;
         // Static too, so that its size counts as what it is.
-        let app = APP.write(start(parts, SPACE));
+        let app = start(parts, SPACE, APP);
         loop {
             sleep_until(clock, app.poll());
         }

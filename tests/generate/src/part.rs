@@ -1,0 +1,163 @@
+//! Parts of every kind, with capacities of the size of their loads.
+
+use crate::{between, ratio, single};
+use std::f64::consts::{FRAC_PI_2, PI};
+use strake_core::part::{BoltPattern, Bolts, Capacities, DesignState, Geometry, Part};
+use strake_core::shape::{Circle, Rectangle, Shape};
+use strake_oracle::random::Random;
+
+/// The tank a part belongs to, in round numbers.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Around {
+    pub(crate) height_m: f64,
+    /// Bits of the liquids outside that there are.
+    pub(crate) outside: u8,
+}
+
+pub(crate) fn part(random: &mut Random, around: Around) -> Part {
+    let bottom_m = match random.below(4) {
+        0 => 0.0,
+        1 => between(random, -0.5, 0.0),
+        _ => between(random, 0.0, 0.9 * around.height_m),
+    };
+    let (geometry, rise_m) = match random.below(3) {
+        0 => course(random, bottom_m),
+        _ => plane(random),
+    };
+    let [outward, inward] = capacities(random, &geometry, around);
+    let designed_for = if random.one_in(3) { 1 + random.below(2) } else { 0 };
+    let mut part = Part {
+        geometry,
+        bottom_m,
+        top_m: bottom_m + rise_m,
+        outward,
+        inward,
+        designed_for: (0..designed_for).map(|_| design_state(random, around)).collect(),
+        outside: 0,
+    };
+    // The design point must not leave the course by the rounding of its top.
+    if let Geometry::Course { design_point_m, .. } = &mut part.geometry
+        && *design_point_m > part.top_m
+    {
+        *design_point_m = part.top_m;
+    }
+    if random.one_in(2) {
+        part.outside = u8::try_from(random.below(4)).unwrap_or(0) & around.outside;
+    }
+    part
+}
+
+fn course(random: &mut Random, bottom_m: f32) -> (Geometry, f32) {
+    let height_m = between(random, 0.3, 3.0);
+    let share = if random.one_in(4) { 0.0 } else { between(random, 0.0, 1.0) };
+    let design_point_m = bottom_m + share * height_m;
+    let half_diameter_m = ratio(random, 0.25, 40.0);
+    (Geometry::Course { half_diameter_m, design_point_m, height_m }, height_m)
+}
+
+/// One in four level; of the others half upright.
+fn plane(random: &mut Random) -> (Geometry, f32) {
+    let sine = match random.below(8) {
+        0 | 1 => 0.0,
+        2..=4 => 1.0,
+        _ => between(random, 0.02, 1.0),
+    };
+    let (a, b) = (ratio(random, 0.05, 6.0), ratio(random, 0.05, 6.0));
+    let round = random.one_in(2);
+    let shape = match (sine > 0.0, round) {
+        (false, _) => Shape::Level { area_m2: a * b },
+        (true, true) => Shape::Circle(Circle::new(a, sine)),
+        (true, false) => Shape::Rectangle(Rectangle::new(a, b, sine)),
+    };
+    let bolts = (!random.one_in(3)).then(|| {
+        let outline = match shape {
+            Shape::Circle(_) => Outline::Disc { radius_m: f64::from(a) },
+            _ => Outline::Rectangle { width_m: f64::from(a), half_m: 0.5 * f64::from(b) },
+        };
+        Bolts::new(&bolts(random, outline, f64::from(sine)), &shape)
+    });
+    let rise_m = shape.rise_m();
+    (Geometry::plane(shape, sine, bolts), rise_m)
+}
+
+#[derive(Clone, Copy)]
+enum Outline {
+    Disc { radius_m: f64 },
+    Rectangle { width_m: f64, half_m: f64 },
+}
+
+/// Three to forty bolts on a circle, the lowest at the lowest point or two astride it. For an odd
+/// number only one end of the upright diameter has a bolt.
+fn bolts(random: &mut Random, outline: Outline, sine: f64) -> BoltPattern {
+    let count = 3 + u16::try_from(random.below(38)).unwrap_or(0);
+    let n = f64::from(count);
+    let first = if random.one_in(2) { 0.0 } else { PI / n };
+    let half_m = match outline {
+        Outline::Disc { radius_m } => radius_m,
+        Outline::Rectangle { half_m, .. } => half_m,
+    };
+    let circle_m = half_m * random.between(0.7, 1.3);
+    let heights = (0..count).map(|i| -(first + 2.0 * PI * f64::from(i) / n).cos() * circle_m);
+    let heights: Vec<f64> = heights.collect();
+    let squares: f64 = heights.iter().map(|s| s * s).sum();
+    let lowest = heights.iter().copied().fold(f64::INFINITY, f64::min);
+    let highest = heights.iter().copied().fold(f64::NEG_INFINITY, f64::max);
+    // Weighting (1 + s s_i n / sum s²) / n of bolt i: its zero.
+    let cut_at = |bolt_m: f64| cut(outline, sine, -squares / (n * bolt_m));
+    BoltPattern {
+        count,
+        per_moment: [single(lowest / squares), single(highest / squares)],
+        cuts: [cut_at(lowest), cut_at(highest)],
+    }
+}
+
+/// Height of a line `s_m` above the centroid, over the lowest point; area and its first moment
+/// below. None where the line misses the shape or the part is level.
+fn cut(outline: Outline, sine: f64, s_m: f64) -> Option<[f32; 3]> {
+    let (half_m, area_m2, static_m3) = match outline {
+        Outline::Disc { radius_m: r } if s_m.abs() < r => {
+            let t = s_m / r;
+            let chord = (1.0 - t * t).sqrt();
+            let area_m2 = r * r * (FRAC_PI_2 + t * chord + t.asin());
+            (r, area_m2, -2.0 / 3.0 * (r * chord).powi(3))
+        }
+        Outline::Rectangle { width_m, half_m } if s_m.abs() < half_m => {
+            (half_m, width_m * (s_m + half_m), 0.5 * width_m * (s_m * s_m - half_m * half_m))
+        }
+        _ => return None,
+    };
+    (sine > 0.0).then(|| [(s_m + half_m) * sine, area_m2, static_m3].map(single))
+}
+
+/// Outward and inward capacities, each stated or not, from a third of to three times the load of
+/// water to the top.
+fn capacities(random: &mut Random, geometry: &Geometry, around: Around) -> [Capacities; 2] {
+    let head_pa = single(9806.65 * around.height_m);
+    let (tension, force, bolt) = match geometry {
+        Geometry::Course { half_diameter_m, .. } => (Some(head_pa * half_diameter_m), None, None),
+        Geometry::Plane { shape, bolts, .. } => {
+            let force = head_pa * shape.area_m2();
+            let per_bolt = |bolts: &Bolts| force / f32::from(bolts.pattern().count);
+            (None, Some(force), bolts.as_ref().map(per_bolt))
+        }
+    };
+    let mut stated = |load: Option<f32>, one_in: u32| {
+        let share = ratio(random, 0.3, 3.0);
+        load.filter(|_| random.one_in(one_in)).map(|load| load * share)
+    };
+    [2, 4].map(|one_in| Capacities {
+        pressure_pa: stated(Some(head_pa), one_in),
+        hoop_tension_n_m: stated(tension, one_in),
+        force_n: stated(force, one_in),
+        bolt_n: stated(bolt, one_in),
+    })
+}
+
+fn design_state(random: &mut Random, around: Around) -> DesignState {
+    let gas_pa = if random.one_in(2) { 0.0 } else { between(random, -1e3, 2e4) };
+    DesignState {
+        level_m: between(random, 0.1 * around.height_m, 1.2 * around.height_m),
+        weight_n_m3: between(random, 5_000.0, 15_000.0),
+        gas_pa,
+    }
+}
