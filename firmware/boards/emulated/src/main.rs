@@ -20,8 +20,7 @@ mod device {
     use strake_firmware::sensor::modbus::{Form, Function, ModbusSource, Place, Waits};
 
     /// Where the level stands unless the plan says otherwise.
-    const LEVEL: Place =
-        Place { unit: 1, function: Function::Input, register: 0, form: Form::U16 };
+    const LEVEL: Place = Place { unit: 1, function: Function::Input, register: 0, form: Form::U16 };
     /// Long enough for an answer while the emulator skips sleep.
     const WAITS: Waits = Waits { answer_ms: 2000, silence_ms: 4 };
     /// Many times what the slowest cycle takes, which waits for a silent sensor.
