@@ -2,7 +2,7 @@
 
 use super::document::utc;
 use super::{AlarmLine, PartSummary, Replay};
-use crate::assess::FIELD_CHECK;
+use crate::assess::{FIELD_CHECK, PROVISIONAL};
 use crate::page::Page;
 use crate::units::Quantity::Length;
 use crate::units::{UnitSystem, format};
@@ -14,6 +14,9 @@ const DAMAGE_SHOWN: usize = 10;
 #[must_use]
 pub fn render(replay: &Replay, units: UnitSystem, coloured: bool) -> String {
     let mut page = Page::new(coloured);
+    if replay.provisional {
+        page.heading(PROVISIONAL);
+    }
     verdict(replay, &mut page);
     what_happened(replay, &mut page);
     for part in &replay.engine.summary.parts {
