@@ -59,6 +59,8 @@ pub fn levels_m(plan: &Plan, resolved: &Resolved) -> [f32; 3] {
 
 /// Loads of every part under `N` readings, handed to `part` in the plan's order, and the digest of
 /// all their bits per lane.
+// One function in every image, so that its instructions can be counted.
+#[inline(never)]
 pub fn loads<const N: usize>(
     plan: &Plan,
     resolved: &[Resolved; N],
