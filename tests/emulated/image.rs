@@ -58,12 +58,13 @@ impl Image {
         Ok(found)
     }
 
-    /// Address of the first instruction with this 16-bit code.
-    pub(crate) fn instruction(&self, code: u16) -> Result<u32, Box<dyn Error>> {
+    /// Address of the first 16 bits of code that are `code` under `mask`.
+    pub(crate) fn instruction(&self, (code, mask): (u16, u16)) -> Result<u32, Box<dyn Error>> {
         let file = object::File::parse(&*self.elf)?;
         let text = file.section_by_name(".text").ok_or("no code")?;
         let halves = text.data()?.chunks_exact(2);
-        let found = halves.into_iter().position(|half| half == code.to_le_bytes());
+        let is_it = |half: &[u8]| half.first_chunk().map(|half| u16::from_le_bytes(*half) & mask);
+        let found = halves.into_iter().position(|half| is_it(half) == Some(code));
         let offset = found.ok_or(format!("no instruction {code:#06x}"))? * 2;
         Ok(u32::try_from(text.address())? + u32::try_from(offset)?)
     }

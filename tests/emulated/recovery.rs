@@ -1,5 +1,7 @@
 //! The device after what should not happen: a hang, a fault, damaged flash.
 
+use strake_core::alarm::FaultCause;
+
 use crate::device::{ACT_NOW, CANNOT_SEE, HEALTHY, Site, WELL_MM, image, sealed};
 use crate::flash_file::{FlashFile, PLANS_OFFSET};
 use crate::machine::Setup;
@@ -10,20 +12,21 @@ pub(crate) const TESTS: &[Test] = tests![
     a_processor_fault_restarts_the_device_as_a_panic,
     a_damaged_plan_is_told_and_another_taken,
     a_damaged_journal_is_told_and_the_alarm_kept,
+    a_destroyed_journal_is_told,
     start_up_finishes_on_random_flash,
 ];
 
 /// `b .`: a loop without end.
-const ENDLESS: u16 = 0xE7FE;
-/// `udf #254`, as the compiler puts it where the program never comes.
-const UNDEFINED: u16 = 0xDEFE;
+const ENDLESS: (u16, u16) = (0xE7FE, 0xFFFF);
+/// `udf`, with any number.
+const UNDEFINED: (u16, u16) = (0xDE00, 0xFF00);
 /// Bytes of a sector of the journal and of a plan slot.
 const SECTOR: u64 = 4096;
 /// Where a plan begins in its slot.
 const PLAN_IN_SLOT: u64 = 256;
 
 /// Raises the alarm, ends the run at an instruction, and finds the alarm in the next one.
-fn end_at(code: u16, expected: &str) -> Outcome {
+fn end_at(code: (u16, u16), expected: &str) -> Outcome {
     let image = image()?;
     let mut site = Site::commissioned(Setup::new(&image).debugged())?;
     site.raise_alarm()?;
@@ -84,13 +87,26 @@ fn a_damaged_journal_is_told_and_the_alarm_kept() -> Outcome {
     hold(!site.machine.contact()?, "damage closed the contact of an alarm")?;
     let (replay, _) = site.replayed()?;
     hold(!replay.damage.is_empty(), "the damaged block is not told")?;
-    // A sector of which nothing can be read any more: the device says so.
+    Ok(())
+}
+
+fn a_destroyed_journal_is_told() -> Outcome {
+    let mut site = Site::commissioned(Setup::new(&image()?))?;
+    site.fill_journal(3 * 4096)?;
     let flash = site.machine.cut_power();
-    flash.overwrite(0, &[0; SECTOR as usize])?;
+    flash.overwrite(0, &[0; 4 * 4096])?;
     let mut site = Site::start(Setup::new(&image()?).flash(flash), WELL_MM)?;
+    let damaged = usize::from(FaultCause::JournalDamaged.number());
     let faults = site.client.fault_status()?;
-    println!("after a destroyed journal: {faults:?}");
-    site.client.status()?;
+    same(&faults.counts.get(damaged), &Some(&1))?;
+    let status = site.wait_for("a reading", |status| status.level_reading == 1)?;
+    same(&(status.output, status.faults), &(CANNOT_SEE, 1))?;
+    hold(!site.machine.contact()?, "the contact conducts although alarms may be lost")?;
+    // Somebody has seen it: acknowledged, then reset.
+    site.client.acknowledge()?;
+    site.client.acknowledge()?;
+    site.wait_for("the device to be healthy", |status| status.output == HEALTHY)?;
+    site.replayed_identically()?;
     Ok(())
 }
 
@@ -116,7 +132,7 @@ fn start_up_finishes_on_random_flash() -> Outcome {
         same(&site.client.status()?.output, &CANNOT_SEE)?;
         hold(!site.machine.contact()?, "the contact conducts on random flash")?;
         site.commission(&sealed("eight_courses")?)?;
-        site.wait_for("the device to be healthy", |status| status.output == HEALTHY)?;
+        site.wait_for("a reading", |status| status.level_reading == 1)?;
         site.replayed_identically()?;
     }
     Ok(())
