@@ -62,6 +62,12 @@ impl Setup {
         self
     }
 
+    /// The sensor's first register holds this from the beginning.
+    pub(crate) fn register(self, value: u16) -> Self {
+        self.sensor.set_register(0, value);
+        self
+    }
+
     /// Makes the link a pseudo-terminal, see [`Machine::port`].
     pub(crate) fn link_as_terminal(mut self) -> Self {
         self.link_is_terminal = true;

@@ -9,9 +9,11 @@ macro_rules! tests {
 }
 
 mod bits;
+mod cuts;
 mod drivers;
 mod flash_file;
 mod image;
+mod link;
 mod log;
 mod machine;
 mod plugin;
@@ -39,7 +41,7 @@ fn trial(missing: Option<&'static str>, (name, run): Test) -> Trial {
 fn main() {
     let arguments = Arguments::from_args();
     let missing = toolchain::missing();
-    let trials: Vec<Trial> = [drivers::TESTS, bits::TESTS]
+    let trials: Vec<Trial> = [drivers::TESTS, bits::TESTS, cuts::TESTS]
         .into_iter()
         .flatten()
         .map(|&test| trial(missing.as_ref().map(|(what, _)| *what), test))
