@@ -54,7 +54,7 @@ impl Memory {
     /// No plan, nothing read. Every bit is zero.
     #[must_use]
     pub const fn new() -> Self {
-        Self { plan: Plan::empty(), state: State::new(), moves: Moves::new() }
+        Self { plan: Plan::zeroed(), state: State::new(), moves: Moves::new() }
     }
 }
 

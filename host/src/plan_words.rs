@@ -4,6 +4,7 @@
 //! them, not by the digits shown, so that no change stays unseen.
 
 mod parts;
+mod sensor;
 #[cfg(test)]
 mod tests;
 
@@ -13,10 +14,7 @@ use crate::units::{Quantity, UnitSystem, format};
 use crate::utc;
 use std::fmt::Debug;
 use strake_core::liquid::{Band, Gas, Outside};
-use strake_core::plan::{
-    AlarmPlan, LevelPlan, LevelSensor, LiquidPlan, LoggingPlan, Plan, Reference, SignalKind,
-    ThresholdPlan,
-};
+use strake_core::plan::{AlarmPlan, LiquidPlan, LoggingPlan, Plan, ThresholdPlan};
 
 /// One line of a plan.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -218,69 +216,6 @@ impl Words {
         self.line(format!("outside {number}"), outside, value);
     }
 
-    fn sensor(&mut self, level: &LevelPlan) {
-        let LevelPlan {
-            sensor,
-            signal,
-            zero_count_16,
-            value_at_zero,
-            value_per_count_16,
-            uncertainty,
-            uncertainty_per_distance,
-            reference_m,
-            failed_after_ms,
-        } = level;
-        self.section("level sensor");
-        let (measures, quantity) = match sensor {
-            LevelSensor::Surface => ("the height of the surface".to_owned(), Length),
-            LevelSensor::Head { at_m, reference } => {
-                let against = match reference {
-                    Reference::GasSpace => "the gas space".to_owned(),
-                    Reference::Atmosphere { offset_pa: [0.0, 0.0, 0.0] } => "the air".to_owned(),
-                    Reference::Atmosphere { offset_pa: [nominal, low, high] } => format!(
-                        "vacuum, air pressure {} from {} to {}",
-                        self.show(*nominal, Pressure),
-                        self.show(*low, Pressure),
-                        self.show(*high, Pressure)
-                    ),
-                };
-                (format!("pressure at {}, against {against}", self.show(*at_m, Length)), Pressure)
-            }
-        };
-        self.line("measures", sensor, measures);
-        // The value at a count, in f64: what is shown is rounded once.
-        let at_count = |count: f64| {
-            let counts_16 = count * 16.0 - f64::from(*zero_count_16);
-            f64::from(*value_at_zero) + counts_16 * f64::from(*value_per_count_16)
-        };
-        let scaling = (signal, zero_count_16, value_at_zero, value_per_count_16);
-        let value = match signal {
-            SignalKind::CurrentLoop => format!(
-                "4 mA is {}, 20 mA is {}",
-                self.show(at_count(4000.0), quantity),
-                self.show(at_count(20_000.0), quantity)
-            ),
-            SignalKind::Register { unit, function, register, coding } => format!(
-                "bus unit {unit}, function {function}, register {register}, {}: count 0 is {}, \
-                 count 1000 is {}",
-                coding_in_words(*coding),
-                self.show(at_count(0.0), quantity),
-                self.show(at_count(1000.0), quantity)
-            ),
-        };
-        self.line("scaling", &scaling, value);
-        let mut within = format!("+-{}", self.show(*uncertainty, quantity));
-        if *uncertainty_per_distance > 0.0 {
-            within.push_str(&format!(
-                " and {} of the distance from {}",
-                self.show(*uncertainty_per_distance, Quantity::Ratio),
-                self.show(*reference_m, Length)
-            ));
-        }
-        self.line("uncertainty", &(uncertainty, uncertainty_per_distance, reference_m), within);
-        self.line("cannot see after", failed_after_ms, self.time(*failed_after_ms));
-    }
-
     fn threshold(&mut self, label: &str, threshold: &ThresholdPlan) {
         let ThresholdPlan { utilisation, deadband, on_delay_ms, off_delay_ms, latch } = threshold;
         let value = format!(
@@ -310,14 +245,5 @@ impl Words {
         self.line("while moving", &interval_ms, format!("every {}", self.time(interval_ms)));
         self.line("at rest", &idle_interval_ms, format!("every {}", self.time(idle_interval_ms)));
         self.line("written after", &flush_after_ms, self.time(flush_after_ms));
-    }
-}
-
-fn coding_in_words(coding: u8) -> String {
-    match coding {
-        0 => "u16".to_owned(),
-        1 => "i16".to_owned(),
-        2 => "u32".to_owned(),
-        other => format!("coding {other}"),
     }
 }

@@ -3,13 +3,14 @@
 //! **Health** is the device's, never the tank's: it is healthy, or says that somebody must act now,
 //! or that it cannot see. Names come from the plan that is read back from the device.
 
+mod build;
 mod document;
 mod text;
 mod words;
 
 pub use document::{
-    AlarmRow, ClockRow, DeviceRow, Document, FaultRow, LevelRow, LinkRow, LoadsRow, PartRow,
-    PlanRow,
+    AlarmRow, ClockRow, DeviceRow, Document, FaultRow, JournalRow, LevelRow, LinkRow, LoadsRow,
+    PartRow, PlanRow,
 };
 pub(crate) use text::ahead_words;
 pub use text::render;

@@ -20,7 +20,7 @@ pub use step::{Judged, Moved, judge, step};
 
 use crate::lane::Lane;
 use crate::liquid::{Readings, States, states};
-use crate::part::{PartLoads, evaluate as evaluate_part};
+use crate::part::{PartLoads, evaluate_into};
 use crate::plan::Plan;
 use crate::signal::Resolved;
 use core::array;
@@ -66,8 +66,9 @@ pub fn loads<const N: usize>(
 ) -> Digest<N> {
     let states = pressures(plan, resolved);
     let mut digest = Digest::new();
+    let mut loads = PartLoads::NONE;
     for (index, one) in plan.parts.iter().enumerate() {
-        let loads = evaluate_part(plan, one, &states);
+        evaluate_into(plan, one, &states, &mut loads);
         digest.add(one, &loads);
         part(index, &loads);
     }

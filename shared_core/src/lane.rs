@@ -90,16 +90,18 @@ impl<const N: usize> Lane<N> {
 
     /// Whether every lane is greater than zero.
     #[must_use]
+    #[expect(clippy::unnecessary_fold, reason = "the short form leaves a loop for one lane")]
     #[inline(always)]
     pub fn all_positive(self) -> bool {
-        self.0.iter().all(|&x| x > 0.0)
+        self.0.into_iter().fold(true, |all, x| all && x > 0.0)
     }
 
     /// Whether no lane is greater than zero.
     #[must_use]
+    #[expect(clippy::unnecessary_fold, reason = "the short form leaves a loop for one lane")]
     #[inline(always)]
     pub fn none_positive(self) -> bool {
-        !self.0.iter().any(|&x| x > 0.0)
+        !self.0.into_iter().fold(false, |any, x| any || x > 0.0)
     }
 
     /// The number in one lane; zero beyond the last.

@@ -7,6 +7,7 @@ mod bolts;
 mod evaluate;
 
 pub use bolts::{BoltPattern, Bolts};
+pub(crate) use evaluate::evaluate_into;
 pub use evaluate::{Loads, PartLoads, acting, evaluate};
 
 use crate::shape::Shape;

@@ -130,10 +130,25 @@ pub struct Plan {
 }
 
 impl Plan {
-    /// Room for a plan; it fails [`Plan::check`]. Every bit is zero, so that a static that begins
-    /// with it takes no room in a device's image.
+    /// A plan to be filled in at the desk: a surface sensor, alarms that never sound, no part. It
+    /// fails [`Plan::check`] until it has a site, a liquid and a part.
     #[must_use]
     pub const fn empty() -> Self {
+        let mut plan = Self::zeroed();
+        plan.level.sensor = LevelSensor::Surface;
+        plan.level.failed_after_ms = 1;
+        plan.alarm.warn.utilisation = 1.0;
+        plan.alarm.alarm.utilisation = 1.0;
+        plan.alarm.inward = None;
+        plan.alarm.sounds_again_after_ms = u32::MAX;
+        plan.logging = LoggingPlan { interval_ms: 1000, idle_interval_ms: 1000, flush_after_ms: 0 };
+        plan
+    }
+
+    /// Room for a plan with every bit zero, so that a device's static memory for it costs no flash;
+    /// it fails [`Plan::check`].
+    #[must_use]
+    pub const fn zeroed() -> Self {
         let band = Band { estimate_kg_m3: 0.0, low_kg_m3: 0.0, high_kg_m3: 0.0 };
         let never = ThresholdPlan {
             utilisation: 0.0,

@@ -75,7 +75,8 @@ impl<const N: usize> Pressure<N> {
 
     /// Pressure at a height, Pa gauge. Error: 3e-7 of the largest term.
     #[must_use]
-    #[inline]
+    #[expect(clippy::inline_always, reason = "the call would cost half of what it does")]
+    #[inline(always)]
     pub fn at(&self, z_m: Lane<N>) -> Lane<N> {
         let mut p = self.gas_pa;
         for surface in self.surfaces() {

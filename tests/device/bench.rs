@@ -3,7 +3,7 @@
 use std::fs;
 use std::path::PathBuf;
 use std::process::{Command, Output};
-use strake::compile;
+use strake::compile::{self, Compiled};
 use strake::sim::board::Bench;
 use strake::sim::machine::Machine;
 use strake::sim::pty::PtyMachine;
@@ -39,13 +39,25 @@ impl Level for Swing {
 
 /// A device that nobody has commissioned, its sensor on `level`.
 pub(crate) fn device(level: Swing) -> PtyMachine {
+    device_with_ring(level, 256)
+}
+
+/// A device whose journal has this many sectors.
+pub(crate) fn device_with_ring(level: Swing, sectors: usize) -> PtyMachine {
+    PtyMachine::serve(move || machine(level, sectors)).unwrap()
+}
+
+/// The device itself: its sensor as the shipped tank file states it, with a little noise.
+pub(crate) fn machine(level: Swing, sectors: usize) -> Machine {
+    let plan = compiled().plan;
+    let sensor = Sensor::new(&plan, Box::new(level), 20.0, 7);
+    Machine::new(Bench::new(sensor, sectors), Text::new("pump house 7").unwrap())
+}
+
+/// The shipped tank file, compiled.
+pub(crate) fn compiled() -> Compiled {
     let file = strake::tank::parse("tank.toml", TANK.as_bytes()).unwrap();
-    let plan = compile::for_device(&file).unwrap().plan;
-    PtyMachine::serve(move || {
-        let sensor = Sensor::new(&plan, Box::new(level), 20.0, 7);
-        Machine::new(Bench::new(sensor, 256), Text::new("pump house 7").unwrap())
-    })
-    .unwrap()
+    compile::for_device(&file).unwrap()
 }
 
 /// Lets virtual time go by.
@@ -108,13 +120,18 @@ pub(crate) fn on(device: &PtyMachine, arguments: &[&str]) -> Ran {
     run(strake().args(arguments).args(["--port", device.port()]))
 }
 
-/// Commissions the device with the shipped tank file.
+/// A device that is commissioned with the shipped tank file.
 pub(crate) fn commissioned(level: Swing) -> PtyMachine {
     let device = device(level);
-    let plan = sealed(TANK, SERIAL);
-    let ran = on(&device, &["commission", plan.file.to_str().unwrap()]);
-    assert_eq!(ran.exit, 0, "{}", ran.err);
+    commission(&device);
     device
+}
+
+/// Commissions a device with the shipped tank file.
+pub(crate) fn commission(device: &PtyMachine) {
+    let plan = sealed(TANK, SERIAL);
+    let ran = on(device, &["commission", plan.file.to_str().unwrap()]);
+    assert_eq!(ran.exit, 0, "{}", ran.err);
 }
 
 /// The one JSON document on standard output.

@@ -1,6 +1,8 @@
 //! Collecting: complete, resumed after a kill, resumed after an interruption.
 
-use crate::bench::{Ran, Swing, commissioned, document, on, run, run_for, strake};
+use crate::bench::{
+    Ran, Swing, commission, commissioned, device_with_ring, document, on, run, run_for, strake,
+};
 use std::fs;
 use std::path::{Path, PathBuf};
 use std::process::{Child, Command, Stdio};
@@ -84,7 +86,7 @@ fn stuck(device: &PtyMachine, folder: &Path) -> Child {
     let child = command.args(arguments).stdout(Stdio::piped()).stderr(Stdio::piped());
     let child = child.spawn().unwrap();
     let part = folder.join("pump-house-7.strake-journal.part");
-    let deadline = Instant::now() + Duration::from_secs(120);
+    let deadline = Instant::now() + Duration::from_mins(2);
     while fs::metadata(&part).map_or(0, |part| part.len()) < 3 * 4096 {
         assert!(Instant::now() < deadline, "no part file grows");
         sleep(Duration::from_millis(5));
@@ -141,4 +143,47 @@ fn a_file_in_the_way_is_never_overwritten() {
     assert_eq!(ran.exit, 3, "{}", ran.err);
     assert!(ran.err.contains("is not a journal file"), "{}", ran.err);
     assert_eq!(fs::read_to_string(&part).unwrap(), "somebody else's notes");
+}
+
+#[test]
+fn what_the_device_overwrote_in_between_is_counted_and_never_called_complete() {
+    let mut device = device_with_ring(Swing { low_m: 3.0, high_m: 6.0 }, 32);
+    commission(&device);
+    run_for(&device, 2 * DAY_MS);
+    let folder = tempfile::tempdir().unwrap();
+    let mut child = stuck(&device, folder.path());
+    child.kill().unwrap();
+    child.wait().unwrap();
+    // The ring goes round meanwhile.
+    run_for(&device, 4 * DAY_MS);
+    device.plug_in().unwrap();
+    let arguments = ["collect", "-o", folder.path().to_str().unwrap(), "--format", "json"];
+    let ran = on(&device, &arguments);
+    assert_eq!(ran.exit, 6, "{}", ran.err);
+    let document = document(&ran);
+    assert_eq!(document["complete"], false);
+    assert_eq!(document["missing_sectors"], 0);
+    let [resumed, gone, sectors, newest] =
+        ["resumed_sectors", "gone_sectors", "sectors", "newest_sector"]
+            .map(|key| document[key].as_u64().unwrap());
+    assert!(resumed >= 2 && gone > 10, "{document}");
+    assert_eq!(gone + sectors, newest + 1, "every sector is taken or counted");
+}
+
+#[test]
+fn damage_on_the_device_is_counted_beside_a_complete_file() {
+    let device = with_a_journal();
+    device
+        .with(|machine| {
+            let journal = machine.bench().journal.clone();
+            // In the tenth sector, behind its header and checkpoint.
+            journal.with(|flash| flash.corrupt(9 * 4096 + 2000, 2, |byte| byte ^ 0x55));
+        })
+        .unwrap();
+    let folder = tempfile::tempdir().unwrap();
+    let ran = on(&device, &["collect", "-o", folder.path().to_str().unwrap()]);
+    assert_eq!((ran.exit, ran.err.as_str()), (6, ""));
+    assert!(ran.out.contains("complete: everything that the device held"), "{}", ran.out);
+    let damaged = "  - 1 sector with places that cannot be read, as on the device\n";
+    assert!(ran.out.contains(damaged), "{}", ran.out);
 }

@@ -1,7 +1,10 @@
 //! Commissioning: the difference shown, the plan loaded and read back, refusals.
 
-use crate::bench::{SERIAL, Swing, TANK, device, document, on, sealed};
-use std::fs;
+use crate::bench::{Ran, SERIAL, Sealed, Swing, TANK, device, document, on, sealed, strake};
+use serialport::{SerialPort, TTYPort};
+use std::fs::{self, File};
+use std::io::{Read, Write};
+use strake::sim::pty::PtyMachine;
 
 #[test]
 fn a_fresh_device_takes_the_plan_and_the_time() {
@@ -118,4 +121,36 @@ fn a_damaged_plan_file_goes_no_further_than_the_desk() {
     let ran = on(&device, &["commission", absent.to_str().unwrap()]);
     assert_eq!(ran.exit, 3);
     assert!(ran.err.contains("hint: give the file that 'strake seal' wrote"), "{}", ran.err);
+}
+
+/// Commissions as a person at a terminal who types `answer`; gives what the terminal showed too.
+fn answering(answer: &str, device: &PtyMachine, plan: &Sealed) -> (Ran, String) {
+    let (mut keyboard, terminal) = TTYPort::pair().unwrap();
+    keyboard.write_all(answer.as_bytes()).unwrap();
+    let screen = || {
+        let name = terminal.name().unwrap();
+        File::options().read(true).write(true).open(name).unwrap()
+    };
+    let arguments = ["commission", plan.file.to_str().unwrap(), "--port", device.port()];
+    let mut command = strake();
+    let ran = command.args(arguments).stdin(screen()).stderr(screen()).output().unwrap();
+    let mut shown = [0; 4096];
+    let count = keyboard.read(&mut shown).unwrap();
+    (Ran::from(ran), String::from_utf8(shown[..count].to_vec()).unwrap())
+}
+
+#[test]
+fn on_a_terminal_the_technician_is_asked() {
+    let device = device(Swing::still(5.0));
+    let plan = sealed(TANK, SERIAL);
+    let (ran, shown) = answering("n\n", &device, &plan);
+    assert_eq!(ran.exit, 8);
+    assert!(shown.starts_with("load this plan into pump house 7? [y/N] "), "{shown}");
+    assert!(shown.contains("not confirmed: nothing was changed"), "{shown}");
+    let status = document(&on(&device, &["status", "--format", "json"]));
+    assert!(status["plan"].is_null());
+
+    let (ran, _) = answering("y\n", &device, &plan);
+    assert_eq!(ran.exit, 0);
+    assert!(ran.out.contains("plan in force, read back and identical"), "{}", ran.out);
 }

@@ -7,4 +7,5 @@ mod bench;
 mod collect;
 mod commission;
 mod no_device;
+mod over_port;
 mod status;

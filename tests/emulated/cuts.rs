@@ -21,9 +21,9 @@ use std::time::Instant;
 use strake_core::journal::Entry;
 use strake_oracle::random::Random;
 
+use crate::device::connect;
 use crate::flash_file::FlashFile;
 use crate::image::Image;
-use crate::link::client;
 use crate::plugin::{CUT_STATUS, Store, recorded, recording_power_cut};
 use crate::toolchain::{image, image_with};
 use crate::{Outcome, Test};
@@ -90,7 +90,7 @@ fn restart(
     cut: &Content,
 ) -> Result<(Seen, FlashFile), Box<dyn Error>> {
     let mut machine = machine(image, flash, cut, None)?;
-    let mut client = client(machine.link()?)?;
+    let mut client = connect(&mut machine)?;
     let head = client.head()?;
     let (boot, plan) = (client.identity().boot, client.identity().plan_fingerprint);
     let contact = machine.contact()?;

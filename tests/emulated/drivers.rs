@@ -12,7 +12,7 @@ use crate::machine::{Machine, Setup};
 use crate::plugin::{CUT_STATUS, Span, instruction_count, power_cut};
 use crate::sensor::Mood;
 use crate::toolchain;
-use crate::{Outcome, Test};
+use crate::{Outcome, Test, hold, same};
 
 pub(crate) const TESTS: &[Test] = tests![
     every_driver_passes_its_check,
@@ -53,17 +53,6 @@ fn ask(machine: &mut Machine, command: &str) -> Result<String, Box<dyn Error>> {
     let line = machine.receive_line()?;
     let answer = line.strip_prefix("ok ").ok_or(format!("{command}: the device says {line}"))?;
     Ok(answer.to_owned())
-}
-
-fn same<T: PartialEq + std::fmt::Debug + ?Sized>(found: &T, expected: &T) -> Outcome {
-    if found == expected {
-        return Ok(());
-    }
-    Err(format!("found {found:?}, expected {expected:?}").into())
-}
-
-fn hold(condition: bool, what: &str) -> Outcome {
-    if condition { Ok(()) } else { Err(what.into()) }
 }
 
 fn every_driver_passes_its_check() -> Outcome {

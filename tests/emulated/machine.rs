@@ -62,9 +62,9 @@ impl Setup {
         self
     }
 
-    /// The sensor's first register holds this from the beginning.
-    pub(crate) fn register(self, value: u16) -> Self {
-        self.sensor.set_register(0, value);
+    /// The sensor has this value in a register from the start.
+    pub(crate) fn register(self, register: u16, value: u16) -> Self {
+        self.sensor.set_register(register, value);
         self
     }
 

@@ -10,12 +10,13 @@ macro_rules! tests {
 
 mod bits;
 mod cuts;
+mod device;
 mod drivers;
 mod flash_file;
 mod image;
-mod link;
 mod log;
 mod machine;
+mod operation;
 mod plugin;
 mod qmp;
 mod sensor;
@@ -29,6 +30,19 @@ type Outcome = Result<(), Box<dyn std::error::Error>>;
 /// A test: its name and what it runs.
 type Test = (&'static str, fn() -> Outcome);
 
+/// An error unless both are the same.
+fn same<T: PartialEq + std::fmt::Debug + ?Sized>(found: &T, expected: &T) -> Outcome {
+    if found == expected {
+        return Ok(());
+    }
+    Err(format!("found {found:?}, expected {expected:?}").into())
+}
+
+/// An error that says `what` unless the condition holds.
+fn hold(condition: bool, what: &str) -> Outcome {
+    if condition { Ok(()) } else { Err(what.into()) }
+}
+
 /// A test of this name, ignored when `missing` says what this machine lacks.
 fn trial(missing: Option<&'static str>, (name, run): Test) -> Trial {
     let trial = Trial::test(name, move || run().map_err(|error| Failed::from(error.to_string())));
@@ -41,7 +55,7 @@ fn trial(missing: Option<&'static str>, (name, run): Test) -> Trial {
 fn main() {
     let arguments = Arguments::from_args();
     let missing = toolchain::missing();
-    let trials: Vec<Trial> = [drivers::TESTS, bits::TESTS, cuts::TESTS]
+    let trials: Vec<Trial> = [drivers::TESTS, bits::TESTS, cuts::TESTS, operation::TESTS]
         .into_iter()
         .flatten()
         .map(|&test| trial(missing.as_ref().map(|(what, _)| *what), test))

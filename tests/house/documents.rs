@@ -167,6 +167,34 @@ fn files_of_the_documents_exist() {
     none("a path that leads nowhere", &findings);
 }
 
+/// Rooms of a crate, by the modules that its root declares.
+fn rooms(root: &str) -> Vec<&str> {
+    root.lines()
+        .filter_map(|line| line.trim_start_matches("pub ").strip_prefix("mod "))
+        .filter_map(|line| line.strip_suffix(';'))
+        .filter(|name| *name != "tests")
+        .collect()
+}
+
+#[test]
+fn every_room_and_folder_of_tests_is_in_the_guide() {
+    let guide = &files::named("DEVELOPERS.md").text;
+    let section = guide.split("\n## Rooms").nth(1).and_then(|rest| rest.split("\n## ").next());
+    let section = section.expect("the guide has rooms");
+    let mut names = Vec::new();
+    for root in ["shared_core/src/lib.rs", "firmware/src/lib.rs", "host/src/lib.rs"] {
+        names.extend(rooms(&files::named(root).text));
+    }
+    names.extend(files::ALL.iter().filter_map(|file| {
+        file.path.strip_prefix("tests/").and_then(|rest| rest.split_once('/')).map(|(name, _)| name)
+    }));
+    names.sort_unstable();
+    names.dedup();
+    names.retain(|name| !section.contains(&format!("`{name}`")));
+    let missing: Vec<_> = names.into_iter().map(str::to_owned).collect();
+    none("a room that DEVELOPERS.md does not name", &missing);
+}
+
 #[test]
 fn the_readme_gives_the_two_commands() {
     let readme = files::named("README.md");
@@ -197,6 +225,7 @@ fn the_rules_find_what_they_should() {
         Some(vec!["trial".to_owned(), "--duration".to_owned(), "12 h".to_owned()])
     });
     assert_eq!(called("cargo test -p strake"), None);
+    assert_eq!(rooms("pub mod a;\nmod b;\n#[cfg(test)]\nmod tests;\nuse c;"), ["a", "b"]);
     assert_eq!(missing_paths(&file("`host/src/lib.rs` `host/no.rs` `configs/NAME.toml`")).len(), 1);
     assert_eq!(missing_paths(&file("`.ci/run` `.ci/no`")).len(), 1);
 }

@@ -25,7 +25,7 @@ impl<B: Board> Device<B> {
             hardware;
         let Hardware { retained, watchdog, device_id, reset_cause, .. } = hardware;
         let mut plans = PlanStore::open(plans);
-        let mut restored = Restored { plans: &mut plans, memory: &mut *memory, in_force: None };
+        let mut restored = Restored { plans: &mut plans, memory: &mut memory, in_force: None };
         let (journal, recovery) = match Journal::open_in(waiting, journal, &mut restored) {
             Ok((journal, recovery)) => (Some(journal), recovery),
             Err(_) => (None, Recovery::default()),
@@ -65,11 +65,13 @@ impl<B: Board> Device<B> {
 
     /// Samples that waited in RAM when the controller restarted warm: pushed and evaluated like
     /// fresh ones. They belong to the start before this one.
+    // Apart, so that its room on the stack is not taken while the journal is read back.
+    #[inline(never)]
     fn carry_over(&mut self, recovery: &Recovery) -> u8 {
         let Some(journal) = &mut self.journal else { return 0 };
-        let Ok(waiting) = journal.carried(&self.retained, &WAITING_AREA, recovery) else {
-            return 0;
-        };
+        let carried = journal.carried(&self.retained, &WAITING_AREA, recovery);
+        // By reference: they are many bytes to move.
+        let Ok(waiting) = &carried else { return 0 };
         if self.in_force.is_none() {
             return 0;
         }
@@ -88,6 +90,7 @@ impl<B: Board> Device<B> {
         count
     }
 
+    #[inline(never)]
     fn begin(&mut self, cause: ResetCause, carried: u8, recovery: &Recovery) {
         let tick_ms = self.clock.now_ms();
         let missing_ms_max = match (cause, self.in_force) {

@@ -115,7 +115,7 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         recovery: &Recovery,
     ) -> Result<Waiting, F::Error> {
         let boot = recovery.last_boot;
-        let left = Waiting::load(memory, area, boot);
+        let mut left = Waiting::load(memory, area, boot);
         let mut last_tick_ms = recovery.last_tick_ms;
         // A sector that was opened just now holds no sample yet.
         if let Some(newest) = recovery.newest_sequence
@@ -125,11 +125,10 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         {
             last_tick_ms = self.ring.last_tick_ms(before, boot)?;
         }
-        let mut carried = Waiting::default();
-        for sample in left.iter().filter(|sample| Some(sample.tick_ms) > last_tick_ms) {
-            carried.push(sample);
-        }
-        Ok(carried)
+        // Ticks of one start rise, so what the journal holds already comes first.
+        let held = left.iter().take_while(|sample| Some(sample.tick_ms) <= last_tick_ms).count();
+        left.drop_first(held);
+        Ok(left)
     }
 }
 

@@ -12,8 +12,8 @@ use strake_core::wire::{
 #[derive(Debug)]
 pub(super) struct Memory {
     plan: PlanLoad,
-    /// Kind and token of the order done last: the same again is answered, not done again.
-    order: Option<(Kind, u32)>,
+    /// Number of the kind and token of the order done last: the same again is answered, not done again.
+    order: Option<(u8, u32)>,
 }
 
 impl From<Malformed> for Refusal {
@@ -105,9 +105,9 @@ impl Memory {
         token: u32,
         order: impl FnOnce() -> Result<(), Refusal>,
     ) -> Result<Done, Refusal> {
-        if self.order != Some((kind, token)) {
+        if self.order != Some((kind.number(), token)) {
             order()?;
-            self.order = Some((kind, token));
+            self.order = Some((kind.number(), token));
         }
         Ok(Done { token })
     }

@@ -1,5 +1,6 @@
 //! The plan on the desk: the core's pressure states at stated levels.
 
+use super::part::single;
 use crate::compile::{Compiled, HEIGHT_MAX_M};
 use crate::inverse::{Interval, LimitedBy};
 use crate::tank::TankFile;
@@ -48,8 +49,8 @@ impl Desk {
 
     /// Levels above the range, up to where a plan ends: for a capacity that outlasts the tank.
     #[must_use]
-    pub const fn beyond(&self) -> Interval {
-        Interval { low_m: self.plan.overflow_m, high_m: HEIGHT_MAX_M as f32 }
+    pub fn beyond(&self) -> Interval {
+        Interval { low_m: self.plan.overflow_m, high_m: single(HEIGHT_MAX_M) }
     }
 
     /// What ends the range.

@@ -100,7 +100,7 @@ pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
     let target = args.output.join(format!("{name}-{}.strake-journal", utc::stamp(utc_s)));
     part.finish(&collected.head, &target, false)?;
     let check = check(&mut JournalFile::open(&target)?)?;
-    let document = Document::new(port, device_id, &target, &collected, check);
+    let document = Document::new(port, device_id, &target, &collected, &check);
     match term.settings().format {
         Format::Json => term.document(&document)?,
         Format::Text => {
@@ -139,7 +139,7 @@ impl Document {
         device_id: String,
         target: &Path,
         collected: &Collected,
-        check: JournalCheck,
+        check: &JournalCheck,
     ) -> Self {
         Self {
             schema: "strake.collect/1",

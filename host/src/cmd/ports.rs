@@ -47,7 +47,7 @@ pub fn run(_: &Args, term: &mut Term) -> Result<Exit, Failure> {
             term.document(&Document { schema: "strake.ports/1", ports })?;
         }
         Format::Text => {
-            let text = text(&found, term);
+            let text = text(&found, term.colour_out());
             term.result(&text)?;
         }
     }
@@ -76,8 +76,8 @@ fn row(found: FoundDevice) -> Row {
     }
 }
 
-fn text(found: &[FoundDevice], term: &Term) -> String {
-    let mut page = Page::new(term.colour_out());
+fn text(found: &[FoundDevice], coloured: bool) -> String {
+    let mut page = Page::new(coloured);
     if found.is_empty() {
         page.line("no serial port on this computer; connect the device and switch it on");
     }
@@ -99,4 +99,47 @@ fn text(found: &[FoundDevice], term: &Term) -> String {
         }
     }
     page.into_text()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::{row, text};
+    use crate::link::{FoundDevice, PortError};
+    use strake_core::wire::{Identity, Text};
+
+    fn two_ports() -> Vec<FoundDevice> {
+        let identity = Identity {
+            device_id: Text::new("yard 2").unwrap(),
+            firmware: Text::new("0.1.0").unwrap(),
+            plan_fingerprint: 0xAB,
+            plan_serial: 1_780_000_000,
+            ..Identity::default()
+        };
+        let busy = PortError::Busy { port: "COM4".to_owned() };
+        vec![
+            FoundDevice { port: "COM31".to_owned(), device: Ok(identity) },
+            FoundDevice { port: "COM4".to_owned(), device: Err(busy.into()) },
+        ]
+    }
+
+    #[test]
+    fn each_port_says_who_answers_or_why_nobody_does() {
+        assert_eq!(
+            text(&two_ports(), false),
+            "COM31  yard 2, firmware 0.1.0, plan 00000000000000ab, sealed 2026-05-28 20:26:40 UTC\n\
+             COM4   no device: port COM4 is in use by another program; close that program and \
+             repeat\n"
+        );
+        assert!(text(&[], false).starts_with("no serial port on this computer"));
+    }
+
+    #[test]
+    fn a_row_has_a_device_or_an_error() {
+        let rows: Vec<_> = two_ports().into_iter().map(row).collect();
+        let document = serde_json::to_value(&rows).unwrap();
+        assert_eq!(document[0]["device"]["id"], "yard 2");
+        assert_eq!(document[0]["plan_serial"], 1_780_000_000);
+        assert!(document[0]["error"].is_null() && document[1]["device"].is_null());
+        assert_eq!(document[1]["error"]["code"], "port-busy");
+    }
 }

@@ -13,9 +13,9 @@ impl From<LinkError> for Failure {
             LinkError::Silent { .. } => (Exit::NoDevice, "silent"),
             LinkError::NotStrake { .. } => (Exit::NoDevice, "not-strake"),
             LinkError::Noisy { .. } => (Exit::NoDevice, "noisy"),
-            LinkError::Version(_) => (Exit::VersionMismatch, "version"),
             LinkError::Refused { code: ErrorCode::Busy, .. } => (Exit::NoDevice, "device-busy"),
-            LinkError::Refused { code: ErrorCode::PlanFormat, .. }
+            LinkError::Version(_)
+            | LinkError::Refused { code: ErrorCode::PlanFormat, .. }
             | LinkError::UnknownCode { .. }
             | LinkError::Nonsense { .. } => (Exit::VersionMismatch, "version"),
             LinkError::Refused { .. } => (Exit::Refused, "refused"),

@@ -33,7 +33,7 @@ impl Words {
                 self.show(*design_point_m, Length)
             ),
             Geometry::Plane { shape, sine, centroid_above_m: _, bolts } => {
-                let mut text = match shape {
+                let shape_words = match shape {
                     Shape::Circle(circle) => {
                         let diameter_m = 2.0 * f64::from(circle.radius_m());
                         format!("circle, diameter {}", self.show(diameter_m, Length))
@@ -50,14 +50,15 @@ impl Words {
                         format!("level, as large as a square of {}", self.show(side_m, Length))
                     }
                 };
-                if !matches!(shape, Shape::Level { .. }) {
+                let slope = if matches!(shape, Shape::Level { .. }) {
+                    String::new()
+                } else {
                     let degrees = f64::from(*sine).asin().to_degrees();
-                    text.push_str(&format!(", {} from level", self.show(degrees, AngleDegrees)));
-                }
-                if let Some(bolts) = bolts {
-                    text.push_str(&format!(", {} bolts", bolts.pattern().count));
-                }
-                text
+                    format!(", {} from level", self.show(degrees, AngleDegrees))
+                };
+                let bolts = bolts.as_ref().map(|bolts| bolts.pattern().count);
+                let bolts = bolts.map_or_else(String::new, |count| format!(", {count} bolts"));
+                format!("{shape_words}{slope}{bolts}")
             }
         }
     }

@@ -6,6 +6,9 @@ use crate::plan_file::PlanFile;
 use crate::units::UnitSystem::{Si, UsCustomary};
 use strake_core::plan::Plan;
 
+/// Changes one number.
+type Move = fn(&mut Plan);
+
 fn brine() -> PlanFile {
     let text = include_bytes!("../../../configs/brine_day_tank.toml");
     let file = crate::tank::parse("brine_day_tank.toml", text).unwrap();
@@ -45,7 +48,7 @@ fn a_plan_reads_as_its_tank_file() {
 #[test]
 fn every_number_that_moves_is_told_even_below_the_last_digit() {
     let old = brine();
-    let moves: &[(&str, fn(&mut Plan))] = &[
+    let moves: &[(&str, Move)] = &[
         ("gravity", |plan| plan.gravity_m_s2 = 9.81),
         ("shell top", |plan| plan.shell_top_m = plan.shell_top_m.next_up()),
         ("overflow", |plan| plan.overflow_m = 9.2),

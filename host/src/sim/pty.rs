@@ -92,8 +92,10 @@ impl PtyMachine {
     }
 
     fn order(&self, order: Order) -> Result<(), PortError> {
-        let sent = self.orders.as_ref().map(|orders| orders.send(order));
-        if let Some(Ok(())) = sent { Ok(()) } else { Err(self.stopped()) }
+        match &self.orders {
+            Some(orders) if orders.send(order).is_ok() => Ok(()),
+            _ => Err(self.stopped()),
+        }
     }
 
     fn stopped(&self) -> PortError {

@@ -72,17 +72,19 @@ impl Bolts {
 
     /// Largest share of a resultant, N: of the lowest or the highest bolt.
     #[must_use]
+    #[inline]
     pub fn largest<const N: usize>(&self, whole: &Resultant<N>) -> Lane<N> {
-        self.share(self.lowest, whole).at_least(self.share(self.highest, whole))
+        self.share(&self.lowest, whole).at_least(self.share(&self.highest, whole))
     }
 
     #[inline]
-    fn share<const N: usize>(&self, bolt: ExtremeBolt, r: &Resultant<N>) -> Lane<N> {
+    fn share<const N: usize>(&self, bolt: &ExtremeBolt, r: &Resultant<N>) -> Lane<N> {
         r.force_n * self.per_bolt + r.moment_n_m * bolt.per_moment
     }
 
     /// Bounds of the largest and the least share, N: `[largest, least]`.
     #[must_use]
+    #[inline]
     pub fn bounds<const N: usize>(
         &self,
         shape: &Shape,
@@ -90,28 +92,33 @@ impl Bolts {
         upper: (&Pressure<N>, &Resultant<N>),
         lower: (&Pressure<N>, &Resultant<N>),
     ) -> [Lane<N>; 2] {
-        let mut largest = None;
-        let mut least = None;
-        for bolt in [self.lowest, self.highest] {
-            let (high, low) = match bolt.cut {
-                None => (self.share(bolt, upper.1), self.share(bolt, lower.1)),
-                Some(cut) => {
-                    let below_upper = self.share(bolt, &upper.0.below(&cut, shape, bottom_m));
-                    let below_lower = self.share(bolt, &lower.0.below(&cut, shape, bottom_m));
-                    let above_upper = self.share(bolt, upper.1) - below_upper;
-                    let above_lower = self.share(bolt, lower.1) - below_lower;
-                    // The lowest bolt's weighting is positive below its cut, the highest's above.
-                    if bolt.per_moment < 0.0 {
-                        (below_upper + above_lower, below_lower + above_upper)
-                    } else {
-                        (above_upper + below_lower, above_lower + below_upper)
-                    }
-                }
-            };
-            largest = Some(largest.map_or(high, |other: Lane<N>| other.at_least(high)));
-            least = Some(least.map_or(low, |other: Lane<N>| other.at_most(low)));
+        let [low_most, low_least] = self.bolt_bounds(&self.lowest, shape, bottom_m, upper, lower);
+        let [high_most, high_least] =
+            self.bolt_bounds(&self.highest, shape, bottom_m, upper, lower);
+        [low_most.at_least(high_most), low_least.at_most(high_least)]
+    }
+
+    /// `[largest, least]` share of one bolt.
+    fn bolt_bounds<const N: usize>(
+        &self,
+        bolt: &ExtremeBolt,
+        shape: &Shape,
+        bottom_m: f32,
+        upper: (&Pressure<N>, &Resultant<N>),
+        lower: (&Pressure<N>, &Resultant<N>),
+    ) -> [Lane<N>; 2] {
+        let (whole_upper, whole_lower) = (self.share(bolt, upper.1), self.share(bolt, lower.1));
+        let Some(cut) = &bolt.cut else { return [whole_upper, whole_lower] };
+        let below_upper = self.share(bolt, &upper.0.below(cut, shape, bottom_m));
+        let below_lower = self.share(bolt, &lower.0.below(cut, shape, bottom_m));
+        let above_upper = whole_upper - below_upper;
+        let above_lower = whole_lower - below_lower;
+        // The lowest bolt's weighting is positive below its cut, the highest's above.
+        if bolt.per_moment < 0.0 {
+            [below_upper + above_lower, below_lower + above_upper]
+        } else {
+            [above_upper + below_lower, above_lower + below_upper]
         }
-        [largest.unwrap_or(Lane::ZERO), least.unwrap_or(Lane::ZERO)]
     }
 }
 

@@ -47,6 +47,30 @@ impl<const N: usize> Loads<N> {
         moment_centroid_n_m: Lane::ZERO,
         bolt_n: Lane::ZERO,
     };
+
+    /// Hoop tension `p D / 2` at the design point (thin cylinder; Timoshenko, Strength of
+    /// Materials).
+    #[inline]
+    fn of_course(pressure_pa: Lane<N>, half_diameter_m: f32) -> Self {
+        Self { pressure_pa, hoop_tension_n_m: pressure_pa * half_diameter_m, ..Self::NONE }
+    }
+
+    #[inline]
+    fn of_plane(pressure_pa: Lane<N>, force_n: Lane<N>) -> Self {
+        Self { pressure_pa, force_n, ..Self::NONE }
+    }
+}
+
+impl<const N: usize> PartLoads<N> {
+    /// No load.
+    pub(crate) const NONE: Self = Self {
+        estimate: Loads::NONE,
+        outward: Loads::NONE,
+        inward: Loads::NONE,
+        utilisation: Lane::ZERO,
+        utilisation_bound: Lane::ZERO,
+        utilisation_inward: Lane::ZERO,
+    };
 }
 
 /// All loads and utilisations of one part.
@@ -54,10 +78,24 @@ impl<const N: usize> Loads<N> {
 /// Error of each load against the exact integral: 2e-6 of `integral |p| |w| dz`.
 #[must_use]
 pub fn evaluate<const N: usize>(plan: &Plan, part: &Part, states: &States<N>) -> PartLoads<N> {
+    let mut loads = PartLoads::NONE;
+    evaluate_into(plan, part, states, &mut loads);
+    loads
+}
+
+/// [`evaluate`] into room that is already there: on the device a copy costs as much as a part.
+#[inline]
+pub(crate) fn evaluate_into<const N: usize>(
+    plan: &Plan,
+    part: &Part,
+    states: &States<N>,
+    loads: &mut PartLoads<N>,
+) {
     if part.outside == 0 {
-        return judge(part, states);
+        judge(part, states, loads);
+    } else {
+        judge(part, &acting(plan, part, states), loads);
     }
-    judge(part, &acting(plan, part, states))
 }
 
 /// The states as they act on one part: those of the tank, less the liquid that stands against the
@@ -80,62 +118,43 @@ pub fn acting<const N: usize>(plan: &Plan, part: &Part, states: &States<N>) -> S
     with
 }
 
-fn judge<const N: usize>(part: &Part, states: &States<N>) -> PartLoads<N> {
+fn judge<const N: usize>(part: &Part, states: &States<N>, loads: &mut PartLoads<N>) {
     let States { estimate, upper, lower, .. } = states;
-    let [estimate_loads, outward, inward] = match &part.geometry {
-        Geometry::Course { .. } => [estimate, upper, lower].map(|state| course(part, state)),
-        Geometry::Plane { .. } => plane(part, estimate, upper, lower),
-    };
-    let utilisation = outward_utilisation(part, estimate, &estimate_loads);
-    let utilisation_bound = outward_utilisation(part, upper, &outward);
-    let utilisation_inward =
-        if part.judged_inward() { inward_utilisation(part, lower, &inward) } else { Lane::ZERO };
-    PartLoads {
-        estimate: estimate_loads,
-        outward,
-        inward,
-        utilisation,
-        utilisation_bound,
-        utilisation_inward,
+    match &part.geometry {
+        Geometry::Course { half_diameter_m, design_point_m, .. } => {
+            let point_m = Lane::splat(*design_point_m);
+            loads.estimate = Loads::of_course(estimate.at(point_m), *half_diameter_m);
+            loads.outward = Loads::of_course(upper.at(point_m), *half_diameter_m);
+            loads.inward = Loads::of_course(lower.at(point_m), *half_diameter_m);
+        }
+        Geometry::Plane { shape, bolts, .. } => {
+            let middle = estimate.on(shape, part.bottom_m);
+            let most = upper.on(shape, part.bottom_m);
+            let least = lower.on(shape, part.bottom_m);
+            loads.estimate = Loads::of_plane(largest_pressure(part, estimate), middle.force_n);
+            loads.estimate.moment_centroid_n_m = middle.moment_n_m;
+            loads.outward = Loads::of_plane(largest_pressure(part, upper), most.force_n);
+            loads.inward = Loads::of_plane(least_pressure(part, lower), least.force_n);
+            if let Some(bolts) = bolts {
+                loads.estimate.bolt_n = bolts.largest(&middle);
+                [loads.outward.bolt_n, loads.inward.bolt_n] =
+                    bolts.bounds(shape, part.bottom_m, (upper, &most), (lower, &least));
+            }
+        }
     }
-}
-
-/// Hoop tension `p D / 2` at the design point (thin cylinder; Timoshenko, Strength of Materials).
-fn course<const N: usize>(part: &Part, state: &Pressure<N>) -> Loads<N> {
-    let Geometry::Course { half_diameter_m, design_point_m, .. } = part.geometry else {
-        return Loads::NONE;
+    [loads.utilisation, loads.utilisation_bound] = if part.judged_outward() {
+        [
+            outward_utilisation(part, estimate, &loads.estimate),
+            outward_utilisation(part, upper, &loads.outward),
+        ]
+    } else {
+        [Lane::ZERO; 2]
     };
-    let pressure_pa = state.at(Lane::splat(design_point_m));
-    Loads { pressure_pa, hoop_tension_n_m: pressure_pa * half_diameter_m, ..Loads::NONE }
-}
-
-fn plane<const N: usize>(
-    part: &Part,
-    estimate: &Pressure<N>,
-    upper: &Pressure<N>,
-    lower: &Pressure<N>,
-) -> [Loads<N>; 3] {
-    let Geometry::Plane { shape, bolts, .. } = &part.geometry else {
-        return [Loads::NONE; 3];
+    loads.utilisation_inward = if part.judged_inward() {
+        inward_utilisation(part, lower, &loads.inward)
+    } else {
+        Lane::ZERO
     };
-    let [middle, most, least] =
-        [estimate, upper, lower].map(|state| state.on(shape, part.bottom_m));
-    let mut estimate_loads = Loads {
-        pressure_pa: largest_pressure(part, estimate),
-        force_n: middle.force_n,
-        moment_centroid_n_m: middle.moment_n_m,
-        ..Loads::NONE
-    };
-    let mut outward =
-        Loads { pressure_pa: largest_pressure(part, upper), force_n: most.force_n, ..Loads::NONE };
-    let mut inward =
-        Loads { pressure_pa: least_pressure(part, lower), force_n: least.force_n, ..Loads::NONE };
-    if let Some(bolts) = bolts {
-        estimate_loads.bolt_n = bolts.largest(&middle);
-        [outward.bolt_n, inward.bolt_n] =
-            bolts.bounds(shape, part.bottom_m, (upper, &most), (lower, &least));
-    }
-    [estimate_loads, outward, inward]
 }
 
 /// Heights at which a pressure difference can be extreme on a part: its ends and every surface
@@ -202,23 +221,25 @@ fn inward_utilisation<const N: usize>(
 }
 
 /// `max over the stated capacities of sign * load / capacity`, not below zero.
+#[inline]
 fn ratio<const N: usize>(
     capacities: &Capacities,
     pressure_pa: Lane<N>,
     loads: &Loads<N>,
     sign: f32,
 ) -> Lane<N> {
-    let pairs = [
-        (capacities.pressure_pa, pressure_pa),
-        (capacities.hoop_tension_n_m, loads.hoop_tension_n_m),
-        (capacities.force_n, loads.force_n),
-        (capacities.bolt_n, loads.bolt_n),
-    ];
     let mut largest = Lane::ZERO;
-    for (capacity, load) in pairs {
-        if let Some(capacity) = capacity {
-            largest = largest.at_least(load * sign / Lane::splat(capacity));
-        }
+    if let Some(capacity) = capacities.pressure_pa {
+        largest = largest.at_least(pressure_pa * sign / Lane::splat(capacity));
+    }
+    if let Some(capacity) = capacities.hoop_tension_n_m {
+        largest = largest.at_least(loads.hoop_tension_n_m * sign / Lane::splat(capacity));
+    }
+    if let Some(capacity) = capacities.force_n {
+        largest = largest.at_least(loads.force_n * sign / Lane::splat(capacity));
+    }
+    if let Some(capacity) = capacities.bolt_n {
+        largest = largest.at_least(loads.bolt_n * sign / Lane::splat(capacity));
     }
     largest
 }

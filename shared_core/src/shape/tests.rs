@@ -105,7 +105,8 @@ proptest! {
         let together = [shape.wetted(Lane(surfaces)), cut.wetted(&shape, Lane(surfaces))];
         for (lane, surface_m) in surfaces.into_iter().enumerate() {
             let one = Lane([surface_m]);
-            for (many, alone) in together.into_iter().zip([shape.wetted(one), cut.wetted(&shape, one)]) {
+            let singly = [shape.wetted(one), cut.wetted(&shape, one)];
+            for (many, alone) in together.into_iter().zip(singly) {
                 for (many, alone) in [(many.q0, alone.q0), (many.q1, alone.q1)] {
                     let bits = [many.lane(lane), alone.lane(0)].map(|q| (q + 0.0).to_bits());
                     prop_assert_eq!(bits[0], bits[1]);

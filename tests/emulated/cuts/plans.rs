@@ -13,6 +13,8 @@ use strake_core::plan::{
 use strake_core::plan_slot::fingerprint;
 use strake_core::shape::{Rectangle, Shape};
 
+/// The register that holds the level.
+pub(super) const REGISTER: u16 = 3;
 /// Count that stands for a level without any alarm, and one above every threshold; millimetres.
 pub(super) const LOW_MM: u16 = 2_000;
 pub(super) const HIGH_MM: u16 = 9_000;
@@ -68,7 +70,7 @@ fn plan(capacity_pa: f32) -> Plan {
         gas: Gas { lowest_pa: 0.0, nominal_pa: 0.0, highest_pa: 0.0 },
         level: LevelPlan {
             sensor: LevelSensor::Surface,
-            signal: SignalKind::Register { unit: 1, function: 4, register: 0, coding: 0 },
+            signal: SignalKind::Register { unit: 1, function: 4, register: REGISTER, coding: 0 },
             value_per_count_16: 1.0 / 16_000.0,
             uncertainty: 0.01,
             failed_after_ms: 60_000,

@@ -8,13 +8,13 @@ use std::time::{Duration, Instant};
 
 use strake::link::Client;
 
+use crate::device::{ACT_NOW, TcpPort, connect};
 use crate::flash_file::FlashFile;
 use crate::image::Image;
-use crate::link::{TcpPort, client};
 use crate::machine::{Machine, PATIENCE, Setup};
 
 use super::flash::Content;
-use super::plans::{HIGH_MM, LOW_MM, Sealed};
+use super::plans::{HIGH_MM, LOW_MM, REGISTER, Sealed};
 
 /// Bytes in use in the open sector when the scenario begins.
 const NEARLY_FULL: usize = 3_720;
@@ -25,9 +25,9 @@ pub(super) type Plans = [Sealed; 2];
 /// Flash of a device that has a plan and an open sector that is nearly full. The sectors that are
 /// opened next are not blank, as in a ring that has gone round.
 pub(super) fn prepare(image: &Arc<Image>, plans: &Plans) -> Result<Content, Box<dyn Error>> {
-    let setup = Setup::new(image).register(LOW_MM).instruction_time(0, true);
+    let setup = Setup::new(image).register(REGISTER, LOW_MM).instruction_time(0, true);
     let mut machine = setup.start()?;
-    let mut client = client(machine.link()?)?;
+    let mut client = connect(&mut machine)?;
     load(&mut client, &plans[0])?;
     until("a sector is nearly full", || {
         let newest = Content::read(machine.flash())?.newest();
@@ -47,17 +47,17 @@ pub(super) fn play(machine: &mut Machine, plans: &Plans) -> Result<(), Box<dyn E
         let newest = Content::read(machine.flash())?.newest();
         Ok(newest.map(|(sequence, _)| sequence))
     };
-    let mut client = client(machine.link()?)?;
+    let mut client = connect(machine)?;
     let before = newest(machine)?;
     until("a sector closes", || {
         client.status()?;
         Ok(newest(machine)? > before)
     })?;
-    machine.sensor().set_register(0, HIGH_MM);
-    until("the alarm", || Ok(client.status()?.output == 2))?;
+    machine.sensor().set_register(REGISTER, HIGH_MM);
+    until("the alarm", || Ok(client.status()?.output == ACT_NOW))?;
     client.acknowledge()?;
     load(&mut client, &plans[1])?;
-    until("the alarm under the other plan", || Ok(client.status()?.output == 2))?;
+    until("the alarm under the other plan", || Ok(client.status()?.output == ACT_NOW))?;
     client.hello()?;
     let in_force = client.identity().plan_fingerprint;
     if in_force == plans[1].fingerprint { Ok(()) } else { Err("the first plan stayed".into()) }
@@ -90,7 +90,7 @@ pub(super) fn machine(
     plugin: Option<crate::plugin::Plugin>,
 ) -> Result<Machine, Box<dyn Error>> {
     content.write(&flash)?;
-    let setup = Setup::new(image).register(LOW_MM).flash(flash);
+    let setup = Setup::new(image).register(REGISTER, LOW_MM).flash(flash);
     match plugin {
         Some(plugin) => setup.plugin(plugin),
         None => setup,

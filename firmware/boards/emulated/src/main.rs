@@ -48,7 +48,11 @@ mod device {
 
     /// Apart from `main`, so that what the start needs of the stack is given back.
     #[inline(never)]
-    fn start(parts: Parts, space: &'static mut Space) -> App<Emulated> {
+    fn start(
+        parts: Parts,
+        space: &'static mut Space,
+        place: &'static mut MaybeUninit<App<Emulated>>,
+    ) -> &'static mut App<Emulated> {
         let Space { memory, server, waiting } = space;
         let hardware = Hardware {
             clock: parts.clock,
@@ -64,7 +68,7 @@ mod device {
             device_id: Text::new("EMULATED").unwrap_or_default(),
             reset_cause: parts.reset_cause,
         };
-        App::start(hardware, Rooms { memory, server, waiting })
+        place.write(App::start(hardware, Rooms { memory, server, waiting }))
     }
 
     #[cortex_m_rt::entry]
@@ -74,7 +78,7 @@ mod device {
         let Some(parts) = Parts::take() else { restart() };
         let clock = parts.clock;
         // Static too, so that its size counts as what it is.
-        let app = APP.write(start(parts, SPACE));
+        let app = start(parts, SPACE, APP);
         loop {
             sleep_until(clock, app.poll());
         }

@@ -94,7 +94,22 @@ pub(super) fn limits(sheet: &Sheet<'_>, page: &mut Page) {
              density and gas pressure; it holds no uncertainty of a sensor."
         ),
     );
+    for row in rows {
+        let several = row.judgement.limits.as_ref().filter(|one| one.limit_intervals_m.len() > 1);
+        if let Some(limits) = several {
+            intervals(sheet, page, row, &limits.limit_intervals_m);
+        }
+    }
     governing(sheet, page, rows);
+}
+
+/// A part that is within its capacities in more than one stretch: a limit level alone misleads.
+fn intervals(sheet: &Sheet<'_>, page: &mut Page, row: &PartRow, list: &[[f32; 2]]) {
+    let stretches = list.iter().map(|&[low_m, high_m]| {
+        format!("{} to {}", sheet.show(low_m, Length), sheet.show(high_m, Length))
+    });
+    let stretches = stretches.collect::<Vec<_>>().join(" and ");
+    page.paragraph("  ", &format!("{}: within its capacities from {stretches} only.", row.name));
 }
 
 fn governing(sheet: &Sheet<'_>, page: &mut Page, rows: &[PartRow]) {

@@ -55,7 +55,10 @@ proptest! {
 
     /// Bytes that are none are refused; what is taken is written back the same.
     #[test]
-    fn decoding_is_total(seed in any::<u64>(), noise in prop::collection::vec(any::<u8>(), 0..200)) {
+    fn decoding_is_total(
+        seed in any::<u64>(),
+        noise in prop::collection::vec(any::<u8>(), 0..200),
+    ) {
         let mut random = Random(seed);
         let plan = random::plan(&mut random);
         let mut bytes = encoded(&walked(&mut random, &plan));

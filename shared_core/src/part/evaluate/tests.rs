@@ -77,7 +77,8 @@ proptest! {
             for state in [&states.estimate, &states.upper, &states.lower] {
                 let found = state.on(shape, part.bottom_m);
                 let (gas, surfaces) = terms(state);
-                let kinks: Vec<f64> = surfaces.iter().map(|one| one.0).chain([strips.centroid_m]).collect();
+                let heights = surfaces.iter().map(|one| one.0);
+                let kinks: Vec<f64> = heights.chain([strips.centroid_m]).collect();
                 let size = |z: f64| {
                     surfaces.iter().filter(|one| one.0 > z)
                         .fold(gas.abs(), |p, (h, step)| p + step.abs() * (h - z))
@@ -89,7 +90,7 @@ proptest! {
                 let force_error = (f64::from(found.force_n.lane(0)) - force).abs();
                 let moment_error = (f64::from(found.moment_n_m.lane(0)) - moment).abs();
                 prop_assert!(force_error <= 2e-6 * force_size, "{} {}", force_error, force_size);
-                prop_assert!(moment_error <= 2e-6 * moment_size, "{} {}", moment_error, moment_size);
+                prop_assert!(moment_error <= 2e-6 * moment_size, "{moment_error} {moment_size}");
             }
         }
     }
@@ -103,7 +104,8 @@ proptest! {
         plan.closed = random.below(2) == 0;
         let low = random.between(700.0, 1_000.0);
         plan.liquid.top = band(low as f32, low as f32, (low + random.between(0.0, 500.0)) as f32);
-        plan.gas = gas(random.between(-2_000.0, 0.0) as f32, 0.0, random.between(0.0, 4_000.0) as f32);
+        let vacuum = random.between(-2_000.0, 0.0) as f32;
+        plan.gas = gas(vacuum, 0.0, random.between(0.0, 4_000.0) as f32);
         let at_m = random.between(-0.5, 2.0);
         plan.level = head_sensor(at_m as f32, GAUGE, 0.0);
         let radius_m = random.between(0.2, 0.9);
@@ -126,7 +128,8 @@ proptest! {
             let force = strips.pieces(&kinks, |z, _| profile.pressure_pa(z));
             let moment = strips.pieces(&kinks, |z, s| profile.pressure_pa(z) * s);
             let n = f64::from(count);
-            let slack = 1e-5 * strips.pieces(&kinks, |z, _| profile.pressure_pa(z).abs() + 100.0) / n;
+            let size = strips.pieces(&kinks, |z, _| profile.pressure_pa(z).abs() + 100.0);
+            let slack = 1e-5 * size / n;
             for bolt in 0..count {
                 let s = -bolt_radius_m * (2.0 * PI * f64::from(bolt) / n).cos();
                 let share = force / n + moment * s / (0.5 * n * bolt_radius_m * bolt_radius_m);
@@ -170,7 +173,8 @@ proptest! {
                 }
             }
             let largest = largest.min(999.0);
-            prop_assert!((found - largest).abs() <= slack * (1.0 + largest), "{found} {largest} {part:?}");
+            let error = (found - largest).abs();
+            prop_assert!(error <= slack * (1.0 + largest), "{found} {largest} {part:?}");
         }
     }
 
@@ -195,7 +199,8 @@ proptest! {
             let inward_only = evaluate(&plan, &one_way, &states);
             prop_assert!(inward_only.utilisation_bound.lane(0) <= 0.0);
             prop_assert_eq!(inward_only.utilisation_inward, loads.utilisation_inward);
-            if let (Some(capacity), Geometry::Plane { .. }) = (part.inward.force_n, &part.geometry) {
+            let plane = matches!(part.geometry, Geometry::Plane { .. });
+            if let Some(capacity) = part.inward.force_n.filter(|_| plane) {
                 let least = -loads.inward.force_n.lane(0) / capacity;
                 prop_assert!(loads.utilisation_inward.lane(0) >= at_most(least, 999.0));
             }

@@ -122,7 +122,10 @@ proptest! {
 
     /// No bytes panic; whatever is taken passes the check and is written back the same.
     #[test]
-    fn decoding_is_total(seed in any::<u64>(), noise in prop::collection::vec(any::<u8>(), 0..400)) {
+    fn decoding_is_total(
+        seed in any::<u64>(),
+        noise in prop::collection::vec(any::<u8>(), 0..400),
+    ) {
         let mut random = Random(seed);
         let plan = random::plan(&mut random);
         let sound = encoded(&plan);
