@@ -156,7 +156,7 @@ fn no_cut_loses_or_invents() -> Outcome {
         failures.len(),
         start.elapsed(),
     );
-    if steps.erases.len() < 3 || steps.programs.len() < 200 {
+    if steps.erases.len() < 2 || steps.programs.len() < 200 {
         return Err(format!("too few steps: {steps:?}").into());
     }
     match failures.first() {

@@ -96,10 +96,13 @@ impl Model {
         let next = seen.head.next_entry as usize;
         let mut later = states.iter().filter(|(behind, ..)| *behind >= next);
         if !later.clone().take(3).any(|(_, hash, _)| *hash == seen.head.running_hash) {
-            return Err(format!("the device's state follows from no journal: {:?}", seen.head));
+            return Err(format!(
+                "invented: the device's state follows from no journal, {:?}",
+                seen.head
+            ));
         }
         if !later.any(|(.., contact)| *contact == seen.contact) {
-            return Err(format!("the contact conducts: {}", seen.contact));
+            return Err(format!("lost or invented alarm: the contact conducts: {}", seen.contact));
         }
         Ok(())
     }

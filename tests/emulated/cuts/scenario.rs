@@ -8,7 +8,7 @@ use std::time::{Duration, Instant};
 
 use strake::link::Client;
 
-use crate::device::{ACT_NOW, TcpPort, connect};
+use crate::device::{ACT_NOW, TcpPort, UTC_S, connect};
 use crate::flash_file::FlashFile;
 use crate::image::Image;
 use crate::machine::{Machine, PATIENCE, Setup};
@@ -25,11 +25,12 @@ pub(super) type Plans = [Sealed; 2];
 /// Flash of a device that has a plan and an open sector that is nearly full. The sectors that are
 /// opened next are not blank, as in a ring that has gone round.
 pub(super) fn prepare(image: &Arc<Image>, plans: &Plans) -> Result<Content, Box<dyn Error>> {
-    let setup = Setup::new(image).register(REGISTER, LOW_MM).instruction_time(0, true);
-    let mut machine = setup.start()?;
+    let mut machine = Setup::new(image).register(REGISTER, LOW_MM).start()?;
     let mut client = connect(&mut machine)?;
     load(&mut client, &plans[0])?;
+    // Each clock fix is an entry of its own.
     until("a sector is nearly full", || {
+        client.set_clock(UTC_S)?;
         let newest = Content::read(machine.flash())?.newest();
         Ok(newest.is_some_and(|(_, used)| used > NEARLY_FULL))
     })?;
