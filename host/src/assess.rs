@@ -15,7 +15,7 @@ pub mod text;
 
 pub use desk::Desk;
 pub use document::{Capacity, Centre, Document, Judgement, Loads, NotJudged, PartRow, State};
-pub use notes::{FIELD_CHECK, assumed};
+pub use notes::{FIELD_CHECK, PROVISIONAL, assumed};
 pub use request::{Overrides, Request, RequestError, Source};
 
 use crate::compile;

@@ -36,6 +36,8 @@ pub struct Compiled {
     pub part_names: Vec<String>,
     /// The one device it is for; empty for any.
     pub device_id: String,
+    /// A capacity is assumed.
+    pub provisional: bool,
 }
 
 impl Compiled {
@@ -45,7 +47,7 @@ impl Compiled {
     /// [`PlanError`] when the plan does not fit its bytes.
     pub fn encode(&self, serial: u64) -> Result<Vec<u8>, PlanError> {
         let device_id = Name::try_from(self.device_id.as_str()).map_err(|_| PlanError::Names)?;
-        let header = PlanHeader { serial, device_id };
+        let header = PlanHeader { serial, device_id, provisional: self.provisional };
         let names: Vec<&str> = self.part_names.iter().map(String::as_str).collect();
         let mut bytes = vec![0; PLAN_BYTES_MAX];
         let used = codec::encode(&header, &self.plan, &self.tank_name, &names, &mut bytes)?;
@@ -111,6 +113,7 @@ fn finish(file: &TankFile, plan: Plan, mut faults: Faults) -> Result<Compiled, F
         tank_name: file.name.value.clone(),
         part_names: file.parts.iter().map(|part| part.name().to_owned()).collect(),
         device_id: file.device_id.as_ref().map_or_else(String::new, |id| id.value.clone()),
+        provisional: file.is_provisional(),
     })
 }
 

@@ -1,8 +1,8 @@
 //! Is a journal file whole? Every sector there, every block readable, every plan at hand, a head.
 //!
 //! **Complete** means that the file holds everything that the device held when it was collected, as
-//! stored there. A place that is damaged on the device itself (a write torn by a loss of power, worn
-//! flash) is counted apart: no collection can mend it.
+//! stored there. A place that is damaged on the device itself (a write torn by a loss of power,
+//! worn flash) is counted apart: no collection can mend it.
 
 use crate::journal_file::{HeadRecord, JournalFile, JournalFileError};
 use std::collections::BTreeSet;

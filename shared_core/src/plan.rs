@@ -214,4 +214,6 @@ pub struct PlanHeader {
     pub serial: u64,
     /// The one device that may take it; empty for any of this owner's.
     pub device_id: heapless::String<NAME_BYTES_MAX>,
+    /// A capacity of the plan is assumed; every output says so.
+    pub provisional: bool,
 }

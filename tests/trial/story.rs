@@ -64,6 +64,19 @@ fn an_existing_journal_is_not_overwritten() {
     assert_eq!(std::fs::read(journal(&document)).unwrap(), before);
 }
 
+#[test]
+fn an_assumed_capacity_is_told_to_the_end() {
+    let tank = crate::bench::root().join("configs/rinse_basin.toml");
+    let (_directory, status, document) = trial(&[tank.to_str().unwrap()]);
+    assert_eq!(status, 0, "{document}");
+    assert_eq!(document["identical"], true);
+    let cautions = list(&document, "cautions");
+    assert!(cautions[0].as_str().unwrap().starts_with("PROVISIONAL"), "{cautions:?}");
+    // The brine tank stands on surveys and drawings alone.
+    let (_directory, _, document) = trial(&[]);
+    assert_eq!(list(&document, "cautions").len(), 1);
+}
+
 fn list<'v>(document: &'v Value, key: &str) -> &'v Vec<Value> {
     document["replay"][key].as_array().unwrap()
 }

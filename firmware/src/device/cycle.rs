@@ -28,8 +28,8 @@ impl<B: Board> Device<B> {
         self.completed_ms = now_ms;
     }
 
-    /// The last completed cycle began no longer ago than the plan's longest interval. Without a plan
-    /// there is nothing to complete.
+    /// The last completed cycle began no longer ago than the plan's longest interval. Without a
+    /// plan there is nothing to complete.
     pub(crate) fn is_on_time(&self, now_ms: u64) -> bool {
         let logging = &self.memory.plan.logging;
         let longest_ms = logging.interval_ms.max(logging.idle_interval_ms);

@@ -78,6 +78,9 @@ fn may_turn_inward(desk: &Desk, part: &Part) -> bool {
     inward.pressure_pa.lane(0) < 0.0 || inward.force_n.lane(0) < 0.0
 }
 
+/// The caution of every output of a plan that stands on an assumed capacity.
+pub const PROVISIONAL: &str = "PROVISIONAL: a capacity of the plan is assumed";
+
 /// The cautions, the most pressing first.
 pub(super) fn cautions(
     file: &TankFile,

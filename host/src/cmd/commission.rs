@@ -3,7 +3,7 @@
 mod page;
 
 use super::device::{PortArgs, connect};
-use crate::assess::FIELD_CHECK;
+use crate::assess::{FIELD_CHECK, PROVISIONAL};
 use crate::exit::Exit;
 use crate::failure::Failure;
 use crate::link::{Client, SerialPort};
@@ -144,7 +144,13 @@ impl Document {
             new_plan: PlanRow::of(plan),
             changes: changes.into_iter().map(ChangeRow::from).collect(),
             loaded: None,
-            cautions: vec!["unsigned: a device cannot tell who made this plan", FIELD_CHECK],
+            cautions: plan
+                .header
+                .provisional
+                .then_some(PROVISIONAL)
+                .into_iter()
+                .chain(["unsigned: a device cannot tell who made this plan", FIELD_CHECK])
+                .collect(),
         }
     }
 }

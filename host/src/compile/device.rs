@@ -47,6 +47,7 @@ fn threshold(stated: &Threshold) -> ThresholdPlan {
 }
 
 pub(super) fn logging(file: &TankFile, plan: &mut Plan) {
+    plan.logging = LoggingPlan { interval_ms: 1000, idle_interval_ms: 1000, flush_after_ms: 0 };
     let Some(stated) = &file.logging else { return };
     plan.logging = LoggingPlan {
         interval_ms: milliseconds(stated.interval_s.value),

@@ -23,13 +23,15 @@ const DELAY_MAX_S: f64 = 24.0 * 86_400.0;
 pub(super) fn level(file: &TankFile, plan: &mut Plan, faults: &mut Faults) {
     // Without a sensor, or without its signal, a level stated at the desk is taken as exact or with
     // the stated uncertainty; the scale of counts touches nothing there.
+    plan.level.sensor = LevelSensor::Surface;
     plan.level.value_per_count_16 = 1.0;
     plan.level.failed_after_ms = 60_000;
     let Some(stated) = &file.level else { return };
     let level = &mut plan.level;
     let (zero, sign) = match stated.sensing {
         Sensing::Head { at_m, reference } => {
-            faults.within(at_m, HEIGHTS_M, Length, "`at` in [level]");
+            let below_top_m = (HEIGHTS_M.0, f64::from(plan.shell_top_m));
+            faults.within(at_m, below_top_m, Length, "`at` in [level]");
             level.sensor = LevelSensor::Head {
                 at_m: located(at_m),
                 reference: reference_of(&reference.value),

@@ -1,7 +1,7 @@
 //! The document `strake.replay/1`.
 
 use super::{AlarmLine, FaultLine, PartSummary, Replay};
-use crate::assess::FIELD_CHECK;
+use crate::assess::{FIELD_CHECK, PROVISIONAL};
 use jiff::Timestamp;
 use serde::Serialize;
 
@@ -133,7 +133,12 @@ impl Document {
             cycles: summary.parts.iter().flat_map(cycles).collect(),
             alarms: summary.alarms.iter().map(alarm).collect(),
             faults: summary.faults.values().map(fault).collect(),
-            cautions: vec![FIELD_CHECK],
+            cautions: replay
+                .provisional
+                .then_some(PROVISIONAL)
+                .into_iter()
+                .chain([FIELD_CHECK])
+                .collect(),
         }
     }
 }

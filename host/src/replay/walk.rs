@@ -5,7 +5,7 @@ use crate::journal_file::{JournalFile, JournalFileError};
 use std::io::{Read, Seek};
 use strake_core::evaluate::State;
 use strake_core::journal::{Entry, Item, STATE_BYTES_MAX, SectorReader};
-use strake_core::plan::{Plan, codec};
+use strake_core::plan::{Plan, PlanHeader, codec};
 use strake_core::plan_slot;
 
 /// Everything a replay found.
@@ -21,6 +21,8 @@ pub struct Replay {
     pub gaps: u64,
     /// Fingerprints of plans that occur and are not in the file.
     pub missing_plans: Vec<u64>,
+    /// A plan in force stands on an assumed capacity.
+    pub provisional: bool,
 }
 
 /// Replays a journal file, one sector in memory at a time.
@@ -35,6 +37,7 @@ pub fn replay<R: Read + Seek>(file: &mut JournalFile<R>) -> Result<Replay, Journ
             damage: file.damage().iter().map(ToString::to_string).collect(),
             gaps: 0,
             missing_plans: Vec::new(),
+            provisional: false,
         },
         in_force: None,
     };
@@ -123,7 +126,8 @@ impl Walk {
             self.replay.engine.plan_taken(fingerprint, computed);
         }
         let loaded = stored.and_then(|stored| load(&stored.bytes));
-        if let Some((plan, names)) = loaded {
+        if let Some((header, plan, names)) = loaded {
+            self.replay.provisional |= header.provisional;
             self.replay.engine.use_plan(Some(plan), &names);
         } else {
             self.replay.engine.use_plan(None, &[]);
@@ -136,9 +140,9 @@ impl Walk {
 }
 
 /// A plan with the names of its parts.
-fn load(bytes: &[u8]) -> Option<(Plan, Vec<String>)> {
-    let (_, plan) = codec::decode(bytes).ok()?;
+fn load(bytes: &[u8]) -> Option<(PlanHeader, Plan, Vec<String>)> {
+    let (header, plan) = codec::decode(bytes).ok()?;
     let mut names = Vec::new();
     codec::names(bytes, |_, name| names.push(name.to_owned())).ok()?;
-    Some((plan, names))
+    Some((header, plan, names))
 }

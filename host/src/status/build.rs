@@ -6,7 +6,7 @@ use super::document::{
 };
 use super::words::{cause_words, health_name, reading_name, state_name};
 use super::{InForce, Seen};
-use crate::assess::FIELD_CHECK;
+use crate::assess::{FIELD_CHECK, PROVISIONAL};
 use crate::plan_file::PlanFile;
 use strake_core::alarm::AlarmState;
 use strake_core::journal::SECTOR_BYTES;
@@ -70,7 +70,10 @@ fn cautions(in_force: &InForce, plan: Option<&PlanFile>) -> Vec<String> {
         InForce::Unreadable(why) => {
             found.push(format!("the plan in force cannot be read back ({why}): no names"));
         }
-        InForce::Plan(_) => {
+        InForce::Plan(plan) => {
+            if plan.header.provisional {
+                found.push(PROVISIONAL.to_owned());
+            }
             found.push("unsigned: a device cannot tell who made its plan".to_owned());
         }
     }

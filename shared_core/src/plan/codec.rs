@@ -5,7 +5,7 @@
 //! | magic `SKP`, format 1 | 4 |
 //! | serial u64, device id (length u8, bytes) | 9 + n |
 //! | gravity, shell top, overflow, floor, rise, fall: f32 | 24 |
-//! | flags u8: 1 closed | 1 |
+//! | flags u8: 1 closed, 2 provisional | 1 |
 //! | liquid: band 3 f32; table uncertainty f32, points u8, 2 f32 each; temperature sensor u8 (0 or 1, then 3 f32); layers u8, 5 f32 each; products u8, 3 f32 each | |
 //! | gas: lowest, nominal, highest f32 | 12 |
 //! | outside u8, 5 f32 each (highest, lowest, band) | |
@@ -56,7 +56,7 @@ pub fn encode(
     sink.u8(PLAN_FORMAT);
     sink.u64(header.serial);
     text(&mut sink, &header.device_id)?;
-    put_site(&mut sink, plan);
+    put_site(&mut sink, plan, header.provisional);
     put_liquid(&mut sink, &plan.liquid)?;
     put_surroundings(&mut sink, plan)?;
     put_level(&mut sink, &plan.level);
@@ -118,14 +118,20 @@ impl<F: Fetch> Fetch for &mut F {
 }
 
 fn take<F: Fetch>(source: &mut Source<F>, plan: &mut Plan) -> Option<PlanHeader> {
-    let header = PlanHeader { serial: source.u64()?, device_id: take_text(source)? };
+    let mut header =
+        PlanHeader { serial: source.u64()?, device_id: take_text(source)?, provisional: false };
     plan.gravity_m_s2 = source.f32()?;
     plan.shell_top_m = source.f32()?;
     plan.overflow_m = source.f32()?;
     plan.floor_m = source.f32()?;
     plan.highest_rise_m_s = source.f32()?;
     plan.highest_fall_m_s = source.f32()?;
-    plan.closed = flag(source)?;
+    let flags = source.u8()?;
+    if flags > 0b11 {
+        return None;
+    }
+    plan.closed = flags & 1 != 0;
+    header.provisional = flags & 2 != 0;
     plan.liquid = take_liquid(source)?;
     plan.gas =
         Gas { lowest_pa: source.f32()?, nominal_pa: source.f32()?, highest_pa: source.f32()? };
@@ -220,7 +226,7 @@ fn take_band<F: Fetch>(source: &mut Source<F>) -> Option<Band> {
     })
 }
 
-fn put_site(sink: &mut Sink<'_>, plan: &Plan) {
+fn put_site(sink: &mut Sink<'_>, plan: &Plan, provisional: bool) {
     for number in [
         plan.gravity_m_s2,
         plan.shell_top_m,
@@ -231,7 +237,7 @@ fn put_site(sink: &mut Sink<'_>, plan: &Plan) {
     ] {
         sink.f32(number);
     }
-    sink.u8(u8::from(plan.closed));
+    sink.u8(u8::from(plan.closed) | u8::from(provisional) << 1);
 }
 
 fn put_liquid(sink: &mut Sink<'_>, liquid: &LiquidPlan) -> Result<(), PlanError> {

@@ -121,7 +121,9 @@ fn thickness_up(sheet: &Sheet<'_>, thickness_m: f64) -> String {
 
 fn line(label: &str, cells: [String; 3], capacity: &str) -> String {
     let [a, b, c] = cells;
-    format!("{label:<LABEL$}{a:>NUMBER$}{b:>NUMBER$}{c:>NUMBER$}  {capacity}")
+    // The blank before each number keeps long ones apart.
+    let width = NUMBER - 1;
+    format!("{label:<LABEL$} {a:>width$} {b:>width$} {c:>width$}  {capacity}")
 }
 
 /// The capacities that a load is compared with, in lines that fit beside it.

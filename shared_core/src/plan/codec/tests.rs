@@ -11,7 +11,11 @@ use crate::plan::{Plan, PlanError, PlanHeader, Reference};
 use proptest::prelude::*;
 
 fn header() -> PlanHeader {
-    PlanHeader { serial: 0x0102_0304_0506_0708, device_id: "north".try_into().unwrap() }
+    PlanHeader {
+        serial: 0x0102_0304_0506_0708,
+        device_id: "north".try_into().unwrap(),
+        provisional: false,
+    }
 }
 
 fn encoded(plan: &Plan) -> Vec<u8> {
