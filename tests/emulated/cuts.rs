@@ -1,10 +1,10 @@
-//! Power cuts on the application's image: nothing durable lost, nothing invented, wherever the power
-//! fails.
+//! Power cuts on the application's image: nothing durable lost, nothing invented, wherever the
+//! power fails.
 //!
-//! A scenario is played once, with every store into the flash recorded: its place, and the word that
-//! stood there from then on. A cut after the n-th store leaves the flash of the beginning with the
-//! first n stores done and no memory; the device is started on exactly that, for every n wanted. Cuts
-//! of a running device are made too, and leave what the record says they leave.
+//! A scenario is played once, with every store into the flash recorded: its place, and the word
+//! that stood there from then on. A cut after the n-th store leaves the flash of the beginning with
+//! the first n stores done, and no memory; the device is started on exactly that, for every n
+//! wanted. Cuts of a running device are made too, and leave what the record says they leave.
 
 mod flash;
 mod journal;
@@ -165,8 +165,8 @@ fn no_cut_loses_or_invents() -> Outcome {
     }
 }
 
-/// The plugin ends the emulator of a device in the midst of the scenario. Ticks differ from those of
-/// the record, so each such run is a model of its own.
+/// The plugin ends the emulator of a device in the midst of the scenario. Ticks differ from those
+/// of the record, so each such run is a model of its own.
 fn a_running_device_is_cut_where_the_record_says() -> Outcome {
     let played = played()?;
     let image = image(PROGRAM)?;

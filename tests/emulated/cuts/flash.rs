@@ -112,7 +112,7 @@ impl Steps {
 fn is_erase(stores: &[Store]) -> bool {
     let Some(run) = stores.get(..ERASE_WORDS) else { return false };
     let first = run[0].offset;
-    first as usize % SECTOR_BYTES == 0
+    (first as usize).is_multiple_of(SECTOR_BYTES)
         && (first..)
             .step_by(4)
             .zip(run)
