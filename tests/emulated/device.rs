@@ -201,7 +201,7 @@ impl Site {
 }
 
 /// Connects to a device that was just started.
-fn connect(machine: &mut Machine) -> Result<Client<TcpPort>, Box<dyn Error>> {
+pub(crate) fn connect(machine: &mut Machine) -> Result<Client<TcpPort>, Box<dyn Error>> {
     let line = machine.link()?.try_clone()?;
     Ok(Client::connect(TcpPort { line, opened: Instant::now() })?)
 }

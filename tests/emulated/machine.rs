@@ -152,7 +152,8 @@ impl Setup {
         let debugger = debugger.map(Debugger::open).transpose()?;
         self.sensor.serve(bus);
         let (input, output) = (process.0.stdin.take(), process.0.stdout.take());
-        let qmp = Qmp::open(input.ok_or("no input")?, output.ok_or("no output")?)?;
+        let qmp = Qmp::open(input.ok_or("no input")?, output.ok_or("no output")?)
+            .map_err(|error| format!("{error}; the emulator: {}", said().unwrap_or_default()))?;
         let (image, sensor) = (self.image, self.sensor);
         Ok(Machine { process, qmp, link, unread: Vec::new(), sensor, image, flash, debugger })
     }

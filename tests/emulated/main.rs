@@ -9,6 +9,7 @@ macro_rules! tests {
 }
 
 mod bits;
+mod cuts;
 mod debugger;
 mod device;
 mod drivers;
@@ -57,12 +58,19 @@ fn trial(missing: Option<&'static str>, (name, run): Test) -> Trial {
 fn main() {
     let arguments = Arguments::from_args();
     let missing = toolchain::missing();
-    let trials: Vec<Trial> =
-        [drivers::TESTS, bits::TESTS, operation::TESTS, recovery::TESTS, footprint::TESTS]
-            .into_iter()
-            .flatten()
-            .map(|&test| trial(missing.as_ref().map(|(what, _)| *what), test))
-            .collect();
+    let groups = [
+        drivers::TESTS,
+        bits::TESTS,
+        cuts::TESTS,
+        operation::TESTS,
+        recovery::TESTS,
+        footprint::TESTS,
+    ];
+    let trials: Vec<Trial> = groups
+        .into_iter()
+        .flatten()
+        .map(|&test| trial(missing.as_ref().map(|(what, _)| *what), test))
+        .collect();
     if let Some((what, remedy)) = &missing
         && !arguments.list
     {
