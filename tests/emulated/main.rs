@@ -18,6 +18,7 @@ mod image;
 mod log;
 mod machine;
 mod operation;
+mod panics;
 mod plugin;
 mod qmp;
 mod recovery;
@@ -57,12 +58,18 @@ fn trial(missing: Option<&'static str>, (name, run): Test) -> Trial {
 fn main() {
     let arguments = Arguments::from_args();
     let missing = toolchain::missing();
-    let trials: Vec<Trial> =
-        [drivers::TESTS, bits::TESTS, operation::TESTS, recovery::TESTS, footprint::TESTS]
-            .into_iter()
-            .flatten()
-            .map(|&test| trial(missing.as_ref().map(|(what, _)| *what), test))
-            .collect();
+    let trials: Vec<Trial> = [
+        drivers::TESTS,
+        bits::TESTS,
+        operation::TESTS,
+        recovery::TESTS,
+        footprint::TESTS,
+        panics::TESTS,
+    ]
+    .into_iter()
+    .flatten()
+    .map(|&test| trial(missing.as_ref().map(|(what, _)| *what), test))
+    .collect();
     if let Some((what, remedy)) = &missing
         && !arguments.list
     {

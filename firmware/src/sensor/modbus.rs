@@ -131,7 +131,12 @@ impl<L: Read + ReadReady + Write, C: Clock> ModbusSource<L, C> {
             }
         }
         let question = question(place);
-        self.line.write_all(&question).map_err(|_| SensorError::Converter)?;
+        let mut rest = &question[..];
+        while !rest.is_empty() {
+            let taken = self.line.write(rest).map_err(|_| SensorError::Converter)?;
+            // A line that takes nothing, or more than it was given, is none.
+            rest = rest.get(taken..).filter(|_| taken > 0).ok_or(SensorError::Converter)?;
+        }
         self.line.flush().map_err(|_| SensorError::Converter)
     }
 
