@@ -59,12 +59,20 @@ pub fn levels_m(plan: &Plan, resolved: &Resolved) -> [f32; 3] {
 
 /// Loads of every part under `N` readings, handed to `part` in the plan's order, and the digest of
 /// all their bits per lane.
-// One function in every image, so that its instructions can be counted.
-#[inline(never)]
 pub fn loads<const N: usize>(
     plan: &Plan,
     resolved: &[Resolved; N],
     mut part: impl FnMut(usize, &PartLoads<N>),
+) -> Digest<N> {
+    each_load(plan, resolved, &mut part)
+}
+
+/// [`loads`] as one function in every image, whoever takes the loads.
+#[inline(never)]
+fn each_load<const N: usize>(
+    plan: &Plan,
+    resolved: &[Resolved; N],
+    part: &mut dyn FnMut(usize, &PartLoads<N>),
 ) -> Digest<N> {
     let states = pressures(plan, resolved);
     let mut digest = Digest::new();

@@ -70,15 +70,17 @@ impl Waiting {
     pub fn save(&self, boot: u16, memory: &mut impl RetainedMemory, area: &Range<usize>) -> usize {
         let mut stored = 0;
         for index in pages(area) {
+            let start = area.start + usize::from(index) * PAGE_BYTES;
+            if stored >= self.len() {
+                memory.write(start, &[0xFF]);
+                continue;
+            }
             let mut page = [0xFF; PAGE_BYTES];
             let place = place_of(boot, index);
             let rest = self.samples.iter().skip(stored);
             let encoded = encode_samples(place, rest, &mut Chain::default(), &mut page);
             let len = encoded.map_or(1, |encoded| encoded.len);
-            memory.write(
-                area.start + usize::from(index) * PAGE_BYTES,
-                page.get(..len).unwrap_or(&[]),
-            );
+            memory.write(start, page.get(..len).unwrap_or(&[]));
             stored += encoded.map_or(0, |encoded| encoded.taken);
         }
         stored
