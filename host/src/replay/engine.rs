@@ -46,8 +46,10 @@ pub struct Verdict {
     pub moves_compared: u64,
     /// The first place that differs.
     pub first_difference: Option<Difference>,
-    /// Samples whose plan is missing: decoded, not compared.
+    /// Samples whose plan or state is missing: decoded, not compared.
     pub not_compared: u64,
+    /// Checkpoints with samples that the device could not write, and had no time to state as lost.
+    pub holes: u64,
 }
 
 impl Verdict {
@@ -85,14 +87,28 @@ pub struct Engine {
 
 impl Engine {
     /// A sector begins. `state` is its checkpoint; `connected` says that it follows the one before
-    /// without a hole. A checkpoint that is missing or of another version cannot be compared.
-    pub fn sector(&mut self, header: &SectorHeader, state: Option<&State>, connected: bool) {
+    /// without a hole; `lost` how many samples the device states as lost before it, `None` when it
+    /// had no time to state any. A checkpoint that is missing or of another version cannot be
+    /// compared.
+    pub fn sector(
+        &mut self,
+        header: &SectorHeader,
+        state: Option<&State>,
+        connected: bool,
+        lost: Option<u32>,
+    ) {
         self.settle();
+        let ahead = state.map_or(0, |state| state.samples.wrapping_sub(self.state.samples));
+        let explained = ahead > 0 && ahead < u32::MAX / 2 && lost.is_none_or(|lost| lost == ahead);
+        if connected && self.connected && explained {
+            self.verdict.holes += u64::from(lost.is_none());
+            self.connected = false;
+        }
         self.place =
             Place { sequence: header.sequence, entry: header.first_entry, tick_ms: header.tick_ms };
         self.summary.clock.sector(header);
         match state {
-            Some(state) if connected && self.connected && self.verdict.not_compared == 0 => {
+            Some(state) if connected && self.connected => {
                 self.compare("checkpoint", state.hash, self.state.hash);
                 if self.state != *state {
                     self.differ("state in the checkpoint", "its own", "another");
@@ -107,6 +123,13 @@ impl Engine {
             None if connected => {}
             None => self.connected = false,
         }
+    }
+
+    /// Entries are missing here: nothing is compared up to the next checkpoint.
+    pub fn hole(&mut self) {
+        self.settle();
+        self.untold.clear();
+        self.connected = false;
     }
 
     /// Another plan is in force from here on; `None` when it is not at hand.
@@ -180,6 +203,7 @@ impl Engine {
         }
         let Some(plan) = self.plan.as_ref().filter(|_| self.connected) else {
             self.verdict.not_compared += self.batch.discard() as u64;
+            self.connected = false;
             return;
         };
         let (untold, summary) = (&mut self.untold, &mut self.summary);
