@@ -4,10 +4,10 @@
 //! to do while idle, feeds the watchdog and says when it wants to be called again; in between the
 //! board sleeps. A byte on the link or the button may wake it earlier.
 //!
-//! The watchdog is fed at the end of a poll, and only while the last completed cycle began no longer
-//! ago than the plan's longest interval: a program that runs but measures no more is restarted, and
-//! so is one that hangs in a cycle. Where the pause between two cycles is longer than the watchdog's
-//! patience, the application asks to be called in between.
+//! The watchdog is fed at the end of a poll, and only while the last completed cycle began no
+//! longer ago than the plan's longest interval: a program that runs but measures no more is
+//! restarted, and so is one that hangs in a cycle. Where the pause between two cycles is longer
+//! than the watchdog's patience, the application asks to be called in between.
 
 use crate::board::{Board, Clock, Hardware, Watchdog};
 use crate::device::Device;

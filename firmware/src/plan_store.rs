@@ -95,6 +95,13 @@ impl<F: NorFlash> PlanStore<F> {
         self.slots.get(self.slot_of(fingerprint)?).copied().flatten()
     }
 
+    /// Whether a stored plan still has its fingerprint: nothing of it may be used otherwise.
+    pub fn is_sound(&mut self, fingerprint: u64) -> bool {
+        let Some(slot) = self.slot_of(fingerprint) else { return false };
+        let Some(header) = self.find(fingerprint) else { return false };
+        self.fingerprint_of(slot, header.length).ok() == Some(fingerprint)
+    }
+
     /// Every stored plan, in the order of the slots.
     #[must_use]
     pub fn list(&self) -> Vec<SlotHeader, SLOTS> {

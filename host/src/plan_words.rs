@@ -1,7 +1,7 @@
 //! A plan in words that a technician can check against the drawing, and two plans side by side.
 //!
-//! Every number of the plan stands in exactly one **line**. Lines are compared by the numbers behind
-//! them, not by the digits shown, so that no change stays unseen.
+//! Every number of the plan stands in exactly one **line**. Lines are compared by the numbers
+//! behind them, not by the digits shown, so that no change stays unseen.
 
 mod parts;
 mod sensor;

@@ -2,9 +2,9 @@
 //!
 //! The device evaluates one sample (`Lane<1>`), the replay 64. Each lane goes through the same
 //! operations in the same order, so its numbers do not depend on the number of lanes. The sign of a
-//! zero may: what no lane needs is left out, and a surface that does not reach a part adds a zero of
-//! either sign. Only `+ - * /`, comparisons and the correctly rounded square root stand here: these
-//! give the same bits on every IEEE 754 machine.
+//! zero may: what no lane needs is left out, and a surface that does not reach a part adds a zero
+//! of either sign. Only `+ - * /`, comparisons and the correctly rounded square root stand here:
+//! these give the same bits on every IEEE 754 machine.
 #![expect(
     clippy::inline_always,
     reason = "a call per operation would cost more than the operation"

@@ -45,6 +45,8 @@ pub struct Resultant<const N: usize> {
     /// Moment about the level line through the centroid, N m, positive when it pushes the upper
     /// side outward.
     pub moment_n_m: Lane<N>,
+    /// Pressure at the part's lowest point, Pa gauge.
+    pub foot_pa: Lane<N>,
 }
 
 impl<const N: usize> Pressure<N> {
@@ -110,16 +112,18 @@ impl<const N: usize> Pressure<N> {
     ) -> Resultant<N> {
         let mut force_n = self.gas_pa * area_m2;
         let mut moment_n_m = self.gas_pa * static_m3;
+        let mut foot_pa = self.gas_pa;
         for surface in self.surfaces() {
             let y_m = surface.height_m - bottom_m;
             if y_m.none_positive() {
                 continue;
             }
+            foot_pa = foot_pa + surface.step_n_m3 * y_m.ramp();
             let wetted = m(y_m);
             force_n = force_n + surface.step_n_m3 * wetted.q0;
             moment_n_m = moment_n_m + surface.step_n_m3 * wetted.q1;
         }
-        Resultant { force_n, moment_n_m }
+        Resultant { force_n, moment_n_m, foot_pa }
     }
 }
 

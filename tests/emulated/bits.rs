@@ -86,7 +86,8 @@ fn differs(feature: &'static str, equal: Equal) -> Outcome {
     let [all, beyond] =
         [every_bit, but_for_zeros].map(|equal| differing(&expected, &device.words, equal));
     println!(
-        "{feature}, image {}: {all} of {compared} words differ, {beyond} by more than a zero's sign",
+        "{feature}, image {}: {all} of {compared} words differ, {beyond} by more than the sign of \
+         a zero",
         image.sha256
     );
     let seen = differing(&expected, &device.words, equal);

@@ -164,6 +164,17 @@ impl Site {
         Ok(())
     }
 
+    /// Writes entries until the journal has this many bytes in use.
+    pub(crate) fn fill_journal(&mut self, bytes: u32) -> Result<(), Box<dyn Error>> {
+        loop {
+            let bounds = self.client.journal_bounds()?;
+            if bounds.newest * 4096 + u32::from(bounds.newest_used) >= bytes {
+                return Ok(());
+            }
+            self.client.set_clock(UTC_S)?;
+        }
+    }
+
     /// Takes the journal home and replays it. Gives the bytes that it has, too.
     pub(crate) fn replayed(&mut self) -> Result<(Replay, u64), Box<dyn Error>> {
         let folder = self.machine.flash().folder();
@@ -190,7 +201,7 @@ impl Site {
 }
 
 /// Connects to a device that was just started.
-fn connect(machine: &mut Machine) -> Result<Client<TcpPort>, Box<dyn Error>> {
+pub(crate) fn connect(machine: &mut Machine) -> Result<Client<TcpPort>, Box<dyn Error>> {
     let line = machine.link()?.try_clone()?;
     Ok(Client::connect(TcpPort { line, opened: Instant::now() })?)
 }

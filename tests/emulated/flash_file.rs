@@ -15,6 +15,8 @@ pub(crate) const FLASH_BYTES: u64 = 16 << 20;
 pub(crate) const FLASH_BASE: u64 = 0x2100_0000;
 /// Where the plan slots begin in the file; the journal begins at 0.
 pub(crate) const PLANS_OFFSET: u64 = 8 << 20;
+/// Bytes of the plan slots.
+pub(crate) const PLANS_BYTES: u64 = 64 << 10;
 
 const BUTTON_OFFSET: u64 = FLASH_BYTES - 4;
 const BUTTON_PRESSED: [u8; 4] = 0x5052_4553_u32.to_le_bytes();

@@ -36,21 +36,37 @@ impl Image {
     }
 
     /// Address and size of the one symbol called `name`: exactly, or as the path of a mangled name
-    /// (`modbus::value`), whichever mangling it has.
+    /// (`modbus::value`, `digest..add`), whichever mangling it has.
     pub(crate) fn symbol(&self, name: &str) -> Result<(u64, u64), Box<dyn Error>> {
+        match &self.symbols(name)?[..] {
+            [place] => Ok(*place),
+            found => Err(format!("one symbol {name} wanted, found {found:x?}").into()),
+        }
+    }
+
+    /// Address and size of every symbol of that name: a generic function has one for each use.
+    pub(crate) fn symbols(&self, name: &str) -> Result<Vec<(u64, u64)>, Box<dyn Error>> {
         let file = object::File::parse(&*self.elf)?;
         let mut found = Vec::new();
         for symbol in file.symbols() {
             let full = symbol.name().unwrap_or_default();
             if full == name || has_path(full, name) {
                 // Bit 0 says Thumb, it is no part of the address.
-                found.push((full.to_owned(), (symbol.address() & !1, symbol.size())));
+                found.push((symbol.address() & !1, symbol.size()));
             }
         }
-        match &found[..] {
-            [(_, place)] => Ok(*place),
-            _ => Err(format!("one symbol {name} wanted, found {found:x?}").into()),
-        }
+        Ok(found)
+    }
+
+    /// Address of the first 16 bits of code that are `code` under `mask`.
+    pub(crate) fn instruction(&self, (code, mask): (u16, u16)) -> Result<u32, Box<dyn Error>> {
+        let file = object::File::parse(&*self.elf)?;
+        let text = file.section_by_name(".text").ok_or("no code")?;
+        let halves = text.data()?.chunks_exact(2);
+        let is_it = |half: &[u8]| half.first_chunk().map(|half| u16::from_le_bytes(*half) & mask);
+        let found = halves.into_iter().position(|half| is_it(half) == Some(code));
+        let offset = found.ok_or(format!("no instruction {code:#06x}"))? * 2;
+        Ok(u32::try_from(text.address())? + u32::try_from(offset)?)
     }
 
     pub(crate) fn footprint(&self) -> Result<Footprint, Box<dyn Error>> {
@@ -73,13 +89,18 @@ impl Image {
     }
 }
 
-/// Both manglings write each part of a path behind its length, one behind the other.
+/// Both manglings write each part of a path behind its length, one behind the other; `..` in `path`
+/// stands for anything in between, such as the type of a method.
 fn has_path(mangled: &str, path: &str) -> bool {
-    let parts: Vec<String> = path.split("::").map(|part| format!("{}{part}", part.len())).collect();
-    let parts = parts.concat();
-    // A digit in front would belong to another length.
+    let mut rest = mangled;
     mangled.starts_with('_')
-        && mangled
-            .match_indices(&*parts)
-            .any(|(at, _)| !mangled[..at].ends_with(|last: char| last.is_ascii_digit()))
+        && path.split("..").all(|piece| {
+            let parts = piece.split("::").map(|part| format!("{}{part}", part.len()));
+            let parts = parts.collect::<String>();
+            // A digit in front would belong to another length.
+            let found = rest
+                .match_indices(&*parts)
+                .find(|(at, _)| !rest[..*at].ends_with(|last: char| last.is_ascii_digit()));
+            found.map(|(at, _)| rest = &rest[at + parts.len()..]).is_some()
+        })
 }

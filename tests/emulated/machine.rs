@@ -15,6 +15,7 @@ use std::time::{Duration, Instant};
 
 use serde_json::json;
 
+use crate::debugger::Debugger;
 use crate::flash_file::FlashFile;
 use crate::image::Image;
 use crate::log;
@@ -39,6 +40,7 @@ pub(crate) struct Setup {
     link_is_terminal: bool,
     instruction_time: Option<String>,
     stops_at_reset: bool,
+    debugged: bool,
     plugins: Vec<Plugin>,
 }
 
@@ -52,6 +54,7 @@ impl Setup {
             link_is_terminal: false,
             instruction_time: None,
             stops_at_reset: false,
+            debugged: false,
             plugins: Vec::new(),
         }
     }
@@ -86,6 +89,12 @@ impl Setup {
     /// Stands still where the device resets itself, see [`Machine::wait_for_reset`].
     pub(crate) fn stop_at_reset(mut self) -> Self {
         self.stops_at_reset = true;
+        self
+    }
+
+    /// Lets [`Machine::debugger`] halt the processor and change what it works with.
+    pub(crate) fn debugged(mut self) -> Self {
+        self.debugged = true;
         self
     }
 
@@ -124,6 +133,10 @@ impl Setup {
         if self.stops_at_reset {
             command.args(["-action", "reboot=shutdown,shutdown=pause"]);
         }
+        let debugger = TcpListener::bind("127.0.0.1:0")?;
+        if self.debugged {
+            command.args(["-chardev", &tcp("debugger", &debugger)?, "-gdb", "chardev:debugger"]);
+        }
         for plugin in &self.plugins {
             command.arg("-plugin").arg(plugin.argument(flash.folder()));
         }
@@ -135,11 +148,14 @@ impl Setup {
         let connected = connect(&mut process, &bus, (!self.link_is_terminal).then_some(&link));
         let (bus, link) = connected
             .map_err(|error| format!("{error}; the emulator: {}", said().unwrap_or_default()))?;
+        let debugger = self.debugged.then(|| accept(&mut process, &debugger)).transpose()?;
+        let debugger = debugger.map(Debugger::open).transpose()?;
         self.sensor.serve(bus);
         let (input, output) = (process.0.stdin.take(), process.0.stdout.take());
-        let qmp = Qmp::open(input.ok_or("no input")?, output.ok_or("no output")?)?;
+        let qmp = Qmp::open(input.ok_or("no input")?, output.ok_or("no output")?)
+            .map_err(|error| format!("{error}; the emulator: {}", said().unwrap_or_default()))?;
         let (image, sensor) = (self.image, self.sensor);
-        Ok(Machine { process, qmp, link, unread: Vec::new(), sensor, image, flash })
+        Ok(Machine { process, qmp, link, unread: Vec::new(), sensor, image, flash, debugger })
     }
 }
 
@@ -205,6 +221,7 @@ pub(crate) struct Machine {
     sensor: Sensor,
     image: Arc<Image>,
     flash: FlashFile,
+    debugger: Option<Debugger>,
 }
 
 impl Machine {
@@ -249,6 +266,11 @@ impl Machine {
             }
             self.unread.extend(&bytes[..count]);
         }
+    }
+
+    /// The debugger of a machine that has one.
+    pub(crate) fn debugger(&mut self) -> io::Result<&mut Debugger> {
+        self.debugger.as_mut().ok_or_else(|| io::Error::other("the machine has no debugger"))
     }
 
     /// The sensor at the other end of the bus.

@@ -9,15 +9,19 @@ macro_rules! tests {
 }
 
 mod bits;
+mod cuts;
+mod debugger;
 mod device;
 mod drivers;
 mod flash_file;
+mod footprint;
 mod image;
 mod log;
 mod machine;
 mod operation;
 mod plugin;
 mod qmp;
+mod recovery;
 mod sensor;
 mod toolchain;
 
@@ -54,7 +58,15 @@ fn trial(missing: Option<&'static str>, (name, run): Test) -> Trial {
 fn main() {
     let arguments = Arguments::from_args();
     let missing = toolchain::missing();
-    let trials: Vec<Trial> = [drivers::TESTS, bits::TESTS, operation::TESTS]
+    let groups = [
+        drivers::TESTS,
+        bits::TESTS,
+        cuts::TESTS,
+        operation::TESTS,
+        recovery::TESTS,
+        footprint::TESTS,
+    ];
+    let trials: Vec<Trial> = groups
         .into_iter()
         .flatten()
         .map(|&test| trial(missing.as_ref().map(|(what, _)| *what), test))

@@ -16,10 +16,8 @@ fn a_filling_tank_alarms_and_its_journal_replays_identically() -> Outcome {
     hold(!site.machine.contact()?, "the contact conducts without a plan")?;
     site.commission(&crate::device::sealed("eight_courses")?)?;
     let status = site.wait_for("the device to be healthy", |status| status.output == HEALTHY)?;
-    same(
-        &(status.parts, status.level_reading, status.level_m.to_bits()),
-        &(12, 1, 6.1_f32.to_bits()),
-    )?;
+    same(&(status.parts, status.level_reading), &(12, 1))?;
+    hold((status.level_m - 6.1).abs() < 1e-5, &format!("level {} m", status.level_m))?;
     hold(site.machine.contact()?, "the contact is open although all is well")?;
     site.raise_alarm()?;
     hold(!site.machine.contact()?, "the contact conducts in an alarm")?;
@@ -35,7 +33,7 @@ fn a_filling_tank_alarms_and_its_journal_replays_identically() -> Outcome {
     let kinds: Vec<_> = replay.engine.summary.alarms.iter().map(|line| line.kind).collect();
     hold(kinds.contains(&"warn") && kinds.contains(&"alarm"), &format!("{kinds:?}"))?;
     let peak = replay.engine.summary.parts.first().map(|part| part.peak.level_m);
-    same(&peak, &Some(7.9))?;
+    hold(peak.is_some_and(|peak| (peak - 7.9).abs() < 1e-5), &format!("peak {peak:?}"))?;
     let link = site.client.status()?.link;
     hold(u64::from(link.bytes_out) > journal_bytes && journal_bytes > 0, &format!("{link:?}"))?;
     println!(
@@ -54,21 +52,21 @@ fn a_filling_tank_alarms_and_its_journal_replays_identically() -> Outcome {
 fn latched() -> Result<Site, Box<dyn std::error::Error>> {
     let mut site = Site::commissioned(Setup::new(&image()?))?;
     site.raise_alarm()?;
+    site.client.acknowledge()?;
     site.set_level(WELL_MM);
     site.wait_for("the warning to return", |status| status.alarms == 1)?;
     hold(!site.machine.contact()?, "the latch does not hold the contact open")?;
     Ok(site)
 }
 
-/// After a restart: still latched, and after acknowledgement and reset healthy.
+/// After a restart: still latched, and healthy after the reset.
 fn expect_latched(site: &mut Site) -> Outcome {
     let status = site.wait_for("the first reading", |status| status.level_reading == 1)?;
     same(&(status.output, status.alarms), &(ACT_NOW, 1))?;
     hold(!site.machine.contact()?, "a restart closed the contact of a latched alarm")?;
     let (replay, _) = site.replayed_identically()?;
     same(&replay.engine.summary.starts, &2)?;
-    // The first acknowledges, the second resets.
-    site.client.acknowledge()?;
+    // It is acknowledged already: this resets it.
     site.client.acknowledge()?;
     site.wait_for("the reset alarm", |status| status.output == HEALTHY)?;
     hold(site.machine.contact()?, "the contact stays open after the reset")

@@ -22,7 +22,8 @@ impl Qmp {
     /// Runs a command and gives back what it returned; events in between are passed over.
     pub(crate) fn run(&mut self, command: &str, arguments: &Value) -> io::Result<Value> {
         let request = json!({ "execute": command, "arguments": arguments });
-        writeln!(self.commands, "{request}")?;
+        // At once: the emulator acts on the last bracket and may be gone before the line's end.
+        self.commands.write_all(format!("{request}\n").as_bytes())?;
         loop {
             let mut line = String::new();
             if self.answers.read_line(&mut line)? == 0 {

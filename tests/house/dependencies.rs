@@ -1,6 +1,6 @@
 //! Every direct dependency has its line in DEVELOPERS.md, and every line its dependency.
 
-use std::collections::BTreeSet;
+use std::collections::{BTreeMap, BTreeSet};
 
 use toml::{Table, Value};
 
@@ -32,36 +32,63 @@ pub(crate) fn dependencies(manifest: &Table, kinds: &[&str]) -> BTreeSet<String>
 
 const ALL_KINDS: &[&str] = &["dependencies", "dev-dependencies", "build-dependencies"];
 
-/// First cells of the tables under the heading, without their back quotes, where a reason follows.
-fn explained(text: &str) -> BTreeSet<String> {
+/// Where a package stands, as the guide calls it.
+fn place(manifest: &str) -> &'static str {
+    match manifest {
+        "shared_core/Cargo.toml" => "core",
+        "firmware/Cargo.toml" => "firmware",
+        "host/Cargo.toml" => "host",
+        _ if manifest.starts_with("firmware/boards/") => "boards",
+        _ => "tests",
+    }
+}
+
+/// A dependency and where it is used.
+type Used = BTreeMap<String, BTreeSet<String>>;
+
+/// Rows of the tables under the heading that have a name in back quotes, places and a reason.
+fn explained(text: &str) -> Used {
     let section = text.split(HEADING).nth(1).unwrap_or_default();
     let section = section.split("\n## ").next().unwrap_or_default();
-    let mut names = BTreeSet::new();
+    let mut rows = Used::new();
     for line in section.lines() {
         let cells: Vec<_> = line.split('|').map(str::trim).collect();
-        if let ["", name, .., reason, ""] = cells[..]
+        if let ["", name, places, reason, ""] = cells[..]
             && name.len() > 2
             && name.starts_with('`')
             && !reason.is_empty()
         {
-            names.insert(name.trim_matches('`').to_owned());
+            let places = places.split(", ").map(str::to_owned).collect();
+            rows.insert(name.trim_matches('`').to_owned(), places);
         }
     }
-    names
+    rows
+}
+
+fn used() -> Used {
+    let mut used = Used::new();
+    for (file, manifest) in manifests() {
+        let place = place(&file.path);
+        let shipped: &[&str] = &["dependencies", "build-dependencies"];
+        for (kinds, place) in [(shipped, place), (&["dev-dependencies"], "tests")] {
+            for name in dependencies(&manifest, kinds) {
+                used.entry(name).or_default().insert(place.to_owned());
+            }
+        }
+    }
+    used.retain(|name, _| !name.starts_with(OWN));
+    used
 }
 
 #[test]
 fn every_dependency_has_its_reason() {
-    let mut used = BTreeSet::new();
-    for (_, manifest) in manifests() {
-        used.extend(dependencies(&manifest, ALL_KINDS));
-    }
-    used.retain(|name| !name.starts_with(OWN));
-    let explained = explained(&files::named("DEVELOPERS.md").text);
-    let missing: Vec<_> = used.difference(&explained).cloned().collect();
-    none("no line in DEVELOPERS.md", &missing);
-    let surplus: Vec<_> = explained.difference(&used).cloned().collect();
-    none("a line in DEVELOPERS.md, but no dependency", &surplus);
+    let (used, explained) = (used(), explained(&files::named("DEVELOPERS.md").text));
+    let differing = |here: &Used, there: &Used| -> Vec<_> {
+        let missing = here.iter().filter(|(name, places)| there.get(*name) != Some(places));
+        missing.map(|(name, places)| format!("{name}: {places:?}")).collect()
+    };
+    none("no such line in DEVELOPERS.md", &differing(&used, &explained));
+    none("a line in DEVELOPERS.md, but no dependency", &differing(&explained, &used));
 }
 
 /// Folders whose sources belong to the package of a manifest.
@@ -104,7 +131,8 @@ fn every_version_of_the_workspace_is_used() {
 fn the_rules_find_what_they_should() {
     let text =
         "x\n## Dependencies\n| `a` | core | why |\n| b | c | d |\n| `e` | |\n## Next\n| `f` | g |";
-    assert_eq!(explained(text), BTreeSet::from(["a".to_owned()]));
+    let core = BTreeSet::from(["core".to_owned()]);
+    assert_eq!(explained(text), Used::from([("a".to_owned(), core)]));
     let manifest: Table = "[dependencies]\na = \"1\"\n[target.x.dev-dependencies]\nb = \"1\"\n"
         .parse()
         .expect("toml");

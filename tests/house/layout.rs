@@ -32,6 +32,11 @@ fn too_long(file: &File) -> Option<String> {
     (lines > LINES_MAX).then(|| format!("{}: {lines} lines", file.path))
 }
 
+/// A line that is text in a string, or goes on as such.
+fn is_string(line: &str) -> bool {
+    line.trim_start().starts_with('"') || line.contains("\\\"") || line.ends_with(" \\")
+}
+
 /// A row of a table cannot be broken, nor can output that is shown as it came; text in a string is
 /// left to whoever wrote it, as rustfmt does.
 fn too_wide(file: &File) -> Vec<String> {
@@ -42,7 +47,7 @@ fn too_wide(file: &File) -> Vec<String> {
         fenced ^= markdown && line.starts_with("```");
         let columns = line.chars().count();
         let row = line.trim_start_matches("//!").trim_start().starts_with('|');
-        let string = file.has_extension("rs") && (line.contains("\\\"") || line.ends_with(" \\"));
+        let string = file.has_extension("rs") && is_string(line);
         if columns > COLUMNS_MAX && !row && !string && !(markdown && fenced) {
             findings.push(format!("{}:{number}: {columns} columns", file.path));
         }
@@ -89,6 +94,7 @@ fn the_rules_find_what_they_should() {
     let wide = "é".repeat(101);
     assert_eq!(too_wide(&file("a.rs", wide.clone())), ["a.rs:1: 101 columns"]);
     assert!(too_wide(&file("a.rs", "é".repeat(100))).is_empty());
+    assert!(too_wide(&file("a.rs", format!("    \"{wide}\","))).is_empty());
     assert!(too_wide(&file("a.md", format!("| {wide}\n```\n{wide}\n```\n"))).is_empty());
     assert_eq!(too_wide(&file("a.md", format!("```\n```\n{wide}"))).len(), 1);
 }

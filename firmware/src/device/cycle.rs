@@ -6,12 +6,14 @@ use heapless::Vec;
 use strake_core::alarm::{FaultCause, MACHINES};
 use strake_core::evaluate::{Moved, step};
 use strake_core::journal::{Entry, Sample};
+use strake_core::signal::Resolved;
 
 /// Every machine can move at most once in a sample.
 pub(super) type Moves = Vec<Moved, MACHINES>;
 
 impl<B: Board> Device<B> {
     /// Takes one sample with all that follows from it.
+    #[inline(never)]
     pub(crate) fn cycle(&mut self, now_ms: u64) {
         let sample = self.sense(now_ms);
         self.take(&sample);
@@ -28,8 +30,8 @@ impl<B: Board> Device<B> {
         self.completed_ms = now_ms;
     }
 
-    /// The last completed cycle began no longer ago than the plan's longest interval. Without a plan
-    /// there is nothing to complete.
+    /// The last completed cycle began no longer ago than the plan's longest interval. Without a
+    /// plan there is nothing to complete.
     pub(crate) fn is_on_time(&self, now_ms: u64) -> bool {
         let logging = &self.memory.plan.logging;
         let longest_ms = logging.interval_ms.max(logging.idle_interval_ms);
@@ -50,13 +52,10 @@ impl<B: Board> Device<B> {
     pub(super) fn take(&mut self, sample: &Sample) {
         let tick_ms = sample.tick_ms;
         let now = self.now(tick_ms);
-        let Memory { plan, state, moves } = &mut *self.memory;
+        let state = &self.memory.state;
         let pushed =
             self.journal.as_mut().map(|journal| journal.push(sample, &mut now.with(state)));
-        moves.clear();
-        let resolved = step(plan, state, sample, |moved| {
-            let _ = moves.push(moved);
-        });
+        let resolved = self.evaluate(sample);
         self.samples = self.samples.saturating_add(1);
         if let Some(cause) = resolved.fault {
             self.faults.seen(cause, sample.level.count_16);
@@ -67,6 +66,17 @@ impl<B: Board> Device<B> {
             self.journal_failed();
         }
         self.tell_faults(tick_ms);
+    }
+
+    /// Evaluates a sample; what moved stands in the memory.
+    // Apart, so that its room on the stack is not taken while a sector is opened.
+    #[inline(never)]
+    fn evaluate(&mut self, sample: &Sample) -> Resolved {
+        let Memory { plan, state, moves } = &mut *self.memory;
+        moves.clear();
+        step(plan, state, sample, |moved| {
+            let _ = moves.push(moved);
+        })
     }
 
     /// Appends the entries of one sample's or one press's moves; they carry the hash behind all of

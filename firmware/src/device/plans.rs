@@ -31,6 +31,10 @@ pub(super) fn load<F: NorFlash>(
     plan: &mut Plan,
     fingerprint: u64,
 ) -> Result<InForce, PlanError> {
+    // A turned bit of a number would go unseen below.
+    if !plans.is_sound(fingerprint) {
+        return Err(PlanError::Damaged);
+    }
     let mut stored = Stored { plans, fingerprint, offset: 0 };
     let header = decode_into(&mut stored, plan)?;
     Ok(InForce { fingerprint, serial: header.serial })

@@ -151,6 +151,8 @@ impl<F: NorFlash> Restore for Restored<'_, F> {
         self.memory.state.decode_into(bytes);
     }
 
+    // Apart, so that a plan is not read on top of it.
+    #[inline(never)]
     fn entry(&mut self, entry: &Entry) {
         match entry {
             Entry::Sample(sample) if self.in_force.is_some() => {

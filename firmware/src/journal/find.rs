@@ -100,6 +100,15 @@ impl<F: NorFlash> Ring<F> {
         Ok(None)
     }
 
+    /// Places that hold something which is no header of this ring.
+    pub(super) fn damaged_headers(&mut self) -> Result<u32, F::Error> {
+        let mut damaged = 0;
+        for place in 0..self.sectors() {
+            damaged += u32::from(matches!(self.peek(place)?, Peek::Damaged));
+        }
+        Ok(damaged)
+    }
+
     fn newest_of_all(&mut self) -> Result<Option<SectorHeader>, F::Error> {
         let mut newest: Option<SectorHeader> = None;
         for place in 0..self.sectors() {

@@ -12,6 +12,9 @@ use strake_core::journal::header::HEADER_BYTES;
 use strake_core::journal::samples::Chain;
 use strake_core::journal::{PAGE_BYTES, STATE_BYTES_MAX, SectorHeader};
 
+/// Places without a readable header that a cut may leave where no sector was ever opened: the first
+/// one, and the one erased ahead.
+const TORN_AT_FIRST_USE: u32 = 2;
 /// Places tried before the opening of a sector is given up.
 const PLACES_TRIED: u32 = 4;
 
@@ -59,6 +62,11 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
                 // A cut kept it from opening: nothing in it can be lost.
                 next_sequence = newest.sequence;
             }
+        } else {
+            let damaged = ring.damaged_headers()?;
+            if damaged > TORN_AT_FIRST_USE {
+                recovery.damaged_sectors = damaged;
+            }
         }
         recovery.reads = ring.reads();
         let journal = Self {
@@ -71,12 +79,14 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
             appended: false,
             hold: None,
             waiting,
+            told_lost: 0,
             counters: Counters::default(),
         };
         Ok((journal, recovery))
     }
 
     /// Opens the next sector; a place that refuses is passed over together with its number.
+    #[inline(never)]
     pub(super) fn open_sector(
         &mut self,
         now: &mut impl Snapshot,
@@ -86,6 +96,7 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         for sequence in first..first.saturating_add(PLACES_TRIED) {
             result = self.open_sector_at(sequence, now);
             if result.is_ok() {
+                self.tell_lost(now.tick_ms());
                 return Ok(());
             }
             self.erased_ahead = false;

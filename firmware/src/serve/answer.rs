@@ -12,7 +12,8 @@ use strake_core::wire::{
 #[derive(Debug)]
 pub(super) struct Memory {
     plan: PlanLoad,
-    /// Number of the kind and token of the order done last: the same again is answered, not done again.
+    /// Number of the kind and token of the order done last: the same again is answered, not done
+    /// again.
     order: Option<(u8, u32)>,
 }
 

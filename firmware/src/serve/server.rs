@@ -44,6 +44,8 @@ impl Server {
     ///
     /// # Errors
     /// The link's own. Nothing but the byte in question is lost by it; call again.
+    // Apart, so that the room for replies on the stack is not taken during a cycle.
+    #[inline(never)]
     pub fn poll<L, S>(&mut self, link: &mut L, served: &mut S) -> Result<(), L::Error>
     where
         L: Read + ReadReady + Write + WriteReady,

@@ -34,8 +34,8 @@ pub enum FailOn {
 /// # Errors
 /// When the file cannot be read or is no journal, or the result cannot be written.
 pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
-    let mut file = JournalFile::open(&args.journal).map_err(not_read)?;
-    let replay = replay::replay(&mut file).map_err(not_read)?;
+    let mut file = JournalFile::open(&args.journal).map_err(|error| not_read(&error))?;
+    let replay = replay::replay(&mut file).map_err(|error| not_read(&error))?;
     match term.settings().format {
         Format::Json => term.document(&Document::of(&replay))?,
         Format::Text => {
@@ -62,8 +62,8 @@ pub(super) fn verdict(replay: &replay::Replay) -> Exit {
     }
 }
 
-pub(super) fn not_read(error: JournalFileError) -> Failure {
-    let (exit, code, hint) = match &error {
+pub(super) fn not_read(error: &JournalFileError) -> Failure {
+    let (exit, code, hint) = match error {
         JournalFileError::Exists { .. } => {
             (Exit::Refused, "file-exists", "give another directory, or --force to replace it")
         }

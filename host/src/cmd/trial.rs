@@ -34,7 +34,7 @@ pub struct Args {
     /// The tank file; without it the brine day tank of the examples
     #[arg(value_name = "TANK")]
     pub tank: Option<PathBuf>,
-    /// A measured series to play: CSV with time_s, level_m and optional temp_C
+    /// A measured series to play: a CSV file, columns `time_s`, `level_m`, optional `temp_C`
     #[arg(long, value_name = "CSV")]
     pub series: Option<PathBuf>,
     /// Virtual time, as "12 h" or "365 d"; else as long as the story or the series lasts
@@ -173,7 +173,7 @@ fn say(term: &mut Term, day: &mut u64, stage: Stage) {
 
 fn failed(error: TrialError) -> Failure {
     match error {
-        TrialError::File(error) => not_read(error),
+        TrialError::File(error) => not_read(&error),
         TrialError::Directory { .. } => Failure::new(
             Exit::Partial,
             "cannot-write",

@@ -94,7 +94,9 @@ mod tests {
 
     fn count(series: &[f64]) -> Vec<(f64, f64)> {
         let mut rainflow = Rainflow::new(0.0);
-        series.iter().for_each(|&value| rainflow.push(value));
+        for &value in series {
+            rainflow.push(value);
+        }
         let mut summed: Vec<(f64, f64)> = Vec::new();
         for (range, cycles) in rainflow.cycles() {
             match summed.last_mut() {

@@ -96,19 +96,17 @@ fn what_happened(replay: &Replay, page: &mut Page) {
 
 fn alarm(line: &AlarmLine) -> String {
     let when = utc(line.utc_s).unwrap_or_else(|| format!("tick {} ms", line.moment.tick_ms));
-    let mut text = format!("{when}  {:<7} {}", line.kind, line.name);
-    if line.utilisation > 0.0 {
-        text.push_str(&format!(" at {:.3}", line.utilisation));
-    }
-    match line.acknowledged_after_ms {
-        Some(after_ms) => text.push_str(&format!(", acknowledged after {}", span(after_ms))),
-        None => text.push_str(", not acknowledged"),
-    }
-    match line.returned_after_ms {
-        Some(after_ms) => text.push_str(&format!(", gone after {}", span(after_ms))),
-        None => text.push_str(", still standing, or gone in a later start"),
-    }
-    text
+    let bound =
+        if line.utilisation > 0.0 { format!(" at {:.3}", line.utilisation) } else { String::new() };
+    let acknowledged = match line.acknowledged_after_ms {
+        Some(after_ms) => format!("acknowledged after {}", span(after_ms)),
+        None => "not acknowledged".into(),
+    };
+    let gone = match line.returned_after_ms {
+        Some(after_ms) => format!("gone after {}", span(after_ms)),
+        None => "still standing, or gone in a later start".into(),
+    };
+    format!("{when}  {:<7} {}{bound}, {acknowledged}, {gone}", line.kind, line.name)
 }
 
 fn peak(part: &PartSummary, units: UnitSystem, page: &mut Page) {

@@ -81,6 +81,7 @@ fn plan() -> Plan {
 struct Hill;
 
 impl Level for Hill {
+    #[expect(clippy::cast_precision_loss, reason = "a day of milliseconds is small")]
     fn level_m(&self, now_ms: u64) -> f64 {
         let hours = now_ms as f64 / 3.6e6;
         (7.0 + 0.6 * hours).min(8.4).min(8.4 - 1.0 * (hours - 3.5))

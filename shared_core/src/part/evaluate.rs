@@ -4,7 +4,7 @@ use super::{Capacities, DESIGN_PRESSURE_FLOOR_PA, DesignState, Geometry, Part, U
 use crate::lane::Lane;
 use crate::liquid::States;
 use crate::plan::Plan;
-use crate::pressure::Pressure;
+use crate::pressure::{Pressure, Resultant};
 
 /// Loads of a part under one state. What a part does not have stays zero.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -51,13 +51,15 @@ impl<const N: usize> Loads<N> {
     /// Hoop tension `p D / 2` at the design point (thin cylinder; Timoshenko, Strength of
     /// Materials).
     #[inline]
-    fn of_course(pressure_pa: Lane<N>, half_diameter_m: f32) -> Self {
-        Self { pressure_pa, hoop_tension_n_m: pressure_pa * half_diameter_m, ..Self::NONE }
+    fn put_course(&mut self, pressure_pa: Lane<N>, half_diameter_m: f32) {
+        self.pressure_pa = pressure_pa;
+        self.hoop_tension_n_m = pressure_pa * half_diameter_m;
     }
 
     #[inline]
-    fn of_plane(pressure_pa: Lane<N>, force_n: Lane<N>) -> Self {
-        Self { pressure_pa, force_n, ..Self::NONE }
+    fn put_plane(&mut self, pressure_pa: Lane<N>, force_n: Lane<N>) {
+        self.pressure_pa = pressure_pa;
+        self.force_n = force_n;
     }
 }
 
@@ -83,7 +85,9 @@ pub fn evaluate<const N: usize>(plan: &Plan, part: &Part, states: &States<N>) ->
     loads
 }
 
-/// [`evaluate`] into room that is already there: on the device a copy costs as much as a part.
+/// [`evaluate`] into room that is already there: on the device a copy costs as much as a part. The
+/// room must come from [`PartLoads::NONE`] or from a part of the same kind: what the kind does not
+/// have is not written.
 #[inline]
 pub(crate) fn evaluate_into<const N: usize>(
     plan: &Plan,
@@ -123,23 +127,26 @@ fn judge<const N: usize>(part: &Part, states: &States<N>, loads: &mut PartLoads<
     match &part.geometry {
         Geometry::Course { half_diameter_m, design_point_m, .. } => {
             let point_m = Lane::splat(*design_point_m);
-            loads.estimate = Loads::of_course(estimate.at(point_m), *half_diameter_m);
-            loads.outward = Loads::of_course(upper.at(point_m), *half_diameter_m);
-            loads.inward = Loads::of_course(lower.at(point_m), *half_diameter_m);
+            loads.estimate.put_course(estimate.at(point_m), *half_diameter_m);
+            loads.outward.put_course(upper.at(point_m), *half_diameter_m);
+            loads.inward.put_course(lower.at(point_m), *half_diameter_m);
         }
         Geometry::Plane { shape, bolts, .. } => {
             let middle = estimate.on(shape, part.bottom_m);
             let most = upper.on(shape, part.bottom_m);
             let least = lower.on(shape, part.bottom_m);
-            loads.estimate = Loads::of_plane(largest_pressure(part, estimate), middle.force_n);
+            loads.estimate.put_plane(largest_pressure(part, estimate, &middle), middle.force_n);
             loads.estimate.moment_centroid_n_m = middle.moment_n_m;
-            loads.outward = Loads::of_plane(largest_pressure(part, upper), most.force_n);
-            loads.inward = Loads::of_plane(least_pressure(part, lower), least.force_n);
-            if let Some(bolts) = bolts {
-                loads.estimate.bolt_n = bolts.largest(&middle);
-                [loads.outward.bolt_n, loads.inward.bolt_n] =
-                    bolts.bounds(shape, part.bottom_m, (upper, &most), (lower, &least));
-            }
+            loads.outward.put_plane(largest_pressure(part, upper, &most), most.force_n);
+            loads.inward.put_plane(least_pressure(part, lower), least.force_n);
+            [loads.estimate.bolt_n, loads.outward.bolt_n, loads.inward.bolt_n] = match bolts {
+                None => [Lane::ZERO; 3],
+                Some(bolts) => {
+                    let [largest, least] =
+                        bolts.bounds(shape, part.bottom_m, (upper, &most), (lower, &least));
+                    [bolts.largest(&middle), largest, least]
+                }
+            };
         }
     }
     [loads.utilisation, loads.utilisation_bound] = if part.judged_outward() {
@@ -157,31 +164,39 @@ fn judge<const N: usize>(part: &Part, states: &States<N>, loads: &mut PartLoads<
     };
 }
 
-/// Heights at which a pressure difference can be extreme on a part: its ends and every surface
-/// between them. Without liquid outside the pressure falls with height, and the ends are enough.
+/// Largest pressure on a plane part. Without liquid outside the pressure falls with height, and the
+/// foot is enough.
+#[inline]
+fn largest_pressure<const N: usize>(
+    part: &Part,
+    state: &Pressure<N>,
+    whole: &Resultant<N>,
+) -> Lane<N> {
+    if part.outside == 0 { whole.foot_pa } else { extremes(part, state, Lane::at_least) }
+}
+
+/// Least pressure on a part; without liquid outside it stands at the top.
+#[inline]
+fn least_pressure<const N: usize>(part: &Part, state: &Pressure<N>) -> Lane<N> {
+    if part.outside == 0 {
+        state.at(Lane::splat(part.top_m))
+    } else {
+        extremes(part, state, Lane::at_most)
+    }
+}
+
+/// The extreme pressure difference on a part: it stands at an end or at a surface between them.
 fn extremes<const N: usize>(
     part: &Part,
     state: &Pressure<N>,
-    at_end: f32,
     pick: impl Fn(Lane<N>, Lane<N>) -> Lane<N>,
 ) -> Lane<N> {
-    let mut found = state.at(Lane::splat(at_end));
-    if part.outside != 0 {
-        let (bottom, top) = (Lane::splat(part.bottom_m), Lane::splat(part.top_m));
-        found = pick(pick(found, state.at(bottom)), state.at(top));
-        for surface in state.surfaces() {
-            found = pick(found, state.at(surface.height_m.at_least(bottom).at_most(top)));
-        }
+    let (bottom, top) = (Lane::splat(part.bottom_m), Lane::splat(part.top_m));
+    let mut found = pick(state.at(bottom), state.at(top));
+    for surface in state.surfaces() {
+        found = pick(found, state.at(surface.height_m.at_least(bottom).at_most(top)));
     }
     found
-}
-
-fn largest_pressure<const N: usize>(part: &Part, state: &Pressure<N>) -> Lane<N> {
-    extremes(part, state, part.bottom_m, Lane::at_least)
-}
-
-fn least_pressure<const N: usize>(part: &Part, state: &Pressure<N>) -> Lane<N> {
-    extremes(part, state, part.top_m, Lane::at_most)
 }
 
 /// Largest ratio of a load to its capacity; zero where the loads act inwards.
@@ -193,10 +208,9 @@ fn outward_utilisation<const N: usize>(
     let pressure_pa = match part.geometry {
         Geometry::Plane { .. } => loads.pressure_pa,
         // The stated pressure of a course holds for all of it, not for its design point alone.
-        Geometry::Course { .. } if part.outward.pressure_pa.is_some() => {
-            largest_pressure(part, state)
-        }
-        Geometry::Course { .. } => Lane::ZERO,
+        Geometry::Course { .. } if part.outward.pressure_pa.is_none() => Lane::ZERO,
+        Geometry::Course { .. } if part.outside == 0 => state.at(Lane::splat(part.bottom_m)),
+        Geometry::Course { .. } => extremes(part, state, Lane::at_least),
     };
     let mut utilisation = ratio(&part.outward, pressure_pa, loads, 1.0);
     for design in &part.designed_for {

@@ -12,7 +12,7 @@ use super::expected::Words;
 use super::vectors::{FILE_MAGIC, RESULT_HEAD_BYTES, RESULT_MAGIC};
 
 /// A vector file and its results fit the journal's flash.
-const ROOM_BYTES: usize = PLANS_OFFSET as usize;
+const ROOM_BYTES: u64 = PLANS_OFFSET;
 /// Part number field of the identification register, and that of a Cortex-M4 by Arm (Armv7-M,
 /// B3.2.3; Cortex-M4 technical reference manual, 4.1).
 const PART_MASK: u32 = 0xFF00_FFF0;
@@ -62,6 +62,7 @@ fn fitting(cases: &[Case], expected: &[Words]) -> usize {
     let mut count = 0;
     for (case, words) in cases.iter().zip(expected) {
         let bytes = 12 + case.bytes.len() + 20 * case.inputs.len() + 4 * words.words.len();
+        let bytes = bytes as u64;
         if bytes > room {
             break;
         }

@@ -2,11 +2,16 @@
 //! loss of power would, and counts the stores.
 //!
 //! Arguments: `base`, `bytes` (the range), `after` (the store to end at; none: never), `out` (file
-//! that the count is written to at an orderly exit). Exit status of a cut: 77.
+//! that the count is written to at an orderly exit), `flash` and `record` (the file behind the
+//! range; eight bytes a store go into `record`: offset and the word that stands there then, both
+//! little endian). Exit status of a cut: 77.
 //!
 //! The plugin interface is version 1 of QEMU's `qemu-plugin.h`.
 
 use std::ffi::{CStr, c_char, c_int, c_uint, c_void};
+use std::fs::File;
+use std::io::Write as _;
+use std::os::unix::fs::FileExt as _;
 use std::sync::OnceLock;
 use std::sync::atomic::{AtomicU64, Ordering::Relaxed};
 
@@ -44,6 +49,8 @@ static BYTES: AtomicU64 = AtomicU64::new(0);
 static AFTER: AtomicU64 = AtomicU64::new(u64::MAX);
 static STORES: AtomicU64 = AtomicU64::new(0);
 static OUT: OnceLock<String> = OnceLock::new();
+static FLASH: OnceLock<File> = OnceLock::new();
+static RECORD: OnceLock<File> = OnceLock::new();
 
 extern "C" fn on_access(_cpu: c_uint, access: u32, address: u64, _data: *mut c_void) {
     // SAFETY: `access` is what the emulator passed. Asked here, since the filter of the
@@ -51,13 +58,28 @@ extern "C" fn on_access(_cpu: c_uint, access: u32, address: u64, _data: *mut c_v
     if !unsafe { qemu_plugin_mem_is_store(access) } {
         return;
     }
-    if address.wrapping_sub(BASE.load(Relaxed)) >= BYTES.load(Relaxed) {
+    let offset = address.wrapping_sub(BASE.load(Relaxed));
+    if offset >= BYTES.load(Relaxed) {
         return;
     }
+    record(offset);
     let count = STORES.fetch_add(1, Relaxed) + 1;
     if count >= AFTER.load(Relaxed) {
         // SAFETY: ends the process, without anything that would still write.
         unsafe { _exit(CUT) }
+    }
+}
+
+/// The callback comes behind the store, so the file holds the word already.
+fn record(offset: u64) {
+    let (Some(flash), Some(mut record)) = (FLASH.get(), RECORD.get()) else { return };
+    let mut line = [0; 8];
+    line[..4].copy_from_slice(&offset.to_le_bytes()[..4]);
+    let done = flash.read_exact_at(&mut line[4..], offset).and_then(|()| record.write_all(&line));
+    if done.is_err() {
+        eprintln!("power_cut: a store could not be recorded");
+        // SAFETY: ends the process; a record with a hole is worth nothing.
+        unsafe { _exit(1) }
     }
 }
 
@@ -94,6 +116,8 @@ fn set(argument: &str) -> Option<()> {
         "bytes" => BYTES.store(number(value)?, Relaxed),
         "after" => AFTER.store(number(value)?, Relaxed),
         "out" => OUT.set(value.to_owned()).ok()?,
+        "flash" => FLASH.set(File::open(value).ok()?).ok()?,
+        "record" => RECORD.set(File::create(value).ok()?).ok()?,
         _ => return None,
     }
     Some(())

@@ -20,7 +20,7 @@ fn band(random: &mut Random, low_kg_m3: f64, high_kg_m3: f64) -> Band {
 fn table(random: &mut Random, near_kg_m3: f64) -> DensityTable {
     let mut celsius = random.between(-20.0, 10.0);
     let mut points = Vec::new();
-    for _ in 0..1 + random.below(8) {
+    for _ in 0..=random.below(8) {
         let density = near_kg_m3 * (1.0 - 4e-4 * celsius) + random.between(-3.0, 3.0);
         points.push((single(celsius), single(density)));
         celsius += random.between(1.0, 20.0);

@@ -1,0 +1,165 @@
+//! What the shipped image takes: flash, static RAM, stack, instructions; all of one file.
+//!
+//! The stack is painted anew before each stretch and read after it. Instructions are counted by the
+//! emulator's plugin, interrupts included; they are no cycles.
+
+use std::collections::BTreeMap;
+use std::error::Error;
+use std::fs;
+use std::sync::Arc;
+
+use serde::Deserialize;
+
+use crate::device::{Site, image};
+use crate::image::Image;
+use crate::machine::Setup;
+use crate::plugin::{Span, instruction_count};
+use crate::toolchain::root;
+use crate::{Outcome, Test, hold};
+
+pub(crate) const TESTS: &[Test] = tests![the_device_keeps_its_budgets,];
+
+/// Stack of the board (its linker script).
+const STACK: (u32, u32) = (0x2000_0000, 0x2000_3000);
+/// Flash that stays free for the check of the plan's seal.
+const SEAL_BYTES: u64 = 24 << 10;
+/// Bus reads of a cycle: counts of a burst.
+const READS: usize = 5;
+
+/// Names of functions whose instructions are counted, and where they stand in the image.
+const SPANS: [(&str, &str); 5] = [
+    ("loads", "evaluate::loads"),
+    ("digest", "digest..add"),
+    ("cycle", "device::cycle..cycle"),
+    ("wait", "modbus..answer"),
+    ("close", "journal::open..open_sector"),
+];
+
+#[derive(Clone, Copy, Debug, Deserialize)]
+#[serde(deny_unknown_fields)]
+struct Budgets {
+    flash_bytes: u64,
+    static_ram_bytes: u64,
+    stack_at_start_bytes: u64,
+    stack_in_cycle_bytes: u64,
+    stack_closing_bytes: u64,
+    evaluate_instructions: u64,
+    cycle_instructions: u64,
+    sector_close_instructions: u64,
+}
+
+/// The design's ceilings, which no budget may pass.
+const CEILINGS: Budgets = Budgets {
+    flash_bytes: (96 << 10) - SEAL_BYTES,
+    static_ram_bytes: 16 << 10,
+    stack_at_start_bytes: 10 << 10,
+    stack_in_cycle_bytes: 4 << 10,
+    stack_closing_bytes: 4 << 10,
+    evaluate_instructions: EVALUATE_CEILING,
+    cycle_instructions: 20_000,
+    sector_close_instructions: u64::MAX,
+};
+const EVALUATE_CEILING: u64 = 5_000;
+
+impl Budgets {
+    fn rows(self) -> [(&'static str, u64); 8] {
+        [
+            ("flash, B", self.flash_bytes),
+            ("static RAM, B", self.static_ram_bytes),
+            ("stack, start-up and plan load, B", self.stack_at_start_bytes),
+            ("stack, cycles and an alarm, B", self.stack_in_cycle_bytes),
+            ("stack, sector close and collection, B", self.stack_closing_bytes),
+            ("evaluate, instructions", self.evaluate_instructions),
+            ("cycle without bus waits, median, instructions", self.cycle_instructions),
+            ("closing a sector, instructions", self.sector_close_instructions),
+        ]
+    }
+}
+
+fn the_device_keeps_its_budgets() -> Outcome {
+    let image = image()?;
+    let text = fs::read_to_string(root().join("tests/emulated/budgets.toml"))?;
+    let budgets: Budgets = toml::from_str(&text)?;
+    let measured = measure(&image)?;
+    let hash = &image.sha256;
+    println!("{:<46} {:>9} {:>9} {:>9}  image", "", "measured", "budget", "ceiling");
+    let mut over = Vec::new();
+    let rows = measured.rows().into_iter().zip(budgets.rows()).zip(CEILINGS.rows());
+    for (((what, found), (_, budget)), (_, ceiling)) in rows {
+        let shown = if ceiling == u64::MAX { "-".to_owned() } else { ceiling.to_string() };
+        println!("{what:<46} {found:>9} {budget:>9} {shown:>9}  {hash}");
+        if found > budget || budget > ceiling {
+            over.push(format!("{what}: {found}, budget {budget}, ceiling {shown}"));
+        }
+    }
+    hold(over.is_empty(), &over.join("; "))
+}
+
+fn measure(image: &Arc<Image>) -> Result<Budgets, Box<dyn Error>> {
+    let mut spans = Vec::new();
+    for (name, symbol) in SPANS {
+        let places = image.symbols(symbol)?;
+        hold(!places.is_empty(), &format!("no function {symbol} in the image"))?;
+        spans.extend(places.into_iter().map(|(start, _)| Span { name, start, stop: None }));
+    }
+    let plugin = instruction_count(&spans)?;
+    let out = plugin.out;
+    let mut site = Site::commissioned(Setup::new(image).plugin(plugin).debugged())?;
+    let stack_at_start_bytes = peak(&mut site)?;
+    paint(&mut site)?;
+    site.raise_alarm()?;
+    site.wait_for("a few cycles", |status| status.samples > 12)?;
+    let stack_in_cycle_bytes = peak(&mut site)?;
+    // So near to the end that the samples of the next cycle have no room.
+    site.fill_journal(4096 - 40)?;
+    paint(&mut site)?;
+    site.wait_for("a sector to close", |status| status.journal.newest == 1)?;
+    site.replayed_identically()?;
+    let stack_closing_bytes = peak(&mut site)?;
+    let folder = site.machine.quit()?;
+    let text = fs::read_to_string(folder.folder().join(out))?;
+    let counts = counts(&text);
+    let of = |name: &str| counts.get(name).ok_or(format!("{name} never ran"));
+    let most = |name: &str| of(name).map(|counts| counts.iter().copied().max().unwrap_or(0));
+    let parts = 12;
+    let digest: u64 = of("digest")?.iter().take(parts).sum();
+    let waits = of("wait")?.chunks(READS).map(|waits| waits.iter().sum::<u64>());
+    let cycles = of("cycle")?.iter().zip(waits);
+    let mut cycles: Vec<u64> = cycles.map(|(cycle, waits)| cycle - waits).collect();
+    cycles.sort_unstable();
+    println!("cycles {cycles:?}, digest {digest}");
+    let footprint = image.footprint()?;
+    Ok(Budgets {
+        flash_bytes: footprint.flash,
+        static_ram_bytes: footprint.ram,
+        stack_at_start_bytes,
+        stack_in_cycle_bytes,
+        stack_closing_bytes,
+        evaluate_instructions: most("loads")? - digest,
+        cycle_instructions: *cycles.get(cycles.len() / 2).ok_or("no cycle")?,
+        sector_close_instructions: most("close")?,
+    })
+}
+
+fn paint(site: &mut Site) -> Outcome {
+    site.machine.debugger()?.halted(|debugger| debugger.paint_stack(STACK.0))?;
+    Ok(())
+}
+
+fn peak(site: &mut Site) -> Result<u64, Box<dyn Error>> {
+    let debugger = site.machine.debugger()?;
+    Ok(debugger.halted(|debugger| debugger.stack_peak(STACK.0, STACK.1))?.into())
+}
+
+/// The counts of each span, in the order in which it ran.
+fn counts(text: &str) -> BTreeMap<&str, Vec<u64>> {
+    let mut counts = BTreeMap::<_, Vec<u64>>::new();
+    for line in text.lines() {
+        if let Some((name, count)) = line.split_once(' ')
+            && let Ok(count) = count.parse()
+        {
+            counts.entry(name).or_default().push(count);
+        }
+    }
+    counts
+}
