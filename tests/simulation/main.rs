@@ -38,7 +38,7 @@ mod run;
 mod visit;
 mod world;
 
-use run::{Parameters, Tally, run};
+use run::{Parameters, Tally, run, run_with};
 use std::time::Instant;
 
 fn all(runs: impl Iterator<Item = Parameters>) -> Tally {
@@ -54,12 +54,26 @@ fn all(runs: impl Iterator<Item = Parameters>) -> Tally {
     sum
 }
 
-/// Two virtual months.
+/// Four virtual months.
 #[test]
 fn a_few_months_in_short() {
-    let runs = (1..=12).map(|seed| Parameters { seed, days: 5, sectors: [20, 36, 64][seed as usize % 3] });
+    let runs =
+        (1..=24).map(|seed| Parameters { seed, days: 5, sectors: [20, 36, 64][seed as usize % 3] });
     let tally = all(runs);
     assert!(tally.harm_was_done(), "{tally:?}");
+}
+
+/// A control: one flipped bit in one block must be noticed, so the model can see.
+#[test]
+fn rot_is_noticed() {
+    let parameters = Parameters { seed: 3, days: 2, sectors: 36 };
+    let outcome = run_with(parameters, |bench| {
+        if bench.now_ms.get() > 86_400_000 {
+            bench.journal.with(|flash| flash.corrupt(3 * 256 + 9, 1, |byte| byte ^ 0x10));
+        }
+    });
+    let error = outcome.expect_err("a durable entry was destroyed");
+    assert!(error.contains("is lost"), "{error}");
 }
 
 #[test]
@@ -68,7 +82,8 @@ fn long() {
     let range = std::env::var("STRAKE_SEEDS").unwrap_or_else(|_| "1000..1040".into());
     let (first, end) = range.split_once("..").expect("STRAKE_SEEDS is a range, as 100..200");
     let seeds = first.parse().expect("a number")..end.parse().expect("a number");
-    let tally = all(seeds.map(|seed: u64| Parameters { seed, days: 15, sectors: 20 + seed as usize % 50 }));
+    let tally =
+        all(seeds.map(|seed: u64| Parameters { seed, days: 15, sectors: 20 + seed as usize % 50 }));
     assert!(tally.harm_was_done(), "{tally:?}");
 }
 

@@ -13,6 +13,8 @@ use strake_core::signal::Quality;
 pub(crate) struct Cut {
     /// When the power went, ms.
     pub(crate) at_ms: u64,
+    /// When that start had begun, ms.
+    pub(crate) since_ms: u64,
     /// Longest time that may be missing; `None` when the flash refuses, so that more may.
     pub(crate) missing_ms_max: Option<u64>,
 }
@@ -34,6 +36,8 @@ pub(crate) struct Model {
     /// The last look at the flash.
     image: Vec<u8>,
     sectors: Vec<Sector>,
+    /// Sequence from which on the ring must keep every sector.
+    pub(crate) kept_from: u32,
     /// Sectors that refuse.
     pub(crate) worn: u32,
     pub(crate) samples: u64,
@@ -53,6 +57,7 @@ impl Model {
             boot: 0,
             image: Vec::new(),
             sectors: Vec::new(),
+            kept_from: 0,
             worn: 0,
             samples: 0,
             moves: 0,
@@ -97,16 +102,23 @@ impl Model {
         Ok(())
     }
 
+    /// Sequence of the newest sector.
+    pub(crate) fn newest(&self) -> u32 {
+        self.sectors.last().map_or(0, |sector| sector.sequence)
+    }
+
     /// Everything durable still stands, in every sector that the ring must keep.
     fn kept(&mut self, sectors: &[Sector], ring: u32) -> Result<(), String> {
         let newest = sectors.last().map_or(0, |sector| sector.sequence);
         // One place is erased ahead; each worn one may have been passed over for the next.
         let from = (newest + 2 + self.worn).saturating_sub(ring);
+        self.kept_from = from;
         self.entries.retain(|_, (sequence, _)| *sequence >= from);
         for (number, (sequence, entry)) in &self.entries {
-            let stands = sectors.iter().find(|one| one.sequence == *sequence).and_then(|one| {
-                one.entries.get(number.checked_sub(one.first_entry)? as usize)
-            });
+            let stands = sectors
+                .iter()
+                .find(|one| one.sequence == *sequence)
+                .and_then(|one| one.entries.get(number.checked_sub(one.first_entry)? as usize));
             if stands != Some(entry) {
                 return Err(format!("entry {number} in sector {sequence} is lost: {entry:?}"));
             }
@@ -125,13 +137,16 @@ impl Model {
         match entry {
             Entry::Sample(sample) => self.sample(sample, now_ms)?,
             Entry::StartUp { boot, missing_ms_max, .. } => {
-                if *boot != self.boot + 1 {
+                // A start that a cut ended may have left its number in a header alone.
+                if *boot <= self.boot {
                     return Err(format!("start {} came before", self.boot));
                 }
                 self.boot = *boot;
                 self.entry_start_ms = started_ms;
                 let missing_ms = match (cut, self.last_sample_ms) {
-                    (Some(Cut { at_ms, missing_ms_max: Some(_) }), Some(last_ms)) => at_ms - last_ms,
+                    (Some(Cut { at_ms, since_ms, missing_ms_max: Some(_) }), Some(last_ms)) => {
+                        at_ms.saturating_sub(last_ms.max(since_ms))
+                    }
                     _ => 0,
                 };
                 let most_ms = cut.and_then(|cut| cut.missing_ms_max).unwrap_or(u64::MAX);
@@ -146,11 +161,11 @@ impl Model {
         Ok(())
     }
 
-    /// A sample is what the sensor showed at that moment, and comes after the one before.
+    /// A sample is what the sensor showed at that moment, and comes not before the one before.
     fn sample(&mut self, sample: &Sample, now_ms: u64) -> Result<(), String> {
         self.samples += 1;
         let at_ms = self.entry_start_ms + sample.tick_ms;
-        if at_ms > now_ms || self.last_sample_ms.is_some_and(|last_ms| last_ms >= at_ms) {
+        if at_ms > now_ms || self.last_sample_ms.is_some_and(|last_ms| last_ms > at_ms) {
             let last_ms = self.last_sample_ms;
             return Err(format!("at {at_ms} ms, now {now_ms} ms, the last at {last_ms:?} ms"));
         }

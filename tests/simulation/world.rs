@@ -41,9 +41,7 @@ impl Level for Wander {
     fn level_m(&self, now_ms: u64) -> f64 {
         let after = self.points.partition_point(|&(time_ms, _)| time_ms <= now_ms);
         match (self.points[after - 1], self.points.get(after)) {
-            ((t0, h0), Some(&(t1, h1))) => {
-                h0 + (h1 - h0) * (now_ms - t0) as f64 / (t1 - t0) as f64
-            }
+            ((t0, h0), Some(&(t1, h1))) => h0 + (h1 - h0) * (now_ms - t0) as f64 / (t1 - t0) as f64,
             ((_, level_m), None) => level_m,
         }
     }
@@ -73,8 +71,7 @@ pub(crate) fn sealed(number: u64) -> Sealed {
     let mut compiled = compiled();
     let logging = &mut compiled.plan.logging;
     logging.flush_after_ms = [60_000, 30_000, 120_000][(number % 3) as usize];
-    let (flush_after_ms, interval_ms) =
-        (logging.flush_after_ms.into(), logging.interval_ms.into());
+    let (flush_after_ms, interval_ms) = (logging.flush_after_ms.into(), logging.interval_ms.into());
     let serial = SERIAL + number;
     let bytes = compiled.encode(serial).unwrap();
     Sealed { serial, fingerprint: fingerprint(&bytes), flush_after_ms, interval_ms, bytes }

@@ -26,8 +26,8 @@ pub struct Args {
 /// # Errors
 /// When the file cannot be read or is no journal, or the result cannot be written.
 pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
-    let mut file = JournalFile::open(&args.journal).map_err(not_read)?;
-    let report = verify::verify(&mut file).map_err(not_read)?;
+    let mut file = JournalFile::open(&args.journal).map_err(|error| not_read(&error))?;
+    let report = verify::verify(&mut file).map_err(|error| not_read(&error))?;
     match term.settings().format {
         Format::Json => term.document(&Document::of(&report))?,
         Format::Text => {
