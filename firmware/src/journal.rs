@@ -107,5 +107,7 @@ pub struct Journal<F, W = Within<Waiting>> {
     appended: bool,
     hold: Option<Hold>,
     waiting: W,
+    /// Of the lost samples those that a gap states.
+    told_lost: u32,
     counters: Counters,
 }

@@ -12,6 +12,7 @@ pub mod seal;
 pub mod status;
 mod tank_file;
 pub mod trial;
+pub mod verify;
 
 pub use device::PortArgs;
 
@@ -40,6 +41,8 @@ pub enum Command {
     Status(status::Args),
     /// The whole job on a simulated device
     Trial(trial::Args),
+    /// Whether a journal is whole and holds what it says about itself
+    Verify(verify::Args),
 }
 
 impl Command {
@@ -58,6 +61,7 @@ impl Command {
             Self::Seal(args) => seal::run(args, term),
             Self::Status(args) => status::run(args, term),
             Self::Trial(args) => trial::run(args, term),
+            Self::Verify(args) => verify::run(args, term),
         }
     }
 }

@@ -8,14 +8,14 @@ use std::path::Path;
 use strake_core::journal::check::{CRC32, block_check};
 use strake_core::journal::header::HEADER_BYTES;
 
-const TAG_PLAN: u8 = 2;
-const TAG_SECTOR: u8 = 3;
+pub(crate) const TAG_PLAN: u8 = 2;
+pub(crate) const TAG_SECTOR: u8 = 3;
 /// Forms of blocks.
-const SAMPLES: u8 = 0;
+pub(crate) const SAMPLES: u8 = 0;
 const EVENTS: u8 = 2;
 
 /// Places of the payloads of all records with a tag.
-fn payloads(file: &[u8], tag: u8) -> Vec<Range<usize>> {
+pub(crate) fn payloads(file: &[u8], tag: u8) -> Vec<Range<usize>> {
     let mut found = Vec::new();
     let mut at = 8;
     while at < file.len() {
@@ -29,13 +29,13 @@ fn payloads(file: &[u8], tag: u8) -> Vec<Range<usize>> {
 }
 
 /// Puts the record's check right again.
-fn mend_record(file: &mut [u8], payload: &Range<usize>) {
+pub(crate) fn mend_record(file: &mut [u8], payload: &Range<usize>) {
     let check = CRC32.checksum(&file[payload.start - 5..payload.end]);
     file[payload.end..payload.end + 4].copy_from_slice(&check.to_le_bytes());
 }
 
 /// Places of the blocks of a form in a sector (words of four bytes), behind the header.
-fn blocks(sector: &[u8], form: u8) -> Vec<Range<usize>> {
+pub(crate) fn blocks(sector: &[u8], form: u8) -> Vec<Range<usize>> {
     let mut found = Vec::new();
     let mut at = HEADER_BYTES;
     while at < sector.len() {
@@ -54,7 +54,7 @@ fn blocks(sector: &[u8], form: u8) -> Vec<Range<usize>> {
 }
 
 /// Changes the bytes of one block and mends block and record.
-fn change_block(
+pub(crate) fn change_block(
     file: &mut [u8],
     form: u8,
     pick: impl Fn(&[u8]) -> bool,

@@ -4,3 +4,4 @@ mod bench;
 mod changed;
 mod measured;
 mod story;
+mod verified;

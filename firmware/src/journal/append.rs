@@ -32,7 +32,7 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         if self.waiting.is_full() {
             result = self.flush();
         }
-        if !self.fits(sample) {
+        if self.waiting.is_full() || !self.fits(sample) {
             result = self.flush().and(result);
             self.give_up_waiting();
             if let Err(error) = self.open_sector(now) {
@@ -97,8 +97,8 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
     /// Writes events, behind all that waits. A sample among them is refused.
     ///
     /// # Errors
-    /// When the flash refuses twice. What waited and was not written goes on waiting; of the events
-    /// those up to some point may be written.
+    /// When the flash refuses in the open sector and in the next. Of the events those up to some
+    /// point may be written; what waited is written, or given up and stated as a gap.
     pub fn append_events(
         &mut self,
         mut entries: &[Entry],
@@ -107,8 +107,12 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         if entries.iter().any(|entry| matches!(entry, Entry::Sample(_))) {
             return Err(JournalError::Unencodable);
         }
-        self.flush()?;
-        let mut tries = TRIES;
+        if self.flush().is_err() {
+            // The next sector's checkpoint contains what waited; the gap behind it says so.
+            self.give_up_waiting();
+            self.open_sector(now)?;
+        }
+        let (mut tries, mut moved) = (TRIES, false);
         while !entries.is_empty() {
             let Some((place, _)) = self.place() else {
                 self.open_sector(now)?;
@@ -121,15 +125,35 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
             };
             match self.append(place, &block, encoded) {
                 Ok(()) => entries = entries.get(encoded.taken..).unwrap_or(&[]),
-                Err(error) => {
-                    tries -= 1;
-                    if tries == 0 {
-                        return Err(JournalError::Flash(error));
+                Err(error) if tries == 1 && moved => return Err(JournalError::Flash(error)),
+                Err(_) if tries == 1 => {
+                    self.open_sector(now)?;
+                    (tries, moved) = (TRIES, true);
+                }
+                Err(_) => tries -= 1,
+            }
+        }
+        Ok(())
+    }
+
+    /// States the samples that were given up, first in a new sector: its checkpoint contains what
+    /// they led to. When even that is refused, the next sector states them.
+    pub(super) fn tell_lost(&mut self, tick_ms: u64) {
+        let missing = self.counters.lost_samples.saturating_sub(self.told_lost);
+        for _ in 0..TRIES {
+            let Some((place, _)) = self.place().filter(|_| missing > 0) else { return };
+            let mut block = [0; PAGE_BYTES];
+            let entry = Entry::Gap { tick_ms, missing };
+            match encode_events(place, [&entry], &mut block) {
+                None => self.next_page(),
+                Some(encoded) => {
+                    if self.append(place, &block, encoded).is_ok() {
+                        self.told_lost = self.counters.lost_samples;
+                        return;
                     }
                 }
             }
         }
-        Ok(())
     }
 
     /// Programs a block at the end of the open sector. After a refusal the end is the next page.

@@ -79,6 +79,7 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
             appended: false,
             hold: None,
             waiting,
+            told_lost: 0,
             counters: Counters::default(),
         };
         Ok((journal, recovery))
@@ -95,6 +96,7 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         for sequence in first..first.saturating_add(PLACES_TRIED) {
             result = self.open_sector_at(sequence, now);
             if result.is_ok() {
+                self.tell_lost(now.tick_ms());
                 return Ok(());
             }
             self.erased_ahead = false;

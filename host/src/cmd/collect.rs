@@ -3,12 +3,12 @@
 use super::device::{PortArgs, connect};
 use crate::exit::Exit;
 use crate::failure::Failure;
-use crate::journal_check::{JournalCheck, check};
 use crate::journal_file::{JournalFile, PartFile};
 use crate::link::{Collected, Progress, collect};
 use crate::page::{Page, counted};
 use crate::term::{Format, Term};
 use crate::utc;
+use crate::verify::{Report, verify};
 use serde::Serialize;
 use std::ops::ControlFlow;
 use std::path::{Path, PathBuf};
@@ -99,8 +99,8 @@ pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
     let collected = result?;
     let target = args.output.join(format!("{name}-{}.strake-journal", utc::stamp(utc_s)));
     part.finish(&collected.head, &target, false)?;
-    let check = check(&mut JournalFile::open(&target)?)?;
-    let document = Document::new(port, device_id, &target, &collected, &check);
+    let report = verify(&mut JournalFile::open(&target)?)?;
+    let document = Document::new(port, device_id, &target, &collected, &report);
     match term.settings().format {
         Format::Json => term.document(&document)?,
         Format::Text => {
@@ -139,28 +139,28 @@ impl Document {
         device_id: String,
         target: &Path,
         collected: &Collected,
-        check: &JournalCheck,
+        report: &Report,
     ) -> Self {
         Self {
             schema: "strake.collect/1",
             port,
             device_id,
             file: target.display().to_string(),
-            complete: check.complete() && collected.gone == 0,
-            oldest_sector: check.oldest,
-            newest_sector: check.newest,
-            sectors: check.sectors,
-            bytes: check.bytes,
-            entries: check.entries,
+            complete: report.complete() && collected.gone == 0,
+            oldest_sector: report.oldest,
+            newest_sector: report.newest,
+            sectors: report.sectors,
+            bytes: report.bytes,
+            entries: report.entries,
             resumed_sectors: collected.resumed,
             gone_sectors: collected.gone,
-            missing_sectors: check.missing_sectors.saturating_sub(collected.gone),
-            damaged_sectors: check.damaged_sectors,
-            damaged_places: check.damaged_places,
-            plans: check.plans,
-            missing_plans: check.missing_plans.iter().map(|plan| format!("{plan:016x}")).collect(),
-            running_hash: check.head.map(|head| format!("{:016x}", head.running_hash)),
-            signed: check.head.is_some_and(|head| head.signature.is_some()),
+            missing_sectors: report.missing_sectors.saturating_sub(collected.gone),
+            damaged_sectors: report.damaged_sectors(),
+            damaged_places: report.damaged_places(),
+            plans: report.plans,
+            missing_plans: report.missing_plans.iter().map(|plan| format!("{plan:016x}")).collect(),
+            running_hash: report.head.map(|head| format!("{:016x}", head.running_hash)),
+            signed: report.head.is_some_and(|head| head.signature.is_some()),
             damaged_frames: collected.damaged_frames,
             repeated_frames: collected.lost_frames,
         }

@@ -108,7 +108,7 @@ impl Document {
             records: replay.records,
             samples: summary.samples,
             damaged: replay.damage.len() as u64,
-            damage: replay.damage.clone(),
+            damage: replay.damage.iter().map(ToString::to_string).collect(),
             gaps: replay.gaps,
             missing_plans: replay
                 .missing_plans
@@ -202,7 +202,7 @@ fn seconds(span_ms: u64) -> f64 {
 }
 
 /// A time as ISO 8601 shows it.
-pub(super) fn utc(utc_s: Option<u64>) -> Option<String> {
+pub(crate) fn utc(utc_s: Option<u64>) -> Option<String> {
     let second = i64::try_from(utc_s?).ok()?;
     Some(Timestamp::from_second(second).ok()?.to_string())
 }

@@ -46,8 +46,10 @@ pub struct Verdict {
     pub moves_compared: u64,
     /// The first place that differs.
     pub first_difference: Option<Difference>,
-    /// Samples whose plan is missing: decoded, not compared.
+    /// Samples whose plan or state is missing: decoded, not compared.
     pub not_compared: u64,
+    /// Checkpoints with samples that the device could not write, and had no time to state as lost.
+    pub holes: u64,
 }
 
 impl Verdict {
@@ -76,6 +78,9 @@ pub struct Engine {
     untold: VecDeque<Transition>,
     /// The state follows from the entries so far; false after a hole.
     connected: bool,
+    /// The state is that of a checkpoint that was not compared: the moves of the sample which opened
+    /// the sector are in it, and stand behind it.
+    ahead: bool,
     place: Place,
     /// The comparison.
     pub verdict: Verdict,
@@ -85,14 +90,28 @@ pub struct Engine {
 
 impl Engine {
     /// A sector begins. `state` is its checkpoint; `connected` says that it follows the one before
-    /// without a hole. A checkpoint that is missing or of another version cannot be compared.
-    pub fn sector(&mut self, header: &SectorHeader, state: Option<&State>, connected: bool) {
+    /// without a hole; `lost` how many samples the device states as lost before it, `None` when it
+    /// had no time to state any. A checkpoint that is missing or of another version cannot be
+    /// compared.
+    pub fn sector(
+        &mut self,
+        header: &SectorHeader,
+        state: Option<&State>,
+        connected: bool,
+        lost: Option<u32>,
+    ) {
         self.settle();
+        let ahead = state.map_or(0, |state| state.samples.wrapping_sub(self.state.samples));
+        let explained = ahead > 0 && ahead < u32::MAX / 2 && lost.is_none_or(|lost| lost == ahead);
+        if connected && self.connected && explained {
+            self.verdict.holes += u64::from(lost.is_none());
+            self.connected = false;
+        }
         self.place =
             Place { sequence: header.sequence, entry: header.first_entry, tick_ms: header.tick_ms };
         self.summary.clock.sector(header);
         match state {
-            Some(state) if connected && self.connected && self.verdict.not_compared == 0 => {
+            Some(state) if connected && self.connected => {
                 self.compare("checkpoint", state.hash, self.state.hash);
                 if self.state != *state {
                     self.differ("state in the checkpoint", "its own", "another");
@@ -103,10 +122,18 @@ impl Engine {
                 self.untold.clear();
                 self.state = state.clone();
                 self.connected = true;
+                self.ahead = true;
             }
             None if connected => {}
             None => self.connected = false,
         }
+    }
+
+    /// Entries are missing here: nothing is compared up to the next checkpoint.
+    pub fn hole(&mut self) {
+        self.settle();
+        self.untold.clear();
+        self.connected = false;
     }
 
     /// Another plan is in force from here on; `None` when it is not at hand.
@@ -128,6 +155,7 @@ impl Engine {
 
     /// The next entry.
     pub fn entry(&mut self, entry: &Entry) {
+        self.ahead &= matches!(entry, Entry::Transition(_) | Entry::Gap { .. });
         if let Entry::Sample(sample) = entry {
             self.batch.push(*sample);
             self.place.entry = self.place.entry.wrapping_add(1);
@@ -180,6 +208,7 @@ impl Engine {
         }
         let Some(plan) = self.plan.as_ref().filter(|_| self.connected) else {
             self.verdict.not_compared += self.batch.discard() as u64;
+            self.connected = false;
             return;
         };
         let (untold, summary) = (&mut self.untold, &mut self.summary);
@@ -204,7 +233,9 @@ impl Engine {
             return;
         }
         self.verdict.moves_compared += 1;
+        let state = self.state.machine(device.machine).state;
         match self.untold.pop_front() {
+            None if self.ahead && state == device.to && self.state.hash == device.hash => {}
             None => self.differ("a move of an alarm machine", &describe(device), "none"),
             Some(replay) => {
                 if replay != *device {

@@ -13,6 +13,7 @@ pub mod text;
 mod walk;
 
 pub use document::Document;
+pub(crate) use document::utc;
 pub use engine::{Difference, Engine, Verdict};
 pub use rainflow::Rainflow;
 pub use summary::{AlarmLine, BAND_EDGES, Band, FaultLine, Moment, PartSummary, Peak, Summary};

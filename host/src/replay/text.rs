@@ -6,9 +6,7 @@ use crate::assess::{FIELD_CHECK, PROVISIONAL};
 use crate::page::Page;
 use crate::units::Quantity::Length;
 use crate::units::{UnitSystem, format};
-
-/// Damaged places that are named one by one.
-const DAMAGE_SHOWN: usize = 10;
+use crate::verify;
 
 /// The summary that `strake replay` and `strake trial` print.
 #[must_use]
@@ -54,15 +52,7 @@ fn verdict(replay: &Replay, page: &mut Page) {
             &format!("plan {print:016x} occurs in the journal and is not in the file"),
         );
     }
-    if !replay.damage.is_empty() {
-        page.line(&format!("  {} damaged places, passed over:", replay.damage.len()));
-        for place in replay.damage.iter().take(DAMAGE_SHOWN) {
-            page.paragraph("    - ", place);
-        }
-        if replay.damage.len() > DAMAGE_SHOWN {
-            page.line(&format!("    - and {} more", replay.damage.len() - DAMAGE_SHOWN));
-        }
-    }
+    verify::text::damage(&replay.damage, page);
     if replay.gaps > 0 {
         page.line(&format!("  {} holes in the journal", replay.gaps));
     }

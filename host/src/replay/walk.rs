@@ -2,9 +2,10 @@
 
 use super::engine::Engine;
 use crate::journal_file::{JournalFile, JournalFileError};
+use crate::verify::{Damage, Ledger, Place, What, misplaced, stated_as_lost};
 use std::io::{Read, Seek};
 use strake_core::evaluate::State;
-use strake_core::journal::{Entry, Item, STATE_BYTES_MAX, SectorReader};
+use strake_core::journal::{Entry, Item, STATE_BYTES_MAX, SectorHeader, SectorReader};
 use strake_core::plan::{Plan, PlanHeader, codec};
 use strake_core::plan_slot;
 
@@ -15,8 +16,8 @@ pub struct Replay {
     pub engine: Engine,
     /// Entries decoded.
     pub records: u64,
-    /// Places that could not be read, in the file or in a sector, in words.
-    pub damage: Vec<String>,
+    /// Places that could not be read, in the file or in a sector.
+    pub damage: Vec<Damage>,
     /// Holes: sectors missing between those in the file, and gaps that the device states.
     pub gaps: u64,
     /// Fingerprints of plans that occur and are not in the file.
@@ -34,29 +35,34 @@ pub fn replay<R: Read + Seek>(file: &mut JournalFile<R>) -> Result<Replay, Journ
         replay: Replay {
             engine: Engine::default(),
             records: 0,
-            damage: file.damage().iter().map(ToString::to_string).collect(),
+            damage: Vec::new(),
             gaps: 0,
             missing_plans: Vec::new(),
             provisional: false,
         },
+        ledger: Ledger::of_file(file.damage()),
         in_force: None,
     };
     let mut last = None;
     while let Some(sector) = file.sector_after(last)? {
-        let connected = last.is_some_and(|last: u32| last.checked_add(1) == Some(sector.sequence));
+        let connected = walk.ledger.arrive(sector.sequence);
         if last.is_some() && !connected {
             walk.replay.gaps += 1;
         }
         last = Some(sector.sequence);
         walk.sector(file, &sector.bytes, sector.sequence, connected)?;
     }
-    let head = file.head().map(|head| head.running_hash);
-    walk.replay.engine.finish(head);
+    let head = file.head().copied();
+    walk.ledger.finish(head.map(|head| head.next_entry));
+    walk.replay.damage = walk.ledger.damage;
+    walk.replay.engine.finish(head.map(|head| head.running_hash));
+    walk.replay.gaps += walk.replay.engine.verdict.holes;
     Ok(walk.replay)
 }
 
 struct Walk {
     replay: Replay,
+    ledger: Ledger,
     /// Fingerprint of the plan that the engine has.
     in_force: Option<u64>,
 }
@@ -70,26 +76,29 @@ impl Walk {
         connected: bool,
     ) -> Result<(), JournalFileError> {
         let reader = match SectorReader::new(bytes) {
-            Ok(reader) => reader,
-            Err(error) => {
-                self.replay
-                    .damage
-                    .push(format!("sector {sequence}: its header cannot be read ({error:?})"));
+            Ok(reader) if reader.header().sequence == sequence => reader,
+            other => {
+                let found = other.map(|reader| reader.header().sequence);
+                let ring = file.identity().map(|identity| identity.sectors);
+                let what = misplaced(&found, sequence, ring);
+                self.ledger.place(Place::Sector { sequence }, what);
+                self.replay.engine.hole();
                 return Ok(());
             }
         };
         let mut room = [0; STATE_BYTES_MAX];
         let state = reader.checkpoint(&mut room).and_then(State::decode);
-        if state.is_none() {
-            self.replay.damage.push(format!("sector {sequence}: its checkpoint cannot be read"));
-        }
         let header = reader.header().clone();
-        self.replay.engine.sector(&header, state.as_ref(), connected);
+        let lost = stated_as_lost(reader.clone());
+        self.ledger.header(&header, state.as_ref(), lost);
+        self.replay.engine.sector(&header, state.as_ref(), connected, lost);
         self.use_plan(file, header.plan_fingerprint)?;
+        let mut damaged = false;
         for item in reader {
             match item {
                 Item::Entry(entry) => {
                     self.replay.records += 1;
+                    self.ledger.entry(&entry);
                     if let Entry::PlanChange { fingerprint, .. } = entry {
                         self.use_plan(file, fingerprint)?;
                     }
@@ -100,10 +109,12 @@ impl Walk {
                 }
                 Item::State { .. } => {}
                 Item::Damage(damage) => {
-                    let offset = damage.offset;
-                    self.replay
-                        .damage
-                        .push(format!("sector {sequence}, offset {offset}: {:?}", damage.kind));
+                    let place = Place::Block { sequence, offset: damage.offset };
+                    self.ledger.place(place, What::Block(damage.kind));
+                    if !damaged && entries_missing(file, bytes, &header)? {
+                        self.replay.engine.hole();
+                    }
+                    damaged = true;
                 }
             }
         }
@@ -137,6 +148,27 @@ impl Walk {
         }
         Ok(())
     }
+}
+
+/// Whether entries of a damaged sector are missing, by the next number that is stated. A write that
+/// a loss of power tore takes none along.
+fn entries_missing<R: Read + Seek>(
+    file: &mut JournalFile<R>,
+    bytes: &[u8],
+    header: &SectorHeader,
+) -> Result<bool, JournalFileError> {
+    let Ok(reader) = SectorReader::new(bytes) else { return Ok(true) };
+    let is_entry = |item: &Item<'_>| matches!(item, Item::Entry(_));
+    let entries = u32::try_from(reader.filter(is_entry).count()).unwrap_or(u32::MAX);
+    let stated = match file.sector_after(Some(header.sequence))? {
+        Some(next) => SectorReader::new(&next.bytes)
+            .ok()
+            .map(|reader| reader.header().clone())
+            .filter(|next| next.sequence == header.sequence.wrapping_add(1))
+            .map(|next| next.first_entry),
+        None => file.head().map(|head| head.next_entry),
+    };
+    Ok(stated != Some(header.first_entry.wrapping_add(entries)))
 }
 
 /// A plan with the names of its parts.

@@ -136,6 +136,8 @@ pub struct Nor<const WORD: usize> {
     capacity: usize,
     sectors: BTreeMap<u32, Box<Sector>>,
     cut: Option<Cut>,
+    /// Tear of the next erase.
+    erase_cut: Option<Tear>,
     powered: bool,
     permit_clearing: bool,
     worn: Vec<u32>,
@@ -163,6 +165,7 @@ impl<const WORD: usize> Nor<WORD> {
             capacity: sectors * SECTOR_BYTES,
             sectors: BTreeMap::new(),
             cut: None,
+            erase_cut: None,
             powered: true,
             permit_clearing: false,
             worn: Vec::new(),
@@ -181,6 +184,11 @@ impl<const WORD: usize> Nor<WORD> {
         self.cut = cut;
     }
 
+    /// Arms a cut in the next erase, or disarms it.
+    pub fn cut_in_erase(&mut self, tear: Option<Tear>) {
+        self.erase_cut = tear;
+    }
+
     /// Whether the power is still on.
     #[must_use]
     pub const fn is_powered(&self) -> bool {
@@ -191,6 +199,7 @@ impl<const WORD: usize> Nor<WORD> {
     pub fn power_on(&mut self) {
         self.powered = true;
         self.cut = None;
+        self.erase_cut = None;
     }
 
     /// Lets a touched word be programmed again as on a plain chip: bits are only cleared.
@@ -309,7 +318,9 @@ impl<const WORD: usize> Nor<WORD> {
     }
 
     fn erase_sector(&mut self, address: u32) -> Result<(), NorError> {
-        match self.step() {
+        let erase_cut = self.erase_cut.take();
+        self.powered &= erase_cut.is_none();
+        match erase_cut.or_else(|| self.step()) {
             Some(Tear::Before) => return Err(NorError::PowerOff),
             Some(Tear::During) => {
                 // Bits rise one by one; how many have done so is drawn first.

@@ -1,0 +1,134 @@
+//! Keeping count of entries between two stated numbers; the replay keeps the same ledger.
+
+use super::contradiction::Contradiction;
+use super::damage::{Damage, Missing, Place, What};
+use crate::journal_file;
+use strake_core::evaluate::State;
+use strake_core::journal::{Entry, SectorHeader};
+
+/// The count between the last stated number and the next.
+#[derive(Clone, Debug, Default)]
+pub(crate) struct Ledger {
+    /// Number that the next entry has if nothing is missing.
+    expected: Option<u32>,
+    /// Samples judged since the journal began, by the last checkpoint and what was read since.
+    samples: Option<u32>,
+    /// Damaged places since the last stated number.
+    open: Vec<(Place, What)>,
+    /// Sequence of the last sector.
+    last: Option<u32>,
+    pub(crate) damage: Vec<Damage>,
+    pub(crate) contradictions: Vec<Contradiction>,
+    /// Sectors missing between others.
+    pub(crate) absent: u32,
+}
+
+impl Ledger {
+    /// A ledger that begins with what is damaged in the file itself.
+    pub(crate) fn of_file(damage: &[journal_file::Damage]) -> Self {
+        let damage = damage.iter().map(|&damage| Damage {
+            place: Place::File { offset: damage.offset },
+            what: What::File(damage),
+            missing: Missing { places: 1, ..Missing::default() },
+        });
+        Self { damage: damage.collect(), ..Self::default() }
+    }
+
+    /// The record of a sector comes; gives whether it follows the one before without a hole.
+    pub(crate) fn arrive(&mut self, sequence: u32) -> bool {
+        let before = self.last.replace(sequence);
+        let Some(next) = before.map(|before| before.saturating_add(1)) else { return false };
+        if next < sequence {
+            self.absent = self.absent.saturating_add(sequence - next);
+            let place = Place::Sectors { first: next, last: sequence - 1 };
+            self.place(place, What::Absent);
+        }
+        next == sequence
+    }
+
+    /// The sector's header is read. `state` is its checkpoint; `lost` the samples that the device
+    /// itself states as lost right behind it, `None` when it had no time to state any.
+    pub(crate) fn header(
+        &mut self,
+        header: &SectorHeader,
+        state: Option<&State>,
+        lost: Option<u32>,
+    ) {
+        let sequence = header.sequence;
+        let counted = self.samples;
+        let missing_samples = match (counted, state) {
+            (Some(counted), Some(state)) => Some(state.samples.wrapping_sub(counted)),
+            _ => None,
+        };
+        let sound = self.open.is_empty();
+        let whole = self.settle(Some(sequence), header.first_entry, missing_samples);
+        if let (true, true, Some(counted), Some(state)) = (sound, whole, counted, state)
+            && missing_samples != Some(lost.unwrap_or(state.samples.wrapping_sub(counted)))
+        {
+            let stated = state.samples;
+            self.contradictions.push(Contradiction::Samples { sequence, counted, stated });
+        }
+        self.samples = state.map(|state| state.samples);
+        self.expected = Some(header.first_entry);
+        if state.is_none() {
+            self.place(Place::Sector { sequence }, What::Checkpoint);
+        }
+    }
+
+    /// An entry is read.
+    pub(crate) fn entry(&mut self, entry: &Entry) {
+        self.expected = self.expected.map(|expected| expected.wrapping_add(1));
+        if matches!(entry, Entry::Sample(_)) {
+            self.samples = self.samples.map(|samples| samples.wrapping_add(1));
+        }
+    }
+
+    /// Something cannot be read.
+    pub(crate) fn place(&mut self, place: Place, what: What) {
+        self.open.push((place, what));
+    }
+
+    /// Whether something was damaged since the last stated number.
+    pub(crate) fn is_broken(&self) -> bool {
+        !self.open.is_empty()
+    }
+
+    /// The journal ends, and the head states the next number, if there is one.
+    pub(crate) fn finish(&mut self, next_entry: Option<u32>) {
+        match next_entry {
+            Some(next_entry) => {
+                self.settle(None, next_entry, None);
+            }
+            None => self.close(Missing::default()),
+        }
+    }
+
+    /// A number is stated; gives whether nothing is missing before it.
+    fn settle(&mut self, at: Option<u32>, stated: u32, samples: Option<u32>) -> bool {
+        let Some(expected) = self.expected else {
+            self.close(Missing::default());
+            return false;
+        };
+        let difference = stated.wrapping_sub(expected).cast_signed();
+        let entries = difference.unsigned_abs();
+        if difference < 0 {
+            self.contradictions.push(Contradiction::EntriesAdded { sequence: at, entries });
+        } else if difference > 0 && self.open.is_empty() {
+            self.contradictions.push(Contradiction::EntriesRemoved { sequence: at, entries });
+        }
+        let entries = u32::try_from(difference).unwrap_or(0);
+        let samples = samples.filter(|&samples| samples <= entries);
+        self.close(Missing { entries: Some(entries), samples, places: 0 });
+        difference == 0
+    }
+
+    fn close(&mut self, missing: Missing) {
+        let places = u32::try_from(self.open.len()).unwrap_or(u32::MAX);
+        let missing = Missing { places, ..missing };
+        self.damage.extend(self.open.drain(..).map(|(place, what)| Damage {
+            place,
+            what,
+            missing,
+        }));
+    }
+}
