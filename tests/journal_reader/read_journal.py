@@ -71,8 +71,10 @@ def read_sample(cursor, chain):
     sound = qualities & 15 <= 7 and qualities >> 4 <= 7
     if not (sound and 0 <= tick < 2**48 and 0 <= battery < 2**16):
         raise Malformed("sample out of range")
-    return {"tick": tick, "level": level, "quality": qualities & 15}, \
-        (tick, interval, level, temperature, battery)
+    sample = {"tick": tick, "level": level, "quality": qualities & 15,
+              "temperature": temperature, "temperature_quality": qualities >> 4,
+              "battery": battery}
+    return sample, (tick, interval, level, temperature, battery)
 
 
 class Bits:
@@ -185,10 +187,12 @@ class Packed:
     def tracks(self):
         return self.level, self.temperature
 
-    def sample(self, level):
+    def sample(self, level, temperature):
         if not (0 <= self.tick < 2**48 and 0 <= self.battery < 2**16):
             raise Malformed("sample out of range")
-        return {"tick": self.tick, "level": level, "quality": self.level.status[0]}
+        return {"tick": self.tick, "level": level, "quality": self.level.status[0],
+                "temperature": temperature, "temperature_quality": self.temperature.status[0],
+                "battery": self.battery}
 
     def anchor(self, bits):
         self.tick = bits.number()
@@ -203,7 +207,7 @@ class Packed:
         self.battery = bits.take(12 if bits.take(1) else 16)
         self.time_scale, self.battery_scale = Scale(3), Scale(4)
         self.anchored = True
-        return self.sample(0 if self.level.status[1] else self.level.count())
+        return self.sample(*(track.count() for track in self.tracks()))
 
     def block(self, data, count):
         """Yields the samples of a block."""
@@ -227,10 +231,10 @@ class Packed:
                 for track in self.tracks():
                     track.status = bits.status()
             level = self.level.read(bits)
-            self.temperature.read(bits)
+            temperature = self.temperature.read(bits)
             if not steady[2] and bits.take(1):
                 self.battery += self.battery_scale.read(bits)
-            yield self.sample(level)
+            yield self.sample(level, temperature)
 
 
 def read_event(cursor):
@@ -283,9 +287,12 @@ class Counts:
         self.blocks = {name: 0 for name in [*FORMS.values(), "unknown"]}
         self.entries = {name: 0 for name in NAMES.values()}
         self.first_level = self.last_level = self.last_hash = None
+        self.samples_check = 0
 
     def sample(self, sample):
         self.entries["sample"] += 1
+        fields = struct.pack("<QiBiBH", *sample.values())
+        self.samples_check = zlib.crc32(fields, self.samples_check)
         if sample["quality"] in (1, 2):
             if self.first_level is None:
                 self.first_level = sample["level"]
@@ -403,7 +410,7 @@ def read_file(data):
         "checkpoints": counts.states, "blocks": counts.blocks, "entries": counts.entries,
         "samples": counts.entries["sample"], "damaged": counts.damaged,
         "first_level_count_16": counts.first_level, "last_level_count_16": counts.last_level,
-        "last_hash": counts.last_hash,
+        "last_hash": counts.last_hash, "samples_check": f"{counts.samples_check:08x}",
         "first_entry": readable[0]["first_entry"] if readable else None,
         "first_sequence": readable[0]["sequence"] if readable else None,
     })

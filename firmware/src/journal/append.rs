@@ -28,15 +28,20 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         if self.waiting.is_full() {
             result = self.flush();
         }
-        if !self.fits(sample) {
+        let mut waits = self.waiting.push(sample);
+        if !self.fits() {
+            if waits {
+                self.waiting.pop();
+            }
             result = self.flush().and(result);
             self.give_up_waiting();
             if let Err(error) = self.open_sector(now) {
                 self.lose(1);
                 return Err(error);
             }
+            waits = self.waiting.push(sample);
         }
-        if !self.waiting.push(sample) {
+        if !waits {
             self.lose(1);
         }
         result
@@ -55,7 +60,7 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
                 self.give_up_waiting();
                 return Err(JournalError::GivenUp);
             };
-            let samples = self.waiting.iter();
+            let samples = self.waiting.from(0);
             let Some(encoded) = encode_samples(place, samples, &mut chain, &mut block) else {
                 self.next_page();
                 continue;
@@ -168,23 +173,23 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         }
     }
 
-    /// Whether all that waits and one more sample have room in the open sector.
-    fn fits(&self, sample: &Sample) -> bool {
+    /// Whether all that waits has room in the open sector.
+    fn fits(&self) -> bool {
         let Some(mut open) = self.open else { return false };
         // Whatever the samples are, so many pages hold them behind the one begun.
-        let pages = 1 + (self.waiting.len() + 1).div_ceil(PAGE_SAMPLES_MIN);
+        let pages = 1 + self.waiting.len().div_ceil(PAGE_SAMPLES_MIN);
         if usize::from(open.offset) + pages * PAGE_BYTES <= SECTOR_BYTES {
             return true;
         }
         let mut placed = 0;
-        while placed <= self.waiting.len() {
+        while placed < self.waiting.len() {
             if usize::from(open.offset) >= SECTOR_BYTES {
                 return false;
             }
             let mut block = [0; PAGE_BYTES];
             let (sequence, offset) = (open.sequence, open.offset);
             let place = Place { sequence, offset, word: Ring::<F>::WORD };
-            let rest = self.waiting.iter().chain([sample]).skip(placed);
+            let rest = self.waiting.from(placed);
             if let Some(encoded) = encode_samples(place, rest, &mut open.chain, &mut block) {
                 placed += encoded.taken;
                 open.offset = end_of(place, encoded);

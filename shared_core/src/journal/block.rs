@@ -143,14 +143,14 @@ pub struct Encoded {
 /// As many of `samples` as fit, at most [`ENTRIES_MAX`], as one block in codec 1; `chain` steps over
 /// those taken. Its page must have been [turned](Chain::turn_page) before the first block of samples
 /// in a page, unless it is the default. `None` when not even one fits.
-pub fn encode_samples<'a>(
+pub fn encode_samples(
     place: Place,
-    samples: impl IntoIterator<Item = &'a Sample, IntoIter: Clone>,
+    samples: &[Sample],
     chain: &mut Chain,
     out: &mut [u8; PAGE_BYTES],
 ) -> Option<Encoded> {
     let payload = out.get_mut(HEAD_BYTES..HEAD_BYTES + place.room())?;
-    let (len, taken) = chain.write(samples.into_iter().take(ENTRIES_MAX), payload)?;
+    let (len, taken) = chain.write(samples.get(..ENTRIES_MAX).unwrap_or(samples), payload)?;
     Some(Encoded { len: seal(place, Form::Packed, taken, len, out)?, taken })
 }
 

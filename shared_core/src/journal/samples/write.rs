@@ -96,17 +96,17 @@ impl Chain {
     /// As many of `samples` as fit into `payload`, and steps over those; gives the bytes used and
     /// the samples taken. `None` when not even one fits. A tick beyond [`TICK_LIMIT_MS`] is cut to
     /// 48 bits.
-    pub(in crate::journal) fn write<'a>(
+    pub(in crate::journal) fn write(
         &mut self,
-        samples: impl Iterator<Item = &'a Sample> + Clone,
+        samples: &[Sample],
         payload: &mut [u8],
     ) -> Option<(usize, usize)> {
         let mut out = BitWriter::new(payload);
         let mut next = *self;
         let head = usize::from(!self.anchored);
-        let steady = next.write_head(samples.clone(), &mut out)?;
+        let steady = next.write_head(samples, &mut out)?;
         let mut reached = None;
-        for (index, sample) in samples.enumerate() {
+        for (index, sample) in samples.iter().enumerate() {
             if index >= head {
                 next.write_sample(sample, steady, &mut out);
             }
@@ -119,17 +119,13 @@ impl Chain {
     }
 
     /// Writes the head of a block of (the first of) these samples.
-    fn write_head<'a>(
-        &mut self,
-        samples: impl Iterator<Item = &'a Sample> + Clone,
-        out: &mut BitWriter<'_>,
-    ) -> Option<Steady> {
-        let first = samples.clone().next()?;
+    fn write_head(&mut self, samples: &[Sample], out: &mut BitWriter<'_>) -> Option<Steady> {
+        let (first, rest) = samples.split_first()?;
         let anchor = !self.anchored;
-        let levels = counts(samples.clone().map(|sample| sample.level));
-        let temperatures = counts(samples.clone().map(|sample| sample.temperature));
+        let levels = counts(samples.iter().map(|sample| sample.level));
+        let temperatures = counts(samples.iter().map(|sample| sample.temperature));
         if anchor {
-            self.write_anchor_time(first, samples.clone().nth(1), out);
+            self.write_anchor_time(first, rest.first(), out);
             self.level.write_track(first.level, levels.clone(), out);
             self.temperature.write_track(first.temperature, temperatures.clone(), out);
             self.battery_mv = first.battery_mv;
@@ -163,7 +159,7 @@ impl Chain {
                 out.number(self.temperature.track.step().into());
             }
         }
-        let steady = self.steady(samples.skip(usize::from(anchor)));
+        let steady = self.steady(if anchor { rest } else { samples });
         steady.write(out);
         Some(steady)
     }
@@ -196,7 +192,7 @@ impl Chain {
         (sample.tick_ms % TICK_LIMIT_MS).wrapping_sub(self.tick_ms).cast_signed()
     }
 
-    fn steady<'a>(&self, samples: impl Iterator<Item = &'a Sample>) -> Steady {
+    fn steady(&self, samples: &[Sample]) -> Steady {
         let mut steady = Steady::ALL;
         let mut due_ms = self.tick_ms;
         for sample in samples {
