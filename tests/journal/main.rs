@@ -4,8 +4,12 @@
 mod bench;
 mod controls;
 mod cuts;
+mod density;
 mod plans;
 mod random;
 mod reader;
+mod recorded;
 mod restart;
 mod ring;
+mod series;
+mod speed;

@@ -91,7 +91,7 @@ fn two_sectors_are_too_few() {
 fn the_journal_takes_little_ram() {
     let without_flash = size_of::<Journal<()>>();
     println!("journal without its flash: {without_flash} bytes");
-    assert!(without_flash <= 1_232, "{without_flash}");
+    assert!(without_flash <= 1_400, "{without_flash}");
     assert!(size_of::<Sample>() <= 32);
 }
 

@@ -8,7 +8,7 @@ use super::{Journal, Recovery};
 use crate::board::RetainedMemory;
 use core::ops::{DerefMut, Range};
 use embedded_storage::nor_flash::NorFlash;
-use heapless::Deque;
+use heapless::Vec;
 use strake_core::journal::block::{ENTRIES_MAX, Place, encode_samples};
 use strake_core::journal::samples::Chain;
 use strake_core::journal::{Entry, Item, PAGE_BYTES, PageReader, Sample, Word};
@@ -19,14 +19,14 @@ pub const WAITING_MAX: usize = ENTRIES_MAX;
 /// Samples that are not yet on flash, oldest first.
 #[derive(Clone, Debug, Default)]
 pub struct Waiting {
-    samples: Deque<Sample, WAITING_MAX>,
+    samples: Vec<Sample, WAITING_MAX>,
 }
 
 impl Waiting {
     /// None waits. Every bit is zero.
     #[must_use]
     pub const fn new() -> Self {
-        Self { samples: Deque::new() }
+        Self { samples: Vec::new() }
     }
 
     /// Samples that wait.
@@ -46,12 +46,22 @@ impl Waiting {
         self.samples.iter()
     }
 
+    /// The samples behind the first `skipped`, oldest first.
+    pub(super) fn from(&self, skipped: usize) -> &[Sample] {
+        self.samples.get(skipped..).unwrap_or(&[])
+    }
+
     pub(super) fn is_full(&self) -> bool {
         self.samples.is_full()
     }
 
     pub(super) fn push(&mut self, sample: &Sample) -> bool {
-        self.samples.push_back(*sample).is_ok()
+        self.samples.push(*sample).is_ok()
+    }
+
+    /// Takes back what was pushed last.
+    pub(super) fn pop(&mut self) {
+        self.samples.pop();
     }
 
     pub(super) fn clear(&mut self) {
@@ -59,9 +69,9 @@ impl Waiting {
     }
 
     pub(super) fn drop_first(&mut self, count: usize) {
-        for _ in 0..count {
-            self.samples.pop_front();
-        }
+        let count = if count < self.samples.len() { count } else { self.samples.len() };
+        self.samples.rotate_left(count);
+        self.samples.truncate(self.samples.len() - count);
     }
 
     /// Stores the samples in the whole pages of `area`, or marks the area as empty. To be called
@@ -77,8 +87,8 @@ impl Waiting {
             }
             let mut page = [0xFF; PAGE_BYTES];
             let place = place_of(boot, index);
-            let rest = self.samples.iter().skip(stored);
-            let encoded = encode_samples(place, rest, &mut Chain::default(), &mut page);
+            let encoded =
+                encode_samples(place, self.from(stored), &mut Chain::default(), &mut page);
             let len = encoded.map_or(1, |encoded| encoded.len);
             memory.write(start, page.get(..len).unwrap_or(&[]));
             stored += encoded.map_or(0, |encoded| encoded.taken);

@@ -1,81 +1,88 @@
-//! Codec 0 of samples: differences to what the sample before lets expect, as varints.
+//! Samples in blocks: codec 1, which is written, and codec 0, which is read for ever.
 //!
-//! | field | bytes | content |
-//! | --- | --- | --- |
-//! | tick | varint, signed | interval to the sample before, less the interval before that, ms |
-//! | level | varint, signed | difference of the count in sixteenths, wrapping in 32 bits |
-//! | quality | 1 | number of the level's quality in the low, of the temperature's in the high nibble |
-//! | temperature | varint, signed | difference of the count in sixteenths, wrapping in 32 bits |
-//! | battery | varint, signed | difference in millivolts |
+//! # Codec 1
 //!
-//! The first sample of an anchor is taken against all zeroes, so it holds absolute values.
+//! Bits, lowest of the first byte first; what is left of the last byte is ones. Terms:
+//!
+//! - **Number**: its length n in 6 bits, then its n - 1 lower bits (the top one is known). n = 63
+//!   is followed by all 64 bits.
+//! - **Folded**: 0, -1, 1, -2 become 0, 1, 2, 3.
+//! - **Rice code** of v with parameter k: v >> k ones, a zero, the k lower bits of v; instead of 20
+//!   or more ones: 20 ones, no zero, and v as a number.
+//! - **Scale**: running mean m of what was coded, in sixteenths. k is the place of the highest bit
+//!   of m * 19 >> 8, 0 without one. Each v makes m += (16 min(v, 2^22) - m) >> 4. A scale that
+//!   begins at k begins with m = 24 << k.
+//! - **Track**: a channel. It counts in steps from its base and predicts; see below.
+//!
+//! The first block of a page is its anchor and holds its first sample within the head. The others
+//! continue the tracks and scales of the page: a bad block costs at most the rest of its page.
+//!
+//! | head of an anchor | bits |
+//! | --- | --- |
+//! | tick, ms | number |
+//! | whole seconds; interval to the sample before (a guess at the first), s or ms | 1; number, folded |
+//! | both qualities good; else quality of the level, then of the temperature | 1; quality each |
+//! | track of the level, then of the temperature, unless absent: | |
+//! | . step 16 and count divisible by it; else the step | 1; number |
+//! | . count in sixteenths of the raw count, divided by 16 after a set bit before | number, folded |
+//! | . k at which its scale begins | 4 |
+//! | battery below 4,096 mV; battery, mV | 1; 12, else 16 |
+//! | predictors of level and temperature | 2 + 2 |
+//! | steady, as below | |
+//!
+//! | head of another block | bits |
+//! | --- | --- |
+//! | predictors and steps changed | 1 |
+//! | . then predictors of level and temperature | 2 + 2 |
+//! | . steps changed; steps of level and temperature | 1; number each |
+//! | steady: time, qualities, battery as predicted in all samples that follow | 1 |
+//! | . else which of the three are | 1 + 1 + 1 |
+//!
+//! A quality is its number in 3 bits; behind one that gave no count (neither good nor sparse) a bit
+//! says whether the channel is absent: its count is zero and not written.
+//!
+//! | sample | bits |
+//! | --- | --- |
+//! | unless steady: time off; interval less the interval before, ms | 1; Rice, folded |
+//! | unless steady: qualities changed; both | 1; quality each |
+//! | level, then temperature, unless absent: steps off the prediction | Rice, folded |
+//! | unless steady: battery off; less the battery before, mV | 1; Rice, folded |
+//!
+//! The scale of the time begins at k = 3, the battery's at 4, that of an absent channel at 2; its
+//! track begins at count 0 with step 16. Without the bit that time, qualities or battery are off
+//! they are as in the sample before, the time an equal interval later.
+//!
+//! # Prediction
+//!
+//! A track holds places: (count - base) / step. Base and step come from the anchor, so the first
+//! place is 0. After the n-th count of the page (n = 2, 3, ..; from 16 on as for 16) at place p,
+//! with P = p << 8 and all shifts rounding down:
+//!
+//! | predictor | next place | keeps |
+//! | ---: | --- | --- |
+//! | 0 last | p | p |
+//! | 1 line | p + ((p - q) * 3 >> 2) | q, the place before p |
+//! | 2 mean | (M + 128) >> 8 | M += (P - M) * floor(65536 / n) >> 16 |
+//! | 3 trend | (T + S + 128) >> 8 | e = P - T - S; T += S + (e * floor(131072 (2n - 1) / n(n + 1)) >> 16); S += e * floor(393216 / n(n + 1)) >> 16 |
+//!
+//! All are zero at the anchor and run on whichever predictor is in use. The gains of the trend are
+//! those of the straight line of least squares (Brookner, Tracking and Kalman Filtering Made Easy,
+//! section 1.2.10). When the step changes from d to D, places and M, T are taken from the last
+//! place on, the base becomes the last count, and with S and m all are multiplied by d and divided
+//! by D, rounding down.
 
-use super::TICK_LIMIT_MS;
-use super::bytes::{Sink, Source};
-use super::entry::Sample;
-use crate::signal::{Channel, Quality};
+mod packed;
+mod plain;
+mod scale;
+mod track;
+mod write;
 
-/// Most bytes one sample takes: tick 8, level 5, quality 1, temperature 5, battery 3.
-pub const SAMPLE_BYTES_MAX: usize = 22;
+pub use packed::Chain;
+pub(super) use packed::Packed;
+pub(super) use plain::Chain as PlainChain;
 
-/// What the next sample is compared with. The default stands before an anchor.
-#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
-pub struct Chain {
-    tick_ms: u64,
-    interval_ms: i64,
-    level: i32,
-    temperature: i32,
-    battery_mv: u16,
-}
+/// Fewest samples that a page has room for, whatever they hold; see the tests.
+pub const PAGE_SAMPLES_MIN: usize = 7;
 
-impl Chain {
-    /// Writes `sample` and steps. A tick beyond [`TICK_LIMIT_MS`] is cut to 48 bits.
-    pub(super) fn write(&mut self, sample: &Sample, sink: &mut Sink<'_>) {
-        let tick_ms = sample.tick_ms % TICK_LIMIT_MS;
-        let interval_ms = tick_ms.wrapping_sub(self.tick_ms).cast_signed();
-        let (level, temperature) = (sample.level, sample.temperature);
-        sink.signed(interval_ms.wrapping_sub(self.interval_ms));
-        sink.signed(i64::from(level.count_16.wrapping_sub(self.level)));
-        sink.byte(level.quality.number() | temperature.quality.number() << 4);
-        sink.signed(i64::from(temperature.count_16.wrapping_sub(self.temperature)));
-        sink.signed(i64::from(sample.battery_mv) - i64::from(self.battery_mv));
-        self.step(&Sample { tick_ms, ..*sample }, interval_ms);
-    }
-
-    /// Reads one sample and steps; `None` when no writer can have written these bytes.
-    pub(super) fn read(&mut self, source: &mut Source<'_>) -> Option<Sample> {
-        let interval_ms = self.interval_ms.wrapping_add(source.signed()?);
-        let tick_ms = self.tick_ms.wrapping_add_signed(interval_ms);
-        let level: i32 = source.narrow_signed()?;
-        let qualities = source.byte()?;
-        let temperature: i32 = source.narrow_signed()?;
-        let battery = i64::from(self.battery_mv).checked_add(source.signed()?)?;
-        let sample = Sample {
-            tick_ms,
-            level: Channel {
-                count_16: self.level.wrapping_add(level),
-                quality: Quality::from_number(qualities & 0x0F)?,
-            },
-            temperature: Channel {
-                count_16: self.temperature.wrapping_add(temperature),
-                quality: Quality::from_number(qualities >> 4)?,
-            },
-            battery_mv: u16::try_from(battery).ok()?,
-        };
-        if tick_ms >= TICK_LIMIT_MS {
-            return None;
-        }
-        self.step(&sample, interval_ms);
-        Some(sample)
-    }
-
-    fn step(&mut self, sample: &Sample, interval_ms: i64) {
-        *self = Self {
-            tick_ms: sample.tick_ms,
-            interval_ms,
-            level: sample.level.count_16,
-            temperature: sample.temperature.count_16,
-            battery_mv: sample.battery_mv,
-        };
-    }
-}
+#[cfg(test)]
+mod tests;
