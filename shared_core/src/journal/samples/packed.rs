@@ -61,14 +61,15 @@ pub(super) struct Lane {
 
 impl Lane {
     fn read_track(&mut self, bits: &mut BitReader<'_>) -> Option<()> {
-        self.track = Track::absent();
-        if !self.status.absent {
-            let whole = bits.flag()?;
-            let step = if whole { WHOLE } else { read_step(bits)? };
+        let whole = bits.flag()?;
+        let step = if whole { WHOLE } else { read_step(bits)? };
+        self.track = if self.status.absent {
+            Track::absent(step)
+        } else {
             let count = unfold(bits.number()?);
             let count = if whole { count.checked_mul(WHOLE.into())? } else { count };
-            self.track = Track::begin(i32::try_from(count).ok()?, step, Scale::at(bits.take(4)?));
-        }
+            Track::begin(i32::try_from(count).ok()?, step, Scale::at(bits.take(4)?))
+        };
         Some(())
     }
 
