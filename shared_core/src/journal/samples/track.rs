@@ -107,8 +107,7 @@ impl Track {
     }
 
     /// The last count; `None` when no writer can have led here.
-    #[inline]
-    pub(super) fn count(&self) -> Option<i32> {
+    fn count(&self) -> Option<i32> {
         self.count_at(self.last)
     }
 
