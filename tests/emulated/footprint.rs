@@ -34,7 +34,7 @@ const SPANS: [(&str, &str); 5] = [
     ("digest", "digest..add"),
     ("cycle", "device::cycle..cycle"),
     ("wait", "modbus..answer"),
-    ("close", "journal::open..open_sector"),
+    ("close", "journal::open..open_sector_at"),
 ];
 
 #[derive(Clone, Copy, Debug, Deserialize)]

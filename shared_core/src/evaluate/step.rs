@@ -1,6 +1,6 @@
 //! One sample, one press: what moves the machines.
 
-use super::{Digest, State, loads};
+use super::{Digest, State, loads_of_one};
 use crate::alarm::{Condition, FaultCause, MachineId, Move, Settings, Threshold};
 use crate::journal::entry::{Sample, Transition};
 use crate::plan::{Plan, ThresholdPlan};
@@ -59,7 +59,7 @@ fn one_step(
     let resolved =
         resolve(plan, &mut state.sight, sample.tick_ms, sample.level, sample.temperature);
     let mut judged: Vec<Judged, { crate::alarm::PARTS_MAX }> = Vec::new();
-    let digest = loads(plan, &[resolved], |_, part| {
+    let digest = loads_of_one(plan, &resolved, &mut |_, part| {
         // As many parts as the plan holds, which is the capacity of the list.
         let _ = judged.push((part.utilisation_bound.lane(0), part.utilisation_inward.lane(0)));
     });
