@@ -169,7 +169,7 @@ fn likely_samples() -> impl Strategy<Value = Vec<Sample>> {
                     30..50 => now.level = Channel::good(by * step),
                     50..60 => now.temperature = Channel::default(),
                     60..70 => now.temperature = Channel::good(by * step),
-                    70..80 => now.battery_mv ^= 10,
+                    70..80 => now.battery_mv ^= 0x0A,
                     _ if now.level.count_16 != 0 => now.level = moved(now.level, level),
                     _ => now.temperature = moved(now.temperature, temperature),
                 }
