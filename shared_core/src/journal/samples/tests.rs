@@ -157,7 +157,8 @@ fn likely_samples() -> impl Strategy<Value = Vec<Sample>> {
         moves
             .into_iter()
             .map(|(what, level, temperature, step, any)| {
-                now.tick_ms = (now.tick_ms + if what % 32 == 0 { 57 } else { 10_000 }) % (1 << 48);
+                let interval_ms = if what % 32 == 0 { 57 } else { 10_000 };
+                now.tick_ms = (now.tick_ms + interval_ms) % (1 << 48);
                 let by = if what == 99 { 1 } else { 16 };
                 let moved = |channel: Channel, steps: i32| Channel {
                     count_16: channel.count_16.wrapping_add(by * steps),
@@ -169,7 +170,7 @@ fn likely_samples() -> impl Strategy<Value = Vec<Sample>> {
                     30..50 => now.level = Channel::good(by * step),
                     50..60 => now.temperature = Channel::default(),
                     60..70 => now.temperature = Channel::good(by * step),
-                    70..80 => now.battery_mv ^= 10,
+                    70..80 => now.battery_mv ^= 0x0A,
                     _ if now.level.count_16 != 0 => now.level = moved(now.level, level),
                     _ => now.temperature = moved(now.temperature, temperature),
                 }
@@ -215,7 +216,9 @@ fn come_back(samples: &[Sample], word: Word, wait: usize) -> Result<(), TestCase
 proptest! {
     #[test]
     fn any_samples_come_back(
-        samples in prop::collection::vec(any_sample(), 0..70), word in any_word(), wait in 1_usize..33
+        samples in prop::collection::vec(any_sample(), 0..70),
+        word in any_word(),
+        wait in 1_usize..33,
     ) {
         come_back(&samples, word, wait)?;
     }
