@@ -1,11 +1,16 @@
 //! The journal and the plan slots on a flash that loses power anywhere, holds anything, wears out.
 #![allow(missing_docs, reason = "a test binary has no public interface")]
 
+mod anchors;
 mod bench;
 mod controls;
 mod cuts;
+mod half_erased;
 mod plans;
 mod random;
 mod reader;
 mod restart;
 mod ring;
+mod rot;
+mod side_by_side;
+mod warm;
