@@ -154,9 +154,7 @@ pub(crate) fn run_with(parameters: Parameters, meddle: impl Fn(&Bench)) -> Resul
             let journal = machine.app().and_then(|app| app.device().journal());
             let counters = journal.map(|journal| *journal.counters());
             let now_ms = run.now_ms();
-            format!(
-                "in an operation begun at {at_ms} ms, now {now_ms} ms: {error}; {counters:?}"
-            )
+            format!("in an operation begun at {at_ms} ms, now {now_ms} ms: {error}; {counters:?}")
         })?;
     }
     run.visit()?;
