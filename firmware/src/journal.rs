@@ -92,6 +92,17 @@ impl Open {
     }
 }
 
+/// What is known of the place that the next sector gets.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+enum Ahead {
+    /// Nothing: it was not erased since the start.
+    AsItWas,
+    /// It is erased.
+    Erased,
+    /// It refused while idle, and is left alone until it is due.
+    Refused,
+}
+
 /// A sector that a collection is reading.
 #[derive(Clone, Copy, Debug)]
 struct Hold {
@@ -110,8 +121,8 @@ pub struct Journal<F, W = Within<Waiting>> {
     /// The lowest sequence number that may still stand in the ring.
     oldest_sequence: u32,
     next_entry: u32,
-    /// The place of `next_sequence` was erased since the start.
-    erased_ahead: bool,
+    /// The place of `next_sequence`.
+    ahead: Ahead,
     /// Something was appended since the start.
     appended: bool,
     hold: Option<Hold>,

@@ -99,6 +99,13 @@ pub(crate) struct App {
     state_len: usize,
 }
 
+impl App {
+    /// A fresh one whose state has this many bytes.
+    pub(crate) fn with_state(state_len: usize) -> Self {
+        Self { state_len, ..Self::default() }
+    }
+}
+
 impl Snapshot for App {
     fn plan_fingerprint(&self) -> u64 {
         0x1122_3344_5566_7788

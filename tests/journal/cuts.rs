@@ -126,20 +126,34 @@ fn every_single_cut_words_of_one() {
     assert_sound("single, W = 1", &seen);
 }
 
-#[test]
-fn every_pair_of_cuts_around_sector_changes() {
-    let mut second = 0;
-    let mut turn = 0_u64;
-    let seen = every_cut(Nor::<4>::new(4), 2_000..3_000, 100, |bench, index| {
+/// Every step of every operation is cut first; each such cut of `every` is cut again at every step
+/// behind it. Gives the second cuts.
+fn pairs<const WORD: usize>(ops: Range<usize>, every: u64) -> u64
+where
+    Nor<WORD>: Medium,
+{
+    let (mut second, mut turn) = (0, 0_u64);
+    let seen = every_cut(Nor::<WORD>::new(4), ops, 100, |bench, index| {
         turn += 1;
-        // Every step of every operation is cut first; every thirteenth such cut is cut again at
-        // every step behind it.
-        if turn.is_multiple_of(13) {
+        if turn.is_multiple_of(every) {
             second += fails_again(bench, index)?;
         }
         Ok(())
     });
-    println!("pairs: {second} second cuts");
-    assert_sound("pairs, W = 4", &seen);
+    println!("pairs, W = {WORD}: {second} second cuts");
+    assert_sound(&format!("pairs, W = {WORD}"), &seen);
+    second
+}
+
+#[test]
+fn every_pair_of_cuts_around_sector_changes() {
+    let second = pairs::<4>(2_000..3_000, 13);
     assert!(second > 5_000, "{second}");
+}
+
+/// Bytes are four times as many steps, so fewer of the first cuts are cut again.
+#[test]
+fn pairs_of_cuts_words_of_one() {
+    let second = pairs::<1>(2_000..2_900, 907);
+    assert!(second > 1_000, "{second}");
 }

@@ -71,6 +71,26 @@ fn a_worn_sector_is_passed_over() {
     assert_eq!(journal.next_entry(), bench.journal.next_entry());
 }
 
+/// The idle erase of a worn place fails once, not at every look.
+#[test]
+fn a_refused_place_is_left_alone_until_it_is_due() {
+    let mut bench = Bench::new(Nor::<4>::new(6), 100);
+    bench.journal.flash_mut().wear_out(1);
+    while bench.journal.used_bytes::<()>(0).is_ok_and(|used| used < 2048)
+        || bench.journal.newest_sequence().is_none()
+    {
+        bench.event().unwrap();
+    }
+    assert!(bench.journal.housekeeping(0).is_err());
+    let erases = bench.journal.counters().erases;
+    (0..50).for_each(|_| assert_eq!(bench.journal.housekeeping(0), Ok(false)));
+    assert_eq!(bench.journal.counters().erases, erases);
+    while bench.journal.newest_sequence() == Some(0) {
+        bench.event().unwrap();
+    }
+    assert_eq!(bench.journal.newest_sequence(), Some(2));
+}
+
 #[test]
 fn a_dead_flash_is_an_error_every_time() {
     let mut flash = Nor::<4>::new(3);

@@ -150,7 +150,11 @@ pub(crate) fn run_with(parameters: Parameters, meddle: impl Fn(&Bench)) -> Resul
         let at_ms = run.now_ms();
         meddle(&run.bench);
         run.operation().map_err(|error| {
-            format!("in an operation begun at {at_ms} ms, now {} ms: {error}", run.now_ms())
+            let machine = run.machine.borrow();
+            let journal = machine.app().and_then(|app| app.device().journal());
+            let counters = journal.map(|journal| *journal.counters());
+            let now_ms = run.now_ms();
+            format!("in an operation begun at {at_ms} ms, now {now_ms} ms: {error}; {counters:?}")
         })?;
     }
     run.visit()?;
@@ -332,8 +336,16 @@ impl Run {
     }
 
     fn visit(&mut self) -> Result<(), String> {
-        self.see(None)?;
-        self.visitor.collect(&mut self.tally, self.model.kept_from, self.model.worn)?;
+        for minute in 0.. {
+            self.see(None)?;
+            let (kept_from, worn) = (self.model.kept_from, self.model.worn);
+            match self.visitor.collect(&mut self.tally, kept_from, worn) {
+                Ok(()) => break,
+                // A sector that has just begun to refuse is left within the next cycle.
+                Err(_) if worn > 0 && minute < 2 => self.go_on(MINUTE_MS),
+                Err(error) => return Err(error),
+            }
+        }
         self.see(None)
     }
 

@@ -3,7 +3,7 @@
 use super::error::{JournalError, OpenError};
 use super::restore::{Recovery, Restore};
 use super::ring::{Ring, SECTOR};
-use super::{Counters, Journal, Open, SECTORS_MIN, Snapshot, Waiting};
+use super::{Ahead, Counters, Journal, Open, SECTORS_MIN, Snapshot, Waiting};
 use crate::rooms::Within;
 use core::ops::DerefMut;
 use embedded_storage::nor_flash::NorFlash;
@@ -75,7 +75,7 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
             next_sequence,
             oldest_sequence,
             next_entry: recovery.next_entry,
-            erased_ahead: false,
+            ahead: Ahead::AsItWas,
             appended: false,
             hold: None,
             waiting,
@@ -99,7 +99,7 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
                 self.tell_lost(now.tick_ms());
                 return Ok(());
             }
-            self.erased_ahead = false;
+            self.ahead = Ahead::AsItWas;
             self.counters.flash_errors = self.counters.flash_errors.saturating_add(1);
         }
         result
@@ -111,7 +111,7 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         sequence: u32,
         now: &mut impl Snapshot,
     ) -> Result<(), JournalError<F::Error>> {
-        if !self.erased_ahead {
+        if self.ahead != Ahead::Erased {
             self.counters.erases_inline = self.counters.erases_inline.saturating_add(1);
             self.erase(sequence)?;
         }
@@ -133,7 +133,7 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         chain.turn_page();
         self.open = Some(Open { sequence, offset, chain });
         self.next_sequence = sequence.checked_add(1).ok_or(JournalError::SequenceExhausted)?;
-        self.erased_ahead = false;
+        self.ahead = Ahead::AsItWas;
         self.appended = true;
         Ok(())
     }
@@ -203,10 +203,11 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
     /// as blank and still forget.
     ///
     /// # Errors
-    /// When the flash refuses to erase; the sector is then erased, or passed over, when it is due.
+    /// When the flash refuses to erase, once: the place is tried again, or passed over, when it is
+    /// due.
     pub fn housekeeping(&mut self, now_ms: u64) -> Result<bool, JournalError<F::Error>> {
         let half_full = self.open.is_some_and(|open| u32::from(open.offset) >= SECTOR / 2);
-        if self.erased_ahead || !half_full {
+        if self.ahead != Ahead::AsItWas || !half_full {
             return Ok(false);
         }
         let victim = self.next_sequence.checked_sub(self.ring.sectors());
@@ -220,7 +221,7 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         if result.is_err() {
             self.counters.flash_errors = self.counters.flash_errors.saturating_add(1);
         }
-        self.erased_ahead = result.is_ok();
+        self.ahead = if result.is_ok() { Ahead::Erased } else { Ahead::Refused };
         result.map(|()| true)
     }
 }

@@ -43,6 +43,7 @@ pub fn replay<R: Read + Seek>(file: &mut JournalFile<R>) -> Result<Replay, Journ
         ledger: Ledger::of_file(file.damage()),
         in_force: None,
     };
+    let newest = file.sectors().next_back().map(|(sequence, _)| sequence);
     let mut last = None;
     while let Some(sector) = file.sector_after(last)? {
         let connected = walk.ledger.arrive(sector.sequence);
@@ -51,9 +52,11 @@ pub fn replay<R: Read + Seek>(file: &mut JournalFile<R>) -> Result<Replay, Journ
         }
         last = Some(sector.sequence);
         walk.sector(file, &sector.bytes, sector.sequence, connected)?;
+        let is_last = newest == last;
+        walk.ledger.end_of_sector(sector.sequence, sector.bytes.len(), is_last);
     }
     let head = file.head().copied();
-    walk.ledger.finish(head.map(|head| head.next_entry));
+    walk.ledger.finish(head.as_ref());
     walk.replay.damage = walk.ledger.damage;
     walk.replay.engine.finish(head.map(|head| head.running_hash));
     walk.replay.gaps += walk.replay.engine.verdict.holes;

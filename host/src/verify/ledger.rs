@@ -2,9 +2,9 @@
 
 use super::contradiction::Contradiction;
 use super::damage::{Damage, Missing, Place, What};
-use crate::journal_file;
+use crate::journal_file::{self, HeadRecord};
 use strake_core::evaluate::State;
-use strake_core::journal::{Entry, SectorHeader};
+use strake_core::journal::{Entry, SECTOR_BYTES, SectorHeader};
 
 /// The count between the last stated number and the next.
 #[derive(Clone, Debug, Default)]
@@ -15,8 +15,9 @@ pub(crate) struct Ledger {
     samples: Option<u32>,
     /// Damaged places since the last stated number.
     open: Vec<(Place, What)>,
-    /// Sequence of the last sector.
+    /// Sequence of the last sector, and its bytes.
     last: Option<u32>,
+    last_length: usize,
     pub(crate) damage: Vec<Damage>,
     pub(crate) contradictions: Vec<Contradiction>,
     /// Sectors missing between others.
@@ -47,13 +48,14 @@ impl Ledger {
     }
 
     /// The sector's header is read. `state` is its checkpoint; `lost` the samples that the device
-    /// itself states as lost right behind it, `None` when it had no time to state any.
+    /// itself states as lost right behind it, `None` when it had no time to state any. Gives whether
+    /// the checkpoint counts the very samples that were read.
     pub(crate) fn header(
         &mut self,
         header: &SectorHeader,
         state: Option<&State>,
         lost: Option<u32>,
-    ) {
+    ) -> bool {
         let sequence = header.sequence;
         let counted = self.samples;
         let missing_samples = match (counted, state) {
@@ -73,6 +75,7 @@ impl Ledger {
         if state.is_none() {
             self.place(Place::Sector { sequence }, What::Checkpoint);
         }
+        missing_samples == Some(0)
     }
 
     /// An entry is read.
@@ -93,14 +96,43 @@ impl Ledger {
         !self.open.is_empty()
     }
 
-    /// The journal ends, and the head states the next number, if there is one.
-    pub(crate) fn finish(&mut self, next_entry: Option<u32>) {
-        match next_entry {
-            Some(next_entry) => {
-                self.settle(None, next_entry, None);
-            }
-            None => self.close(Missing::default()),
+    /// All of the sector's bytes are read, `length` of them; `is_last` when no sector follows.
+    pub(crate) fn end_of_sector(&mut self, sequence: u32, length: usize, is_last: bool) {
+        self.last_length = length;
+        if length < SECTOR_BYTES && !is_last {
+            self.place(Place::Sector { sequence }, What::CutShort);
         }
+    }
+
+    /// The journal ends, and the head says where it should; gives whether it does.
+    pub(crate) fn finish(&mut self, head: Option<&HeadRecord>) -> bool {
+        let Some(head) = head else {
+            self.close(Missing::default());
+            return false;
+        };
+        let reaches = match self.last {
+            Some(newest) => newest == head.newest && self.last_length >= usize::from(head.used),
+            None => head.used == 0,
+        };
+        match self.last {
+            Some(newest) if newest > head.newest => {
+                let stated = head.newest;
+                self.contradictions.push(Contradiction::BehindHead { newest, stated });
+            }
+            Some(newest) if newest < head.newest => {
+                self.absent = self.absent.saturating_add(head.newest - newest);
+                self.place(Place::Sectors { first: newest + 1, last: head.newest }, What::Absent);
+            }
+            Some(sequence) if !reaches => self.place(Place::Sector { sequence }, What::CutShort),
+            Some(_) => {}
+            None if reaches => {}
+            None => {
+                self.absent = 1;
+                self.place(Place::Sector { sequence: head.newest }, What::Absent);
+            }
+        }
+        self.settle(None, head.next_entry, None);
+        reaches
     }
 
     /// A number is stated; gives whether nothing is missing before it.

@@ -9,9 +9,7 @@ use crate::journal_file::{JournalFile, JournalFileError, StoredSector};
 use std::collections::BTreeSet;
 use std::io::{Read, Seek};
 use strake_core::evaluate::State;
-use strake_core::journal::{
-    Entry, HeaderError, Item, SECTOR_BYTES, STATE_BYTES_MAX, SectorHeader, SectorReader,
-};
+use strake_core::journal::{Entry, HeaderError, Item, STATE_BYTES_MAX, SectorHeader, SectorReader};
 use strake_core::plan::codec;
 use strake_core::plan_slot;
 
@@ -34,12 +32,10 @@ pub fn verify<R: Read + Seek>(file: &mut JournalFile<R>) -> Result<Report, Journ
     };
     let plans = walk.plans(file)?;
     let newest = file.sectors().next_back().map(|(sequence, _)| sequence);
-    let mut last_used = 0;
     while let Some(sector) = file.sector_after(walk.report.newest)? {
-        last_used = sector.bytes.len();
         walk.sector(&sector, newest == Some(sector.sequence));
     }
-    walk.finish(last_used);
+    walk.finish();
     let Walk { mut report, ledger, used_plans, .. } = walk;
     report.damage = ledger.damage;
     report.contradictions.extend(ledger.contradictions);
@@ -137,9 +133,7 @@ impl Walk {
                 self.damage(Place::Sector { sequence }, what);
             }
         }
-        if bytes.len() < SECTOR_BYTES && !is_last {
-            self.damage(Place::Sector { sequence }, What::CutShort);
-        }
+        self.ledger.end_of_sector(sequence, bytes.len(), is_last);
     }
 
     fn entries(&mut self, reader: SectorReader<'_>) {
@@ -150,7 +144,9 @@ impl Walk {
         if self.ledger.is_broken() {
             self.forget();
         }
-        self.ledger.header(&header, state.as_ref(), stated_as_lost(reader.clone()));
+        if !self.ledger.header(&header, state.as_ref(), stated_as_lost(reader.clone())) {
+            self.machines.forget();
+        }
         self.header(&header);
         self.machines.checkpoint(sequence, state.as_ref(), &mut self.report.contradictions);
         for item in reader {
@@ -203,31 +199,13 @@ impl Walk {
         }
     }
 
-    fn finish(&mut self, last_used: usize) {
+    fn finish(&mut self) {
         if !self.ledger.is_broken() {
             let hash = self.report.head.map(|head| head.running_hash);
             self.machines.finish(hash, &mut self.report.contradictions);
         }
-        let report = &mut self.report;
-        let Some(head) = report.head else { return self.ledger.finish(None) };
-        report.reaches_head = match report.newest {
-            Some(newest) => newest == head.newest && last_used >= usize::from(head.used),
-            None => head.used == 0,
-        };
-        let before = report.newest.map_or(head.newest, |newest| newest.saturating_add(1));
-        if let (Some(newest), stated) = (report.newest, head.newest)
-            && newest > stated
-        {
-            report.contradictions.push(Contradiction::BehindHead { newest, stated });
-        } else if report.newest.is_some_and(|newest| newest < head.newest) {
-            let place = Place::Sectors { first: before, last: head.newest };
-            self.ledger.place(place, What::Absent);
-            self.ledger.absent += head.newest - before + 1;
-        } else if !report.reaches_head {
-            self.ledger.place(Place::Sector { sequence: head.newest }, What::CutShort);
-        }
-        report.missing_sectors = self.ledger.absent;
-        self.ledger.finish(Some(head.next_entry));
+        self.report.reaches_head = self.ledger.finish(self.report.head.as_ref());
+        self.report.missing_sectors = self.ledger.absent;
     }
 
     fn damage(&mut self, place: Place, what: What) {
