@@ -11,7 +11,7 @@
 //! | 14 | 2 | battery, mV |
 //! | 16 | 1 | quality numbers: level, and temperature times 16 |
 //! | 17 | 3 | zero |
-//! | 20 | 4 | CRC-32 (ISO-HDLC) over boot u16, place of the record u16 and bytes 0 to 19 |
+//! | 20 | 4 | hash over boot u16, place of the record u16 and bytes 0 to 19 |
 //!
 //! So a check fits only the boot that wrote it, at its own place. Plain numbers: the area is written
 //! in every cycle, and nothing in it outlives a loss of power.
@@ -23,7 +23,6 @@ use embedded_storage::nor_flash::NorFlash;
 use heapless::Vec;
 use strake_core::journal::Sample;
 use strake_core::journal::block::ENTRIES_MAX;
-use strake_core::journal::check::CRC32;
 use strake_core::signal::{Channel, Quality};
 
 /// Most samples that wait.
@@ -37,35 +36,38 @@ const CHECKED_BYTES: usize = RECORD_BYTES - 4;
 #[derive(Clone, Debug, Default)]
 pub struct Waiting {
     samples: Vec<Sample, WAITING_MAX>,
+    /// So many at the front are written already; they go when the last one does.
+    written: usize,
 }
 
 impl Waiting {
     /// None waits. Every bit is zero.
     #[must_use]
     pub const fn new() -> Self {
-        Self { samples: Vec::new() }
+        Self { samples: Vec::new(), written: 0 }
     }
 
     /// Samples that wait.
     #[must_use]
     pub fn len(&self) -> usize {
-        self.samples.len()
+        self.iter().len()
     }
 
     /// Whether none waits.
     #[must_use]
     pub fn is_empty(&self) -> bool {
-        self.samples.is_empty()
+        self.len() == 0
     }
 
     /// The samples, oldest first.
-    pub fn iter(&self) -> impl Iterator<Item = &Sample> {
-        self.samples.iter()
+    #[must_use]
+    pub fn iter(&self) -> impl ExactSizeIterator<Item = &Sample> {
+        self.from(0).iter()
     }
 
     /// The samples behind the first `skipped`, oldest first.
     pub(super) fn from(&self, skipped: usize) -> &[Sample] {
-        self.samples.get(skipped..).unwrap_or(&[])
+        self.samples.get(self.written.saturating_add(skipped)..).unwrap_or(&[])
     }
 
     pub(super) fn is_full(&self) -> bool {
@@ -83,12 +85,14 @@ impl Waiting {
 
     pub(super) fn clear(&mut self) {
         self.samples.clear();
+        self.written = 0;
     }
 
     pub(super) fn drop_first(&mut self, count: usize) {
-        let count = if count < self.samples.len() { count } else { self.samples.len() };
-        self.samples.rotate_left(count);
-        self.samples.truncate(self.samples.len() - count);
+        self.written = self.written.saturating_add(count);
+        if self.is_empty() {
+            self.clear();
+        }
     }
 
     /// Stores the samples in `area`, and an end behind them. To be called after every push and after
@@ -97,7 +101,7 @@ impl Waiting {
     pub fn save(&self, boot: u16, memory: &mut impl RetainedMemory, area: &Range<usize>) -> usize {
         let mut stored = 0;
         for (index, start) in (0_u16..).zip(records(area)) {
-            let Some(sample) = self.samples.get(stored) else {
+            let Some(sample) = self.from(stored).first() else {
                 // Zeros have no right check: the end.
                 memory.write(start, &[0; RECORD_BYTES]);
                 break;
@@ -132,12 +136,14 @@ fn records(area: &Range<usize>) -> impl Iterator<Item = usize> {
     (area.start..end).step_by(RECORD_BYTES)
 }
 
+/// FNV-1a with 32 bits (Fowler, Noll, Vo) over whole words: RAM either kept its content or lost it,
+/// so a check that is cheap in every cycle is enough.
 fn check(boot: u16, index: u16, fields: &[u8; CHECKED_BYTES]) -> u32 {
-    let mut digest = CRC32.digest();
-    digest.update(&boot.to_le_bytes());
-    digest.update(&index.to_le_bytes());
-    digest.update(fields);
-    digest.finalize()
+    let start = 0x811C_9DC5 ^ (u32::from(boot) << 16 | u32::from(index));
+    let (words, _) = fields.as_chunks::<4>();
+    words.iter().fold(start.wrapping_mul(0x0100_0193), |hash, &word| {
+        (hash ^ u32::from_le_bytes(word)).wrapping_mul(0x0100_0193)
+    })
 }
 
 fn to_record(boot: u16, index: u16, sample: &Sample) -> [u8; RECORD_BYTES] {

@@ -2,8 +2,14 @@
 
 use crc::{CRC_32_ISO_HDLC, Crc};
 
-/// The one table of this check.
-pub static CRC32: Crc<u32> = Crc::<u32>::new(&CRC_32_ISO_HDLC);
+/// A host takes a table and speed, a board no table and 1 KiB of flash less: checks are rare there.
+#[cfg(not(target_os = "none"))]
+type Width = crc::Table<1>;
+#[cfg(target_os = "none")]
+type Width = crc::NoTable;
+
+/// The one instance of this check.
+pub static CRC32: Crc<u32, Width> = Crc::<u32, Width>::new(&CRC_32_ISO_HDLC);
 
 /// Negative control of the power cuts on the emulated board: with the private feature
 /// `_careless_check` a build for a board takes every block for whole. Never shipped, and without

@@ -2,10 +2,9 @@
 
 use super::cobs;
 use super::field::Writer;
-use crc::{CRC_32_ISO_HDLC, Crc};
+use crate::journal::check::CRC32;
 
 /// The check of a frame, over kind and body.
-const CHECK: Crc<u32> = Crc::<u32>::new(&CRC_32_ISO_HDLC);
 const CHECK_BYTES: usize = 4;
 
 /// An opened frame whose check is right.
@@ -35,7 +34,7 @@ pub fn build(kind: u8, out: &mut [u8], write: impl FnOnce(&mut Writer<'_>)) -> O
     let mut writer = Writer::new(out.get_mut(start..)?);
     writer.raw(&[kind]);
     write(&mut writer);
-    let check = CHECK.checksum(writer.written()?);
+    let check = CRC32.checksum(writer.written()?);
     writer.raw(&check.to_le_bytes());
     let length = writer.written()?.len();
     let encoded = cobs::encode_in_place(out, start, length)?;
@@ -52,7 +51,7 @@ pub fn open(bytes: &mut [u8]) -> Result<Frame<'_>, FrameError> {
     let raw = bytes.get(..length).ok_or(FrameError::Framing)?;
     let (checked, check) = raw.split_last_chunk::<CHECK_BYTES>().ok_or(FrameError::Framing)?;
     let (&kind, body) = checked.split_first().ok_or(FrameError::Framing)?;
-    if CHECK.checksum(checked) != u32::from_le_bytes(*check) {
+    if CRC32.checksum(checked) != u32::from_le_bytes(*check) {
         return Err(FrameError::Check);
     }
     Ok(Frame { kind, body })
