@@ -29,6 +29,11 @@
 //! sensor showed at that moment), entry numbers run on, no latched alarm clears without a person,
 //! every start-up finishes, and after every collection the journal contradicts itself nowhere and
 //! its replay is identical.
+#![expect(
+    clippy::cast_possible_truncation,
+    clippy::cast_precision_loss,
+    reason = "counts and times of a simulation are far below 2^53"
+)]
 #![allow(missing_docs, reason = "a test binary has no public interface")]
 
 mod flash;

@@ -139,7 +139,7 @@ fn a_filling_with_an_alarm_replays_identically() {
     let mut file = JournalFile::open(&path).unwrap();
     let replayed = replay(&mut file).unwrap();
     let engine = &replayed.engine;
-    assert_eq!(replayed.damage, Vec::<String>::new());
+    assert!(replayed.damage.is_empty(), "{:?}", replayed.damage);
     assert_eq!(engine.verdict.first_difference, None);
     assert!(engine.verdict.identical());
     assert!(engine.verdict.moves_compared >= 4, "{:?}", engine.verdict);
