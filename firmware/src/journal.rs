@@ -79,8 +79,17 @@ struct Open {
     sequence: u32,
     /// Where the next block goes; 4,096 when the sector is full.
     offset: u16,
-    /// Where the samples of this page stand; the default before its anchor.
+    /// What the next block of samples goes on from.
     chain: Chain,
+}
+
+impl Open {
+    /// At the end of a page the next block begins one.
+    fn turn_full_page(&mut self) {
+        if self.offset.is_multiple_of(256) {
+            self.chain.turn_page();
+        }
+    }
 }
 
 /// What is known of the place that the next sector gets.

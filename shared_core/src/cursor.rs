@@ -16,6 +16,14 @@ impl Fetch for &[u8] {
     }
 }
 
+/// Copies as many bytes as both have. Where the compiler cannot see that the lengths are equal, the
+/// copy of a slice keeps a way to panic.
+pub(crate) fn fill(target: &mut [u8], source: &[u8]) {
+    for (to, from) in target.iter_mut().zip(source) {
+        *to = *from;
+    }
+}
+
 /// Reads numbers off something that hands out bytes.
 #[derive(Clone, Copy, Debug)]
 pub(crate) struct Source<F>(pub(crate) F);
@@ -77,7 +85,7 @@ impl<'a> Sink<'a> {
         let end = self.used.saturating_add(source.len());
         match self.bytes.get_mut(self.used..end) {
             Some(target) => {
-                target.copy_from_slice(source);
+                fill(target, source);
                 self.used = end;
             }
             None => self.fits = false,

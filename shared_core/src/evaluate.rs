@@ -59,12 +59,41 @@ pub fn levels_m(plan: &Plan, resolved: &Resolved) -> [f32; 3] {
 
 /// Loads of every part under `N` readings, handed to `part` in the plan's order, and the digest of
 /// all their bits per lane.
-// One function in every image, so that its instructions can be counted.
-#[inline(never)]
 pub fn loads<const N: usize>(
     plan: &Plan,
     resolved: &[Resolved; N],
     mut part: impl FnMut(usize, &PartLoads<N>),
+) -> Digest<N> {
+    each_load(plan, resolved, &mut part)
+}
+
+/// [`loads`] of one reading, compiled with this crate and at its level.
+#[inline(never)]
+pub fn loads_of_one(
+    plan: &Plan,
+    resolved: &Resolved,
+    part: &mut dyn FnMut(usize, &PartLoads<1>),
+) -> Digest<1> {
+    each_load(plan, &[*resolved], part)
+}
+
+/// Loads of one part of the plan under one reading, compiled with this crate and at its level;
+/// `None` beyond the last part.
+#[must_use]
+#[inline(never)]
+pub fn part_loads_of_one(plan: &Plan, index: usize, resolved: &Resolved) -> Option<PartLoads<1>> {
+    let states = pressures(plan, &[*resolved]);
+    let mut loads = PartLoads::NONE;
+    evaluate_into(plan, plan.parts.get(index)?, &states, &mut loads);
+    Some(loads)
+}
+
+/// [`loads`] as one function in every image, whoever takes the loads.
+#[inline(never)]
+fn each_load<const N: usize>(
+    plan: &Plan,
+    resolved: &[Resolved; N],
+    part: &mut dyn FnMut(usize, &PartLoads<N>),
 ) -> Digest<N> {
     let states = pressures(plan, resolved);
     let mut digest = Digest::new();

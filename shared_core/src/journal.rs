@@ -9,7 +9,7 @@
 //! - **Checkpoint**: the caller's whole state at the sector's opening, in as many blocks as it
 //!   needs, right behind the header; see [`checkpoint`]. So every sector can be replayed alone.
 //! - **Anchor**: the first block of samples in a page, with absolute values; the later ones of that
-//!   page hold differences; see [`samples`].
+//!   page continue it; see [`samples`].
 //!
 //! Rules of the writer on which every reader may lean:
 //!
@@ -23,6 +23,7 @@
 //! A reader takes a page block by block. At the first unreadable one it counts damage and goes on
 //! with the next page; a block of an unknown form with a right check is counted and passed over.
 
+mod bits;
 pub mod block;
 mod bytes;
 pub mod check;

@@ -4,7 +4,7 @@ use std::error::Error;
 use std::fmt::Write as _;
 use std::path::{Path, PathBuf};
 
-use object::{Object as _, ObjectSection as _, ObjectSymbol as _, SectionFlags, elf};
+use object::{Object as _, ObjectSection as _, ObjectSymbol as _, SectionFlags, SymbolKind, elf};
 use sha2::{Digest as _, Sha256};
 
 /// An ELF file for the target.
@@ -15,6 +15,11 @@ pub(crate) struct Image {
     /// SHA-256 of the file, in hexadecimal.
     pub(crate) sha256: String,
 }
+
+/// A function of an image: address, size and name as linked.
+pub(crate) type Function = (u32, u32, String);
+/// A stretch of what the flash holds: address and content.
+pub(crate) type Stretch = (u32, Vec<u8>);
 
 /// Bytes that an image takes on the device.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -67,6 +72,33 @@ impl Image {
         let found = halves.into_iter().position(|half| is_it(half) == Some(code));
         let offset = found.ok_or(format!("no instruction {code:#06x}"))? * 2;
         Ok(u32::try_from(text.address())? + u32::try_from(offset)?)
+    }
+
+    /// The functions of the image: address, size and name as linked.
+    pub(crate) fn functions(&self) -> Result<Vec<Function>, Box<dyn Error>> {
+        let file = object::File::parse(&*self.elf)?;
+        let mut functions = Vec::new();
+        for symbol in file.symbols().filter(|symbol| symbol.kind() == SymbolKind::Text) {
+            let name = symbol.name().unwrap_or_default();
+            if !name.starts_with('$') {
+                let address = u32::try_from(symbol.address() & !1)?;
+                functions.push((address, u32::try_from(symbol.size())?, name.to_owned()));
+            }
+        }
+        Ok(functions)
+    }
+
+    /// Address and content of every section that the flash holds.
+    pub(crate) fn content(&self) -> Result<Vec<Stretch>, Box<dyn Error>> {
+        let file = object::File::parse(&*self.elf)?;
+        let mut content = Vec::new();
+        for section in file.sections() {
+            let SectionFlags::Elf { sh_flags } = section.flags() else { continue };
+            if sh_flags & u64::from(elf::SHF_ALLOC) != 0 && section.file_range().is_some() {
+                content.push((u32::try_from(section.address())?, section.data()?.to_vec()));
+            }
+        }
+        Ok(content)
     }
 
     pub(crate) fn footprint(&self) -> Result<Footprint, Box<dyn Error>> {

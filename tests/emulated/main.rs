@@ -19,6 +19,7 @@ mod image;
 mod log;
 mod machine;
 mod operation;
+mod panics;
 mod plugin;
 mod qmp;
 mod recovery;
@@ -65,6 +66,7 @@ fn main() {
         operation::TESTS,
         recovery::TESTS,
         footprint::TESTS,
+        panics::TESTS,
     ];
     let trials: Vec<Trial> = groups
         .into_iter()

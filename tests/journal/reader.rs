@@ -8,7 +8,8 @@ use strake::sim::nor::Nor;
 use strake_core::alarm::{AlarmState, FaultCause, MachineId};
 use strake_core::journal::check::CRC32;
 use strake_core::journal::entry::{Presser, Transition, TransitionCause};
-use strake_core::journal::{Entry, Item, SectorReader};
+use strake_core::journal::{Entry, Item, Sample, SectorReader};
+use strake_core::signal::{Channel, Quality, SensorError};
 
 fn record(file: &mut Vec<u8>, tag: u8, payload: &[u8]) {
     let begin = file.len();
@@ -20,7 +21,7 @@ fn record(file: &mut Vec<u8>, tag: u8, payload: &[u8]) {
 }
 
 /// A journal file as a collection writes it.
-fn file_of<const WORD: usize>(bench: &mut Bench<Nor<WORD>>) -> Vec<u8> {
+pub(crate) fn file_of<const WORD: usize>(bench: &mut Bench<Nor<WORD>>) -> Vec<u8> {
     let mut file = b"STRAKEJ1".to_vec();
     let word = u8::try_from(WORD).unwrap();
     record(&mut file, 1, &[&b"\x02T1\x050.1.0"[..], &[word, 6, 0, 0, 0]].concat());
@@ -55,17 +56,21 @@ fn run_reader(file: &[u8]) -> Output {
         .expect("python3 is needed to run the second reader")
 }
 
-fn counts_of(file: &[u8]) -> Value {
+pub(crate) fn counts_of(file: &[u8]) -> Value {
     let output = run_reader(file);
     assert!(output.status.success(), "{}", String::from_utf8_lossy(&output.stderr));
     serde_json::from_slice(&output.stdout).unwrap()
 }
 
 /// Some laps with every kind of entry in them, ending with a transition.
-fn journal<const WORD: usize>() -> Bench<Nor<WORD>> {
+pub(crate) fn journal<const WORD: usize>() -> Bench<Nor<WORD>> {
     let mut bench = Bench::new(Nor::<WORD>::new(6), 500);
     for index in 0..4_000 {
         bench.run(op(index)).unwrap();
+        if index % 9 == 0 {
+            let sample = odd_sample(index as u64);
+            bench.journal.push(&sample, &mut bench.app).unwrap();
+        }
         let tick_ms = 20_000 + index as u64;
         let entry = match index % 400 {
             40 => Entry::ClockFix { tick_ms, utc_s: 1_754_000_000 },
@@ -93,13 +98,72 @@ fn journal<const WORD: usize>() -> Bench<Nor<WORD>> {
     bench
 }
 
+/// Samples out of the common: levels of a coarse sensor, failures, gaps, anything at all.
+fn odd_sample(index: u64) -> Sample {
+    let word = index.wrapping_mul(0x9E37_79B9_7F4A_7C15);
+    let [a, b, c, d, e, f, g, h] = word.to_le_bytes();
+    let coarse = Channel::good(320 * i32::from(a));
+    let temperature = Channel::good(1600 + i32::from(b % 8));
+    let quality = Quality::from_number(c % 8).unwrap();
+    let any = Channel { count_16: i32::from_le_bytes([d, e, f, g]), quality };
+    let (level, temperature) = match h % 5 {
+        0 => (any, any),
+        1 => (Channel::failed(SensorError::Silent), temperature),
+        2 => (coarse, Channel::default()),
+        _ => (coarse, temperature),
+    };
+    let tick_ms = if h % 7 == 0 { word >> 16 } else { 20_000 * index };
+    Sample { tick_ms, level, temperature, battery_mv: u16::from_le_bytes([g, h % 32]) }
+}
+
 /// The same counts by the product's own reader.
 #[derive(Default)]
-struct Own {
-    samples: u64,
-    events: [u64; 12],
+pub(crate) struct Own {
+    pub(crate) samples: u64,
+    pub(crate) events: [u64; 12],
+    /// Counts of the levels that are good or sparse.
     levels: Vec<i32>,
+    /// All fields of all samples.
+    fields: Vec<u8>,
     hash: u64,
+}
+
+impl Own {
+    /// Takes all that stands in a sector.
+    pub(crate) fn take(&mut self, sector: &[u8]) {
+        for item in SectorReader::new(sector).unwrap() {
+            match item {
+                Item::Entry(Entry::Sample(sample)) => self.take_sample(&sample),
+                Item::Entry(entry) => {
+                    self.events[usize::from(entry.number())] += 1;
+                    if let Entry::Transition(transition) = entry {
+                        self.hash = transition.hash;
+                    }
+                }
+                Item::State { .. } => {}
+                Item::Damage(damage) => panic!("{damage:?}"),
+            }
+        }
+    }
+
+    fn take_sample(&mut self, sample: &Sample) {
+        self.samples += 1;
+        self.fields.extend(sample.tick_ms.to_le_bytes());
+        for channel in [sample.level, sample.temperature] {
+            self.fields.extend(channel.count_16.to_le_bytes());
+            self.fields.push(channel.quality.number());
+        }
+        self.fields.extend(sample.battery_mv.to_le_bytes());
+        if matches!(sample.level.quality, Quality::Good | Quality::Sparse) {
+            self.levels.push(sample.level.count_16);
+        }
+    }
+
+    /// CRC-32 over tick u64, count i32 and quality u8 of level and of temperature, battery u16, of
+    /// all samples.
+    pub(crate) fn samples_check(&self) -> String {
+        format!("{:08x}", CRC32.checksum(&self.fields))
+    }
 }
 
 fn own_counts<const WORD: usize>(bench: &mut Bench<Nor<WORD>>) -> Own {
@@ -107,22 +171,7 @@ fn own_counts<const WORD: usize>(bench: &mut Bench<Nor<WORD>>) -> Own {
     for sequence in bench.journal.oldest_sequence()..=bench.journal.newest_sequence().unwrap() {
         let mut bytes = [0; 4096];
         bench.journal.read_sector(sequence, 0, &mut bytes).unwrap();
-        for item in SectorReader::new(&bytes).unwrap() {
-            match item {
-                Item::Entry(Entry::Sample(sample)) => {
-                    own.samples += 1;
-                    own.levels.push(sample.level.count_16);
-                }
-                Item::Entry(entry) => {
-                    own.events[usize::from(entry.number())] += 1;
-                    if let Entry::Transition(transition) = entry {
-                        own.hash = transition.hash;
-                    }
-                }
-                Item::State { .. } => {}
-                Item::Damage(damage) => panic!("{damage:?}"),
-            }
-        }
+        own.take(&bytes);
     }
     own
 }
@@ -133,7 +182,8 @@ fn both_readers_agree<const WORD: usize>() {
     let counts = counts_of(&file_of(&mut bench));
     println!("{counts}");
     assert_eq!(counts["samples"], own.samples);
-    assert!(own.samples > 1_000, "{}", own.samples);
+    assert_eq!(counts["samples_check"], own.samples_check());
+    assert!(own.samples > 800, "{}", own.samples);
     let names = ["transition", "fault", "start_up", "clock_fix", "plan_change"];
     for (number, name) in (2..).zip(names).chain([(10, "acknowledgement"), (11, "gap")]) {
         assert_eq!(counts["entries"][name], own.events[number], "{name}");

@@ -111,7 +111,7 @@ fn two_sectors_are_too_few() {
 fn the_journal_takes_little_ram() {
     let without_flash = size_of::<Journal<()>>();
     println!("journal without its flash: {without_flash} bytes");
-    assert!(without_flash <= 1_232, "{without_flash}");
+    assert!(without_flash <= 1_400, "{without_flash}");
     assert!(size_of::<Sample>() <= 32);
 }
 
@@ -161,7 +161,7 @@ fn waiting_samples_survive_a_warm_restart_once() {
     other.last_tick_ms = None;
     other.last_boot = 7;
     assert_eq!(bench.journal.carried(&ram, &area, &other).unwrap().len(), 0);
-    ram.0[40] ^= 1;
+    ram.0[20] ^= 1;
     other.last_boot = 0;
     assert_eq!(bench.journal.carried(&ram, &area, &other).unwrap().len(), 0);
     bench.journal.waiting().save(0, &mut ram, &area);

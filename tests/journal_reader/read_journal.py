@@ -2,7 +2,7 @@
 """Reads a Strake journal file from the written format alone and prints counts as JSON.
 
 A second reader beside the product's own, sharing nothing with it but the byte tables: file records,
-sector header, blocks, samples in codec 0, events. Usage: read_journal.py FILE
+sector header, blocks, samples in codecs 0 and 1, events. Usage: read_journal.py FILE
 """
 
 import json
@@ -14,7 +14,7 @@ FILE_MAGIC = b"STRAKEJ1"
 SECTOR, PAGE, HEADER = 4096, 256, 104
 NAMES = {1: "sample", 2: "transition", 3: "fault", 4: "start_up", 5: "clock_fix",
          6: "plan_change", 10: "acknowledgement", 11: "gap"}
-FORMS = {0: "samples", 2: "events", 3: "state"}
+FORMS = {0: "samples", 1: "packed", 2: "events", 3: "state"}
 
 
 class Malformed(Exception):
@@ -71,8 +71,170 @@ def read_sample(cursor, chain):
     sound = qualities & 15 <= 7 and qualities >> 4 <= 7
     if not (sound and 0 <= tick < 2**48 and 0 <= battery < 2**16):
         raise Malformed("sample out of range")
-    return {"tick": tick, "level": level, "quality": qualities & 15}, \
-        (tick, interval, level, temperature, battery)
+    sample = {"tick": tick, "level": level, "quality": qualities & 15,
+              "temperature": temperature, "temperature_quality": qualities >> 4,
+              "battery": battery}
+    return sample, (tick, interval, level, temperature, battery)
+
+
+class Bits:
+    """Takes bits off the front of some bytes, lowest first."""
+
+    def __init__(self, data):
+        self.value, self.left = int.from_bytes(data, "little"), 8 * len(data)
+
+    def take(self, count):
+        if count > self.left:
+            raise Malformed("bits end early")
+        taken = self.value & ((1 << count) - 1)
+        self.value >>= count
+        self.left -= count
+        return taken
+
+    def number(self):
+        length = self.take(6)
+        if length == 63:
+            return self.take(64)
+        return self.take(length - 1) | 1 << (length - 1) if length else 0
+
+    def folded(self):
+        number = self.number()
+        return (number >> 1) ^ -(number & 1)
+
+    def status(self):
+        quality = self.take(3)
+        return quality, quality not in (1, 2) and bool(self.take(1))
+
+
+class Scale:
+    """Running mean of what was coded; sets the Rice parameter."""
+
+    def __init__(self, k):
+        self.mean = 24 << k
+
+    def read(self, bits):
+        k = max((self.mean * 19 >> 8).bit_length() - 1, 0)
+        ones = 0
+        while ones < 20 and bits.take(1):
+            ones += 1
+        number = bits.number() if ones == 20 else ones << k | bits.take(k)
+        self.mean += (16 * min(number, 2**22) - self.mean) >> 4
+        return (number >> 1) ^ -(number & 1)
+
+
+class Track:
+    """A channel of codec 1: its status, its places and what they are expected to be."""
+
+    def begin(self, bits):
+        self.base, self.k = 0, 2
+        whole = bits.take(1)
+        self.step = 16 if whole else self.read_step(bits)
+        if not self.status[1]:
+            self.base = bits.folded() * (16 if whole else 1)
+            self.k = bits.take(4)
+        self.scale = Scale(self.k)
+        self.last = self.before = self.mean = self.trend = self.slope = 0
+        self.n = 1
+
+    @staticmethod
+    def read_step(bits):
+        step = bits.number()
+        if not 0 < step < 2**32:
+            raise Malformed("step out of range")
+        return step
+
+    def change_step(self, bits):
+        old, new = self.step, self.read_step(bits)
+        if old == new:
+            return
+        fine = self.last << 8
+        self.base, self.step = self.count(), new
+        self.before = (self.before - self.last) * old // new
+        self.mean = (self.mean - fine) * old // new
+        self.trend = (self.trend - fine) * old // new
+        self.slope = self.slope * old // new
+        self.scale.mean = min(self.scale.mean * old // new, 16 * 2**22)
+        self.last = 0
+
+    def count(self):
+        count = self.base + self.last * self.step
+        if not -2**31 <= count < 2**31:
+            raise Malformed("count out of range")
+        return count
+
+    def read(self, bits):
+        if self.status[1]:
+            return 0
+        expected = (self.last, self.last + ((self.last - self.before) * 3 >> 2),
+                    (self.mean + 128) >> 8, (self.trend + self.slope + 128) >> 8)[self.predictor]
+        place = expected + self.scale.read(bits)
+        self.n = min(self.n + 1, 16)
+        n, pairs, fine = self.n, self.n * (self.n + 1), place << 8
+        self.mean += ((fine - self.mean) * (65536 // n)) >> 16
+        off = fine - self.trend - self.slope
+        self.trend += self.slope + ((off * (131072 * (2 * n - 1) // pairs)) >> 16)
+        self.slope += (off * (393216 // pairs)) >> 16
+        self.before, self.last = self.last, place
+        return self.count()
+
+
+class Packed:
+    """What the blocks of codec 1 in a page hand on."""
+
+    def __init__(self):
+        self.anchored, self.level, self.temperature = False, Track(), Track()
+
+    def tracks(self):
+        return self.level, self.temperature
+
+    def sample(self, level, temperature):
+        if not (0 <= self.tick < 2**48 and 0 <= self.battery < 2**16):
+            raise Malformed("sample out of range")
+        return {"tick": self.tick, "level": level, "quality": self.level.status[0],
+                "temperature": temperature, "temperature_quality": self.temperature.status[0],
+                "battery": self.battery}
+
+    def anchor(self, bits):
+        self.tick = bits.number()
+        unit = 1000 if bits.take(1) else 1
+        self.interval = bits.folded() * unit
+        if bits.take(1):
+            self.level.status = self.temperature.status = (1, False)
+        else:
+            self.level.status, self.temperature.status = bits.status(), bits.status()
+        for track in self.tracks():
+            track.begin(bits)
+        self.battery = bits.take(12 if bits.take(1) else 16)
+        self.time_scale, self.battery_scale = Scale(3), Scale(4)
+        self.anchored = True
+        return self.sample(*(track.count() for track in self.tracks()))
+
+    def block(self, data, count):
+        """Yields the samples of a block."""
+        bits, head = Bits(data), None
+        if not self.anchored:
+            head = self.anchor(bits)
+        if head or bits.take(1):
+            for track in self.tracks():
+                track.predictor = bits.take(2)
+            if not head and bits.take(1):
+                for track in self.tracks():
+                    track.change_step(bits)
+        steady = (1, 1, 1) if bits.take(1) else (bits.take(1), bits.take(1), bits.take(1))
+        if head:
+            yield head
+        for _ in range(count - bool(head)):
+            if not steady[0] and bits.take(1):
+                self.interval += self.time_scale.read(bits)
+            self.tick += self.interval
+            if not steady[1] and bits.take(1):
+                for track in self.tracks():
+                    track.status = bits.status()
+            level = self.level.read(bits)
+            temperature = self.temperature.read(bits)
+            if not steady[2] and bits.take(1):
+                self.battery += self.battery_scale.read(bits)
+            yield self.sample(level, temperature)
 
 
 def read_event(cursor):
@@ -125,9 +287,12 @@ class Counts:
         self.blocks = {name: 0 for name in [*FORMS.values(), "unknown"]}
         self.entries = {name: 0 for name in NAMES.values()}
         self.first_level = self.last_level = self.last_hash = None
+        self.samples_check = 0
 
     def sample(self, sample):
         self.entries["sample"] += 1
+        fields = struct.pack("<QiBiBH", *sample.values())
+        self.samples_check = zlib.crc32(fields, self.samples_check)
         if sample["quality"] in (1, 2):
             if self.first_level is None:
                 self.first_level = sample["level"]
@@ -141,7 +306,7 @@ class Counts:
 
 def read_page(counts, page, offset, skip, header, state):
     """Counts what one page holds."""
-    at, chain, chain_broken = skip, (0, 0, 0, 0, 0), False
+    at, chain, packed, chain_broken = skip, (0, 0, 0, 0, 0), Packed(), False
     while at < len(page) and page[at:].strip(b"\xff"):
         length = page[at] * header["word"]
         block = page[at:at + length]
@@ -156,12 +321,16 @@ def read_page(counts, page, offset, skip, header, state):
         if form == 3:
             take_state(state, count - 1, block[2:-4])
             continue
-        if form not in FORMS or (form == 0 and chain_broken):
+        if form not in FORMS or (form < 2 and chain_broken):
             counts.damaged += 1
             chain_broken = True
             continue
         cursor = Cursor(block[2:-4])
         try:
+            if form == 1:
+                for sample in packed.block(block[2:-4], count):
+                    counts.sample(sample)
+                continue
             for _ in range(count):
                 if form == 0:
                     sample, chain = read_sample(cursor, chain)
@@ -170,7 +339,7 @@ def read_page(counts, page, offset, skip, header, state):
                     counts.event(*read_event(cursor))
         except Malformed:
             counts.damaged += 1
-            chain_broken |= form == 0
+            chain_broken |= form < 2
 
 
 def take_state(state, part, payload):
@@ -241,7 +410,7 @@ def read_file(data):
         "checkpoints": counts.states, "blocks": counts.blocks, "entries": counts.entries,
         "samples": counts.entries["sample"], "damaged": counts.damaged,
         "first_level_count_16": counts.first_level, "last_level_count_16": counts.last_level,
-        "last_hash": counts.last_hash,
+        "last_hash": counts.last_hash, "samples_check": f"{counts.samples_check:08x}",
         "first_entry": readable[0]["first_entry"] if readable else None,
         "first_sequence": readable[0]["sequence"] if readable else None,
     })

@@ -10,8 +10,8 @@ use strake_core::journal::header::HEADER_BYTES;
 
 pub(crate) const TAG_PLAN: u8 = 2;
 pub(crate) const TAG_SECTOR: u8 = 3;
-/// Forms of blocks.
-pub(crate) const SAMPLES: u8 = 0;
+/// Forms of blocks: samples in codec 1, events.
+pub(crate) const SAMPLES: u8 = 1;
 const EVENTS: u8 = 2;
 
 /// Places of the payloads of all records with a tag.
@@ -78,6 +78,35 @@ pub(crate) fn change_block(
     panic!("the journal has no such block");
 }
 
+/// Changes the level count that an anchor of codec 1 begins with by one step.
+fn change_first_level(payload: &mut [u8]) {
+    let mut at = 0;
+    let take = |at: &mut usize, count: usize| {
+        let bits = (*at..*at + count).rev();
+        *at += count;
+        bits.fold(0, |value, bit| value << 1 | usize::from(payload[bit / 8] >> (bit % 8) & 1))
+    };
+    let skip_number = |at: &mut usize| {
+        let length = take(at, 6);
+        *at += length.saturating_sub(1);
+    };
+    // Tick; interval behind its unit; qualities, of which the level's is good.
+    skip_number(&mut at);
+    at += 1;
+    skip_number(&mut at);
+    if take(&mut at, 1) == 0 {
+        assert_eq!(take(&mut at, 3), 1, "the first level is good");
+        let temperature = take(&mut at, 3);
+        at += usize::from(![1, 2].contains(&temperature));
+    }
+    if take(&mut at, 1) == 0 {
+        skip_number(&mut at);
+    }
+    // The count's length; its lowest bit is the sign.
+    at += 6 + 1;
+    payload[at / 8] ^= 1 << (at % 8);
+}
+
 fn replay_of(directory: &Path, file: &[u8]) -> (i32, serde_json::Value) {
     let path = directory.join("changed.strake-journal");
     std::fs::write(&path, file).unwrap();
@@ -88,9 +117,8 @@ fn replay_of(directory: &Path, file: &[u8]) -> (i32, serde_json::Value) {
 fn a_changed_reading_is_named() {
     let (directory, _, document) = trial(&[]);
     let mut file = std::fs::read(journal(&document)).unwrap();
-    // The first block of samples begins a page with absolute values: its third payload byte lies in
-    // the first sample's tick or level count.
-    change_block(&mut file, SAMPLES, |_| true, |block| block[5] ^= 0x04);
+    // The first block of samples begins a page with absolute values.
+    change_block(&mut file, SAMPLES, |_| true, |block| change_first_level(&mut block[2..]));
     let (status, replayed) = replay_of(directory.path(), &file);
     assert_eq!(status, 7, "{replayed}");
     assert_eq!(replayed["identical"], false);

@@ -7,10 +7,10 @@ use crate::plan_store::StoreError;
 use crate::serve::{Refusal, Served};
 use embedded_storage::nor_flash::{NorFlash, ReadNorFlash};
 use strake_core::alarm::{FAULT_CAUSES, FaultCause, MachineId, PARTS_MAX, Threshold};
-use strake_core::evaluate::{levels_m, loads, pressures};
+use strake_core::evaluate::{levels_m, loads_of_one, part_loads_of_one};
 use strake_core::journal::Entry;
 use strake_core::journal::entry::Presser;
-use strake_core::part::{Geometry, PartLoads, evaluate};
+use strake_core::part::{Geometry, PartLoads};
 use strake_core::plan::PLAN_FORMAT;
 use strake_core::wire::{
     ErrorCode, FaultStatus, Head, Identity, JournalBounds, LinkCounters, LoadValue,
@@ -75,7 +75,7 @@ impl<B: Board> Served for Device<B> {
         [status.level_low_m, status.level_m, status.level_high_m] =
             levels_m(&self.memory.plan, &reading);
         status.parts = u8::try_from(self.memory.plan.parts.len()).unwrap_or(u8::MAX);
-        loads(&self.memory.plan, &[reading], |index, part| {
+        loads_of_one(&self.memory.plan, &reading, &mut |index, part| {
             let bound = part.utilisation_bound.lane(0);
             if status.governing_part == u8::MAX || bound > status.utilisation_bound {
                 status.utilisation_bound = bound;
@@ -89,7 +89,7 @@ impl<B: Board> Served for Device<B> {
         self.in_force?;
         let reading = self.reading?;
         let one = self.memory.plan.parts.get(usize::from(part))?;
-        let of = evaluate(&self.memory.plan, one, &pressures(&self.memory.plan, &[reading]));
+        let of = part_loads_of_one(&self.memory.plan, usize::from(part), &reading)?;
         let state = |threshold| {
             MachineId::of_part(part, threshold)
                 .map_or(0, |id| self.memory.state.machine(id).state.number())

@@ -6,13 +6,9 @@ use super::{Journal, Snapshot, Waiting};
 use core::ops::DerefMut;
 use embedded_storage::nor_flash::NorFlash;
 use strake_core::journal::block::{Encoded, Place, encode_events, encode_samples};
-use strake_core::journal::samples::{Chain, SAMPLE_BYTES_MAX};
+use strake_core::journal::samples::{Chain, PAGE_SAMPLES_MIN};
 use strake_core::journal::{Entry, PAGE_BYTES, SECTOR_BYTES, Sample};
 
-/// Pages that hold all that may wait, whatever the samples are: a block of 11 and its frame fill at
-/// most a page, and the page begun may have no room.
-const PAGES_FOR_WAITING: usize = 1 + super::WAITING_MAX.div_ceil(11);
-const _: () = assert!(11 * SAMPLE_BYTES_MAX + 6 <= 254);
 /// Programs tried before an append is given up.
 const TRIES: u8 = 2;
 
@@ -32,15 +28,20 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         if self.waiting.is_full() {
             result = self.flush();
         }
-        if self.waiting.is_full() || !self.fits(sample) {
+        let mut waits = self.waiting.push(sample);
+        if !waits || !self.fits() {
+            if waits {
+                self.waiting.pop();
+            }
             result = self.flush().and(result);
             self.give_up_waiting();
             if let Err(error) = self.open_sector(now) {
                 self.lose(1);
                 return Err(error);
             }
+            waits = self.waiting.push(sample);
         }
-        if !self.waiting.push(sample) {
+        if !waits {
             self.lose(1);
         }
         result
@@ -59,7 +60,7 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
                 self.give_up_waiting();
                 return Err(JournalError::GivenUp);
             };
-            let samples = self.waiting.iter();
+            let samples = self.waiting.from(0);
             let Some(encoded) = encode_samples(place, samples, &mut chain, &mut block) else {
                 self.next_page();
                 continue;
@@ -67,8 +68,9 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
             match self.append(place, &block, encoded) {
                 Ok(()) => {
                     self.waiting.drop_first(encoded.taken);
-                    if let Some(open) = self.open.as_mut().filter(|open| open.offset % 256 != 0) {
+                    if let Some(open) = self.open.as_mut() {
                         open.chain = chain;
+                        open.turn_full_page();
                     }
                 }
                 Err(error) => {
@@ -174,9 +176,7 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         self.next_entry = self.next_entry.wrapping_add(taken);
         if let Some(open) = self.open.as_mut() {
             open.offset = end_of(place, encoded);
-            if open.offset.is_multiple_of(256) {
-                open.chain = Chain::default();
-            }
+            open.turn_full_page();
         }
         Ok(())
     }
@@ -193,33 +193,34 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
     fn next_page(&mut self) {
         if let Some(open) = self.open.as_mut() {
             open.offset = page_behind(open.offset);
-            open.chain = Chain::default();
+            open.turn_full_page();
         }
     }
 
-    /// Whether all that waits and one more sample have room in the open sector.
-    fn fits(&self, sample: &Sample) -> bool {
-        let Some(open) = self.open else { return false };
-        if usize::from(open.offset) + PAGES_FOR_WAITING * PAGE_BYTES <= SECTOR_BYTES {
+    /// Whether all that waits has room in the open sector.
+    fn fits(&self) -> bool {
+        let Some(mut open) = self.open else { return false };
+        // Whatever the samples are, so many pages hold them behind the one begun.
+        let pages = 1 + self.waiting.len().div_ceil(PAGE_SAMPLES_MIN);
+        if usize::from(open.offset) + pages * PAGE_BYTES <= SECTOR_BYTES {
             return true;
         }
-        let (mut offset, mut chain, mut placed) = (open.offset, open.chain, 0);
-        while placed <= self.waiting.len() {
-            if usize::from(offset) >= SECTOR_BYTES {
+        let mut placed = 0;
+        while placed < self.waiting.len() {
+            if usize::from(open.offset) >= SECTOR_BYTES {
                 return false;
             }
             let mut block = [0; PAGE_BYTES];
-            let place = Place { sequence: open.sequence, offset, word: Ring::<F>::WORD };
-            let rest = self.waiting.iter().chain([sample]).skip(placed);
-            if let Some(encoded) = encode_samples(place, rest, &mut chain, &mut block) {
+            let (sequence, offset) = (open.sequence, open.offset);
+            let place = Place { sequence, offset, word: Ring::<F>::WORD };
+            let rest = self.waiting.from(placed);
+            if let Some(encoded) = encode_samples(place, rest, &mut open.chain, &mut block) {
                 placed += encoded.taken;
-                offset = end_of(place, encoded);
+                open.offset = end_of(place, encoded);
             } else {
-                offset = page_behind(offset);
+                open.offset = page_behind(offset);
             }
-            if offset.is_multiple_of(256) {
-                chain = Chain::default();
-            }
+            open.turn_full_page();
         }
         true
     }

@@ -129,7 +129,9 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         };
         self.ring.program(sequence, 0, &header.encode()).map_err(JournalError::Flash)?;
         let offset = self.write_state(sequence, now)?;
-        self.open = Some(Open { sequence, offset, chain: Chain::default() });
+        let mut chain = self.open.map_or(Chain::default(), |open| open.chain);
+        chain.turn_page();
+        self.open = Some(Open { sequence, offset, chain });
         self.next_sequence = sequence.checked_add(1).ok_or(JournalError::SequenceExhausted)?;
         self.ahead = Ahead::AsItWas;
         self.appended = true;

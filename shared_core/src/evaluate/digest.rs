@@ -30,6 +30,8 @@ impl<const N: usize> Digest<N> {
     }
 
     /// Folds all results of a part in.
+    // One function in every image, so that its instructions can be told from those of the loads.
+    #[inline(never)]
     pub(super) fn add(&mut self, part: &Part, loads: &PartLoads<N>) {
         match &part.geometry {
             Geometry::Course { .. } => {

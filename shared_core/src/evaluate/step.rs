@@ -1,6 +1,6 @@
 //! One sample, one press: what moves the machines.
 
-use super::{Digest, State, loads};
+use super::{Digest, State, loads_of_one};
 use crate::alarm::{Condition, FaultCause, MachineId, Move, Settings, Threshold};
 use crate::journal::entry::{Sample, Transition};
 use crate::plan::{Plan, ThresholdPlan};
@@ -39,11 +39,27 @@ impl Moved {
 pub type Judged = (f32, f32);
 
 /// Takes one sample: resolves it, evaluates every part, moves the machines.
-pub fn step(plan: &Plan, state: &mut State, sample: &Sample, moved: impl FnMut(Moved)) -> Resolved {
+pub fn step(
+    plan: &Plan,
+    state: &mut State,
+    sample: &Sample,
+    mut moved: impl FnMut(Moved),
+) -> Resolved {
+    one_step(plan, state, sample, &mut moved)
+}
+
+/// [`step`] as one function in every image, compiled with this crate and at its level.
+#[inline(never)]
+fn one_step(
+    plan: &Plan,
+    state: &mut State,
+    sample: &Sample,
+    moved: &mut dyn FnMut(Moved),
+) -> Resolved {
     let resolved =
         resolve(plan, &mut state.sight, sample.tick_ms, sample.level, sample.temperature);
     let mut judged: Vec<Judged, { crate::alarm::PARTS_MAX }> = Vec::new();
-    let digest = loads(plan, &[resolved], |_, part| {
+    let digest = loads_of_one(plan, &resolved, &mut |_, part| {
         // As many parts as the plan holds, which is the capacity of the list.
         let _ = judged.push((part.utilisation_bound.lane(0), part.utilisation_inward.lane(0)));
     });
@@ -68,19 +84,23 @@ pub fn judge<const N: usize>(
     let waited_ms = tick_ms.saturating_sub(state.sight.started_ms);
     let too_early = unread && waited_ms <= u64::from(plan.level.failed_after_ms);
     if !too_early {
+        let thresholds = [
+            (Threshold::Warn, Some(&plan.alarm.warn)),
+            (Threshold::Alarm, Some(&plan.alarm.alarm)),
+            (Threshold::Inward, plan.alarm.inward.as_ref()),
+        ];
         for (index, &(outward, inward)) in (0_u8..).zip(judged) {
-            let thresholds = [
-                (Threshold::Warn, Some(plan.alarm.warn), outward),
-                (Threshold::Alarm, Some(plan.alarm.alarm), outward),
-                (Threshold::Inward, plan.alarm.inward, inward),
-            ];
-            for (threshold, settings, utilisation) in thresholds {
+            for (threshold, settings) in thresholds {
                 let (Some(id), Some(settings)) = (MachineId::of_part(index, threshold), settings)
                 else {
                     continue;
                 };
+                let utilisation = if threshold == Threshold::Inward { inward } else { outward };
                 let condition = Condition::of(utilisation, settings.utilisation, settings.deadband);
-                let settings = machine_settings(plan, &settings);
+                if rests(state, id, condition) {
+                    continue;
+                }
+                let settings = machine_settings(plan, settings);
                 apply(state, id, &settings, condition, (tick_ms, utilisation), &mut moved);
             }
         }
@@ -88,10 +108,19 @@ pub fn judge<const N: usize>(
     for cause in FaultCause::ALL {
         let stands = fault_stands(resolved, cause);
         let condition = if stands { Condition::Stands } else { Condition::Gone };
-        let settings = fault_settings(plan, cause);
         let id = MachineId::of_fault(cause);
+        if rests(state, id, condition) {
+            continue;
+        }
+        let settings = fault_settings(plan, cause);
         apply(state, id, &settings, condition, (tick_ms, 0.0), &mut moved);
     }
+}
+
+/// A normal machine stays as it is unless its condition stands: most machines, most of the time.
+#[inline]
+fn rests(state: &State, id: MachineId, condition: Condition) -> bool {
+    condition != Condition::Stands && state.machine(id).is_normal()
 }
 
 fn apply(

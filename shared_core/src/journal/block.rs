@@ -10,8 +10,8 @@
 //!
 //! | form | payload |
 //! | --- | --- |
-//! | 0 | `count` samples in codec 0, see [`samples`](super::samples) |
-//! | 1 | samples in a second codec, kept free |
+//! | 0 | `count` samples in codec 0: read, no longer written; see [`samples`](super::samples) |
+//! | 1 | `count` samples in codec 1, likewise |
 //! | 2 | `count` events, see [`events`](super::events) |
 //! | 3 | part `count` less one of the checkpoint, see [`checkpoint`](super::checkpoint) |
 //!
@@ -77,6 +77,8 @@ impl Word {
 pub enum Form {
     /// Samples in codec 0.
     Samples,
+    /// Samples in codec 1.
+    Packed,
     /// Events.
     Events,
     /// A part of the checkpoint.
@@ -89,6 +91,7 @@ impl Form {
     const fn number(self) -> u8 {
         match self {
             Self::Samples => 0,
+            Self::Packed => 1,
             Self::Events => 2,
             Self::State => 3,
             Self::Unknown(number) => number & 7,
@@ -98,6 +101,7 @@ impl Form {
     const fn from_number(number: u8) -> Self {
         match number & 7 {
             0 => Self::Samples,
+            1 => Self::Packed,
             2 => Self::Events,
             3 => Self::State,
             other => Self::Unknown(other),
@@ -136,22 +140,18 @@ pub struct Encoded {
     pub taken: usize,
 }
 
-/// As many of `samples` as fit, at most [`ENTRIES_MAX`], as one block of samples; `chain` steps
-/// over those taken. It must be the default for the first block of samples in a page. `None` when
-/// not even one fits.
-pub fn encode_samples<'a>(
+/// As many of `samples` as fit, at most [`ENTRIES_MAX`], as one block in codec 1; `chain` steps
+/// over those taken. Before the first block of samples in a page it must be the default, or its
+/// page [turned](Chain::turn_page). `None` when not even one fits.
+pub fn encode_samples(
     place: Place,
-    samples: impl IntoIterator<Item = &'a Sample>,
+    samples: &[Sample],
     chain: &mut Chain,
     out: &mut [u8; PAGE_BYTES],
 ) -> Option<Encoded> {
-    encode_entries(place, Form::Samples, samples, out, |sample, sink| {
-        let mut next = *chain;
-        next.write(sample, sink);
-        if sink.finished().is_some() {
-            *chain = next;
-        }
-    })
+    let payload = out.get_mut(HEAD_BYTES..HEAD_BYTES + place.room())?;
+    let (len, taken) = chain.write(samples.get(..ENTRIES_MAX).unwrap_or(samples), payload)?;
+    Some(Encoded { len: seal(place, Form::Packed, taken, len, out)?, taken })
 }
 
 /// As many of `entries` as fit, at most [`ENTRIES_MAX`], as one block of events. Samples have no

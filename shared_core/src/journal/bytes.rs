@@ -3,6 +3,8 @@
 //! A varint holds 7 bits per byte, lowest first; the top bit says that more follow. A signed number
 //! is folded first (zig-zag): 0, -1, 1, -2 become 0, 1, 2, 3.
 
+use crate::cursor::fill;
+
 /// Appends to a slice; what does not fit marks the sink as full and is dropped.
 pub(super) struct Sink<'a> {
     out: &'a mut [u8],
@@ -24,7 +26,7 @@ impl<'a> Sink<'a> {
         let end = self.len.saturating_add(bytes.len());
         match self.out.get_mut(self.len..end) {
             Some(place) if !self.full => {
-                place.copy_from_slice(bytes);
+                fill(place, bytes);
                 self.len = end;
             }
             _ => self.full = true,

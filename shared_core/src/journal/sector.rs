@@ -5,7 +5,7 @@ use super::bytes::Source;
 use super::checkpoint::Collector;
 use super::entry::Entry;
 use super::header::{HEADER_BYTES, HeaderError, SectorHeader};
-use super::samples::Chain;
+use super::samples::{Chain, Packed, PlainChain};
 use super::{PAGE_BYTES, SECTOR_BYTES, events};
 
 /// What a reader meets.
@@ -53,6 +53,7 @@ pub enum DamageKind {
 pub struct PageReader<'a> {
     blocks: Blocks<'a>,
     chain: Chain,
+    plain: PlainChain,
     /// A block of samples was passed over, so later ones of this page have nothing to chain to.
     chain_broken: bool,
     open: Option<Open<'a>>,
@@ -61,10 +62,17 @@ pub struct PageReader<'a> {
 /// A block that is being read.
 #[derive(Clone, Copy, Debug)]
 struct Open<'a> {
-    source: Source<'a>,
-    samples: bool,
+    content: Content<'a>,
     left: u8,
     offset: u16,
+}
+
+/// The entries of a block, from the next one on.
+#[derive(Clone, Copy, Debug)]
+enum Content<'a> {
+    Events(Source<'a>),
+    Plain(Source<'a>),
+    Packed(Packed<'a>),
 }
 
 impl<'a> PageReader<'a> {
@@ -84,28 +92,31 @@ impl<'a> PageReader<'a> {
         Self {
             blocks: Blocks::new(page, skip, place),
             chain: Chain::default(),
+            plain: PlainChain::default(),
             chain_broken: false,
             open: None,
         }
     }
 
+    #[inline]
     fn next_entry(&mut self) -> Option<Item<'a>> {
         let open = self.open.as_mut().filter(|open| open.left > 0)?;
-        let entry = if open.samples {
-            self.chain.read(&mut open.source).map(Entry::Sample)
-        } else {
-            events::read(&mut open.source)
-        };
         open.left -= 1;
-        Some(entry.map_or_else(
-            || {
-                open.left = 0;
-                self.chain_broken |= open.samples;
-                let kind = DamageKind::UnknownEntry;
-                Item::Damage(Damage { offset: open.offset, kind })
+        let sample = match &mut open.content {
+            Content::Events(source) => match events::read(source) {
+                Some(entry) => return Some(Item::Entry(entry)),
+                None => None,
             },
-            Item::Entry,
-        ))
+            Content::Plain(source) => self.plain.read(source),
+            Content::Packed(packed) => packed.next(&mut self.chain),
+        };
+        if let Some(sample) = sample {
+            return Some(Item::Entry(Entry::Sample(sample)));
+        }
+        open.left = 0;
+        self.chain_broken |= !matches!(open.content, Content::Events(_));
+        let kind = DamageKind::UnknownEntry;
+        Some(Item::Damage(Damage { offset: open.offset, kind }))
     }
 }
 
@@ -124,22 +135,25 @@ impl<'a> Iterator for PageReader<'a> {
                     return Some(Item::Damage(Damage { offset: torn.offset, kind }));
                 }
             };
-            let samples = block.form == Form::Samples;
-            match block.form {
+            let source = Source::new(block.payload);
+            let content = match block.form {
                 Form::State => {
                     let (part, payload) = (block.count - 1, block.payload);
                     return Some(Item::State { part, payload });
                 }
-                Form::Events => {}
-                Form::Samples if !self.chain_broken => {}
-                Form::Samples | Form::Unknown(_) => {
-                    self.chain_broken = true;
-                    let kind = DamageKind::UnknownForm;
-                    return Some(Item::Damage(Damage { offset: block.offset, kind }));
+                Form::Events => Some(Content::Events(source)),
+                Form::Samples if !self.chain_broken => Some(Content::Plain(source)),
+                Form::Packed if !self.chain_broken => {
+                    Packed::open(block.payload, &mut self.chain).map(Content::Packed)
                 }
-            }
-            let source = Source::new(block.payload);
-            self.open = Some(Open { source, samples, left: block.count, offset: block.offset });
+                Form::Samples | Form::Packed | Form::Unknown(_) => None,
+            };
+            let Some(content) = content else {
+                self.chain_broken = true;
+                let kind = DamageKind::UnknownForm;
+                return Some(Item::Damage(Damage { offset: block.offset, kind }));
+            };
+            self.open = Some(Open { content, left: block.count, offset: block.offset });
         }
     }
 }

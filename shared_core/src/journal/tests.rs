@@ -3,19 +3,17 @@
 //! The pinned bytes were put together from the tables in the module heads by an encoder of its own
 //! in another language, with that language's CRC-32.
 
-use super::block::{Place, Word, encode_events, encode_samples, encode_state};
+use super::block::{Place, Word, encode_events, encode_state};
 use super::checkpoint::Collector;
-use super::entry::{Entry, Presser, ResetCause, Sample, Transition, TransitionCause};
-use super::samples::Chain;
+use super::entry::{Entry, Presser, ResetCause, Transition, TransitionCause};
 use super::{
     HeaderError, Item, PAGE_BYTES, PageReader, SECTOR_BYTES, STATE_BYTES_MAX, SectorHeader,
     SectorReader,
 };
 use crate::alarm::{AlarmState, FaultCause, MachineId, Threshold};
-use crate::signal::{Channel, Quality, SensorError};
 use proptest::prelude::*;
 
-fn hex(text: &str) -> Vec<u8> {
+pub(super) fn hex(text: &str) -> Vec<u8> {
     let digits: Vec<u8> = text.bytes().filter(|byte| !byte.is_ascii_whitespace()).collect();
     digits
         .chunks(2)
@@ -23,7 +21,7 @@ fn hex(text: &str) -> Vec<u8> {
         .collect()
 }
 
-fn header() -> SectorHeader {
+pub(super) fn header() -> SectorHeader {
     SectorHeader {
         sequence: 7,
         plan_fingerprint: 0x0102_0304_0506_0708,
@@ -37,27 +35,8 @@ fn header() -> SectorHeader {
     }
 }
 
-fn place(offset: u16, word: Word) -> Place {
+pub(super) fn place(offset: u16, word: Word) -> Place {
     Place { sequence: 7, offset, word }
-}
-
-fn channel(count_16: i32, quality: Quality) -> Channel {
-    Channel { count_16, quality }
-}
-
-fn three_samples() -> [Sample; 3] {
-    let silent = Quality::Failed(SensorError::Silent);
-    [
-        (10_000, channel(160_000, Quality::Good), channel(4700, Quality::Good), 3600),
-        (20_000, channel(160_003, Quality::Good), channel(4699, Quality::Sparse), 3598),
-        (30_000, channel(0, silent), channel(4699, Quality::Good), 3598),
-    ]
-    .map(|(tick_ms, level, temperature, battery_mv)| Sample {
-        tick_ms,
-        level,
-        temperature,
-        battery_mv,
-    })
 }
 
 /// One of each event, with the bytes it takes.
@@ -105,22 +84,6 @@ fn pinned_header() {
 }
 
 #[test]
-fn pinned_samples() {
-    let four = "0802a09c0180c41311b849a03800062101030085c413130000ffffff0b216873";
-    let one = "1d02a09c0180c41311b849a03800062101030085c4131300003ef65b6f";
-    for (word, expected) in [(Word::Four, four), (Word::One, one)] {
-        let mut out = [0; PAGE_BYTES];
-        let samples = three_samples();
-        let encoded =
-            encode_samples(place(256, word), &samples, &mut Chain::default(), &mut out).unwrap();
-        assert_eq!(encoded.taken, 3);
-        assert_eq!(out[..encoded.len], hex(expected));
-        let entries: Vec<_> = items(&out[..encoded.len], place(256, word));
-        assert_eq!(entries, samples.map(|sample| Item::Entry(Entry::Sample(sample))));
-    }
-}
-
-#[test]
 fn pinned_events() {
     let mut out = [0; PAGE_BYTES];
     let entries = events().map(|(entry, _)| entry);
@@ -137,7 +100,7 @@ fn pinned_checkpoint() {
     assert_eq!(out[..encoded.len], hex("046005006162636465ffffff8642b662"));
 }
 
-fn items(page: &[u8], place: Place) -> Vec<Item<'_>> {
+pub(super) fn items(page: &[u8], place: Place) -> Vec<Item<'_>> {
     PageReader::at(page, 0, place).collect()
 }
 
@@ -180,23 +143,6 @@ fn unknown_forms_are_passed_over() {
     let found = items(&page, place(256, Word::Four));
     assert!(matches!(found[0], Item::Damage(_)));
     assert_eq!(found[1..], entries.map(Item::Entry));
-}
-
-fn any_quality() -> impl Strategy<Value = Quality> {
-    (0_u8..8).prop_map(|number| Quality::from_number(number).unwrap())
-}
-
-fn any_sample() -> impl Strategy<Value = Sample> {
-    let channel =
-        || (any::<i32>(), any_quality()).prop_map(|(count_16, quality)| channel(count_16, quality));
-    (0_u64..1 << 48, channel(), channel(), any::<u16>()).prop_map(
-        |(tick_ms, level, temperature, battery_mv)| Sample {
-            tick_ms,
-            level,
-            temperature,
-            battery_mv,
-        },
-    )
 }
 
 fn any_event() -> impl Strategy<Value = Entry> {
@@ -246,48 +192,11 @@ fn any_event() -> impl Strategy<Value = Entry> {
     ]
 }
 
-fn any_word() -> impl Strategy<Value = Word> {
+pub(super) fn any_word() -> impl Strategy<Value = Word> {
     prop_oneof![Just(Word::One), Just(Word::Four)]
 }
 
-/// Writes samples into pages from offset 256 on, as the device does.
-fn pages_of(samples: &[Sample], word: Word) -> Vec<u8> {
-    let mut sector = vec![0xFF; SECTOR_BYTES];
-    let mut first = header();
-    first.word = word;
-    sector[..104].copy_from_slice(&first.encode());
-    let (mut offset, mut chain, mut rest) = (256_u16, Chain::default(), samples);
-    while !rest.is_empty() {
-        let mut out = [0; PAGE_BYTES];
-        let some = rest.iter().take(6);
-        match encode_samples(place(offset, word), some, &mut chain, &mut out) {
-            Some(encoded) => {
-                let at = usize::from(offset);
-                sector[at..at + encoded.len].copy_from_slice(&out[..encoded.len]);
-                offset += u16::try_from(encoded.len).unwrap();
-                rest = &rest[encoded.taken..];
-            }
-            None => offset = offset.next_multiple_of(256),
-        }
-        if offset.is_multiple_of(256) {
-            chain = Chain::default();
-        }
-    }
-    sector
-}
-
 proptest! {
-    #[test]
-    fn samples_come_back(
-        samples in prop::collection::vec(any_sample(), 0..100), word in any_word()
-    ) {
-        let sector = pages_of(&samples, word);
-        let found: Vec<_> = SectorReader::new(&sector).unwrap().collect();
-        let expected: Vec<_> =
-            samples.into_iter().map(|sample| Item::Entry(Entry::Sample(sample))).collect();
-        prop_assert_eq!(found, expected);
-    }
-
     #[test]
     fn events_come_back(events in prop::collection::vec(any_event(), 1..8), word in any_word()) {
         let mut page = [0xFF; PAGE_BYTES];

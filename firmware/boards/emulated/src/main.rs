@@ -71,6 +71,17 @@ mod device {
         place.write(App::start(hardware, Rooms { memory, server, waiting }))
     }
 
+    /// The ways to panic of the negative controls; nothing in what is shipped.
+    #[inline(always)]
+    fn control() {
+        #[cfg(any(feature = "_index", feature = "_unwrap"))]
+        use core::hint::black_box;
+        #[cfg(feature = "_index")]
+        black_box(black_box([1_u8, 2])[black_box(1_usize)]);
+        #[cfg(feature = "_unwrap")]
+        black_box(black_box(Some(1_u8)).unwrap());
+    }
+
     #[cortex_m_rt::entry]
     fn main() -> ! {
         static mut SPACE: Space = Space::new();
@@ -80,6 +91,7 @@ mod device {
         // Static too, so that its size counts as what it is.
         let app = start(parts, SPACE, APP);
         loop {
+            control();
             sleep_until(clock, app.poll());
         }
     }

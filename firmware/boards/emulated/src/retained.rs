@@ -139,6 +139,15 @@ impl RetainedMemory for Retained {
     }
 
     fn write(&mut self, offset: usize, bytes: &[u8]) {
+        // Whole words at once, as far as they lie on words.
+        let (words, rest) = match offset % 4 {
+            0 => bytes.as_chunks::<4>(),
+            _ => (&[][..], bytes),
+        };
+        for (number, content) in (offset / 4..CAPACITY / 4).zip(words) {
+            word(HEAD_WORDS + number).write(u32::from_le_bytes(*content));
+        }
+        let (offset, bytes) = (offset + 4 * words.len(), rest);
         for (offset, byte) in (offset..CAPACITY).zip(bytes) {
             let (word, lane) = place(offset);
             let mut stored = word.read().to_le_bytes();

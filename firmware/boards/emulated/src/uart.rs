@@ -102,8 +102,16 @@ impl Buffered {
         self.uart.enable(baud, TX_ENABLE | RX_ENABLE | TX_INTERRUPT | RX_INTERRUPT);
     }
 
-    fn with<R>(&self, f: impl FnOnce(&mut Queues) -> R) -> R {
-        critical_section::with(|cs| f(&mut self.queues.borrow_ref_mut(cs)))
+    /// Works on the queues, which nobody else does in a critical section; were it otherwise, nothing
+    /// is done and the default is the answer.
+    fn with<R: Default>(&self, f: impl FnOnce(&mut Queues) -> R) -> R {
+        critical_section::with(|cs| {
+            self.queues
+                .borrow(cs)
+                .try_borrow_mut()
+                .map(|mut queues| f(&mut queues))
+                .unwrap_or_default()
+        })
     }
 
     /// Takes what the UART received, as far as the queue has room.

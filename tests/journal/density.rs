@@ -1,0 +1,123 @@
+//! Bytes of flash per sample, everything in: sector headers with the room of a signature,
+//! checkpoints, anchors, frames and checks of the blocks, padding, ends of pages.
+//!
+//! Measured between the first and the last sector of a ring, over whole sectors.
+
+use crate::bench::Remembered;
+use crate::series::{INTERVAL_MS, Logged, slow, tank};
+use embedded_storage::nor_flash::NorFlash;
+use strake::sim::nor::Nor;
+use strake_core::evaluate::State;
+use strake_core::journal::{Entry, Item, Sample, SectorHeader, SectorReader};
+use strake_firmware::journal::{Journal, Snapshot};
+
+/// Sectors of the ring; none is overwritten.
+const SECTORS: usize = 64;
+
+/// A device with one machine in alarm, nothing else.
+struct Device {
+    tick_ms: u64,
+}
+
+impl Snapshot for Device {
+    fn plan_fingerprint(&self) -> u64 {
+        1
+    }
+    fn boot(&self) -> u16 {
+        1
+    }
+    fn tick_ms(&self) -> u64 {
+        self.tick_ms
+    }
+    fn utc_s(&self) -> Option<u64> {
+        None
+    }
+    fn write_state(&mut self, out: &mut [u8]) -> usize {
+        // Ten bytes more for each machine that is not normal; the content does not matter.
+        let length = State::new().encode(out).unwrap();
+        out[length..length + 10].fill(0);
+        length + 10
+    }
+}
+
+/// Bytes of flash per sample when every `wait` samples are written; the samples must come back.
+fn bytes_per_sample<const WORD: usize>(samples: &[Sample], wait: usize) -> f64
+where
+    Nor<WORD>: NorFlash,
+{
+    let (mut journal, _) =
+        Journal::<_>::open(Nor::<WORD>::new(SECTORS), &mut Remembered::default()).unwrap();
+    for (number, sample) in (1..).zip(samples) {
+        journal.push(sample, &mut Device { tick_ms: sample.tick_ms }).unwrap();
+        if number % wait == 0 {
+            journal.flush().unwrap();
+        }
+    }
+    journal.flush().unwrap();
+    let newest = journal.newest_sequence().unwrap();
+    assert_eq!(journal.oldest_sequence(), 0);
+    let mut found = Vec::new();
+    let mut first_entries = Vec::new();
+    for sequence in 0..=newest {
+        let mut bytes = [0; 4096];
+        journal.read_sector(sequence, 0, &mut bytes).unwrap();
+        first_entries.push(SectorHeader::decode(&bytes).unwrap().first_entry);
+        found.extend(SectorReader::new(&bytes).unwrap().filter_map(|item| match item {
+            Item::Entry(Entry::Sample(sample)) => Some(sample),
+            Item::State { .. } => None,
+            other => panic!("{other:?}"),
+        }));
+    }
+    assert!(found == samples);
+    f64::from(newest * 4096) / f64::from(first_entries[first_entries.len() - 1])
+}
+
+/// A series: words of four and of one byte at a wait of 60 s, the same at 300 s.
+type Row = (&'static str, Vec<Sample>, [f64; 4]);
+
+fn print_and_compare(rows: &[Row], most: [f64; 4]) {
+    println!("bytes of flash per sample of 10 s       4 B 60 s  1 B 60 s  4 B 300 s  1 B 300 s");
+    let mut wrong = Vec::new();
+    for (name, samples, expected) in rows {
+        let found = [
+            bytes_per_sample::<4>(samples, 6),
+            bytes_per_sample::<1>(samples, 6),
+            bytes_per_sample::<4>(samples, 30),
+            bytes_per_sample::<1>(samples, 30),
+        ];
+        let [a, b, c, d] = found;
+        println!("{name:38} {a:9.3} {b:9.3} {c:10.3} {d:10.3}");
+        // The noise comes from the platform's logarithm and cosine.
+        let near =
+            found.iter().zip(expected).all(|(found, expected)| (found - expected).abs() < 0.01);
+        if !near || found.iter().zip(most).any(|(&found, most)| found > most) {
+            wrong.push(*name);
+        }
+    }
+    assert!(wrong.is_empty(), "not as recorded, or above {most:?}: {wrong:?}");
+}
+
+/// Three slow series with 1 mm of noise on counts of 0.5 mm; and what the device makes of bursts.
+#[test]
+fn series_with_noise() {
+    assert_eq!(INTERVAL_MS, 10_000);
+    let (river, tide, well) =
+        ("river_blacksmithfork_15min.csv", "tide_newlondon_6min.csv", "well_transducer_2min.csv");
+    let rows = [
+        ("river, single readings", slow(river, Logged::WithNoise), [2.309, 2.180, 1.232, 1.180]),
+        ("tide, single readings", slow(tide, Logged::WithNoise), [2.342, 2.211, 1.258, 1.205]),
+        ("well, single readings", slow(well, Logged::WithNoise), [2.312, 2.182, 1.230, 1.181]),
+        ("river, bursts", slow(river, Logged::Burst), [2.327, 2.196, 1.238, 1.187]),
+        ("tide, bursts", slow(tide, Logged::Burst), [2.371, 2.236, 1.276, 1.223]),
+        ("well, bursts", slow(well, Logged::Burst), [2.333, 2.200, 1.242, 1.189]),
+    ];
+    print_and_compare(&rows, [2.60, 2.35, 1.5, 1.5]);
+}
+
+/// The recorded tank, its own noise.
+#[test]
+fn recorded_tank() {
+    let rows =
+        [("laboratory tank, single readings", tank(Logged::AsRead), [2.971, 2.742, 1.788, 1.739])];
+    print_and_compare(&rows, [3.00, 2.75, 2.0, 2.0]);
+}
