@@ -23,12 +23,15 @@ use embedded_hal::digital::OutputPin;
 use faults::FaultLog;
 use now::Now;
 use strake_core::evaluate::{Output, Rhythm, State};
+use strake_core::journal::Entry;
 use strake_core::plan::Plan;
 use strake_core::signal::Resolved;
 use strake_core::wire::Text;
 
 /// Where waiting samples stand in retained memory.
 const WAITING_AREA: Range<usize> = 0..1024;
+/// Where the number of starts without an entry stands behind them.
+const STARTS_AT: usize = 1024;
 
 /// The plan in force.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -94,6 +97,8 @@ pub struct Device<B: Board> {
     /// Tick at which the oldest waiting sample must be written.
     flush_at_ms: Option<u64>,
     faults: FaultLog,
+    /// The start-up entry, until something is written behind it.
+    start_up: Option<Entry>,
     /// An append failed, and its fault entry is not written yet.
     journal_failing: bool,
     button_down: bool,

@@ -22,6 +22,11 @@
 //! ```
 //!
 //! `STRAKE_CORPUS=DIR` makes this test write its corpus there, one folder per target.
+#![expect(
+    clippy::cast_possible_truncation,
+    clippy::cast_precision_loss,
+    reason = "lengths here are small, and a cut number is as good a mutation as any"
+)]
 #![allow(missing_docs, reason = "a test binary has no public interface")]
 
 mod corpus;

@@ -253,7 +253,10 @@ pub(crate) fn journal_file(bytes: &[u8]) -> String {
         (Some(one), _) => {
             format!("{one:?}").split([' ', '{']).next().unwrap_or_default().to_owned()
         }
-        (None, Some(one)) => format!("damage, {:?}", std::mem::discriminant(&one.what)),
+        (None, Some(one)) => {
+            let what = format!("{:?}", one.what);
+            format!("damage: {}", what.split([' ', '{', '(']).next().unwrap_or_default())
+        }
         (None, None) if !report.missing_plans.is_empty() => "a plan is missing".into(),
         (None, None) if report.head.is_none() => "no head".into(),
         (None, None) => "sound".into(),

@@ -1,5 +1,11 @@
 //! Bit rot: random flips over the flash of a device that ran for days. Entries lost per flip, and
 //! none accepted that is not the one that was written.
+#![expect(
+    clippy::cast_possible_truncation,
+    clippy::cast_precision_loss,
+    clippy::cast_sign_loss,
+    reason = "counts of entries and flips are small and positive"
+)]
 
 use crate::bench::{Bench, op};
 use std::fmt::Write as _;

@@ -4,6 +4,12 @@
 //! The queue stores twelve bytes per record, one item each, durable when the call returns; the
 //! journal waits for six samples, which is its default wait of a minute. `permit_clearing` gives the
 //! queue the plain chip it is made for. Its pages are found without a cache, as after a restart.
+#![expect(
+    clippy::cast_possible_truncation,
+    clippy::cast_precision_loss,
+    clippy::cast_sign_loss,
+    reason = "counts of records are small and positive"
+)]
 
 use crate::bench::{App, Remembered};
 use embedded_storage_async::nor_flash as flash;

@@ -29,12 +29,18 @@
 //! sensor showed at that moment), entry numbers run on, no latched alarm clears without a person,
 //! every start-up finishes, and after every collection the journal contradicts itself nowhere and
 //! its replay is identical.
+#![expect(
+    clippy::cast_possible_truncation,
+    clippy::cast_precision_loss,
+    reason = "counts and times of a simulation are far below 2^53"
+)]
 #![allow(missing_docs, reason = "a test binary has no public interface")]
 
 mod flash;
 mod model;
 mod random;
 mod run;
+mod starts;
 mod visit;
 mod world;
 
@@ -54,11 +60,11 @@ fn all(runs: impl Iterator<Item = Parameters>) -> Tally {
     sum
 }
 
-/// Four virtual months.
+/// Three virtual months.
 #[test]
 fn a_few_months_in_short() {
     let runs =
-        (1..=24).map(|seed| Parameters { seed, days: 5, sectors: [20, 36, 64][seed as usize % 3] });
+        (1..=18).map(|seed| Parameters { seed, days: 5, sectors: [20, 36, 64][seed as usize % 3] });
     let tally = all(runs);
     assert!(tally.harm_was_done(), "{tally:?}");
 }

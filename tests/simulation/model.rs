@@ -32,7 +32,8 @@ pub(crate) struct Model {
     entry_start_ms: u64,
     /// Time of the last durable sample, ms.
     pub(crate) last_sample_ms: Option<u64>,
-    boot: u16,
+    /// Number of the last start with an entry.
+    pub(crate) boot: u16,
     /// The last look at the flash.
     image: Vec<u8>,
     sectors: Vec<Sector>,

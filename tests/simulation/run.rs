@@ -10,7 +10,7 @@ use std::rc::Rc;
 use std::str::FromStr;
 use strake::sim::board::Bench;
 use strake::sim::machine::{Happening, Machine};
-use strake::sim::nor::{Cut as FlashCut, Tear};
+use strake::sim::nor::{Cut as FlashCut, Nor, Tear};
 use strake::sim::sensor::Failure;
 
 const MINUTE_MS: u64 = 60_000;
@@ -141,6 +141,7 @@ pub(crate) fn run_with(parameters: Parameters, meddle: impl Fn(&Bench)) -> Resul
         model,
         plan,
         flush_before_ms: 0,
+        cut: None,
         tally: Tally { days, ..Tally::default() },
     };
     let plan = run.plan.clone();
@@ -171,6 +172,8 @@ struct Run {
     plan: Sealed,
     /// Longest wait of the plan before it, ms: that plan may have judged the last samples.
     flush_before_ms: u64,
+    /// A loss of power that no start-up entry has accounted for yet.
+    cut: Option<Cut>,
     tally: Tally,
 }
 
@@ -184,7 +187,7 @@ impl Run {
             0..35 => {
                 let time_ms = self.random.within(MINUTE_MS..8 * HOUR_MS);
                 self.go_on(time_ms);
-                self.see(None)
+                self.see()
             }
             35..52 => self.cut_power(),
             52..62 => self.cut_erase(),
@@ -206,9 +209,14 @@ impl Run {
     }
 
     /// Looks at the flash and judges it.
-    fn see(&mut self, cut: Option<Cut>) -> Result<(), String> {
+    fn see(&mut self) -> Result<(), String> {
         let image = self.bench.journal.with(|flash| flash.image());
-        self.model.see(image, self.bench.started_ms(), self.now_ms(), cut)
+        let boot = self.model.boot;
+        self.model.see(image, self.bench.started_ms(), self.now_ms(), self.cut)?;
+        if self.model.boot != boot {
+            self.cut = None;
+        }
+        Ok(())
     }
 
     fn tear(&mut self) -> Tear {
@@ -251,15 +259,16 @@ impl Run {
         let at_ms = self.now_ms().saturating_sub(1_000).max(since_ms);
         let most_ms = self.plan.flush_after_ms.max(self.flush_before_ms) + self.plan.interval_ms;
         let missing_ms_max = (!worn).then_some(most_ms);
-        let cut = Some(Cut { at_ms, since_ms, missing_ms_max });
         self.machine.borrow_mut().happen(Happening::PowerOff);
-        self.see(None)?;
+        self.see()?;
+        // A start that left no entry leaves the account to the next one.
+        self.cut = self.cut.or(Some(Cut { at_ms, since_ms, missing_ms_max }));
         let mut again = self.random.within(0..3);
         loop {
             let off_ms = self.random.within(1..HOUR_MS);
             self.bench.now_ms.set(self.now_ms() + off_ms);
-            self.bench.plans.with(|flash| flash.power_on());
-            self.bench.journal.with(|flash| flash.power_on());
+            self.bench.plans.with(Nor::power_on);
+            self.bench.journal.with(Nor::power_on);
             if again > 0 {
                 let steps = self.random.within(0..60);
                 let armed = self.arm(steps);
@@ -271,7 +280,11 @@ impl Run {
             }
             self.machine.borrow_mut().happen(Happening::PowerOn);
             self.tally.cold_starts += 1;
-            self.see(cut)?;
+            if again > 0 {
+                // The first cycle writes the start-up entry.
+                self.machine.borrow_mut().poll();
+            }
+            self.see()?;
             if self.bench.journal.with(|flash| flash.is_powered()) {
                 break;
             }
@@ -279,7 +292,7 @@ impl Run {
             self.machine.borrow_mut().happen(Happening::PowerOff);
             again = again.saturating_sub(1);
         }
-        self.bench.journal.with(|flash| flash.power_on());
+        self.bench.journal.with(Nor::power_on);
         self.latches()
     }
 
@@ -292,7 +305,7 @@ impl Run {
     fn restart_warm(&mut self) -> Result<(), String> {
         let time_ms = self.random.within(1..20 * MINUTE_MS);
         self.go_on(time_ms);
-        self.see(None)?;
+        self.see()?;
         let waited: Vec<_> = {
             let machine = self.machine.borrow();
             let journal = machine.app().and_then(|app| app.device().journal());
@@ -303,7 +316,7 @@ impl Run {
         self.machine.borrow_mut().happen(Happening::WarmRestart);
         self.tally.warm_restarts += 1;
         self.tally.samples_carried += waited.len() as u64;
-        self.see(None)?;
+        self.see()?;
         if self.model.worn == 0 {
             self.model.carried(&waited)?;
         }
@@ -316,7 +329,7 @@ impl Run {
             self.machine.borrow_mut().happen(Happening::Button(down));
             self.go_on(1_000);
         }
-        self.see(None)
+        self.see()
     }
 
     fn fail_sensor(&mut self) -> Result<(), String> {
@@ -332,12 +345,12 @@ impl Run {
         self.model.failures.pop();
         self.model.failures.push((from_ms, self.now_ms()));
         self.tally.sensor_failures += 1;
-        self.see(None)
+        self.see()
     }
 
     fn visit(&mut self) -> Result<(), String> {
         for minute in 0.. {
-            self.see(None)?;
+            self.see()?;
             let (kept_from, worn) = (self.model.kept_from, self.model.worn);
             match self.visitor.collect(&mut self.tally, kept_from, worn) {
                 Ok(()) => break,
@@ -346,7 +359,7 @@ impl Run {
                 Err(error) => return Err(error),
             }
         }
-        self.see(None)
+        self.see()
     }
 
     /// Another plan, in one of three cases with the power going in the midst of it.
@@ -363,7 +376,9 @@ impl Run {
         let loaded = self.visitor.load(&next);
         let flashes = [&self.bench.journal, &self.bench.plans];
         let powered = flashes.iter().all(|flash| flash.with(|flash| flash.is_powered()));
-        flashes.iter().for_each(|flash| flash.with(|flash| flash.cut_after(None)));
+        for flash in flashes {
+            flash.with(|flash| flash.cut_after(None));
+        }
         if powered {
             loaded?;
         } else {
@@ -377,7 +392,7 @@ impl Run {
         } else if powered || in_force != self.plan.fingerprint {
             return Err(format!("plan {in_force:016x} is in force"));
         }
-        self.see(None)
+        self.see()
     }
 
     fn wear_out(&mut self) {

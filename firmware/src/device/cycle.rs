@@ -50,6 +50,7 @@ impl<B: Board> Device<B> {
 
     /// Appends a sample, evaluates it and appends what moved.
     pub(super) fn take(&mut self, sample: &Sample) {
+        self.tell_start();
         let tick_ms = sample.tick_ms;
         let now = self.now(tick_ms);
         let state = &self.memory.state;
@@ -105,6 +106,7 @@ impl<B: Board> Device<B> {
 
     /// Appends one event; gives whether it stands in the journal.
     pub(super) fn append(&mut self, entry: &Entry) -> bool {
+        self.tell_start();
         let now = self.now(entry.tick_ms());
         let appended = self
             .journal

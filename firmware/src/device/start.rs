@@ -5,8 +5,8 @@
 
 use super::faults::FaultLog;
 use super::plans::load;
-use super::{Device, InForce, Memory, WAITING_AREA};
-use crate::board::{Board, Clock, Hardware, ResetCause};
+use super::{Device, InForce, Memory, STARTS_AT, WAITING_AREA};
+use crate::board::{Board, Clock, Hardware, ResetCause, RetainedMemory};
 use crate::journal::{Journal, Recovery, Restore, Waiting};
 use crate::plan_store::PlanStore;
 use embedded_storage::nor_flash::NorFlash;
@@ -53,6 +53,7 @@ impl<B: Board> Device<B> {
             beat_ms: 0,
             flush_at_ms: None,
             faults: FaultLog::default(),
+            start_up: None,
             journal_failing: false,
             button_down: false,
             output: Output::default(),
@@ -109,8 +110,13 @@ impl<B: Board> Device<B> {
             (_, None) => 0,
         };
         let boot = self.boot;
-        self.append(&Entry::StartUp { tick_ms, boot, cause, carried, missing_ms_max, count: 1 });
-        self.memory.state.restart(tick_ms);
+        let count = self.starts_untold(cause).saturating_add(1);
+        self.keep_starts(count);
+        self.start_up =
+            Some(Entry::StartUp { tick_ms, boot, cause, carried, missing_ms_max, count });
+        if self.in_force.is_none() {
+            self.tell_start();
+        }
         self.take_over_newest();
         if recovery.damaged_sectors > 0 {
             let damaged = i32::try_from(recovery.damaged_sectors).unwrap_or(i32::MAX);
@@ -121,6 +127,34 @@ impl<B: Board> Device<B> {
         }
         self.begin_beat(tick_ms);
         self.save_waiting();
+    }
+}
+
+impl<B: Board> Device<B> {
+    /// Writes the start-up entry, before anything else of this start. So a controller that starts
+    /// again and again without a sample fills no page of the journal each time.
+    pub(super) fn tell_start(&mut self) {
+        if let Some(entry) = self.start_up.take() {
+            self.append(&entry);
+            self.memory.state.restart(entry.tick_ms());
+            self.keep_starts(0);
+        }
+    }
+
+    /// Starts before this one without an entry, as far as retained memory has them.
+    fn starts_untold(&self, cause: ResetCause) -> u16 {
+        let mut bytes = [0; 4];
+        self.retained.read(STARTS_AT, &mut bytes);
+        let [c0, c1, n0, n1] = bytes;
+        let count = u16::from_le_bytes([c0, c1]);
+        let sound = u16::from_le_bytes([n0, n1]) == !count;
+        if sound && cause != ResetCause::PowerOn { count } else { 0 }
+    }
+
+    /// Keeps the number with its complement, which tells it from what RAM holds by chance.
+    fn keep_starts(&mut self, count: u16) {
+        let [c0, c1] = count.to_le_bytes();
+        self.retained.write(STARTS_AT, &[c0, c1, !c0, !c1]);
     }
 }
 

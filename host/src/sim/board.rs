@@ -22,7 +22,7 @@ pub const WORD_BYTES: usize = 4;
 /// Plan slots, one sector each.
 const PLAN_SECTORS: usize = 5;
 /// Bytes of retained RAM.
-const RETAINED_BYTES: usize = 1024;
+const RETAINED_BYTES: usize = 1028;
 
 /// The simulated board.
 #[derive(Debug)]
