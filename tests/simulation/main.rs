@@ -25,10 +25,10 @@
 //! | a line that flips bits and drops bytes, or goes dead in the midst of a collection | nothing: another try goes on |
 //! | nobody comes for so long that the ring goes round | the oldest sectors, counted as gone |
 //!
-//! In return, always: no durable entry is lost or changes, none is invented (each sample is what the
-//! sensor showed at that moment), entry numbers run on, no latched alarm clears without a person,
-//! every start-up finishes, and after every collection the journal contradicts itself nowhere and
-//! its replay is identical.
+//! In return, always: no durable entry is lost or changes, none is invented (each sample is what
+//! the sensor showed at that moment), entry numbers run on, no latched alarm clears without a
+//! person, every start-up finishes, and after every collection the journal contradicts itself
+//! nowhere and its replay is identical.
 #![allow(missing_docs, reason = "a test binary has no public interface")]
 
 mod flash;

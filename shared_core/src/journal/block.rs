@@ -140,9 +140,9 @@ pub struct Encoded {
     pub taken: usize,
 }
 
-/// As many of `samples` as fit, at most [`ENTRIES_MAX`], as one block in codec 1; `chain` steps over
-/// those taken. Its page must have been [turned](Chain::turn_page) before the first block of samples
-/// in a page, unless it is the default. `None` when not even one fits.
+/// As many of `samples` as fit, at most [`ENTRIES_MAX`], as one block in codec 1; `chain` steps
+/// over those taken. Its page must have been [turned](Chain::turn_page) before the first block of
+/// samples in a page, unless it is the default. `None` when not even one fits.
 pub fn encode_samples(
     place: Place,
     samples: &[Sample],

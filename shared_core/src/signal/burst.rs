@@ -2,9 +2,10 @@
 //!
 //! The mean is rounded to half counts. The mean of three counts with a spread (standard deviation)
 //! of s is itself uncertain by 0.58 s, so that finer steps hold noise alone once the counts move at
-//! all, and noise is what fills a journal: of a tide with 1 mm of noise on counts of 0.5 mm a sample
-//! takes 3.0 bytes of flash in sixteenths, 2.4 in halves, 2.3 in whole counts. A half lies on or
-//! between two counts that the sensor gave, so that rounding never leaves the range of the counts.
+//! all, and noise is what fills a journal: of a tide with 1 mm of noise on counts of 0.5 mm a
+//! sample takes 3.0 bytes of flash in sixteenths, 2.4 in halves, 2.3 in whole counts. A half lies
+//! on or between two counts that the sensor gave, so that rounding never leaves the range of the
+//! counts.
 
 use super::{Channel, Quality};
 use micromath::statistics::Mean;

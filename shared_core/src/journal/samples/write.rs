@@ -1,4 +1,5 @@
-//! Codec 1 of samples: writing. Whatever is chosen here is written down, so readers need none of it.
+//! Codec 1 of samples: writing. Whatever is chosen here is written down, so readers need none of
+//! it.
 
 use super::packed::{Chain, Lane, Status, Steady, gave_a_count};
 use super::scale::{Scale, fold};
