@@ -212,7 +212,9 @@ fn come_back(samples: &[Sample], word: Word, wait: usize) -> Result<(), TestCase
 proptest! {
     #[test]
     fn any_samples_come_back(
-        samples in prop::collection::vec(any_sample(), 0..70), word in any_word(), wait in 1_usize..33
+        samples in prop::collection::vec(any_sample(), 0..70),
+        word in any_word(),
+        wait in 1_usize..33,
     ) {
         come_back(&samples, word, wait)?;
     }
