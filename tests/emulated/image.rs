@@ -16,6 +16,11 @@ pub(crate) struct Image {
     pub(crate) sha256: String,
 }
 
+/// A function of an image: address, size and name as linked.
+pub(crate) type Function = (u32, u32, String);
+/// A stretch of what the flash holds: address and content.
+pub(crate) type Stretch = (u32, Vec<u8>);
+
 /// Bytes that an image takes on the device.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(crate) struct Footprint {
@@ -70,7 +75,7 @@ impl Image {
     }
 
     /// The functions of the image: address, size and name as linked.
-    pub(crate) fn functions(&self) -> Result<Vec<(u32, u32, String)>, Box<dyn Error>> {
+    pub(crate) fn functions(&self) -> Result<Vec<Function>, Box<dyn Error>> {
         let file = object::File::parse(&*self.elf)?;
         let mut functions = Vec::new();
         for symbol in file.symbols().filter(|symbol| symbol.kind() == SymbolKind::Text) {
@@ -84,7 +89,7 @@ impl Image {
     }
 
     /// Address and content of every section that the flash holds.
-    pub(crate) fn content(&self) -> Result<Vec<(u32, Vec<u8>)>, Box<dyn Error>> {
+    pub(crate) fn content(&self) -> Result<Vec<Stretch>, Box<dyn Error>> {
         let file = object::File::parse(&*self.elf)?;
         let mut content = Vec::new();
         for section in file.sections() {

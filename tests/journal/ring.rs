@@ -141,7 +141,7 @@ fn waiting_samples_survive_a_warm_restart_once() {
     other.last_tick_ms = None;
     other.last_boot = 7;
     assert_eq!(bench.journal.carried(&ram, &area, &other).unwrap().len(), 0);
-    ram.0[40] ^= 1;
+    ram.0[20] ^= 1;
     other.last_boot = 0;
     assert_eq!(bench.journal.carried(&ram, &area, &other).unwrap().len(), 0);
     bench.journal.waiting().save(0, &mut ram, &area);

@@ -126,10 +126,10 @@ class Track:
     """A channel of codec 1: its status, its places and what they are expected to be."""
 
     def begin(self, bits):
-        self.base, self.step, self.k = 0, 16, 2
+        self.base, self.k = 0, 2
+        whole = bits.take(1)
+        self.step = 16 if whole else self.read_step(bits)
         if not self.status[1]:
-            whole = bits.take(1)
-            self.step = 16 if whole else self.read_step(bits)
             self.base = bits.folded() * (16 if whole else 1)
             self.k = bits.take(4)
         self.scale = Scale(self.k)

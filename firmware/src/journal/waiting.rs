@@ -1,20 +1,37 @@
 //! Samples that wait in RAM, and how they outlive a warm restart.
 //!
-//! In retained memory they stand as blocks of the journal's format with word 1, in pages of 256
-//! bytes, as if they stood in the sector whose sequence number is the boot number. So a block says
-//! its length, and its check fits only the boot that wrote it.
+//! In retained memory each stands in a record of its own, oldest first, up to the first record
+//! whose check does not fit:
+//!
+//! | offset | bytes | field, little endian |
+//! | --- | --- | --- |
+//! | 0 | 6 | tick, ms |
+//! | 6 | 4 | level count i32 |
+//! | 10 | 4 | temperature count i32 |
+//! | 14 | 2 | battery, mV |
+//! | 16 | 1 | quality numbers: level, and temperature times 16 |
+//! | 17 | 3 | zero |
+//! | 20 | 4 | CRC-32 (ISO-HDLC) over boot u16, place of the record u16 and bytes 0 to 19 |
+//!
+//! So a check fits only the boot that wrote it, at its own place. Plain numbers: the area is
+//! written in every cycle, and nothing in it outlives a loss of power.
 
 use super::{Journal, Recovery};
 use crate::board::RetainedMemory;
 use core::ops::{DerefMut, Range};
 use embedded_storage::nor_flash::NorFlash;
 use heapless::Vec;
-use strake_core::journal::block::{ENTRIES_MAX, Place, encode_samples};
-use strake_core::journal::samples::Chain;
-use strake_core::journal::{Entry, Item, PAGE_BYTES, PageReader, Sample, Word};
+use strake_core::journal::Sample;
+use strake_core::journal::block::ENTRIES_MAX;
+use strake_core::journal::check::CRC32;
+use strake_core::signal::{Channel, Quality};
 
 /// Most samples that wait.
 pub const WAITING_MAX: usize = ENTRIES_MAX;
+/// Bytes of a record in retained memory.
+const RECORD_BYTES: usize = 24;
+/// Bytes before its check.
+const CHECKED_BYTES: usize = RECORD_BYTES - 4;
 
 /// Samples that are not yet on flash, oldest first.
 #[derive(Clone, Debug, Default)]
@@ -74,24 +91,19 @@ impl Waiting {
         self.samples.truncate(self.samples.len() - count);
     }
 
-    /// Stores the samples in the whole pages of `area`, or marks the area as empty. To be called
-    /// after every push and after every write to flash. Gives how many samples are stored; what has
-    /// no room is missing, the newest first.
+    /// Stores the samples in `area`, and an end behind them. To be called after every push and
+    /// after every write to flash. Gives how many samples are stored; what has no room is missing,
+    /// the newest first.
     pub fn save(&self, boot: u16, memory: &mut impl RetainedMemory, area: &Range<usize>) -> usize {
         let mut stored = 0;
-        for index in pages(area) {
-            let start = area.start + usize::from(index) * PAGE_BYTES;
-            if stored >= self.len() {
-                memory.write(start, &[0xFF]);
-                continue;
-            }
-            let mut page = [0xFF; PAGE_BYTES];
-            let place = place_of(boot, index);
-            let encoded =
-                encode_samples(place, self.from(stored), &mut Chain::default(), &mut page);
-            let len = encoded.map_or(1, |encoded| encoded.len);
-            memory.write(start, page.get(..len).unwrap_or(&[]));
-            stored += encoded.map_or(0, |encoded| encoded.taken);
+        for (index, start) in (0_u16..).zip(records(area)) {
+            let Some(sample) = self.samples.get(stored) else {
+                // Zeros have no right check: the end.
+                memory.write(start, &[0; RECORD_BYTES]);
+                break;
+            };
+            memory.write(start, &to_record(boot, index, sample));
+            stored += 1;
         }
         stored
     }
@@ -100,17 +112,63 @@ impl Waiting {
     /// fit.
     fn load(memory: &impl RetainedMemory, area: &Range<usize>, boot: u16) -> Self {
         let mut waiting = Self::default();
-        for index in pages(area) {
-            let mut page = [0; PAGE_BYTES];
-            memory.read(area.start + usize::from(index) * PAGE_BYTES, &mut page);
-            for item in PageReader::at(&page, 0, place_of(boot, index)) {
-                if let Item::Entry(Entry::Sample(sample)) = item {
-                    waiting.push(&sample);
-                }
+        for (index, start) in (0_u16..).zip(records(area)) {
+            let mut record = [0; RECORD_BYTES];
+            memory.read(start, &mut record);
+            let Some(sample) = from_record(boot, index, &record) else { break };
+            // Ticks of one start rise; what does not is left over from an earlier list.
+            let rises = waiting.samples.last().is_none_or(|last| last.tick_ms < sample.tick_ms);
+            if !rises || !waiting.push(&sample) {
+                break;
             }
         }
         waiting
     }
+}
+
+/// Offsets of the whole records of an area.
+fn records(area: &Range<usize>) -> impl Iterator<Item = usize> {
+    let end = area.end.saturating_sub(RECORD_BYTES - 1);
+    (area.start..end).step_by(RECORD_BYTES)
+}
+
+fn check(boot: u16, index: u16, fields: &[u8; CHECKED_BYTES]) -> u32 {
+    let mut digest = CRC32.digest();
+    digest.update(&boot.to_le_bytes());
+    digest.update(&index.to_le_bytes());
+    digest.update(fields);
+    digest.finalize()
+}
+
+fn to_record(boot: u16, index: u16, sample: &Sample) -> [u8; RECORD_BYTES] {
+    let [t0, t1, t2, t3, t4, t5, ..] = sample.tick_ms.to_le_bytes();
+    let [l0, l1, l2, l3] = sample.level.count_16.to_le_bytes();
+    let [c0, c1, c2, c3] = sample.temperature.count_16.to_le_bytes();
+    let [b0, b1] = sample.battery_mv.to_le_bytes();
+    let qualities = sample.level.quality.number() | sample.temperature.quality.number() << 4;
+    let fields =
+        [t0, t1, t2, t3, t4, t5, l0, l1, l2, l3, c0, c1, c2, c3, b0, b1, qualities, 0, 0, 0];
+    let [k0, k1, k2, k3] = check(boot, index, &fields).to_le_bytes();
+    let [t0, t1, t2, t3, t4, t5, l0, l1, l2, l3, c0, c1, c2, c3, b0, b1, q, z0, z1, z2] = fields;
+    [t0, t1, t2, t3, t4, t5, l0, l1, l2, l3, c0, c1, c2, c3, b0, b1, q, z0, z1, z2, k0, k1, k2, k3]
+}
+
+fn from_record(boot: u16, index: u16, record: &[u8; RECORD_BYTES]) -> Option<Sample> {
+    let (fields, stored) = record.split_first_chunk::<CHECKED_BYTES>()?;
+    if check(boot, index, fields).to_le_bytes() != *stored {
+        return None;
+    }
+    let [t0, t1, t2, t3, t4, t5, l0, l1, l2, l3, c0, c1, c2, c3, b0, b1, qualities, ..] = *fields;
+    let channel = |count_16: [u8; 4], quality: u8| {
+        let quality = Quality::from_number(quality)?;
+        Some(Channel { count_16: i32::from_le_bytes(count_16), quality })
+    };
+    Some(Sample {
+        tick_ms: u64::from_le_bytes([t0, t1, t2, t3, t4, t5, 0, 0]),
+        level: channel([l0, l1, l2, l3], qualities & 0x0F)?,
+        temperature: channel([c0, c1, c2, c3], qualities >> 4)?,
+        battery_mv: u16::from_le_bytes([b0, b1]),
+    })
 }
 
 impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
@@ -142,14 +200,4 @@ impl<F: NorFlash, W: DerefMut<Target = Waiting>> Journal<F, W> {
         left.drop_first(held);
         Ok(left)
     }
-}
-
-fn place_of(boot: u16, index: u8) -> Place {
-    Place { sequence: boot.into(), offset: u16::from(index) * 256, word: Word::One }
-}
-
-/// Indices of the whole pages of an area; more than four are never needed.
-fn pages(area: &Range<usize>) -> Range<u8> {
-    let pages = area.len() / PAGE_BYTES;
-    0..u8::try_from(pages).unwrap_or(4).min(4)
 }

@@ -80,7 +80,7 @@ impl Walk {
             other => {
                 let found = other.map(|reader| reader.header().sequence);
                 let ring = file.identity().map(|identity| identity.sectors);
-                let what = misplaced(&found, sequence, ring);
+                let what = misplaced(found, sequence, ring);
                 self.ledger.place(Place::Sector { sequence }, what);
                 self.replay.engine.hole();
                 return Ok(());

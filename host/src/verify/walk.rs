@@ -63,12 +63,8 @@ pub(crate) fn stated_as_lost(sector: SectorReader<'_>) -> Option<u32> {
 }
 
 /// What stands where this sector should stand, when it is not this sector.
-pub(crate) fn misplaced(
-    found: &Result<u32, HeaderError>,
-    sequence: u32,
-    ring: Option<u32>,
-) -> What {
-    match *found {
+pub(crate) fn misplaced(found: Result<u32, HeaderError>, sequence: u32, ring: Option<u32>) -> What {
+    match found {
         Ok(found)
             if found < sequence
                 && ring.is_none_or(|ring| ring > 0 && (sequence - found).is_multiple_of(ring)) =>
@@ -129,7 +125,7 @@ impl Walk {
             Ok(reader) if reader.header().sequence == sequence => self.entries(reader),
             _ => {
                 let ring = self.report.identity.as_ref().map(|identity| identity.sectors);
-                let what = misplaced(&found, sequence, ring);
+                let what = misplaced(found, sequence, ring);
                 if let (What::Header, Ok(found)) = (what, found) {
                     let stated = sequence;
                     self.contradict(Contradiction::SectorNumber { stated, found });

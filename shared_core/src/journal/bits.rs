@@ -182,7 +182,9 @@ impl<'a> BitReader<'a> {
             self.skip(ONES_MAX)?;
             return self.number();
         }
-        self.skip(ones + 1)?;
-        Some(u64::from(ones) << k | u64::from(self.take(k)?))
+        // At most 20 + 32 bits: the refill brought them, unless the bytes end.
+        let low = (self.window >> (ones + 1)) & !u64::MAX.unbounded_shl(k);
+        self.skip(ones + 1 + k)?;
+        Some(u64::from(ones) << k | low)
     }
 }

@@ -22,10 +22,10 @@
 //! | tick, ms | number |
 //! | whole seconds; interval to the sample before (a guess at the first), s or ms | 1; number, folded |
 //! | both qualities good; else quality of the level, then of the temperature | 1; quality each |
-//! | track of the level, then of the temperature, unless absent: | |
-//! | . step 16 and count divisible by it; else the step | 1; number |
-//! | . count in sixteenths of the raw count, divided by 16 after a set bit before | number, folded |
-//! | . k at which its scale begins | 4 |
+//! | track of the level, then of the temperature: | |
+//! | . step 16 and the count divisible by it; else the step | 1; number |
+//! | . unless absent: the integer, divided by 16 when the bit before is set | number, folded |
+//! | . unless absent: k at which its scale begins | 4 |
 //! | battery below 4,096 mV; battery, mV | 1; 12, else 16 |
 //! | predictors of level and temperature | 2 + 2 |
 //! | steady, as below | |
@@ -48,15 +48,15 @@
 //! | level, then temperature, unless absent: steps off the prediction | Rice, folded |
 //! | unless steady: battery off; less the battery before, mV | 1; Rice, folded |
 //!
-//! The scale of the time begins at k = 3, the battery's at 4, that of an absent channel at 2; its
-//! track begins at count 0 with step 16. Without the bit that time, qualities or battery are off
-//! they are as in the sample before, the time an equal interval later.
+//! The scale of the time begins at k = 3, the battery's at 4, that of an absent channel at 2, with
+//! 0 as the count. What is steady or not marked as off is as in the sample before; the time is an
+//! equal interval later.
 //!
 //! # Prediction
 //!
 //! A track holds places: (count - base) / step. Base and step come from the anchor, so the first
-//! place is 0. After the n-th count of the page (n = 2, 3, ..; from 16 on as for 16) at place p,
-//! with P = p << 8 and all shifts rounding down:
+//! place is 0. After the track's n-th count at place p (the anchor's is the first, also when
+//! absent; from n = 16 on the gains stay), with P = p << 8 and all shifts rounding down:
 //!
 //! | predictor | next place | keeps |
 //! | ---: | --- | --- |
@@ -65,11 +65,10 @@
 //! | 2 mean | (M + 128) >> 8 | M += (P - M) * floor(65536 / n) >> 16 |
 //! | 3 trend | (T + S + 128) >> 8 | e = P - T - S; T += S + (e * floor(131072 (2n - 1) / n(n + 1)) >> 16); S += e * floor(393216 / n(n + 1)) >> 16 |
 //!
-//! All are zero at the anchor and run on whichever predictor is in use. The gains of the trend are
-//! those of the straight line of least squares (Brookner, Tracking and Kalman Filtering Made Easy,
-//! section 1.2.10). When the step changes from d to D, places and M, T are taken from the last
-//! place on, the base becomes the last count, and with S and m all are multiplied by d and divided
-//! by D, rounding down.
+//! All are zero at the anchor and run on whichever predictor is in use. The gains are those of the
+//! mean of all counts and of the straight line of least squares through them. When the step changes
+//! from d to D, q, M and T are taken from the last place on, the base becomes the last count, and
+//! with S and m they are multiplied by d and divided by D, rounding down.
 
 mod packed;
 mod plain;

@@ -98,23 +98,25 @@ impl<'a> PageReader<'a> {
         }
     }
 
+    #[inline]
     fn next_entry(&mut self) -> Option<Item<'a>> {
         let open = self.open.as_mut().filter(|open| open.left > 0)?;
-        let entry = match &mut open.content {
-            Content::Events(source) => events::read(source),
-            Content::Plain(source) => self.plain.read(source).map(Entry::Sample),
-            Content::Packed(packed) => packed.next(&mut self.chain).map(Entry::Sample),
-        };
         open.left -= 1;
-        Some(entry.map_or_else(
-            || {
-                open.left = 0;
-                self.chain_broken |= !matches!(open.content, Content::Events(_));
-                let kind = DamageKind::UnknownEntry;
-                Item::Damage(Damage { offset: open.offset, kind })
+        let sample = match &mut open.content {
+            Content::Events(source) => match events::read(source) {
+                Some(entry) => return Some(Item::Entry(entry)),
+                None => None,
             },
-            Item::Entry,
-        ))
+            Content::Plain(source) => self.plain.read(source),
+            Content::Packed(packed) => packed.next(&mut self.chain),
+        };
+        if let Some(sample) = sample {
+            return Some(Item::Entry(Entry::Sample(sample)));
+        }
+        open.left = 0;
+        self.chain_broken |= !matches!(open.content, Content::Events(_));
+        let kind = DamageKind::UnknownEntry;
+        Some(Item::Damage(Damage { offset: open.offset, kind }))
     }
 }
 

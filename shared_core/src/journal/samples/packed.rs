@@ -57,18 +57,23 @@ pub(super) struct Lane {
     pub(super) track: Track,
     pub(super) predictor: Predictor,
     pub(super) status: Status,
+    /// What was read last; zero when absent.
+    count_16: i32,
 }
 
 impl Lane {
     fn read_track(&mut self, bits: &mut BitReader<'_>) -> Option<()> {
-        self.track = Track::absent();
-        if !self.status.absent {
-            let whole = bits.flag()?;
-            let step = if whole { WHOLE } else { read_step(bits)? };
+        let whole = bits.flag()?;
+        let step = if whole { WHOLE } else { read_step(bits)? };
+        self.count_16 = 0;
+        self.track = if self.status.absent {
+            Track::absent(step)
+        } else {
             let count = unfold(bits.number()?);
             let count = if whole { count.checked_mul(WHOLE.into())? } else { count };
-            self.track = Track::begin(i32::try_from(count).ok()?, step, Scale::at(bits.take(4)?));
-        }
+            self.count_16 = i32::try_from(count).ok()?;
+            Track::begin(self.count_16, step, Scale::at(bits.take(4)?))
+        };
         Some(())
     }
 
@@ -86,15 +91,15 @@ impl Lane {
     }
 
     #[inline]
-    fn read(&mut self, bits: &mut BitReader<'_>) -> Option<Channel> {
-        let count_16 =
+    fn read(&mut self, bits: &mut BitReader<'_>) -> Option<()> {
+        self.count_16 =
             if self.status.absent { 0 } else { self.track.read(self.predictor, bits)? };
-        Some(Channel { count_16, quality: self.status.quality })
+        Some(())
     }
 
-    fn first(&self) -> Option<Channel> {
-        let count_16 = if self.status.absent { 0 } else { self.track.count()? };
-        Some(Channel { count_16, quality: self.status.quality })
+    #[inline]
+    const fn channel(&self) -> Channel {
+        Channel { count_16: self.count_16, quality: self.status.quality }
     }
 }
 
@@ -119,7 +124,7 @@ impl Chain {
         self.anchored = false;
     }
 
-    fn read_anchor(&mut self, bits: &mut BitReader<'_>) -> Option<Sample> {
+    fn read_anchor(&mut self, bits: &mut BitReader<'_>) -> Option<()> {
         self.tick_ms = bits.number().filter(|&tick_ms| tick_ms < TICK_LIMIT_MS)?;
         let unit = if bits.flag()? { 1000 } else { 1 };
         self.interval_ms = unfold(bits.number()?).checked_mul(unit)?;
@@ -133,12 +138,18 @@ impl Chain {
         let battery_bits = if bits.flag()? { 12 } else { 16 };
         self.battery_mv = u16::try_from(bits.take(battery_bits)?).ok()?;
         self.begin_page();
-        Some(Sample {
+        Some(())
+    }
+
+    /// The sample that was read last.
+    #[inline]
+    const fn sample(&self) -> Sample {
+        Sample {
             tick_ms: self.tick_ms,
-            level: self.level.first()?,
-            temperature: self.temperature.first()?,
+            level: self.level.channel(),
+            temperature: self.temperature.channel(),
             battery_mv: self.battery_mv,
-        })
+        }
     }
 
     /// What every page begins with.
@@ -149,7 +160,7 @@ impl Chain {
     }
 
     #[inline]
-    fn read(&mut self, steady: Steady, bits: &mut BitReader<'_>) -> Option<Sample> {
+    fn read(&mut self, steady: Steady, bits: &mut BitReader<'_>) -> Option<()> {
         if !steady.time {
             let off = read_off(&mut self.time_scale, bits)?;
             self.interval_ms = self.interval_ms.wrapping_add(off);
@@ -162,14 +173,14 @@ impl Chain {
             self.level.status = Status::read(bits)?;
             self.temperature.status = Status::read(bits)?;
         }
-        let level = self.level.read(bits)?;
-        let temperature = self.temperature.read(bits)?;
+        self.level.read(bits)?;
+        self.temperature.read(bits)?;
         if !steady.battery {
             let off = read_off(&mut self.battery_scale, bits)?;
             let battery_mv = i64::from(self.battery_mv).checked_add(off)?;
             self.battery_mv = u16::try_from(battery_mv).ok()?;
         }
-        Some(Sample { tick_ms: self.tick_ms, level, temperature, battery_mv: self.battery_mv })
+        Some(())
     }
 }
 
@@ -186,8 +197,8 @@ fn read_off(scale: &mut Scale, bits: &mut BitReader<'_>) -> Option<i64> {
 pub(in crate::journal) struct Packed<'a> {
     bits: BitReader<'a>,
     steady: Steady,
-    /// The first sample of an anchor.
-    first: Option<Sample>,
+    /// The sample that the head held is still to be given.
+    in_head: bool,
 }
 
 impl<'a> Packed<'a> {
@@ -195,25 +206,30 @@ impl<'a> Packed<'a> {
     pub(in crate::journal) fn open(payload: &'a [u8], chain: &mut Chain) -> Option<Self> {
         let mut reader = BitReader::new(payload);
         let bits = &mut reader;
-        let first = if chain.anchored { None } else { Some(chain.read_anchor(bits)?) };
-        if first.is_some() || bits.flag()? {
+        let in_head = !chain.anchored;
+        if in_head {
+            chain.read_anchor(bits)?;
+        }
+        if in_head || bits.flag()? {
             chain.level.read_predictor(bits)?;
             chain.temperature.read_predictor(bits)?;
-            if first.is_none() && bits.flag()? {
+            if !in_head && bits.flag()? {
                 chain.level.read_new_step(bits)?;
                 chain.temperature.read_new_step(bits)?;
             }
         }
         let steady = Steady::read(bits)?;
-        Some(Self { bits: reader, steady, first })
+        Some(Self { bits: reader, steady, in_head })
     }
 
     /// The next sample; `None` when no writer can have written it.
     #[inline]
     pub(in crate::journal) fn next(&mut self, chain: &mut Chain) -> Option<Sample> {
-        match self.first.take() {
-            Some(first) => Some(first),
-            None => chain.read(self.steady, &mut self.bits),
+        if self.in_head {
+            self.in_head = false;
+        } else {
+            chain.read(self.steady, &mut self.bits)?;
         }
+        Some(chain.sample())
     }
 }

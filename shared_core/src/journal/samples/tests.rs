@@ -157,19 +157,22 @@ fn likely_samples() -> impl Strategy<Value = Vec<Sample>> {
         moves
             .into_iter()
             .map(|(what, level, temperature, step, any)| {
-                now.tick_ms += if what % 32 == 0 { 57 } else { 10_000 };
+                now.tick_ms = (now.tick_ms + if what % 32 == 0 { 57 } else { 10_000 }) % (1 << 48);
+                let by = if what == 99 { 1 } else { 16 };
+                let moved = |channel: Channel, steps: i32| Channel {
+                    count_16: channel.count_16.wrapping_add(by * steps),
+                    ..channel
+                };
                 match what {
                     0..3 => now = any,
-                    3..6 => now.level = Channel::failed(SensorError::Silent),
-                    6..9 => now.level = Channel::good(16 * step),
-                    9..12 => now.battery_mv ^= 10,
-                    _ => {}
+                    3..30 => now.level = Channel::failed(SensorError::Silent),
+                    30..50 => now.level = Channel::good(by * step),
+                    50..60 => now.temperature = Channel::default(),
+                    60..70 => now.temperature = Channel::good(by * step),
+                    70..80 => now.battery_mv ^= 0b1010,
+                    _ if now.level.count_16 != 0 => now.level = moved(now.level, level),
+                    _ => now.temperature = moved(now.temperature, temperature),
                 }
-                let moved =
-                    |count: i32, by| count.wrapping_add(by * if what == 99 { 1 } else { 16 });
-                now.tick_ms %= 1 << 48;
-                now.level.count_16 = moved(now.level.count_16, level);
-                now.temperature.count_16 = moved(now.temperature.count_16, temperature);
                 now
             })
             .collect()

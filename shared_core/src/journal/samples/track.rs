@@ -93,8 +93,8 @@ impl Track {
     }
 
     /// A track that has seen no count.
-    pub(super) fn absent() -> Self {
-        Self::begin(0, WHOLE, Scale::at(2))
+    pub(super) fn absent(step: u32) -> Self {
+        Self::begin(0, step, Scale::at(2))
     }
 
     pub(super) const fn step(&self) -> u32 {
@@ -107,8 +107,7 @@ impl Track {
     }
 
     /// The last count; `None` when no writer can have led here.
-    #[inline]
-    pub(super) fn count(&self) -> Option<i32> {
+    fn count(&self) -> Option<i32> {
         self.count_at(self.last)
     }
 
@@ -166,7 +165,7 @@ impl Track {
         self.last = place;
     }
 
-    /// The place of a count and how far it is off each prediction, folded.
+    /// The place of a count that lies on a step.
     fn place_of(&self, count: i32) -> i64 {
         let off = i64::from(count) - i64::from(self.base);
         off.checked_div(self.step.into()).unwrap_or(0)
@@ -204,3 +203,6 @@ impl Track {
         bits
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -41,10 +41,6 @@ impl Lane {
         out: &mut BitWriter<'_>,
     ) {
         let last_page = self.track;
-        self.track = Track::absent();
-        if self.status.absent {
-            return;
-        }
         let count = first.count_16;
         let step = common_step(&Track::begin(count, 0, Scale::at(0)), counts.clone());
         let step = match (step, last_page.step()) {
@@ -54,6 +50,14 @@ impl Lane {
             (found, known) if found.checked_rem(known) == Some(0) => known,
             (found, _) => found,
         };
+        if self.status.absent {
+            out.flag(step == WHOLE);
+            if step != WHOLE {
+                out.number(step.into());
+            }
+            self.track = Track::absent(step);
+            return;
+        }
         let k = if last_page.step() > 0 { last_page.k() } else { usual_k(counts, step) };
         let k = if k < 15 { k } else { 15 };
         let whole = step == WHOLE && count % 16 == 0;
@@ -136,8 +140,10 @@ impl Chain {
             self.begin_page();
         }
         let steps = (self.level.track.step(), self.temperature.track.step());
-        self.level.refine(levels.clone());
-        self.temperature.refine(temperatures.clone());
+        if !anchor {
+            self.level.refine(levels.clone());
+            self.temperature.refine(temperatures.clone());
+        }
         let refined = steps != (self.level.track.step(), self.temperature.track.step());
         // The first sample of an anchor is no difference, but weighs little.
         let (level, level_spared) = self.level.best(levels);
