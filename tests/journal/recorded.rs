@@ -49,7 +49,9 @@ pub(crate) fn sectors(file: &str) -> Vec<Vec<u8>> {
 fn every_codec_stays_readable() {
     for recorded in &RECORDED {
         let mut own = Own::default();
-        sectors(recorded.file).iter().for_each(|sector| own.take(sector));
+        for sector in sectors(recorded.file) {
+            own.take(&sector);
+        }
         let events = [2, 3, 4, 5, 6, 10, 11].map(|number: usize| own.events[number]);
         let found = (own.samples, events, own.samples_check());
         let expected = (recorded.samples, recorded.events, recorded.check.to_owned());

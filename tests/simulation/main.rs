@@ -30,6 +30,11 @@
 //! person, every start-up finishes, and after every collection the journal contradicts itself
 //! nowhere and its replay is identical.
 #![allow(missing_docs, reason = "a test binary has no public interface")]
+#![expect(
+    clippy::cast_possible_truncation,
+    clippy::cast_precision_loss,
+    reason = "small numbers of a made-up world"
+)]
 
 mod flash;
 mod model;

@@ -10,7 +10,7 @@ use std::rc::Rc;
 use std::str::FromStr;
 use strake::sim::board::Bench;
 use strake::sim::machine::{Happening, Machine};
-use strake::sim::nor::{Cut as FlashCut, Tear};
+use strake::sim::nor::{Cut as FlashCut, Nor, Tear};
 use strake::sim::sensor::Failure;
 
 const MINUTE_MS: u64 = 60_000;
@@ -254,8 +254,8 @@ impl Run {
         loop {
             let off_ms = self.random.within(1..HOUR_MS);
             self.bench.now_ms.set(self.now_ms() + off_ms);
-            self.bench.plans.with(|flash| flash.power_on());
-            self.bench.journal.with(|flash| flash.power_on());
+            self.bench.plans.with(Nor::power_on);
+            self.bench.journal.with(Nor::power_on);
             if again > 0 {
                 let steps = self.random.within(0..60);
                 let armed = self.arm(steps);
@@ -275,7 +275,7 @@ impl Run {
             self.machine.borrow_mut().happen(Happening::PowerOff);
             again = again.saturating_sub(1);
         }
-        self.bench.journal.with(|flash| flash.power_on());
+        self.bench.journal.with(Nor::power_on);
         self.latches()
     }
 
@@ -351,7 +351,9 @@ impl Run {
         let loaded = self.visitor.load(&next);
         let flashes = [&self.bench.journal, &self.bench.plans];
         let powered = flashes.iter().all(|flash| flash.with(|flash| flash.is_powered()));
-        flashes.iter().for_each(|flash| flash.with(|flash| flash.cut_after(None)));
+        for flash in flashes {
+            flash.with(|flash| flash.cut_after(None));
+        }
         if powered {
             loaded?;
         } else {
