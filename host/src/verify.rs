@@ -7,8 +7,8 @@
 //!   head. From the numbers at its ends follows how many entries its damaged places took along.
 //!
 //! **Complete** means that the file holds everything that the device held when it was collected, as
-//! stored there. A place that is damaged on the device itself (a write torn by a loss of power, worn
-//! flash) is counted apart: no collection can mend it.
+//! stored there. A place that is damaged on the device itself (a write torn by a loss of power,
+//! worn flash) is counted apart: no collection can mend it.
 //!
 //! What the numbers cannot tell: a place that was damaged before the device started again in the
 //! same sector. The device counts on from what it can read, as it must after a torn write.

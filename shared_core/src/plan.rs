@@ -1,7 +1,7 @@
 //! The compiled plan: everything the device needs, in f32 and SI units.
 //!
 //! The engineer's tank file is compiled into a plan on the host; device and replay decode the same
-//! bytes ([`codec`]) and get the same numbers. A plan that fails [`check`] is not a plan.
+//! bytes ([`codec`]) and get the same numbers. A plan that fails [`Plan::check`] is no plan.
 
 #[cfg(test)]
 pub(crate) mod builder;

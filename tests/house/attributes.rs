@@ -50,7 +50,7 @@ fn every_exception_has_a_reason() {
         files::with("rs").map(|file| attributes(&file.text, name).len()).sum()
     };
     let ignored = files::with("rs")
-        .flat_map(|file| file.lines())
+        .flat_map(File::lines)
         .filter(|(_, line)| line.trim().starts_with("#[ignore"))
         .count();
     tell(&format!(

@@ -3,6 +3,8 @@
 //! The formats themselves are pinned beside their code, against an encoder in another language;
 //! here only the document is held.
 
+use std::fmt::Write as _;
+
 use strake::journal_file::{DeviceIdentity, Record};
 use strake::{compile, plan_file, tank};
 use strake_core::alarm::{AlarmState, FaultCause, MachineId, Threshold};
@@ -143,6 +145,14 @@ fn examples() -> Vec<(&'static str, Vec<u8>)> {
     examples
 }
 
+fn hex(bytes: &[u8]) -> String {
+    let mut text = String::new();
+    for byte in bytes {
+        write!(text, "{byte:02x}").expect("a string takes everything");
+    }
+    text
+}
+
 #[test]
 fn examples_of_the_guide_are_what_is_written() {
     // Blanks and line ends only make the bytes easier to read.
@@ -150,7 +160,7 @@ fn examples_of_the_guide_are_what_is_written() {
     let squeezed: String = text.split_whitespace().collect();
     let mut missing = Vec::new();
     for (name, bytes) in examples() {
-        let hex: String = bytes.iter().map(|byte| format!("{byte:02x}")).collect();
+        let hex = hex(&bytes);
         if !squeezed.contains(&hex) {
             missing.push(format!("{name}: {hex}"));
         }

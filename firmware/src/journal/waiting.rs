@@ -1,7 +1,7 @@
 //! Samples that wait in RAM, and how they outlive a warm restart.
 //!
-//! In retained memory each stands in a record of its own, oldest first, up to the first record whose
-//! check does not fit:
+//! In retained memory each stands in a record of its own, oldest first, up to the first record
+//! whose check does not fit:
 //!
 //! | offset | bytes | field, little endian |
 //! | --- | --- | --- |
@@ -13,8 +13,8 @@
 //! | 17 | 3 | zero |
 //! | 20 | 4 | hash over boot u16, place of the record u16 and bytes 0 to 19 |
 //!
-//! So a check fits only the boot that wrote it, at its own place. Plain numbers: the area is written
-//! in every cycle, and nothing in it outlives a loss of power.
+//! So a check fits only the boot that wrote it, at its own place. Plain numbers: the area is
+//! written in every cycle, and nothing in it outlives a loss of power.
 
 use super::{Journal, Recovery};
 use crate::board::RetainedMemory;
@@ -95,9 +95,9 @@ impl Waiting {
         }
     }
 
-    /// Stores the samples in `area`, and an end behind them. To be called after every push and after
-    /// every write to flash. Gives how many samples are stored; what has no room is missing, the
-    /// newest first.
+    /// Stores the samples in `area`, and an end behind them. To be called after every push and
+    /// after every write to flash. Gives how many samples are stored; what has no room is missing,
+    /// the newest first.
     pub fn save(&self, boot: u16, memory: &mut impl RetainedMemory, area: &Range<usize>) -> usize {
         let mut stored = 0;
         for (index, start) in (0_u16..).zip(records(area)) {

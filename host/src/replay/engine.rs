@@ -78,8 +78,8 @@ pub struct Engine {
     untold: VecDeque<Transition>,
     /// The state follows from the entries so far; false after a hole.
     connected: bool,
-    /// The state is that of a checkpoint that was not compared: the moves of the sample which opened
-    /// the sector are in it, and stand behind it.
+    /// The state is that of a checkpoint that was not compared: the moves of the sample which
+    /// opened the sector are in it, and stand behind it.
     ahead: bool,
     place: Place,
     /// The comparison.

@@ -1,7 +1,7 @@
 //! The emulated board: QEMU `mps2-an386`, a Cortex-M4F at 25 MHz.
 //!
 //! One file per peripheral, each behind a trait of embedded-hal, embedded-io, embedded-storage or
-//! `strake_firmware::board`; [`Parts::take`] hands them out once. The board decides nothing: when
+//! `strake_firmware::board`; `Parts::take` hands them out once. The board decides nothing: when
 //! to measure, to alarm and to feed the watchdog is the application's business.
 //!
 //! What the machine offers in place of the real parts:

@@ -102,8 +102,8 @@ impl Buffered {
         self.uart.enable(baud, TX_ENABLE | RX_ENABLE | TX_INTERRUPT | RX_INTERRUPT);
     }
 
-    /// Works on the queues, which nobody else does in a critical section; were it otherwise, nothing
-    /// is done and the default is the answer.
+    /// Works on the queues, which nobody else does in a critical section; were it otherwise,
+    /// nothing is done and the default is the answer.
     fn with<R: Default>(&self, f: impl FnOnce(&mut Queues) -> R) -> R {
         critical_section::with(|cs| {
             self.queues
