@@ -5,7 +5,8 @@
 //! and seeded mutations of it, and over the same mutations with every check sum **mended**, since
 //! nothing gets past a check sum by luck. Executions and arms are counted and printed.
 //!
-//! More executions: `STRAKE_FUZZ=1000000 cargo test --release -p strake --test fuzz -- --nocapture`.
+//! More executions:
+//! `STRAKE_FUZZ=1000000 cargo test --release -p strake --test fuzz -- --nocapture`.
 //!
 //! Guided by coverage, with libFuzzer: `cargo fuzz init` in a copy of the repository, `strake`,
 //! `strake-core` and `strake-firmware` as its dependencies, and one file per target of these lines

@@ -71,7 +71,8 @@ pub(crate) fn frame(bytes: &[u8]) -> Vec<u8> {
     out
 }
 
-/// COBS undone (Cheshire and Baker, IEEE/ACM Transactions on Networking 7 (1999) 2), less the check.
+/// COBS undone (Cheshire and Baker, IEEE/ACM Transactions on Networking 7 (1999) 2), less the
+/// check.
 fn unstuffed(stuffed: &[u8]) -> Option<Vec<u8>> {
     let mut out = Vec::new();
     let mut rest = stuffed;

@@ -2,8 +2,9 @@
 //! flash under the same faults, in one table, which a snapshot holds.
 //!
 //! The queue stores twelve bytes per record, one item each, durable when the call returns; the
-//! journal waits for six samples, which is its default wait of a minute. `permit_clearing` gives the
-//! queue the plain chip it is made for. Its pages are found without a cache, as after a restart.
+//! journal waits for six samples, which is its default wait of a minute. `permit_clearing` gives
+//! the queue the plain chip it is made for. Its caches are empty, as after a restart.
+
 #![expect(
     clippy::cast_possible_truncation,
     clippy::cast_precision_loss,

@@ -56,9 +56,11 @@ pub fn replay<R: Read + Seek>(file: &mut JournalFile<R>) -> Result<Replay, Journ
         walk.ledger.end_of_sector(sector.sequence, sector.bytes.len(), is_last);
     }
     let head = file.head().copied();
-    walk.ledger.finish(head.as_ref());
+    // The head's hash is that of the journal's end, which the file may not reach.
+    let reaches = walk.ledger.finish(head.as_ref());
+    let end = head.filter(|_| reaches);
     walk.replay.damage = walk.ledger.damage;
-    walk.replay.engine.finish(head.map(|head| head.running_hash));
+    walk.replay.engine.finish(end.map(|head| head.running_hash));
     walk.replay.gaps += walk.replay.engine.verdict.holes;
     Ok(walk.replay)
 }

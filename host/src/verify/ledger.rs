@@ -48,8 +48,8 @@ impl Ledger {
     }
 
     /// The sector's header is read. `state` is its checkpoint; `lost` the samples that the device
-    /// itself states as lost right behind it, `None` when it had no time to state any. Gives whether
-    /// the checkpoint counts the very samples that were read.
+    /// itself states as lost right behind it, `None` when it had no time to state any. Gives
+    /// whether the checkpoint counts the very samples that were read.
     pub(crate) fn header(
         &mut self,
         header: &SectorHeader,
