@@ -53,7 +53,9 @@ pub fn replay<R: Read + Seek>(file: &mut JournalFile<R>) -> Result<Replay, Journ
         last = Some(sector.sequence);
         walk.sector(file, &sector.bytes, sector.sequence, connected)?;
         let is_last = newest == last;
-        walk.ledger.end_of_sector(sector.sequence, sector.bytes.len(), is_last);
+        if walk.ledger.end_of_sector(sector.sequence, sector.bytes.len(), is_last) {
+            walk.replay.engine.hole();
+        }
     }
     let head = file.head().copied();
     // The head's hash is that of the journal's end, which the file may not reach.

@@ -97,11 +97,14 @@ impl Ledger {
     }
 
     /// All of the sector's bytes are read, `length` of them; `is_last` when no sector follows.
-    pub(crate) fn end_of_sector(&mut self, sequence: u32, length: usize, is_last: bool) {
+    /// Gives whether its end is missing.
+    pub(crate) fn end_of_sector(&mut self, sequence: u32, length: usize, is_last: bool) -> bool {
         self.last_length = length;
-        if length < SECTOR_BYTES && !is_last {
+        let cut_short = length < SECTOR_BYTES && !is_last;
+        if cut_short {
             self.place(Place::Sector { sequence }, What::CutShort);
         }
+        cut_short
     }
 
     /// The journal ends, and the head says where it should; gives whether it does.

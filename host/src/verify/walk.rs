@@ -129,7 +129,9 @@ impl Walk {
                 self.damage(Place::Sector { sequence }, what);
             }
         }
-        self.ledger.end_of_sector(sequence, bytes.len(), is_last);
+        if self.ledger.end_of_sector(sequence, bytes.len(), is_last) {
+            self.forget();
+        }
     }
 
     fn entries(&mut self, reader: SectorReader<'_>) {
