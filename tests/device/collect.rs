@@ -147,15 +147,15 @@ fn a_file_in_the_way_is_never_overwritten() {
 
 #[test]
 fn what_the_device_overwrote_in_between_is_counted_and_never_called_complete() {
-    let mut device = device_with_ring(Swing { low_m: 3.0, high_m: 6.0 }, 16);
+    let mut device = device_with_ring(Swing { low_m: 3.0, high_m: 6.0 }, 20);
     commission(&device);
-    run_for(&device, 3 * DAY_MS);
+    run_for(&device, 4 * DAY_MS);
     let folder = tempfile::tempdir().unwrap();
     let mut child = stuck(&device, folder.path());
     child.kill().unwrap();
     child.wait().unwrap();
     // The ring goes round meanwhile.
-    run_for(&device, 6 * DAY_MS);
+    run_for(&device, 10 * DAY_MS);
     device.plug_in().unwrap();
     let arguments = ["collect", "-o", folder.path().to_str().unwrap(), "--format", "json"];
     let ran = on(&device, &arguments);
