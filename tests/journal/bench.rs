@@ -5,6 +5,8 @@
 //! fit together without gap or overlap.
 
 use embedded_storage::nor_flash::NorFlash;
+use std::fs;
+use std::path::Path;
 use strake::sim::nor::{Cut, Nor, NorError};
 use strake_core::alarm::FaultCause;
 use strake_core::journal::entry::ResetCause;
@@ -329,4 +331,14 @@ impl<F: Medium> Bench<F> {
         }
         Ok(())
     }
+}
+
+/// Holds a table against the one kept under this name beside the tests.
+pub(crate) fn held_as(name: &str, table: &str) {
+    let path = Path::new(env!("CARGO_MANIFEST_DIR")).join("../tests/journal").join(name);
+    if std::env::var_os("STRAKE_SNAPSHOTS").is_some() {
+        fs::write(&path, table).unwrap();
+    }
+    let held = fs::read_to_string(&path).unwrap_or_default();
+    assert_eq!(table, held, "run with STRAKE_SNAPSHOTS=write when the change is meant");
 }

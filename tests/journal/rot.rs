@@ -7,7 +7,7 @@
     reason = "counts of entries and flips are small and positive"
 )]
 
-use crate::bench::{Bench, op};
+use crate::bench::{Bench, held_as, op};
 use std::fmt::Write as _;
 use strake::sim::nor::Nor;
 use strake_core::journal::{Entry, Item, SectorReader};
@@ -132,6 +132,7 @@ fn flips_cost_their_page_and_invent_nothing() {
     table::<4>(&mut out);
     table::<1>(&mut out);
     println!("{out}");
+    held_as("rot.txt", &out);
 }
 
 /// A control: where the checks are mended after the flips, wrong entries are seen.

@@ -379,10 +379,5 @@ fn beside_a_general_queue() {
     assert_eq!((our_faults.lost, our_faults.invented), (0, 0));
     assert!(ours.bytes < theirs.bytes / 2.0 && ours.programs < theirs.programs);
     assert!(ours.erases < theirs.erases && our_reads < 24 + 64);
-    let path = concat!(env!("CARGO_MANIFEST_DIR"), "/../tests/journal/side_by_side.txt");
-    if std::env::var_os("STRAKE_SNAPSHOTS").is_some() {
-        std::fs::write(path, &table).unwrap();
-    }
-    let held = std::fs::read_to_string(path).unwrap_or_default();
-    assert_eq!(table, held, "run with STRAKE_SNAPSHOTS=write when the change is meant");
+    crate::bench::held_as("side_by_side.txt", &table);
 }
