@@ -12,8 +12,8 @@
 //! | --- | --- |
 //! | 0 | `count` samples in codec 0: read, no longer written; see [`samples`](super::samples) |
 //! | 1 | `count` samples in codec 1, likewise |
-//! | 2 | `count` events, see [`events`](super::events) |
-//! | 3 | part `count` less one of the checkpoint, see [`checkpoint`](super::checkpoint) |
+//! | 2 | `count` events, see [`events`] |
+//! | 3 | part `count` less one of the checkpoint, see [`checkpoint`] |
 //!
 //! No writer makes a void; it reads as damage.
 //!
