@@ -33,7 +33,8 @@ const EDGE_ANSWERED: &[(&str, usize)] = &[
     ("time", 7),
 ];
 
-fn holds(tally: &Tally, counts: &[(&str, usize)]) {
+/// Prints the tally; nothing in it may disagree and each topic answers as many rows as stated.
+pub(crate) fn holds(tally: &Tally, counts: &[(&str, usize)]) {
     println!("{tally}");
     assert!(tally.disagreements.is_empty(), "{tally}");
     for (topic, count) in counts {

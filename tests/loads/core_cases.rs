@@ -1,5 +1,6 @@
 //! The published, own and edge cases through the core.
 
+use crate::cases::holds;
 use crate::core_engine::{
     at_head, at_level, course, design_of, loads_of, narrow, part_of, plan_of, wall,
 };
@@ -8,8 +9,8 @@ use strake_core::liquid::Band;
 use strake_core::part::{Capacities, Part, evaluate};
 use strake_core::signal::{LoopClass, classify};
 use strake_oracle::cases::{
-    Answer, BoundAsk, CourseAsk, DesignedForAsk, PlaneAsk, Plate, Problem, Reason, Row, Tally,
-    edge_rows, open_rows, own_rows, problem_of, run,
+    Answer, BoundAsk, CourseAsk, DesignedForAsk, PlaneAsk, Plate, Problem, Reason, Row, edge_rows,
+    open_rows, own_rows, problem_of, run,
 };
 use strake_oracle::envelope::Head;
 use strake_oracle::liquid::Liquid;
@@ -199,15 +200,6 @@ fn designed_for(
         DesignedForAsk::LimitByForce | DesignedForAsk::LimitByMoment => {
             Err("not sufficient, and not offered")
         }
-    }
-}
-
-fn holds(tally: &Tally, counts: &[(&str, usize)]) {
-    println!("{tally}");
-    assert!(tally.disagreements.is_empty(), "{tally}");
-    for (topic, count) in counts {
-        let answered = tally.answered(topic);
-        assert_eq!(answered, *count, "{topic}: a row lost or found its answer\n{tally}");
     }
 }
 
