@@ -5,7 +5,8 @@
 //! `span=NAME:START:STOP` counts from START to STOP, which is not counted itself. `out` is the file
 //! that one line a run, `NAME COUNT`, is written to at an orderly exit, with a last line
 //! `total COUNT` for the whole program. A function must be reached by a call, not by a jump at the
-//! end of another one; within a run further entries (recursion) are not counted apart.
+//! end of another one; within a run further entries (recursion) are not counted apart. Where the
+//! call names the function, an interrupt between the two does no harm.
 //!
 //! The plugin interface is version 1 of QEMU's `qemu-plugin.h`.
 
@@ -28,6 +29,7 @@ unsafe extern "C" {
     fn qemu_plugin_tb_get_insn(block: *const Block, index: usize) -> *mut Instruction;
     fn qemu_plugin_insn_vaddr(instruction: *const Instruction) -> u64;
     fn qemu_plugin_insn_size(instruction: *const Instruction) -> usize;
+    fn qemu_plugin_insn_data(instruction: *const Instruction) -> *const [u16; 2];
     fn qemu_plugin_register_vcpu_insn_exec_cb(
         instruction: *mut Instruction,
         f: extern "C" fn(c_uint, *mut c_void),
@@ -44,6 +46,8 @@ struct Span {
     start: u64,
     /// Fixed end; none: where the call returns to.
     stop: Option<u64>,
+    /// Address behind the last call of the function by its name.
+    called: Option<u64>,
     /// End and count at the start of the run that is going on.
     running: Option<(u64, u64)>,
     counts: Vec<u64>,
@@ -74,11 +78,34 @@ extern "C" fn on_execution(_cpu: c_uint, packed: *mut c_void) {
             span.running = None;
         }
         if address == span.start && span.running.is_none() {
-            span.running = Some((span.stop.unwrap_or(behind), total));
+            span.running = Some((span.stop.or(span.called.take()).unwrap_or(behind), total));
         }
     }
     state.total = total + 1;
     state.behind = address + size;
+}
+
+/// The instruction at the address before this one calls the function of a span.
+extern "C" fn on_call(_cpu: c_uint, packed: *mut c_void) {
+    let packed = packed.addr() as u64;
+    let mut state = STATE.lock().unwrap_or_else(|broken| broken.into_inner());
+    if let Some(span) = state.spans.get_mut((packed & 0xFF) as usize) {
+        span.called = Some(packed >> 8);
+    }
+}
+
+/// What an instruction at `address` calls, if it is BL with a target in it (Armv7-M, A7.7.18).
+fn called_by(address: u64, [high, low]: [u16; 2]) -> Option<u64> {
+    if high & 0xF800 != 0xF000 || low & 0xD000 != 0xD000 {
+        return None;
+    }
+    let (high, low) = (u32::from(high), u32::from(low));
+    let sign = high >> 10 & 1;
+    let (upper, lower) = (!(low >> 13 ^ sign) & 1, !(low >> 11 ^ sign) & 1);
+    let words = sign << 23 | upper << 22 | lower << 21 | (high & 0x3FF) << 11 | low & 0x7FF;
+    // 24 bits with a sign, in half words, from the address 4 behind.
+    let distance = i64::from((words << 8).cast_signed() >> 7);
+    Some(address.wrapping_add(4).wrapping_add_signed(distance))
 }
 
 extern "C" fn on_translation(_id: Id, block: *mut Block) {
@@ -88,9 +115,19 @@ extern "C" fn on_translation(_id: Id, block: *mut Block) {
         for index in 0..qemu_plugin_tb_n_insns(block) {
             let instruction = qemu_plugin_tb_get_insn(block, index);
             let size = qemu_plugin_insn_size(instruction) as u64;
-            let packed = (qemu_plugin_insn_vaddr(instruction) << 8) | size;
-            let data = std::ptr::without_provenance_mut(packed as usize);
-            qemu_plugin_register_vcpu_insn_exec_cb(instruction, on_execution, NO_REGISTERS, data);
+            let address = qemu_plugin_insn_vaddr(instruction);
+            let register = |f, packed: u64| {
+                let data = std::ptr::without_provenance_mut(packed as usize);
+                qemu_plugin_register_vcpu_insn_exec_cb(instruction, f, NO_REGISTERS, data);
+            };
+            register(on_execution, address << 8 | size);
+            if size == 4
+                && let Some(callee) =
+                    called_by(address, qemu_plugin_insn_data(instruction).read_unaligned())
+                && let Some(span) = spans().iter().position(|start| *start == callee)
+            {
+                register(on_call, (address + size) << 8 | span as u64);
+            }
         }
     }
 }
@@ -109,6 +146,12 @@ extern "C" fn at_exit(_id: Id, _data: *mut c_void) {
     }
 }
 
+/// First addresses of the spans.
+fn spans() -> Vec<u64> {
+    let state = STATE.lock().unwrap_or_else(|broken| broken.into_inner());
+    state.spans.iter().map(|span| span.start).collect()
+}
+
 fn address(text: &str) -> Option<u64> {
     u64::from_str_radix(text.strip_prefix("0x")?, 16).ok()
 }
@@ -125,7 +168,8 @@ fn set(state: &mut State, argument: &str) -> Option<()> {
                 return None;
             }
             let stop = stop.flatten();
-            state.spans.push(Span { name, start, stop, running: None, counts: Vec::new() });
+            let counts = Vec::new();
+            state.spans.push(Span { name, start, stop, called: None, running: None, counts });
         }
         "out" => state.out = Some(value.to_owned()),
         _ => return None,
