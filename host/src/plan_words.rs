@@ -88,7 +88,7 @@ pub fn lines(file: &PlanFile, units: UnitSystem) -> Vec<Line> {
     words.logging(plan.logging);
     for (name, part) in file.part_names.iter().zip(&plan.parts) {
         words.section.clone_from(name);
-        words.part(part);
+        words.part(part, &plan.numbers);
     }
     words.lines
 }
@@ -143,6 +143,7 @@ impl Words {
             alarm: _,
             logging: _,
             parts: _,
+            numbers: _,
         } = plan;
         self.section("tank");
         self.quantity("gravity", *gravity_m_s2, Acceleration);

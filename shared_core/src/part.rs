@@ -51,7 +51,7 @@ impl Geometry {
     /// [`Shape::Level`]).
     #[must_use]
     pub const fn plane(shape: Shape, sine: f32, bolts: Option<Bolts>) -> Self {
-        let centroid_above_m = 0.5 * shape.rise_m();
+        let centroid_above_m = shape.centroid_above_m();
         Self::Plane { shape, sine, centroid_above_m, bolts }
     }
 }

@@ -20,6 +20,8 @@ use heapless::Vec;
 
 /// Liquids that can stand against the outside of parts.
 pub const OUTSIDE_MAX: usize = 2;
+/// Numbers of all parts together whose geometry has many.
+pub const NUMBERS_MAX: usize = 280;
 /// Bytes of a name.
 pub const NAME_BYTES_MAX: usize = 24;
 
@@ -127,6 +129,8 @@ pub struct Plan {
     pub logging: LoggingPlan,
     /// The parts.
     pub parts: Vec<Part, PARTS_MAX>,
+    /// Numbers of the parts whose geometry has many: each part knows where its own begin.
+    pub numbers: Vec<f32, NUMBERS_MAX>,
 }
 
 impl Plan {
@@ -197,6 +201,7 @@ impl Plan {
             },
             logging: LoggingPlan { interval_ms: 0, idle_interval_ms: 0, flush_after_ms: 0 },
             parts: Vec::new(),
+            numbers: Vec::new(),
         }
     }
 

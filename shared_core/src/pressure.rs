@@ -14,7 +14,7 @@
 //! against the outside is one more surface with a negative step.
 
 use crate::lane::Lane;
-use crate::shape::{Cut, Shape, Wetted};
+use crate::shape::{Cut, Face, Wetted};
 
 /// Most surfaces of one state: four layers, and two liquids against the outside.
 pub const SURFACES_MAX: usize = 6;
@@ -87,18 +87,18 @@ impl<const N: usize> Pressure<N> {
         p
     }
 
-    /// Resultant on a whole plane part whose lowest point stands at `bottom_m`.
+    /// Resultant on a whole plane part.
     #[must_use]
     #[inline]
-    pub fn on(&self, shape: &Shape, bottom_m: f32) -> Resultant<N> {
-        self.resultant(shape.area_m2(), 0.0, bottom_m, |y| shape.wetted(y))
+    pub fn on(&self, face: &Face<'_>) -> Resultant<N> {
+        self.resultant(face.shape.area_m2(), 0.0, face.bottom_m, |y| face.wetted(y))
     }
 
     /// Resultant on the piece of a plane part below a cut, about the centroid of the whole part.
     #[must_use]
     #[inline]
-    pub fn below(&self, cut: &Cut, shape: &Shape, bottom_m: f32) -> Resultant<N> {
-        self.resultant(cut.area_m2, cut.static_m3, bottom_m, |y| cut.wetted(shape, y))
+    pub fn below(&self, cut: &Cut, face: &Face<'_>) -> Resultant<N> {
+        self.resultant(cut.area_m2, cut.static_m3, face.bottom_m, |y| cut.wetted(face, y))
     }
 
     /// `R = p_g W + sum step_i M(h_i)` for the two weightings of a plane part at once.

@@ -11,7 +11,7 @@ use strake_core::lane::Lane;
 use strake_core::liquid::States;
 use strake_core::part::{Geometry, Part, PartLoads, acting, evaluate};
 use strake_core::pressure::Pressure;
-use strake_core::shape::{Cut, Shape};
+use strake_core::shape::{Cut, Face};
 
 /// All rows, in the order of the file.
 pub(super) fn rows(file: &TankFile, desk: &Desk, request: &Request) -> Vec<PartRow> {
@@ -33,7 +33,7 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, all: &States<
         Stated::Panel(panel) => Some(&panel.plane),
         Stated::Hatch(hatch) => Some(&hatch.sealed),
     };
-    let moments = moments(part, plane, &states, &computed);
+    let moments = moments(part, &desk.plan().numbers, plane, &states, &computed);
     // What holds a cover that opens inward carries nothing while the load presses it on its seat.
     let pulled =
         !matches!(stated, Stated::Hatch(Hatch { opens, .. }) if opens.value == Opens::Inward);
@@ -73,6 +73,7 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, all: &States<
 /// pressure on the lower piece and the other on the upper.
 fn moments(
     part: &Part,
+    numbers: &[f32],
     plane: Option<&Plane>,
     states: &States<1>,
     computed: &PartLoads<1>,
@@ -84,17 +85,18 @@ fn moments(
     let Some([y_m, area_m2, static_m3]) = centroid_cut(&plane.shape, plane.sine()) else {
         return [estimate; 3];
     };
-    let cut = Cut::new(shape, y_m, area_m2, static_m3);
-    let pieces = |pressure: &Pressure<1>| pieces(pressure, shape, &cut, part.bottom_m);
+    let face = Face { shape, numbers, bottom_m: part.bottom_m };
+    let cut = Cut::new(&face, y_m, area_m2, static_m3);
+    let pieces = |pressure: &Pressure<1>| pieces(pressure, &face, &cut);
     let ([upper_low, upper_high], [lower_low, lower_high]) =
         (pieces(&states.upper), pieces(&states.lower));
     [estimate, lower_low + upper_high, upper_low + lower_high]
 }
 
 /// Moments of one pressure on the pieces below and above a cut.
-fn pieces(pressure: &Pressure<1>, shape: &Shape, cut: &Cut, bottom_m: f32) -> [f32; 2] {
-    let below = pressure.below(cut, shape, bottom_m).moment_n_m.lane(0);
-    let whole = pressure.on(shape, bottom_m).moment_n_m.lane(0);
+fn pieces(pressure: &Pressure<1>, face: &Face<'_>, cut: &Cut) -> [f32; 2] {
+    let below = pressure.below(cut, face).moment_n_m.lane(0);
+    let whole = pressure.on(face).moment_n_m.lane(0);
     [below, whole - below]
 }
 

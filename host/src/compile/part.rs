@@ -10,7 +10,7 @@ use crate::tank::{
 };
 use crate::units::Quantity::Length;
 use strake_core::part::{Bolts, Capacities, DESIGN_STATES_MAX, DesignState, Geometry, Part};
-use strake_core::shape::{Circle, Rectangle, Shape};
+use strake_core::shape::{Circle, Face, Rectangle, Shape};
 
 /// The part as the plan holds it; `None` with a finding when it cannot.
 pub(super) fn part(file: &TankFile, stated: &Stated, faults: &mut Faults) -> Option<Part> {
@@ -70,9 +70,10 @@ fn plane(plane: &Plane, hatch: Option<&Hatch>) -> Geometry {
             }
         }
     };
+    let face = Face::of(&shape, 0.0);
     let bolts = hatch
         .and_then(|hatch| hatch.bolts)
-        .map(|stated| Bolts::new(&bolts::pattern(&stated.value, &plane.shape, sine), &shape));
+        .map(|stated| Bolts::new(&bolts::pattern(&stated.value, &plane.shape, sine), &face));
     Geometry::plane(shape, single(sine), bolts)
 }
 

@@ -175,7 +175,7 @@ fn the_lower_half_of_a_disc() {
     let shape = strake_core::shape::Shape::Circle(disc);
     let [y_m, area_m2, static_m3] =
         super::centroid_cut(&Shape::Circle { diameter_m: 0.66 }, 1.0).unwrap();
-    let cut = Cut::new(&shape, y_m, area_m2, static_m3);
+    let cut = Cut::new(&strake_core::shape::Face::of(&shape, 0.0), y_m, area_m2, static_m3);
     assert!(near(cut.area_m2, 0.5 * PI * 0.33 * 0.33, 1e-6));
     assert!(near(cut.static_m3, -2.0 / 3.0 * 0.33_f64.powi(3), 1e-6));
 }

@@ -6,9 +6,9 @@ use strake_core::part::{Capacities, DesignState, Geometry, Part};
 use strake_core::shape::Shape;
 
 impl Words {
-    pub(super) fn part(&mut self, part: &Part) {
+    pub(super) fn part(&mut self, part: &Part, numbers: &[f32]) {
         let Part { geometry, bottom_m, top_m, outward, inward, designed_for, outside } = part;
-        self.line("is", geometry, self.geometry(geometry));
+        self.line("is", &exact(geometry, numbers), self.geometry(geometry));
         let heights = format!("{} to {}", self.show(*bottom_m, Length), self.show(*top_m, Length));
         self.line("stands from", &(bottom_m, top_m), heights);
         let mut carries = self.capacities(outward);
@@ -34,6 +34,13 @@ impl Words {
             ),
             Geometry::Plane { shape, sine, centroid_above_m: _, bolts } => {
                 let shape_words = match shape {
+                    Shape::Circle(circle) if (circle.aspect() - 1.0).abs() > 0.0 => {
+                        let length_m = 2.0 * f64::from(circle.radius_m());
+                        let width_m = length_m * f64::from(circle.aspect());
+                        let (width, length) =
+                            (self.show(width_m, Length), self.show(length_m, Length));
+                        format!("ellipse, {width} wide, {length} up the slope")
+                    }
                     Shape::Circle(circle) => {
                         let diameter_m = 2.0 * f64::from(circle.radius_m());
                         format!("circle, diameter {}", self.show(diameter_m, Length))
@@ -44,6 +51,12 @@ impl Words {
                             (self.show(width_m, Length), self.show(length_m, Length));
                         format!("rectangle, {width} wide, {length} up the slope")
                     }
+                    Shape::Pieces(pieces) => format!(
+                        "{} pieces, {} up the slope, as large as a square of {}",
+                        usize::from(pieces.strips) + usize::from(pieces.discs),
+                        self.show(pieces.length_m, Length),
+                        self.show(f64::from(pieces.area_m2).sqrt(), Length)
+                    ),
                     // As a square of the same size, whose side any unit of length can show.
                     Shape::Level { area_m2 } => {
                         let side_m = f64::from(*area_m2).sqrt();
@@ -87,6 +100,17 @@ impl Words {
             self.show(gas_pa, Pressure)
         )
     }
+}
+
+/// The geometry with its own numbers of the plan, wherever they stand in it.
+fn exact<'a>(geometry: &Geometry, numbers: &'a [f32]) -> (Geometry, [&'a [[f32; 4]]; 2]) {
+    let mut geometry = geometry.clone();
+    let mut own: [&[[f32; 4]]; 2] = [&[], &[]];
+    if let Geometry::Plane { shape: Shape::Pieces(pieces), .. } = &mut geometry {
+        own = pieces.pieces(numbers);
+        pieces.first = 0;
+    }
+    (geometry, own)
 }
 
 fn joined(all: &[String]) -> String {

@@ -10,7 +10,7 @@
 
 use crate::lane::Lane;
 use crate::pressure::{Pressure, Resultant};
-use crate::shape::{Cut, Shape};
+use crate::shape::{Cut, Face, Shape};
 
 /// One extreme bolt: the lowest or the highest.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -45,11 +45,11 @@ pub struct BoltPattern {
 impl Bolts {
     /// The bolts of a pattern on a cover.
     #[must_use]
-    pub fn new(pattern: &BoltPattern, shape: &Shape) -> Self {
+    pub fn new(pattern: &BoltPattern, face: &Face<'_>) -> Self {
         let [lowest, highest] = pattern.per_moment;
         let [low_cut, high_cut] = pattern.cuts;
         let cut = |numbers: Option<[f32; 3]>| {
-            numbers.map(|[y_m, area_m2, static_m3]| Cut::new(shape, y_m, area_m2, static_m3))
+            numbers.map(|[y_m, area_m2, static_m3]| Cut::new(face, y_m, area_m2, static_m3))
         };
         Self {
             count: pattern.count,
@@ -87,14 +87,12 @@ impl Bolts {
     #[inline]
     pub fn bounds<const N: usize>(
         &self,
-        shape: &Shape,
-        bottom_m: f32,
+        face: &Face<'_>,
         upper: (&Pressure<N>, &Resultant<N>),
         lower: (&Pressure<N>, &Resultant<N>),
     ) -> [Lane<N>; 2] {
-        let [low_most, low_least] = self.bolt_bounds(&self.lowest, shape, bottom_m, upper, lower);
-        let [high_most, high_least] =
-            self.bolt_bounds(&self.highest, shape, bottom_m, upper, lower);
+        let [low_most, low_least] = self.bolt_bounds(&self.lowest, face, upper, lower);
+        let [high_most, high_least] = self.bolt_bounds(&self.highest, face, upper, lower);
         [low_most.at_least(high_most), low_least.at_most(high_least)]
     }
 
@@ -102,15 +100,14 @@ impl Bolts {
     fn bolt_bounds<const N: usize>(
         &self,
         bolt: &ExtremeBolt,
-        shape: &Shape,
-        bottom_m: f32,
+        face: &Face<'_>,
         upper: (&Pressure<N>, &Resultant<N>),
         lower: (&Pressure<N>, &Resultant<N>),
     ) -> [Lane<N>; 2] {
         let (whole_upper, whole_lower) = (self.share(bolt, upper.1), self.share(bolt, lower.1));
         let Some(cut) = &bolt.cut else { return [whole_upper, whole_lower] };
-        let below_upper = self.share(bolt, &upper.0.below(cut, shape, bottom_m));
-        let below_lower = self.share(bolt, &lower.0.below(cut, shape, bottom_m));
+        let below_upper = self.share(bolt, &upper.0.below(cut, face));
+        let below_lower = self.share(bolt, &lower.0.below(cut, face));
         let above_upper = whole_upper - below_upper;
         let above_lower = whole_lower - below_lower;
         // The lowest bolt's weighting is positive below its cut, the highest's above.

@@ -5,6 +5,7 @@ use crate::lane::Lane;
 use crate::liquid::States;
 use crate::plan::Plan;
 use crate::pressure::{Pressure, Resultant};
+use crate::shape::Face;
 
 /// Loads of a part under one state. What a part does not have stays zero.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -96,9 +97,9 @@ pub(crate) fn evaluate_into<const N: usize>(
     loads: &mut PartLoads<N>,
 ) {
     if part.outside == 0 {
-        judge(part, states, loads);
+        judge(plan, part, states, loads);
     } else {
-        judge(part, &acting(plan, part, states), loads);
+        judge(plan, part, &acting(plan, part, states), loads);
     }
 }
 
@@ -122,7 +123,7 @@ pub fn acting<const N: usize>(plan: &Plan, part: &Part, states: &States<N>) -> S
     with
 }
 
-fn judge<const N: usize>(part: &Part, states: &States<N>, loads: &mut PartLoads<N>) {
+fn judge<const N: usize>(plan: &Plan, part: &Part, states: &States<N>, loads: &mut PartLoads<N>) {
     let States { estimate, upper, lower, .. } = states;
     match &part.geometry {
         Geometry::Course { half_diameter_m, design_point_m, .. } => {
@@ -132,9 +133,10 @@ fn judge<const N: usize>(part: &Part, states: &States<N>, loads: &mut PartLoads<
             loads.inward.put_course(lower.at(point_m), *half_diameter_m);
         }
         Geometry::Plane { shape, bolts, .. } => {
-            let middle = estimate.on(shape, part.bottom_m);
-            let most = upper.on(shape, part.bottom_m);
-            let least = lower.on(shape, part.bottom_m);
+            let face = Face { shape, numbers: &plan.numbers, bottom_m: part.bottom_m };
+            let middle = estimate.on(&face);
+            let most = upper.on(&face);
+            let least = lower.on(&face);
             loads.estimate.put_plane(largest_pressure(part, estimate, &middle), middle.force_n);
             loads.estimate.moment_centroid_n_m = middle.moment_n_m;
             loads.outward.put_plane(largest_pressure(part, upper, &most), most.force_n);
@@ -142,8 +144,7 @@ fn judge<const N: usize>(part: &Part, states: &States<N>, loads: &mut PartLoads<
             [loads.estimate.bolt_n, loads.outward.bolt_n, loads.inward.bolt_n] = match bolts {
                 None => [Lane::ZERO; 3],
                 Some(bolts) => {
-                    let [largest, least] =
-                        bolts.bounds(shape, part.bottom_m, (upper, &most), (lower, &least));
+                    let [largest, least] = bolts.bounds(&face, (upper, &most), (lower, &least));
                     [bolts.largest(&middle), largest, least]
                 }
             };

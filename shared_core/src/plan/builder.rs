@@ -11,7 +11,7 @@ use crate::journal::entry::Sample;
 use crate::liquid::{Band, DensityTable, Gas, Layer};
 use crate::part::{BoltPattern, Bolts, Capacities, Geometry, Part};
 use crate::plan::LiquidPlan;
-use crate::shape::{Circle, Rectangle, Shape};
+use crate::shape::{Circle, Face, Pieces, Rectangle, Shape};
 use crate::signal::{Channel, ReadingClass, Resolved};
 use core::f64::consts::PI;
 use heapless::Vec;
@@ -77,6 +77,7 @@ pub(crate) fn water_tank() -> Plan {
             flush_after_ms: 60_000,
         },
         parts: Vec::from_iter([course(0.0, 2.4, 4.0, 0.3)]),
+        numbers: Vec::new(),
     }
 }
 
@@ -185,7 +186,7 @@ pub(crate) fn bolted_disc(
         per_moment: [-per_moment as f32, per_moment as f32],
         cuts: [cut(cut_s), cut(-cut_s)],
     };
-    let bolts = Bolts::new(&pattern, &shape);
+    let bolts = Bolts::new(&pattern, &Face::of(&shape, 0.0));
     plane(shape, bottom_m, sine, Some(bolts))
 }
 
@@ -213,7 +214,7 @@ pub(crate) fn bolted_rectangle(
         per_moment: [-per_moment, per_moment],
         cuts: [cut(zero_s), cut(-zero_s)],
     };
-    let bolts = Bolts::new(&pattern, &shape);
+    let bolts = Bolts::new(&pattern, &Face::of(&shape, 0.0));
     plane(shape, bottom_m, sine, Some(bolts))
 }
 
@@ -239,4 +240,21 @@ pub(crate) fn reading(plan: &Plan, estimate: f32, low: f32, high: f32) -> Resolv
         density: plan.liquid.any_product(),
         fault: None::<FaultCause>,
     }
+}
+
+/// Adds an upright obround of 0.6 by 1.0 m with a triangle of 0.3 m under it to the plan: every
+/// kind of piece.
+pub(crate) fn push_pieces(plan: &mut Plan, bottom_m: f32, sine: f32) {
+    let first = u16::try_from(plan.numbers.len()).unwrap();
+    let pieces = [[0.0, 0.3, 0.0, 2.0], [0.6, 0.4, 0.6, 0.0], [0.3, 0.3, 1.0, 0.4]];
+    plan.numbers.extend_from_slice(pieces.as_flattened()).unwrap();
+    let bare = Pieces::new([0.0, 1.3, 0.0], sine, first, [2, 1]);
+    let [area_m2, first_m3] = bare.moments(&plan.numbers);
+    let shape = Shape::Pieces(Pieces::new([area_m2, 1.3, first_m3 / area_m2], sine, first, [2, 1]));
+    plan.parts.push(plane(shape, bottom_m, sine, None)).unwrap();
+}
+
+/// An ellipse without bolts.
+pub(crate) fn ellipse(bottom_m: f32, radius_m: f32, aspect: f32, sine: f32) -> Part {
+    plane(Shape::Circle(Circle::ellipse(radius_m, aspect, sine)), bottom_m, sine, None)
 }

@@ -3,7 +3,7 @@
 use super::{AlarmPlan, LevelPlan, LevelSensor, LoggingPlan, Plan, Reference, ThresholdPlan};
 use crate::liquid::Band;
 use crate::part::{Capacities, Geometry, Part};
-use crate::shape::Shape;
+use crate::shape::{Pieces, Shape};
 use core::fmt;
 
 /// Why bytes are no plan. The numbers travel over the link and never change.
@@ -205,7 +205,7 @@ impl Plan {
             Geometry::Plane { shape, sine, bolts, .. } => {
                 let bolts = bolts.as_ref();
                 require(
-                    check_shape(shape, *sine)
+                    check_shape(shape, *sine, &self.numbers)
                         && bolts.is_none_or(|bolts| bolts.pattern().is_sound(shape, *sine)),
                     PlanError::Geometry,
                 )?;
@@ -228,17 +228,58 @@ impl Plan {
     }
 }
 
-fn check_shape(shape: &Shape, sine: f32) -> bool {
-    let size = |length_m: f32| within(length_m, 0.001, LENGTH_M_MAX);
+/// Smallest and largest width over length of an ellipse or a disc.
+const ASPECT: [f32; 2] = [1.0e-3, 1.0e3];
+/// Largest share by which what is stated of a shape may differ from what its pieces give.
+const PIECES_SLACK: f32 = 1.0e-3;
+
+fn size(length_m: f32) -> bool {
+    within(length_m, 0.001, LENGTH_M_MAX)
+}
+
+fn check_shape(shape: &Shape, sine: f32, numbers: &[f32]) -> bool {
     let (sized, sloped) = match shape {
-        Shape::Circle(circle) => (size(circle.radius_m()), true),
+        Shape::Circle(circle) => {
+            let [low, high] = ASPECT;
+            (size(circle.radius_m()) && within(circle.aspect(), low, high), true)
+        }
         Shape::Rectangle(rectangle) => {
             let [width_m, length_m] = rectangle.sides_m();
             (size(width_m) && size(length_m), true)
         }
+        Shape::Pieces(pieces) => (check_pieces(pieces, numbers), true),
         Shape::Level { area_m2 } => (within(*area_m2, 1.0e-6, 1.0e5), false),
     };
     sized && if sloped { within(sine, SINE_MIN, 1.0) } else { within(sine, 0.0, 0.0) }
+}
+
+/// Every piece in its place, and together the area and the centroid that are stated.
+fn check_pieces(pieces: &Pieces, numbers: &[f32]) -> bool {
+    let Pieces { area_m2, length_m, centroid_m, .. } = *pieces;
+    let slack_m = PIECES_SLACK * length_m;
+    let inside = |low_m: f32, high_m: f32| {
+        within(low_m, 0.0, length_m) && within(high_m, low_m, length_m + slack_m)
+    };
+    let [strips, discs] = pieces.pieces(numbers);
+    let [area, first_m3] = pieces.moments(numbers);
+    size(length_m)
+        && within(centroid_m, 0.0, length_m)
+        && within(area_m2, 1.0e-6, 1.0e5)
+        && 4 * (strips.len() + discs.len()) == pieces.count()
+        && strips.iter().all(|&[low_m, length_m, width_m, growth]| {
+            inside(low_m, low_m + length_m)
+                && length(width_m)
+                && length(width_m + growth * length_m)
+        })
+        && discs.iter().all(|&[low_m, radius_m, aspect, middle_m]| {
+            let [least, most] = ASPECT;
+            size(radius_m)
+                && within(aspect.abs(), least, most)
+                && within(middle_m, 0.0, length_m)
+                && inside(low_m, low_m + 2.0 * radius_m + middle_m)
+        })
+        && (area - area_m2).abs() <= PIECES_SLACK * area_m2
+        && first_m3.abs() <= PIECES_SLACK * area_m2 * length_m
 }
 
 fn check_capacities(

@@ -68,7 +68,7 @@ pub fn encode(
     }
     sink.u8(count(plan.parts.len())?);
     for part in &plan.parts {
-        parts::put(&mut sink, part)?;
+        parts::put(&mut sink, part, &plan.numbers)?;
     }
     for name in part_names {
         text(&mut sink, name)?;
@@ -150,8 +150,9 @@ fn take<F: Fetch>(source: &mut Source<F>, plan: &mut Plan) -> Option<PlanHeader>
         flush_after_ms: source.u32()?,
     };
     plan.parts.clear();
+    plan.numbers.clear();
     for _ in 0..source.u8()? {
-        plan.parts.push(parts::take(source)?).ok()?;
+        plan.parts.push(parts::take(source, &mut plan.numbers)?).ok()?;
     }
     Some(header)
 }

@@ -3,7 +3,7 @@
 
 use super::Pressure;
 use crate::lane::Lane;
-use crate::shape::{Circle, Rectangle, Shape};
+use crate::shape::{Circle, Face, Rectangle, Shape};
 
 const WEIGHT: f32 = 9806.65;
 
@@ -29,7 +29,7 @@ fn round_manway_covered_and_partly_wetted() {
         (0.95, 449.256, 80.287),
     ];
     for (level_m, force_n, about_bottom_n_m) in cases {
-        let r = water(level_m).on(&shape, 0.5);
+        let r = water(level_m).on(&Face::of(&shape, 0.5));
         near(r.force_n.lane(0), force_n, 4e-5);
         // s is measured from the centroid, 0.3 m above the lowest point.
         near(r.moment_n_m.lane(0) + 0.3 * r.force_n.lane(0), about_bottom_n_m, 3e-4);
@@ -40,9 +40,9 @@ fn round_manway_covered_and_partly_wetted() {
 fn square_hatch_from_dry_to_covered() {
     let shape = Shape::Rectangle(Rectangle::new(0.6, 0.6, 1.0));
     for (level_m, force_n) in [(0.3, 0.0), (0.1, 0.0), (0.5, 117.680), (0.9, 1059.118)] {
-        near(water(level_m).on(&shape, 0.3).force_n.lane(0), force_n, 1e-5);
+        near(water(level_m).on(&Face::of(&shape, 0.3)).force_n.lane(0), force_n, 1e-5);
     }
-    let r = water(0.5).on(&shape, 0.3);
+    let r = water(0.5).on(&Face::of(&shape, 0.3));
     near(r.moment_n_m.lane(0) + 0.3 * r.force_n.lane(0), 7.845, 1e-4);
 }
 
@@ -50,7 +50,7 @@ fn square_hatch_from_dry_to_covered() {
 fn inclined_panel_takes_depth_not_length() {
     let sine = 0.866_025_4;
     let shape = Shape::Rectangle(Rectangle::new(1.5, 2.0, sine));
-    near(water(3.0).on(&shape, 0.0).force_n.lane(0), 62_781.0, 2e-5);
+    near(water(3.0).on(&Face::of(&shape, 0.0)).force_n.lane(0), 62_781.0, 2e-5);
 }
 
 #[test]
@@ -59,11 +59,11 @@ fn lanes_do_not_change_bits() {
     let levels: [f32; 8] = [-1.0, 0.0, 0.501, 0.55, 0.77, 1.0, 1.03, 9.0];
     let mut many = Pressure::<8>::gas(Lane::splat(120.0));
     many.add(Lane(levels), Lane::splat(WEIGHT));
-    let together = many.on(&shape, 0.5);
+    let together = many.on(&Face::of(&shape, 0.5));
     for (index, level_m) in levels.into_iter().enumerate() {
         let mut one = Pressure::<1>::gas(Lane([120.0]));
         one.add(Lane([level_m]), Lane([WEIGHT]));
-        let alone = one.on(&shape, 0.5);
+        let alone = one.on(&Face::of(&shape, 0.5));
         assert_eq!(
             (together.force_n.lane(index) + 0.0).to_bits(),
             (alone.force_n.lane(0) + 0.0).to_bits()

@@ -26,14 +26,16 @@ const M: [f32; 6] =
 const M1: [f32; 6] =
     [-7.542_472e-1, 4.040_587e-1, -3.925_702_2e-2, -2.787_091_2e-3, -2.331_560_7e-4, -2.332_418e-4];
 
-/// A disc on a slope that is not level.
+/// A disc, or an ellipse with a level axis, on a slope that is not level.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Circle {
     /// Area, m².
     pub(super) area_m2: f32,
     /// Height of the highest above the lowest point, m.
     pub(super) rise_m: f32,
-    /// Radius, m.
+    /// Half the level width over half the length up the slope.
+    aspect: f32,
+    /// Half the length up the slope, m.
     radius_m: f32,
     /// `1 / (r sin)`, 1/m.
     per_half_rise: f32,
@@ -47,11 +49,19 @@ impl Circle {
     /// A disc of `radius_m` on a slope with the sine `sine` (above zero, at most one).
     #[must_use]
     pub fn new(radius_m: f32, sine: f32) -> Self {
+        Self::ellipse(radius_m, 1.0, sine)
+    }
+
+    /// An ellipse of half the length `radius_m` up the slope; half its level width is `aspect`
+    /// times that. Every width of the disc is scaled, and both integrals with it.
+    #[must_use]
+    pub fn ellipse(radius_m: f32, aspect: f32, sine: f32) -> Self {
         let half_rise_m = radius_m * sine;
-        let square = radius_m * radius_m;
+        let square = radius_m * radius_m * aspect;
         Self {
             area_m2: PI * square,
             rise_m: 2.0 * half_rise_m,
+            aspect,
             radius_m,
             per_half_rise: 1.0 / half_rise_m,
             q0_scale: square * half_rise_m,
@@ -59,30 +69,43 @@ impl Circle {
         }
     }
 
-    /// Radius, m.
+    /// Radius, of an ellipse half its length up the slope, m.
     #[must_use]
     pub const fn radius_m(&self) -> f32 {
         self.radius_m
     }
 
+    /// Width over length: one of a disc.
+    #[must_use]
+    pub const fn aspect(&self) -> f32 {
+        self.aspect
+    }
+
     /// See [`super::Shape::wetted`].
     #[inline]
     pub(super) fn wetted<const N: usize>(&self, y_m: Lane<N>) -> Wetted<N> {
-        let a = y_m * self.per_half_rise;
-        let u = a - 1.0;
-        // Distance of the surface from the nearer end of the vertical diameter: zero when dry or
-        // covered. Below the centre it is `a` itself, which keeps all digits at first wetting.
-        let end = u.positive_selects(Lane::splat(2.0) - a, a).ramp();
-        let (m, m1) = if end.none_positive() {
-            (Lane::ZERO, Lane::ZERO)
-        } else {
-            let k = end * end * end.root();
-            (k * polynomial(&M, end), k * polynomial(&M1, end))
-        };
-        let m = u.positive_selects(u * PI + m, m);
-        let m1 = u.positive_selects(Lane::splat(-PI / 4.0) - m1, m1);
+        let (m, m1) = unit(y_m * self.per_half_rise);
         Wetted { q0: m * self.q0_scale, q1: m1 * self.q1_scale }
     }
+}
+
+/// `m(u)` and `m1(u)` of a surface `a = 1 + u` radii above the lowest point.
+#[expect(clippy::inline_always, reason = "the call would cost a fifth of what it does")]
+#[inline(always)]
+pub(super) fn unit<const N: usize>(a: Lane<N>) -> (Lane<N>, Lane<N>) {
+    let u = a - 1.0;
+    // Distance of the surface from the nearer end of the vertical diameter: zero when dry or
+    // covered. Below the centre it is `a` itself, which keeps all digits at first wetting.
+    let end = u.positive_selects(Lane::splat(2.0) - a, a).ramp();
+    let (m, m1) = if end.none_positive() {
+        (Lane::ZERO, Lane::ZERO)
+    } else {
+        let k = end * end * end.root();
+        (k * polynomial(&M, end), k * polynomial(&M1, end))
+    };
+    let m = u.positive_selects(u * PI + m, m);
+    let m1 = u.positive_selects(Lane::splat(-PI / 4.0) - m1, m1);
+    (m, m1)
 }
 
 #[inline]

@@ -1,7 +1,7 @@
 //! Discs, rectangles and their pieces against strips in f64, over sizes, slopes and levels.
 #![expect(clippy::cast_possible_truncation, reason = "figures of the tests fit")]
 
-use super::{Circle, Cut, Rectangle, Shape, Wetted};
+use super::{Circle, Cut, Face, Pieces, Rectangle, Shape, Wetted};
 use crate::lane::Lane;
 use crate::liquid::truth::{Random, Strips};
 use proptest::prelude::*;
@@ -72,7 +72,7 @@ proptest! {
         let mut random = Random(seed);
         let (shape, strips) = random_shape(&mut random);
         let surface_m = random_surface(&mut random, shape.rise_m());
-        let found = shape.wetted(Lane([surface_m]));
+        let found = Face::of(&shape, 0.0).wetted(Lane([surface_m]));
         let errors = errors(found, &strips, surface_m, strips.half_m);
         prop_assert!(errors.iter().all(|&one| one <= 1e-6), "{errors:?} {surface_m} {shape:?}");
     }
@@ -85,9 +85,9 @@ proptest! {
         let cut_s = (f64::from(cut_y as f32) - strips.centroid_m) / strips.sine;
         let area = strips.integral([-strips.half_m, cut_s], |_, _| 1.0);
         let first = strips.integral([-strips.half_m, cut_s], |_, s| s);
-        let cut = Cut::new(&shape, cut_y as f32, area as f32, first as f32);
+        let cut = Cut::new(&Face::of(&shape, 0.0), cut_y as f32, area as f32, first as f32);
         let surface_m = random_surface(&mut random, shape.rise_m());
-        let found = cut.wetted(&shape, Lane([surface_m]));
+        let found = cut.wetted(&Face::of(&shape, 0.0), Lane([surface_m]));
         let errors = errors(found, &strips, surface_m, cut_s);
         prop_assert!(errors.iter().all(|&one| one <= 2e-6), "{errors:?} {surface_m} {shape:?}");
     }
@@ -98,14 +98,15 @@ proptest! {
         let mut random = Random(seed);
         let (shape, strips) = random_shape(&mut random);
         let cut_y = (0.4 * f64::from(shape.rise_m())) as f32;
-        let cut = Cut::new(&shape, cut_y, shape.area_m2() * 0.4, -0.1 * strips.half_m as f32);
+        let face = Face::of(&shape, 0.0);
+        let cut = Cut::new(&face, cut_y, shape.area_m2() * 0.4, -0.1 * strips.half_m as f32);
         let mut surfaces: [f32; 8] =
             core::array::from_fn(|_| random_surface(&mut random, shape.rise_m()));
         surfaces[0] = cut_y;
-        let together = [shape.wetted(Lane(surfaces)), cut.wetted(&shape, Lane(surfaces))];
+        let together = [face.wetted(Lane(surfaces)), cut.wetted(&face, Lane(surfaces))];
         for (lane, surface_m) in surfaces.into_iter().enumerate() {
             let one = Lane([surface_m]);
-            let singly = [shape.wetted(one), cut.wetted(&shape, one)];
+            let singly = [face.wetted(one), cut.wetted(&face, one)];
             for (many, alone) in together.into_iter().zip(singly) {
                 for (many, alone) in [(many.q0, alone.q0), (many.q1, alone.q1)] {
                     let bits = [many.lane(lane), alone.lane(0)].map(|q| (q + 0.0).to_bits());
@@ -124,7 +125,7 @@ proptest! {
         let mut last = f32::NEG_INFINITY;
         for step in -20..20 {
             let surface = middle * (1.0 + 1e-6 * f64::from(step) * middle.signum());
-            let q0 = shape.wetted(Lane([surface as f32])).q0.lane(0);
+            let q0 = Face::of(&shape, 0.0).wetted(Lane([surface as f32])).q0.lane(0);
             prop_assert!(q0 >= last - 1e-6 * last.abs(), "{q0} after {last}");
             last = q0;
         }
@@ -135,7 +136,7 @@ proptest! {
 fn a_level_shape_stands_at_one_height() {
     let shape = Shape::Level { area_m2: 0.44 };
     for (surface_m, volume) in [(-1.0, 0.0), (0.0, 0.0), (0.25, 0.11), (40.0, 17.6)] {
-        let found = shape.wetted(Lane([surface_m]));
+        let found = Face::of(&shape, 0.0).wetted(Lane([surface_m]));
         assert!((found.q0.lane(0) - volume).abs() <= 1e-6 * volume);
         assert!(found.q1.lane(0).abs() <= 0.0);
     }
@@ -146,8 +147,61 @@ fn a_level_shape_stands_at_one_height() {
 #[test]
 fn half_a_disc_in_closed_form() {
     let shape = Shape::Circle(Circle::new(0.5, 1.0));
-    let found = shape.wetted(Lane([0.5]));
+    let found = Face::of(&shape, 0.0).wetted(Lane([0.5]));
     let (q0, q1) = (2.0 / 3.0 * 0.125, -core::f64::consts::PI / 8.0 * 0.0625);
     assert!((f64::from(found.q0.lane(0)) / q0 - 1.0).abs() < 2e-7);
     assert!((f64::from(found.q1.lane(0)) / q1 - 1.0).abs() < 2e-7);
+}
+
+/// The shape whose pieces are these, strips first; its area and centroid from fine strips.
+fn of_pieces(
+    sine: f32,
+    strips: &[[f32; 4]],
+    discs: &[[f32; 4]],
+    length_m: f32,
+) -> (Shape, Vec<f32>) {
+    let numbers: Vec<f32> = strips.iter().chain(discs).flatten().copied().collect();
+    let counts = [strips.len() as u8, discs.len() as u8];
+    let bare = Pieces::new([0.0, length_m, 0.0], sine, 0, counts);
+    let [area_m2, first_m3] = bare.moments(&numbers);
+    let sizes = [area_m2, length_m, first_m3 / area_m2];
+    (Shape::Pieces(Pieces::new(sizes, sine, 0, counts)), numbers)
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(2_000))]
+
+    /// One strip is a rectangle, one disc a disc; cut into pieces they stay what they are.
+    #[test]
+    fn pieces_of_known_shapes(seed in any::<u64>()) {
+        let mut random = Random(seed);
+        let (shape, strips) = random_shape(&mut random);
+        let sine = strips.sine as f32;
+        let length_m = shape.rise_m() / sine;
+        let surface_m = random_surface(&mut random, shape.rise_m());
+        let pieces = match &shape {
+            Shape::Rectangle(rectangle) => {
+                let [width_m, length_m] = rectangle.sides_m();
+                let lower_m = length_m * random.between(0.1, 0.9) as f32;
+                let split = [
+                    [0.0, lower_m, width_m, 0.0],
+                    [lower_m, length_m - lower_m, width_m, 0.0],
+                ];
+                of_pieces(sine, &split, &[], length_m)
+            }
+            Shape::Circle(circle) => {
+                of_pieces(sine, &[], &[[0.0, circle.radius_m(), 1.0, 0.0]], length_m)
+            }
+            _ => unreachable!("no other shape is made"),
+        };
+        let face = Face { shape: &pieces.0, numbers: &pieces.1, bottom_m: 0.0 };
+        let found = face.wetted(Lane([surface_m]));
+        if surface_m > 0.0 {
+            for error in errors(found, &strips, surface_m, strips.half_m) {
+                prop_assert!(error <= 1.5e-6, "{error:e}: {shape:?} at {surface_m}");
+            }
+        } else {
+            prop_assert_eq!(found, Wetted { q0: Lane::ZERO, q1: Lane::ZERO });
+        }
+    }
 }

@@ -108,6 +108,8 @@ impl Coverage {
             ("courses", geometry(|g| matches!(g, Geometry::Course { .. }))),
             ("discs", geometry(|g| shape(g, |s| matches!(s, Shape::Circle(_))))),
             ("rectangles", geometry(|g| shape(g, |s| matches!(s, Shape::Rectangle(_))))),
+            ("ellipses", geometry(|g| shape(g, is_ellipse))),
+            ("pieces", geometry(|g| shape(g, |s| matches!(s, Shape::Pieces(_))))),
             ("level parts", geometry(|g| shape(g, |s| matches!(s, Shape::Level { .. })))),
             ("bolts, even", geometry(|g| bolts(g) == Some(0))),
             ("bolts, odd", geometry(|g| bolts(g) == Some(1))),
@@ -160,6 +162,10 @@ fn surface(plan: &Plan, looks_down: bool) -> bool {
 
 fn shape(geometry: &Geometry, holds: fn(&Shape) -> bool) -> bool {
     matches!(geometry, Geometry::Plane { shape, .. } if holds(shape))
+}
+
+fn is_ellipse(shape: &Shape) -> bool {
+    matches!(shape, Shape::Circle(circle) if (circle.aspect() - 1.0).abs() > 0.0)
 }
 
 /// Remainder of the number of bolts by two.

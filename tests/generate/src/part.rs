@@ -3,7 +3,8 @@
 use crate::{between, ratio, single};
 use std::f64::consts::{FRAC_PI_2, PI};
 use strake_core::part::{BoltPattern, Bolts, Capacities, DesignState, Geometry, Part};
-use strake_core::shape::{Circle, Rectangle, Shape};
+use strake_core::plan::NUMBERS_MAX;
+use strake_core::shape::{Circle, Face, Pieces, Rectangle, Shape};
 use strake_oracle::random::Random;
 
 /// The tank a part belongs to, in round numbers.
@@ -14,7 +15,12 @@ pub(crate) struct Around {
     pub(crate) outside: u8,
 }
 
-pub(crate) fn part(random: &mut Random, around: Around) -> Part {
+/// The plan's numbers, to which parts append their own.
+pub(crate) type Numbers = heapless::Vec<f32, NUMBERS_MAX>;
+/// Up to here parts with many numbers are made, so that a plan of them fits its bytes.
+const NUMBERS: usize = 120;
+
+pub(crate) fn part(random: &mut Random, around: Around, numbers: &mut Numbers) -> Part {
     let bottom_m = match random.below(4) {
         0 => 0.0,
         1 => between(random, -0.5, 0.0),
@@ -22,6 +28,7 @@ pub(crate) fn part(random: &mut Random, around: Around) -> Part {
     };
     let (geometry, rise_m) = match random.below(3) {
         0 => course(random, bottom_m),
+        1 if numbers.len() < NUMBERS && random.one_in(2) => pieces(random, numbers),
         _ => plane(random),
     };
     let [outward, inward] = capacities(random, &geometry, around);
@@ -66,18 +73,54 @@ fn plane(random: &mut Random) -> (Geometry, f32) {
     let round = random.one_in(2);
     let shape = match (sine > 0.0, round) {
         (false, _) => Shape::Level { area_m2: a * b },
+        (true, true) if random.one_in(3) => {
+            Shape::Circle(Circle::ellipse(a, ratio(random, 0.2, 5.0), sine))
+        }
         (true, true) => Shape::Circle(Circle::new(a, sine)),
         (true, false) => Shape::Rectangle(Rectangle::new(a, b, sine)),
     };
-    let bolts = (!random.one_in(3)).then(|| {
+    let is_ellipse = matches!(&shape, Shape::Circle(circle) if (circle.aspect() - 1.0).abs() > 0.0);
+    let bolts = (!is_ellipse && !random.one_in(3)).then(|| {
         let outline = match shape {
             Shape::Circle(_) => Outline::Disc { radius_m: f64::from(a) },
             _ => Outline::Rectangle { width_m: f64::from(a), half_m: 0.5 * f64::from(b) },
         };
-        Bolts::new(&bolts(random, outline, f64::from(sine)), &shape)
+        let pattern = bolts(random, outline, f64::from(sine));
+        Bolts::new(&pattern, &Face::of(&shape, 0.0))
     });
     let rise_m = shape.rise_m();
     (Geometry::plane(shape, sine, bolts), rise_m)
+}
+
+/// One to six strips on top of each other and up to two discs anywhere beside them; one disc in
+/// two is drawn apart, one in four a hole.
+fn pieces(random: &mut Random, numbers: &mut Numbers) -> (Geometry, f32) {
+    let first = u16::try_from(numbers.len()).unwrap_or(0);
+    let sine = if random.one_in(2) { 1.0 } else { between(random, 0.02, 1.0) };
+    let (strips, discs) = (1 + random.below(6), random.below(3));
+    let mut length_m = 0.0_f32;
+    let mut list: Vec<[f32; 4]> = Vec::new();
+    for _ in 0..strips {
+        let (width_m, upper_m) = (ratio(random, 0.3, 3.0), ratio(random, 0.3, 3.0));
+        let long_m = ratio(random, 0.05, 1.0);
+        list.push([length_m, long_m, width_m, (upper_m - width_m) / long_m]);
+        length_m += long_m;
+    }
+    for _ in 0..discs {
+        // Inside the strips: no hole takes more than a part of them.
+        let radius_m = length_m * between(random, 0.05, 0.2);
+        let middle_m = if random.one_in(2) { 0.5 * radius_m } else { 0.0 };
+        let low_m = between(random, 0.0, 0.4) * length_m;
+        let aspect = 0.3 / length_m * if random.one_in(4) { -1.0 } else { 1.0 };
+        list.push([low_m, radius_m, aspect, middle_m]);
+    }
+    let _ = numbers.extend_from_slice(list.as_flattened());
+    let counts = [strips, discs].map(|count| u8::try_from(count).unwrap_or(0));
+    let bare = Pieces::new([0.0, length_m, 0.0], sine, first, counts);
+    let [area_m2, first_m3] = bare.moments(numbers);
+    let shape = Pieces::new([area_m2, length_m, first_m3 / area_m2], sine, first, counts);
+    let shape = Shape::Pieces(shape);
+    (Geometry::plane(shape, sine, None), shape.rise_m())
 }
 
 #[derive(Clone, Copy)]

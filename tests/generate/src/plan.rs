@@ -1,7 +1,7 @@
 //! Whole plans.
 
 use crate::liquid::{gas, liquid, outside};
-use crate::part::{Around, part};
+use crate::part::{Around, Numbers, part};
 use crate::{between, ratio, single};
 use strake_core::alarm::PARTS_MAX;
 use strake_core::plan::codec::{PLAN_BYTES_MAX, encode};
@@ -26,6 +26,8 @@ pub fn plan(random: &mut Random) -> Plan {
     let gas = gas(random);
     let heaviest = f64::from(liquid.with_layers(liquid.any_product()).high_kg_m3);
     let level = level(random, height_m * above, heaviest);
+    let mut numbers = Numbers::new();
+    let parts = (0..parts).map(|_| part(random, around, &mut numbers)).collect();
     Plan {
         gravity_m_s2: between(random, 9.78, 9.832),
         shell_top_m: single(height_m),
@@ -44,7 +46,8 @@ pub fn plan(random: &mut Random) -> Plan {
             idle_interval_ms: 60_000,
             flush_after_ms: 60_000,
         },
-        parts: (0..parts).map(|_| part(random, around)).collect(),
+        parts,
+        numbers,
     }
 }
 

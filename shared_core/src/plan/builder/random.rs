@@ -2,8 +2,8 @@
 #![expect(clippy::cast_possible_truncation, reason = "figures of the tests fit")]
 
 use super::{
-    GAUGE, band, bolted_disc, bolted_rectangle, course, disc, exact, gas, head_sensor, layer,
-    level_cover, rectangle, surface_sensor, water_tank, with_inward_alarm,
+    GAUGE, band, bolted_disc, bolted_rectangle, course, disc, ellipse, exact, gas, head_sensor,
+    layer, level_cover, rectangle, surface_sensor, water_tank, with_inward_alarm,
 };
 use crate::liquid::truth::Random;
 use crate::liquid::{Band, DensityTable, Outside};
@@ -79,6 +79,10 @@ pub(crate) fn plan(random: &mut Random) -> Plan {
         crate::plan::LevelSensor::Surface => 0.02,
         crate::plan::LevelSensor::Head { .. } => 200.0,
     };
+    for _ in 0..random.below(3) {
+        let bottom_m = random.between(0.0, 2.5) as f32;
+        super::push_pieces(&mut plan, bottom_m, random.between(0.05, 1.0) as f32);
+    }
     for _ in 0..=random.below(6) {
         let mut part = part(random);
         part.outside = (random.bits() as u8) & ((1 << plan.outside.len()) - 1);
@@ -91,7 +95,8 @@ fn part(random: &mut Random) -> Part {
     let bottom_m = random.between(0.0, 2.5) as f32;
     let sine = random.between(0.05, 1.0) as f32;
     let size = random.between(0.1, 1.2) as f32;
-    let mut part = match random.below(6) {
+    let mut part = match random.below(7) {
+        6 => ellipse(bottom_m, size, random.between(0.2, 5.0) as f32, sine),
         0 => course(bottom_m, 2.4, random.between(1.0, 10.0) as f32, 0.3),
         1 => disc(bottom_m, size, sine),
         2 => rectangle(bottom_m, random.between(0.2, 3.0) as f32, size, sine),

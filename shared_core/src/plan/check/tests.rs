@@ -13,11 +13,11 @@ use crate::liquid::truth::Random;
 use crate::liquid::{DensityTable, Outside};
 use crate::part::{BoltPattern, Bolts, DesignState, Geometry, PartLoads};
 use crate::plan::builder::{
-    GAUGE, band, bolted_disc, bolted_rectangle, course, disc, exact, gas, head_sensor, layer,
-    level_cover, plane, reads, rectangle, water_tank, with_inward_alarm,
+    GAUGE, band, bolted_disc, bolted_rectangle, course, disc, ellipse, exact, gas, head_sensor,
+    layer, level_cover, plane, push_pieces, reads, rectangle, water_tank, with_inward_alarm,
 };
 use crate::plan::{LevelSensor, Plan, Reference, SignalKind, TemperaturePlan};
-use crate::shape::{Circle, Rectangle, Shape};
+use crate::shape::{Circle, Face, Pieces, Rectangle, Shape};
 use crate::signal::{Channel, Sight, resolve};
 use proptest::prelude::*;
 
@@ -153,7 +153,9 @@ fn bolts_are_cut_where_their_share_changes_sign() {
     let sound = bolted_disc(0.5, 0.33, 1.0, 28, 0.385);
     let Geometry::Plane { bolts: Some(bolts), .. } = &sound.geometry else { unreachable!() };
     let good = bolts.pattern();
-    let with = |pattern: &BoltPattern| plane(shape, 0.5, 1.0, Some(Bolts::new(pattern, &shape)));
+    let with = |pattern: &BoltPattern| {
+        plane(shape, 0.5, 1.0, Some(Bolts::new(pattern, &Face::of(&shape, 0.0))))
+    };
     let mut plan = water_tank();
     plan.parts[0] = with(&good);
     assert_eq!(plan.check(), Ok(()));
@@ -178,7 +180,7 @@ fn bolts_are_cut_where_their_share_changes_sign() {
     assert_eq!(plan.check(), Ok(()));
     let level = Shape::Level { area_m2: 0.4 };
     let even = BoltPattern { count: 8, per_moment: [-0.5, 0.5], cuts: [None; 2] };
-    plan.parts[0] = plane(level, 3.0, 0.0, Some(Bolts::new(&even, &level)));
+    plan.parts[0] = plane(level, 3.0, 0.0, Some(Bolts::new(&even, &Face::of(&level, 0.0))));
     assert_eq!(plan.check(), Ok(()));
 }
 
@@ -272,6 +274,51 @@ fn numbers(part: &PartLoads<1>) -> Vec<f32> {
             .map(|number| number.lane(0)),
     );
     numbers
+}
+
+/// Slips in the pieces of a shape: each number out of place, and what is stated of the whole.
+#[test]
+fn pieces_that_do_not_make_their_shape() {
+    let mut sound = water_tank();
+    push_pieces(&mut sound, 1.0, 1.0);
+    assert_eq!(sound.check(), Ok(()));
+    let broken = |slip: &dyn Fn(&mut Plan)| {
+        let mut plan = sound.clone();
+        slip(&mut plan);
+        assert_eq!(plan.check(), Err(E::Geometry), "{:?}", plan.numbers);
+    };
+    for place in 0..sound.numbers.len() {
+        for value in [f32::NAN, f32::INFINITY, 300.0, -300.0] {
+            broken(&|p| p.numbers[place] = value);
+        }
+    }
+    // The rectangle between the halves of the obround is left out.
+    broken(&|p| p.numbers[6] = 0.0);
+    broken(&|p| p.numbers.truncate(11));
+    let stated = |slip: &dyn Fn(&mut Pieces)| {
+        broken(&|p| {
+            let Geometry::Plane { shape: Shape::Pieces(pieces), .. } = &mut p.parts[1].geometry
+            else {
+                unreachable!("the part is of pieces");
+            };
+            slip(pieces);
+        });
+    };
+    stated(&|p| p.area_m2 *= 1.01);
+    stated(&|p| p.area_m2 = f32::NAN);
+    stated(&|p| p.centroid_m += 0.01);
+    stated(&|p| p.length_m = 1.2);
+    stated(&|p| p.strips = 3);
+    stated(&|p| p.discs = 2);
+    stated(&|p| p.first = 4);
+    stated(&|p| p.first = 999);
+    let mut plan = water_tank();
+    plan.parts[0] = ellipse(1.0, 0.3, 2.0, 1.0);
+    assert_eq!(plan.check(), Ok(()));
+    for aspect in [0.0, -1.0, 1.1e3, f32::NAN] {
+        plan.parts[0] = ellipse(1.0, 0.3, aspect, 1.0);
+        assert_eq!(plan.check(), Err(E::Geometry), "{aspect}");
+    }
 }
 
 proptest! {

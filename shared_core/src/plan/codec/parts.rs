@@ -2,10 +2,12 @@
 //!
 //! | field | bytes |
 //! | --- | --- |
-//! | kind u8: 0 course, 1 disc, 2 rectangle, 3 level shape | 1 |
+//! | kind u8: 0 course, 1 disc, 2 rectangle, 3 level shape, 4 ellipse, 5 pieces | 1 |
 //! | bottom, top f32; outside mask u8 | 9 |
 //! | course: half diameter, design point, height f32 | 12 |
 //! | disc: radius, sine; rectangle: width, length, sine; level: area; f32 | 4 to 12 |
+//! | ellipse: half length up the slope, width over length, sine f32 | 12 |
+//! | pieces: area, length, centroid, sine f32; strips, discs u8; 4 f32 each | 18 + 16 n |
 //! | plane parts: bolts u16 (0 none), then 2 f32 and two cuts (u8 0 or 1, 3 f32) | 2 to 36 |
 //! | capacities outward, then inward: mask u8, f32 for each set bit (pressure, hoop, force, bolt) | |
 //! | design states u8, 3 f32 each | |
@@ -13,14 +15,21 @@
 use super::{PlanError, count, flag, take_list};
 use crate::cursor::{Fetch, Sink, Source};
 use crate::part::{BoltPattern, Bolts, Capacities, DesignState, Geometry, Part};
-use crate::shape::{Circle, Rectangle, Shape};
+use crate::plan::NUMBERS_MAX;
+use crate::shape::{Circle, Face, Pieces, Rectangle, Shape};
+use heapless::Vec;
 
-pub(super) fn put(sink: &mut Sink<'_>, part: &Part) -> Result<(), PlanError> {
+/// The plan's numbers, to which parts append their own.
+type Numbers = Vec<f32, NUMBERS_MAX>;
+
+pub(super) fn put(sink: &mut Sink<'_>, part: &Part, numbers: &[f32]) -> Result<(), PlanError> {
     let kind = match &part.geometry {
         Geometry::Course { .. } => 0,
-        Geometry::Plane { shape: Shape::Circle(_), .. } => 1,
+        Geometry::Plane { shape: Shape::Circle(circle), .. } if is_disc(circle) => 1,
         Geometry::Plane { shape: Shape::Rectangle(_), .. } => 2,
         Geometry::Plane { shape: Shape::Level { .. }, .. } => 3,
+        Geometry::Plane { shape: Shape::Circle(_), .. } => 4,
+        Geometry::Plane { shape: Shape::Pieces(_), .. } => 5,
     };
     sink.u8(kind);
     sink.f32(part.bottom_m);
@@ -36,6 +45,9 @@ pub(super) fn put(sink: &mut Sink<'_>, part: &Part) -> Result<(), PlanError> {
             match shape {
                 Shape::Circle(circle) => {
                     sink.f32(circle.radius_m());
+                    if kind == 4 {
+                        sink.f32(circle.aspect());
+                    }
                     sink.f32(*sine);
                 }
                 Shape::Rectangle(rectangle) => {
@@ -43,6 +55,7 @@ pub(super) fn put(sink: &mut Sink<'_>, part: &Part) -> Result<(), PlanError> {
                     sink.f32(*sine);
                 }
                 Shape::Level { area_m2 } => sink.f32(*area_m2),
+                Shape::Pieces(pieces) => put_pieces(sink, pieces, numbers),
             }
             put_bolts(sink, bolts.as_ref());
         }
@@ -58,12 +71,38 @@ pub(super) fn put(sink: &mut Sink<'_>, part: &Part) -> Result<(), PlanError> {
     Ok(())
 }
 
-pub(super) fn take<F: Fetch>(source: &mut Source<F>) -> Option<Part> {
+/// A ratio that is not a number makes no disc.
+fn is_disc(circle: &Circle) -> bool {
+    (circle.aspect() - 1.0).abs() <= 0.0
+}
+
+fn put_pieces(sink: &mut Sink<'_>, pieces: &Pieces, numbers: &[f32]) {
+    for number in [pieces.area_m2, pieces.length_m, pieces.centroid_m, pieces.sine] {
+        sink.f32(number);
+    }
+    sink.u8(pieces.strips);
+    sink.u8(pieces.discs);
+    pieces.pieces(numbers).iter().copied().flatten().flatten().for_each(|&one| sink.f32(one));
+}
+
+fn take_pieces<F: Fetch>(source: &mut Source<F>, numbers: &mut Numbers) -> Option<(Shape, f32)> {
+    let sizes = [source.f32()?, source.f32()?, source.f32()?];
+    let sine = source.f32()?;
+    let counts = [source.u8()?, source.u8()?];
+    let first = u16::try_from(numbers.len()).ok()?;
+    let pieces = Pieces::new(sizes, sine, first, counts);
+    for _ in 0..pieces.count() {
+        numbers.push(source.f32()?).ok()?;
+    }
+    Some((Shape::Pieces(pieces), sine))
+}
+
+pub(super) fn take<F: Fetch>(source: &mut Source<F>, numbers: &mut Numbers) -> Option<Part> {
     let kind = source.u8()?;
     let bottom_m = source.f32()?;
     let top_m = source.f32()?;
     let outside = source.u8()?;
-    let geometry = take_geometry(source, kind)?;
+    let geometry = take_geometry(source, kind, numbers)?;
     let outward = take_capacities(source)?;
     let inward = take_capacities(source)?;
     let designed_for = take_list(source, |source| {
@@ -76,7 +115,11 @@ pub(super) fn take<F: Fetch>(source: &mut Source<F>) -> Option<Part> {
     Some(Part { geometry, bottom_m, top_m, outward, inward, designed_for, outside })
 }
 
-fn take_geometry<F: Fetch>(source: &mut Source<F>, kind: u8) -> Option<Geometry> {
+fn take_geometry<F: Fetch>(
+    source: &mut Source<F>,
+    kind: u8,
+    numbers: &mut Numbers,
+) -> Option<Geometry> {
     let (shape, sine) = match kind {
         0 => {
             return Some(Geometry::Course {
@@ -94,9 +137,15 @@ fn take_geometry<F: Fetch>(source: &mut Source<F>, kind: u8) -> Option<Geometry>
             (Shape::Rectangle(Rectangle::new(width_m, length_m, sine)), sine)
         }
         3 => (Shape::Level { area_m2: source.f32()? }, 0.0),
+        4 => {
+            let (half_m, aspect, sine) = (source.f32()?, source.f32()?, source.f32()?);
+            (Shape::Circle(Circle::ellipse(half_m, aspect, sine)), sine)
+        }
+        5 => take_pieces(source, numbers)?,
         _ => return None,
     };
-    let bolts = take_bolts(source)?.map(|pattern| Bolts::new(&pattern, &shape));
+    let face = Face { shape: &shape, numbers, bottom_m: 0.0 };
+    let bolts = take_bolts(source)?.map(|pattern| Bolts::new(&pattern, &face));
     Some(Geometry::plane(shape, sine, bolts))
 }
 

@@ -4,8 +4,8 @@ use super::{Fetch, PLAN_BYTES_MAX, decode, decode_into, encode, names};
 use crate::liquid::truth::Random;
 use crate::part::DesignState;
 use crate::plan::builder::{
-    bolted_disc, course, exact, gas, head_sensor, layer, level_cover, on_loop, random, rectangle,
-    surface_sensor, water_tank, with_inward_alarm,
+    bolted_disc, course, ellipse, exact, gas, head_sensor, layer, level_cover, on_loop,
+    push_pieces, random, rectangle, surface_sensor, water_tank, with_inward_alarm,
 };
 use crate::plan::{Plan, PlanError, PlanHeader, Reference};
 use proptest::prelude::*;
@@ -84,13 +84,17 @@ fn every_kind_of_thing_comes_back() {
             rectangle(1.0, 0.5, 0.7, 0.8),
             level_cover(9.0, 0.3),
             bolted_disc(0.5, 0.33, 1.0, 28, 0.385),
+            ellipse(0.5, 0.3, 0.5, 0.9),
         ] {
             part.inward.pressure_pa = Some(1_500.0);
             part.designed_for.push(design).unwrap();
             plan.parts.push(part).unwrap();
         }
+        push_pieces(&mut plan, 1.0, 0.7);
+        push_pieces(&mut plan, 0.0, 1.0);
         let (_, again) = decode(&encoded(&plan)).unwrap();
         assert_eq!(again, plan);
+        plan.numbers.clear();
     }
 }
 
