@@ -134,5 +134,5 @@ impl Replay {
 }
 
 fn plan_of(plans: &Plans, fingerprint: u64) -> Option<&Plan> {
-    plans.iter().find(|sealed| sealed.fingerprint == fingerprint).map(|sealed| &sealed.plan)
+    plans.iter().find(|sealed| sealed.fingerprint == fingerprint).map(|sealed| &*sealed.plan)
 }

@@ -22,14 +22,14 @@ pub(super) const HIGH_MM: u16 = 9_000;
 /// A plan with its bytes.
 #[derive(Debug)]
 pub(super) struct Sealed {
-    pub(super) plan: Plan,
+    pub(super) plan: Box<Plan>,
     pub(super) bytes: Vec<u8>,
     pub(super) serial: u64,
     pub(super) fingerprint: u64,
 }
 
 pub(super) fn sealed(serial: u64, capacity_pa: f32) -> Result<Sealed, Box<dyn Error>> {
-    let plan = plan(capacity_pa);
+    let plan = Box::new(plan(capacity_pa));
     let header = PlanHeader { serial, ..PlanHeader::default() };
     let mut bytes = vec![0; PLAN_BYTES_MAX];
     let used = encode(&header, &plan, "water", &["course", "hatch"], &mut bytes)?;
