@@ -3,6 +3,7 @@
 
 mod anchors;
 mod bench;
+mod chained;
 mod controls;
 mod cuts;
 mod density;
