@@ -30,8 +30,13 @@ use strake_core::wire::Text;
 
 /// Where waiting samples stand in retained memory.
 const WAITING_AREA: Range<usize> = 0..1024;
-/// Where the number of starts without an entry stands behind them.
-const STARTS_AT: usize = 1024;
+/// Where the number of starts without an entry stands behind them, with its complement.
+const STARTS_AT: usize = WAITING_AREA.end;
+/// Bytes of that number.
+const STARTS_BYTES: usize = 4;
+/// Bytes of retained memory that the device makes use of. A board that offers fewer loses waiting
+/// samples in a warm restart, or counts no starts.
+pub const RETAINED_BYTES: usize = STARTS_AT + STARTS_BYTES;
 
 /// The plan in force.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]

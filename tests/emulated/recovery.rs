@@ -1,10 +1,12 @@
 //! The device after what should not happen: a hang, a fault, damaged flash.
 
 use strake_core::alarm::FaultCause;
+use strake_core::journal::{Entry, Item, SectorReader};
 
 use crate::device::{ACT_NOW, CANNOT_SEE, HEALTHY, Site, WELL_MM, image, sealed};
 use crate::flash_file::{FlashFile, PLANS_OFFSET};
-use crate::machine::Setup;
+use crate::machine::{PATIENCE, Setup};
+use crate::sensor::Mood;
 use crate::{Outcome, Test, hold, same};
 
 pub(crate) const TESTS: &[Test] = tests![
@@ -14,6 +16,7 @@ pub(crate) const TESTS: &[Test] = tests![
     a_damaged_journal_is_told_and_the_alarm_kept,
     a_destroyed_journal_is_told,
     start_up_finishes_on_random_flash,
+    starts_without_a_sample_are_counted,
 ];
 
 /// `b .`: a loop without end.
@@ -32,7 +35,7 @@ fn end_at(code: (u16, u16), expected: &str) -> Outcome {
     site.raise_alarm()?;
     let address = image.instruction(code)?;
     site.machine.debugger()?.halted(|debugger| debugger.jump(address))?;
-    let deadline = std::time::Instant::now() + 4 * crate::machine::PATIENCE;
+    let deadline = std::time::Instant::now() + 4 * PATIENCE;
     while site.client.hello().is_err() {
         hold(std::time::Instant::now() < deadline, "the device did not come back")?;
     }
@@ -136,4 +139,30 @@ fn start_up_finishes_on_random_flash() -> Outcome {
         site.replayed_identically()?;
     }
     Ok(())
+}
+
+/// Retained memory has room for the count behind the samples that wait.
+fn starts_without_a_sample_are_counted() -> Outcome {
+    const STARTS: u16 = 4;
+    let mut site = Site::commissioned(Setup::new(&image()?))?;
+    site.machine.sensor().set_mood(Mood::Silent);
+    for _ in 0..STARTS {
+        site.machine.reset()?;
+        // The device asks once it has started; a sensor that is silent holds up the first sample.
+        let (asked, since) = (site.machine.sensor().questions(), std::time::Instant::now());
+        while site.machine.sensor().questions() == asked {
+            hold(since.elapsed() < PATIENCE, "the device did not start")?;
+            std::thread::sleep(std::time::Duration::from_millis(1));
+        }
+    }
+    site.machine.sensor().set_mood(Mood::Well);
+    site.greet()?;
+    site.wait_for("a reading", |status| status.level_reading == 1)?;
+    let sector = site.machine.flash().read(0, 4096)?;
+    let items = SectorReader::new(&sector).map_err(|error| format!("{error:?}"))?;
+    let starts = items.filter_map(|item| match item {
+        Item::Entry(Entry::StartUp { boot, count, .. }) => Some((boot, count)),
+        _ => None,
+    });
+    same(&starts.collect::<Vec<_>>(), &vec![(1, 1), (2, STARTS)])
 }

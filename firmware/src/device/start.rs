@@ -5,7 +5,7 @@
 
 use super::faults::FaultLog;
 use super::plans::load;
-use super::{Device, InForce, Memory, STARTS_AT, WAITING_AREA};
+use super::{Device, InForce, Memory, STARTS_AT, STARTS_BYTES, WAITING_AREA};
 use crate::board::{Board, Clock, Hardware, ResetCause, RetainedMemory};
 use crate::journal::{Journal, Recovery, Restore, Waiting};
 use crate::plan_store::PlanStore;
@@ -143,7 +143,7 @@ impl<B: Board> Device<B> {
 
     /// Starts before this one without an entry, as far as retained memory has them.
     fn starts_untold(&self, cause: ResetCause) -> u16 {
-        let mut bytes = [0; 4];
+        let mut bytes = [0; STARTS_BYTES];
         self.retained.read(STARTS_AT, &mut bytes);
         let [c0, c1, n0, n1] = bytes;
         let count = u16::from_le_bytes([c0, c1]);
@@ -154,7 +154,8 @@ impl<B: Board> Device<B> {
     /// Keeps the number with its complement, which tells it from what RAM holds by chance.
     fn keep_starts(&mut self, count: u16) {
         let [c0, c1] = count.to_le_bytes();
-        self.retained.write(STARTS_AT, &[c0, c1, !c0, !c1]);
+        let bytes: [u8; STARTS_BYTES] = [c0, c1, !c0, !c1];
+        self.retained.write(STARTS_AT, &bytes);
     }
 }
 

@@ -15,14 +15,13 @@ use strake_core::wire::Text;
 use strake_firmware::board::{
     Board, Clock, CountSource, Hardware, ResetCause, RetainedMemory, SensorError, Watchdog,
 };
+use strake_firmware::device::RETAINED_BYTES;
 use strake_firmware::rooms::Rooms;
 
 /// Bytes of a program word: as on the emulated board and the chip's own flash.
 pub const WORD_BYTES: usize = 4;
 /// Plan slots, one sector each.
 const PLAN_SECTORS: usize = 5;
-/// Bytes of retained RAM.
-const RETAINED_BYTES: usize = 1028;
 
 /// The simulated board.
 #[derive(Debug)]

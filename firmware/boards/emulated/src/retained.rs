@@ -8,11 +8,12 @@
 use core::mem::MaybeUninit;
 
 use strake_firmware::board::{ResetCause, RetainedMemory};
+use strake_firmware::device::RETAINED_BYTES;
 
 use crate::register::Register;
 
-/// Bytes for the application.
-pub const CAPACITY: usize = 1024;
+/// Bytes for the application, in whole words.
+pub const CAPACITY: usize = RETAINED_BYTES.next_multiple_of(4);
 
 const SET_UP: u32 = 0x5354_524B;
 
