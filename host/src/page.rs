@@ -57,11 +57,16 @@ impl Page {
     }
 }
 
-/// A number of things: `1 sector`, `2 sectors`.
+/// A number of things: `1 sector`, `2 sectors`, `2 hashes`.
 #[must_use]
 pub fn counted(count: impl Into<u64>, thing: &str) -> String {
     let count = count.into();
-    format!("{count} {thing}{}", if count == 1 { "" } else { "s" })
+    let ending = match count {
+        1 => "",
+        _ if thing.ends_with("sh") => "es",
+        _ => "s",
+    };
+    format!("{count} {thing}{ending}")
 }
 
 /// Breaks a text at blanks into lines of at most `width` characters; a longer word stands alone.

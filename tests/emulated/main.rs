@@ -21,6 +21,7 @@ mod machine;
 mod operation;
 mod panics;
 mod plugin;
+mod program;
 mod qmp;
 mod recovery;
 mod sensor;
@@ -64,6 +65,7 @@ fn main() {
         bits::TESTS,
         cuts::TESTS,
         operation::TESTS,
+        program::TESTS,
         recovery::TESTS,
         footprint::TESTS,
         panics::TESTS,

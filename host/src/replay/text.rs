@@ -3,7 +3,7 @@
 use super::document::utc;
 use super::{AlarmLine, PartSummary, Replay};
 use crate::assess::{FIELD_CHECK, PROVISIONAL};
-use crate::page::Page;
+use crate::page::{Page, counted};
 use crate::units::Quantity::Length;
 use crate::units::{UnitSystem, format};
 use crate::verify;
@@ -29,9 +29,12 @@ fn verdict(replay: &Replay, page: &mut Page) {
     let verdict = &replay.engine.verdict;
     let (hashes, moves) = (verdict.hashes_compared, verdict.moves_compared);
     if verdict.identical() {
+        let whole = replay.damage.is_empty() && replay.missing_plans.is_empty();
         page.heading(&format!(
-            "identical: the replay decides as the device did ({hashes} hashes and {moves} alarm \
-             moves compared)"
+            "identical{}: the replay decides as the device did ({} and {} compared)",
+            if whole { "" } else { " in what could be read" },
+            counted(hashes, "hash"),
+            counted(moves, "alarm move")
         ));
     } else if let Some(first) = &verdict.first_difference {
         page.heading("NOT IDENTICAL: the replay decides otherwise than the device did");
@@ -43,7 +46,10 @@ fn verdict(replay: &Replay, page: &mut Page) {
         let count = verdict.not_compared;
         page.paragraph(
             "  ",
-            &format!("{count} samples could not be judged: their plan or state is missing"),
+            &format!(
+                "{} could not be judged: their plan or state is missing",
+                counted(count, "sample")
+            ),
         );
     }
     for print in &replay.missing_plans {
@@ -54,7 +60,7 @@ fn verdict(replay: &Replay, page: &mut Page) {
     }
     verify::text::damage(&replay.damage, page);
     if replay.gaps > 0 {
-        page.line(&format!("  {} holes in the journal", replay.gaps));
+        page.line(&format!("  {} in the journal", counted(replay.gaps, "hole")));
     }
 }
 
@@ -68,8 +74,11 @@ fn what_happened(replay: &Replay, page: &mut Page) {
     page.paragraph(
         "",
         &format!(
-            "{} samples {span}, {} of them with a measured level; {} starts, {} acknowledgements.",
-            summary.samples, summary.measured, summary.starts, summary.acknowledgements
+            "{} {span}, {} of them with a measured level; {}, {}.",
+            counted(summary.samples, "sample"),
+            summary.measured,
+            counted(summary.starts, "start"),
+            counted(summary.acknowledgements, "acknowledgement")
         ),
     );
     page.blank();
@@ -88,7 +97,10 @@ fn what_happened(replay: &Replay, page: &mut Page) {
     for line in summary.faults.values() {
         let when =
             utc(line.first_utc_s).unwrap_or_else(|| format!("tick {} ms", line.first.tick_ms));
-        page.paragraph("  ", &format!("{}: {} times, first {when}", line.cause, line.count));
+        page.paragraph(
+            "  ",
+            &format!("{}: {}, first {when}", line.cause, counted(line.count, "time")),
+        );
     }
     page.blank();
     page.heading("Highest utilisation of each part (the bound, and the estimate with it)");
