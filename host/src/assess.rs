@@ -13,6 +13,7 @@ mod part;
 mod request;
 pub mod text;
 
+pub use centre::centre;
 pub use desk::Desk;
 pub use document::{Capacity, Centre, Document, Judgement, Loads, NotJudged, PartRow, State};
 pub use notes::{FIELD_CHECK, PROVISIONAL, assumed};

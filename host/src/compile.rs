@@ -13,10 +13,12 @@ mod level;
 mod liquid;
 mod number;
 mod part;
+mod shape;
 mod site;
 
 pub(crate) use bolts::centroid_cut;
 pub use contents::Contents;
+pub use shape::{Numbers, plane_shape};
 pub(crate) use site::{HEIGHT_MAX_M, floor_m};
 pub use strake_core::plan_slot::fingerprint;
 
@@ -90,7 +92,7 @@ fn build(file: &TankFile, contents: &Contents, faults: &mut Faults) -> Plan {
     device::alarm(file, &mut plan);
     device::logging(file, &mut plan);
     for part in &file.parts {
-        if let Some(part) = part::part(file, part, faults)
+        if let Some(part) = part::part(file, part, &mut plan.numbers, faults)
             && plan.parts.push(part).is_err()
         {
             faults.too_many(file.name.span, "parts", crate::tank::MAX_PARTS);

@@ -52,6 +52,7 @@ const KEYS: [(&str, &[&str]); 6] = [
             "force_n",
             "centre_of_pressure_m",
             "centre_of_pressure_slope_m",
+            "centre_of_pressure_sideways_m",
             "moment_centroid_n_m",
             "bolt_n",
         ],
@@ -88,7 +89,7 @@ fn check(place: &str, value: &Value, seen: &mut Vec<String>) {
 #[test]
 fn the_examples_together_show_every_documented_key_and_no_other() {
     let mut seen = Vec::new();
-    for name in ["brine_day_tank", "laboratory_tank", "rinse_basin"] {
+    for name in ["brine_day_tank", "laboratory_tank", "rinse_basin", "odd_shapes"] {
         let (_, value) = document(&["assess", &format!("configs/{name}.toml"), "--level", "0.6 m"]);
         assert_eq!(value["schema"], "strake.assess/1");
         check("", &value, &mut seen);
@@ -210,7 +211,7 @@ fn the_text_of_the_brine_day_tank_to_the_letter() {
 
 #[test]
 fn pages_keep_to_a_hundred_columns_in_both_systems() {
-    for name in ["brine_day_tank", "laboratory_tank", "rinse_basin"] {
+    for name in ["brine_day_tank", "laboratory_tank", "rinse_basin", "odd_shapes"] {
         for units in ["si", "us"] {
             let text = run(&["assess", &format!("configs/{name}.toml"), "--units", units]).stdout;
             for line in text.lines() {

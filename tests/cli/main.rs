@@ -2,6 +2,7 @@
 
 mod assess;
 mod errors;
+mod odd_shapes;
 mod seal;
 mod streams;
 mod tank_text;

@@ -2,11 +2,13 @@
 
 use crate::cases::holds;
 use crate::core_engine::{
-    at_head, at_level, course, design_of, loads_of, narrow, part_of, plan_of, wall,
+    at_head, at_level, course, design_of, loads_of, loads_with, narrow, part_of, plan_of, plane_of,
+    wall,
 };
+use strake::assess::centre;
 use strake_core::lane::Lane;
 use strake_core::liquid::Band;
-use strake_core::part::{Capacities, Part, evaluate};
+use strake_core::part::{Capacities, Part, acting, evaluate};
 use strake_core::signal::{LoopClass, classify};
 use strake_oracle::cases::{
     Answer, BoundAsk, CourseAsk, DesignedForAsk, PlaneAsk, Plate, Problem, Reason, Row, edge_rows,
@@ -21,9 +23,9 @@ use strake_oracle::plane::PlanePart;
 const ALLOWANCE: f64 = 4e-6;
 
 /// Rows answered by the core, by topic.
-const OPEN_ANSWERED: &[(&str, usize)] = &[("hatch", 5), ("plane", 34), ("signal", 3)];
+const OPEN_ANSWERED: &[(&str, usize)] = &[("hatch", 5), ("plane", 45), ("signal", 3)];
 const OWN_ANSWERED: &[(&str, usize)] =
-    &[("bound", 5), ("density", 3), ("hatch", 3), ("plane", 4), ("shell", 5)];
+    &[("bound", 5), ("density", 3), ("hatch", 4), ("plane", 8), ("shell", 5)];
 const EDGE_ANSWERED: &[(&str, usize)] =
     &[("bound", 10), ("designed_for", 6), ("hatch", 2), ("plane", 62), ("shell", 6), ("signal", 5)];
 
@@ -67,8 +69,8 @@ fn loop_class(current_a: f64) -> &'static str {
 }
 
 fn plane(plane: &PlanePart, liquid: &Liquid, ask: &PlaneAsk) -> Result<f64, Reason> {
-    let part = part_of(plane)?;
-    let loads = loads_of(&part, liquid)?.estimate;
+    let (part, numbers) = part_of(plane)?;
+    let loads = loads_with(&part, &numbers, liquid)?.estimate;
     let force = f64::from(loads.force_n.lane(0));
     let moment = f64::from(loads.moment_centroid_n_m.lane(0));
     let rise = plane.rise();
@@ -87,9 +89,21 @@ fn plane(plane: &PlanePart, liquid: &Liquid, ask: &PlaneAsk) -> Result<f64, Reas
         PlaneAsk::CentreBelowCentroid => down()? * rise,
         PlaneAsk::CentreHeight => plane.centroid_height() - down()? * rise,
         PlaneAsk::CentreDepth => liquid.surface_m() - plane.centroid_height() + down()? * rise,
+        PlaneAsk::CentreSideways => {
+            let (plan, level_m) = plan_of(liquid)?;
+            let states = acting(&plan, &part, &at_level(&plan, level_m));
+            let stated = plane_of(plane)?;
+            let moment = loads.moment_centroid_n_m.lane(0);
+            centre(&stated, &states.estimate, loads.force_n.lane(0), moment)
+                .centre_of_pressure_sideways_m
+                .ok_or("no centre of pressure")?
+        }
         PlaneAsk::Moment(line) => {
             let about = moment + force * (centroid_s - line.s);
             if line.upper_out { about } else { -about }
+        }
+        PlaneAsk::StripBottom(..) | PlaneAsk::StripCentre(..) => {
+            return Err("a layout of strips, not a load");
         }
         _ => return Err("hinges, latches and pivots are not offered by this version"),
     })

@@ -1,14 +1,19 @@
 //! Problems put to the core: the plan's own way from a reading to the loads, in f32.
 
+use strake::compile::{self, plane_shape};
+use strake::tank;
 use strake_core::lane::Lane;
 use strake_core::liquid::{Band, Gas, Layer, Outside, Readings, States, states};
 use strake_core::part::{Capacities, DesignState, Geometry, Part, PartLoads, evaluate};
-use strake_core::plan::{LevelSensor, Plan, Reference};
-use strake_core::shape::{Circle, Rectangle, Shape};
+use strake_core::plan::{LevelSensor, NUMBERS_MAX, Plan, Reference};
+use strake_core::shape::{Rectangle, Shape};
 use strake_oracle::cases::Reason;
 use strake_oracle::liquid::Liquid;
 use strake_oracle::plane::PlanePart;
 use strake_oracle::shape::Shape as Outline;
+
+/// The plan's numbers.
+pub(crate) type Numbers = heapless::Vec<f32, NUMBERS_MAX>;
 
 #[expect(clippy::cast_possible_truncation, reason = "the core takes f32")]
 pub(crate) fn narrow(value: f64) -> f32 {
@@ -72,23 +77,52 @@ pub(crate) fn at_head(plan: &Plan, at_m: f64, [estimate, low, high]: [f64; 3]) -
     states(&plan, &readings)
 }
 
-/// A plane part of the core; `None` for shapes and holes that it does not have yet.
-pub(crate) fn part_of(plane: &PlanePart) -> Result<Part, Reason> {
-    if !plane.holes.is_empty() {
-        return Err("shape not offered by this version");
-    }
-    let sine = narrow(plane.rise());
-    let shape = match plane.shape {
-        Outline::Circle { diameter } => Shape::Circle(Circle::new(narrow(0.5 * diameter), sine)),
-        Outline::Rectangle { width, length } => {
-            Shape::Rectangle(Rectangle::new(narrow(width), narrow(length), sine))
+/// An outline as a tank file states it.
+fn outline_of(outline: &Outline) -> Result<tank::Shape, Reason> {
+    use tank::Shape::{Circle, Ellipse, Obround, Polygon, Rectangle, Trapezoid, Triangle};
+    Ok(match *outline {
+        Outline::Circle { diameter } => Circle { diameter_m: diameter },
+        Outline::Ellipse { width, length } => Ellipse { width_m: width, length_m: length },
+        Outline::Obround { width, length } => Obround { width_m: width, length_m: length },
+        Outline::Rectangle { width, length } => Rectangle { width_m: width, length_m: length },
+        Outline::Triangle { base, height, apex_up } => {
+            Triangle { base_m: base, height_m: height, apex_up }
         }
-        _ => return Err("shape not offered by this version"),
+        Outline::Trapezoid { top, bottom, length } => {
+            Trapezoid { top_m: top, bottom_m: bottom, length_m: length }
+        }
+        Outline::Polygon { ref corners } => {
+            let corners: Vec<[f64; 2]> = corners.iter().map(|&(x, s)| [x, s]).collect();
+            Polygon(tank::Corners::new(&corners).ok_or("more corners than a file may have")?)
+        }
+        Outline::HalfDisc { .. } => return Err("half discs are no outline of a tank file"),
+    })
+}
+
+/// A flat part as a tank file states it.
+pub(crate) fn plane_of(part: &PlanePart) -> Result<tank::Plane, Reason> {
+    let hole = match &part.holes[..] {
+        [] => None,
+        [hole] => {
+            let lowest = hole.origin.1 + hole.shape.extent().0 - part.shape.extent().0;
+            let shape = outline_of(&hole.shape)?;
+            Some(tank::Hole { shape, at_m: [hole.origin.0, lowest], carried_elsewhere: true })
+        }
+        _ => return Err("one hole at most"),
     };
-    let shape = if sine > 0.0 { shape } else { Shape::Level { area_m2: shape.area_m2() } };
+    let shape = outline_of(&part.shape)?;
+    Ok(tank::Plane::standing(shape, hole, part.slope_deg, part.heights().0))
+}
+
+/// A flat part of the core by the compiler's own way, with its numbers.
+pub(crate) fn part_of(plane: &PlanePart) -> Result<(Part, Numbers), Reason> {
+    let stated = plane_of(plane)?;
+    let mut numbers = Numbers::new();
+    let shape = plane_shape(&stated, &mut compile::Numbers { list: &mut numbers })
+        .ok_or("more numbers than a plan holds")?;
     let bottom_m = narrow(plane.heights().0);
     let top_m = bottom_m + shape.rise_m();
-    Ok(bare(Geometry::plane(shape, sine, None), bottom_m, top_m))
+    Ok((bare(Geometry::plane(shape, narrow(stated.sine()), None), bottom_m, top_m), numbers))
 }
 
 /// A course judged at one height.
@@ -121,7 +155,17 @@ fn bare(geometry: Geometry, bottom_m: f32, top_m: f32) -> Part {
 
 /// The loads of a part under a liquid.
 pub(crate) fn loads_of(part: &Part, liquid: &Liquid) -> Result<PartLoads<1>, Reason> {
-    let (plan, level_m) = plan_of(liquid)?;
+    loads_with(part, &Numbers::new(), liquid)
+}
+
+/// The loads of a part with numbers of its own under a liquid.
+pub(crate) fn loads_with(
+    part: &Part,
+    numbers: &Numbers,
+    liquid: &Liquid,
+) -> Result<PartLoads<1>, Reason> {
+    let (mut plan, level_m) = plan_of(liquid)?;
+    plan.numbers.clone_from(numbers);
     Ok(evaluate(&plan, part, &at_level(&plan, level_m)))
 }
 

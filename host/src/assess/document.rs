@@ -96,6 +96,9 @@ pub struct Centre {
     pub centre_of_pressure_m: Option<f64>,
     /// From the centroid down the slope.
     pub centre_of_pressure_slope_m: Option<f64>,
+    /// Sideways, in the coordinates of the part's outline; only where its sides may differ.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub centre_of_pressure_sideways_m: Option<f64>,
 }
 
 /// One capacity.

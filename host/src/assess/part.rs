@@ -82,7 +82,7 @@ fn moments(
     let (Geometry::Plane { shape, .. }, Some(plane)) = (&part.geometry, plane) else {
         return [0.0; 3];
     };
-    let Some([y_m, area_m2, static_m3]) = centroid_cut(&plane.shape, plane.sine()) else {
+    let Some([y_m, area_m2, static_m3]) = centroid_cut(plane) else {
         return [estimate; 3];
     };
     let face = Face { shape, numbers, bottom_m: part.bottom_m };

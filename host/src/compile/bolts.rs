@@ -5,8 +5,8 @@
 //! changes sign at the kern line `s = -R² / (2 s_i)`.
 
 use super::number::single;
-use crate::tank::{Bolts, FirstBolt, Shape};
-use std::f64::consts::{FRAC_PI_2, PI};
+use crate::tank::{Bolts, FirstBolt, Pieces, Plane, Shape};
+use std::f64::consts::PI;
 use strake_core::part::BoltPattern;
 
 /// The bolts of a cover on a slope with the sine `sine`; zero for a level one, whose even pressure
@@ -43,25 +43,28 @@ fn extremes(count: u32, first: FirstBolt) -> [f64; 2] {
 /// the lowest point (m), area (m²) and first moment of area (m³). `None` when the line misses the
 /// shape, or the shape is level.
 fn cut(shape: &Shape, sine: f64, s_m: f64) -> Option<[f32; 3]> {
-    let half_m = 0.5 * shape.length_m();
-    if sine <= 0.0 || s_m.abs() >= half_m {
-        return None;
-    }
-    let (area_m2, static_m3) = match *shape {
-        Shape::Circle { diameter_m } => {
-            let a = 0.5 * diameter_m;
-            let t = s_m / a;
-            let chord = (1.0 - t * t).sqrt();
-            (a * a * (FRAC_PI_2 + t * chord + t.asin()), -2.0 / 3.0 * (a * chord).powi(3))
-        }
-        Shape::Rectangle { width_m, .. } => {
-            (width_m * (s_m + half_m), 0.5 * width_m * (s_m * s_m - half_m * half_m))
-        }
-    };
-    Some([single((s_m + half_m) * sine), single(area_m2), single(static_m3)])
+    let (length_m, centroid_m) = (shape.length_m(), shape.centroid_m()[1]);
+    below(&shape.pieces(), sine, [length_m, centroid_m], s_m)
 }
 
-/// The lower half of a shape: where the weighting of the moment about the centroid changes sign.
-pub(crate) fn centroid_cut(shape: &Shape, sine: f64) -> Option<[f32; 3]> {
-    cut(shape, sine, 0.0)
+/// The same of a shape of given pieces, length and height of the centroid up the slope.
+fn below(
+    pieces: &Pieces,
+    sine: f64,
+    [length_m, centroid_m]: [f64; 2],
+    s_m: f64,
+) -> Option<[f32; 3]> {
+    let up_m = s_m + centroid_m;
+    if sine <= 0.0 || up_m <= 0.0 || up_m >= length_m {
+        return None;
+    }
+    let [area_m2, first_m3] = pieces.below(up_m);
+    let static_m3 = first_m3 - centroid_m * area_m2;
+    Some([single(up_m * sine), single(area_m2), single(static_m3)])
+}
+
+/// What lies below the centroid: there the weighting of the moment about it changes its sign.
+pub(crate) fn centroid_cut(plane: &Plane) -> Option<[f32; 3]> {
+    let sizes = [plane.shape.length_m(), plane.centroid_up_m()];
+    below(&plane.pieces(), plane.sine(), sizes, 0.0)
 }

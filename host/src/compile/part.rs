@@ -3,24 +3,36 @@
 use super::bolts;
 use super::faults::Faults;
 use super::number::{located, single};
+use super::shape::{Numbers, plane_shape};
 use super::site::HEIGHTS_M;
 use crate::tank::{
-    Capacity, Code, Course, Hatch, Located, Part as Stated, Plane, Rating, Shape as Outline,
-    TankFile, Vessel,
+    Capacity, Code, Course, Hatch, Located, Part as Stated, Plane, Rating, TankFile, Vessel,
 };
 use crate::units::Quantity::Length;
+use heapless::Vec;
 use strake_core::part::{Bolts, Capacities, DESIGN_STATES_MAX, DesignState, Geometry, Part};
-use strake_core::shape::{Circle, Face, Rectangle, Shape};
+use strake_core::plan::NUMBERS_MAX;
+use strake_core::shape::Face;
 
 /// The part as the plan holds it; `None` with a finding when it cannot.
-pub(super) fn part(file: &TankFile, stated: &Stated, faults: &mut Faults) -> Option<Part> {
+pub(super) fn part(
+    file: &TankFile,
+    stated: &Stated,
+    numbers: &mut Vec<f32, NUMBERS_MAX>,
+    faults: &mut Faults,
+) -> Option<Part> {
     let heights = stated.heights();
     let top = Located::new(heights.top_m, stated.placed_at());
     faults.within(top, HEIGHTS_M, Length, "the top of the part");
+    let mut list = Numbers { list: numbers };
     let geometry = match stated {
-        Stated::Course(course) => self::course(file, course, faults)?,
-        Stated::Panel(panel) => plane(&panel.plane, None),
-        Stated::Hatch(hatch) => plane(&hatch.sealed, Some(hatch)),
+        Stated::Course(course) => Some(self::course(file, course, faults)?),
+        Stated::Panel(panel) => plane(&panel.plane, None, &mut list),
+        Stated::Hatch(hatch) => plane(&hatch.sealed, Some(hatch), &mut list),
+    };
+    let Some(geometry) = geometry else {
+        faults.too_many(stated.located_name().span, "numbers of all shapes", NUMBERS_MAX);
+        return None;
     };
     let mut part = Part {
         geometry,
@@ -28,7 +40,7 @@ pub(super) fn part(file: &TankFile, stated: &Stated, faults: &mut Faults) -> Opt
         top_m: single(heights.top_m),
         outward: capacities(stated.capacity()),
         inward: capacities(stated.capacity_inward()),
-        designed_for: heapless::Vec::new(),
+        designed_for: Vec::new(),
         outside: outside_mask(file, stated.name()),
     };
     for rating in stated.capacity() {
@@ -55,26 +67,14 @@ fn course(file: &TankFile, course: &Course, faults: &mut Faults) -> Option<Geome
     })
 }
 
-fn plane(plane: &Plane, hatch: Option<&Hatch>) -> Geometry {
+fn plane(plane: &Plane, hatch: Option<&Hatch>, numbers: &mut Numbers<'_>) -> Option<Geometry> {
     let sine = plane.sine();
-    let shape = if plane.is_level() {
-        Shape::Level { area_m2: single(plane.shape.area_m2()) }
-    } else {
-        match plane.shape {
-            Outline::Circle { diameter_m } => {
-                Shape::Circle(Circle::new(single(0.5 * diameter_m), single(sine)))
-            }
-            Outline::Rectangle { width_m, length_m } => {
-                let (width, length) = (single(width_m), single(length_m));
-                Shape::Rectangle(Rectangle::new(width, length, single(sine)))
-            }
-        }
-    };
-    let face = Face::of(&shape, 0.0);
+    let shape = plane_shape(plane, numbers)?;
+    let face = Face { shape: &shape, numbers: numbers.list, bottom_m: 0.0 };
     let bolts = hatch
         .and_then(|hatch| hatch.bolts)
         .map(|stated| Bolts::new(&bolts::pattern(&stated.value, &plane.shape, sine), &face));
-    Geometry::plane(shape, single(sine), bolts)
+    Some(Geometry::plane(shape, single(sine), bolts))
 }
 
 /// The smallest of each kind.

@@ -1,5 +1,5 @@
 use super::{Contents, bolts, for_desk, for_device, liquid};
-use crate::tank::{self, Bolts, FirstBolt, Shape, TankFile};
+use crate::tank::{self, Bolts, FirstBolt, Plane, Shape, TankFile};
 use std::f64::consts::PI;
 use strake_core::plan::{LevelSensor, Reference, SignalKind, codec};
 use strake_core::shape::Cut;
@@ -126,8 +126,8 @@ fn bolts_and_their_cuts_against_counting() {
         (8, FirstBolt::Astride),
     ] {
         let bolts = Bolts { count, circle_diameter_m: 0.77, first };
-        for shape in [circle, rectangle] {
-            let pattern = bolts::pattern(&bolts, &shape, 0.8);
+        for shape in [&circle, &rectangle] {
+            let pattern = bolts::pattern(&bolts, shape, 0.8);
             let pitch = 2.0 * PI / f64::from(count);
             let start = if first == FirstBolt::Lowest { 0.0 } else { 0.5 * pitch };
             let heights: Vec<f64> =
@@ -143,7 +143,7 @@ fn bolts_and_their_cuts_against_counting() {
                     assert!(kern.abs() >= 0.5 * shape.length_m(), "a cut is missing");
                     continue;
                 };
-                let (area, first_moment) = below(&shape, kern);
+                let (area, first_moment) = below(shape, kern);
                 assert!(near(y_m, (kern + 0.5 * shape.length_m()) * 0.8, 1e-6));
                 assert!(near(area_m2, area, 1e-5), "{area_m2} {area}");
                 assert!(near(static_m3, first_moment, 1e-4), "{static_m3} {first_moment}");
@@ -162,7 +162,7 @@ fn below(shape: &Shape, s_m: f64) -> (f64, f64) {
         let s = (f64::from(strip) + 0.5) * width - half;
         let b = match *shape {
             Shape::Circle { diameter_m } => 2.0 * (0.25 * diameter_m * diameter_m - s * s).sqrt(),
-            Shape::Rectangle { width_m, .. } => width_m,
+            _ => shape.width_m(),
         };
         sums = (sums.0 + b * width, sums.1 + b * s * width);
     }
@@ -174,7 +174,8 @@ fn the_lower_half_of_a_disc() {
     let disc = strake_core::shape::Circle::new(0.33, 1.0);
     let shape = strake_core::shape::Shape::Circle(disc);
     let [y_m, area_m2, static_m3] =
-        super::centroid_cut(&Shape::Circle { diameter_m: 0.66 }, 1.0).unwrap();
+        super::centroid_cut(&Plane::centred(Shape::Circle { diameter_m: 0.66 }, 90.0, 1.0))
+            .unwrap();
     let cut = Cut::new(&strake_core::shape::Face::of(&shape, 0.0), y_m, area_m2, static_m3);
     assert!(near(cut.area_m2, 0.5 * PI * 0.33 * 0.33, 1e-6));
     assert!(near(cut.static_m3, -2.0 / 3.0 * 0.33_f64.powi(3), 1e-6));

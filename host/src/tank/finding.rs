@@ -131,6 +131,8 @@ codes! {
     BelowFloor = "below-floor",
     /// A part is wider than the tank.
     WiderThanTank = "wider-than-tank",
+    /// An outline that encloses nothing, crosses itself, or has a hole that it cannot have.
+    Outline = "outline",
     /// Two courses cover the same height.
     CourseOverlap = "course-overlap",
     /// Courses leave a height between them uncovered.

@@ -57,15 +57,20 @@ fn describe(sheet: &Sheet<'_>, stated: &Stated) -> String {
 
 fn surface(sheet: &Sheet<'_>, plane: &Plane, span: &str) -> String {
     let show = |value: f64| sheet.show(value, Length);
-    let outline = match plane.shape {
-        Shape::Circle { diameter_m } => format!("circle {}", show(diameter_m)),
-        Shape::Rectangle { width_m, length_m } => {
-            format!("rectangle {} x {}", show(width_m), show(length_m))
-        }
+    let outline = if let Shape::Circle { diameter_m } = plane.shape {
+        format!("circle {}", show(diameter_m))
+    } else {
+        let (width, length) = (show(plane.shape.width_m()), show(plane.shape.length_m()));
+        format!("{} {width} x {length}", plane.shape.word())
+    };
+    let hole = match &plane.hole {
+        None => "",
+        Some(hole) if hole.carried_elsewhere => ", a hole carried elsewhere left out",
+        Some(_) => ", a hole whose load it carries",
     };
     let at = if plane.is_level() { show(plane.heights.centre_m) } else { span.to_owned() };
     let slope = sheet.show(plane.slope_deg, Quantity::AngleDegrees);
-    format!("{at}, slope {slope}, {outline}")
+    format!("{at}, slope {slope}, {outline}{hole}")
 }
 
 fn part(sheet: &Sheet<'_>, page: &mut Page, stated: &Stated, row: &PartRow) {
@@ -96,6 +101,9 @@ fn part(sheet: &Sheet<'_>, page: &mut Page, stated: &Stated, row: &PartRow) {
         let height = centre.centre_of_pressure_m;
         let height = height.map_or_else(|| "none".to_owned(), |at| sheet.show(at, Length));
         put("centre of pressure", [height, String::new(), String::new()], "");
+        if let Some(x_m) = centre.centre_of_pressure_sideways_m {
+            put("  sideways", [sheet.show(x_m, Length), String::new(), String::new()], "");
+        }
     }
     if row.loads_inward_bound.bolt_n.is_some() {
         put("bolt, largest share", three(|loads| loads.bolt_n, Force), "bolt_n");

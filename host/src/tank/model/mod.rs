@@ -4,16 +4,18 @@
 
 mod capacity;
 mod liquid;
+mod outline;
 mod part;
 mod service;
 mod signal;
 
 pub use capacity::{Basis, BasisKind, Capacity, Rating};
 pub use liquid::{Layer, Liquid, Thermal};
+pub use outline::{CORNERS_MAX, Corners, Disc, Pieces, Shape, Strip};
 pub(in crate::tank) use part::sine;
 pub use part::{
-    Bolts, Course, DesignPoint, FirstBolt, Hatch, Heights, Opens, Panel, Part, PartKind, Plane,
-    Shape,
+    Bolts, Course, DesignPoint, FirstBolt, Hatch, Heights, Hole, Opens, Panel, Part, PartKind,
+    Plane,
 };
 pub use service::{Alarms, Cell, Logging, Power, SensorSupply, Threshold};
 pub use signal::{

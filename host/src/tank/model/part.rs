@@ -1,6 +1,7 @@
 //! The parts of a tank that carry the liquid.
 
 use super::capacity::Rating;
+use super::outline::{Pieces, Shape};
 use crate::tank::finding::{Located, Span};
 
 /// One part.
@@ -166,82 +167,82 @@ impl Course {
     }
 }
 
-/// Outline of a flat surface.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub enum Shape {
-    /// Circle.
-    Circle {
-        /// Diameter.
-        diameter_m: f64,
-    },
-    /// Rectangle with one level pair of edges.
-    Rectangle {
-        /// Level extent.
-        width_m: f64,
-        /// Extent along the slope.
-        length_m: f64,
-    },
-}
-
-impl Shape {
-    /// Area, m².
-    #[must_use]
-    pub fn area_m2(&self) -> f64 {
-        match *self {
-            Self::Circle { diameter_m } => std::f64::consts::FRAC_PI_4 * diameter_m * diameter_m,
-            Self::Rectangle { width_m, length_m } => width_m * length_m,
-        }
-    }
-
-    /// Extent along the slope.
-    #[must_use]
-    pub const fn length_m(&self) -> f64 {
-        match *self {
-            Self::Circle { diameter_m } => diameter_m,
-            Self::Rectangle { length_m, .. } => length_m,
-        }
-    }
-
-    /// Level extent.
-    #[must_use]
-    pub const fn width_m(&self) -> f64 {
-        match *self {
-            Self::Circle { diameter_m } => diameter_m,
-            Self::Rectangle { width_m, .. } => width_m,
-        }
-    }
-
-    /// Whether `inner` lies inside this outline when both share centre and direction.
-    #[must_use]
-    pub fn encloses(&self, inner: &Self) -> bool {
-        match (*self, *inner) {
-            (Self::Circle { diameter_m }, Self::Rectangle { width_m, length_m }) => {
-                width_m.hypot(length_m) <= diameter_m
-            }
-            _ => inner.width_m() <= self.width_m() && inner.length_m() <= self.length_m(),
-        }
-    }
+/// An opening in a flat surface.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Hole {
+    /// Its outline.
+    pub shape: Shape,
+    /// Its lowest point: x, and up the slope from the lowest point of the surface around it.
+    pub at_m: [f64; 2],
+    /// Whether others carry what presses on it; else what closes it hands its load to the surface.
+    pub carried_elsewhere: bool,
 }
 
 /// A flat surface in its place.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct Plane {
     /// Its outline.
     pub shape: Shape,
+    /// An opening in it.
+    pub hole: Option<Hole>,
     /// Angle through the liquid from the level floor, degrees: 0 floor, 90 wall, above 90
     /// overhang, 180 roof. Either 0 or 180, or from 1 to 179.
     pub slope_deg: f64,
-    /// Its heights.
+    /// Its heights; the centre is the centroid of what carries.
     pub heights: Heights,
 }
 
 impl Plane {
-    /// A surface with its centroid at a height.
+    /// A surface with its lowest point at a height.
+    #[must_use]
+    pub fn standing(shape: Shape, hole: Option<Hole>, slope_deg: f64, bottom_m: f64) -> Self {
+        let heights = Heights { bottom_m, centre_m: bottom_m, top_m: bottom_m };
+        let mut plane = Self { shape, hole, slope_deg, heights };
+        let sine = plane.sine();
+        plane.heights.centre_m += plane.centroid_up_m() * sine;
+        plane.heights.top_m += plane.shape.length_m() * sine;
+        plane
+    }
+
+    /// A surface without opening, with its centroid at a height.
     #[must_use]
     pub fn centred(shape: Shape, slope_deg: f64, centre_m: f64) -> Self {
-        let half = 0.5 * shape.length_m() * sine(slope_deg);
-        let heights = Heights { bottom_m: centre_m - half, centre_m, top_m: centre_m + half };
-        Self { shape, slope_deg, heights }
+        let below_m = shape.centroid_m()[1] * sine(slope_deg);
+        let mut plane = Self::standing(shape, None, slope_deg, centre_m - below_m);
+        plane.heights.centre_m = centre_m;
+        plane
+    }
+
+    /// The opening whose load others carry.
+    #[must_use]
+    pub fn left_out(&self) -> Option<&Hole> {
+        self.hole.as_ref().filter(|hole| hole.carried_elsewhere)
+    }
+
+    /// What it is made of, an opening whose load others carry left out.
+    #[must_use]
+    pub fn pieces(&self) -> Pieces {
+        let mut pieces = self.shape.pieces();
+        if let Some(hole) = self.left_out() {
+            pieces.cut_out(&hole.shape.pieces(), hole.at_m[1]);
+        }
+        pieces
+    }
+
+    /// Area of what carries, m².
+    #[must_use]
+    pub fn area_m2(&self) -> f64 {
+        self.shape.area_m2() - self.left_out().map_or(0.0, |hole| hole.shape.area_m2())
+    }
+
+    /// Centroid of what carries, up the slope from the lowest point, m.
+    #[must_use]
+    pub fn centroid_up_m(&self) -> f64 {
+        let whole = self.shape.centroid_m()[1];
+        self.left_out().map_or(whole, |_| {
+            let [area, first] = self.pieces().below(f64::INFINITY);
+            first / area
+        })
     }
 
     /// Sine of its slope; zero when level.

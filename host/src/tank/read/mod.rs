@@ -5,6 +5,7 @@ mod capacity;
 pub(super) mod field;
 mod level;
 mod liquid;
+mod outline;
 mod part;
 pub(super) mod section;
 mod secured;

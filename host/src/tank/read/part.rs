@@ -4,7 +4,7 @@ use super::capacity::{self, Bearer};
 use super::field::{Range, field};
 use super::section::Section;
 use super::secured;
-use super::shape::{self, Placed};
+use super::shape::{self, Cut, Placed};
 use crate::tank::finding::{Code, Located};
 use crate::tank::model::{
     Bolts, Course, DesignPoint, Hatch, Heights, Opens, Panel, Part, PartKind, Plane, Shape,
@@ -140,8 +140,8 @@ fn design_point(section: &mut Section<'_>) -> Option<DesignPoint> {
 }
 
 fn panel(mut section: Section<'_>, name: Option<Located<String>>) -> Option<Panel> {
-    let shape = shape::need(&mut section, "shape");
-    let placed = shape::place(&mut section, shape);
+    let cut = shape::need_cut(&mut section);
+    let placed = shape::place(&mut section, cut.map(|cut| cut.value));
     let ratings = capacity::both(&mut section, Bearer::plain(PartKind::Panel));
     let span = section.span;
     section.finish();
@@ -153,7 +153,8 @@ fn hatch(mut section: Section<'_>, name: Option<Located<String>>) -> Option<Hatc
     const OPENS: [(&str, Opens); 2] = [("outward", Opens::Outward), ("inward", Opens::Inward)];
     let shape = shape::need(&mut section, "shape");
     let sealed = shape::need(&mut section, "sealed_to");
-    let placed = shape::place(&mut section, shape);
+    let cut = shape.as_ref().map(|shape| Cut { shape: shape.value.clone(), hole: None });
+    let placed = shape::place(&mut section, cut);
     let opens = section.need_choice(
         "opens",
         &OPENS,
@@ -165,7 +166,7 @@ fn hatch(mut section: Section<'_>, name: Option<Located<String>>) -> Option<Hatc
     let bearer =
         Bearer { kind: PartKind::Hatch, opens: opens.map(|o| o.value), bolted: bolts_stated };
     let ratings = capacity::both(&mut section, bearer);
-    gasket_and_bolts(&section, shape, sealed, bolts);
+    gasket_and_bolts(&section, shape.as_ref(), sealed.as_ref(), bolts);
     let span = section.span;
     section.finish();
     if bolts_stated && bolts.is_none() {
@@ -189,8 +190,8 @@ fn hatch(mut section: Section<'_>, name: Option<Located<String>>) -> Option<Hatc
 /// The gasket encloses the opening, the bolts stand outside it.
 fn gasket_and_bolts(
     section: &Section<'_>,
-    shape: Option<Located<Shape>>,
-    sealed: Option<Located<Shape>>,
+    shape: Option<&Located<Shape>>,
+    sealed: Option<&Located<Shape>>,
     bolts: Option<Located<Bolts>>,
 ) {
     let Some(shape) = shape else { return };
@@ -205,6 +206,16 @@ fn gasket_and_bolts(
         section.report(Code::GasketInside, sealed.span, message, hint);
     }
     let Some(bolts) = bolts else { return };
+    if let Some(sealed) = sealed.filter(|sealed| !sealed.value.has_a_middle()) {
+        let message = format!(
+            "bolts on a circle hold `{}` in {} unevenly: their middle is not that of the cover",
+            sealed.value.word(),
+            section.place
+        );
+        let hint = "rate the cover by force or pressure, or describe the circle, ellipse, obround \
+                    or rectangle that encloses it";
+        section.report(Code::BoltCircle, sealed.span, message, hint);
+    }
     let circle = Shape::Circle { diameter_m: bolts.value.circle_diameter_m };
     if !circle.encloses(&shape.value) {
         let message = format!(

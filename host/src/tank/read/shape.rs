@@ -1,73 +1,59 @@
 //! Outlines of flat surfaces, and where they stand.
 
 use super::field::{Range, field};
+use super::outline;
 use super::section::Section;
 use crate::tank::finding::{Code, Located, Span};
-use crate::tank::model::{Plane, Shape, sine};
+use crate::tank::model::{Hole, Plane, Shape, sine};
 use crate::units::Quantity::{AngleDegrees, Length};
 use crate::units::format_si;
 
-const WRITE: &str = "{ circle = { diameter = \"0.6 m\" } } or { rectangle = { width = \"1.0 m\", \
-                     length = \"1.2 m\" } }";
-/// Recognised, for a later version.
-const LATER: [&str; 6] = ["ellipse", "obround", "triangle", "trapezoid", "polygon", "hole"];
+/// An outline and the opening in it.
+pub(super) struct Cut {
+    pub(super) shape: Shape,
+    pub(super) hole: Option<Hole>,
+}
 
-/// The outline under a key that must be there.
+/// The outline under a key that must be there, without an opening in it.
 pub(super) fn need(section: &mut Section<'_>, key: &'static str) -> Option<Located<Shape>> {
     if key == "sealed_to" && section.item(key).is_none() {
-        section.missing(key, &format!("{WRITE}: the line of the gasket, to which liquid presses"));
+        let write = format!("{}: the line of the gasket, to which liquid presses", outline::WRITE);
+        section.missing(key, &write);
         return None;
     }
-    let mut table = section.need_table(key, WRITE)?;
+    let mut table = section.need_table(key, outline::WRITE)?;
     let span = table.span;
-    let mut later = false;
-    for kind in LATER {
-        if let Some(span) = table.key_span(kind) {
-            later = true;
-            let message = format!("{kind} is not offered by this version");
-            let hint = "circle and rectangle are; a larger one of these errs to the safe side";
-            table.report(Code::NotOffered, span, message, hint);
-        }
+    if let Some(span) = table.key_span("hole") {
+        let message = format!("a hole means nothing in `{key}` of {}", section.place);
+        let hint = "a cover has none: leave it out";
+        table.report(Code::Outline, span, message, hint);
     }
-    let shape = if later {
-        // A finding is enough; the outlines offered are known keys none the less.
-        table.item("circle");
-        table.item("rectangle");
-        None
-    } else {
-        match table.one_of(&["circle", "rectangle"], &format!("write {key} = {WRITE}")) {
-            Some("circle") => circle(&mut table),
-            Some(_) => rectangle(&mut table),
-            None => None,
-        }
-    };
+    let shape = outline::one(&mut table, key);
     table.finish();
     shape.map(|shape| Located::new(shape, span))
 }
 
-fn circle(parent: &mut Section<'_>) -> Option<Shape> {
-    let mut table = parent.table("circle", "{ diameter = \"0.6 m\" }: the key says diameter")?;
-    let diameter = table.need(field("diameter", Length, Range::POSITIVE, "\"0.6 m\""));
+/// The outline of a panel, with its opening.
+pub(super) fn need_cut(section: &mut Section<'_>) -> Option<Located<Cut>> {
+    let mut table = section.need_table("shape", outline::WRITE)?;
+    let span = table.span;
+    let stated = table.item("hole").is_some();
+    let shape = outline::one(&mut table, "shape");
+    let hole = if stated { outline::hole(&mut table, shape.as_ref()) } else { None };
     table.finish();
-    Some(Shape::Circle { diameter_m: diameter?.value })
-}
-
-fn rectangle(parent: &mut Section<'_>) -> Option<Shape> {
-    let mut table = parent.table("rectangle", "{ width = \"1.0 m\", length = \"1.2 m\" }")?;
-    let width = table.need(field("width", Length, Range::POSITIVE, "\"1.0 m\", horizontal"));
-    let length = table.need(field("length", Length, Range::POSITIVE, "\"1.2 m\", up the slope"));
-    table.finish();
-    Some(Shape::Rectangle { width_m: width?.value, length_m: length?.value })
+    if stated && hole.is_none() {
+        return None;
+    }
+    shape.map(|shape| Located::new(Cut { shape, hole }, span))
 }
 
 /// An outline in words.
 pub(super) fn describe(shape: &Shape) -> String {
-    match *shape {
-        Shape::Circle { diameter_m } => format!("{} in diameter", format_si(diameter_m, Length)),
-        Shape::Rectangle { width_m, length_m } => {
-            format!("{} by {}", format_si(width_m, Length), format_si(length_m, Length))
-        }
+    if let Shape::Circle { diameter_m } = *shape {
+        return format!("{} in diameter", format_si(diameter_m, Length));
     }
+    let (width, length) = (shape.width_m(), shape.length_m());
+    format!("{} by {}", format_si(width, Length), format_si(length, Length))
 }
 
 /// A surface in its place, and where its height is written.
@@ -77,19 +63,23 @@ pub(super) struct Placed {
 }
 
 /// Reads slope and height.
-pub(super) fn place(section: &mut Section<'_>, shape: Option<Located<Shape>>) -> Option<Placed> {
+pub(super) fn place(section: &mut Section<'_>, cut: Option<Cut>) -> Option<Placed> {
     const PLACE: &str = "write exactly one of centre, bottom and top, as heights above the datum";
     let slope = slope(section);
     let key = section.one_of(&["centre", "bottom", "top"], PLACE)?;
     let height = section.take(field(key, Length, Range::ANY, "\"0.85 m\", above the datum"))?;
-    let (shape, slope) = (shape?, slope?);
-    let half = 0.5 * shape.value.length_m() * sine(slope);
-    let centre = match key {
-        "centre" => height.value,
-        "bottom" => height.value + half,
-        _ => height.value - half,
+    let (Cut { shape, hole }, slope) = (cut?, slope?);
+    let below_m = match key {
+        "centre" if hole.is_none() => {
+            let plane = Plane::centred(shape, slope, height.value);
+            return Some(Placed { plane, placed_at: height.span });
+        }
+        "centre" => shape.centroid_m()[1],
+        "bottom" => 0.0,
+        _ => shape.length_m(),
     };
-    let plane = Plane::centred(shape.value, slope, centre);
+    let bottom_m = height.value - below_m * sine(slope);
+    let plane = Plane::standing(shape, hole, slope, bottom_m);
     Some(Placed { plane, placed_at: height.span })
 }
 

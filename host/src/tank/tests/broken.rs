@@ -88,11 +88,6 @@ fn keys_of_later_versions_are_refused_by_name() {
     );
     later("opens     = \"outward\"", "opens = \"outward\"\ncover_mass = \"9 kg\"", "`cover_mass`");
     later("[alarm]", "[[curved]]\nname = \"cone\"\n[alarm]", "curved parts are not offered");
-    for shape in ["ellipse", "obround", "triangle", "trapezoid", "polygon", "hole"] {
-        let to = format!("{{ {shape} = {{ }} }}");
-        let words = format!("{shape} is not offered");
-        later("{ circle = { diameter = \"0.61 m\" } }", &to, &words);
-    }
     for kind in ["latch", "hinge", "moment", "cover"] {
         let to = format!("{{ {kind} = \"1 kN\"");
         later("{ force = \"60 kN\"", &to, &format!("capacity `{kind}` of a hatch is not offered"));
