@@ -14,7 +14,8 @@ use strake_oracle::random::Random;
 const BOUND: f64 = 2e-6;
 const PARTS: u32 = 4_000;
 
-/// A random part with or without a hole; the sine of its slope and its lowest height are f32 values.
+/// A random part with or without a hole; the sine of its slope and its lowest height are f32
+/// values.
 fn part(random: &mut Random) -> PlanePart {
     let mut part = if random.one_in(4) { plate_with_hole(random) } else { plane_part(random) };
     let sine = f64::from(narrow(part.rise()));
