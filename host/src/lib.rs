@@ -16,6 +16,7 @@ pub mod output_file;
 pub mod page;
 pub mod plan_file;
 pub mod plan_words;
+pub mod plate;
 pub mod replay;
 pub mod sim;
 pub mod status;

@@ -4,4 +4,6 @@ mod cases;
 mod core_cases;
 mod core_engine;
 mod core_error;
+mod plate_cases;
+mod plate_series;
 mod states;

@@ -8,6 +8,7 @@
 //!
 //! Coordinates: z up from the tank datum, x outward, y sideways. Units are SI throughout.
 
+pub mod bending;
 pub mod cases;
 pub mod envelope;
 pub mod generate;
