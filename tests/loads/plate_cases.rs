@@ -156,7 +156,8 @@ fn circle(row: &Row) -> Result<f64, Reason> {
         "p_working" => Ok(yielding.ok_or(UNREAD)? / row.number("safety_factor").ok_or(UNREAD)?),
         "w_centre" => {
             let rigidity = rigidity_n_m(row.number("E_Pa").ok_or(UNREAD)?, nu, thickness_m);
-            let centre = solution.deflections.iter().find(|one| one.place.s_m == radius_m);
+            let mut heights = solution.deflections.iter();
+            let centre = heights.find(|one| (one.place.s_m - radius_m).abs() < 1e-12);
             let weight = &centre.ok_or("no point there")?.weight;
             Ok(weight.total() * row.number("p_Pa").ok_or(UNREAD)? / rigidity)
         }
