@@ -22,7 +22,7 @@ use cycle::Moves;
 use embedded_hal::digital::OutputPin;
 use faults::FaultLog;
 use now::Now;
-use strake_core::evaluate::{Output, Rhythm, State};
+use strake_core::evaluate::{Output, Pace, Rhythm, State};
 use strake_core::journal::Entry;
 use strake_core::plan::Plan;
 use strake_core::signal::Resolved;
@@ -99,6 +99,8 @@ pub struct Device<B: Board> {
     completed_ms: u64,
     /// The last beat of the interval that is over, ms.
     beat_ms: u64,
+    /// How far it may look away.
+    pace: Pace,
     /// Tick at which the oldest waiting sample must be written.
     flush_at_ms: Option<u64>,
     faults: FaultLog,

@@ -10,11 +10,13 @@
 
 mod digest;
 mod output;
+mod pace;
 mod state;
 mod step;
 
 pub use digest::Digest;
 pub use output::{Output, Rhythm};
+pub use pace::Pace;
 pub use state::{CHECKPOINT_BYTES_MAX, State};
 pub use step::{Judged, Moved, judge, step};
 

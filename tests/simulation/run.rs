@@ -184,15 +184,15 @@ impl Run {
 
     fn operation(&mut self) -> Result<(), String> {
         match self.random.within(0..100) {
-            0..2 => {
+            0..4 => {
                 // Nobody comes for days.
-                for _ in 0..self.random.within(5..14) {
+                for _ in 0..self.random.within(8..18) {
                     self.go_on(6 * HOUR_MS);
                     self.see()?;
                 }
                 self.visit()
             }
-            2..35 => {
+            4..35 => {
                 let time_ms = self.random.within(MINUTE_MS..8 * HOUR_MS);
                 self.go_on(time_ms);
                 self.see()

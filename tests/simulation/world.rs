@@ -53,7 +53,9 @@ pub(crate) struct Sealed {
     pub(crate) bytes: Vec<u8>,
     pub(crate) serial: u64,
     pub(crate) fingerprint: u64,
+    /// Longest time that a sample may wait in RAM, ms.
     pub(crate) flush_after_ms: u64,
+    /// Longest time between two samples, ms.
     pub(crate) interval_ms: u64,
 }
 
@@ -71,7 +73,11 @@ pub(crate) fn sealed(number: u64) -> Sealed {
     let mut compiled = compiled();
     let logging = &mut compiled.plan.logging;
     logging.flush_after_ms = [60_000, 30_000, 120_000][(number % 3) as usize];
-    let (flush_after_ms, interval_ms) = (logging.flush_after_ms.into(), logging.interval_ms.into());
+    // At rest as many samples wait as else, six at most, a minute apart: never ten minutes.
+    let waiting = (logging.flush_after_ms / logging.interval_ms).min(6);
+    let interval_ms = u64::from(logging.idle_interval_ms);
+    let flush_after_ms =
+        (u64::from(waiting) * interval_ms).min(600_000).max(logging.flush_after_ms.into());
     let serial = SERIAL + number;
     let bytes = compiled.encode(serial).unwrap();
     Sealed { serial, fingerprint: fingerprint(&bytes), flush_after_ms, interval_ms, bytes }

@@ -160,7 +160,7 @@ fn flipped_bits_are_located_and_the_rest_is_used() {
     let (directory, _, document) = trial(&[]);
     let mut file = std::fs::read(journal(&document)).unwrap();
     let sector = payloads(&file, TAG_SECTOR)[1].clone();
-    file[sector.start + 2000] ^= 0x40;
+    file[sector.start + 1000] ^= 0x40;
     let (status, replayed) = replay_of(directory.path(), &file);
     assert!([6, 7].contains(&status), "{replayed}");
     assert!(replayed["damaged"].as_u64() >= Some(1));

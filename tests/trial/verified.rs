@@ -93,7 +93,7 @@ fn a_torn_page_costs_as_many_samples_as_its_blocks_held() {
 fn a_flipped_bit_of_the_file_is_a_missing_sector() {
     let (directory, mut file) = story();
     let sector = payloads(&file, TAG_SECTOR)[1].clone();
-    file[sector.start + 2000] ^= 0x40;
+    file[sector.start + 1000] ^= 0x40;
     let ((status, document), (replay_status, _)) = both(&directory, &file);
     assert_eq!((status, replay_status), (6, 6), "{document}");
     assert_eq!(document["missing_sectors"], 1);

@@ -17,11 +17,10 @@ impl<B: Board> Device<B> {
     pub(crate) fn cycle(&mut self, now_ms: u64) {
         let sample = self.sense(now_ms);
         self.take(&sample);
-        self.schedule(now_ms);
-        if self.flush_at_ms.is_none() {
-            let wait_ms = u64::from(self.memory.plan.logging.flush_after_ms);
-            self.flush_at_ms = Some(now_ms.saturating_add(wait_ms));
-        }
+        let beats = self.schedule(now_ms);
+        let wait_ms = self.memory.plan.logging.wait_ms(beats);
+        let due_ms = now_ms.saturating_add(u64::from(wait_ms));
+        self.flush_at_ms = Some(self.flush_at_ms.map_or(due_ms, |before_ms| before_ms.min(due_ms)));
         if self.journal.as_ref().is_some_and(|journal| journal.waiting().is_empty()) {
             self.flush_at_ms = None;
         }
@@ -148,19 +147,25 @@ impl<B: Board> Device<B> {
         }
     }
 
-    /// The next cycle: on the beat of the interval, or when a pending delay expires.
-    fn schedule(&mut self, now_ms: u64) {
+    /// The next cycle: on a beat of the interval, or when a pending delay expires. Gives how many
+    /// beats the device may look away.
+    fn schedule(&mut self, now_ms: u64) -> u32 {
+        let ahead = self.reading.map_or(1, |reading| {
+            let Memory { plan, state, .. } = &*self.memory;
+            self.pace.beats(plan, &state.sight, &reading, now_ms)
+        });
         let interval_ms = u64::from(self.memory.plan.logging.interval_ms).max(1);
         let beats = now_ms.saturating_sub(self.beat_ms) / interval_ms;
-        self.beat_ms = self.beat_ms.saturating_add((beats + 1).saturating_mul(interval_ms));
+        // Kept as the last one that is over.
+        self.beat_ms = self.beat_ms.saturating_add(beats.saturating_mul(interval_ms));
+        let beat_ms = self.beat_ms.saturating_add(u64::from(ahead).saturating_mul(interval_ms));
         let expiry_ms = self
             .memory
             .state
             .next_expiry_ms(&self.memory.plan, now_ms)
             .map_or(u64::MAX, |wait_ms| now_ms.saturating_add(u64::from(wait_ms.max(1))));
-        self.next_cycle_ms = self.beat_ms.min(expiry_ms);
-        // The beat is kept as the last one that is over.
-        self.beat_ms = self.beat_ms.saturating_sub(interval_ms);
+        self.next_cycle_ms = beat_ms.min(expiry_ms);
+        ahead
     }
 
     /// Looks again at once.

@@ -5,6 +5,7 @@ use crate::board::{Board, Clock, CountSource};
 use crate::plan_store::PlanStore;
 use crate::serve::Refusal;
 use embedded_storage::nor_flash::NorFlash;
+use strake_core::evaluate::Pace;
 use strake_core::journal::Entry;
 use strake_core::plan::codec::{Fetch, decode_into};
 use strake_core::plan::{Plan, PlanError};
@@ -83,6 +84,7 @@ impl<B: Board> Device<B> {
     pub(super) fn begin_beat(&mut self, tick_ms: u64) {
         self.level.read_from(self.memory.plan.level.signal);
         self.beat_ms = tick_ms;
+        self.pace = Pace::default();
         self.next_cycle_ms = tick_ms;
         self.completed_ms = tick_ms;
     }

@@ -11,7 +11,7 @@ use crate::journal::{Journal, Recovery, Restore, Waiting};
 use crate::plan_store::PlanStore;
 use embedded_storage::nor_flash::NorFlash;
 use strake_core::alarm::FaultCause;
-use strake_core::evaluate::{Output, step};
+use strake_core::evaluate::{Output, Pace, step};
 use strake_core::journal::{Entry, SectorHeader};
 
 impl<B: Board> Device<B> {
@@ -51,6 +51,7 @@ impl<B: Board> Device<B> {
             next_cycle_ms: 0,
             completed_ms: 0,
             beat_ms: 0,
+            pace: Pace::default(),
             flush_at_ms: None,
             faults: FaultLog::default(),
             start_up: None,
@@ -101,12 +102,7 @@ impl<B: Board> Device<B> {
             {
                 0
             }
-            (_, Some(_)) => self
-                .memory
-                .plan
-                .logging
-                .flush_after_ms
-                .saturating_add(self.memory.plan.logging.interval_ms),
+            (_, Some(_)) => self.memory.plan.missing_ms_max(),
             (_, None) => 0,
         };
         let boot = self.boot;

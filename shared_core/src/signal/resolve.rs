@@ -206,21 +206,9 @@ fn project(
         return Resolved { class, estimate: brim, low: empty, high: brim, density, fault };
     };
     let age_ms = tick_ms.saturating_sub(read_ms);
-    #[expect(clippy::cast_precision_loss, reason = "ages beyond 2^24 ms are long past every cap")]
-    let age_s = age_ms as f32 * 1.0e-3;
-    let weight = plan.gravity_m_s2 * plan.liquid.with_layers(density).high_kg_m3;
-    // What the gas may add to a gauge or absolute head without any rise of the level.
-    let (per_metre, swing) = match plan.level.sensor {
-        LevelSensor::Surface => (1.0, 0.0),
-        LevelSensor::Head { reference: Reference::GasSpace, .. } => (weight, 0.0),
-        LevelSensor::Head { reference: Reference::Atmosphere { .. }, .. } => {
-            (weight, plan.gas.highest_pa - plan.gas.lowest_pa)
-        }
-    };
     let estimate = value(plan, count_16);
     let half = half_width(plan, estimate);
-    let rise = plan.highest_rise_m_s * age_s * per_metre + swing;
-    let fall = plan.highest_fall_m_s * age_s * per_metre + swing;
+    let (rise, fall) = reach(plan, density, age_ms);
     // A cap never cuts what was measured: the projection only stops there.
     let high = at_least(at_most(estimate + half + rise, brim), estimate + half);
     let low = at_most(at_least(estimate - half - fall, empty), estimate - half);
@@ -230,6 +218,47 @@ fn project(
         ReadingClass::Projected
     };
     Resolved { class, estimate, low, high, density, fault }
+}
+
+/// How far a reading may rise and fall within some time, in the sensor's quantity.
+fn reach(plan: &Plan, density: Band, within_ms: u64) -> (f32, f32) {
+    #[expect(clippy::cast_precision_loss, reason = "times beyond 2^24 ms are long past every cap")]
+    let within_s = within_ms as f32 * 1.0e-3;
+    let weight = plan.gravity_m_s2 * plan.liquid.with_layers(density).high_kg_m3;
+    // What the gas may add to a gauge or absolute head without any rise of the level.
+    let (per_metre, swing) = match plan.level.sensor {
+        LevelSensor::Surface => (1.0, 0.0),
+        LevelSensor::Head { reference: Reference::GasSpace, .. } => (weight, 0.0),
+        LevelSensor::Head { reference: Reference::Atmosphere { .. }, .. } => {
+            (weight, plan.gas.highest_pa - plan.gas.lowest_pa)
+        }
+    };
+    let rise = plan.highest_rise_m_s * within_s * per_metre + swing;
+    let fall = plan.highest_fall_m_s * within_s * per_metre + swing;
+    (rise, fall)
+}
+
+/// Half-widths by which later readings of a level at rest may lie further out than its highest
+/// rates carry it; see [`crate::evaluate::Pace`].
+const OUTLOOK_HALF_WIDTHS: f32 = 5.0;
+
+/// Everything that the readings of the next `ahead_ms` can say of a level that now rests around a
+/// value, whatever the liquid's temperature then is: no cap cuts it.
+pub(crate) fn outlook(
+    plan: &Plan,
+    sight: &Sight,
+    resolved: &Resolved,
+    around: f32,
+    ahead_ms: u32,
+) -> Resolved {
+    let at_any = density(plan, &Sight { last_temperature: None, ..*sight });
+    let density = resolved.density.hull(at_any);
+    let (rise, fall) = reach(plan, density, ahead_ms.into());
+    let lowest = around - fall;
+    let room = OUTLOOK_HALF_WIDTHS * half_width(plan, lowest);
+    let (low, high) = (lowest - room, around + rise + room);
+    let fault = implausible(plan, high, 0.0, density);
+    Resolved { class: ReadingClass::Projected, estimate: around, low, high, density, fault }
 }
 
 /// Density of the top liquid: of the confirmed product, else of any; narrowed by a temperature
