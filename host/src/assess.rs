@@ -20,6 +20,7 @@ pub use notes::{FIELD_CHECK, PROVISIONAL, assumed};
 pub use request::{Overrides, Request, RequestError, Source};
 
 use crate::compile;
+use crate::energy;
 use crate::inverse;
 use crate::tank::{Findings, TankFile};
 use crate::units::UnitSystem;
@@ -68,6 +69,7 @@ pub fn assess(file: &TankFile, request: &Request) -> Result<Assessment, Findings
         not_judged,
         warn_level_m: warn,
         alarm_level_m: alarm,
+        energy: energy::estimate(file),
         cautions,
     };
     Ok(Assessment { document, above_alarm, desk })

@@ -6,6 +6,7 @@ pub mod assess;
 pub mod cli;
 pub mod cmd;
 pub mod compile;
+pub mod energy;
 pub mod exit;
 pub mod failure;
 pub mod inverse;

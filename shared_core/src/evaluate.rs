@@ -16,7 +16,7 @@ mod step;
 
 pub use digest::Digest;
 pub use output::{Output, Rhythm};
-pub use pace::Pace;
+pub use pace::{Pace, REST_MS_MIN};
 pub use state::{CHECKPOINT_BYTES_MAX, State};
 pub use step::{Judged, Moved, judge, step};
 

@@ -52,6 +52,7 @@ impl LiquidPlan {
 
     /// The top liquid's band while it is not confirmed which product is in the tank.
     #[must_use]
+    #[inline(never)]
     pub fn any_product(&self) -> Band {
         self.products.iter().fold(self.top, |band, product| band.hull(*product))
     }

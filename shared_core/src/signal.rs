@@ -13,5 +13,5 @@ mod resolve;
 
 pub use channel::{Channel, Quality, SensorError};
 pub use current_loop::{LoopClass, classify};
-pub(crate) use resolve::outlook;
+pub(crate) use resolve::reach;
 pub use resolve::{ReadingClass, Resolved, Sight, half_width, resolve};

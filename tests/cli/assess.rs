@@ -7,7 +7,7 @@ use serde_json::Value;
 const BRINE: &str = "configs/brine_day_tank.toml";
 
 /// Every key that the document may have, by the place where it stands.
-const KEYS: [(&str, &[&str]); 6] = [
+const KEYS: [(&str, &[&str]); 9] = [
     (
         "",
         &[
@@ -19,6 +19,7 @@ const KEYS: [(&str, &[&str]); 6] = [
             "not_judged",
             "warn_level_m",
             "alarm_level_m",
+            "energy",
             "cautions",
         ],
     ),
@@ -59,6 +60,9 @@ const KEYS: [(&str, &[&str]); 6] = [
     ),
     ("capacity", &["load", "value", "basis"]),
     ("not_judged", &["name", "why"]),
+    ("energy", &["fixed", "adaptive", "life_ratio", "rest_share", "assumptions", "cautions"]),
+    ("fixed", &["samples_per_day", "charge_per_day_c", "sensor_share", "life_days"]),
+    ("adaptive", &["samples_per_day", "charge_per_day_c", "sensor_share", "life_days"]),
 ];
 
 /// Checks the keys of an object and of what it holds.

@@ -17,8 +17,8 @@ impl<B: Board> Device<B> {
     pub(crate) fn cycle(&mut self, now_ms: u64) {
         let sample = self.sense(now_ms);
         self.take(&sample);
-        let beats = self.schedule(now_ms);
-        let wait_ms = self.memory.plan.logging.wait_ms(beats);
+        let ahead_ms = self.schedule(now_ms);
+        let wait_ms = self.memory.plan.logging.wait_ms(ahead_ms);
         let due_ms = now_ms.saturating_add(u64::from(wait_ms));
         self.flush_at_ms = Some(self.flush_at_ms.map_or(due_ms, |before_ms| before_ms.min(due_ms)));
         if self.journal.as_ref().is_some_and(|journal| journal.waiting().is_empty()) {
@@ -147,25 +147,24 @@ impl<B: Board> Device<B> {
         }
     }
 
-    /// The next cycle: on a beat of the interval, or when a pending delay expires. Gives how many
-    /// beats the device may look away.
+    /// The next cycle: on a beat of the interval, or when a pending delay expires. Gives the time
+    /// until that beat, ms.
     fn schedule(&mut self, now_ms: u64) -> u32 {
-        let ahead = self.reading.map_or(1, |reading| {
-            let Memory { plan, state, .. } = &*self.memory;
-            self.pace.beats(plan, &state.sight, &reading, now_ms)
-        });
-        let interval_ms = u64::from(self.memory.plan.logging.interval_ms).max(1);
+        let interval_ms = self.memory.plan.logging.interval_ms;
+        let ahead_ms = self
+            .reading
+            .map_or(interval_ms, |reading| self.pace.next_ms(&self.memory.plan, &reading, now_ms));
+        let interval_ms = u64::from(interval_ms).max(1);
         let beats = now_ms.saturating_sub(self.beat_ms) / interval_ms;
         // Kept as the last one that is over.
         self.beat_ms = self.beat_ms.saturating_add(beats.saturating_mul(interval_ms));
-        let beat_ms = self.beat_ms.saturating_add(u64::from(ahead).saturating_mul(interval_ms));
         let expiry_ms = self
             .memory
             .state
             .next_expiry_ms(&self.memory.plan, now_ms)
             .map_or(u64::MAX, |wait_ms| now_ms.saturating_add(u64::from(wait_ms.max(1))));
-        self.next_cycle_ms = beat_ms.min(expiry_ms);
-        ahead
+        self.next_cycle_ms = self.beat_ms.saturating_add(ahead_ms.into()).min(expiry_ms);
+        ahead_ms
     }
 
     /// Looks again at once.

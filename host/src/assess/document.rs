@@ -2,6 +2,7 @@
 //!
 //! Numbers of the load path stay f32 and are written with the fewest digits that give them back.
 
+use crate::energy::Energy;
 use serde::Serialize;
 
 /// The whole document.
@@ -24,6 +25,9 @@ pub struct Document {
     pub warn_level_m: Option<f32>,
     /// The same for the alarm threshold.
     pub alarm_level_m: Option<f32>,
+    /// How long the cell lasts; none without `[power]` or `[logging]`.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub energy: Option<Energy>,
     /// What the reader must know beside the numbers.
     pub cautions: Vec<String>,
 }

@@ -1,5 +1,6 @@
 //! The document as text that an engineer can check by hand.
 
+mod battery;
 mod limits;
 mod parts;
 mod state;
@@ -49,6 +50,7 @@ pub fn render(
     parts::loads(&sheet, &mut page);
     limits::limits(&sheet, &mut page);
     limits::thresholds(&sheet, &mut page);
+    battery::battery(&sheet, &mut page);
     notes(&sheet, &mut page);
     page.into_text()
 }

@@ -15,136 +15,146 @@
 //! `u` for the distance from `x` now, twice `u` for the errors of this reading and of that one, `u`
 //! for the half-width of that one; `rise` and `fall` the plan's highest rates, for a head sensor
 //! times the heaviest liquid's weight; `swing` what the gas may add to a head. A fifth `u` is room
-//! for rounding and for a half-width that grows with the distance (up to 6 % of it). All loads,
-//! bounds and alarm conditions are monotone in the two ends, so **one evaluation of the plan at
-//! these ends answers for every sample that is left out**: when it finds every condition gone, at
-//! the fixed interval none of them would have stood either. `T` is never longer than (distance up to
-//! the nearest threshold) / highest rise nor (distance down) / highest fall, exactly, for every kind
-//! of part, and needs no slope of any load. It is tried at the idle interval or the response time,
-//! the shorter, then halved at each further sample until it fits; below two intervals the interval
-//! stays.
+//! for rounding and for a half-width that grows with the distance (up to 6 % of it).
 //!
-//! `T` is a whole number of intervals, so adaptive samples are a subset of the fixed ones and the
-//! alarms of parts come at the same samples. What the reach cannot know shows up to `T` late: a
-//! sensor that fails, and a level that moves faster than the plan's highest rates.
+//! All loads, bounds and alarm conditions are monotone in the two ends, so **one evaluation of the
+//! plan at these ends answers for every sample that is left out**: when it finds every condition
+//! gone, at the fixed interval none of them would have stood either. So `T` is never longer than
+//! (distance up to the nearest threshold) / highest rise nor (distance down) / highest fall, for
+//! every kind of part, and no slope of a load is needed. It is tried at the idle interval or the
+//! response time, the shorter, then halved at each further sample until it fits; below two
+//! intervals the interval stays.
 //!
-//! Inputs are the plan and what [`super::step`] made of the samples since the last start, plan or
-//! product change, all of which the journal holds.
+//! `T` is a whole number of intervals, so the adaptive samples are a subset of the fixed ones and
+//! the alarms of parts, and of a surface at the roof, come at the same samples. What the reach
+//! cannot know shows up to `T` late: a sensor that fails, and a level that moves faster than the
+//! plan's highest rates.
+//!
+//! A liquid that the plan knows may take the place of another at any time: densities are those of
+//! all of them, at any temperature.
+//!
+//! Inputs are the plan and what [`super::step`] made of the samples since the last start or plan
+//! change, all of which the journal holds.
 
 use super::loads_of_one;
-use crate::alarm::Condition;
-use crate::plan::{LoggingPlan, Plan};
-use crate::signal::{ReadingClass, Resolved, Sight, outlook};
+use crate::lane::at_most;
+use crate::plan::{LevelSensor, LoggingPlan, Plan, ThresholdPlan};
+use crate::signal::{ReadingClass, Resolved, half_width, reach};
 
 /// Shortest time in which a level shows that it rests, ms.
-const REST_MS_MIN: u32 = 300_000;
+pub const REST_MS_MIN: u32 = 300_000;
+/// Half-widths by which readings may lie further out than the highest rates carry the level.
+const HALF_WIDTHS: f32 = 5.0;
 /// Most samples that wait in RAM for longer than at the short interval.
 const WAITING_AT_REST: u32 = 6;
 /// Longest time that they wait, ms.
 const WAIT_MS_MAX: u32 = 600_000;
 
-/// What decides the next interval: a few bytes, new at each start, plan or product change.
+/// What decides the next interval: a few bytes, new at each start and plan change.
 #[derive(Clone, Copy, Debug, Default, PartialEq)]
 pub struct Pace {
     /// Value that the level has stayed around, in the sensor's quantity.
     around: f32,
-    /// Tick since when it has.
-    since_ms: u64,
-    /// Intervals to look ahead; 0 nothing is known yet.
-    beats: u32,
+    /// Low bits of the tick since when it has. Once in 50 days a rest has to show itself anew.
+    since_ms: u32,
+    /// How far to look away, ms; 0 nothing is known yet.
+    span_ms: u32,
     /// So far ahead no threshold is in reach.
     clear: bool,
-    /// Product that this holds for.
-    product: Option<u8>,
 }
 
 impl Pace {
-    /// Takes what a sample was resolved to; gives the number of intervals until the next one, at
-    /// least 1. Pending delays are none of its concern: they schedule samples of their own.
+    /// Takes what a sample was resolved to; gives the time until the next one, ms: whole intervals.
+    /// Pending delays are none of its concern: they schedule samples of their own.
     #[inline(never)]
-    pub fn beats(&mut self, plan: &Plan, sight: &Sight, resolved: &Resolved, tick_ms: u64) -> u32 {
-        let longest = plan.longest_beats();
-        let seen = matches!(resolved.class, ReadingClass::Valid | ReadingClass::Held)
-            && resolved.fault.is_none();
+    pub fn next_ms(&mut self, plan: &Plan, resolved: &Resolved, tick_ms: u64) -> u32 {
+        let interval_ms = plan.logging.interval_ms;
+        #[expect(clippy::cast_possible_truncation, reason = "the low bits are wanted")]
+        let tick_ms = tick_ms as u32;
+        let seen = matches!(resolved.class, ReadingClass::Valid | ReadingClass::Held);
         let off = (resolved.estimate - self.around).abs();
-        let rests = seen
-            && off <= resolved.high - resolved.estimate
-            && self.beats > 0
-            && self.product == sight.product;
-        if !rests {
+        if !(seen && self.span_ms > 0 && off <= resolved.high - resolved.estimate) {
             *self = Self {
                 around: resolved.estimate,
                 since_ms: tick_ms,
-                beats: if seen { longest } else { 0 },
+                span_ms: plan.longest_ms(),
                 clear: false,
-                product: sight.product,
             };
-            return 1;
+            return interval_ms;
         }
-        let rest_ms = REST_MS_MIN.max(plan.logging.idle_interval_ms);
-        if self.beats < 2 || tick_ms.saturating_sub(self.since_ms) < u64::from(rest_ms) {
-            return 1;
+        let rested_ms = tick_ms.wrapping_sub(self.since_ms);
+        if self.span_ms / 2 < interval_ms
+            || rested_ms < REST_MS_MIN.max(plan.logging.idle_interval_ms)
+        {
+            return interval_ms;
         }
         if !self.clear {
-            let ahead_ms = self.beats.saturating_mul(plan.logging.interval_ms);
-            self.clear = is_clear(plan, &outlook(plan, sight, resolved, self.around, ahead_ms));
+            self.clear = is_clear(plan, resolved, self.around, self.span_ms);
         }
         if self.clear {
-            self.beats
+            self.span_ms
         } else {
-            self.beats /= 2;
-            1
+            self.span_ms = plan.logging.whole_ms(self.span_ms / 2);
+            interval_ms
         }
     }
 }
 
-/// Whether no alarm of a part and no limit of the sensor is met under these bounds, deadbands
-/// included.
-fn is_clear(plan: &Plan, outlook: &Resolved) -> bool {
-    let alarm = &plan.alarm;
-    let mut clear = outlook.fault.is_none();
-    loads_of_one(plan, outlook, &mut |_, part| {
-        let (outward, inward) = (part.utilisation_bound.lane(0), part.utilisation_inward.lane(0));
-        let judged = [
-            (outward, Some(&alarm.warn)),
-            (outward, Some(&alarm.alarm)),
-            (inward, alarm.inward.as_ref()),
-        ];
-        for (utilisation, threshold) in judged {
-            clear &= threshold.is_none_or(|threshold| {
-                Condition::of(utilisation, threshold.utilisation, threshold.deadband)
-                    == Condition::Gone
-            });
-        }
+/// Whether no alarm of a part is met by any reading of the next `ahead_ms`, deadbands included, nor
+/// the roof by a sensor of the surface. What is not a number is met.
+fn is_clear(plan: &Plan, resolved: &Resolved, around: f32, ahead_ms: u32) -> bool {
+    let density = resolved.density.hull(plan.liquid.any_product());
+    let (rise, fall) = reach(plan, density, ahead_ms);
+    let lowest = around - fall;
+    let room = HALF_WIDTHS * half_width(plan, lowest);
+    let (low, high) = (lowest - room, around + rise + room);
+    let ends = Resolved { estimate: around, low, high, density, ..*resolved };
+
+    let gone = |threshold: &ThresholdPlan| threshold.utilisation - threshold.deadband;
+    let outward = at_most(gone(&plan.alarm.warn), gone(&plan.alarm.alarm));
+    let inward = plan.alarm.inward.as_ref().map_or(f32::MAX, gone);
+    let mut clear = plan.level.sensor != LevelSensor::Surface || high < plan.shell_top_m;
+    loads_of_one(plan, &ends, &mut |_, part| {
+        clear &= part.utilisation_bound.lane(0) < outward;
+        clear &= part.utilisation_inward.lane(0) < inward;
     });
     clear
 }
 
 impl Plan {
-    /// Intervals in the longest time between two samples: the idle interval, never above the
-    /// response time; at least 1.
+    /// Longest time between two samples, ms: the idle interval, never above the response time, in
+    /// whole intervals.
     #[must_use]
-    pub fn longest_beats(&self) -> u32 {
-        let most_ms = self.logging.idle_interval_ms.min(self.alarm.response_time_ms);
-        most_ms.checked_div(self.logging.interval_ms).unwrap_or(1).max(1)
+    #[inline(never)]
+    pub fn longest_ms(&self) -> u32 {
+        self.logging.whole_ms(self.logging.idle_interval_ms.min(self.alarm.response_time_ms))
     }
 
     /// Longest time whose samples a sudden loss of power can take, ms: a wait and an interval.
     #[must_use]
     pub fn missing_ms_max(&self) -> u32 {
-        let beats = self.longest_beats();
-        self.logging.wait_ms(beats).saturating_add(beats.saturating_mul(self.logging.interval_ms))
+        let longest_ms = self.longest_ms();
+        self.logging.wait_ms(longest_ms).saturating_add(longest_ms)
     }
 }
 
 impl LoggingPlan {
-    /// How long a sample may wait in RAM when the next one comes after `beats` intervals, ms: as
-    /// many samples as at the short interval, six at most, no longer than 10 minutes.
+    /// The whole intervals in a time, at least one, ms.
+    const fn whole_ms(&self, time_ms: u32) -> u32 {
+        match time_ms.checked_div(self.interval_ms) {
+            None | Some(0) => self.interval_ms,
+            Some(count) => count.saturating_mul(self.interval_ms),
+        }
+    }
+
+    /// How long a sample may wait in RAM when the next one comes after `next_ms`, ms: as many
+    /// samples as at the short interval, six at most, no longer than 10 minutes.
     #[must_use]
-    pub fn wait_ms(&self, beats: u32) -> u32 {
+    #[inline(never)]
+    pub fn wait_ms(&self, next_ms: u32) -> u32 {
         let samples = self.flush_after_ms.checked_div(self.interval_ms).unwrap_or(0);
-        let waiting = samples.min(WAITING_AT_REST).saturating_mul(beats);
-        waiting.saturating_mul(self.interval_ms).min(WAIT_MS_MAX).max(self.flush_after_ms)
+        let wait_ms = samples.min(WAITING_AT_REST).saturating_mul(next_ms);
+        wait_ms.min(WAIT_MS_MAX).max(self.flush_after_ms)
     }
 }
 

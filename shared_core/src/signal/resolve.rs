@@ -208,7 +208,7 @@ fn project(
     let age_ms = tick_ms.saturating_sub(read_ms);
     let estimate = value(plan, count_16);
     let half = half_width(plan, estimate);
-    let (rise, fall) = reach(plan, density, age_ms);
+    let (rise, fall) = reach(plan, density, u32::try_from(age_ms).unwrap_or(u32::MAX));
     // A cap never cuts what was measured: the projection only stops there.
     let high = at_least(at_most(estimate + half + rise, brim), estimate + half);
     let low = at_most(at_least(estimate - half - fall, empty), estimate - half);
@@ -221,7 +221,7 @@ fn project(
 }
 
 /// How far a reading may rise and fall within some time, in the sensor's quantity.
-fn reach(plan: &Plan, density: Band, within_ms: u64) -> (f32, f32) {
+pub(crate) fn reach(plan: &Plan, density: Band, within_ms: u32) -> (f32, f32) {
     #[expect(clippy::cast_precision_loss, reason = "times beyond 2^24 ms are long past every cap")]
     let within_s = within_ms as f32 * 1.0e-3;
     let weight = plan.gravity_m_s2 * plan.liquid.with_layers(density).high_kg_m3;
@@ -236,29 +236,6 @@ fn reach(plan: &Plan, density: Band, within_ms: u64) -> (f32, f32) {
     let rise = plan.highest_rise_m_s * within_s * per_metre + swing;
     let fall = plan.highest_fall_m_s * within_s * per_metre + swing;
     (rise, fall)
-}
-
-/// Half-widths by which later readings of a level at rest may lie further out than its highest
-/// rates carry it; see [`crate::evaluate::Pace`].
-const OUTLOOK_HALF_WIDTHS: f32 = 5.0;
-
-/// Everything that the readings of the next `ahead_ms` can say of a level that now rests around a
-/// value, whatever the liquid's temperature then is: no cap cuts it.
-pub(crate) fn outlook(
-    plan: &Plan,
-    sight: &Sight,
-    resolved: &Resolved,
-    around: f32,
-    ahead_ms: u32,
-) -> Resolved {
-    let at_any = density(plan, &Sight { last_temperature: None, ..*sight });
-    let density = resolved.density.hull(at_any);
-    let (rise, fall) = reach(plan, density, ahead_ms.into());
-    let lowest = around - fall;
-    let room = OUTLOOK_HALF_WIDTHS * half_width(plan, lowest);
-    let (low, high) = (lowest - room, around + rise + room);
-    let fault = implausible(plan, high, 0.0, density);
-    Resolved { class: ReadingClass::Projected, estimate: around, low, high, density, fault }
 }
 
 /// Density of the top liquid: of the confirmed product, else of any; narrowed by a temperature

@@ -7,9 +7,9 @@ use crate::evaluate::{State, loads_of_one, part_loads_of_one, step};
 use crate::journal::entry::{Sample, TransitionCause};
 use crate::liquid::truth::Random;
 use crate::part::Capacities;
-use crate::plan::builder::{count_of, random, reads, water_tank};
+use crate::plan::builder::{count_of, exact, random, reads, water_tank};
 use crate::plan::{LevelSensor, Plan, Reference};
-use crate::signal::{Channel, Resolved, resolve};
+use crate::signal::{Channel, Resolved, SensorError, resolve};
 
 const INTERVAL_MS: u64 = 10_000;
 const SPAN_MS: u64 = 6 * 3_600_000;
@@ -88,10 +88,11 @@ fn run(plan: &Plan, known: &Plan, world: &World, adaptive: bool) -> (usize, Move
             let (id, step) = (moved.machine, moved.step);
             moves.push((tick_ms, id.number(), step.cause, step.to.number()));
         });
-        let beats = pace.beats(known, &state.sight, &resolved, tick_ms);
-        assert!((1..=known.longest_beats()).contains(&beats));
-        let beats = if adaptive { u64::from(beats) } else { 1 };
-        let beat_ms = (tick_ms / INTERVAL_MS + beats) * INTERVAL_MS;
+        let next_ms = u64::from(pace.next_ms(known, &resolved, tick_ms));
+        assert!((INTERVAL_MS..=known.longest_ms().into()).contains(&next_ms));
+        assert_eq!(next_ms % INTERVAL_MS, 0);
+        let next_ms = if adaptive { next_ms } else { INTERVAL_MS };
+        let beat_ms = tick_ms / INTERVAL_MS * INTERVAL_MS + next_ms;
         let expiry_ms =
             state.next_expiry_ms(plan, tick_ms).map(|wait| tick_ms + u64::from(wait.max(1)));
         tick_ms = beat_ms.min(expiry_ms.unwrap_or(u64::MAX));
@@ -186,16 +187,16 @@ fn a_level_beyond_the_highest_rates_is_noticed_late() {
     assert!(late > 5, "{late}");
 }
 
-/// Intervals until the next sample after `minutes` of this level.
-fn beats_after(plan: &Plan, minutes: u64, level_m: f64) -> u32 {
+/// Seconds until the next sample after `minutes` of this level.
+fn next_s(plan: &Plan, minutes: u64, level_m: f64) -> u32 {
     let (mut state, mut pace) = (State::default(), Pace::default());
-    let mut beats = 0;
+    let mut next_ms = 0;
     for sample in 0..=6 * minutes {
         let sample = reads(plan, sample * INTERVAL_MS, level_m);
         let resolved = step(plan, &mut state, &sample, |_| {});
-        beats = pace.beats(plan, &state.sight, &resolved, sample.tick_ms);
+        next_ms = pace.next_ms(plan, &resolved, sample.tick_ms);
     }
-    beats
+    next_ms / 1000
 }
 
 /// A course for 6 m of water at its design point, 0.3 m up: 0.83 of it at 5.031 m.
@@ -210,23 +211,23 @@ fn tank() -> Plan {
 #[test]
 fn the_distance_to_the_threshold_decides() {
     let plan = tank();
-    assert_eq!(beats_after(&plan, 4, 3.0), 1, "too short to show that it rests");
+    assert_eq!(next_s(&plan, 4, 3.0), 10, "too short to show that it rests");
     // 1 mm/s for 300 s is 0.3 m, and five half-widths are 0.01 m.
-    assert_eq!(beats_after(&plan, 10, 5.031 - 0.312), 30);
-    assert_eq!(beats_after(&plan, 10, 5.031 - 0.309), 15);
-    assert_eq!(beats_after(&plan, 10, 5.031 - 0.162), 15);
-    assert_eq!(beats_after(&plan, 10, 5.031 - 0.159), 7);
-    assert_eq!(beats_after(&plan, 10, 5.031 - 0.015), 1);
-    assert_eq!(beats_after(&plan, 10, 5.5), 1, "in the deadband or in alarm");
+    assert_eq!(next_s(&plan, 10, 5.031 - 0.312), 300);
+    assert_eq!(next_s(&plan, 10, 5.031 - 0.309), 150);
+    assert_eq!(next_s(&plan, 10, 5.031 - 0.162), 150);
+    assert_eq!(next_s(&plan, 10, 5.031 - 0.159), 70);
+    assert_eq!(next_s(&plan, 10, 5.031 - 0.015), 10);
+    assert_eq!(next_s(&plan, 10, 5.5), 10, "in the deadband or in alarm");
 }
 
 #[test]
 fn never_later_than_the_response_time() {
     let mut plan = tank();
     plan.alarm.response_time_ms = 125_000;
-    assert_eq!(beats_after(&plan, 10, 1.0), 12);
+    assert_eq!(next_s(&plan, 10, 1.0), 120);
     plan.alarm.response_time_ms = 0;
-    assert_eq!(beats_after(&plan, 10, 1.0), 1);
+    assert_eq!(next_s(&plan, 10, 1.0), 10);
 }
 
 #[test]
@@ -235,42 +236,48 @@ fn what_moves_fails_or_is_new_is_watched() {
     let (mut state, mut pace) = (State::default(), Pace::default());
     let mut tick_ms = 0;
     let mut look = |level: Option<f64>, times: u64| {
-        let mut beats = 0;
+        let mut next_ms = 0;
         for _ in 0..times {
             tick_ms += INTERVAL_MS;
             let mut sample = reads(&plan, tick_ms, level.unwrap_or(0.0));
             if level.is_none() {
-                sample.level = Channel::failed(crate::signal::SensorError::Silent);
+                sample.level = Channel::failed(SensorError::Silent);
             }
             let resolved =
                 resolve(&plan, &mut state.sight, tick_ms, sample.level, sample.temperature);
-            beats = pace.beats(&plan, &state.sight, &resolved, tick_ms);
+            next_ms = pace.next_ms(&plan, &resolved, tick_ms);
         }
-        beats
+        next_ms / 1000
     };
-    assert_eq!(look(Some(3.0), 40), 30);
-    assert_eq!(look(Some(3.001), 1), 30, "within the sensor's half-width");
-    assert_eq!(look(Some(3.003), 1), 1, "beyond it");
-    assert_eq!(look(Some(3.003), 40), 30);
-    assert_eq!(look(None, 1), 1);
-    assert_eq!(look(Some(3.003), 20), 1, "a new rest begins");
-    assert_eq!(look(Some(3.003), 20), 30);
-    state.sight.product = Some(0);
-    let level = reads(&plan, tick_ms, 3.003).level;
-    let resolved = resolve(&plan, &mut state.sight, tick_ms, level, Channel::default());
-    assert_eq!(pace.beats(&plan, &state.sight, &resolved, tick_ms), 1, "another product");
+    assert_eq!(look(Some(3.0), 40), 300);
+    assert_eq!(look(Some(3.001), 1), 300, "within the sensor's half-width");
+    assert_eq!(look(Some(3.003), 1), 10, "beyond it");
+    assert_eq!(look(Some(3.003), 40), 300);
+    assert_eq!(look(None, 1), 10);
+    assert_eq!(look(Some(3.003), 20), 10, "a new rest begins");
+    assert_eq!(look(Some(3.003), 20), 300);
+}
+
+/// Heavier products count, whatever is said to be in the tank.
+#[test]
+fn the_heaviest_product_decides() {
+    let mut plan = tank();
+    assert_eq!(next_s(&plan, 10, 4.0), 300);
+    plan.liquid.products.push(exact(1_300.0)).unwrap();
+    assert_eq!(next_s(&plan, 10, 4.0), 10);
+    assert_eq!(next_s(&plan, 10, 3.0), 300);
 }
 
 #[test]
 fn samples_wait_as_the_plan_says() {
     let mut logging = tank().logging;
-    assert_eq!(logging.wait_ms(1), 60_000);
-    assert_eq!(logging.wait_ms(6), 360_000, "six samples");
-    assert_eq!(logging.wait_ms(30), 600_000, "never above ten minutes");
+    assert_eq!(logging.wait_ms(10_000), 60_000);
+    assert_eq!(logging.wait_ms(60_000), 360_000, "six samples");
+    assert_eq!(logging.wait_ms(300_000), 600_000, "never above ten minutes");
     logging.flush_after_ms = 0;
-    assert_eq!(logging.wait_ms(30), 0, "written at once");
+    assert_eq!(logging.wait_ms(300_000), 0, "written at once");
     logging.flush_after_ms = 1_200_000;
-    assert_eq!(logging.wait_ms(30), 1_200_000, "as long as the plan says");
+    assert_eq!(logging.wait_ms(300_000), 1_200_000, "as long as the plan says");
     let plan = tank();
     assert_eq!(plan.missing_ms_max(), 900_000);
 }
