@@ -5,6 +5,7 @@
 use super::Pace;
 use crate::evaluate::{State, loads_of_one, part_loads_of_one, step};
 use crate::journal::entry::{Sample, TransitionCause};
+use crate::lane::at_least;
 use crate::liquid::truth::Random;
 use crate::part::Capacities;
 use crate::plan::builder::{count_of, exact, random, reads, water_tank};
@@ -104,7 +105,7 @@ fn run(plan: &Plan, known: &Plan, world: &World, adaptive: bool) -> (usize, Move
 fn ease(plan: &mut Plan, index: usize, reading: &Resolved) {
     let worst = |plan: &Plan| {
         let loads = part_loads_of_one(plan, index, reading).unwrap();
-        loads.utilisation_bound.lane(0).max(loads.utilisation_inward.lane(0))
+        at_least(loads.utilisation_bound.lane(0), loads.utilisation_inward.lane(0))
     };
     let stronger = 2.0 * worst(plan);
     if stronger > 1.4 {
@@ -138,7 +139,7 @@ fn plan_near_its_thresholds(random: &mut Random, rates: f64) -> (Plan, World) {
     let (mut outward, mut inward) = (0.0, 0.0);
     loads_of_one(&plan, &first, &mut |_, part| {
         let bounds = [part.utilisation_bound.lane(0), part.utilisation_inward.lane(0)];
-        (outward, inward) = (bounds[0].max(outward), bounds[1].max(inward));
+        (outward, inward) = (at_least(outward, bounds[0]), at_least(inward, bounds[1]));
     });
     let near = |worst: f32, share: f64| (worst * share as f32).clamp(0.05, 0.9);
     plan.alarm.warn.utilisation = near(outward, random.between(1.01, 1.2));
