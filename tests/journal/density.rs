@@ -4,11 +4,12 @@
 //! Measured between the first and the last sector of a ring, over whole sectors.
 
 use crate::bench::Remembered;
-use crate::series::{INTERVAL_MS, Logged, slow, tank};
+use crate::series::{INTERVAL_MS, Logged, resting_tank, slow, tank};
 use embedded_storage::nor_flash::NorFlash;
 use strake::sim::nor::Nor;
-use strake_core::evaluate::State;
+use strake_core::evaluate::{Pace, State, step};
 use strake_core::journal::{Entry, Item, Sample, SectorHeader, SectorReader};
+use strake_core::plan::{LevelSensor, SignalKind};
 use strake_firmware::journal::{Journal, Snapshot};
 
 /// Sectors of the ring; none is overwritten.
@@ -45,11 +46,20 @@ fn bytes_per_sample<const WORD: usize>(samples: &[Sample], wait: usize) -> f64
 where
     Nor<WORD>: NorFlash,
 {
+    let ends: Vec<bool> = (1..=samples.len()).map(|number| number % wait == 0).collect();
+    bytes_written::<WORD>(samples, &ends)
+}
+
+/// The same when all that waits is written after the samples that `ends` marks.
+fn bytes_written<const WORD: usize>(samples: &[Sample], ends: &[bool]) -> f64
+where
+    Nor<WORD>: NorFlash,
+{
     let (mut journal, _) =
         Journal::<_>::open(Nor::<WORD>::new(SECTORS), &mut Remembered::default()).unwrap();
-    for (number, sample) in (1..).zip(samples) {
+    for (sample, &end) in samples.iter().zip(ends) {
         journal.push(sample, &mut Device { tick_ms: sample.tick_ms }).unwrap();
-        if number % wait == 0 {
+        if end {
             journal.flush().unwrap();
         }
     }
@@ -120,4 +130,64 @@ fn recorded_tank() {
     let rows =
         [("laboratory tank, single readings", tank(Logged::AsRead), [2.971, 2.742, 1.788, 1.739])];
     print_and_compare(&rows, [3.00, 2.75, 2.0, 2.0]);
+}
+
+/// Those of the samples that a device with the shipped tank's plan takes with this idle interval,
+/// and after which of them it writes what waits.
+fn adaptive(all: &[Sample], idle_ms: u32) -> (Vec<Sample>, Vec<bool>) {
+    let text = include_str!("../../configs/brine_day_tank.toml");
+    let file = strake::tank::parse("tank.toml", text.as_bytes()).unwrap();
+    let mut plan = strake::compile::for_device(&file).unwrap().plan;
+    // The series counts the height of the surface in half millimetres.
+    plan.level.sensor = LevelSensor::Surface;
+    plan.level.signal = SignalKind::Register { unit: 1, function: 4, register: 0, coding: 0 };
+    (plan.level.zero_count_16, plan.level.value_at_zero) = (0, 0.0);
+    (plan.level.value_per_count_16, plan.level.uncertainty) = (0.000_5 / 16.0, 0.015);
+    plan.logging.idle_interval_ms = idle_ms;
+    assert_eq!(plan.check(), Ok(()));
+    let (mut state, mut pace) = (State::new(), Pace::default());
+    let (mut due_ms, mut flush_ms) = (0, u64::MAX);
+    let (mut taken, mut ends) = (Vec::new(), Vec::new());
+    for sample in all {
+        if sample.tick_ms < due_ms {
+            continue;
+        }
+        let resolved = step(&plan, &mut state, sample, |_| {});
+        let next_ms = pace.next_ms(&plan, &resolved, sample.tick_ms);
+        due_ms = sample.tick_ms + u64::from(next_ms);
+        flush_ms = flush_ms.min(sample.tick_ms + u64::from(plan.logging.wait_ms(next_ms)));
+        // As the device does it: what is due is written with the sample of that moment.
+        let end = sample.tick_ms >= flush_ms;
+        if end {
+            flush_ms = u64::MAX;
+        }
+        taken.push(*sample);
+        ends.push(end);
+    }
+    (taken, ends)
+}
+
+/// How long 8 MiB hold of a tank that rests for four fifths of the day.
+#[test]
+fn retention() {
+    const DAYS: u32 = 10;
+    const RING_BYTES: f64 = 8.0 * 1024.0 * 1024.0;
+    let all = resting_tank(DAYS.into());
+    println!("idle, ms  a day  bytes, words of 4 and 1  days");
+    let mut wrong = Vec::new();
+    for (idle_ms, expected) in
+        [(10_000, [433.0, 481.0]), (60_000, [1251.0, 1408.0]), (300_000, [1659.0, 1898.0])]
+    {
+        let (samples, ends) = adaptive(&all, idle_ms);
+        let per_day = samples.len() as f64 / f64::from(DAYS);
+        let bytes = [bytes_written::<4>(&samples, &ends), bytes_written::<1>(&samples, &ends)];
+        let days = bytes.map(|bytes| RING_BYTES / (bytes * per_day));
+        println!("{idle_ms:7} {per_day:7.0}  {bytes:.3?}  {days:.0?}");
+        // The noise comes from the platform's logarithm and cosine.
+        let near = days.iter().zip(expected).all(|(is, was)| (is / was - 1.0_f64).abs() < 0.01);
+        if !near || (idle_ms > 10_000 && days.iter().any(|&days| days < 550.0)) {
+            wrong.push((idle_ms, days));
+        }
+    }
+    assert!(wrong.is_empty(), "not as recorded, or below 550 days: {wrong:?}");
 }

@@ -126,3 +126,16 @@ pub(crate) fn tank(logged: Logged) -> Vec<Sample> {
     let phases = (0..20).flat_map(|phase| rows.iter().skip(phase % 10).step_by(10));
     samples(&phases.map(|row| row.1).collect::<Vec<_>>(), logged)
 }
+
+/// Days of a tank that rests for four fifths of the time: filled by 1.728 m and drawn down again at
+/// 0.2 mm/s each day, bursts with noise.
+pub(crate) fn resting_tank(days: u64) -> Vec<Sample> {
+    let per_hour = 3_600_000 / INTERVAL_MS;
+    let level_m = |number: u64| {
+        let hours = (number % (24 * per_hour)) as f64 / per_hour as f64;
+        let filled = ((hours - 6.0) / 2.4).clamp(0.0, 1.0);
+        let drawn = ((hours - 16.0) / 2.4).clamp(0.0, 1.0);
+        3.0 + 1.728 * (filled - drawn)
+    };
+    samples(&(0..days * 24 * per_hour).map(level_m).collect::<Vec<_>>(), Logged::Burst)
+}
