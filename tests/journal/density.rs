@@ -15,6 +15,9 @@ use strake_firmware::journal::{Journal, Snapshot};
 /// Sectors of the ring; none is overwritten.
 const SECTORS: usize = 64;
 
+/// Most bytes that a change of the interval may cost.
+const BYTES_A_CHANGE: f64 = 8.0;
+
 /// A device with one machine in alarm, nothing else.
 struct Device {
     tick_ms: u64,
@@ -172,14 +175,14 @@ fn adaptive(all: &[Sample], idle_ms: u32) -> (Vec<Sample>, Vec<bool>) {
 fn retention() {
     const DAYS: u32 = 10;
     const RING_BYTES: f64 = 8.0 * 1024.0 * 1024.0;
-    let all = resting_tank(DAYS.into());
+    let all = resting_tank(DAYS);
     println!("idle, ms  a day  bytes, words of 4 and 1  days");
     let mut wrong = Vec::new();
     for (idle_ms, expected) in
         [(10_000, [433.0, 481.0]), (60_000, [1251.0, 1408.0]), (300_000, [1659.0, 1898.0])]
     {
         let (samples, ends) = adaptive(&all, idle_ms);
-        let per_day = samples.len() as f64 / f64::from(DAYS);
+        let per_day = f64::from(u32::try_from(samples.len()).unwrap()) / f64::from(DAYS);
         let bytes = [bytes_written::<4>(&samples, &ends), bytes_written::<1>(&samples, &ends)];
         let days = bytes.map(|bytes| RING_BYTES / (bytes * per_day));
         println!("{idle_ms:7} {per_day:7.0}  {bytes:.3?}  {days:.0?}");
@@ -190,4 +193,22 @@ fn retention() {
         }
     }
     assert!(wrong.is_empty(), "not as recorded, or below 550 days: {wrong:?}");
+}
+
+/// What a change of the interval costs: the same samples with the ticks of one interval, and with
+/// stretches of fifty at 10 s and at 60 s in turn.
+#[test]
+fn a_change_of_the_interval() {
+    const STRETCH: usize = 50;
+    let even = resting_tank(4);
+    let mut uneven = even.clone();
+    let mut tick_ms = even[0].tick_ms;
+    for (number, sample) in uneven.iter_mut().enumerate() {
+        sample.tick_ms = tick_ms;
+        tick_ms += if (number / STRETCH).is_multiple_of(2) { 10_000 } else { 60_000 };
+    }
+    let [even, uneven] = [even, uneven].map(|samples| bytes_per_sample::<1>(&samples, 6));
+    let bytes = (uneven - even) * f64::from(u32::try_from(STRETCH).unwrap());
+    println!("{bytes:.2} bytes a change of the interval, words of 1");
+    assert!((0.0..=BYTES_A_CHANGE).contains(&bytes), "{bytes}");
 }

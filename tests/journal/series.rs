@@ -129,10 +129,10 @@ pub(crate) fn tank(logged: Logged) -> Vec<Sample> {
 
 /// Days of a tank that rests for four fifths of the time: filled by 1.728 m and drawn down again at
 /// 0.2 mm/s each day, bursts with noise.
-pub(crate) fn resting_tank(days: u64) -> Vec<Sample> {
-    let per_hour = 3_600_000 / INTERVAL_MS;
-    let level_m = |number: u64| {
-        let hours = (number % (24 * per_hour)) as f64 / per_hour as f64;
+pub(crate) fn resting_tank(days: u32) -> Vec<Sample> {
+    let per_hour = 3_600_000 / u32::try_from(INTERVAL_MS).unwrap();
+    let level_m = |number: u32| {
+        let hours = f64::from(number % (24 * per_hour)) / f64::from(per_hour);
         let filled = ((hours - 6.0) / 2.4).clamp(0.0, 1.0);
         let drawn = ((hours - 16.0) / 2.4).clamp(0.0, 1.0);
         3.0 + 1.728 * (filled - drawn)
