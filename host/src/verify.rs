@@ -10,8 +10,9 @@
 //! stored there. A place that is damaged on the device itself (a write torn by a loss of power,
 //! worn flash) is counted apart: no collection can mend it.
 //!
-//! What the numbers cannot tell: a place that was damaged before the device started again in the
-//! same sector. The device counts on from what it can read, as it must after a torn write.
+//! What the numbers cannot tell: how much a place took along that was damaged before the device
+//! started again in the same sector. The device counts on from what it can read, as it must after a
+//! torn write. That such a block was whole once, what was written behind it shows.
 
 mod contradiction;
 mod damage;
@@ -20,6 +21,7 @@ mod ledger;
 mod machines;
 mod report;
 pub mod text;
+mod torn;
 mod walk;
 
 pub use contradiction::Contradiction;
@@ -27,5 +29,6 @@ pub use damage::{Damage, Missing, Place, What};
 pub use document::Document;
 pub(crate) use ledger::Ledger;
 pub use report::Report;
+pub(crate) use torn::of_block;
 pub use walk::verify;
 pub(crate) use walk::{misplaced, stated_as_lost};

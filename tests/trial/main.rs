@@ -2,6 +2,7 @@
 
 mod bench;
 mod changed;
+mod decayed;
 mod measured;
 mod story;
 mod verified;

@@ -2,7 +2,7 @@
 
 use super::engine::Engine;
 use crate::journal_file::{JournalFile, JournalFileError};
-use crate::verify::{Damage, Ledger, Place, What, misplaced, stated_as_lost};
+use crate::verify::{Damage, Ledger, Place, What, misplaced, of_block, stated_as_lost};
 use std::io::{Read, Seek};
 use strake_core::evaluate::State;
 use strake_core::journal::{Entry, Item, STATE_BYTES_MAX, SectorHeader, SectorReader};
@@ -101,7 +101,8 @@ impl Walk {
         self.replay.engine.sector(&header, state.as_ref(), connected, lost);
         self.use_plan(file, header.plan_fingerprint)?;
         let mut damaged = false;
-        for item in reader {
+        let mut items = reader;
+        while let Some(item) = items.next() {
             match item {
                 Item::Entry(entry) => {
                     self.replay.records += 1;
@@ -117,8 +118,11 @@ impl Walk {
                 Item::State { .. } => {}
                 Item::Damage(damage) => {
                     let place = Place::Block { sequence, offset: damage.offset };
-                    self.ledger.place(place, What::Block(damage.kind));
-                    if !damaged && entries_missing(file, bytes, &header)? {
+                    let what = of_block(bytes, &header, damage, items.clone());
+                    self.ledger.place(place, what);
+                    if what == What::Decayed {
+                        self.replay.engine.hole();
+                    } else if !damaged && entries_missing(file, bytes, &header)? {
                         self.replay.engine.hole();
                     }
                     damaged = true;

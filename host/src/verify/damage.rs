@@ -49,6 +49,8 @@ pub enum What {
     Checkpoint,
     /// A block cannot be read.
     Block(DamageKind),
+    /// A block cannot be read that was whole when later ones were written.
+    Decayed,
     /// The sector is shorter in the file than the device had it.
     CutShort,
     /// The sectors are not in the file.
@@ -91,6 +93,10 @@ impl Damage {
             }
             (What::EarlierLap { .. }, Some(0)) => {
                 "nothing is missing: the device passed the worn place over"
+            }
+            (What::Decayed, None) => {
+                "readings and events are missing there, and how many cannot be told: a device that \
+                 starts again counts on from what it can read; loads and alarms there are unknown"
             }
             (_, Some(0)) => {
                 "no numbered entry is missing: a loss of power tore a write that was not durable yet"
@@ -141,6 +147,10 @@ impl fmt::Display for What {
             Self::Block(DamageKind::Torn) => {
                 f.write_str("a block without a right check; the rest of its page is passed over")
             }
+            Self::Decayed => f.write_str(
+                "a block without a right check that was whole when later ones were written; the \
+                 rest of its page is passed over",
+            ),
             Self::Block(DamageKind::UnknownForm) => {
                 f.write_str("a block of a form that this version does not know")
             }

@@ -160,6 +160,10 @@ impl Ledger {
     fn close(&mut self, missing: Missing) {
         let places = u32::try_from(self.open.len()).unwrap_or(u32::MAX);
         let missing = Missing { places, ..missing };
+        // What was whole once held entries, whatever the numbers say.
+        let decayed = self.open.iter().any(|&(_, what)| what == What::Decayed);
+        let entries = missing.entries.filter(|&entries| entries > 0 || !decayed);
+        let missing = Missing { entries, ..missing };
         self.damage.extend(self.open.drain(..).map(|(place, what)| Damage {
             place,
             what,

@@ -5,6 +5,7 @@ use super::damage::{Place, What};
 use super::ledger::Ledger;
 use super::machines::Machines;
 use super::report::Report;
+use super::torn::of_block;
 use crate::journal_file::{JournalFile, JournalFileError, StoredSector};
 use std::collections::BTreeSet;
 use std::io::{Read, Seek};
@@ -118,7 +119,7 @@ impl Walk {
         let reader = SectorReader::new(bytes);
         let found = reader.as_ref().map(|reader| reader.header().sequence).map_err(|&error| error);
         match reader {
-            Ok(reader) if reader.header().sequence == sequence => self.entries(reader),
+            Ok(reader) if reader.header().sequence == sequence => self.entries(bytes, reader),
             _ => {
                 let ring = self.report.identity.as_ref().map(|identity| identity.sectors);
                 let what = misplaced(found, sequence, ring);
@@ -134,7 +135,7 @@ impl Walk {
         }
     }
 
-    fn entries(&mut self, reader: SectorReader<'_>) {
+    fn entries(&mut self, bytes: &[u8], reader: SectorReader<'_>) {
         let header = reader.header().clone();
         let sequence = header.sequence;
         let mut room = [0; STATE_BYTES_MAX];
@@ -147,13 +148,14 @@ impl Walk {
         }
         self.header(&header);
         self.machines.checkpoint(sequence, state.as_ref(), &mut self.report.contradictions);
-        for item in reader {
+        let mut items = reader;
+        while let Some(item) = items.next() {
             match item {
                 Item::Entry(entry) => self.entry(sequence, &entry),
                 Item::State { .. } => {}
                 Item::Damage(damage) => {
                     let place = Place::Block { sequence, offset: damage.offset };
-                    self.damage(place, What::Block(damage.kind));
+                    self.damage(place, of_block(bytes, &header, damage, items.clone()));
                 }
             }
         }
