@@ -1,4 +1,5 @@
-//! A small corpus, made by the product itself: a simulated hour with an alarm, and what it left.
+//! Seeds, made by the product itself: a simulated hour with an alarm, and what it left. What the
+//! fuzzer found besides.
 
 use std::cell::RefCell;
 use std::path::Path;
@@ -16,6 +17,15 @@ use strake_core::wire::{
 };
 
 const SERIAL: u64 = 1_780_000_000;
+
+/// The inputs that the fuzzer found for a target, by their names.
+pub(crate) fn found(target: &str) -> Vec<Vec<u8>> {
+    let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("../tests/fuzz/corpus").join(target);
+    let Ok(entries) = std::fs::read_dir(folder) else { return Vec::new() };
+    let mut paths: Vec<_> = entries.map(|entry| entry.unwrap().path()).collect();
+    paths.sort();
+    paths.iter().map(|path| std::fs::read(path).unwrap()).collect()
+}
 
 /// The shipped tank files, and the broken ones with their mistakes.
 pub(crate) fn tanks() -> Vec<Vec<u8>> {

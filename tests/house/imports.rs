@@ -11,6 +11,7 @@ const ALLOWED: &[(&str, &[&str])] = &[
     ("firmware/Cargo.toml", &["strake-core"]),
     ("firmware/boards/", &["strake-core", "strake-firmware"]),
     ("host/Cargo.toml", &["strake-core", "strake-firmware"]),
+    ("tests/fuzz/engine/Cargo.toml", &["strake", "strake-core"]),
     ("tests/generate/Cargo.toml", &["strake-core", "strake-oracle"]),
     ("tests/oracle/Cargo.toml", &[]),
 ];

@@ -27,8 +27,13 @@ impl Level for Rising {
     }
 }
 
-/// Blocks of a page: their places, and whether they hold samples.
-fn blocks(page: &[u8]) -> Vec<(Range<usize>, bool)> {
+/// The place of a block in its page, and whether it holds samples.
+type Block = (Range<usize>, bool);
+
+/// Gives the byte of a page in which a bit is to turn, if its blocks suit.
+type Choose = fn(&[Block]) -> Option<usize>;
+
+fn blocks(page: &[u8]) -> Vec<Block> {
     let mut found = Vec::new();
     let mut at = 0;
     while at < page.len() && page[at] != 0xFF {
@@ -40,9 +45,8 @@ fn blocks(page: &[u8]) -> Vec<(Range<usize>, bool)> {
 }
 
 /// Two hours of a device, a change of its first sector, a cold start, a quarter of an hour more.
-/// `choose` gives the byte of the sector in which a bit turns, by page and blocks in it; without
-/// one the power is lost in the middle of a write instead.
-fn taken_home(choose: Option<fn(&[(Range<usize>, bool)]) -> Option<usize>>) -> (Report, Replay) {
+/// Without `choose` no bit turns; the power is lost in the middle of a write instead.
+fn taken_home(choose: Option<Choose>) -> (Report, Replay) {
     let text = include_bytes!("../../configs/brine_day_tank.toml");
     let compiled = compile::for_device(&strake::tank::parse("tank.toml", text).unwrap()).unwrap();
     let bench = Bench::new(Sensor::new(&compiled.plan, Box::new(Rising), 20.0, 3), 8);
@@ -59,23 +63,20 @@ fn taken_home(choose: Option<fn(&[(Range<usize>, bool)]) -> Option<usize>>) -> (
     assert_ne!(image[0], 0xFF);
     assert_eq!(image[4096], 0xFF, "all stands in the first sector");
     let used = (1..16).take_while(|page| image[page * 256] != 0xFF).collect::<Vec<_>>();
-    match choose {
-        Some(choose) => {
-            // Neither the first nor the last page.
-            let (page, byte) = used[1..used.len() - 1]
-                .iter()
-                .find_map(|page| Some((page, choose(&blocks(&image[page * 256..][..256]))?)))
-                .unwrap();
-            let address = u32::try_from(page * 256 + byte).unwrap();
-            bench.journal.with(|flash| flash.corrupt(address, 1, |byte| byte ^ 0x04));
-        }
-        None => {
-            // The last block as a cut write left it: its check is not there.
-            let page = used[used.len() - 1] * 256;
-            let (last, _) = blocks(&image[page..][..256]).pop().unwrap();
-            let check = u32::try_from(page + last.end - 4).unwrap();
-            bench.journal.with(|flash| flash.corrupt(check, 4, |_| 0xFF));
-        }
+    if let Some(choose) = choose {
+        // Neither the first nor the last page.
+        let (page, byte) = used[1..used.len() - 1]
+            .iter()
+            .find_map(|page| Some((page, choose(&blocks(&image[page * 256..][..256]))?)))
+            .unwrap();
+        let address = u32::try_from(page * 256 + byte).unwrap();
+        bench.journal.with(|flash| flash.corrupt(address, 1, |byte| byte ^ 0x04));
+    } else {
+        // The last block as a cut write left it: its check is not there.
+        let page = used[used.len() - 1] * 256;
+        let (last, _) = blocks(&image[page..][..256]).pop().unwrap();
+        let check = u32::try_from(page + last.end - 4).unwrap();
+        bench.journal.with(|flash| flash.corrupt(check, 4, |_| 0xFF));
     }
     machine.borrow_mut().happen(Happening::PowerOn);
     machine.borrow_mut().run_until(8_100_000);

@@ -120,9 +120,9 @@ impl Walk {
                     let place = Place::Block { sequence, offset: damage.offset };
                     let what = of_block(bytes, &header, damage, items.clone());
                     self.ledger.place(place, what);
-                    if what == What::Decayed {
-                        self.replay.engine.hole();
-                    } else if !damaged && entries_missing(file, bytes, &header)? {
+                    let missing =
+                        what == What::Decayed || !damaged && entries_missing(file, bytes, &header)?;
+                    if missing {
                         self.replay.engine.hole();
                     }
                     damaged = true;
