@@ -33,6 +33,34 @@ pub enum UnitError {
         /// The inches as written.
         inches: String,
     },
+    /// An absolute pressure where a gauge pressure belongs.
+    Absolute {
+        /// The unit as written.
+        unit: String,
+        /// The unit without its mark.
+        base: String,
+    },
+    /// A gauge pressure where an absolute one belongs.
+    Gauge {
+        /// The unit as written.
+        unit: String,
+        /// The unit without its mark.
+        base: String,
+    },
+    /// More or fewer degrees than a hydrometer of that scale has.
+    OffScale {
+        /// The scale.
+        scale: &'static str,
+        /// Its least degree.
+        low: i16,
+        /// Its highest degree.
+        high: i16,
+    },
+    /// Degrees Baume of two scales that part at water.
+    TwoScales {
+        /// The unit as written.
+        unit: String,
+    },
     /// No unit of this name is known.
     UnknownUnit {
         /// The unit as written.
@@ -70,6 +98,24 @@ impl fmt::Display for UnitError {
             Self::InchesOutOfRange { inches } => {
                 write!(f, "`{inches}` inches after feet; they run from 0 to below 12")
             }
+            Self::Absolute { unit, base } => write!(
+                f,
+                "`{unit}` is an absolute pressure, a gauge pressure belongs here; subtract the \
+                 pressure of the air at the site and write the rest in {base}"
+            ),
+            Self::Gauge { unit, base } => write!(
+                f,
+                "`{unit}` is a gauge pressure, an absolute one belongs here; add the pressure of \
+                 the air at the site and write the sum in {base}(a)"
+            ),
+            Self::OffScale { scale, low, high } => {
+                write!(f, "degrees of `{scale}` run from {low} to {high}")
+            }
+            Self::TwoScales { unit } => write!(
+                f,
+                "`{unit}` has two scales; write `Baume heavy` for a liquid heavier than water, \
+                 `Baume light` for a lighter one"
+            ),
             Self::UnknownUnit { unit, nearest: Some(nearest) } => {
                 write!(f, "unit `{unit}` is not known; the nearest known one is `{nearest}`")
             }

@@ -4,10 +4,16 @@
 //! wrong with it. Conversion factors are the exact ones of the SI Brochure (9th edition, tables 8
 //! and 9) and NIST SP 811 (2008), appendix B; [`format()`] goes the other way, for text output.
 //!
+//! Pressures are gauge unless the key asks for an absolute one; a unit may say which it is (`psig`,
+//! `kPa(a)`), and one that says the other is an error. Densities may also be read from a hydrometer
+//! (`35 degAPI`, `50 Baume heavy`, `60 degTw`), which means at 60 degF.
+//!
 //! A unit is needed on every quantity. Unit symbols keep their case, since `mPa` and `MPa` differ
 //! by nine powers of ten.
 
 mod error;
+mod gauge;
+mod hydrometer;
 mod number;
 mod table;
 mod write;
@@ -26,6 +32,8 @@ pub enum Quantity {
     Mass,
     /// Pressure or stress; Pa. Pressures are gauge unless the key says otherwise.
     Pressure,
+    /// Pressure counted from vacuum; Pa.
+    AbsolutePressure,
     /// Density; kg/m³. Relative density (`SG`, `RD`) is taken against 1000 kg/m³.
     Density,
     /// Force; N.
@@ -69,6 +77,7 @@ impl Quantity {
             Self::Volume => "a volume",
             Self::Mass => "a mass",
             Self::Pressure => "a pressure",
+            Self::AbsolutePressure => "an absolute pressure",
             Self::Density => "a density",
             Self::Force => "a force",
             Self::LineLoad => "a force per length",
@@ -96,6 +105,7 @@ impl Quantity {
             Self::Volume => "m3, L, US gal or imp gal",
             Self::Mass => "kg, t or lb",
             Self::Pressure => "kPa, MPa, mbar or psi",
+            Self::AbsolutePressure => "kPa(a), mbar(a) or psia",
             Self::Density => "kg/m3, SG or lb/ft3",
             Self::Force => "N, kN or lbf",
             Self::LineLoad => "N/m, kN/m or lbf/in",
@@ -118,7 +128,7 @@ impl Quantity {
 
 /// Reads a number with its unit; the result is in the unit [`Quantity`] names.
 ///
-/// Feet and inches may stand together (`"26 ft 3 in"`), a number may be a common or mixed fraction
+/// Feet and inches may stand together (`"26 ft 3 in"`, `26' 3"`), a number may be a common or mixed fraction
 /// (`"3/8 in"`, `"5 1/2 in"`), and relative density may lead (`"SG 1.2"`).
 ///
 /// # Errors
@@ -132,7 +142,7 @@ impl Quantity {
 /// assert_eq!(parse("137 MPa", Quantity::Pressure), Ok(137e6));
 /// ```
 pub fn parse(text: &str, quantity: Quantity) -> Result<f64, UnitError> {
-    let clean = normalise(text);
+    let clean = feet_in_words(normalise(text));
     if clean.is_empty() {
         return Err(UnitError::Empty);
     }
@@ -152,9 +162,43 @@ fn parse_plain(text: &str, quantity: Quantity) -> Result<f64, UnitError> {
     if unit.is_empty() {
         return Err(UnitError::MissingUnit { quantity });
     }
-    let unit = table::find(unit, quantity)?;
+    if let Some(scale) = hydrometer::find(unit)? {
+        if quantity == Quantity::Density {
+            return scale.density_kg_m3(value);
+        }
+        let (unit, found) = (unit.to_owned(), Quantity::Density);
+        return Err(UnitError::WrongDimension { unit, found, wanted: quantity });
+    }
+    let unit = table::find(unmarked(unit, quantity)?, quantity)?;
     let si = (value + unit.shift) * unit.numerator / unit.denominator;
     if si.is_finite() { Ok(si) } else { Err(UnitError::NotFinite) }
+}
+
+/// The unit of a pressure without its mark, which must not contradict the quantity.
+fn unmarked(unit: &str, quantity: Quantity) -> Result<&str, UnitError> {
+    let Some((base, mark)) = gauge::split(unit, table::knows) else { return Ok(unit) };
+    if !table::is_pressure(base) {
+        return Ok(unit);
+    }
+    match (quantity, mark) {
+        (Quantity::Pressure, gauge::Mark::Absolute) => {
+            Err(UnitError::Absolute { unit: unit.to_owned(), base: base.to_owned() })
+        }
+        (Quantity::AbsolutePressure, gauge::Mark::Gauge) => {
+            Err(UnitError::Gauge { unit: unit.to_owned(), base: base.to_owned() })
+        }
+        _ => Ok(base),
+    }
+}
+
+/// `26' 3"` as `26 ft 3 in`, when the text ends with such a mark: in the middle of a number it is
+/// a separator, which [`number::split`] refuses.
+fn feet_in_words(clean: String) -> String {
+    if clean.ends_with(['\'', '"']) {
+        clean.replace('\'', " ft ").replace('"', " in").replace("  ", " ").trim_end().to_owned()
+    } else {
+        clean
+    }
 }
 
 /// `feet` and `inches` are texts of numbers; a sign before the feet holds for both.
@@ -182,6 +226,8 @@ fn normalise(text: &str) -> String {
             '\u{b3}' => out.push('3'),
             '\u{b5}' | '\u{3bc}' => out.push('u'),
             '\u{2212}' => out.push('-'),
+            '\u{2032}' | '\u{2019}' => out.push('\''),
+            '\u{2033}' | '\u{201d}' => out.push('"'),
             '\u{b0}' => out.push_str("deg"),
             '^' => {}
             '\u{b7}' | '\u{22c5}' | '*' => out.push(' '),

@@ -67,8 +67,8 @@ static UNITS: &[Unit] = &[
     unit(Q::Volume, &["L", "l", "dm3"], 1.0, 1e3),
     unit(Q::Volume, &["hL", "hl"], 1.0, 10.0),
     unit(Q::Volume, &["ft3"], FT3, 1.0),
-    unit(Q::Volume, &["US gal"], US_GAL, 1.0),
-    unit(Q::Volume, &["imp gal"], IMP_GAL, 1.0),
+    unit(Q::Volume, &["US gal", "US gallon", "US gallons"], US_GAL, 1.0),
+    unit(Q::Volume, &["imp gal", "imperial gal", "imperial gallons"], IMP_GAL, 1.0),
     unit(Q::Volume, &["bbl"], 42.0 * US_GAL, 1.0),
     unit(Q::Mass, &["kg"], 1.0, 1.0),
     unit(Q::Mass, &["g"], 1.0, 1e3),
@@ -83,16 +83,18 @@ static UNITS: &[Unit] = &[
     unit(Q::Pressure, &["psi", "lbf/in2"], LBF, IN2),
     unit(Q::Pressure, &["ksi"], 1e3 * LBF, IN2),
     unit(Q::Pressure, &["psf", "lbf/ft2"], LBF, FT2),
-    unit(Q::Pressure, &["mH2O"], M_H2O, 1.0),
-    unit(Q::Pressure, &["mmH2O"], M_H2O, 1e3),
-    unit(Q::Pressure, &["ftH2O"], M_H2O * 3048.0, 1e4),
-    unit(Q::Pressure, &["inH2O", "inWC"], M_H2O * 254.0, 1e4),
+    unit(Q::Pressure, &["kgf/cm2"], 98_066.5, 1.0),
+    unit(Q::Pressure, &["tf/m2", "t/m2"], 9_806.65, 1.0),
+    unit(Q::Pressure, &["mH2O", "m H2O", "mWC"], M_H2O, 1.0),
+    unit(Q::Pressure, &["mmH2O", "mm H2O", "mmWC"], M_H2O, 1e3),
+    unit(Q::Pressure, &["ftH2O", "ft H2O", "ftWC"], M_H2O * 3048.0, 1e4),
+    unit(Q::Pressure, &["inH2O", "in H2O", "inWC"], M_H2O * 254.0, 1e4),
     unit(Q::Density, &["kg/m3", "g/L", "g/l"], 1.0, 1.0),
     unit(Q::Density, &["g/cm3", "g/mL", "g/ml", "kg/L", "kg/l", "t/m3"], 1e3, 1.0),
     unit(Q::Density, &["SG", "RD"], 1e3, 1.0),
     unit(Q::Density, &["lb/ft3"], LB, FT3),
-    unit(Q::Density, &["lb/US gal"], LB, US_GAL),
-    unit(Q::Density, &["lb/imp gal"], LB, IMP_GAL),
+    unit(Q::Density, &["lb/US gal", "lb/US gallon"], LB, US_GAL),
+    unit(Q::Density, &["lb/imp gal", "lb/imperial gal", "lb/imperial gallon"], LB, IMP_GAL),
     unit(Q::Force, &["N"], 1.0, 1.0),
     unit(Q::Force, &["kN"], 1e3, 1.0),
     unit(Q::Force, &["MN"], 1e6, 1.0),
@@ -158,12 +160,23 @@ static UNITS: &[Unit] = &[
     unit(Q::Charge, &["mAh"], 36.0, 10.0),
 ];
 
+/// Whether a unit of that name is known.
+pub(super) fn knows(name: &str) -> bool {
+    UNITS.iter().any(|unit| unit.names.contains(&name))
+}
+
+/// Whether that name is a unit of pressure.
+pub(super) fn is_pressure(name: &str) -> bool {
+    UNITS.iter().any(|unit| unit.quantity == Q::Pressure && unit.names.contains(&name))
+}
+
 /// The unit of that name for that quantity.
 ///
 /// # Errors
 ///
 /// [`UnitError::WrongDimension`] and [`UnitError::UnknownUnit`].
 pub(super) fn find(name: &str, wanted: Quantity) -> Result<&'static Unit, UnitError> {
+    let wanted = if wanted == Q::AbsolutePressure { Q::Pressure } else { wanted };
     let mut elsewhere = None;
     for unit in UNITS.iter().filter(|unit| unit.names.contains(&name)) {
         if unit.quantity == wanted {

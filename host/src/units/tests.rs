@@ -83,6 +83,24 @@ fn decimals_are_rounded_once() {
         ("59.9°", Q::AngleDegrees, 59.9),
         ("9.80665 m/s2", Q::Acceleration, 9.80665),
         ("+.5 m", Q::Length, 0.5),
+        ("26' 3\"", Q::Length, 8.001),
+        ("26'3\"", Q::Length, 8.001),
+        ("26\u{2032} 3\u{2033}", Q::Length, 8.001),
+        ("5' 4 1/2\"", Q::Length, 1.6383),
+        ("-2'", Q::Length, -0.6096),
+        ("3/8\"", Q::Length, 0.009_525),
+        ("2 kPa(g)", Q::Pressure, 2e3),
+        ("2 kPag", Q::Pressure, 2e3),
+        ("2 kPa g", Q::Pressure, 2e3),
+        ("0.5 barg", Q::Pressure, 5e4),
+        ("-3 mbar gauge", Q::Pressure, -300.0),
+        ("1 kgf/cm2", Q::Pressure, 98_066.5),
+        ("1 t/m2", Q::Pressure, 9806.65),
+        ("2 mmWC", Q::Pressure, 19.6133),
+        ("101.325 kPa(a)", Q::AbsolutePressure, 101_325.0),
+        ("1 bara", Q::AbsolutePressure, 1e5),
+        ("97 kPa", Q::AbsolutePressure, 97e3),
+        ("1.28 t/m³", Q::Density, 1280.0),
         ("8m", Q::Length, 8.0),
     ];
     for (text, quantity, expected) in exact {
@@ -110,6 +128,75 @@ fn every_mistake_has_its_error() {
         UnitError::WrongDimension { unit: "kg".to_owned(), found: Q::Mass, wanted: Q::Density };
     assert_eq!(parse("1280 kg", Q::Density), Err(wrong));
     assert!(matches!(parse("5 ft 3 in", Q::Time), Err(UnitError::WrongDimension { .. })));
+}
+
+#[test]
+fn gauge_is_not_absolute() {
+    for text in ["15.7 psia", "103 kPa(a)", "1.02 bar a", "103 kPa abs", "1 bara"] {
+        let error = parse(text, Q::Pressure).unwrap_err();
+        assert!(matches!(error, UnitError::Absolute { .. }), "{text}: {error}");
+        assert!(error.to_string().contains("subtract the pressure of the air"), "{error}");
+    }
+    let error = parse("1 psig", Q::AbsolutePressure).unwrap_err();
+    let remedy = "add the pressure of the air at the site and write the sum in psi(a)";
+    assert!(error.to_string().ends_with(remedy), "{error}");
+    // A mark is one of pressures only.
+    assert!(matches!(parse("3 mg", Q::Length), Err(UnitError::UnknownUnit { .. })));
+}
+
+/// Relative densities at 60 degF; common practice, from memory.
+#[test]
+fn hydrometers_give_densities_at_60_degf() {
+    let relative = |text: &str| parse(text, Q::Density).unwrap() / 999.016;
+    for (text, expected) in [
+        ("50 Baume heavy", 1.5263),
+        ("50 °Bé (heavy)", 1.5263),
+        ("0 degBe heavy", 1.0),
+        ("10 Baume light", 1.0),
+        ("40 degrees Baume, light", 0.8235),
+        ("35 degAPI", 0.8498),
+        ("35 °API", 0.8498),
+        ("10 API", 1.0),
+        ("60 degTw", 1.3),
+        ("60 Twaddell", 1.3),
+        ("60 °Tw", 1.3),
+    ] {
+        assert!((relative(text) - expected).abs() < 5e-5, "{text}: {}", relative(text));
+    }
+    assert!(matches!(parse("50 Baume", Q::Density), Err(UnitError::TwoScales { .. })));
+    assert!(matches!(parse("145 Baume heavy", Q::Density), Err(UnitError::OffScale { .. })));
+    assert!(matches!(parse("-131.5 degAPI", Q::Density), Err(UnitError::OffScale { .. })));
+    assert!(matches!(parse("35 degAPI", Q::Length), Err(UnitError::WrongDimension { .. })));
+}
+
+/// Slips that public pages print: the right figures stand beside them; published pages, common
+/// practice.
+#[test]
+fn slips_of_published_pages_come_out_right() {
+    let density = |text: &str| parse(text, Q::Density).unwrap();
+    let near = |got: f64, right: f64, within: f64| assert!((got - right).abs() < within, "{got}");
+    // Water at 8.24 lb/gal; it is 8.345 to the US and 10.022 to the imperial gallon.
+    near(1000.0 / density("1 lb/US gal"), 8.345, 5e-4);
+    near(1000.0 / density("1 lb/imperial gal"), 10.022, 5e-4);
+    // 0.424, 0.443 and 0.5 psi per foot; it is 0.4331 at 62.37 lb/ft3.
+    let psi = parse("1 psi", Q::Pressure).unwrap();
+    let foot = parse("1'", Q::Length).unwrap();
+    near(density("62.37 lb/ft3") * 9.80665 * foot / psi, 0.4331, 5e-5);
+    // 346 psi under 25 ft of water: pounds of mass times g, read as pounds of force.
+    near(density("62.37 lb/ft3") * 9.80665 * 25.0 * foot / psi, 10.83, 5e-3);
+    near(density("62.37 lb/ft3") * 9.80665 * 25.0 * foot, 74.66e3, 5.0);
+    // 11 and 12.5 and 15.8 lb/gal of fertiliser.
+    near(density("11 lb/US gal"), 1318.1, 0.05);
+    near(density("11 lb/imp gal"), 1097.5, 0.05);
+    near(density("12.5 lb/US gal"), 1497.8, 0.05);
+    near(density("15.8 lb/US gal"), 1893.3, 0.05);
+    // A round cover of 1.0 m under 9.2 m of a liquid of 950: in tonnes-force.
+    let t_m2 = parse("1 t/m2", Q::Pressure).unwrap();
+    let pressure = 950.0 * 9.80665 * 9.2;
+    near(pressure / t_m2, 8.74, 5e-3);
+    let force = pressure * std::f64::consts::FRAC_PI_4;
+    near(force / 9806.65, 6.864, 5e-4);
+    near(force, 67.32e3, 5.0);
 }
 
 #[test]
@@ -187,7 +274,7 @@ fn feet_of_water_and_pounds_per_gallon_come_out_in_si() {
 proptest! {
     #[test]
     fn any_text_gives_a_value_or_an_error(text in "\\PC{0,24}") {
-        for quantity in [Q::Length, Q::Density, Q::Temperature, Q::Ratio] {
+        for quantity in [Q::Length, Q::Density, Q::Pressure, Q::Temperature, Q::Ratio] {
             if let Ok(value) = parse(&text, quantity) {
                 prop_assert!(value.is_finite());
             }

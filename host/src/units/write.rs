@@ -58,7 +58,7 @@ pub fn format_si(value: f64, quantity: Quantity) -> String {
         }
         Quantity::Volume => &[shown(0.0, "m3", 1.0, Significant)],
         Quantity::Mass => &[shown(0.0, "kg", 1.0, Significant)],
-        Quantity::Pressure => &[
+        Quantity::Pressure | Quantity::AbsolutePressure => &[
             shown(1e6, "MPa", 1e6, Significant),
             shown(1e3, "kPa", 1e3, Significant),
             shown(0.0, "Pa", 1.0, Behind(1)),
@@ -97,7 +97,7 @@ pub fn format_us(value: f64, quantity: Quantity) -> String {
         Quantity::Length => &[shown(0.0, "in", 0.0254, Behind(3))],
         Quantity::Volume => &[shown(0.0, "US gal", 0.003_785_411_784, Significant)],
         Quantity::Mass => &[shown(0.0, "lb", 0.453_592_37, Significant)],
-        Quantity::Pressure => {
+        Quantity::Pressure | Quantity::AbsolutePressure => {
             &[shown(1e6, "ksi", 1e3 * PSI, Significant), shown(0.0, "psi", PSI, Significant)]
         }
         Quantity::Density => &[shown(0.0, "lb/ft3", 0.453_592_37 / 0.028_316_846_592, Behind(2))],

@@ -7,7 +7,7 @@ use crate::tank::model::{
     Count, LevelSensor, Modbus, PressureReference, Sensing, Signal, TemperatureSignal,
     TemperatureSource,
 };
-use crate::units::Quantity::{self, Length, Pressure, Ratio, TemperatureDifference, Time};
+use crate::units::Quantity::{self, AbsolutePressure, Length, Pressure, Ratio, TemperatureDifference, Time};
 
 #[derive(Clone, Copy, PartialEq, Eq)]
 enum Kind {
@@ -46,7 +46,13 @@ pub(super) fn level(root: &mut Section<'_>) -> Option<LevelSensor> {
         _ => "\"5 mm\", the half-width that a reading never exceeds, as a length",
     };
     let uncertainty = section.need(field("uncertainty", kind.senses(), Range::NOT_NEGATIVE, write));
-    let signal = signal(&mut section, kind);
+    let absolute = matches!(
+        sensing,
+        Some(Sensing::Head { reference, .. })
+            if matches!(reference.value, PressureReference::Absolute { .. })
+    );
+    let sensed = if absolute { AbsolutePressure } else { kind.senses() };
+    let signal = signal(&mut section, kind, sensed);
     let failed_after = section.take(field(
         "failed_after",
         Time,
@@ -96,7 +102,7 @@ fn reference(section: &mut Section<'_>) -> Option<Located<PressureReference>> {
         _ => {
             let air = section.need_rising_pair(field(
                 "atmosphere",
-                Pressure,
+                AbsolutePressure,
                 Range::between(3e4, 1.2e5),
                 "[\"97 kPa\", \"105 kPa\"], lowest and highest pressure of the air at the site",
             ));
@@ -107,7 +113,11 @@ fn reference(section: &mut Section<'_>) -> Option<Located<PressureReference>> {
     Some(Located::new(reference, word.span))
 }
 
-fn signal(section: &mut Section<'_>, kind: Kind) -> Option<Located<Signal>> {
+fn signal(
+    section: &mut Section<'_>,
+    kind: Kind,
+    sensed: Quantity,
+) -> Option<Located<Signal>> {
     const WRITE: &str = "write signal = { current_loop = [..] } or { modbus = {..} }";
     let mut table = section.table("signal", "{ current_loop = [..] } or { modbus = {..} }")?;
     let span = table.span;
@@ -119,7 +129,7 @@ fn signal(section: &mut Section<'_>, kind: Kind) -> Option<Located<Signal>> {
         let scale = field("scale", kind.senses(), Range::POSITIVE, count_write);
         modbus(&mut table, scale).map(Signal::Modbus)
     } else {
-        let ends = field("current_loop", kind.senses(), Range::ANY, span_write);
+        let ends = field("current_loop", sensed, Range::ANY, span_write);
         let ends = table.need_rising_pair(ends);
         ends.map(|[low, high]| Signal::CurrentLoop { at_4_ma: low.value, at_20_ma: high.value })
     };

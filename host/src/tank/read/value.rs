@@ -289,13 +289,16 @@ fn integer(item: Item<'_>) -> Option<i64> {
 fn code_of(error: &UnitError) -> Code {
     match error {
         UnitError::MissingUnit { .. } => Code::MissingUnit,
-        UnitError::UnknownUnit { .. } => Code::UnknownUnit,
-        UnitError::WrongDimension { .. } => Code::WrongDimension,
+        UnitError::UnknownUnit { .. } | UnitError::TwoScales { .. } => Code::UnknownUnit,
+        UnitError::WrongDimension { .. }
+        | UnitError::Absolute { .. }
+        | UnitError::Gauge { .. } => Code::WrongDimension,
         UnitError::Empty => Code::EmptyText,
         UnitError::NotANumber { .. }
         | UnitError::NotFinite
         | UnitError::Separator { .. }
         | UnitError::ZeroDenominator
+        | UnitError::OffScale { .. }
         | UnitError::InchesOutOfRange { .. } => Code::BadNumber,
     }
 }
