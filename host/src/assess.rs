@@ -16,6 +16,7 @@ pub mod text;
 pub use centre::centre;
 pub use desk::Desk;
 pub use document::{Capacity, Centre, Document, Judgement, Loads, NotJudged, PartRow, State};
+pub(crate) use notes::not_judged;
 pub use notes::{FIELD_CHECK, PROVISIONAL, assumed};
 pub use request::{Overrides, Request, RequestError, Source};
 
@@ -44,7 +45,7 @@ pub struct Assessment {
 pub fn assess(file: &TankFile, request: &Request) -> Result<Assessment, Findings> {
     let desk = Desk::new(compile::for_desk(file, &request.contents)?, file);
     let parts = part::rows(file, &desk, request);
-    let not_judged = notes::not_judged(file, &desk, UnitSystem::Si);
+    let not_judged = not_judged(file, &desk, UnitSystem::Si);
     let above_alarm = judged::above_alarm(file, &desk, &parts);
     let cautions = notes::cautions(file, request, &desk, &parts, UnitSystem::Si);
     let thresholds = file.alarm.as_ref().map(|_| &desk.plan().alarm);

@@ -7,7 +7,9 @@ pub mod collect;
 pub mod commission;
 mod device;
 pub mod ports;
+mod quantities;
 pub mod replay;
+pub mod rerate;
 pub mod seal;
 pub mod status;
 mod tank_file;
@@ -35,6 +37,8 @@ pub enum Command {
     Ports(ports::Args),
     /// Recompute a journal and compare it with what the device decided
     Replay(replay::Args),
+    /// The inverse questions for another liquid: limit level, density, thickness, remaining life
+    Rerate(rerate::Args),
     /// Compile a tank file into the plan that a device loads
     Seal(seal::Args),
     /// What a device says now: its health, the level, the parts, alarms and faults
@@ -58,6 +62,7 @@ impl Command {
             Self::Commission(args) => commission::run(args, term),
             Self::Ports(args) => ports::run(args, term),
             Self::Replay(args) => replay::run(args, term),
+            Self::Rerate(args) => rerate::run(args, term),
             Self::Seal(args) => seal::run(args, term),
             Self::Status(args) => status::run(args, term),
             Self::Trial(args) => trial::run(args, term),

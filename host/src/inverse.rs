@@ -7,10 +7,13 @@
 //! neighbouring f32. The answer is a list of intervals, and may be empty.
 
 mod limits;
+mod lines;
 mod round;
 
+pub(crate) use limits::within;
 pub use limits::{Limit, LimitedBy, PartLimits, first_reached, of_part};
-pub use round::{Step, rounded_down, rounded_up};
+pub use lines::{Against, By, Line, lines};
+pub use round::{Step, density_down, density_up, rounded_down, rounded_up, thickness_up};
 
 use strake_core::lane::Lane;
 
@@ -41,7 +44,17 @@ pub(crate) fn intervals(
     range: Interval,
     kinks: impl IntoIterator<Item = f32>,
 ) -> Vec<Interval> {
-    let levels = places(range, kinks);
+    intervals_on(criterion, range, kinks, GRID)
+}
+
+/// [`intervals`] on a grid of that many stretches.
+pub(crate) fn intervals_on(
+    criterion: &impl Criterion,
+    range: Interval,
+    kinks: impl IntoIterator<Item = f32>,
+    stretches: u16,
+) -> Vec<Interval> {
+    let levels = places(range, kinks, stretches);
     let mut found: Vec<Interval> = Vec::new();
     let mut before: Option<(f32, bool)> = None;
     for chunk in levels.chunks(LANES) {
@@ -78,9 +91,10 @@ fn extend(found: &mut Vec<Interval>, level_m: f32) {
 }
 
 /// Levels to look at, rising.
-fn places(range: Interval, kinks: impl IntoIterator<Item = f32>) -> Vec<f32> {
+fn places(range: Interval, kinks: impl IntoIterator<Item = f32>, stretches: u16) -> Vec<f32> {
     let width = range.high_m - range.low_m;
-    let grid = (0..=GRID).map(|i| range.low_m + width * (f32::from(i) / f32::from(GRID)));
+    let share = |i: u16| f32::from(i) / f32::from(stretches);
+    let grid = (0..=stretches).map(|i| range.low_m + width * share(i));
     let mut levels: Vec<f32> = grid.chain(kinks).chain([range.high_m]).collect();
     levels.retain(|level| (range.low_m..=range.high_m).contains(level));
     levels.sort_by(f32::total_cmp);
@@ -90,7 +104,7 @@ fn places(range: Interval, kinks: impl IntoIterator<Item = f32>) -> Vec<f32> {
 
 /// The last level at which the criterion holds on the way from `good` to `bad`: its neighbour in
 /// f32 towards `bad` is one at which it does not.
-fn edge(criterion: &impl Criterion, mut good: f32, mut bad: f32) -> f32 {
+pub(crate) fn edge(criterion: &impl Criterion, mut good: f32, mut bad: f32) -> f32 {
     loop {
         let middle = good + 0.5 * (bad - good);
         let at_good = middle.total_cmp(&good).is_eq();

@@ -19,6 +19,7 @@ pub mod plan_file;
 pub mod plan_words;
 pub mod plate;
 pub mod replay;
+pub mod rerate;
 pub mod sim;
 pub mod status;
 pub mod tank;

@@ -8,13 +8,20 @@ pub const WIDTH: usize = 100;
 pub struct Page {
     text: String,
     coloured: bool,
+    width: usize,
 }
 
 impl Page {
     /// An empty page.
     #[must_use]
     pub const fn new(coloured: bool) -> Self {
-        Self { text: String::new(), coloured }
+        Self { text: String::new(), coloured, width: WIDTH }
+    }
+
+    /// An empty page whose paragraphs keep to 80 columns.
+    #[must_use]
+    pub const fn narrow(coloured: bool) -> Self {
+        Self { text: String::new(), coloured, width: 80 }
     }
 
     /// The text; every line ends with a line's end, none with a blank.
@@ -47,7 +54,7 @@ impl Page {
     /// A paragraph: the first line behind `first`, the others behind as many blanks.
     pub fn paragraph(&mut self, first: &str, text: &str) {
         let indent = first.chars().count();
-        for (index, piece) in wrap(text, WIDTH.saturating_sub(indent)).iter().enumerate() {
+        for (index, piece) in wrap(text, self.width.saturating_sub(indent)).iter().enumerate() {
             if index == 0 {
                 self.line(&format!("{first}{piece}"));
             } else {

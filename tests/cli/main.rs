@@ -2,7 +2,9 @@
 
 mod assess;
 mod errors;
+mod liquids;
 mod odd_shapes;
+mod rerate;
 mod seal;
 mod streams;
 mod tank_text;

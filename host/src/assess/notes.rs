@@ -16,7 +16,7 @@ pub const FIELD_CHECK: &str = "field check: it replaces no licensed inspection a
                                prevention system";
 
 /// What is not judged, part by part, then the bare stretches of the shell.
-pub(super) fn not_judged(file: &TankFile, desk: &Desk, units: UnitSystem) -> Vec<NotJudged> {
+pub(crate) fn not_judged(file: &TankFile, desk: &Desk, units: UnitSystem) -> Vec<NotJudged> {
     let mut found = Vec::new();
     for (stated, part) in file.parts.iter().zip(&desk.plan().parts) {
         let mut note = |why: String| found.push(NotJudged { name: stated.name().to_owned(), why });

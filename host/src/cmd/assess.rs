@@ -1,11 +1,11 @@
 //! `strake assess`: the load sheet's numbers on the screen.
 
+use super::quantities::{density, length, pressure, temperature};
 use super::tank_file;
 use crate::assess::{self, Overrides, Request};
 use crate::exit::Exit;
 use crate::failure::Failure;
 use crate::term::{Format, Term};
-use crate::units::{Quantity, parse};
 use std::path::PathBuf;
 
 /// What `strake assess` is asked.
@@ -33,27 +33,6 @@ pub struct Args {
     /// One of the file's liquids by its name
     #[arg(long, value_name = "NAME")]
     pub product: Option<String>,
-}
-
-fn length(text: &str) -> Result<f64, String> {
-    quantity(text, Quantity::Length)
-}
-
-fn density(text: &str) -> Result<f64, String> {
-    quantity(text, Quantity::Density)
-}
-
-fn temperature(text: &str) -> Result<f64, String> {
-    quantity(text, Quantity::Temperature)
-}
-
-fn pressure(text: &str) -> Result<f64, String> {
-    quantity(text, Quantity::Pressure)
-}
-
-fn quantity(text: &str, quantity: Quantity) -> Result<f64, String> {
-    parse(text, quantity)
-        .map_err(|error| format!("{error}; write a number and a unit: {}", quantity.usual_units()))
 }
 
 /// Assesses the tank.

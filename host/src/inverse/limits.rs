@@ -75,17 +75,17 @@ pub struct PartLimits {
 
 /// The utilisation that is asked for.
 #[derive(Clone, Copy)]
-enum Which {
+pub(super) enum Which {
     Estimate,
     Bound,
     Inward,
 }
 
 /// A utilisation of one part at true levels of the surface, at or below one.
-struct Within<'a> {
-    desk: &'a Desk,
-    part: &'a Part,
-    which: Which,
+pub(super) struct Within<'a> {
+    pub(super) desk: &'a Desk,
+    pub(super) part: &'a Part,
+    pub(super) which: Which,
 }
 
 impl Criterion for Within<'_> {
@@ -99,6 +99,13 @@ impl Criterion for Within<'_> {
         };
         utilisation.0.map(|u| u <= 1.0)
     }
+}
+
+/// Whether the estimate keeps the outward capacities of a part at every level of a range.
+pub(crate) fn within(desk: &Desk, part: &Part, range: Interval) -> bool {
+    let criterion = Within { desk, part, which: Which::Estimate };
+    let found = intervals(&criterion, range, kinks(desk, part));
+    matches!(found.as_slice(), [one] if one.low_m <= range.low_m && one.high_m >= range.high_m)
 }
 
 /// Two criteria at once.
@@ -207,7 +214,7 @@ fn one_by_one(part: &Part) -> Vec<(LimitedBy, Part)> {
 }
 
 /// Levels at which a load of the part may change its course.
-fn kinks(desk: &Desk, part: &Part) -> Vec<f32> {
+pub(super) fn kinks(desk: &Desk, part: &Part) -> Vec<f32> {
     let plan = desk.plan();
     let designed = part.designed_for.iter().map(|state| state.level_m);
     plan_kinks(plan).into_iter().chain([part.bottom_m, part.top_m]).chain(designed).collect()

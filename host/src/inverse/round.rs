@@ -1,4 +1,6 @@
-//! Rounding to the safe side.
+//! Rounding to the safe side, in the units that are shown.
+
+use crate::units::UnitSystem;
 
 /// The step to which a level is rounded.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -10,6 +12,15 @@ pub enum Step {
 }
 
 impl Step {
+    /// The step of a system of units.
+    #[must_use]
+    pub const fn of(units: UnitSystem) -> Self {
+        match units {
+            UnitSystem::Si => Self::TenMillimetres,
+            UnitSystem::UsCustomary => Self::EighthInch,
+        }
+    }
+
     /// The step as it is written.
     #[must_use]
     pub const fn name(self) -> &'static str {
@@ -46,6 +57,44 @@ pub fn rounded_up(level_m: f32, step: Step) -> f64 {
     let up = -rounded_down(-level_m, step);
     // Minus nothing is nothing.
     if up == 0.0 { 0.0 } else { up }
+}
+
+/// Whole steps of a density: 1 kg/m³, or 0.1 lb/ft³.
+const fn density_step_kg_m3(units: UnitSystem) -> f64 {
+    match units {
+        UnitSystem::Si => 1.0,
+        UnitSystem::UsCustomary => 0.1 * 0.453_592_37 / 0.028_316_846_592,
+    }
+}
+
+/// The highest whole step of density at or below one, kg/m³; a step counts as at it when its f32
+/// is.
+#[must_use]
+pub fn density_down(density_kg_m3: f32, units: UnitSystem) -> f64 {
+    let step = density_step_kg_m3(units);
+    let near = (f64::from(density_kg_m3) / step).round();
+    let fits = [near + 1.0, near, near - 1.0].into_iter();
+    let fits = fits.map(|count| count * step).find(|&value| single(value) <= density_kg_m3);
+    fits.unwrap_or((near - 2.0) * step)
+}
+
+/// The lowest whole step of density at or above one, kg/m³.
+#[must_use]
+pub fn density_up(density_kg_m3: f32, units: UnitSystem) -> f64 {
+    -density_down(-density_kg_m3, units)
+}
+
+/// The least whole step of thickness at or above one, m: 0.01 mm, or 0.001 in.
+///
+/// A step within 1e-9 of the thickness counts as at it: a required thickness comes from a load with
+/// an error of 2e-6 and stands in a formula with it.
+#[must_use]
+pub fn thickness_up(thickness_m: f64, units: UnitSystem) -> f64 {
+    let per_m = match units {
+        UnitSystem::Si => 1e5,
+        UnitSystem::UsCustomary => 1e3 / 0.0254,
+    };
+    (thickness_m * per_m * (1.0 - 1e-9)).ceil() / per_m
 }
 
 #[expect(clippy::cast_possible_truncation, reason = "the f32 of a step is what is compared")]

@@ -128,8 +128,8 @@ impl Quantity {
 
 /// Reads a number with its unit; the result is in the unit [`Quantity`] names.
 ///
-/// Feet and inches may stand together (`"26 ft 3 in"`, `26' 3"`), a number may be a common or mixed fraction
-/// (`"3/8 in"`, `"5 1/2 in"`), and relative density may lead (`"SG 1.2"`).
+/// Feet and inches may stand together (`"26 ft 3 in"`, `26' 3"`), a number may be a common or mixed
+/// fraction (`"3/8 in"`, `"5 1/2 in"`), and relative density may lead (`"SG 1.2"`).
 ///
 /// # Errors
 ///

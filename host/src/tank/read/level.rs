@@ -7,7 +7,9 @@ use crate::tank::model::{
     Count, LevelSensor, Modbus, PressureReference, Sensing, Signal, TemperatureSignal,
     TemperatureSource,
 };
-use crate::units::Quantity::{self, AbsolutePressure, Length, Pressure, Ratio, TemperatureDifference, Time};
+use crate::units::Quantity::{
+    self, AbsolutePressure, Length, Pressure, Ratio, TemperatureDifference, Time,
+};
 
 #[derive(Clone, Copy, PartialEq, Eq)]
 enum Kind {
@@ -113,11 +115,7 @@ fn reference(section: &mut Section<'_>) -> Option<Located<PressureReference>> {
     Some(Located::new(reference, word.span))
 }
 
-fn signal(
-    section: &mut Section<'_>,
-    kind: Kind,
-    sensed: Quantity,
-) -> Option<Located<Signal>> {
+fn signal(section: &mut Section<'_>, kind: Kind, sensed: Quantity) -> Option<Located<Signal>> {
     const WRITE: &str = "write signal = { current_loop = [..] } or { modbus = {..} }";
     let mut table = section.table("signal", "{ current_loop = [..] } or { modbus = {..} }")?;
     let span = table.span;

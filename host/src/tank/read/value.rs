@@ -290,9 +290,9 @@ fn code_of(error: &UnitError) -> Code {
     match error {
         UnitError::MissingUnit { .. } => Code::MissingUnit,
         UnitError::UnknownUnit { .. } | UnitError::TwoScales { .. } => Code::UnknownUnit,
-        UnitError::WrongDimension { .. }
-        | UnitError::Absolute { .. }
-        | UnitError::Gauge { .. } => Code::WrongDimension,
+        UnitError::WrongDimension { .. } | UnitError::Absolute { .. } | UnitError::Gauge { .. } => {
+            Code::WrongDimension
+        }
         UnitError::Empty => Code::EmptyText,
         UnitError::NotANumber { .. }
         | UnitError::NotFinite
