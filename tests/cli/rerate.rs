@@ -8,7 +8,7 @@ use crate::{document, run};
 use serde_json::Value;
 
 const BRINE: &str = "configs/brine_day_tank.toml";
-const PSI: f64 = 6894.757_293_168_4;
+const PSI: f64 = 6_894.757_293_168_4;
 const FT: f64 = 0.3048;
 
 fn number(value: &Value) -> f64 {
