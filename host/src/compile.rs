@@ -8,7 +8,7 @@ mod bolts;
 mod contents;
 mod device;
 mod faults;
-
+mod filling;
 mod level;
 mod liquid;
 mod number;
@@ -19,6 +19,8 @@ mod site;
 pub(crate) use bolts::centroid_cut;
 pub use contents::Contents;
 pub use shape::{Numbers, plane_shape};
+
+pub use filling::{Curve, curve};
 pub(crate) use site::{HEIGHT_MAX_M, floor_m};
 pub use strake_core::plan_slot::fingerprint;
 
@@ -81,7 +83,10 @@ pub fn for_device(file: &TankFile) -> Result<Compiled, Findings> {
     }
     let mut plan = build(file, &Contents::of(file), &mut faults);
     device::complete(file, &mut plan, &mut faults);
-    finish(file, plan, faults)
+    let mut compiled = finish(file, plan, faults)?;
+    let mut faults = Faults::default();
+    filling::state(file, &mut compiled.plan, &mut faults);
+    if faults.is_empty() { Ok(compiled) } else { Err(file.findings(faults.into_list())) }
 }
 
 fn build(file: &TankFile, contents: &Contents, faults: &mut Faults) -> Plan {

@@ -31,6 +31,8 @@ pub struct PlanFile {
     pub tank_name: String,
     /// Names of the parts, in the plan's order.
     pub part_names: Vec<String>,
+    /// Why a margin shorter than needed was accepted at sealing.
+    pub accepted_margin: Option<String>,
     /// The plan's bytes, as the device takes them.
     pub bytes: Vec<u8>,
     /// Their fingerprint.
@@ -105,7 +107,9 @@ impl PlanFile {
         let (header, plan) = codec::decode(bytes)?;
         let mut part_names = Vec::new();
         let tank_name = codec::names(bytes, |_, name| part_names.push(name.to_owned()))?;
+        let accepted_margin = codec::accepted_margin(bytes)?.map(str::to_owned);
         Ok(Self {
+            accepted_margin,
             header,
             plan,
             tank_name: tank_name.as_str().to_owned(),

@@ -3,6 +3,7 @@
 //! Every number of the plan stands in exactly one **line**. Lines are compared by the numbers
 //! behind them, not by the digits shown, so that no change stays unseen.
 
+mod filling;
 mod parts;
 mod sensor;
 #[cfg(test)]
@@ -86,6 +87,8 @@ pub fn lines(file: &PlanFile, units: UnitSystem) -> Vec<Line> {
     words.sensor(&plan.level);
     words.alarm(&plan.alarm);
     words.logging(plan.logging);
+    words.filling(plan);
+    words.accepted_margin(file.accepted_margin.as_ref());
     for (name, part) in file.part_names.iter().zip(&plan.parts) {
         words.section.clone_from(name);
         words.part(part, &plan.numbers);
@@ -144,6 +147,7 @@ impl Words {
             logging: _,
             parts: _,
             numbers: _,
+            filling: _,
         } = plan;
         self.section("tank");
         self.quantity("gravity", *gravity_m_s2, Acceleration);

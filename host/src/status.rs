@@ -18,7 +18,7 @@ pub use words::{cause_words, state_words};
 
 use crate::link::{Client, LinkError, Port};
 use crate::plan_file::PlanFile;
-use strake_core::wire::{ErrorCode, FaultStatus, Identity, PartStatus, Status};
+use strake_core::wire::{ErrorCode, FaultStatus, FillingStatus, Identity, PartStatus, Status};
 
 /// The plan by which a device works.
 #[derive(Debug)]
@@ -77,6 +77,8 @@ pub struct Seen {
     pub parts: Vec<PartStatus>,
     /// Its fault causes.
     pub faults: FaultStatus,
+    /// How fast the tank fills; none from a device too old to say.
+    pub filling: Option<FillingStatus>,
     /// Its plan.
     pub in_force: InForce,
     /// This computer's time when the status came, UTC seconds.
@@ -98,6 +100,7 @@ pub fn look<P: Port, E: From<LinkError>>(
     let parts = (0..status.parts).map(|part| client.part_status(part));
     let parts = parts.collect::<Result<_, _>>()?;
     let faults = client.fault_status()?;
+    let filling = client.filling()?;
     let port = client.port_name().to_owned();
-    Ok(Seen { port, identity, status, parts, faults, in_force, utc_s })
+    Ok(Seen { port, identity, status, parts, faults, filling, in_force, utc_s })
 }

@@ -13,12 +13,14 @@ mod output;
 mod pace;
 mod state;
 mod step;
+mod trend;
 
 pub use digest::Digest;
 pub use output::{Output, Rhythm};
 pub use pace::{Pace, REST_MS_MIN};
 pub use state::{CHECKPOINT_BYTES_MAX, State};
 pub use step::{Judged, Moved, judge, step};
+pub use trend::{TimeToLimit, Trend};
 
 use crate::lane::Lane;
 use crate::liquid::{Readings, States, states};

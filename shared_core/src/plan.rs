@@ -7,10 +7,12 @@
 pub(crate) mod builder;
 mod check;
 pub mod codec;
+mod filling;
 mod level;
 
 pub use check::PlanError;
 pub use codec::{PLAN_BYTES_MAX, PLAN_FORMAT};
+pub use filling::{CURVE_ROWS_MAX, Filling, LIMITS_MAX};
 pub use level::{LevelPlan, LevelSensor, Reference, SignalKind, TemperaturePlan};
 
 use crate::alarm::PARTS_MAX;
@@ -20,8 +22,8 @@ use heapless::Vec;
 
 /// Liquids that can stand against the outside of parts.
 pub const OUTSIDE_MAX: usize = 2;
-/// Numbers of all parts together whose geometry has many.
-pub const NUMBERS_MAX: usize = 280;
+/// Numbers of all parts together whose geometry has many, and of the volume curve.
+pub const NUMBERS_MAX: usize = 256;
 /// Bytes of a name.
 pub const NAME_BYTES_MAX: usize = 24;
 
@@ -132,6 +134,8 @@ pub struct Plan {
     pub parts: Vec<Part, PARTS_MAX>,
     /// Numbers of the parts whose geometry has many: each part knows where its own begin.
     pub numbers: Vec<f32, NUMBERS_MAX>,
+    /// Volume curve and limit levels; nothing of it need be stated.
+    pub filling: Filling,
 }
 
 impl Plan {
@@ -203,6 +207,7 @@ impl Plan {
             logging: LoggingPlan { interval_ms: 0, idle_interval_ms: 0, flush_after_ms: 0 },
             parts: Vec::new(),
             numbers: Vec::new(),
+            filling: Filling::NONE,
         }
     }
 

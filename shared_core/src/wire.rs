@@ -35,8 +35,8 @@ pub use plan::{
     PlanReply,
 };
 pub use status::{
-    FaultStatus, FaultStatusRequest, LinkCounters, LoadValue, PartStatus, PartStatusRequest,
-    Status, StatusRequest,
+    FaultStatus, FaultStatusRequest, FillingRequest, FillingStatus, LinkCounters, LoadValue,
+    PartStatus, PartStatusRequest, Status, StatusRequest,
 };
 pub use text::Text;
 

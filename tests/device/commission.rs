@@ -59,8 +59,8 @@ fn a_later_plan_shows_what_it_changes_and_a_dry_run_changes_nothing() {
 
     let dry = on(&device, &["commission", file, "--dry-run"]);
     assert_eq!((dry.exit, dry.err.as_str()), (0, "dry run: nothing was changed\n"));
-    assert!(dry.out.contains("3 changes, old -> new"), "{}", dry.out);
-    assert!(dry.out.contains("overflow     9.300 m -> 9.200 m\n"), "{}", dry.out);
+    assert!(dry.out.contains("4 changes, old -> new"), "{}", dry.out);
+    assert!(dry.out.contains("9.300 m -> 9.200 m\n"), "{}", dry.out);
     assert!(!dry.out.contains("read back"), "{}", dry.out);
 
     let ran = on(&device, &["commission", file, "--format", "json"]);
@@ -76,7 +76,7 @@ fn a_later_plan_shows_what_it_changes_and_a_dry_run_changes_nothing() {
         .iter()
         .map(|change| change["label"].as_str().unwrap())
         .collect();
-    assert_eq!(labels, ["sealed", "fingerprint", "overflow"]);
+    assert_eq!(labels, ["sealed", "fingerprint", "overflow", "limit, other liquid 1"]);
     assert_eq!(document["changes"][2]["old"], "9.300 m");
     assert_eq!(document["loaded"]["read_back_identical"], true);
     // The first commissioning set the clock; the device's own time has stood since.

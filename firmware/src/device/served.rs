@@ -7,13 +7,13 @@ use crate::plan_store::StoreError;
 use crate::serve::{Refusal, Served};
 use embedded_storage::nor_flash::{NorFlash, ReadNorFlash};
 use strake_core::alarm::{FAULT_CAUSES, FaultCause, MachineId, PARTS_MAX, Threshold};
-use strake_core::evaluate::{levels_m, loads_of_one, part_loads_of_one};
+use strake_core::evaluate::{TimeToLimit, levels_m, loads_of_one, part_loads_of_one};
 use strake_core::journal::Entry;
 use strake_core::journal::entry::Presser;
 use strake_core::part::{Geometry, PartLoads};
 use strake_core::plan::PLAN_FORMAT;
 use strake_core::wire::{
-    ErrorCode, FaultStatus, Head, Identity, JournalBounds, LinkCounters, LoadValue,
+    ErrorCode, FaultStatus, FillingStatus, Head, Identity, JournalBounds, LinkCounters, LoadValue,
     PROTOCOL_VERSION, PartStatus, PlanBegin, PlanEntry, PlanList, Status, Text,
 };
 
@@ -63,7 +63,7 @@ impl<B: Board> Served for Device<B> {
         for (number, machine) in (0_u8..).zip(self.memory.state.machines()) {
             let normal = machine.state == strake_core::alarm::AlarmState::Normal;
             match MachineId::from_number(number) {
-                Some(id) if !normal && id.part().is_some() => status.alarms += 1,
+                Some(id) if !normal && id.is_load() => status.alarms += 1,
                 Some(_) if !normal => status.faults += 1,
                 _ => {}
             }
@@ -114,6 +114,19 @@ impl<B: Board> Served for Device<B> {
                 self.memory.state.machine(MachineId::of_fault(cause)).state.number()
             });
             *count = self.faults.total(number);
+        }
+        status
+    }
+
+    fn filling(&mut self) -> FillingStatus {
+        let alarm = self.memory.state.machine(MachineId::TIME_TO_LIMIT).state.number();
+        let mut status = FillingStatus { alarm, ..FillingStatus::default() };
+        if let Some(reading) = self.reading.filter(|_| self.in_force.is_some()) {
+            let time = self.memory.state.time_to_limit(&self.memory.plan, &reading);
+            status.state = time.number();
+            if let TimeToLimit::Filling { time_s, inflow_m3_s } = time {
+                (status.time_s, status.inflow_m3_s) = (time_s, inflow_m3_s);
+            }
         }
         status
     }

@@ -75,6 +75,7 @@ impl Memory {
                 outbox.put(&status);
             }
             Kind::FaultStatusRequest => outbox.put(&served.fault_status()),
+            Kind::FillingRequest => outbox.put(&served.filling()),
             Kind::PlanBegin => outbox.put(&self.plan.begin(&PlanBegin::decode(body)?, served)?),
             Kind::PlanChunk => outbox.put(&self.plan.chunk(&PlanChunk::decode(body)?, served)?),
             Kind::PlanCommit => outbox.put(&self.plan.commit(PlanCommit::decode(body)?, served)?),

@@ -1,7 +1,8 @@
 //! What the application offers to the link.
 
 use strake_core::wire::{
-    ErrorCode, FaultStatus, Head, Identity, JournalBounds, PartStatus, PlanBegin, PlanList, Status,
+    ErrorCode, FaultStatus, FillingStatus, Head, Identity, JournalBounds, PartStatus, PlanBegin,
+    PlanList, Status,
 };
 
 /// Why a request is not done, with a number whose meaning stands at the code.
@@ -34,6 +35,9 @@ pub trait Served {
 
     /// Every fault cause.
     fn fault_status(&mut self) -> FaultStatus;
+
+    /// How fast the tank fills.
+    fn filling(&mut self) -> FillingStatus;
 
     /// Sets the clock; called once for each order, however often its frame came.
     ///

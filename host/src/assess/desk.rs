@@ -23,7 +23,12 @@ impl Desk {
     /// The plan of a file.
     #[must_use]
     pub fn new(compiled: Compiled, file: &TankFile) -> Self {
-        let plan = compiled.plan;
+        Self::of_plan(compiled.plan, file)
+    }
+
+    /// A plan of the file, whatever liquid it has.
+    #[must_use]
+    pub fn of_plan(plan: Plan, file: &TankFile) -> Self {
         let mut true_level = plan.clone();
         true_level.level.sensor = LevelSensor::Surface;
         // A level stated here is never cut; up to where a tank can be filled, `range` says.

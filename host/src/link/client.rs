@@ -4,11 +4,11 @@ use super::error::doing;
 use super::{LinkError, Port, VersionMismatch, Versioned};
 use std::time::Duration;
 use strake_core::wire::{
-    Acknowledge, ClockSet, Done, ErrorCode, ErrorReply, FaultStatus, FaultStatusRequest, Frame,
-    Head, HeadRequest, Hello, Identity, JournalBounds, JournalBoundsRequest, Kind, Message,
-    PLAN_CHUNK_BYTES, PLAN_DATA_BYTES, PROTOCOL_VERSION, PartStatus, PartStatusRequest, PlanBegin,
-    PlanChunk, PlanCommit, PlanData, PlanEntry, PlanList, PlanListRequest, PlanRead, PlanReply,
-    REPLY_FRAME_BYTES, Receiver, Status, StatusRequest, Text,
+    Acknowledge, ClockSet, Done, ErrorCode, ErrorReply, FaultStatus, FaultStatusRequest,
+    FillingRequest, FillingStatus, Frame, Head, HeadRequest, Hello, Identity, JournalBounds,
+    JournalBoundsRequest, Kind, Message, PLAN_CHUNK_BYTES, PLAN_DATA_BYTES, PROTOCOL_VERSION,
+    PartStatus, PartStatusRequest, PlanBegin, PlanChunk, PlanCommit, PlanData, PlanEntry, PlanList,
+    PlanListRequest, PlanRead, PlanReply, REPLY_FRAME_BYTES, Receiver, Status, StatusRequest, Text,
 };
 
 /// How long one attempt waits for its reply.
@@ -132,6 +132,17 @@ impl<P: Port> Client<P> {
     /// [`LinkError`].
     pub fn fault_status(&mut self) -> Result<FaultStatus, LinkError> {
         self.ask(&FaultStatusRequest {}, |_| true)
+    }
+
+    /// How fast the tank fills; `None` from a device too old to say.
+    ///
+    /// # Errors
+    /// [`LinkError`].
+    pub fn filling(&mut self) -> Result<Option<FillingStatus>, LinkError> {
+        match self.ask(&FillingRequest {}, |_: &FillingStatus| true) {
+            Err(LinkError::Refused { code: ErrorCode::UnknownKind, .. }) => Ok(None),
+            answer => answer.map(Some),
+        }
     }
 
     /// Which sectors there are.

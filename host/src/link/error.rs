@@ -209,6 +209,7 @@ pub(super) fn doing(kind: Kind) -> &'static str {
         Kind::StatusRequest => "reading the status",
         Kind::PartStatusRequest => "reading a part's status",
         Kind::FaultStatusRequest => "reading the faults",
+        Kind::FillingRequest => "reading the time to limit",
         Kind::PlanBegin | Kind::PlanChunk => "loading the plan",
         Kind::PlanCommit => "putting the plan into force",
         Kind::PlanListRequest | Kind::PlanRead => "reading a plan back",

@@ -288,7 +288,8 @@ impl Summary {
                 (name, kind)
             }
             (None, Some(cause)) => (cause.to_string(), "fault"),
-            (None, None) => (format!("machine {}", machine.number()), "unknown"),
+            // The one machine that is neither.
+            (None, None) => ("tank".to_owned(), "time to limit"),
         }
     }
 

@@ -1,8 +1,8 @@
 //! From what a device said to the document.
 
 use super::document::{
-    AlarmRow, ClockRow, DeviceRow, Document, FaultRow, JournalRow, LevelRow, LinkRow, LoadsRow,
-    PartRow, PlanRow,
+    AlarmRow, ClockRow, DeviceRow, Document, FaultRow, FillingRow, JournalRow, LevelRow, LinkRow,
+    LoadsRow, PartRow, PlanRow,
 };
 use super::words::{cause_words, health_name, reading_name, state_name};
 use super::{InForce, Seen};
@@ -11,7 +11,7 @@ use crate::plan_file::PlanFile;
 use strake_core::alarm::AlarmState;
 use strake_core::journal::SECTOR_BYTES;
 use strake_core::signal::ReadingClass;
-use strake_core::wire::{Identity, LinkCounters, LoadValue, PartStatus, Status};
+use strake_core::wire::{FillingStatus, Identity, LinkCounters, LoadValue, PartStatus, Status};
 
 /// Thresholds of a part, in the order of the link.
 const THRESHOLDS: [&str; 3] = ["warn", "alarm", "inward"];
@@ -26,6 +26,8 @@ impl Document {
             seen.parts.iter().map(|part| part_row(part, plan, status.level_reading)).collect();
         parts.sort_by(|a, b| b.share_of_threshold.total_cmp(&a.share_of_threshold));
         let mut alarms = alarms(&seen.parts, plan);
+        let time_alarm = seen.filling.map_or(0, |filling| filling.alarm);
+        alarms.extend(time_row(time_alarm));
         alarms.sort_by_key(|row| row.urgency);
         let pairs = faults.states.iter().zip(&faults.counts).enumerate();
         let mut faults: Vec<FaultRow> = pairs
@@ -49,10 +51,11 @@ impl Document {
                 InForce::Nothing | InForce::Plan(_) => None,
             },
             health: health_name(status.output),
-            above_alarm: parts.iter().any(|part| part.above_alarm),
+            above_alarm: parts.iter().any(|part| part.above_alarm) || stands(time_alarm),
             alarms,
             faults,
             level: level_row(status),
+            filling: seen.filling.as_ref().and_then(|filling| filling_row(filling, plan)),
             parts,
             battery_v: (status.battery_mv > 0).then(|| f64::from(status.battery_mv) / 1000.0),
             clock: ClockRow::of(status, seen.utc_s),
@@ -127,7 +130,6 @@ fn part_row(part: &PartStatus, plan: Option<&PlanFile>, reading: u8) -> PartRow 
     let share =
         [outward, inward].into_iter().flatten().fold(0.0, |a: f32, b| if b > a { b } else { a });
     let [_, alarm_state, inward_state] = part.alarms;
-    let stands = |number| AlarmState::from_number(number).is_some_and(AlarmState::is_active);
     // Before the first reading the bounds are those of a full tank: "cannot see", no alarm.
     let above_alarm = reading != ReadingClass::NotYetRead as u8 && share >= 1.0
         || stands(alarm_state)
@@ -170,6 +172,37 @@ fn alarms(parts: &[PartStatus], plan: Option<&PlanFile>) -> Vec<AlarmRow> {
         }
     }
     found
+}
+
+fn time_row(state: u8) -> Option<AlarmRow> {
+    (state != 0).then(|| AlarmRow {
+        part: "tank".to_owned(),
+        threshold: "time to limit",
+        state: state_name(state),
+        urgency: 2 * urgency(state),
+    })
+}
+
+/// Whether an alarm counts as raised.
+fn stands(state: u8) -> bool {
+    AlarmState::from_number(state).is_some_and(AlarmState::is_active)
+}
+
+fn filling_row(filling: &FillingStatus, plan: Option<&PlanFile>) -> Option<FillingRow> {
+    let state = match filling.state {
+        0 => return None,
+        1 => "not_known",
+        2 => "not_filling",
+        3 => "filling",
+        _ => "unknown",
+    };
+    let fills = filling.state == 3;
+    Some(FillingRow {
+        state,
+        time_to_limit_s: fills.then_some(filling.time_s),
+        inflow_m3_s: fills.then_some(filling.inflow_m3_s),
+        response_time_s: plan.map(|plan| f64::from(plan.plan.alarm.response_time_ms) * 1e-3),
+    })
 }
 
 /// What must be looked at first has the lowest number.

@@ -28,6 +28,8 @@ pub struct Document {
     pub faults: Vec<FaultRow>,
     /// What is known of the level.
     pub level: LevelRow,
+    /// How fast the tank fills; null when the plan has no volume curve.
+    pub filling: Option<FillingRow>,
     /// The parts, the worst first; none before the first sample.
     pub parts: Vec<PartRow>,
     /// Supply; null when the board cannot tell.
@@ -152,6 +154,20 @@ pub struct LevelRow {
     pub low_m: Option<f32>,
     /// Upper bound.
     pub high_m: Option<f32>,
+}
+
+/// How fast the tank fills.
+#[derive(Clone, Debug, Serialize)]
+pub struct FillingRow {
+    /// `not_known`, `not_filling` or `filling`.
+    pub state: &'static str,
+    /// Until the first part reaches its capacity, at the upper end of the inflow; null unless
+    /// filling.
+    pub time_to_limit_s: Option<f32>,
+    /// Upper end of the inflow; null unless filling.
+    pub inflow_m3_s: Option<f32>,
+    /// The site needs this long to act; null where the plan cannot be read.
+    pub response_time_s: Option<f64>,
 }
 
 /// A part.

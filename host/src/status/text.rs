@@ -3,7 +3,7 @@
 use super::document::{ClockRow, Document};
 use super::words::state_words;
 use crate::page::Page;
-use crate::units::Quantity::{Length, Time};
+use crate::units::Quantity::{Flow, Length, Time};
 use crate::units::{UnitSystem, format};
 use crate::utc;
 
@@ -15,6 +15,7 @@ pub fn render(document: &Document, units: UnitSystem, coloured: bool) -> String 
     alarms(document, &mut page);
     faults(document, &mut page);
     level(document, units, &mut page);
+    filling(document, units, &mut page);
     parts(document, &mut page);
     device(document, &mut page);
     page.blank();
@@ -82,6 +83,26 @@ fn level(document: &Document, units: UnitSystem, page: &mut Page) {
         )),
         _ => page.line(&format!("  {note}")),
     }
+}
+
+/// One line under the level.
+fn filling(document: &Document, units: UnitSystem, page: &mut Page) {
+    let Some(filling) = &document.filling else { return };
+    let said = match (filling.state, filling.time_to_limit_s, filling.inflow_m3_s) {
+        ("filling", Some(time_s), Some(inflow)) => {
+            let needed = filling.response_time_s.map_or_else(String::new, |needed_s| {
+                format!(", {} are needed", format(needed_s, Time, units))
+            });
+            format!(
+                "filling, at most {}: {} to the calculated limit level{needed}",
+                format(f64::from(inflow), Flow, units),
+                format(f64::from(time_s), Time, units)
+            )
+        }
+        ("not_filling", ..) => "not filling".to_owned(),
+        _ => "inflow not known yet".to_owned(),
+    };
+    page.line(&format!("  {said}"));
 }
 
 fn parts(document: &Document, page: &mut Page) {

@@ -153,6 +153,8 @@ codes! {
     OutsideRange = "outside-range",
     /// A table of densities that contradicts itself or the density.
     DensityTable = "density-table",
+    /// A strapping table that is out of order or ends too early.
+    StrappingTable = "strapping-table",
     /// A lighter liquid below a heavier one.
     DensityOrder = "density-order",
     /// Layers whose surfaces are not in falling order.

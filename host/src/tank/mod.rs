@@ -25,6 +25,8 @@ pub const MAX_PARTS: usize = 32;
 pub const MAX_LAYERS: usize = 4;
 /// Most products beside the liquid.
 pub const MAX_PRODUCTS: usize = 8;
+/// Most rows of a strapping table.
+pub const MAX_STRAPPING_ROWS: usize = 32;
 /// Longest name, in bytes of UTF-8.
 pub const NAME_BYTES: usize = 24;
 /// Largest file read, bytes; a tank file is some kilobytes.

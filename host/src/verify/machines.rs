@@ -78,7 +78,7 @@ impl Machines {
             Entry::StartUp { .. } => self.known = [None; MACHINES],
             Entry::PlanChange { .. } => {
                 for (number, known) in (0_u8..).zip(&mut self.known) {
-                    if MachineId::from_number(number).is_some_and(|id| id.part().is_some()) {
+                    if MachineId::from_number(number).is_some_and(MachineId::is_load) {
                         *known = Some(AlarmState::Normal);
                     }
                 }

@@ -8,8 +8,10 @@ pub const PARTS_MAX: usize = 32;
 const THRESHOLDS: usize = 3;
 /// Fault causes a device can report.
 pub const FAULT_CAUSES: usize = 16;
-/// All machines: three per part, then one per fault cause.
-pub const MACHINES: usize = PARTS_MAX * THRESHOLDS + FAULT_CAUSES;
+/// Number of the machine of the time to limit.
+const TIME_TO_LIMIT: u8 = 112;
+/// All machines: three per part, one per fault cause, one for the time to limit.
+pub const MACHINES: usize = PARTS_MAX * THRESHOLDS + FAULT_CAUSES + 1;
 
 /// What a part's machine watches.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -112,7 +114,8 @@ impl fmt::Display for FaultCause {
     }
 }
 
-/// One alarm machine: a part's threshold or a fault cause. Always below [`MACHINES`].
+/// One alarm machine: a part's threshold, a fault cause, or the time to limit. Always below
+/// [`MACHINES`].
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 #[cfg_attr(feature = "defmt", derive(defmt::Format))]
 pub struct MachineId(u8);
@@ -131,11 +134,20 @@ impl MachineId {
         Self(96 + cause.number())
     }
 
+    /// The machine of the time to limit.
+    pub const TIME_TO_LIMIT: Self = Self(TIME_TO_LIMIT);
+
+    /// Whether it watches what the liquid does (a part, or the time to limit), not the device.
+    #[must_use]
+    pub const fn is_load(self) -> bool {
+        self.0 < 96 || self.0 == TIME_TO_LIMIT
+    }
+
     /// The machine with this number; `None` for a number no version has written.
     #[must_use]
     pub fn from_number(number: u8) -> Option<Self> {
         let id = Self(number);
-        (id.part().is_some() || id.fault().is_some()).then_some(id)
+        (id.is_load() || id.fault().is_some()).then_some(id)
     }
 
     /// The number that stands in the journal.

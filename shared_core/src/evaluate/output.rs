@@ -53,7 +53,7 @@ impl Output {
             output.contact_closed &= !opens;
             output.sounding |= sounds;
             if shows {
-                let of_part = MachineId::from_number(number).and_then(MachineId::part).is_some();
+                let of_part = MachineId::from_number(number).is_some_and(MachineId::is_load);
                 output.rhythm = match (of_part, output.rhythm) {
                     (true, _) | (false, Rhythm::ActNow) => Rhythm::ActNow,
                     (false, _) => Rhythm::CannotSee,

@@ -9,15 +9,21 @@
 //! | number of machines u8, each: number u8, state u8 (bit 7: pending), since u32, entered u32 | 1 + 10 n |
 //!
 //! Only machines that are not normal stand in the list, by rising number.
+//!
+//! Version 2 is written where volumes for the time to limit are known; behind the fields of version
+//! 1 it has their number u8 and, oldest first, each: tick u32, volume f32.
 
 use super::digest::{Digest, fold};
+use super::trend::{POINTS, Point, Trend};
 use crate::alarm::{AlarmState, MACHINES, Machine, MachineId, Move};
 use crate::cursor::{Sink, Source};
 use crate::signal::Sight;
 
 /// Most bytes of a checkpoint.
-pub const CHECKPOINT_BYTES_MAX: usize = 40 + 10 * MACHINES;
+pub const CHECKPOINT_BYTES_MAX: usize = 41 + 10 * MACHINES + 8 * POINTS;
 const VERSION: u8 = 1;
+/// With volumes behind the machines.
+const VERSION_WITH_VOLUMES: u8 = 2;
 const PENDING: u8 = 0x80;
 
 /// State of [`super::step`].
@@ -26,6 +32,8 @@ pub struct State {
     /// What is remembered of the sensors.
     pub sight: Sight,
     machines: [Machine; MACHINES],
+    /// The last volumes, for the time to limit.
+    pub(super) trend: Trend,
     /// Running hash of all results.
     pub hash: u64,
     /// Samples evaluated since the journal began.
@@ -42,7 +50,13 @@ impl State {
     /// Nothing is read, every machine is normal. Every bit is zero.
     #[must_use]
     pub const fn new() -> Self {
-        Self { sight: Sight::NONE, machines: [Machine::NORMAL; MACHINES], hash: 0, samples: 0 }
+        Self {
+            sight: Sight::NONE,
+            machines: [Machine::NORMAL; MACHINES],
+            trend: Trend::NONE,
+            hash: 0,
+            samples: 0,
+        }
     }
 
     /// All machines, by number.
@@ -68,6 +82,8 @@ impl State {
         for machine in &mut self.machines {
             machine.restart(tick_ms);
         }
+        // Ticks of another start say nothing of the time between.
+        self.trend = Trend::NONE;
     }
 
     /// Another plan took over: machines belong to the old plan's parts and start anew; faults stay.
@@ -75,7 +91,7 @@ impl State {
         self.restart(tick_ms);
         self.sight.product = None;
         for (number, machine) in (0_u8..).zip(&mut self.machines) {
-            if MachineId::from_number(number).is_some_and(|id| id.part().is_some()) {
+            if MachineId::from_number(number).is_some_and(MachineId::is_load) {
                 *machine = Machine::default();
             }
         }
@@ -99,7 +115,8 @@ impl State {
     pub fn encode(&self, out: &mut [u8]) -> Option<usize> {
         let mut sink = Sink::new(out);
         let sight = &self.sight;
-        sink.u8(VERSION);
+        let volumes = self.trend.points();
+        sink.u8(if volumes.is_empty() { VERSION } else { VERSION_WITH_VOLUMES });
         sink.u64(self.hash);
         sink.u32(self.samples);
         let flags = [
@@ -122,6 +139,13 @@ impl State {
             sink.u8(machine.state.number() | if machine.pending { PENDING } else { 0 });
             sink.u32(machine.since_ms);
             sink.u32(machine.entered_ms);
+        }
+        if !volumes.is_empty() {
+            sink.u8(u8::try_from(volumes.len()).unwrap_or(u8::MAX));
+        }
+        for point in volumes {
+            sink.u32(point.tick_ms);
+            sink.u32(point.volume_bits);
         }
         sink.finish()
     }
@@ -148,6 +172,7 @@ impl State {
     fn clear(&mut self) {
         self.sight = Sight::NONE;
         self.machines.fill(Machine::NORMAL);
+        self.trend = Trend::NONE;
         self.hash = 0;
         self.samples = 0;
     }
@@ -155,7 +180,8 @@ impl State {
     /// Reads a checkpoint into a new state; what stands in it after `None` means nothing.
     fn read(&mut self, bytes: &[u8]) -> Option<()> {
         let mut source = Source(bytes);
-        if source.u8()? != VERSION {
+        let version = source.u8()?;
+        if version != VERSION && version != VERSION_WITH_VOLUMES {
             return None;
         }
         self.hash = source.u64()?;
@@ -192,6 +218,16 @@ impl State {
                 return None;
             }
             *self.machine_mut(id)? = machine;
+        }
+        if version == VERSION_WITH_VOLUMES {
+            let count = source.u8()?;
+            if !(1..=POINTS).contains(&usize::from(count)) {
+                return None;
+            }
+            for _ in 0..count {
+                let point = Point { tick_ms: source.u32()?, volume_bits: source.u32()? };
+                self.trend.push(point);
+            }
         }
         source.0.is_empty().then_some(())
     }

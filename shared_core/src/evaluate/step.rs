@@ -1,6 +1,7 @@
 //! One sample, one press: what moves the machines.
 
-use super::{Digest, State, loads_of_one};
+use super::digest::fold;
+use super::{Digest, State, TimeToLimit, loads_of_one};
 use crate::alarm::{Condition, FaultCause, MachineId, Move, Settings, Threshold};
 use crate::journal::entry::{Sample, Transition};
 use crate::plan::{Plan, ThresholdPlan};
@@ -105,6 +106,9 @@ pub fn judge<const N: usize>(
             }
         }
     }
+    if plan.filling.is_stated() {
+        judge_time(plan, state, tick_ms, resolved, &mut moved);
+    }
     for cause in FaultCause::ALL {
         let stands = fault_stands(resolved, cause);
         let condition = if stands { Condition::Stands } else { Condition::Gone };
@@ -117,19 +121,55 @@ pub fn judge<const N: usize>(
     }
 }
 
+/// Share of the response time by which an alarm of the time to limit must clear it to go.
+const TIME_DEADBAND: f32 = 0.1;
+
+/// Takes the volume in and judges the time to limit against the response time. While it is not
+/// known, nothing is raised and nothing returns.
+#[inline(never)]
+fn judge_time(
+    plan: &Plan,
+    state: &mut State,
+    tick_ms: u64,
+    resolved: &Resolved,
+    moved: &mut dyn FnMut(Moved),
+) {
+    if state.trend.take(plan, tick_ms, resolved) {
+        state.hash = fold(state.hash, state.trend.bits());
+    }
+    #[expect(clippy::cast_precision_loss, reason = "a response time in ms, to 6e-8 of it")]
+    let response_s = plan.alarm.response_time_ms as f32 * 1.0e-3;
+    let (condition, share) = match state.time_to_limit(plan, resolved) {
+        TimeToLimit::NotStated | TimeToLimit::NotKnown => (Condition::Between, 0.0),
+        TimeToLimit::NotFilling => (Condition::Gone, 0.0),
+        TimeToLimit::Filling { time_s, .. } => {
+            // The millisecond keeps the share finite at the limit itself.
+            let share = response_s / (time_s + 1.0e-3);
+            (Condition::of(share, 1.0, TIME_DEADBAND), share)
+        }
+    };
+    let id = MachineId::TIME_TO_LIMIT;
+    if !rests(state, id, condition) {
+        let settings = machine_settings(plan, &plan.alarm.alarm);
+        apply(state, id, &settings, condition, (tick_ms, share), moved);
+    }
+}
+
 /// A normal machine stays as it is unless its condition stands: most machines, most of the time.
 #[inline]
 fn rests(state: &State, id: MachineId, condition: Condition) -> bool {
     condition != Condition::Stands && state.machine(id).is_normal()
 }
 
+// One function in every image: it is called for the few machines that do not rest.
+#[inline(never)]
 fn apply(
     state: &mut State,
     id: MachineId,
     settings: &Settings,
     condition: Condition,
     (tick_ms, utilisation): (u64, f32),
-    moved: &mut impl FnMut(Moved),
+    moved: &mut dyn FnMut(Moved),
 ) {
     let step = state.machine_mut(id).and_then(|m| m.sample(settings, condition, tick_ms));
     if let Some(step) = step {
@@ -201,6 +241,12 @@ fn fault_stands(resolved: &Resolved, cause: FaultCause) -> bool {
 }
 
 impl State {
+    /// The time to limit under a reading, by the volumes taken in so far.
+    #[must_use]
+    pub fn time_to_limit(&self, plan: &Plan, resolved: &Resolved) -> TimeToLimit {
+        self.trend.time_to_limit(plan, self.sight.product, resolved)
+    }
+
     /// A fault that the device found by itself and wrote to its journal (journal, plan). Its
     /// machine is raised at once and latches. Other causes follow from samples and are left alone
     /// here.
@@ -246,12 +292,14 @@ impl State {
     pub fn next_expiry_ms(&self, plan: &Plan, tick_ms: u64) -> Option<u32> {
         let settings = |id: MachineId| match (id.part(), id.fault()) {
             (Some((_, Threshold::Warn)), _) => Some(machine_settings(plan, &plan.alarm.warn)),
-            (Some((_, Threshold::Alarm)), _) => Some(machine_settings(plan, &plan.alarm.alarm)),
+            // The time to limit delays and latches as the alarm does.
+            (Some((_, Threshold::Alarm)), _) | (None, None) => {
+                Some(machine_settings(plan, &plan.alarm.alarm))
+            }
             (Some((_, Threshold::Inward)), _) => {
                 plan.alarm.inward.as_ref().map(|inward| machine_settings(plan, inward))
             }
             (None, Some(cause)) => Some(fault_settings(plan, cause)),
-            (None, None) => None,
         };
         (0_u8..)
             .zip(self.machines())

@@ -6,7 +6,7 @@ use crate::journal::entry::{Sample, TransitionCause};
 use crate::liquid::truth::Random;
 use crate::part::PartLoads;
 use crate::plan::builder::{count_of, random, reads, water_tank};
-use crate::plan::{LevelSensor, Plan};
+use crate::plan::{Filling, LevelSensor, Plan};
 use crate::signal::{Channel, Quality, ReadingClass, Resolved, SensorError, resolve};
 use proptest::prelude::*;
 
@@ -91,6 +91,8 @@ proptest! {
     fn the_next_expiry_is_when_something_moves(seed in any::<u64>()) {
         let mut random = Random(seed);
         let mut plan = random::plan(&mut random);
+        // The same level once more says that filling has stopped.
+        plan.filling = Filling::NONE;
         for threshold in [&mut plan.alarm.warn, &mut plan.alarm.alarm] {
             threshold.on_delay_ms = 5_000;
             threshold.off_delay_ms = 9_000;

@@ -53,10 +53,34 @@ pub fn states<const N: usize>(plan: &Plan, readings: &Readings<N>) -> States<N> 
     }
 }
 
+/// Height of the surface for a reading in the sensor's own quantity, m above the datum, with the
+/// estimate of the density and of the gas, interfaces held.
+#[must_use]
+pub fn level_m(plan: &Plan, reading: f32, density: Band) -> f32 {
+    estimated(plan, Lane([reading]), Lane([density.estimate_kg_m3])).lane(0)
+}
+
+fn estimated<const N: usize>(plan: &Plan, reading: Lane<N>, density: Lane<N>) -> Lane<N> {
+    let level_m = match plan.level.sensor {
+        LevelSensor::Surface => reading,
+        LevelSensor::Head { at_m, reference } => {
+            // Pressure at the diaphragm above the gas pressure.
+            let excess = match reference {
+                Reference::Atmosphere { offset_pa: [nominal, ..] } => {
+                    reading - (nominal + plan.gas.nominal_pa)
+                }
+                Reference::GasSpace => reading,
+            };
+            surface_from_head(plan, excess.ramp(), at_m, density)
+        }
+    };
+    capped(plan, level_m)
+}
+
 /// Surface sensor: everything at one end.
 fn surface<const N: usize>(plan: &Plan, readings: &Readings<N>) -> States<N> {
     let [estimate, low, high] = readings.density;
-    let level_m = capped(plan, readings.estimate);
+    let level_m = estimated(plan, readings.estimate, estimate);
     let stack = |gas_pa: f32, level_m: Lane<N>, top: Lane<N>, end: End| {
         layered(plan, gas_pa, level_m, top, end)
     };
@@ -94,17 +118,16 @@ fn head<const N: usize>(
     let (light, heavy) = (low * g, high * g);
 
     // Pressure at the diaphragm above the gas pressure, by what the transmitter refers to.
-    let (excess, excess_high, wet, excess_low) = match reference {
-        Reference::Atmosphere { offset_pa: [nominal, lowest, highest] } => (
-            readings.estimate - (nominal + gas.nominal_pa),
+    let (excess_high, wet, excess_low) = match reference {
+        Reference::Atmosphere { offset_pa: [_, lowest, highest] } => (
             readings.high - (lowest + gas.highest_pa),
             readings.low - (highest + gas.highest_pa),
             readings.low - (highest + gas.lowest_pa),
         ),
-        Reference::GasSpace => (readings.estimate, readings.high, readings.low, readings.low),
+        Reference::GasSpace => (readings.high, readings.low, readings.low),
     };
 
-    let level_m = capped(plan, surface_from_head(plan, excess.ramp(), at_m, estimate));
+    let level_m = estimated(plan, readings.estimate, estimate);
     States {
         estimate: layered(plan, gas.nominal_pa, level_m, estimate, End::Estimate),
         upper: upper_envelope(plan, excess_high.ramp(), at_m, light, heavy),

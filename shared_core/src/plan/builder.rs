@@ -78,6 +78,7 @@ pub(crate) fn water_tank() -> Plan {
         },
         parts: Vec::from_iter([course(0.0, 2.4, 4.0, 0.3)]),
         numbers: Vec::new(),
+        filling: super::Filling::NONE,
     }
 }
 

@@ -1,6 +1,9 @@
 //! What makes a plan a plan: every number in its range, every reference met.
 
-use super::{AlarmPlan, LevelPlan, LevelSensor, LoggingPlan, Plan, Reference, ThresholdPlan};
+use super::{
+    AlarmPlan, CURVE_ROWS_MAX, Filling, LevelPlan, LevelSensor, LoggingPlan, Plan, Reference,
+    ThresholdPlan,
+};
 use crate::liquid::Band;
 use crate::part::{Capacities, Geometry, Part};
 use crate::shape::{Pieces, Shape};
@@ -41,6 +44,8 @@ pub enum PlanError {
     Geometry = 14,
     /// A part's capacity is out of range, or does not belong to its kind.
     Capacity = 15,
+    /// The volume curve or a limit level is out of range or order.
+    Filling = 16,
 }
 
 impl PlanError {
@@ -69,6 +74,7 @@ impl fmt::Display for PlanError {
             Self::NoPart => "the plan has no part",
             Self::Geometry => "a part's geometry is out of range",
             Self::Capacity => "a part's capacity is out of range or not of its kind",
+            Self::Filling => "the plan's volume curve is out of range or order",
         })
     }
 }
@@ -83,6 +89,10 @@ const PRESSURE_PA_MAX: f32 = 1.0e7;
 const SINE_MIN: f32 = 1.0e-4;
 /// Largest difference of two statements of one length, m.
 const LENGTH_SLACK_M: f32 = 1.0e-3;
+/// Largest volume, m³.
+const VOLUME_M3_MAX: f32 = 1.0e7;
+/// Shortest and longest window of the inflow, ms: ticks in it are exact in f32.
+const WINDOW_MS: core::ops::RangeInclusive<u32> = 1_000..=4 * 3_600_000;
 /// Longest delay, ms (24 days: half the range of a 32-bit tick).
 const DELAY_MS_MAX: u32 = 24 * 86_400_000;
 
@@ -135,6 +145,7 @@ impl Plan {
         check_level(&self.level, self.shell_top_m)?;
         check_alarm(&self.alarm)?;
         check_logging(self.logging)?;
+        check_filling(self)?;
         require(!self.parts.is_empty(), PlanError::NoPart)?;
         for part in &self.parts {
             self.check_part(part)?;
@@ -355,6 +366,29 @@ fn check_logging(logging: LoggingPlan) -> Result<(), PlanError> {
             && logging.flush_after_ms <= 86_400_000,
         PlanError::Logging,
     )
+}
+
+fn check_filling(plan: &Plan) -> Result<(), PlanError> {
+    let (limits_m, curve) = (plan.limits_m(), plan.curve());
+    let Filling { window_ms, limits, rows, .. } = plan.filling;
+    if rows == 0 {
+        return Ok(());
+    }
+    let mut sound = curve.len() == usize::from(rows)
+        && (2..=CURVE_ROWS_MAX).contains(&curve.len())
+        && limits_m.len() == usize::from(limits)
+        && limits_m.len() == plan.liquid.products.len() + 2
+        && WINDOW_MS.contains(&window_ms)
+        && limits_m.iter().all(|&limit_m| length(limit_m));
+    let mut below = [f32::NEG_INFINITY; 2];
+    for &[height_m, volume_m3] in curve {
+        sound &= height_m > below[0] && volume_m3 > below[1] && volume_m3 >= 0.0;
+        below = [height_m, volume_m3];
+    }
+    // They rise: the last ones are the largest.
+    let first_m = curve.first().map_or(0.0, |row| row[0]);
+    sound &= length(first_m) && length(below[0]) && below[1] <= VOLUME_M3_MAX;
+    require(sound, PlanError::Filling)
 }
 
 #[cfg(test)]

@@ -14,10 +14,16 @@
 //! | logging: 3 u32 | 12 |
 //! | parts u8, each: see the code | |
 //! | names: one per part, length u8, UTF-8 bytes; then the tank's name | |
+//! | sections, each at most once, by rising tag: tag u8, length u16, bytes; none need stand | |
+//! | section 1, filling: window u32; limit levels u8, rows u8; f32 per limit, 2 f32 per row | |
+//! | section 2, why a short margin was accepted: UTF-8 | |
 //!
 //! A reader that meets another format refuses; formats are never reused.
 
 mod parts;
+mod sections;
+
+pub use sections::{REASON_BYTES_MAX, accepted_margin, append_accepted_margin};
 
 use super::{
     AlarmPlan, LevelPlan, LevelSensor, LiquidPlan, LoggingPlan, NAME_BYTES_MAX, Plan, PlanError,
@@ -74,6 +80,7 @@ pub fn encode(
         text(&mut sink, name)?;
     }
     text(&mut sink, tank_name)?;
+    sections::put(&mut sink, plan)?;
     sink.finish().filter(|&used| used <= PLAN_BYTES_MAX).ok_or(PlanError::TooLarge)
 }
 
@@ -107,6 +114,10 @@ pub fn decode_into(bytes: &mut impl Fetch, plan: &mut Plan) -> Result<PlanHeader
         return Err(PlanError::Format);
     }
     let header = take(&mut source, plan).ok_or(PlanError::Damaged)?;
+    for _ in 0..=plan.parts.len() {
+        take_text(&mut source).ok_or(PlanError::Names)?;
+    }
+    sections::take(&mut source, plan).ok_or(PlanError::Damaged)?;
     plan.check()?;
     Ok(header)
 }
@@ -161,17 +172,25 @@ fn take<F: Fetch>(source: &mut Source<F>, plan: &mut Plan) -> Option<PlanHeader>
 ///
 /// # Errors
 /// What is wrong with the bytes; see [`decode`].
-pub fn names(bytes: &[u8], mut part: impl FnMut(usize, &str)) -> Result<Name, PlanError> {
-    let mut rest = bytes;
+pub fn names(bytes: &[u8], part: impl FnMut(usize, &str)) -> Result<Name, PlanError> {
+    decode(bytes)?;
+    Ok(names_and_rest(bytes, part)?.0)
+}
+
+/// The tank's name, and what stands behind it.
+fn names_and_rest(
+    bytes: &[u8],
+    mut part: impl FnMut(usize, &str),
+) -> Result<(Name, &[u8]), PlanError> {
     let mut plan = Plan::empty();
-    decode_into(&mut rest, &mut plan)?;
-    let mut source = Source(rest);
+    let mut source = Source(bytes.get(4..).ok_or(PlanError::NotAPlan)?);
+    take(&mut source, &mut plan).ok_or(PlanError::Damaged)?;
     for index in 0..plan.parts.len() {
         let name: Name = take_text(&mut source).ok_or(PlanError::Names)?;
         part(index, &name);
     }
     let tank = take_text(&mut source).ok_or(PlanError::Names)?;
-    if source.0.is_empty() { Ok(tank) } else { Err(PlanError::Damaged) }
+    Ok((tank, source.0))
 }
 
 fn text(sink: &mut Sink<'_>, text: &str) -> Result<(), PlanError> {

@@ -35,6 +35,8 @@ kinds! {
     PartStatusRequest = 0x03,
     /// [`super::FaultStatusRequest`]
     FaultStatusRequest = 0x04,
+    /// [`super::FillingRequest`]
+    FillingRequest = 0x05,
     /// [`super::PlanBegin`]: a plan is about to come.
     PlanBegin = 0x10,
     /// [`super::PlanChunk`]: the next bytes of it.
@@ -65,6 +67,8 @@ kinds! {
     PartStatus = 0x83,
     /// [`super::FaultStatus`]
     FaultStatus = 0x84,
+    /// [`super::FillingStatus`]
+    FillingStatus = 0x85,
     /// [`super::PlanReply`], to begin, chunk and commit alike.
     PlanReply = 0x90,
     /// [`super::PlanList`]

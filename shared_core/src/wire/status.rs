@@ -137,6 +137,25 @@ message!(
     }
 );
 
+/// Asks for [`FillingStatus`].
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
+pub struct FillingRequest {}
+message!(FillingRequest, FillingRequest {});
+
+/// How fast the tank fills, and how long until the first part reaches its capacity.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Serialize, Deserialize)]
+pub struct FillingStatus {
+    /// 0 the plan has no volume curve, 1 not known, 2 not filling, 3 filling.
+    pub state: u8,
+    /// State of the machine of the time to limit, by journal number.
+    pub alarm: u8,
+    /// Time to limit at the upper end of the inflow, s; only while filling.
+    pub time_s: f32,
+    /// Upper end of the inflow, m³/s; only while filling.
+    pub inflow_m3_s: f32,
+}
+message!(FillingStatus, FillingStatus { state, alarm, time_s, inflow_m3_s });
+
 /// Asks for [`FaultStatus`].
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
 pub struct FaultStatusRequest {}

@@ -6,8 +6,8 @@ use crate::{between, ratio, single};
 use strake_core::alarm::PARTS_MAX;
 use strake_core::plan::codec::{PLAN_BYTES_MAX, encode};
 use strake_core::plan::{
-    AlarmPlan, LevelPlan, LevelSensor, LoggingPlan, Plan, PlanError, PlanHeader, Reference,
-    SignalKind, ThresholdPlan,
+    AlarmPlan, Filling, LevelPlan, LevelSensor, LoggingPlan, Plan, PlanError, PlanHeader,
+    Reference, SignalKind, ThresholdPlan,
 };
 use strake_oracle::random::Random;
 
@@ -28,7 +28,7 @@ pub fn plan(random: &mut Random) -> Plan {
     let level = level(random, height_m * above, heaviest);
     let mut numbers = Numbers::new();
     let parts = (0..parts).map(|_| part(random, around, &mut numbers)).collect();
-    Plan {
+    let mut plan = Plan {
         gravity_m_s2: between(random, 9.78, 9.832),
         shell_top_m: single(height_m),
         overflow_m: single(height_m * above),
@@ -48,7 +48,33 @@ pub fn plan(random: &mut Random) -> Plan {
         },
         parts,
         numbers,
+        filling: Filling::NONE,
+    };
+    // From a copy: the rest of a run stays as it was before plans had a curve.
+    state_filling(&mut random.clone(), &mut plan);
+    plan
+}
+
+/// Two plans in three have a volume curve: a prism, or one that narrows.
+fn state_filling(random: &mut Random, plan: &mut Plan) {
+    if random.one_in(3) {
+        return;
     }
+    let rows = 2 + random.below(31);
+    let height_m = f64::from(plan.shell_top_m);
+    let area_m2 = random.ratio_between(0.05, 500.0);
+    let (mut at_m, mut volume_m3) = (0.0, 0.0);
+    let curve = (0..rows).map(|_| {
+        let row = [single(at_m), single(volume_m3)];
+        let step_m = height_m / f64::from(rows - 1);
+        at_m += step_m;
+        volume_m3 += step_m * area_m2 * random.between(0.3, 1.0);
+        row
+    });
+    let curve: Vec<[f32; 2]> = curve.collect();
+    let limits_m = vec![single(height_m * 0.8); plan.liquid.products.len() + 2];
+    // Where the parts leave no room, the plan has none.
+    let _ = plan.state_filling(20_000 + random.below(600_000), &limits_m, &curve);
 }
 
 /// The plan as a device gets it.

@@ -2,8 +2,8 @@
 
 use crate::serve::{Refusal, Served};
 use strake_core::wire::{
-    ErrorCode, FaultStatus, Head, Identity, JournalBounds, PartStatus, PlanBegin, PlanEntry,
-    PlanList, Status, Text,
+    ErrorCode, FaultStatus, FillingStatus, Head, Identity, JournalBounds, PartStatus, PlanBegin,
+    PlanEntry, PlanList, Status, Text,
 };
 
 const USED: u16 = 1600;
@@ -37,6 +37,9 @@ impl Served for App {
         FaultStatus::default()
     }
 
+    fn filling(&mut self) -> FillingStatus {
+        FillingStatus::default()
+    }
     fn set_clock(&mut self, _utc_s: u64) -> Result<(), Refusal> {
         self.clock_sets += 1;
         Ok(())

@@ -5,8 +5,8 @@ use std::cell::RefCell;
 use std::collections::BTreeMap;
 use std::rc::Rc;
 use strake_core::wire::{
-    ErrorCode, FaultStatus, Head, Identity, JournalBounds, PROTOCOL_VERSION, PartStatus, PlanBegin,
-    PlanEntry, PlanList, Status, Text,
+    ErrorCode, FaultStatus, FillingStatus, Head, Identity, JournalBounds, PROTOCOL_VERSION,
+    PartStatus, PlanBegin, PlanEntry, PlanList, Status, Text,
 };
 use strake_firmware::serve::{Refusal, Served, Server};
 
@@ -116,6 +116,9 @@ impl Served for FakeDevice {
         status
     }
 
+    fn filling(&mut self) -> FillingStatus {
+        FillingStatus { state: 2, ..FillingStatus::default() }
+    }
     fn set_clock(&mut self, utc_s: u64) -> Result<(), Refusal> {
         if utc_s < 1_577_836_800 {
             return Err(ErrorCode::ClockImpossible.into());

@@ -1,7 +1,7 @@
 //! Thresholds and times against each other.
 
 use crate::tank::finding::Code;
-use crate::tank::model::Threshold;
+use crate::tank::model::{Logging, Threshold};
 use crate::tank::read::Draft;
 use crate::tank::read::section::Sink;
 use crate::units::Quantity::Time;
@@ -40,8 +40,26 @@ fn deadband(key: &str, threshold: &Threshold, sink: &Sink) {
     }
 }
 
+/// Four readings at least lie in the window of the inflow, also at rest.
+fn window(draft: &Draft, logging: &Logging, sink: &Sink) {
+    let Some(window) = draft.alarm.as_ref().and_then(|alarms| alarms.inflow_window_s) else {
+        return;
+    };
+    let least_s = Logging::INTERVALS_IN_WINDOW * logging.idle_interval_s.value;
+    if window.value < least_s {
+        let message = format!(
+            "`inflow_window` in [alarm] is {}, three times `idle_interval` are {}",
+            format_si(window.value, Time),
+            format_si(least_s, Time)
+        );
+        let hint = "widen the window, or sample more often at rest: a rate needs four readings";
+        sink.report(Code::Interval, window.span, message, hint);
+    }
+}
+
 pub(super) fn logging(draft: &Draft, sink: &Sink) {
     let Some(logging) = &draft.logging else { return };
+    window(draft, logging, sink);
     let (moving, idle) = (logging.interval_s, logging.idle_interval_s);
     if idle.value < moving.value {
         let message = format!(

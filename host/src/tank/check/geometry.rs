@@ -58,7 +58,8 @@ fn fits_across(part: &Part, vessel: &Vessel, sink: &Sink) {
     let across_m = match vessel {
         Vessel::Cylinder { diameter_m, .. } => diameter_m.value,
         Vessel::Box { length_m, width_m, .. } => length_m.value.max(width_m.value),
-        Vessel::Loose => return,
+        Vessel::Lying { diameter_m, length_m } => length_m.value.max(diameter_m.value),
+        Vessel::Strapped { .. } | Vessel::Loose => return,
     };
     let mut width_m = plane.shape.width_m();
     if plane.is_level() {
@@ -172,6 +173,28 @@ pub(super) fn fill(draft: &Draft, sink: &Sink) {
     order(fill.maximum_m, "maximum", overflow, "the overflow");
     let top = fill.maximum_m.map(|level| level.value).or(overflow).or(shell);
     order(fill.lowest_m, "lowest", top, "the highest level");
+}
+
+/// A strapping table reaches up to where the tank can be filled.
+pub(super) fn strapping(draft: &Draft, sink: &Sink) {
+    let Some(strapping) = &draft.strapping else { return };
+    let top = draft.vessel.as_ref().and_then(Vessel::height_m);
+    let top = draft.fill.overflow_m.map(|level| level.value).or(top);
+    let (Some(&(first_m, _)), Some(&(last_m, _)), Some(top_m)) =
+        (strapping.rows.first(), strapping.rows.last(), top)
+    else {
+        return;
+    };
+    if first_m > TOGETHER_M || last_m < top_m - TOGETHER_M {
+        let message = format!(
+            "`strapping` in [tank] covers {} to {}, the tank can be filled from 0 m to {}",
+            metres(first_m),
+            metres(last_m),
+            metres(top_m)
+        );
+        let hint = "add the rows that are missing; volumes are not guessed beyond the table";
+        sink.report(Code::StrappingTable, strapping.span, message, hint);
+    }
 }
 
 pub(super) fn outside(draft: &Draft, sink: &Sink) {

@@ -22,6 +22,7 @@ pub(super) fn all(draft: &Draft, sink: &Sink) {
     geometry::parts(draft, sink);
     geometry::fill(draft, sink);
     geometry::outside(draft, sink);
+    geometry::strapping(draft, sink);
     courses::stacked(draft, sink);
     liquid::all(draft, sink);
     liquid::layers(draft, sink);

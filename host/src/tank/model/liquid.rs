@@ -77,7 +77,7 @@ impl Liquid {
 }
 
 /// The value of a table of straight lines; `None` for a table without rows.
-fn interpolate(rows: &[(f64, f64)], at: f64) -> Option<f64> {
+pub(super) fn interpolate(rows: &[(f64, f64)], at: f64) -> Option<f64> {
     let first = rows.first()?;
     let last = rows.last()?;
     if at <= first.0 {

@@ -8,6 +8,7 @@ mod outline;
 mod part;
 mod service;
 mod signal;
+mod vessel;
 
 pub use capacity::{Basis, BasisKind, Capacity, Rating};
 pub use liquid::{Layer, Liquid, Thermal};
@@ -23,6 +24,8 @@ pub use signal::{
     TemperatureSource,
 };
 
+pub use vessel::{Strapping, Vessel};
+
 use super::finding::{Finding, Findings, Located};
 
 /// A whole tank file that was found free of contradictions.
@@ -34,6 +37,8 @@ pub struct TankFile {
     pub name: Located<String>,
     /// What holds the liquid.
     pub vessel: Vessel,
+    /// A measured table of volumes; it goes before the volume of the vessel's shape.
+    pub strapping: Option<Strapping>,
     /// Conditions to print on every sheet and report.
     pub conditions: Vec<Located<String>>,
     /// Levels and rates of service.
@@ -91,6 +96,28 @@ impl TankFile {
         super::check::seal::missing(self)
     }
 
+    /// Volume below a level, m³: of the strapping table, else of the vessel's shape; `None` for
+    /// loose parts.
+    #[must_use]
+    pub fn volume_m3(&self, level_m: f64) -> Option<f64> {
+        match &self.strapping {
+            Some(strapping) => Some(strapping.volume_m3(level_m)),
+            None => self.vessel.volume_m3(level_m),
+        }
+    }
+
+    /// Time over which the inflow is taken, s: as stated, else a third of the response time, but at
+    /// least three intervals at rest and at most four hours. `None` without `[alarm]` and
+    /// `[logging]`.
+    #[must_use]
+    pub fn inflow_window_s(&self) -> Option<f64> {
+        let (alarm, logging) = (self.alarm.as_ref()?, self.logging.as_ref()?);
+        let least_s = Logging::INTERVALS_IN_WINDOW * logging.idle_interval_s.value;
+        let third_s = alarm.response_time_s.value / 3.0;
+        let unstated_s = third_s.max(least_s).max(1.0);
+        Some(alarm.inflow_window_s.map_or(unstated_s, |window| window.value).min(4.0 * 3600.0))
+    }
+
     /// The part of that name.
     #[must_use]
     pub fn part(&self, name: &str) -> Option<&Part> {
@@ -110,52 +137,6 @@ impl TankFile {
     #[must_use]
     pub fn uncovered_shell(&self) -> Vec<(f64, f64)> {
         super::check::courses::uncovered(self)
-    }
-}
-
-/// What holds the liquid.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub enum Vessel {
-    /// Upright cylinder with a flat bottom.
-    Cylinder {
-        /// Inside diameter.
-        diameter_m: Located<f64>,
-        /// Height of the shell.
-        height_m: Located<f64>,
-    },
-    /// Box with level bottom and upright walls.
-    Box {
-        /// Inside length.
-        length_m: Located<f64>,
-        /// Inside width.
-        width_m: Located<f64>,
-        /// Height of the walls.
-        height_m: Located<f64>,
-    },
-    /// No vessel is described: parts stand alone and have no shell top.
-    Loose,
-}
-
-impl Vessel {
-    /// Height of the shell top.
-    #[must_use]
-    pub fn height_m(&self) -> Option<f64> {
-        match self {
-            Self::Cylinder { height_m, .. } | Self::Box { height_m, .. } => Some(height_m.value),
-            Self::Loose => None,
-        }
-    }
-
-    /// Area of the liquid's surface, m²; the same at every level.
-    #[must_use]
-    pub fn area_m2(&self) -> Option<f64> {
-        match self {
-            Self::Cylinder { diameter_m, .. } => {
-                Some(std::f64::consts::FRAC_PI_4 * diameter_m.value * diameter_m.value)
-            }
-            Self::Box { length_m, width_m, .. } => Some(length_m.value * width_m.value),
-            Self::Loose => None,
-        }
     }
 }
 

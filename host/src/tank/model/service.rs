@@ -13,6 +13,9 @@ pub struct Alarms {
     pub inward: Option<Threshold>,
     /// Time that people need to stop the filling.
     pub response_time_s: Located<f64>,
+    /// Time over which the inflow is taken, for the time to limit; none stated: see
+    /// [`TankFile::inflow_window_s`](super::TankFile::inflow_window_s).
+    pub inflow_window_s: Option<Located<f64>>,
     /// Time after which an acknowledged alarm sounds again.
     pub sounds_again_after_s: Option<Located<f64>>,
     /// Where the table stands.
@@ -45,6 +48,11 @@ pub struct Logging {
     pub idle_interval_s: Located<f64>,
     /// How long a sample may wait in memory that a power cut empties.
     pub flush_after_s: Located<f64>,
+}
+
+impl Logging {
+    /// Intervals at rest that the window of the inflow has at least: four readings.
+    pub const INTERVALS_IN_WINDOW: f64 = 3.0;
 }
 
 /// Inputs of the battery model.

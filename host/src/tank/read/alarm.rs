@@ -7,6 +7,8 @@ use crate::units::Quantity::Time;
 
 /// Longest delay or time that an alarm works with, s: one week.
 const LONGEST_S: f64 = 604_800.0;
+/// Longest window of the inflow, s: in it the device's ticks are exact.
+const LONGEST_WINDOW_S: f64 = 4.0 * 3600.0;
 const WRITE_THRESHOLD: &str = "{ utilisation = 0.85, deadband = 0.02, on_delay = \"10 s\", \
                                off_delay = \"60 s\" }";
 
@@ -29,6 +31,12 @@ pub(super) fn alarms(root: &mut Section<'_>) -> Option<Alarms> {
         Range::above(0.0, LONGEST_S),
         "\"10 min\", after an acknowledgement while the condition stands",
     ));
+    let window = section.take(field(
+        "inflow_window",
+        Time,
+        Range::between(1.0, LONGEST_WINDOW_S),
+        "\"5 min\", over which the inflow is taken for the time to limit; it lags by as much",
+    ));
     section.finish();
     if inward_given && inward.is_none() {
         return None;
@@ -38,6 +46,7 @@ pub(super) fn alarms(root: &mut Section<'_>) -> Option<Alarms> {
         alarm: alarm?,
         inward,
         response_time_s: response?,
+        inflow_window_s: window,
         sounds_again_after_s: again,
         span,
     })

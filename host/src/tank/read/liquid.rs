@@ -158,24 +158,9 @@ fn expansion(section: &mut Section<'_>) -> Option<Located<Thermal>> {
 fn density_table(section: &mut Section<'_>) -> Option<Located<Thermal>> {
     const WRITE: &str = "[[\"0 degC\", \"1290 kg/m3\"], [\"40 degC\", \"1270 kg/m3\"]]";
     const MOST_ROWS: usize = 64;
-    let (items, span) = section.items("density_table", WRITE)?;
     let temperature = field("density_table", Temperature, Range::between(-200.0, 500.0), WRITE);
     let density = field("density_table", Density, Range::POSITIVE, WRITE);
-    let mut rows = Vec::new();
-    for item in items {
-        let pair = item.get_ref().as_array().map(|array| array.iter().as_slice());
-        let Some([first, second]) = pair else {
-            section.wrong_type("density_table", item, "rows of two quantities", WRITE);
-            continue;
-        };
-        let row = (section.quantity(temperature, first), section.quantity(density, second));
-        if let (Some(temperature), Some(density)) = row {
-            rows.push((temperature.value, density.value));
-        }
-    }
-    if rows.len() < items.len() {
-        return None;
-    }
+    let (rows, span) = section.rows_of_two(temperature, density)?;
     let rising = rows.windows(2).all(|pair| matches!(pair, [a, b] if a.0 < b.0));
     if rows.len() < 2 || rows.len() > MOST_ROWS || !rising {
         let message = format!(

@@ -21,7 +21,7 @@ use self::section::{Section, Sink};
 use super::finding::{Code, Finding, Findings, Located, Span};
 use super::model::{
     Alarms, Fill, Gas, Gravity, Layer, LevelSensor, Liquid, Logging, Outside, Part, Power,
-    TankFile, TemperatureSignal, Vessel,
+    Strapping, TankFile, TemperatureSignal, Vessel,
 };
 use super::{MAX_FILE_BYTES, check};
 use crate::nearest::nearest;
@@ -30,6 +30,7 @@ use crate::nearest::nearest;
 pub(super) struct Draft {
     pub(super) name: Option<Located<String>>,
     pub(super) vessel: Option<Vessel>,
+    pub(super) strapping: Option<Strapping>,
     pub(super) conditions: Vec<Located<String>>,
     pub(super) fill: Fill,
     pub(super) liquid: Option<Liquid>,
@@ -121,7 +122,7 @@ fn from_parser(error: &toml::de::Error, len: usize) -> Finding {
 fn root_tables(table: &DeTable<'_>, len: usize, sink: &Sink) -> Draft {
     let end = Span { start: len, end: len };
     let mut root = Section::new(table, end, "", sink);
-    let vessel::Tank { name, vessel, conditions } = vessel::tank(&mut root);
+    let vessel::Tank { name, vessel, strapping, conditions } = vessel::tank(&mut root);
     let fill = vessel::fill(&mut root);
     let liquid::State { liquid, below, temperature_signal } = liquid::state(&mut root);
     let products = liquid::products(&mut root);
@@ -139,6 +140,7 @@ fn root_tables(table: &DeTable<'_>, len: usize, sink: &Sink) -> Draft {
     Draft {
         name,
         vessel,
+        strapping,
         conditions,
         fill,
         liquid,
@@ -205,6 +207,7 @@ fn complete(draft: Draft, path: &str, text: &str) -> Option<TankFile> {
         text: text.to_owned(),
         name: draft.name?,
         vessel: draft.vessel?,
+        strapping: draft.strapping,
         conditions: draft.conditions,
         fill: draft.fill,
         liquid: draft.liquid?,

@@ -6,7 +6,7 @@ use super::field::{Field, Range};
 use super::section::{Item, Section, listed, shorten};
 use crate::nearest::nearest;
 use crate::tank::NAME_BYTES;
-use crate::tank::finding::{Code, Located};
+use crate::tank::finding::{Code, Located, Span};
 use crate::units::{Quantity, UnitError, format_si, parse};
 
 impl Section<'_> {
@@ -73,6 +73,30 @@ impl Section<'_> {
         Some([low?, high?])
     }
 
+    /// A list of rows of two quantities; `None` when one of them could not be read.
+    pub(crate) fn rows_of_two(
+        &mut self,
+        first: Field,
+        second: Field,
+    ) -> Option<(Vec<(f64, f64)>, Span)> {
+        let Field { key, write, .. } = first;
+        let (items, span) = self.items(key, write)?;
+        let mut rows = Vec::new();
+        for item in items {
+            let pair = item.get_ref().as_array().map(|array| array.iter().as_slice());
+            let Some([one, other]) = pair else {
+                self.wrong_type(key, item, "rows of two quantities", write);
+                continue;
+            };
+            if let (Some(one), Some(other)) =
+                (self.quantity(first, one), self.quantity(second, other))
+            {
+                rows.push((one.value, other.value));
+            }
+        }
+        (rows.len() == items.len()).then_some((rows, span))
+    }
+
     /// Two quantities, the first below the second, that must be there.
     pub(crate) fn need_rising_pair(&mut self, field: Field) -> Option<[Located<f64>; 2]> {
         if self.item(field.key).is_none() {
@@ -83,7 +107,7 @@ impl Section<'_> {
         if low.value < high.value {
             return Some([low, high]);
         }
-        let span = crate::tank::finding::Span { start: low.span.start, end: high.span.end };
+        let span = Span { start: low.span.start, end: high.span.end };
         let (a, b) = (format_si(low.value, field.quantity), format_si(high.value, field.quantity));
         let message = format!("`{}` in {} runs from {a} to {b}", field.key, self.place);
         let hint =

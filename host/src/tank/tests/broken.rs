@@ -81,17 +81,31 @@ fn keys_of_later_versions_are_refused_by_name() {
         "[[level.check]]\nsensor = \"head\"\n[[course]]",
         "`check` in [level] is not offered",
     );
-    later(
-        "[fill]",
-        "strapping = [[\"0 m\", \"0 m3\"]]\n[fill]",
-        "`strapping` in [tank] is not offered",
-    );
+    let vessel = "cylinder   = { diameter = \"8.0 m\", height = \"9.6 m\" }";
+    let dished = "lying = { diameter = \"8 m\", length = \"9 m\", heads = \"dished\" }";
+    later(vessel, dished, "`dished`, only flat ones are offered");
     later("opens     = \"outward\"", "opens = \"outward\"\ncover_mass = \"9 kg\"", "`cover_mass`");
     later("[alarm]", "[[curved]]\nname = \"cone\"\n[alarm]", "curved parts are not offered");
     for kind in ["latch", "hinge", "moment", "cover"] {
         let to = format!("{{ {kind} = \"1 kN\"");
         later("{ force = \"60 kN\"", &to, &format!("capacity `{kind}` of a hatch is not offered"));
     }
+}
+
+#[test]
+fn a_strapping_table_rises_and_has_its_rows() {
+    let table = |rows: &str| format!("strapping = [{rows}]\n[fill]");
+    for rows in [
+        "[\"0 m\", \"0 m3\"]",
+        "[\"0 m\", \"0 m3\"], [\"9.6 m\", \"0 m3\"]",
+        "[\"9.6 m\", \"0 m3\"], [\"9.6 m\", \"4 m3\"]",
+    ] {
+        slip("[fill]", &table(rows), Code::StrappingTable, "needs 2 to 32 rows");
+    }
+    let late = table("[\"1 m\", \"0 m3\"], [\"9.6 m\", \"400 m3\"]");
+    slip("[fill]", &late, Code::StrappingTable, "covers 1.000 m to 9.600 m");
+    let window = "response_time      = \"15 min\"\ninflow_window = \"170 s\"";
+    slip("response_time      = \"15 min\"", window, Code::Interval, "2.8 min, three times");
 }
 
 #[test]

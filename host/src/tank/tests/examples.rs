@@ -84,6 +84,18 @@ fn a_hatch_is_loaded_inside_its_gasket() {
 }
 
 #[test]
+fn wine_drum_lies_and_has_volumes() {
+    let file = example("wine_drum");
+    let Vessel::Lying { diameter_m, length_m } = file.vessel else { panic!("no drum") };
+    assert!(near(diameter_m.value, 2.4) && near(length_m.value, 6.0));
+    // Half full is half of it; the inflow of 20 m3/h from 1.5 to 2.2 m takes 24.65 min.
+    let [half, low, high] = [1.2, 1.5, 2.2].map(|level_m| file.volume_m3(level_m).unwrap());
+    assert!(near(half, std::f64::consts::PI * 1.44 * 3.0));
+    assert!(((high - low) / 20.0 * 60.0 - 24.65).abs() < 5e-3);
+    assert!(near(file.inflow_window_s().unwrap(), 60.0));
+}
+
+#[test]
 fn rinse_basin_has_layers_slopes_and_an_assumption() {
     let file = example("rinse_basin");
     assert!(file.is_provisional());

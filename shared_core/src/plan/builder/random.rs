@@ -88,6 +88,14 @@ pub(crate) fn plan(random: &mut Random) -> Plan {
         part.outside = (random.bits() as u8) & ((1 << plan.outside.len()) - 1);
         plan.parts.push(part).unwrap();
     }
+    // Drawn from a copy: the rest of a walk stays as it was before plans had a curve.
+    let mut aside = Random(random.0);
+    if aside.below(2) == 0 {
+        let window_ms = 1_000 * (20 + aside.below(100) as u32);
+        let limits_m = vec![6.0; plan.liquid.products.len() + 2];
+        let curve = [[0.0, 0.0], [5.0, 200.0], [10.0, 300.0]];
+        plan.state_filling(window_ms, &limits_m, &curve).unwrap();
+    }
     plan
 }
 

@@ -1,10 +1,11 @@
 //! Any bytes at all: an error or a message, never a panic, and never a wrong frame.
 
 use crate::wire::{
-    Acknowledge, ClockSet, Done, ErrorReply, FaultStatus, FrameError, Head, HeadRequest, Hello,
-    Identity, JournalBounds, JournalBoundsRequest, Kind, Message, PartStatus, PartStatusRequest,
-    PlanBegin, PlanChunk, PlanCommit, PlanData, PlanList, PlanListRequest, PlanRead, PlanReply,
-    Receiver, SectorData, SectorEnd, SectorRequest, Status, StatusRequest, frame,
+    Acknowledge, ClockSet, Done, ErrorReply, FaultStatus, FillingStatus, FrameError, Head,
+    HeadRequest, Hello, Identity, JournalBounds, JournalBoundsRequest, Kind, Message, PartStatus,
+    PartStatusRequest, PlanBegin, PlanChunk, PlanCommit, PlanData, PlanList, PlanListRequest,
+    PlanRead, PlanReply, Receiver, SectorData, SectorEnd, SectorRequest, Status, StatusRequest,
+    frame,
 };
 use proptest::prelude::*;
 
@@ -27,6 +28,7 @@ fn every_way(body: &[u8]) {
     way::<PartStatusRequest>(body);
     way::<PartStatus>(body);
     way::<FaultStatus>(body);
+    way::<FillingStatus>(body);
     way::<PlanBegin>(body);
     way::<PlanChunk<'_>>(body);
     way::<PlanCommit>(body);

@@ -2,11 +2,12 @@
 
 use super::hex;
 use crate::wire::{
-    Acknowledge, ClockSet, Done, ErrorReply, FaultStatus, FaultStatusRequest, Head, HeadRequest,
-    Hello, Identity, JournalBounds, JournalBoundsRequest, Kind, LinkCounters, LoadValue, Malformed,
-    Message, PartStatus, PartStatusRequest, PlanBegin, PlanChunk, PlanCommit, PlanData, PlanEntry,
-    PlanList, PlanListRequest, PlanRead, PlanReply, REPLY_FRAME_BYTES, REQUEST_FRAME_BYTES,
-    SectorData, SectorEnd, SectorRequest, Status, StatusRequest, Text, Writer, frame,
+    Acknowledge, ClockSet, Done, ErrorReply, FaultStatus, FaultStatusRequest, FillingRequest,
+    FillingStatus, Head, HeadRequest, Hello, Identity, JournalBounds, JournalBoundsRequest, Kind,
+    LinkCounters, LoadValue, Malformed, Message, PartStatus, PartStatusRequest, PlanBegin,
+    PlanChunk, PlanCommit, PlanData, PlanEntry, PlanList, PlanListRequest, PlanRead, PlanReply,
+    REPLY_FRAME_BYTES, REQUEST_FRAME_BYTES, SectorData, SectorEnd, SectorRequest, Status,
+    StatusRequest, Text, Writer, frame,
 };
 use std::fmt::Debug;
 
@@ -127,6 +128,7 @@ fn bytes_are_pinned_and_equal_to_the_crates() {
         StatusRequest {},
         PartStatusRequest { part: 3 },
         FaultStatusRequest {},
+        FillingRequest {},
         PlanBegin { length: 1500, serial, fingerprint, device_id },
         PlanChunk { offset: 192, bytes: &[1, 0, 255] },
         PlanCommit { fingerprint },
@@ -141,6 +143,7 @@ fn bytes_are_pinned_and_equal_to_the_crates() {
         status(),
         part_status(),
         fault_status(),
+        FillingStatus { state: 3, alarm: 1, time_s: 900.0, inflow_m3_s: 0.01 },
         PlanReply { fingerprint, received: 192, in_force: false },
         plan_list(),
         PlanData { fingerprint, offset: 512, bytes: &[0, 0, 7] },

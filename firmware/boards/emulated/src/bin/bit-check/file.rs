@@ -10,6 +10,8 @@ use crate::vectors::{RESULT_HEAD_BYTES, RESULT_MAGIC};
 pub(crate) struct File {
     flash: NorRegion,
     read_at: u32,
+    /// Nothing is handed out from here on.
+    end: u32,
     results_at: u32,
     /// Words handed to the flash or waiting.
     words: u32,
@@ -19,7 +21,15 @@ pub(crate) struct File {
 
 impl File {
     pub(crate) fn new(flash: NorRegion) -> Self {
-        Self { flash, read_at: 0, results_at: 0, words: 0, waiting: Vec::new(), sound: true }
+        Self {
+            flash,
+            read_at: 0,
+            end: u32::MAX,
+            results_at: 0,
+            words: 0,
+            waiting: Vec::new(),
+            sound: true,
+        }
     }
 
     /// Where the next byte is read.
@@ -27,8 +37,15 @@ impl File {
         self.read_at
     }
 
+    /// Goes on at `offset`, without an end.
     pub(crate) fn read_from(&mut self, offset: u32) {
         self.read_at = offset;
+        self.end = u32::MAX;
+    }
+
+    /// Hands out nothing from `offset` on.
+    pub(crate) fn end_at(&mut self, offset: u32) {
+        self.end = offset;
     }
 
     /// The next words.
@@ -80,8 +97,12 @@ impl File {
 
 impl Fetch for File {
     fn fetch(&mut self, out: &mut [u8]) -> Option<()> {
+        let next = self.read_at.checked_add(u32::try_from(out.len()).ok()?)?;
+        if next > self.end {
+            return None;
+        }
         self.flash.read(self.read_at, out).ok()?;
-        self.read_at = self.read_at.saturating_add(u32::try_from(out.len()).ok()?);
+        self.read_at = next;
         Some(())
     }
 }

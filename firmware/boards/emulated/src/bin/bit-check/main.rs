@@ -58,10 +58,11 @@ mod device {
         file.write_from(results);
         for _ in 0..plans {
             let [plan_bytes, inputs] = file.words().ok_or("the file ends before a plan")?;
-            let end = file.position().saturating_add(plan_bytes).next_multiple_of(4);
+            let end = file.position().saturating_add(plan_bytes);
+            // Filled up to whole words: what fills is no section of the plan.
+            file.end_at(end);
             decode_into(file, plan).map_err(|_| "a plan is refused")?;
-            // Names stand behind what was read.
-            file.read_from(end);
+            file.read_from(end.next_multiple_of(4));
             let mut state = State::default();
             for _ in 0..inputs {
                 let words = file.words().ok_or("the file ends before an input")?;
