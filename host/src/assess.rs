@@ -4,6 +4,7 @@
 //! level and what is in the tank ([`Request`]), asks ([`Desk`]), and lays the answers out
 //! ([`Document`]).
 
+mod bending;
 mod centre;
 mod desk;
 mod document;
@@ -13,11 +14,12 @@ mod part;
 mod request;
 pub mod text;
 
+pub use bending::{BentRow, PlateRow};
 pub use centre::centre;
 pub use desk::Desk;
 pub use document::{Capacity, Centre, Document, Judgement, Loads, NotJudged, PartRow, State};
-pub(crate) use notes::not_judged;
 pub use notes::{FIELD_CHECK, PROVISIONAL, assumed};
+pub(crate) use notes::{not_judged, plate_cautions};
 pub use request::{Overrides, Request, RequestError, Source};
 
 use crate::compile;
@@ -45,7 +47,8 @@ pub struct Assessment {
 pub fn assess(file: &TankFile, request: &Request) -> Result<Assessment, Findings> {
     let desk = Desk::new(compile::for_desk(file, &request.contents)?, file);
     let parts = part::rows(file, &desk, request);
-    let not_judged = not_judged(file, &desk, UnitSystem::Si);
+    let mut not_judged = not_judged(file, &desk, UnitSystem::Si);
+    not_judged.extend(notes::plates_not_judged(&parts));
     let above_alarm = judged::above_alarm(file, &desk, &parts);
     let cautions = notes::cautions(file, request, &desk, &parts, UnitSystem::Si);
     let thresholds = file.alarm.as_ref().map(|_| &desk.plan().alarm);

@@ -4,6 +4,7 @@
 //! desk share. Heights of lowest points are rounded first: the core's shapes take them as exact.
 //! What the plan cannot hold comes back as a finding with its place in the file, never as a guess.
 
+mod bending;
 mod bolts;
 mod contents;
 mod device;
@@ -16,8 +17,10 @@ mod part;
 mod shape;
 mod site;
 
+pub(crate) use bending::{Bending, Bent, Substitute};
 pub(crate) use bolts::centroid_cut;
 pub use contents::Contents;
+pub(crate) use part::without_plates;
 pub use shape::{Numbers, plane_shape};
 
 pub use filling::{Curve, curve};

@@ -7,7 +7,7 @@ use serde_json::Value;
 const BRINE: &str = "configs/brine_day_tank.toml";
 
 /// Every key that the document may have, by the place where it stands.
-const KEYS: [(&str, &[&str]); 9] = [
+const KEYS: [(&str, &[&str]); 10] = [
     (
         "",
         &[
@@ -34,6 +34,7 @@ const KEYS: [(&str, &[&str]); 9] = [
             "loads_inward_bound",
             "capacity",
             "capacity_inward",
+            "plates",
             "utilisation",
             "utilisation_bound",
             "utilisation_inward",
@@ -56,6 +57,25 @@ const KEYS: [(&str, &[&str]); 9] = [
             "centre_of_pressure_sideways_m",
             "moment_centroid_n_m",
             "bolt_n",
+            "stress_pa",
+        ],
+    ),
+    (
+        "plates",
+        &[
+            "edges",
+            "elastic_modulus_pa",
+            "poisson_ratio",
+            "taken_as_steel",
+            "series_error",
+            "device_pressure_pa",
+            "bending_moment_n",
+            "bending_at_x_m",
+            "bending_at_slope_m",
+            "bending_direction",
+            "deflection_m",
+            "deflection_bound_m",
+            "why_not",
         ],
     ),
     ("capacity", &["load", "value", "basis"]),
@@ -93,7 +113,7 @@ fn check(place: &str, value: &Value, seen: &mut Vec<String>) {
 #[test]
 fn the_examples_together_show_every_documented_key_and_no_other() {
     let mut seen = Vec::new();
-    for name in ["brine_day_tank", "laboratory_tank", "rinse_basin", "odd_shapes"] {
+    for name in ["brine_day_tank", "laboratory_tank", "rinse_basin", "odd_shapes", "plate_box"] {
         let (_, value) = document(&["assess", &format!("configs/{name}.toml"), "--level", "0.6 m"]);
         assert_eq!(value["schema"], "strake.assess/1");
         check("", &value, &mut seen);
@@ -215,7 +235,7 @@ fn the_text_of_the_brine_day_tank_to_the_letter() {
 
 #[test]
 fn pages_keep_to_a_hundred_columns_in_both_systems() {
-    for name in ["brine_day_tank", "laboratory_tank", "rinse_basin", "odd_shapes"] {
+    for name in ["brine_day_tank", "laboratory_tank", "rinse_basin", "odd_shapes", "plate_box"] {
         for units in ["si", "us"] {
             let text = run(&["assess", &format!("configs/{name}.toml"), "--units", units]).stdout;
             for line in text.lines() {

@@ -4,6 +4,7 @@ mod assess;
 mod errors;
 mod liquids;
 mod odd_shapes;
+mod plates;
 mod rerate;
 mod seal;
 mod streams;

@@ -2,6 +2,7 @@
 //!
 //! Numbers of the load path stay f32 and are written with the fewest digits that give them back.
 
+use super::bending::PlateRow;
 use crate::energy::Energy;
 use serde::Serialize;
 
@@ -65,6 +66,9 @@ pub struct PartRow {
     /// What it may carry inwards, as a positive number.
     #[serde(skip_serializing_if = "Vec::is_empty")]
     pub capacity_inward: Vec<Capacity>,
+    /// The plates among its capacities.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub plates: Vec<PlateRow>,
     /// How the loads compare; empty of a part without capacities.
     #[serde(flatten)]
     pub judgement: Judgement,
@@ -91,6 +95,9 @@ pub struct Loads {
     /// Largest bolt share; of the inward bound the least.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub bolt_n: Option<f32>,
+    /// Largest bending stress in the plate of a panel, of the estimate and of the outward bound.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub stress_pa: Option<f32>,
 }
 
 /// Where the force acts; none when the pressures nearly cancel and only a couple is left.

@@ -4,9 +4,9 @@ use super::desk::Desk;
 use super::document::{NotJudged, PartRow};
 use super::judged;
 use super::request::{Request, Source};
-use crate::compile::HEIGHT_MAX_M;
-use crate::tank::{Capacity, Hatch, Opens, Part as Stated, Rating, TankFile};
-use crate::units::Quantity::{Length, Temperature};
+use crate::compile::{Bending, HEIGHT_MAX_M, Substitute};
+use crate::tank::{Capacity, Hatch, Opens, Part as Stated, Rating, TankFile, Vessel};
+use crate::units::Quantity::{Length, Pressure, Temperature};
 use crate::units::{UnitSystem, format};
 use strake_core::lane::Lane;
 use strake_core::part::{Part, evaluate};
@@ -43,6 +43,52 @@ pub(crate) fn not_judged(file: &TankFile, desk: &Desk, units: UnitSystem) -> Vec
             ),
             why: "no course covers it".to_owned(),
         });
+    }
+    found
+}
+
+/// Plates for which no number is given.
+pub(super) fn plates_not_judged(parts: &[PartRow]) -> Vec<NotJudged> {
+    let mut found = Vec::new();
+    for row in parts {
+        for why in row.plates.iter().filter_map(|plate| plate.why_not.as_ref()) {
+            found.push(NotJudged { name: row.name.clone(), why: format!("outward: {why}") });
+        }
+    }
+    found
+}
+
+/// What the numbers of plates leave out, and how the device judges them.
+pub(crate) fn plate_cautions(
+    file: &TankFile,
+    units: UnitSystem,
+    (who, rest): (&str, &str),
+) -> Vec<String> {
+    let (mut found, mut upright) = (Vec::new(), false);
+    for part in &file.parts {
+        for bending in Bending::of_part(part) {
+            let name = part.name();
+            found.push(match bending.substitute() {
+                Some(Substitute { pressure_pa, by_deflection }) => format!(
+                    "{name}: {who} the plate by the pressure at its lowest edge taken \
+                     as even (conservative substitute), up to {}{}{rest}",
+                    format(pressure_pa, Pressure, units),
+                    if by_deflection { ", where it sags by half its thickness" } else { "" }
+                ),
+                None => format!("{name}: the device does not judge the plate"),
+            });
+            if bending.elastic.taken_as_steel {
+                found.push(format!(
+                    "{name}: no material is stated, the plate is taken as steel, 200 GPa and 0.3"
+                ));
+            }
+            upright |= matches!(part, Stated::Panel(panel) if !panel.plane.is_level());
+        }
+    }
+    if upright && matches!(file.vessel, Vessel::Box { .. }) {
+        let pull = "plates of a box wall: bending alone; the pull of the neighbouring walls' \
+                    reactions comes on top as direct tension";
+        found.push(pull.to_owned());
     }
     found
 }
@@ -107,6 +153,8 @@ pub(super) fn cautions(
     }
     state_cautions(file, request, units, &mut found);
     file_cautions(file, units, &mut found);
+    let words = ("the device judges", "; the moments here are true");
+    found.extend(plate_cautions(file, units, words));
     found.push(FIELD_CHECK.to_owned());
     found
 }

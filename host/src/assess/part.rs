@@ -1,10 +1,11 @@
 //! The row of one part: loads under three states, capacities, judgement.
 
+use super::bending;
 use super::centre::centre;
 use super::desk::Desk;
 use super::document::{Capacity, Judgement, Limits, Loads, Lowest, PartRow};
 use super::request::Request;
-use crate::compile::centroid_cut;
+use crate::compile::{Bending, centroid_cut, without_plates};
 use crate::inverse::{self, PartLimits};
 use crate::tank::{self, Hatch, Opens, Part as Stated, PartKind, Plane, Rating, TankFile};
 use strake_core::lane::Lane;
@@ -17,7 +18,17 @@ use strake_core::shape::{Cut, Face};
 pub(super) fn rows(file: &TankFile, desk: &Desk, request: &Request) -> Vec<PartRow> {
     let states = desk.as_seen(Lane([single(request.level_m)]));
     let parts = file.parts.iter().zip(&desk.plan().parts);
-    parts.map(|(stated, part)| row(file, desk, stated, part, &states)).collect()
+    let judged = |(stated, part): (&Stated, &Part)| {
+        let plates = Bending::of_part(stated);
+        if plates.is_empty() {
+            return row(file, desk, stated, part, &states);
+        }
+        let part = without_plates(stated, part);
+        let mut row = row(file, desk, stated, &part, &states);
+        bending::judge(desk, &plates, &part, &states, &mut row);
+        row
+    };
+    parts.map(judged).collect()
 }
 
 #[expect(clippy::cast_possible_truncation, reason = "a level for the core, and file values shown")]
@@ -49,6 +60,7 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, all: &States<
             centre: None,
             moment_centroid_n_m: (!course).then_some(moment),
             bolt_n: (bolted && bolts).then(|| loads.bolt_n.lane(0)),
+            stress_pa: None,
         }
     };
     let [moment, moment_outward, moment_inward] = moments;
@@ -63,6 +75,7 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, all: &States<
         loads_inward_bound: loads(&computed.inward, moment_inward, true),
         capacity: capacities(file, stated, stated.capacity()),
         capacity_inward: capacities(file, stated, stated.capacity_inward()),
+        plates: Vec::new(),
         judgement: judgement(desk, stated, part, &computed),
     }
 }
@@ -158,6 +171,7 @@ fn capacity(file: &TankFile, stated: &Stated, rating: &Rating) -> Option<Capacit
         tank::Capacity::Plate { .. } | tank::Capacity::HoopTension { .. } => {
             ("hoop_tension_n_m", stated_capacity.hoop_tension_n_m()?)
         }
+        tank::Capacity::Panel(plate) => ("stress_pa", plate.allowable_stress_pa.value),
         tank::Capacity::DesignedFor { level_m, density_kg_m3, gas_pa, remaining } => {
             let depth_m = level_m.value - stated.heights().bottom_m;
             let head = density_kg_m3.value * file.gravity.m_s2() * depth_m.max(0.0);

@@ -3,6 +3,7 @@
 mod battery;
 mod limits;
 mod parts;
+mod plate;
 mod state;
 
 use super::Assessment;
@@ -77,7 +78,8 @@ fn provisional(sheet: &Sheet<'_>, page: &mut Page) {
 
 fn notes(sheet: &Sheet<'_>, page: &mut Page) {
     let Sheet { file, request, assessment, units } = sheet;
-    let not_judged = notes::not_judged(file, &assessment.desk, *units);
+    let mut not_judged = notes::not_judged(file, &assessment.desk, *units);
+    not_judged.extend(notes::plates_not_judged(&assessment.document.parts));
     if !not_judged.is_empty() {
         page.blank();
         page.heading("Not judged");

@@ -1,7 +1,7 @@
 //! `strake seal`: the plan that a device loads.
 
 use super::tank_file;
-use crate::assess::{Desk, FIELD_CHECK, assumed};
+use crate::assess::{Desk, FIELD_CHECK, assumed, plate_cautions};
 use crate::compile::{self, fingerprint};
 use crate::exit::Exit;
 use crate::failure::Failure;
@@ -76,6 +76,9 @@ pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
     let alarm = compiled.plan.alarm;
     let parts = compiled.plan.parts.len();
     let desk = Desk::new(compiled, &file);
+    let mut cautions = vec!["unsigned: a device cannot tell who made this plan".to_owned()];
+    cautions.extend(plate_cautions(&file, term.settings().units, ("the device judges", "")));
+    cautions.push(FIELD_CHECK.to_owned());
     let document = Document {
         schema: "strake.seal/1",
         tank: file.name.value.clone(),
@@ -91,10 +94,7 @@ pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
         warn_level_m: first_reached(&desk, alarm.warn.utilisation),
         alarm_utilisation: alarm.alarm.utilisation,
         alarm_level_m: first_reached(&desk, alarm.alarm.utilisation),
-        cautions: vec![
-            "unsigned: a device cannot tell who made this plan".to_owned(),
-            FIELD_CHECK.to_owned(),
-        ],
+        cautions,
     };
     match term.settings().format {
         Format::Json => term.document(&document)?,

@@ -1,5 +1,6 @@
 //! Parts: geometry, and in each direction the smallest of equal capacities.
 
+use super::bending::Bending;
 use super::bolts;
 use super::faults::Faults;
 use super::number::{located, single};
@@ -38,7 +39,7 @@ pub(super) fn part(
         geometry,
         bottom_m: single(heights.bottom_m),
         top_m: single(heights.top_m),
-        outward: capacities(stated.capacity()),
+        outward: with_plates(stated, capacities(stated.capacity())),
         inward: capacities(stated.capacity_inward()),
         designed_for: Vec::new(),
         outside: outside_mask(file, stated.name()),
@@ -75,6 +76,23 @@ fn plane(plane: &Plane, hatch: Option<&Hatch>, numbers: &mut Numbers<'_>) -> Opt
         .and_then(|hatch| hatch.bolts)
         .map(|stated| Bolts::new(&bolts::pattern(&stated.value, &plane.shape, sine), &face));
     Some(Geometry::plane(shape, single(sine), bolts))
+}
+
+/// The device judges a plate by its safe substitute, a pressure at the lowest edge.
+fn with_plates(stated: &Stated, mut capacities: Capacities) -> Capacities {
+    for plate in Bending::of_part(stated) {
+        let Some(pressure_pa) = plate.substitute().map(|one| single(one.pressure_pa)) else {
+            continue;
+        };
+        let least = capacities.pressure_pa.filter(|&stated_pa| stated_pa < pressure_pa);
+        capacities.pressure_pa = Some(least.unwrap_or(pressure_pa));
+    }
+    capacities
+}
+
+/// The part without what stands for its plates, for the desk, which has their moments.
+pub(crate) fn without_plates(stated: &Stated, part: &Part) -> Part {
+    Part { outward: capacities(stated.capacity()), ..part.clone() }
 }
 
 /// The smallest of each kind.

@@ -1,7 +1,7 @@
 //! What the reader must know beside the numbers.
 
 use super::Question;
-use crate::assess::{Desk, FIELD_CHECK, assumed};
+use crate::assess::{Desk, FIELD_CHECK, assumed, plate_cautions};
 use crate::tank::{Capacity, Part as Stated, TankFile};
 use crate::units::Quantity::{Length, Temperature};
 use crate::units::{UnitSystem, format};
@@ -40,6 +40,8 @@ pub(super) fn cautions(
         ));
     }
     designed(file, &mut found);
+    let words = ("device and rerate judge", "; assess has the true moments");
+    found.extend(plate_cautions(file, units, words));
     courses(file, &mut found);
     if let Some(overflow) = file.fill.overflow_m.filter(|top| question.new.level_m > top.value) {
         found.push(format!(

@@ -133,6 +133,8 @@ codes! {
     WiderThanTank = "wider-than-tank",
     /// An outline that encloses nothing, crosses itself, or has a hole that it cannot have.
     Outline = "outline",
+    /// A plate whose bending is not solved.
+    Plate = "plate",
     /// Two courses cover the same height.
     CourseOverlap = "course-overlap",
     /// Courses leave a height between them uncovered.

@@ -1,6 +1,6 @@
 //! The table of loads, part by part.
 
-use super::Sheet;
+use super::{Sheet, plate};
 use crate::assess::document::{Capacity, Loads, PartRow};
 use crate::page::{Page, WIDTH, wrap};
 use crate::tank::{self, Part as Stated, Plane, Rating, Shape};
@@ -108,6 +108,9 @@ fn part(sheet: &Sheet<'_>, page: &mut Page, stated: &Stated, row: &PartRow) {
     if row.loads_inward_bound.bolt_n.is_some() {
         put("bolt, largest share", three(|loads| loads.bolt_n, Force), "bolt_n");
     }
+    if row.loads.stress_pa.is_some() {
+        put("bending stress, largest", three(|loads| loads.stress_pa, Pressure), "stress_pa");
+    }
     let judged = &row.judgement;
     let used = [judged.utilisation, judged.utilisation_bound, judged.utilisation_inward];
     let used = used.map(|one| one.map_or_else(|| "-".to_owned(), |u| format!("{u:.3}")));
@@ -116,6 +119,7 @@ fn part(sheet: &Sheet<'_>, page: &mut Page, stated: &Stated, row: &PartRow) {
         let thickness = thickness_up(sheet, thickness_m);
         put("thickness, this state", [thickness, String::new(), String::new()], "");
     }
+    plate::lines(sheet, page, row);
 }
 
 /// A thickness rounded up: to 0.01 mm, or 0.001 in.
@@ -168,6 +172,7 @@ fn capacity(sheet: &Sheet<'_>, rating: &Rating, value: &Capacity) -> String {
             sheet.show(thickness_m.value, Length),
             sheet.show(corrosion_allowance_m.value, Length)
         ),
+        tank::Capacity::Panel(plate) => plate::capacity(sheet, plate, basis),
         tank::Capacity::DesignedFor { level_m, density_kg_m3, gas_pa, remaining } => {
             let share = remaining.map_or_else(
                 || "as new".to_owned(),

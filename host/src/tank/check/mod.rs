@@ -8,6 +8,7 @@ pub(super) mod courses;
 mod geometry;
 mod limits;
 mod liquid;
+mod plates;
 pub(super) mod seal;
 
 use super::read::Draft;
@@ -20,6 +21,7 @@ pub(super) fn all(draft: &Draft, sink: &Sink) {
     limits::counts(draft, sink);
     limits::names(draft, sink);
     geometry::parts(draft, sink);
+    plates::all(draft, sink);
     geometry::fill(draft, sink);
     geometry::outside(draft, sink);
     geometry::strapping(draft, sink);

@@ -1,5 +1,6 @@
 //! What a part was designed to carry, and where that number comes from.
 
+use super::PanelPlate;
 use crate::tank::finding::Located;
 
 /// One entry of a `capacity` list. The smallest of a list governs.
@@ -35,6 +36,8 @@ pub enum Capacity {
         /// Strength of the seam as a share of that of the plate, above 0, 1 at most.
         joint_efficiency: Located<f64>,
     },
+    /// A panel by the bending of its plate.
+    Panel(PanelPlate),
     /// Hoop tension of a course.
     HoopTension {
         /// Force per height.
@@ -79,7 +82,7 @@ impl Capacity {
     #[must_use]
     pub const fn key(&self) -> &'static str {
         match self {
-            Self::Plate { .. } => "plate",
+            Self::Plate { .. } | Self::Panel(_) => "plate",
             Self::HoopTension { .. } => "hoop_tension",
             Self::DesignedFor { .. } => "designed_for",
             Self::Bolt { .. } => "bolt",

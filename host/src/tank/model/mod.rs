@@ -6,6 +6,7 @@ mod capacity;
 mod liquid;
 mod outline;
 mod part;
+mod plate;
 mod service;
 mod signal;
 mod vessel;
@@ -18,6 +19,7 @@ pub use part::{
     Bolts, Course, DesignPoint, FirstBolt, Hatch, Heights, Hole, Opens, Panel, Part, PartKind,
     Plane,
 };
+pub use plate::{Elastic, PanelPlate, outline};
 pub use service::{Alarms, Cell, Logging, Power, SensorSupply, Threshold};
 pub use signal::{
     Count, LevelSensor, Modbus, PressureReference, Sensing, Signal, TemperatureSignal,

@@ -1,6 +1,7 @@
 //! `capacity` and `capacity_inward`: which capacities a part may have, and what each says.
 
 use super::field::{Range, field};
+use super::plate;
 use super::section::{Section, shorten};
 use crate::tank::finding::{Code, Located, Span};
 use crate::tank::model::{Basis, BasisKind, Capacity, Opens, PartKind, Rating};
@@ -97,8 +98,11 @@ fn rating(mut entry: Section<'_>, bearer: Bearer, inward: bool) -> Option<Rating
     );
     let span = kind.and_then(|kind| entry.key_span(kind)).unwrap_or(entry.span);
     let allowed = kind.is_some_and(|kind| may_have(&entry, kind, span, bearer, inward));
-    let capacity =
-        if allowed { kind.and_then(|kind| capacity(&mut entry, kind, remaining)) } else { None };
+    let capacity = if allowed {
+        kind.and_then(|kind| capacity(&mut entry, kind, bearer.kind, remaining))
+    } else {
+        None
+    };
     if let (Some(kind), true) = (kind, remaining_stated && kind != Some("designed_for")) {
         let span = entry.key_span("remaining").unwrap_or(span);
         let message = format!("`remaining` means nothing beside `{kind}`");
@@ -150,7 +154,7 @@ fn offered(bearer: Bearer, inward: bool) -> &'static [&'static str] {
     match (bearer.kind, inward) {
         (PartKind::Course, false) => &["plate", "hoop_tension", "designed_for", "pressure", "none"],
         (PartKind::Course, true) => &["pressure", "none"],
-        (PartKind::Panel, false) => &["force", "pressure", "designed_for", "none"],
+        (PartKind::Panel, false) => &["plate", "force", "pressure", "designed_for", "none"],
         (PartKind::Panel, true) => &["force", "pressure", "none"],
         (PartKind::Hatch, false) => &["bolt", "force", "pressure", "designed_for", "none"],
         (PartKind::Hatch, true) => &["bolt", "force", "pressure", "none"],
@@ -163,8 +167,7 @@ fn may_have(entry: &Section<'_>, key: &str, span: Span, bearer: Bearer, inward: 
     let offered = offered(bearer, inward);
     let hint = format!("a {part} may have {} here", offered.join(", "));
     let later = match bearer.kind {
-        PartKind::Course => false,
-        PartKind::Panel => key == "plate" && !inward,
+        PartKind::Course | PartKind::Panel => false,
         PartKind::Hatch => ["latch", "hinge", "moment", "cover"].contains(&key),
     };
     if later {
@@ -206,6 +209,7 @@ fn bolts_carry(entry: &Section<'_>, span: Span, bearer: Bearer, inward: bool) ->
 fn capacity(
     entry: &mut Section<'_>,
     kind: &'static str,
+    part: PartKind,
     remaining: Option<Located<f64>>,
 ) -> Option<Capacity> {
     let mut single = |quantity, write| {
@@ -216,7 +220,8 @@ fn capacity(
         "bolt" => single(Force, "\"18 kN\", on one bolt").map(|n| Capacity::Bolt { n }),
         "force" => single(Force, "\"20 kN\", on the whole part").map(|n| Capacity::Force { n }),
         "pressure" => single(Pressure, "\"60 kPa\"").map(|pa| Capacity::Pressure { pa }),
-        "plate" => plate(entry),
+        "plate" if part == PartKind::Panel => plate::panel(entry).map(Capacity::Panel),
+        "plate" => course_plate(entry),
         "designed_for" => designed_for(entry, remaining),
         _ => {
             let reason = entry.need_text("none", "\"rated by others\", why there is none")?;
@@ -225,7 +230,7 @@ fn capacity(
     }
 }
 
-fn plate(entry: &mut Section<'_>) -> Option<Capacity> {
+fn course_plate(entry: &mut Section<'_>) -> Option<Capacity> {
     let mut plate = entry.table("plate", "{ thickness = \"4.6 mm\", .. }")?;
     let thickness = plate.need(field(
         "thickness",

@@ -60,7 +60,7 @@ fn largest(quantity: Quantity) -> f64 {
         Quantity::Length | Quantity::Ratio | Quantity::Voltage | Quantity::Current => 1e3,
         Quantity::Volume | Quantity::Flow | Quantity::Time => 1e7,
         Quantity::Mass | Quantity::Force | Quantity::LineLoad | Quantity::Moment => 1e9,
-        Quantity::Pressure | Quantity::AbsolutePressure => 1e10,
+        Quantity::Pressure | Quantity::AbsolutePressure => 1e12,
         Quantity::Density => 25e3,
         Quantity::Speed => 10.0,
         Quantity::Acceleration => 100.0,

@@ -7,6 +7,7 @@ mod level;
 mod liquid;
 mod outline;
 mod part;
+mod plate;
 pub(super) mod section;
 mod secured;
 mod service;

@@ -1,0 +1,193 @@
+//! The plate of a panel under the core's pressure states, in f64: largest moment and deflection
+//! over the checked points, and the pressure that stands for it on the device.
+
+use crate::plate::{
+    DEFLECTION_PER_THICKNESS_MAX, Direction, Place, SPAN_PER_THICKNESS_MIN, Weighted, rigidity_n_m,
+    solve,
+};
+use crate::tank::{Capacity, Elastic, Panel, PanelPlate, Part as Stated, Rating, outline};
+use strake_core::liquid::States;
+use strake_core::pressure::Pressure;
+
+/// A plate whose influence functions are solved.
+#[derive(Clone, Debug)]
+pub(crate) struct Bending {
+    /// As the file states it.
+    pub(crate) plate: PanelPlate,
+    /// How stiff it is.
+    pub(crate) elastic: Elastic,
+    /// Largest difference between two orders of the series, share of the largest moment.
+    pub(crate) series_error: f64,
+    span_m: f64,
+    sine: f64,
+    bottom_m: f64,
+    moments: Vec<(Place, Direction, Weighted)>,
+    deflections: Vec<Weighted>,
+}
+
+/// What stands for a plate on the device.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(crate) struct Substitute {
+    /// Pressure at the lowest edge, Pa.
+    pub(crate) pressure_pa: f64,
+    /// The deflection reaches half the thickness before the stress is used up.
+    pub(crate) by_deflection: bool,
+}
+
+/// What bends most.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(crate) struct Bent {
+    /// Largest moment by size, N m/m.
+    pub(crate) moment_n: f64,
+    /// Where it stands.
+    pub(crate) place: Place,
+    /// In which direction.
+    pub(crate) direction: Direction,
+    /// Largest deflection by size, times the rigidity, N m².
+    deflection_n_m2: f64,
+}
+
+impl Bending {
+    /// The plates among the capacities of a part.
+    pub(crate) fn of_part(stated: &Stated) -> Vec<Self> {
+        let Stated::Panel(panel) = stated else { return Vec::new() };
+        let plates = panel.capacity.iter().filter_map(|rating| match &rating.capacity.value {
+            Capacity::Panel(plate) => Self::new(panel, plate, rating),
+            _ => None,
+        });
+        plates.collect()
+    }
+
+    /// `None` for a plate that the tank room refuses.
+    fn new(panel: &Panel, plate: &PanelPlate, rating: &Rating) -> Option<Self> {
+        let outline = outline(panel)?;
+        let elastic = plate.elastic(rating);
+        let solution = solve(outline, plate.edges.value, elastic.poisson).ok()?;
+        let moments = solution.moments.into_iter();
+        Some(Self {
+            plate: plate.clone(),
+            elastic,
+            series_error: solution.series_error,
+            span_m: outline.span_m(),
+            sine: panel.plane.sine(),
+            bottom_m: panel.plane.heights.bottom_m,
+            moments: moments.map(|one| (one.place, one.direction, one.weight.split())).collect(),
+            deflections: solution.deflections.iter().map(|one| one.weight.split()).collect(),
+        })
+    }
+
+    /// Moment and deflection under one pressure, the given lane of it.
+    pub(crate) fn under<const N: usize>(&self, pressure: &Pressure<N>, lane: usize) -> Bent {
+        self.most(|weight| self.load(&weight.whole, pressure, lane).abs())
+    }
+
+    /// The largest that any pressure between the lower and the upper state gives.
+    pub(crate) fn bound<const N: usize>(&self, states: &States<N>, lane: usize) -> Bent {
+        let (upper, lower) = (&states.upper, &states.lower);
+        self.most(|weight| {
+            let at = |table, pressure| self.load(table, pressure, lane);
+            let most = at(&weight.positive, upper) - at(&weight.negative, lower);
+            let least = at(&weight.positive, lower) - at(&weight.negative, upper);
+            most.abs().max(least.abs())
+        })
+    }
+
+    fn most(&self, load: impl Fn(&Weighted) -> f64) -> Bent {
+        let mut bent = Bent {
+            moment_n: 0.0,
+            place: Place { x_m: 0.0, s_m: 0.0 },
+            direction: Direction::Up,
+            deflection_n_m2: self.deflections.iter().map(&load).fold(0.0, f64::max),
+        };
+        for (place, direction, weight) in &self.moments {
+            let moment_n = load(weight);
+            if moment_n > bent.moment_n {
+                bent = Bent { moment_n, place: *place, direction: *direction, ..bent };
+            }
+        }
+        bent
+    }
+
+    /// `integral p w ds` by the one formula: the surfaces as heights up the slope.
+    fn load<const N: usize>(
+        &self,
+        table: &crate::plate::Table,
+        pressure: &Pressure<N>,
+        lane: usize,
+    ) -> f64 {
+        let mut load = f64::from(pressure.gas_pa.lane(lane)) * table.total();
+        for surface in pressure.surfaces() {
+            let step_n_m3 = f64::from(surface.step_n_m3.lane(lane));
+            let above_m = f64::from(surface.height_m.lane(lane)) - self.bottom_m;
+            load += if self.sine > 0.0 {
+                step_n_m3 * self.sine * table.ramp(above_m / self.sine)
+            } else {
+                step_n_m3 * above_m.max(0.0) * table.total()
+            };
+        }
+        load
+    }
+
+    /// Bending stress 6 M / t² in what the corrosion allowance leaves, Pa.
+    pub(crate) fn stress_pa(&self, bent: &Bent) -> f64 {
+        6.0 * bent.moment_n / self.plate.sound_m().powi(2)
+    }
+
+    /// Moment as a share of what the plate may carry.
+    pub(crate) fn utilisation(&self, bent: &Bent) -> f64 {
+        bent.moment_n / self.plate.moment_n()
+    }
+
+    /// Largest deflection, m.
+    pub(crate) fn deflection_m(&self, bent: &Bent) -> f64 {
+        self.deflection_at(bent, self.plate.sound_m())
+    }
+
+    fn deflection_at(&self, bent: &Bent, thickness_m: f64) -> f64 {
+        bent.deflection_n_m2
+            / rigidity_n_m(self.elastic.modulus_pa, self.elastic.poisson, thickness_m)
+    }
+
+    /// Why the theory of thin plates does not hold for this plate at all.
+    pub(crate) fn too_thick(&self) -> Option<String> {
+        let spans = self.span_m / self.plate.thickness_m.value;
+        (spans < SPAN_PER_THICKNESS_MIN).then(|| {
+            format!(
+                "thin-plate theory not valid: the span is {spans:.1} thicknesses, it takes \
+                 {SPAN_PER_THICKNESS_MIN}"
+            )
+        })
+    }
+
+    /// Whether the deflection is that of small-deflection theory.
+    pub(crate) fn is_small(&self, bent: &Bent) -> bool {
+        self.deflection_m(bent) <= DEFLECTION_PER_THICKNESS_MAX * self.plate.sound_m()
+    }
+
+    /// Thickness at which this moment uses the allowable stress, allowance included, m; `None`
+    /// where the theory would not hold for a plate of that thickness.
+    pub(crate) fn thickness_m(&self, bent: &Bent) -> Option<f64> {
+        let sound_m = (6.0 * bent.moment_n / self.plate.allowable_stress_pa.value).sqrt();
+        let whole_m = sound_m + self.plate.allowance_m();
+        let small = self.deflection_at(bent, sound_m) <= DEFLECTION_PER_THICKNESS_MAX * sound_m;
+        let thin = self.span_m >= SPAN_PER_THICKNESS_MIN * whole_m;
+        (sound_m > 0.0 && small && thin).then_some(whole_m)
+    }
+
+    /// The conservative substitute: the pressure at the lowest edge that, even and wherever it
+    /// bends a point more, brings a checked moment to the capacity or a deflection to its limit.
+    ///
+    /// Every outward pressure that is nowhere above it bends less: `|integral p w| <= p_edge
+    /// max(integral w+, integral w-)`. `None` where the theory does not hold.
+    pub(crate) fn substitute(&self) -> Option<Substitute> {
+        let even = |weight: &Weighted| weight.positive.total().max(weight.negative.total());
+        let moment_m2 = self.moments.iter().map(|(_, _, weight)| even(weight)).fold(0.0, f64::max);
+        let deflection_m4 = self.deflections.iter().map(even).fold(0.0, f64::max);
+        let sound_m = self.plate.sound_m();
+        let rigidity = rigidity_n_m(self.elastic.modulus_pa, self.elastic.poisson, sound_m);
+        let strong = self.plate.moment_n() / moment_m2;
+        let small = DEFLECTION_PER_THICKNESS_MAX * sound_m * rigidity / deflection_m4;
+        let found = Substitute { pressure_pa: strong.min(small), by_deflection: small < strong };
+        self.too_thick().is_none().then_some(found)
+    }
+}

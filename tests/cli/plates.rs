@@ -1,0 +1,185 @@
+//! Panels judged by the bending of their plates, through the command line.
+
+use crate::tank_text::TankText;
+use crate::{document, run};
+use serde_json::Value;
+use strake::assess::{Overrides, Request, assess};
+use strake::tank;
+use strake_core::lane::Lane;
+use strake_core::part::evaluate;
+use strake_oracle::bending::{Held, Sheet};
+
+const TANK: &str = "configs/plate_box.toml";
+/// Density of the example, and gravity.
+const WEIGHT_N_M3: f64 = 1020.0 * 9.806_65;
+
+fn part<'a>(document: &'a Value, name: &str) -> &'a Value {
+    let parts = document["parts"].as_array().expect("parts");
+    parts.iter().find(|part| part["name"] == name).expect("a part of that name")
+}
+
+fn number(value: &Value) -> f64 {
+    value.as_f64().unwrap_or_else(|| panic!("{value} is no number"))
+}
+
+/// Largest moment of finite elements at the nodes of a plate wet up to `wet_m`.
+fn by_elements(sheet: Sheet, wet_m: f64) -> f64 {
+    let bent = sheet.bent(|s| WEIGHT_N_M3 * (wet_m - s).max(0.0), &[wet_m]);
+    let (across, up) = sheet.mesh;
+    let mut largest = 0.0_f64;
+    for j in 0..=up {
+        for i in 0..=across {
+            largest = largest.max(bent.moments(i, j).principal());
+        }
+    }
+    largest
+}
+
+/// Filled over the plate and partly wetted.
+#[test]
+fn stresses_agree_with_finite_elements() {
+    let end_wall =
+        Sheet { width: 1.0, length: 1.2, poisson: 0.3, held: [Held::Clamped; 3], mesh: (20, 48) };
+    let side_wall = Sheet {
+        width: 1.0,
+        length: 2.4,
+        poisson: 0.3,
+        held: [Held::Clamped, Held::Clamped, Held::Free],
+        mesh: (16, 76),
+    };
+    for level in [0.5, 0.9, 2.2] {
+        let text = format!("{level} m");
+        let (_, found) = document(&["assess", TANK, "--level", &text]);
+        for (name, sheet, sound_m) in
+            [("end wall, lower", end_wall, 0.008), ("side wall", side_wall, 0.011)]
+        {
+            let stress = number(&part(&found, name)["loads"]["stress_pa"]);
+            let due = 6.0 * by_elements(sheet, level) / (sound_m * sound_m);
+            let off = (stress - due).abs() / due;
+            println!("{name} at {level} m: {stress:.4e} Pa, elements {due:.4e}, off {off:.1e}");
+            assert!(off < 2.5e-2, "{name} at {level} m: {stress} {due}");
+        }
+    }
+}
+
+/// A strip of 3 m wet to its middle: 3509 N m/m at 0.888 m. Uniform and triangular load over the
+/// whole plate, superposed, would say nothing at mid-span.
+#[test]
+fn a_wall_wet_to_its_middle_bends() {
+    let tank = TankText::example("plate_box", |text| {
+        text.replace("width = \"1.0 m\", length = \"2.4 m\"", "width = \"18 m\", length = \"3 m\"")
+            .replace("4.0 m", "20 m")
+            .replace("height = \"2.4 m\"", "height = \"3 m\"")
+            .replace("corrosion_allowance = \"1 mm\", ", "")
+            .replace("\"12 mm\"", "\"60 mm\"")
+            .replace("\"top free\"", "\"supported\"")
+            .replace("1020 kg/m3", "1000 kg/m3")
+    });
+    let (_, found) = document(&["assess", &tank.path(), "--level", "1.5 m"]);
+    let wall = part(&found, "side wall");
+    let plate = &wall["plates"][0];
+    assert!((number(&plate["bending_moment_n"]) - 3509.0).abs() < 10.0, "{plate}");
+    assert!((number(&plate["bending_at_slope_m"]) - 0.888).abs() < 0.05, "{plate}");
+    let stress = 6.0 * number(&plate["bending_moment_n"]) / (0.06 * 0.06);
+    assert!((number(&wall["loads"]["stress_pa"]) / stress - 1.0).abs() < 1e-6);
+}
+
+#[test]
+fn outside_the_theory_there_is_no_number() {
+    let (_, found) = document(&["assess", TANK]);
+    let thin = part(&found, "upper field");
+    assert!(thin["loads"]["stress_pa"].is_null() && thin["utilisation"].is_null(), "{thin}");
+    assert!(thin["limit_level_m"].is_null() && thin["thickness_for_state_m"].is_null(), "{thin}");
+    let not_judged = found["not_judged"].as_array().unwrap();
+    let why =
+        not_judged.iter().find(|one| one["name"] == "upper field").unwrap()["why"].to_string();
+    assert!(why.contains("thin-plate theory not valid") && why.contains("sag"), "{why}");
+    // A plate of 130 mm on 1 m is thick.
+    let tank = TankText::example("plate_box", |text| {
+        text.replace("{ thickness = \"2 mm\"", "{ thickness = \"130 mm\"")
+    });
+    let (_, found) = document(&["assess", &tank.path()]);
+    let thick = part(&found, "upper field");
+    assert!(thick["loads"]["stress_pa"].is_null(), "{thick}");
+    let why = thick["plates"][0]["why_not"].to_string();
+    assert!(why.contains("7.7 thicknesses"), "{why}");
+    // Small now, too large at its limit: no number either.
+    let (_, found) = document(&["assess", TANK, "--level", "1.25 m"]);
+    let why = part(&found, "upper field")["plates"][0]["why_not"].to_string();
+    assert!(why.contains("filled to its limit"), "{why}");
+}
+
+/// At the limit level the stress is the allowable one; the thickness for the state brings it there.
+#[test]
+fn limits_and_thickness_are_where_the_stress_is_allowable() {
+    let stronger = |text: &str| text.replace("\"2.4 m\" }     #", "\"6 m\" }     #");
+    let tall = stronger(include_str!("../../configs/plate_box.toml"));
+    let tall = tall.replace("\"2.2 m\"", "\"5.5 m\"").replace("\"8 mm\"", "\"9 mm\"");
+    let tank = TankText::example("plate_box", |_| tall.clone());
+    let (_, found) = document(&["assess", &tank.path(), "--level", "3.3 m"]);
+    let wall = part(&found, "end wall, lower");
+    assert_eq!(wall["limited_by"], "strength", "{wall}");
+    let limit = number(&wall["limit_level_m"]);
+    let (_, at) = document(&["assess", &tank.path(), "--level", &format!("{limit} m")]);
+    let stress = number(&part(&at, "end wall, lower")["loads"]["stress_pa"]);
+    assert!((stress / 140e6 - 1.0).abs() < 1e-5, "{stress}");
+    let bound = number(&wall["limit_level_bound_m"]);
+    assert!(bound < limit, "{bound} {limit}");
+
+    let thickness = number(&wall["thickness_for_state_m"]);
+    assert!(thickness < 0.009);
+    let thinner = tall.replace("\"9 mm\"", &format!("\"{} mm\"", thickness * 1e3));
+    let tank = TankText::example("plate_box", |_| thinner.clone());
+    let file = tank::parse("t.toml", thinner.as_bytes()).unwrap();
+    let request = Request::new(&file, Overrides { level_m: Some(3.3), ..Overrides::default() });
+    let found = assess(&file, &request.unwrap()).unwrap().document;
+    let wall = found.parts.iter().find(|part| part.name == "end wall, lower").unwrap();
+    let utilisation = wall.judgement.utilisation.unwrap_or(f32::NAN);
+    assert!((utilisation - 1.0).abs() < 1e-5, "{utilisation} {}", tank.path());
+}
+
+/// At every level the substitute of the device says at least what the true moments say.
+#[test]
+fn the_device_errs_to_the_safe_side_only() {
+    let file = tank::parse(TANK, include_bytes!("../../configs/plate_box.toml")).unwrap();
+    let mut compared = 0;
+    for level in 1..=22 {
+        let level_m = 0.1 * f64::from(level);
+        let overrides = Overrides { level_m: Some(level_m), ..Overrides::default() };
+        let found = assess(&file, &Request::new(&file, overrides).unwrap()).unwrap();
+        #[expect(clippy::cast_possible_truncation, reason = "a level for the core")]
+        let states = found.desk.as_seen(Lane([level_m as f32]));
+        let plan = found.desk.plan();
+        for (row, part) in found.document.parts.iter().zip(&plan.parts) {
+            let device = evaluate(plan, part, &states);
+            let pairs = [
+                (row.judgement.utilisation, device.utilisation),
+                (row.judgement.utilisation_bound, device.utilisation_bound),
+            ];
+            for (desk, device) in pairs {
+                let Some(desk) = desk else { continue };
+                compared += 1;
+                assert!(desk <= device.lane(0) * 1.000_01, "{} at {level_m}", row.name);
+            }
+        }
+    }
+    assert!(compared > 100, "{compared}");
+}
+
+#[test]
+fn the_substitute_is_named_wherever_a_plate_is_shown() {
+    let seal_to = std::env::temp_dir().join(format!("plates-{}.strake", std::process::id()));
+    let path = seal_to.display().to_string();
+    for args in [
+        &["assess", TANK][..],
+        &["seal", TANK, "-o", &path, "--force"],
+        &["rerate", TANK, "--density", "1100 kg/m3"],
+    ] {
+        let ran = run(args);
+        let text = ran.stdout.split_whitespace().collect::<Vec<_>>().join(" ");
+        assert!(text.contains("the plate by the pressure at its lowest edge"), "{text}");
+        assert!(text.contains("conservative substitute"), "{text}");
+        assert!(text.contains("neighbouring walls"), "{text}");
+    }
+    std::fs::remove_file(seal_to).unwrap();
+}
