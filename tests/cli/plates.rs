@@ -177,7 +177,7 @@ fn the_substitute_is_named_wherever_a_plate_is_shown() {
     ] {
         let ran = run(args);
         let text = ran.stdout.split_whitespace().collect::<Vec<_>>().join(" ");
-        assert!(text.contains("the plate by the pressure at its lowest edge"), "{text}");
+        assert!(text.contains("the plate outward by the pressure at its lowest edge"), "{text}");
         assert!(text.contains("conservative substitute"), "{text}");
         assert!(text.contains("neighbouring walls"), "{text}");
     }

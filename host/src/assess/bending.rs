@@ -71,7 +71,7 @@ pub(super) fn judge(
             elastic_modulus_pa: bending.elastic.modulus_pa,
             poisson_ratio: bending.elastic.poisson,
             taken_as_steel: bending.elastic.taken_as_steel,
-            series_error: bending.series_error,
+            series_error: bending.series_error(),
             device_pressure_pa: bending.substitute().map(|one| one.pressure_pa),
             bent: why_not.is_none().then(|| shown(bending, &now, &bound)),
             why_not: why_not.clone(),

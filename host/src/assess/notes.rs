@@ -70,7 +70,7 @@ pub(crate) fn plate_cautions(
             let name = part.name();
             found.push(match bending.substitute() {
                 Some(Substitute { pressure_pa, by_deflection }) => format!(
-                    "{name}: {who} the plate by the pressure at its lowest edge taken \
+                    "{name}: {who} the plate outward by the pressure at its lowest edge taken \
                      as even (conservative substitute), up to {}{}{rest}",
                     format(pressure_pa, Pressure, units),
                     if by_deflection { ", where it sags by half its thickness" } else { "" }

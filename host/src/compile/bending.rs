@@ -2,10 +2,12 @@
 //! over the checked points, and the pressure that stands for it on the device.
 
 use crate::plate::{
-    DEFLECTION_PER_THICKNESS_MAX, Direction, Place, SPAN_PER_THICKNESS_MIN, Weighted, rigidity_n_m,
-    solve,
+    DEFLECTION_PER_THICKNESS_MAX, Direction, Edges, Outline, Place, SPAN_PER_THICKNESS_MIN,
+    Weighted, rigidity_n_m, solve,
 };
 use crate::tank::{Capacity, Elastic, Panel, PanelPlate, Part as Stated, Rating, outline};
+use std::collections::VecDeque;
+use std::sync::{Arc, Mutex};
 use strake_core::liquid::States;
 use strake_core::pressure::Pressure;
 
@@ -16,13 +18,49 @@ pub(crate) struct Bending {
     pub(crate) plate: PanelPlate,
     /// How stiff it is.
     pub(crate) elastic: Elastic,
-    /// Largest difference between two orders of the series, share of the largest moment.
-    pub(crate) series_error: f64,
     span_m: f64,
     sine: f64,
     bottom_m: f64,
+    solved: Arc<Solved>,
+}
+
+/// The influence functions of one plate.
+#[derive(Debug)]
+struct Solved {
+    series_error: f64,
     moments: Vec<(Place, Direction, Weighted)>,
     deflections: Vec<Weighted>,
+}
+
+/// What the functions follow from.
+type Key = (Outline, Edges, f64);
+
+/// The last plates solved: an inverse question compiles one file many times.
+static SOLVED: Mutex<VecDeque<(Key, Arc<Solved>)>> = Mutex::new(VecDeque::new());
+/// Plates kept, as many as a tank has parts.
+const KEPT: usize = crate::tank::MAX_PARTS;
+
+/// The functions of a plate, from those kept or anew.
+fn solved(key: Key) -> Option<Arc<Solved>> {
+    let kept = SOLVED.lock().ok();
+    let found = kept.as_ref().and_then(|kept| kept.iter().find(|(one, _)| *one == key));
+    if let Some((_, solved)) = found {
+        return Some(Arc::clone(solved));
+    }
+    drop(kept);
+    let (outline, edges, poisson) = key;
+    let solution = solve(outline, edges, poisson).ok()?;
+    let moments = solution.moments.into_iter();
+    let new = Arc::new(Solved {
+        series_error: solution.series_error,
+        moments: moments.map(|one| (one.place, one.direction, one.weight.split())).collect(),
+        deflections: solution.deflections.iter().map(|one| one.weight.split()).collect(),
+    });
+    if let Ok(mut kept) = SOLVED.lock() {
+        kept.truncate(KEPT - 1);
+        kept.push_front((key, Arc::clone(&new)));
+    }
+    Some(new)
 }
 
 /// What stands for a plate on the device.
@@ -62,18 +100,20 @@ impl Bending {
     fn new(panel: &Panel, plate: &PanelPlate, rating: &Rating) -> Option<Self> {
         let outline = outline(panel)?;
         let elastic = plate.elastic(rating);
-        let solution = solve(outline, plate.edges.value, elastic.poisson).ok()?;
-        let moments = solution.moments.into_iter();
+        let solved = solved((outline, plate.edges.value, elastic.poisson))?;
         Some(Self {
             plate: plate.clone(),
             elastic,
-            series_error: solution.series_error,
             span_m: outline.span_m(),
             sine: panel.plane.sine(),
             bottom_m: panel.plane.heights.bottom_m,
-            moments: moments.map(|one| (one.place, one.direction, one.weight.split())).collect(),
-            deflections: solution.deflections.iter().map(|one| one.weight.split()).collect(),
+            solved,
         })
+    }
+
+    /// Largest difference between two orders of the series, share of the largest moment.
+    pub(crate) fn series_error(&self) -> f64 {
+        self.solved.series_error
     }
 
     /// Moment and deflection under one pressure, the given lane of it.
@@ -97,9 +137,9 @@ impl Bending {
             moment_n: 0.0,
             place: Place { x_m: 0.0, s_m: 0.0 },
             direction: Direction::Up,
-            deflection_n_m2: self.deflections.iter().map(&load).fold(0.0, f64::max),
+            deflection_n_m2: self.solved.deflections.iter().map(&load).fold(0.0, f64::max),
         };
-        for (place, direction, weight) in &self.moments {
+        for (place, direction, weight) in &self.solved.moments {
             let moment_n = load(weight);
             if moment_n > bent.moment_n {
                 bent = Bent { moment_n, place: *place, direction: *direction, ..bent };
@@ -181,8 +221,9 @@ impl Bending {
     /// max(integral w+, integral w-)`. `None` where the theory does not hold.
     pub(crate) fn substitute(&self) -> Option<Substitute> {
         let even = |weight: &Weighted| weight.positive.total().max(weight.negative.total());
-        let moment_m2 = self.moments.iter().map(|(_, _, weight)| even(weight)).fold(0.0, f64::max);
-        let deflection_m4 = self.deflections.iter().map(even).fold(0.0, f64::max);
+        let moment_m2 =
+            self.solved.moments.iter().map(|(_, _, weight)| even(weight)).fold(0.0, f64::max);
+        let deflection_m4 = self.solved.deflections.iter().map(even).fold(0.0, f64::max);
         let sound_m = self.plate.sound_m();
         let rigidity = rigidity_n_m(self.elastic.modulus_pa, self.elastic.poisson, sound_m);
         let strong = self.plate.moment_n() / moment_m2;
