@@ -9,18 +9,22 @@ mod centre;
 mod desk;
 mod document;
 mod judged;
+mod margin;
 mod notes;
 mod part;
 mod request;
+mod set_point;
 pub mod text;
 
 pub use bending::{BentRow, PlateRow};
 pub use centre::centre;
 pub use desk::Desk;
 pub use document::{Capacity, Centre, Document, Judgement, Loads, NotJudged, PartRow, State};
+pub use margin::{Margin, PartMargin, Times, margin, together};
 pub use notes::{FIELD_CHECK, PROVISIONAL, assumed};
 pub(crate) use notes::{not_judged, plate_cautions};
 pub use request::{Overrides, Request, RequestError, Source};
+pub use set_point::SetPoint;
 
 use crate::compile;
 use crate::energy;
@@ -73,6 +77,9 @@ pub fn assess(file: &TankFile, request: &Request) -> Result<Assessment, Findings
         not_judged,
         warn_level_m: warn,
         alarm_level_m: alarm,
+        margin: margin(file, desk.plan()),
+        warn_set_point: warn.and_then(|level_m| set_point::of(&desk, file, level_m)),
+        alarm_set_point: alarm.and_then(|level_m| set_point::of(&desk, file, level_m)),
         energy: energy::estimate(file),
         cautions,
     };

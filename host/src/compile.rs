@@ -23,6 +23,7 @@ pub use contents::Contents;
 pub(crate) use part::without_plates;
 pub use shape::{Numbers, plane_shape};
 
+pub(crate) use filling::each_liquid;
 pub use filling::{Curve, curve};
 pub(crate) use site::{HEIGHT_MAX_M, floor_m};
 pub use strake_core::plan_slot::fingerprint;
@@ -58,6 +59,19 @@ impl Compiled {
         let names: Vec<&str> = self.part_names.iter().map(String::as_str).collect();
         let mut bytes = vec![0; PLAN_BYTES_MAX];
         let used = codec::encode(&header, &self.plan, &self.tank_name, &names, &mut bytes)?;
+        bytes.truncate(used);
+        Ok(bytes)
+    }
+
+    /// The same, with the reason why a margin that is short was accepted.
+    ///
+    /// # Errors
+    /// [`PlanError`] when the plan does not fit its bytes with it.
+    pub fn encode_with_reason(&self, serial: u64, reason: &str) -> Result<Vec<u8>, PlanError> {
+        let mut bytes = self.encode(serial)?;
+        let used = bytes.len();
+        bytes.resize(PLAN_BYTES_MAX, 0);
+        let used = codec::append_accepted_margin(&mut bytes, used, reason)?;
         bytes.truncate(used);
         Ok(bytes)
     }

@@ -11,7 +11,7 @@ mod lines;
 mod round;
 
 pub(crate) use limits::within;
-pub use limits::{Limit, LimitedBy, PartLimits, first_reached, of_part};
+pub use limits::{Limit, LimitedBy, PartLimits, first_reached, held_above, of_part};
 pub use lines::{Against, By, Line, lines};
 pub use round::{Step, density_down, density_up, rounded_down, rounded_up, thickness_up};
 

@@ -6,8 +6,11 @@ use serde_json::Value;
 
 const BRINE: &str = "configs/brine_day_tank.toml";
 
+const SET_POINT: &[&str] =
+    &["pressure_pa", "current_a", "level_lightest_m", "level_nominal_m", "level_densest_m"];
+
 /// Every key that the document may have, by the place where it stands.
-const KEYS: [(&str, &[&str]); 10] = [
+const KEYS: [(&str, &[&str]); 14] = [
     (
         "",
         &[
@@ -19,6 +22,9 @@ const KEYS: [(&str, &[&str]); 10] = [
             "not_judged",
             "warn_level_m",
             "alarm_level_m",
+            "warn_set_point",
+            "alarm_set_point",
+            "margin",
             "energy",
             "cautions",
         ],
@@ -80,6 +86,13 @@ const KEYS: [(&str, &[&str]); 10] = [
     ),
     ("capacity", &["load", "value", "basis"]),
     ("not_judged", &["name", "why"]),
+    ("warn_set_point", SET_POINT),
+    ("alarm_set_point", SET_POINT),
+    ("margin", &["given_m", "needed_m", "enough", "per_part"]),
+    (
+        "per_part",
+        &["name", "side", "alarm_level_m", "limit_level_m", "given_m", "needed_m", "enough"],
+    ),
     ("energy", &["fixed", "adaptive", "life_ratio", "rest_share", "assumptions", "cautions"]),
     ("fixed", &["samples_per_day", "charge_per_day_c", "sensor_share", "life_days"]),
     ("adaptive", &["samples_per_day", "charge_per_day_c", "sensor_share", "life_days"]),
@@ -235,7 +248,15 @@ fn the_text_of_the_brine_day_tank_to_the_letter() {
 
 #[test]
 fn pages_keep_to_a_hundred_columns_in_both_systems() {
-    for name in ["brine_day_tank", "laboratory_tank", "rinse_basin", "odd_shapes", "plate_box"] {
+    let names = [
+        "brine_day_tank",
+        "laboratory_tank",
+        "rinse_basin",
+        "odd_shapes",
+        "plate_box",
+        "wine_drum",
+    ];
+    for name in names {
         for units in ["si", "us"] {
             let text = run(&["assess", &format!("configs/{name}.toml"), "--units", units]).stdout;
             for line in text.lines() {

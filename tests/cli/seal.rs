@@ -54,7 +54,7 @@ fn the_text_says_unsigned_and_gives_the_thresholds() {
 
 #[test]
 fn every_example_seals() {
-    for name in ["brine_day_tank", "laboratory_tank", "rinse_basin"] {
+    for name in ["brine_day_tank", "laboratory_tank", "rinse_basin", "wine_drum"] {
         let folder = TankText::new("");
         let path = folder.inside("a.plan").display().to_string();
         let ran = run(&["seal", &format!("configs/{name}.toml"), "-o", &path]);
@@ -70,4 +70,39 @@ fn a_folder_that_is_not_there() {
     let ran = run(&["seal", BRINE, "-o", &path]);
     assert_eq!(ran.status, 6);
     assert!(ran.stderr.starts_with("error: cannot write "), "{}", ran.stderr);
+}
+
+/// The pump of the example made ten times as fast: the alarm comes too late.
+#[test]
+fn a_short_margin_is_refused_unless_it_is_said_why() {
+    let faster = |text: String| text.replace("\"0.2 mm/s\"", "\"2 mm/s\"");
+    let folder = TankText::example("brine_day_tank", faster);
+    let output = folder.inside("fast.plan");
+    let path = output.display().to_string();
+    let tank = folder.path();
+    let ran = run(&["seal", &tank, "-o", &path]);
+    assert_eq!(ran.status, 8, "{}", ran.stderr);
+    let words = "course 1 outward has 0.417 m, needs 2.056 m";
+    assert!(ran.stderr.contains(words), "{}", ran.stderr);
+    assert!(!output.exists(), "nothing is written");
+    let assessed = run(&["assess", &tank]);
+    assert!(
+        assessed.stdout.contains("0.417 m given, 2.056 m needed, SHORT"),
+        "{}",
+        assessed.stdout
+    );
+
+    let reason = "a person stands at the valve";
+    let ran = run(&["seal", &tank, "-o", &path, "--accept-short-margin", reason]);
+    assert_eq!((ran.status, ran.stderr.as_str()), (0, ""));
+    assert!(ran.stdout.contains(&format!("short margin accepted: {reason}")), "{}", ran.stdout);
+    let plan = plan_file::read(&std::fs::read(&output).unwrap()).unwrap();
+    assert_eq!(plan.accepted_margin.as_deref(), Some(reason), "it travels with the plan");
+
+    // A reason that nothing asks for stays out of the plan; an empty one is no reason.
+    let sound = folder.inside("sound.plan").display().to_string();
+    let ran = run(&["seal", BRINE, "-o", &sound, "--accept-short-margin", reason]);
+    assert_eq!(ran.status, 0);
+    assert_eq!(plan_file::read(&std::fs::read(&sound).unwrap()).unwrap().accepted_margin, None);
+    assert_eq!(run(&["seal", BRINE, "-o", &sound, "--accept-short-margin", " "]).status, 2);
 }

@@ -5,7 +5,7 @@ use crate::compile::{Compiled, HEIGHT_MAX_M};
 use crate::inverse::{Interval, LimitedBy};
 use crate::tank::TankFile;
 use strake_core::lane::Lane;
-use strake_core::liquid::{Readings, States, states};
+use strake_core::liquid::{Band, Readings, States, states};
 use strake_core::plan::{LevelSensor, Plan, Reference};
 use strake_core::pressure::Pressure;
 use strake_core::signal::half_width;
@@ -91,6 +91,32 @@ impl Desk {
     pub fn reading(&self, level_m: f32) -> f32 {
         let level_m = Lane([level_m]);
         self.sensed(&self.at_true_level(level_m).estimate, level_m).lane(0)
+    }
+
+    /// Half-widths of the level that the estimate has at `level_m`, m, by what they come from: a
+    /// head sensor's pressure, density and gas change the level that a reading means; a surface
+    /// sensor has its own only.
+    #[must_use]
+    pub fn half_widths_m(&self, level_m: f32) -> [(&'static str, f64); 3] {
+        let reading = self.reading(level_m);
+        let half = half_width(&self.plan, reading);
+        let mut open = self.plan.clone();
+        open.closed = true;
+        let level = |plan: &Plan, reading: f32, kg_m3: f32| {
+            let density = Band { estimate_kg_m3: kg_m3, ..plan.liquid.top };
+            f64::from(strake_core::liquid::level_m(plan, reading, density))
+        };
+        let top = open.liquid.top;
+        let nominal = level(&open, reading, top.estimate_kg_m3);
+        let density = [top.low_kg_m3, top.high_kg_m3]
+            .map(|kg_m3| (level(&open, reading, kg_m3) - nominal).abs());
+        let gas = [open.gas.lowest_pa, open.gas.highest_pa].map(|gas_pa| {
+            let mut other = open.clone();
+            other.gas.nominal_pa = gas_pa;
+            (level(&other, reading, top.estimate_kg_m3) - nominal).abs()
+        });
+        let sensor = (level(&open, reading + half, top.estimate_kg_m3) - nominal).abs();
+        [("sensor", sensor), ("density", density[0].max(density[1])), ("gas", gas[0].max(gas[1]))]
     }
 
     /// What the sensor reads of a state with its surface at a level.

@@ -3,6 +3,8 @@
 //! Numbers of the load path stay f32 and are written with the fewest digits that give them back.
 
 use super::bending::PlateRow;
+use super::margin::Margin;
+use super::set_point::SetPoint;
 use crate::energy::Energy;
 use serde::Serialize;
 
@@ -26,6 +28,15 @@ pub struct Document {
     pub warn_level_m: Option<f32>,
     /// The same for the alarm threshold.
     pub alarm_level_m: Option<f32>,
+    /// What the warn level is for a head sensor.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub warn_set_point: Option<SetPoint>,
+    /// What the alarm level is for a head sensor.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub alarm_set_point: Option<SetPoint>,
+    /// Margin of the alarm thresholds, given and needed; none while times or rates are not stated.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub margin: Option<Margin>,
     /// How long the cell lasts; none without `[power]` or `[logging]`.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub energy: Option<Energy>,

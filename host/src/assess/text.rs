@@ -2,6 +2,7 @@
 
 mod battery;
 mod limits;
+mod margin;
 mod parts;
 mod plate;
 mod state;
@@ -51,6 +52,8 @@ pub fn render(
     parts::loads(&sheet, &mut page);
     limits::limits(&sheet, &mut page);
     limits::thresholds(&sheet, &mut page);
+    margin::set_points(&sheet, &mut page);
+    margin::margin(&sheet, &mut page);
     battery::battery(&sheet, &mut page);
     notes(&sheet, &mut page);
     page.into_text()

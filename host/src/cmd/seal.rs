@@ -1,7 +1,7 @@
 //! `strake seal`: the plan that a device loads.
 
 use super::tank_file;
-use crate::assess::{Desk, FIELD_CHECK, assumed, plate_cautions};
+use crate::assess::{Desk, FIELD_CHECK, PartMargin, assumed, margin, plate_cautions};
 use crate::compile::{self, fingerprint};
 use crate::exit::Exit;
 use crate::failure::Failure;
@@ -12,11 +12,12 @@ use crate::plan_file;
 use crate::tank::TankFile;
 use crate::term::{Format, Term};
 use crate::units::Quantity::Length;
-use crate::units::format;
+use crate::units::{UnitSystem, format};
 use crate::utc;
 use serde::Serialize;
 use std::path::PathBuf;
-use strake_core::plan::PlanError;
+use strake_core::plan::codec::REASON_BYTES_MAX;
+use strake_core::plan::{Plan, PlanError};
 
 /// What `strake seal` is asked.
 #[derive(Debug, clap::Args)]
@@ -33,9 +34,20 @@ pub struct Args {
     /// Replace the file if it exists
     #[arg(long)]
     pub force: bool,
+    /// Seal although the margin of a threshold is short, for this reason (120 bytes at most)
+    #[arg(long, value_name = "REASON", value_parser = reason)]
+    pub accept_short_margin: Option<String>,
     /// Serial of the plan, UTC seconds; else the time now
     #[arg(long, value_name = "SECONDS")]
     pub serial: Option<u64>,
+}
+
+fn reason(text: &str) -> Result<String, String> {
+    let text = text.trim();
+    if text.is_empty() || text.len() > REASON_BYTES_MAX {
+        return Err(format!("it has {} bytes, 1 to {REASON_BYTES_MAX} are held", text.len()));
+    }
+    Ok(text.to_owned())
 }
 
 /// The document `strake.seal/1`.
@@ -55,7 +67,35 @@ struct Document {
     warn_level_m: Option<f32>,
     alarm_utilisation: f32,
     alarm_level_m: Option<f32>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    accepted_short_margin: Option<String>,
     cautions: Vec<String>,
+}
+
+/// What is short, part by part, whichever of its liquids the tank holds.
+fn short_margins(file: &TankFile, plan: &Plan) -> Vec<String> {
+    let mut found: Vec<PartMargin> = Vec::new();
+    for plan in compile::each_liquid(plan) {
+        let parts = margin(file, &plan).map_or_else(Vec::new, |margin| margin.per_part);
+        for part in parts.into_iter().filter(|part| !part.enough) {
+            let same = |one: &&mut PartMargin| one.name == part.name && one.side == part.side;
+            match found.iter_mut().find(same) {
+                Some(one) if one.given_m <= part.given_m => {}
+                Some(one) => *one = part,
+                None => found.push(part),
+            }
+        }
+    }
+    let words = |one: &PartMargin| {
+        format!(
+            "{} {} has {}, needs {}",
+            one.name,
+            one.side,
+            format(one.given_m, Length, UnitSystem::Si),
+            format(one.needed_m, Length, UnitSystem::Si)
+        )
+    };
+    found.iter().map(words).collect()
 }
 
 /// Seals the plan.
@@ -70,7 +110,19 @@ pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
         Some(serial) => serial,
         None => utc::now_s()?,
     };
-    let bytes = compiled.encode(serial).map_err(|error| not_encoded(&file, error))?;
+    let short = short_margins(&file, &compiled.plan);
+    let accepted = args.accept_short_margin.as_deref().filter(|_| !short.is_empty());
+    if !short.is_empty() && accepted.is_none() {
+        let message = format!("{}: the margin is short: {}", file.path(), short.join("; "));
+        let hint = "lower the alarm threshold, act or sample faster, or state why it is accepted: \
+                    --accept-short-margin REASON";
+        return Err(Failure::new(Exit::Refused, "margin", message, hint));
+    }
+    let bytes = match accepted {
+        Some(reason) => compiled.encode_with_reason(serial, reason),
+        None => compiled.encode(serial),
+    };
+    let bytes = bytes.map_err(|error| not_encoded(&file, error))?;
     let sealed = plan_file::write(&bytes).map_err(|error| not_encoded(&file, error))?;
     output_file::write(&args.output, &sealed, args.force)?;
     let alarm = compiled.plan.alarm;
@@ -94,6 +146,7 @@ pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
         warn_level_m: first_reached(&desk, alarm.warn.utilisation),
         alarm_utilisation: alarm.alarm.utilisation,
         alarm_level_m: first_reached(&desk, alarm.alarm.utilisation),
+        accepted_short_margin: accepted.map(str::to_owned),
         cautions,
     };
     match term.settings().format {
@@ -134,6 +187,9 @@ fn text(document: &Document, term: &Term) -> String {
             |level_m| format!("first reached at {}", format(f64::from(level_m), Length, units)),
         );
         page.line(&format!("  {name:<12} {utilisation} of a capacity, {at}"));
+    }
+    if let Some(reason) = &document.accepted_short_margin {
+        page.paragraph("  short margin accepted: ", reason);
     }
     for caution in &document.cautions {
         page.paragraph("", &format!("{caution}."));

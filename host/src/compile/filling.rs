@@ -76,7 +76,7 @@ pub(super) fn state(file: &TankFile, plan: &mut Plan, faults: &mut Faults) {
 
 /// The plan as it is judged while the product is not confirmed, with its own liquid, and with each
 /// product.
-fn each_liquid(plan: &Plan) -> impl Iterator<Item = Plan> + '_ {
+pub(crate) fn each_liquid(plan: &Plan) -> impl Iterator<Item = Plan> + '_ {
     let bands = [plan.liquid.any_product(), plan.liquid.top];
     let with = |top: Band| {
         let mut one = plan.clone();

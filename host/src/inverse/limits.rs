@@ -268,3 +268,40 @@ pub fn first_reached(desk: &Desk, threshold: f32) -> Option<f32> {
         Some(first) => Some(first.high_m),
     }
 }
+
+/// Every part's inward bound, for the sensor at hand, below a threshold.
+struct InwardBelow<'a> {
+    desk: &'a Desk,
+    threshold: f32,
+}
+
+impl Criterion for InwardBelow<'_> {
+    fn holds<const N: usize>(&self, level_m: Lane<N>) -> [bool; N] {
+        let plan = self.desk.plan();
+        let states = self.desk.as_seen(level_m);
+        let mut holds = [true; N];
+        for part in &plan.parts {
+            let loads = evaluate(plan, part, &states);
+            for (holds, u) in holds.iter_mut().zip(loads.utilisation_inward.0) {
+                *holds &= u < self.threshold;
+            }
+        }
+        holds
+    }
+}
+
+/// On the way down from the overflow, the surface level at which the first part's inward bound
+/// reaches a threshold, as the sensor at hand sees it; `None` when it is not reached down to the
+/// floor.
+#[must_use]
+pub fn held_above(desk: &Desk, threshold: f32) -> Option<f32> {
+    let range = desk.range();
+    let parts = desk.plan().parts.iter().flat_map(|part| [part.bottom_m, part.top_m]);
+    let kinks = plan_kinks(desk.plan()).into_iter().chain(parts);
+    let found = intervals(&InwardBelow { desk, threshold }, range, kinks);
+    match found.last().filter(|last| last.high_m >= range.high_m) {
+        None => Some(range.high_m),
+        Some(last) if last.low_m <= range.low_m => None,
+        Some(last) => Some(last.low_m),
+    }
+}
