@@ -6,6 +6,7 @@
 #![forbid(unsafe_code)]
 
 pub mod app;
+pub mod arithmetic;
 pub mod board;
 pub mod device;
 pub mod journal;

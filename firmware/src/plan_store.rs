@@ -266,7 +266,9 @@ impl<F: NorFlash> PlanStore<F> {
             let bytes = word.get(skip as usize..).unwrap_or_default();
             let count = bytes.len().min(out.len());
             let (head, rest) = out.split_at_mut(count);
-            head.copy_from_slice(bytes.get(..count).unwrap_or_default());
+            head.iter_mut()
+                .zip(bytes.get(..count).unwrap_or_default())
+                .for_each(|(to, from)| *to = *from);
             out = rest;
             at += WORD - skip;
         }

@@ -10,7 +10,7 @@ pub trait Fetch {
 impl Fetch for &[u8] {
     fn fetch(&mut self, out: &mut [u8]) -> Option<()> {
         let (head, rest) = self.split_at_checked(out.len())?;
-        out.copy_from_slice(head);
+        fill(out, head);
         *self = rest;
         Some(())
     }

@@ -53,6 +53,7 @@ pub fn pressures<const N: usize>(plan: &Plan, resolved: &[Resolved; N]) -> State
 /// or below the diaphragm of a head sensor the lowest is the diaphragm's own height: what lies
 /// below is not seen.
 #[must_use]
+#[inline]
 pub fn levels_m(plan: &Plan, resolved: &Resolved) -> [f32; 3] {
     let states = pressures(plan, &[*resolved]);
     let top = |pressure: &crate::pressure::Pressure<1>| {
@@ -71,22 +72,14 @@ pub fn loads<const N: usize>(
     each_load(plan, resolved, &mut part)
 }
 
-/// [`loads`] of one reading, compiled with this crate and at its level.
-#[inline(never)]
-pub fn loads_of_one(
-    plan: &Plan,
-    resolved: &Resolved,
-    part: &mut dyn FnMut(usize, &PartLoads<1>),
-) -> Digest<1> {
-    each_load(plan, &[*resolved], part)
-}
-
-/// Loads of one part of the plan under one reading, compiled with this crate and at its level;
-/// `None` beyond the last part.
+/// Loads of one part of the plan under `N` readings; `None` beyond the last part.
 #[must_use]
-#[inline(never)]
-pub fn part_loads_of_one(plan: &Plan, index: usize, resolved: &Resolved) -> Option<PartLoads<1>> {
-    let states = pressures(plan, &[*resolved]);
+pub fn part_loads<const N: usize>(
+    plan: &Plan,
+    index: usize,
+    resolved: &[Resolved; N],
+) -> Option<PartLoads<N>> {
+    let states = pressures(plan, resolved);
     let mut loads = PartLoads::NONE;
     evaluate_into(plan, plan.parts.get(index)?, &states, &mut loads);
     Some(loads)

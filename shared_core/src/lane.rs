@@ -12,7 +12,6 @@
 
 pub mod careless;
 
-use core::array;
 use core::ops::{Add, Div, Mul, Neg, Sub};
 
 /// `N` numbers that go through the same arithmetic.
@@ -32,15 +31,20 @@ impl<const N: usize> Lane<N> {
 
     #[must_use]
     #[inline(always)]
-    fn map(self, f: impl Fn(f32) -> f32) -> Self {
-        Self(self.0.map(f))
+    fn map(mut self, f: impl Fn(f32) -> f32) -> Self {
+        for x in &mut self.0 {
+            *x = f(*x);
+        }
+        self
     }
 
     #[must_use]
     #[inline(always)]
-    fn zip(self, other: Self, f: impl Fn(f32, f32) -> f32) -> Self {
-        let mut pairs = self.0.into_iter().zip(other.0);
-        Self(array::from_fn(|_| pairs.next().map_or(0.0, |(a, b)| f(a, b))))
+    fn zip(mut self, other: Self, f: impl Fn(f32, f32) -> f32) -> Self {
+        for (a, &b) in self.0.iter_mut().zip(&other.0) {
+            *a = f(*a, b);
+        }
+        self
     }
 
     /// The larger of the two; `self` where both are equal or one is not a number.
@@ -82,10 +86,11 @@ impl<const N: usize> Lane<N> {
     #[must_use]
     #[inline(always)]
     pub fn positive_selects(self, then: Self, otherwise: Self) -> Self {
-        let mut pairs = then.0.into_iter().zip(otherwise.0).zip(self.0);
-        Self(array::from_fn(|_| {
-            pairs.next().map_or(0.0, |((yes, no), switch)| if switch > 0.0 { yes } else { no })
-        }))
+        let mut chosen = otherwise;
+        for ((slot, &yes), &switch) in chosen.0.iter_mut().zip(&then.0).zip(&self.0) {
+            *slot = if switch > 0.0 { yes } else { *slot };
+        }
+        chosen
     }
 
     /// Whether every lane is greater than zero.

@@ -72,6 +72,7 @@ pub struct Capacities {
 impl Capacities {
     /// Whether nothing is stated.
     #[must_use]
+    #[inline]
     pub const fn is_empty(&self) -> bool {
         self.pressure_pa.is_none()
             && self.hoop_tension_n_m.is_none()
@@ -122,12 +123,14 @@ pub struct Part {
 impl Part {
     /// Whether any outward capacity is stated.
     #[must_use]
+    #[inline]
     pub fn judged_outward(&self) -> bool {
         !self.outward.is_empty() || !self.designed_for.is_empty()
     }
 
     /// Whether an inward capacity is stated.
     #[must_use]
+    #[inline]
     pub const fn judged_inward(&self) -> bool {
         !self.inward.is_empty()
     }

@@ -59,7 +59,10 @@ impl SlotHeader {
         sink.u16(0);
         sink.bytes(&UNSIGNED);
         let (fields, check) = bytes.split_at_mut(SLOT_HEADER_BYTES - 4);
-        check.copy_from_slice(&CRC32.checksum(fields).to_le_bytes());
+        check
+            .iter_mut()
+            .zip(&CRC32.checksum(fields).to_le_bytes())
+            .for_each(|(to, from)| *to = *from);
         bytes
     }
 

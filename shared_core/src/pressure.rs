@@ -15,6 +15,7 @@
 
 use crate::lane::Lane;
 use crate::shape::{Cut, Face, Wetted};
+use heapless::Vec;
 
 /// Most surfaces of one state: four layers, and two liquids against the outside.
 pub const SURFACES_MAX: usize = 6;
@@ -29,12 +30,11 @@ pub struct Surface<const N: usize> {
 }
 
 /// A pressure distribution: gas and a short list of surfaces.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct Pressure<const N: usize> {
     /// Gas pressure, Pa gauge.
     pub gas_pa: Lane<N>,
-    surfaces: [Surface<N>; SURFACES_MAX],
-    count: usize,
+    surfaces: Vec<Surface<N>, SURFACES_MAX>,
 }
 
 /// Force and moment of a pressure on a plane part or a piece of it.
@@ -54,25 +54,21 @@ impl<const N: usize> Pressure<N> {
     #[must_use]
     #[inline]
     pub const fn gas(gas_pa: Lane<N>) -> Self {
-        let none = Surface { height_m: Lane::ZERO, step_n_m3: Lane::ZERO };
-        Self { gas_pa, surfaces: [none; SURFACES_MAX], count: 0 }
+        Self { gas_pa, surfaces: Vec::new() }
     }
 
     /// Adds a surface. Beyond [`SURFACES_MAX`] nothing is added; the plan's limits keep it from
     /// happening.
     #[inline]
     pub fn add(&mut self, height_m: Lane<N>, step_n_m3: Lane<N>) {
-        if let Some(slot) = self.surfaces.get_mut(self.count) {
-            *slot = Surface { height_m, step_n_m3 };
-            self.count += 1;
-        }
+        let _ = self.surfaces.push(Surface { height_m, step_n_m3 });
     }
 
     /// The surfaces in the order in which they were added.
     #[must_use]
     #[inline]
     pub fn surfaces(&self) -> &[Surface<N>] {
-        self.surfaces.get(..self.count).unwrap_or(&self.surfaces)
+        &self.surfaces
     }
 
     /// Pressure at a height, Pa gauge. Error: 3e-7 of the largest term.

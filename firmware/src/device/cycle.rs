@@ -1,10 +1,11 @@
 //! One cycle: sense, append, evaluate, append, show.
 
 use super::{Device, Memory, sense};
+use crate::arithmetic;
 use crate::board::{Board, Clock};
 use heapless::Vec;
 use strake_core::alarm::{FaultCause, MACHINES};
-use strake_core::evaluate::{Moved, step};
+use strake_core::evaluate::Moved;
 use strake_core::journal::{Entry, Sample};
 use strake_core::signal::Resolved;
 
@@ -74,7 +75,7 @@ impl<B: Board> Device<B> {
     fn evaluate(&mut self, sample: &Sample) -> Resolved {
         let Memory { plan, state, moves } = &mut *self.memory;
         moves.clear();
-        step(plan, state, sample, |moved| {
+        arithmetic::step(plan, state, sample, &mut |moved| {
             let _ = moves.push(moved);
         })
     }
@@ -151,9 +152,10 @@ impl<B: Board> Device<B> {
     /// until that beat, ms.
     fn schedule(&mut self, now_ms: u64) -> u32 {
         let interval_ms = self.memory.plan.logging.interval_ms;
-        let ahead_ms = self
-            .reading
-            .map_or(interval_ms, |reading| self.pace.next_ms(&self.memory.plan, &reading, now_ms));
+        let plan = &self.memory.plan;
+        let ahead_ms = self.reading.map_or(interval_ms, |reading| {
+            arithmetic::next_ms(&mut self.pace, plan, &reading, now_ms)
+        });
         let interval_ms = u64::from(interval_ms).max(1);
         let beats = now_ms.saturating_sub(self.beat_ms) / interval_ms;
         // Kept as the last one that is over.

@@ -1,13 +1,14 @@
 //! What the device answers over the link.
 
 use super::Device;
+use crate::arithmetic;
 use crate::board::{Board, Clock};
 use crate::journal::{Journal, ReadError};
 use crate::plan_store::StoreError;
 use crate::serve::{Refusal, Served};
 use embedded_storage::nor_flash::{NorFlash, ReadNorFlash};
 use strake_core::alarm::{FAULT_CAUSES, FaultCause, MachineId, PARTS_MAX, Threshold};
-use strake_core::evaluate::{TimeToLimit, levels_m, loads_of_one, part_loads_of_one};
+use strake_core::evaluate::TimeToLimit;
 use strake_core::journal::Entry;
 use strake_core::journal::entry::Presser;
 use strake_core::part::{Geometry, PartLoads};
@@ -73,9 +74,9 @@ impl<B: Board> Served for Device<B> {
         };
         status.level_reading = reading.class as u8;
         [status.level_low_m, status.level_m, status.level_high_m] =
-            levels_m(&self.memory.plan, &reading);
+            arithmetic::levels_m(&self.memory.plan, &reading);
         status.parts = u8::try_from(self.memory.plan.parts.len()).unwrap_or(u8::MAX);
-        loads_of_one(&self.memory.plan, &reading, &mut |index, part| {
+        arithmetic::loads(&self.memory.plan, &reading, &mut |index, part| {
             let bound = part.utilisation_bound.lane(0);
             if status.governing_part == u8::MAX || bound > status.utilisation_bound {
                 status.utilisation_bound = bound;
@@ -89,7 +90,7 @@ impl<B: Board> Served for Device<B> {
         self.in_force?;
         let reading = self.reading?;
         let one = self.memory.plan.parts.get(usize::from(part))?;
-        let of = part_loads_of_one(&self.memory.plan, usize::from(part), &reading)?;
+        let of = arithmetic::part_loads(&self.memory.plan, usize::from(part), &reading)?;
         let state = |threshold| {
             MachineId::of_part(part, threshold)
                 .map_or(0, |id| self.memory.state.machine(id).state.number())

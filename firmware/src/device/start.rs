@@ -6,12 +6,13 @@
 use super::faults::FaultLog;
 use super::plans::load;
 use super::{Device, InForce, Memory, STARTS_AT, STARTS_BYTES, WAITING_AREA};
+use crate::arithmetic;
 use crate::board::{Board, Clock, Hardware, ResetCause, RetainedMemory};
 use crate::journal::{Journal, Recovery, Restore, Waiting};
 use crate::plan_store::PlanStore;
 use embedded_storage::nor_flash::NorFlash;
 use strake_core::alarm::FaultCause;
-use strake_core::evaluate::{Output, Pace, step};
+use strake_core::evaluate::{Output, Pace};
 use strake_core::journal::{Entry, SectorHeader};
 
 impl<B: Board> Device<B> {
@@ -187,7 +188,7 @@ impl<F: NorFlash> Restore for Restored<'_, F> {
     fn entry(&mut self, entry: &Entry) {
         match entry {
             Entry::Sample(sample) if self.in_force.is_some() => {
-                step(&self.memory.plan, &mut self.memory.state, sample, |_| {});
+                arithmetic::step(&self.memory.plan, &mut self.memory.state, sample, &mut |_| {});
             }
             Entry::Fault { tick_ms, cause, .. } => {
                 self.memory.state.report(&self.memory.plan, *cause, *tick_ms, |_| {});

@@ -177,8 +177,8 @@ impl<'a> Held<'a> {
         let mut designed = Pressure::gas(Lane([state.gas_pa]));
         designed.add(Lane([state.level_m]), Lane([state.weight_n_m3]));
         let states = States {
-            estimate: designed,
-            upper: designed,
+            estimate: designed.clone(),
+            upper: designed.clone(),
             lower: designed,
             ..desk.at_true_level(Lane([state.level_m]))
         };

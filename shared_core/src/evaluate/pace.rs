@@ -36,7 +36,7 @@
 //! Inputs are the plan and what [`super::step`] made of the samples since the last start or plan
 //! change, all of which the journal holds.
 
-use super::loads_of_one;
+use super::loads;
 use crate::lane::at_most;
 use crate::plan::{LevelSensor, LoggingPlan, Plan, ThresholdPlan};
 use crate::signal::{ReadingClass, Resolved, half_width, reach};
@@ -66,7 +66,7 @@ pub struct Pace {
 impl Pace {
     /// Takes what a sample was resolved to; gives the time until the next one, ms: whole intervals.
     /// Pending delays are none of its concern: they schedule samples of their own.
-    #[inline(never)]
+    #[inline]
     pub fn next_ms(&mut self, plan: &Plan, resolved: &Resolved, tick_ms: u64) -> u32 {
         let interval_ms = plan.logging.interval_ms;
         #[expect(clippy::cast_possible_truncation, reason = "the low bits are wanted")]
@@ -102,6 +102,7 @@ impl Pace {
 
 /// Whether no alarm of a part is met by any reading of the next `ahead_ms`, deadbands included, nor
 /// the roof by a sensor of the surface. What is not a number is met.
+#[inline]
 fn is_clear(plan: &Plan, resolved: &Resolved, around: f32, ahead_ms: u32) -> bool {
     let density = resolved.density.hull(plan.liquid.any_product());
     let (rise, fall) = reach(plan, density, ahead_ms);
@@ -114,7 +115,7 @@ fn is_clear(plan: &Plan, resolved: &Resolved, around: f32, ahead_ms: u32) -> boo
     let outward = at_most(gone(&plan.alarm.warn), gone(&plan.alarm.alarm));
     let inward = plan.alarm.inward.as_ref().map_or(f32::MAX, gone);
     let mut clear = plan.level.sensor != LevelSensor::Surface || high < plan.shell_top_m;
-    loads_of_one(plan, &ends, &mut |_, part| {
+    loads(plan, &[ends], |_, part| {
         clear &= part.utilisation_bound.lane(0) < outward;
         clear &= part.utilisation_inward.lane(0) < inward;
     });

@@ -1,7 +1,7 @@
 //! One sample, one press: what moves the machines.
 
 use super::digest::fold;
-use super::{Digest, State, TimeToLimit, loads_of_one};
+use super::{Digest, State, TimeToLimit, loads};
 use crate::alarm::{Condition, FaultCause, MachineId, Move, Settings, Threshold};
 use crate::journal::entry::{Sample, Transition};
 use crate::plan::{Plan, ThresholdPlan};
@@ -40,27 +40,11 @@ impl Moved {
 pub type Judged = (f32, f32);
 
 /// Takes one sample: resolves it, evaluates every part, moves the machines.
-pub fn step(
-    plan: &Plan,
-    state: &mut State,
-    sample: &Sample,
-    mut moved: impl FnMut(Moved),
-) -> Resolved {
-    one_step(plan, state, sample, &mut moved)
-}
-
-/// [`step`] as one function in every image, compiled with this crate and at its level.
-#[inline(never)]
-fn one_step(
-    plan: &Plan,
-    state: &mut State,
-    sample: &Sample,
-    moved: &mut dyn FnMut(Moved),
-) -> Resolved {
+pub fn step(plan: &Plan, state: &mut State, sample: &Sample, moved: impl FnMut(Moved)) -> Resolved {
     let resolved =
         resolve(plan, &mut state.sight, sample.tick_ms, sample.level, sample.temperature);
     let mut judged: Vec<Judged, { crate::alarm::PARTS_MAX }> = Vec::new();
-    let digest = loads_of_one(plan, &resolved, &mut |_, part| {
+    let digest = loads(plan, &[resolved], |_, part| {
         // As many parts as the plan holds, which is the capacity of the list.
         let _ = judged.push((part.utilisation_bound.lane(0), part.utilisation_inward.lane(0)));
     });

@@ -25,6 +25,7 @@ use super::check::{CARELESS, block_check};
 use super::entry::{Entry, Sample};
 use super::samples::Chain;
 use super::{PAGE_BYTES, checkpoint, events, is_blank};
+use crate::cursor::fill;
 
 /// Most entries in one block.
 pub const ENTRIES_MAX: usize = 32;
@@ -214,7 +215,7 @@ fn seal(
     out.get_mut(filled..body)?.fill(0xFF);
     *out.first_chunk_mut()? = [words, form.number() << 5 | below_count];
     let check = block_check(place.sequence, place.offset, out.get(..body)?);
-    out.get_mut(body..len)?.copy_from_slice(&check.to_le_bytes());
+    fill(out.get_mut(body..len)?, &check.to_le_bytes());
     Some(len)
 }
 

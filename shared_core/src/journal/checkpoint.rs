@@ -4,6 +4,7 @@
 //! follow. A part ends where its block ends or the state does; only the last one is padded.
 
 use super::STATE_BYTES_MAX;
+use crate::cursor::fill;
 
 /// Most parts: the first in the 144 bytes behind the header, the others in a page each.
 pub const PARTS_MAX: u8 = 8;
@@ -29,7 +30,7 @@ pub(super) fn write_part(
     if taken == 0 && !rest.is_empty() {
         return None;
     }
-    room.get_mut(..taken)?.copy_from_slice(rest.get(..taken)?);
+    fill(room.get_mut(..taken)?, rest.get(..taken)?);
     Some((head + taken, taken))
 }
 
@@ -69,7 +70,7 @@ impl<'a> Collector<'a> {
         };
         let missing = total.checked_sub(self.len)?;
         let taken = bytes.get(..missing).unwrap_or(bytes);
-        self.state.get_mut(self.len..self.len.checked_add(taken.len())?)?.copy_from_slice(taken);
+        fill(self.state.get_mut(self.len..self.len.checked_add(taken.len())?)?, taken);
         self.total = total;
         self.len += taken.len();
         Some(())

@@ -32,7 +32,7 @@ pub struct Readings<const N: usize> {
 }
 
 /// The three pressure distributions of a reading, without liquid outside.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct States<const N: usize> {
     /// Best estimate.
     pub estimate: Pressure<N>,

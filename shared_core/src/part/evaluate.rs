@@ -89,25 +89,28 @@ pub fn evaluate<const N: usize>(plan: &Plan, part: &Part, states: &States<N>) ->
 /// [`evaluate`] into room that is already there: on the device a copy costs as much as a part. The
 /// room must come from [`PartLoads::NONE`] or from a part of the same kind: what the kind does not
 /// have is not written.
-#[inline]
+#[inline(never)]
 pub(crate) fn evaluate_into<const N: usize>(
     plan: &Plan,
     part: &Part,
     states: &States<N>,
     loads: &mut PartLoads<N>,
 ) {
-    if part.outside == 0 {
-        judge(plan, part, states, loads);
+    let less;
+    let states = if part.outside == 0 {
+        states
     } else {
-        judge(plan, part, &acting(plan, part, states), loads);
-    }
+        less = acting(plan, part, states);
+        &less
+    };
+    judge(plan, part, states, loads);
 }
 
 /// The states as they act on one part: those of the tank, less the liquid that stands against the
 /// part's outside.
 #[must_use]
 pub fn acting<const N: usize>(plan: &Plan, part: &Part, states: &States<N>) -> States<N> {
-    let mut with = *states;
+    let mut with = states.clone();
     for (bit, outside) in plan.outside.iter().enumerate() {
         if part.outside & (1 << bit) == 0 {
             continue;
@@ -150,14 +153,9 @@ fn judge<const N: usize>(plan: &Plan, part: &Part, states: &States<N>, loads: &m
             };
         }
     }
-    [loads.utilisation, loads.utilisation_bound] = if part.judged_outward() {
-        [
-            outward_utilisation(part, estimate, &loads.estimate),
-            outward_utilisation(part, upper, &loads.outward),
-        ]
-    } else {
-        [Lane::ZERO; 2]
-    };
+    // Zero where no capacity is stated.
+    [loads.utilisation, loads.utilisation_bound] =
+        outward_utilisation(part, [estimate, upper], [&loads.estimate, &loads.outward]);
     loads.utilisation_inward = if part.judged_inward() {
         inward_utilisation(part, lower, &loads.inward)
     } else {
@@ -200,26 +198,39 @@ fn extremes<const N: usize>(
     found
 }
 
-/// Largest ratio of a load to its capacity; zero where the loads act inwards.
-fn outward_utilisation<const N: usize>(
+/// Largest ratio of a load to its capacity under each state; zero where the loads act inwards.
+#[inline]
+fn outward_utilisation<const N: usize, const K: usize>(
     part: &Part,
-    state: &Pressure<N>,
-    loads: &Loads<N>,
-) -> Lane<N> {
-    let pressure_pa = match part.geometry {
-        Geometry::Plane { .. } => loads.pressure_pa,
+    states: [&Pressure<N>; K],
+    loads: [&Loads<N>; K],
+) -> [Lane<N>; K] {
+    let mut pressure_pa = loads.map(|loads| loads.pressure_pa);
+    if let Geometry::Course { .. } = part.geometry
+        && part.outward.pressure_pa.is_some()
+    {
         // The stated pressure of a course holds for all of it, not for its design point alone.
-        Geometry::Course { .. } if part.outward.pressure_pa.is_none() => Lane::ZERO,
-        Geometry::Course { .. } if part.outside == 0 => state.at(Lane::splat(part.bottom_m)),
-        Geometry::Course { .. } => extremes(part, state, Lane::at_least),
-    };
+        pressure_pa = states.map(|state| course_pressure(part, state));
+    }
     let mut utilisation = ratio(&part.outward, pressure_pa, loads, 1.0);
     for design in &part.designed_for {
-        utilisation = utilisation.at_least(design_ratio(part, state, design));
+        for (largest, state) in utilisation.iter_mut().zip(states) {
+            *largest = largest.at_least(design_ratio(part, state, design));
+        }
     }
-    utilisation.at_most(Lane::splat(UTILISATION_MAX))
+    utilisation.map(|largest| largest.at_most(Lane::splat(UTILISATION_MAX)))
 }
 
+#[inline(never)]
+fn course_pressure<const N: usize>(part: &Part, state: &Pressure<N>) -> Lane<N> {
+    if part.outside == 0 {
+        state.at(Lane::splat(part.bottom_m))
+    } else {
+        extremes(part, state, Lane::at_least)
+    }
+}
+
+#[inline(never)]
 fn inward_utilisation<const N: usize>(
     part: &Part,
     state: &Pressure<N>,
@@ -232,30 +243,30 @@ fn inward_utilisation<const N: usize>(
         // against the gas.
         loads.hoop_tension_n_m = pressure_pa * half_diameter_m;
     }
-    ratio(&part.inward, pressure_pa, &loads, -1.0).at_most(Lane::splat(UTILISATION_MAX))
+    let [largest] = ratio(&part.inward, [pressure_pa], [&loads], -1.0);
+    largest.at_most(Lane::splat(UTILISATION_MAX))
 }
 
-/// `max over the stated capacities of sign * load / capacity`, not below zero.
+/// `max over the stated capacities of sign * load / capacity`, not below zero, for each of the
+/// loads.
 #[inline]
-fn ratio<const N: usize>(
+fn ratio<const N: usize, const K: usize>(
     capacities: &Capacities,
-    pressure_pa: Lane<N>,
-    loads: &Loads<N>,
+    pressure_pa: [Lane<N>; K],
+    loads: [&Loads<N>; K],
     sign: f32,
-) -> Lane<N> {
-    let mut largest = Lane::ZERO;
-    if let Some(capacity) = capacities.pressure_pa {
-        largest = largest.at_least(pressure_pa * sign / Lane::splat(capacity));
-    }
-    if let Some(capacity) = capacities.hoop_tension_n_m {
-        largest = largest.at_least(loads.hoop_tension_n_m * sign / Lane::splat(capacity));
-    }
-    if let Some(capacity) = capacities.force_n {
-        largest = largest.at_least(loads.force_n * sign / Lane::splat(capacity));
-    }
-    if let Some(capacity) = capacities.bolt_n {
-        largest = largest.at_least(loads.bolt_n * sign / Lane::splat(capacity));
-    }
+) -> [Lane<N>; K] {
+    let mut largest = [Lane::ZERO; K];
+    let mut compare = |capacity: Option<f32>, loads: [Lane<N>; K]| {
+        let Some(capacity) = capacity else { return };
+        for (largest, load) in largest.iter_mut().zip(loads) {
+            *largest = largest.at_least(load * sign / Lane::splat(capacity));
+        }
+    };
+    compare(capacities.pressure_pa, pressure_pa);
+    compare(capacities.hoop_tension_n_m, loads.map(|loads| loads.hoop_tension_n_m));
+    compare(capacities.force_n, loads.map(|loads| loads.force_n));
+    compare(capacities.bolt_n, loads.map(|loads| loads.bolt_n));
     largest
 }
 

@@ -18,7 +18,11 @@ impl Text {
     #[must_use]
     pub fn new(text: &str) -> Option<Self> {
         let mut bytes = [0; Self::MAX_BYTES];
-        bytes.get_mut(..text.len())?.copy_from_slice(text.as_bytes());
+        bytes
+            .get_mut(..text.len())?
+            .iter_mut()
+            .zip(text.as_bytes())
+            .for_each(|(to, from)| *to = *from);
         Some(Self { bytes, length: u8::try_from(text.len()).ok()? })
     }
 

@@ -31,6 +31,8 @@ mod interrupts;
 #[cfg(target_os = "none")]
 mod log;
 #[cfg(target_os = "none")]
+mod memory;
+#[cfg(target_os = "none")]
 pub mod mpu;
 #[cfg(target_os = "none")]
 mod panic;

@@ -3,7 +3,7 @@
 #![expect(clippy::cast_possible_truncation, clippy::cast_precision_loss, reason = "small numbers")]
 
 use super::Pace;
-use crate::evaluate::{State, loads_of_one, part_loads_of_one, step};
+use crate::evaluate::{State, loads, part_loads, step};
 use crate::journal::entry::{Sample, TransitionCause};
 use crate::lane::at_least;
 use crate::liquid::truth::Random;
@@ -104,7 +104,7 @@ fn run(plan: &Plan, known: &Plan, world: &World, adaptive: bool) -> (usize, Move
 /// Strengthens a part that is loaded beyond what a plan near its thresholds could show.
 fn ease(plan: &mut Plan, index: usize, reading: &Resolved) {
     let worst = |plan: &Plan| {
-        let loads = part_loads_of_one(plan, index, reading).unwrap();
+        let loads = part_loads(plan, index, &[*reading]).unwrap();
         at_least(loads.utilisation_bound.lane(0), loads.utilisation_inward.lane(0))
     };
     let stronger = 2.0 * worst(plan);
@@ -137,7 +137,7 @@ fn plan_near_its_thresholds(random: &mut Random, rates: f64) -> (Plan, World) {
         ease(&mut plan, index, &first);
     }
     let (mut outward, mut inward) = (0.0, 0.0);
-    loads_of_one(&plan, &first, &mut |_, part| {
+    loads(&plan, &[first], |_, part| {
         let bounds = [part.utilisation_bound.lane(0), part.utilisation_inward.lane(0)];
         (outward, inward) = (at_least(outward, bounds[0]), at_least(inward, bounds[1]));
     });

@@ -125,7 +125,7 @@ impl Track {
     /// Goes on in steps of another size, from the last count on.
     pub(super) fn set_step(&mut self, step: u32) {
         let (from, to) = (i64::from(self.step), i64::from(step).max(1));
-        let scaled = |value: i64| value.wrapping_mul(from).div_euclid(to);
+        let scaled = |value: i64| value.wrapping_mul(from).checked_div_euclid(to).unwrap_or(0);
         let fine = self.last << 8;
         *self = Self {
             base: self.count().unwrap_or(self.base),

@@ -16,11 +16,12 @@
 //! | 4 each | the words: per plan those of each input, then those of the whole state |
 
 use strake_core::alarm::FaultCause;
-use strake_core::evaluate::{CHECKPOINT_BYTES_MAX, State, levels_m, loads, step};
+use strake_core::evaluate::{CHECKPOINT_BYTES_MAX, State};
 use strake_core::journal::Sample;
 use strake_core::part::PartLoads;
 use strake_core::plan::Plan;
 use strake_core::signal::{Channel, Quality, Resolved};
+use strake_firmware::arithmetic::{levels_m, loads, step};
 
 pub(crate) const FILE_MAGIC: u32 = u32::from_le_bytes(*b"SKBV");
 pub(crate) const RESULT_MAGIC: u32 = u32::from_le_bytes(*b"SKBR");
@@ -97,9 +98,9 @@ fn halves(number: u64) -> [u32; 2] {
 /// Takes one input and puts out all that it leads to.
 pub(crate) fn take(plan: &Plan, state: &mut State, input: &Input, put: &mut impl FnMut(u32)) {
     if let Input::Sample(sample) = input {
-        let resolved = step(plan, state, sample, |_| {});
+        let resolved = step(plan, state, sample, &mut |_| {});
         put_reading(plan, &resolved, put);
-        loads(plan, &[resolved], |_, part| put_part(part, 0, put));
+        loads(plan, &resolved, &mut |_, part| put_part(part, 0, put));
     }
     take_event(plan, state, input);
     put_hash(state, put);
