@@ -5,6 +5,7 @@
 //! Volatile accesses keep the loops from being turned into calls of what they implement.
 
 #![expect(unsafe_code, reason = "raw memory, under names that the compiler knows")]
+#![expect(clippy::cast_ptr_alignment, reason = "words are taken where the addresses are whole")]
 
 use core::ptr;
 
