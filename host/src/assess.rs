@@ -13,13 +13,16 @@ mod margin;
 mod notes;
 mod part;
 mod request;
+mod securing;
 mod set_point;
 pub mod text;
 
 pub use bending::{BentRow, PlateRow};
 pub use centre::centre;
 pub use desk::Desk;
-pub use document::{Capacity, Centre, Document, Judgement, Loads, NotJudged, PartRow, State};
+pub use document::{
+    Capacity, Centre, Document, Judgement, Loads, NotJudged, Opening, PartRow, State,
+};
 pub use margin::{Margin, PartMargin, Times, margin, together};
 pub use notes::{FIELD_CHECK, PROVISIONAL, assumed};
 pub(crate) use notes::{not_judged, plate_cautions};

@@ -5,8 +5,9 @@
 //! What the plan cannot hold comes back as a finding with its place in the file, never as a guess.
 
 mod bending;
-mod bolts;
 mod contents;
+mod cover;
+mod cover_rule;
 mod device;
 mod faults;
 mod filling;
@@ -18,8 +19,9 @@ mod shape;
 mod site;
 
 pub(crate) use bending::{Bending, Bent, Substitute};
-pub(crate) use bolts::centroid_cut;
 pub use contents::Contents;
+pub(crate) use cover::{about_centroid, latch_per_moment};
+pub(crate) use cover_rule::pressure_pa as cover_pressure_pa;
 pub(crate) use part::without_plates;
 pub use shape::{Numbers, plane_shape};
 

@@ -10,7 +10,7 @@ mod states;
 pub(crate) mod truth;
 
 pub use density::{Band, DensityTable, TABLE_POINTS_MAX};
-pub use states::{Readings, States, level_m, states};
+pub use states::{Readings, States, highest_surface_m, level_m, states};
 
 /// Layers of one liquid on another, the top one included.
 pub const LAYERS_MAX: usize = 4;

@@ -3,14 +3,18 @@
 //! Each part has a geometry, and for each direction the capacities that the engineer states. The
 //! loads of a part are elementary loads (one weighting each) or the largest of several.
 
-mod bolts;
+mod cover;
 mod evaluate;
+mod opening;
 
-pub use bolts::{BoltPattern, Bolts};
+pub use cover::{BOLTS_MAX, BoltPattern, Cover, CoverNumbers, Held, Weighting, WeightingNumbers};
 pub(crate) use evaluate::evaluate_into;
 pub use evaluate::{Loads, PartLoads, acting, evaluate};
+pub use opening::{OPENING_GAS_PA, Shut};
 
 use crate::shape::Shape;
+use core::fmt;
+use core::num::NonZeroU32;
 use heapless::Vec;
 
 /// Design states a part can be compared with.
@@ -41,8 +45,8 @@ pub enum Geometry {
         sine: f32,
         /// Height of the centroid above the lowest point, m.
         centroid_above_m: f32,
-        /// Equal bolts that hold it, if any.
-        bolts: Option<Bolts>,
+        /// The cover of an opening; none of a panel.
+        cover: Option<Cover>,
     },
 }
 
@@ -50,9 +54,38 @@ impl Geometry {
     /// A plane part on a slope with the sine `sine` (zero: level, the shape must be
     /// [`Shape::Level`]).
     #[must_use]
-    pub const fn plane(shape: Shape, sine: f32, bolts: Option<Bolts>) -> Self {
+    pub const fn plane(shape: Shape, sine: f32, cover: Option<Cover>) -> Self {
         let centroid_above_m = shape.centroid_above_m();
-        Self::Plane { shape, sine, centroid_above_m, bolts }
+        Self::Plane { shape, sine, centroid_above_m, cover }
+    }
+}
+
+/// A number that the engineer states; zero is none. As large as the number alone, also where it is
+/// absent: a device holds some hundred of them.
+#[derive(Clone, Copy, PartialEq, Eq)]
+pub struct Stated(NonZeroU32);
+
+impl Stated {
+    /// The number; `None` of zero.
+    #[must_use]
+    pub const fn new(value: f32) -> Option<Self> {
+        match NonZeroU32::new(value.to_bits()) {
+            Some(bits) => Some(Self(bits)),
+            None => None,
+        }
+    }
+
+    /// The number.
+    #[must_use]
+    #[inline]
+    pub const fn get(self) -> f32 {
+        f32::from_bits(self.0.get())
+    }
+}
+
+impl fmt::Debug for Stated {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        fmt::Debug::fmt(&self.get(), f)
     }
 }
 
@@ -60,13 +93,15 @@ impl Geometry {
 #[derive(Clone, Copy, Debug, Default, PartialEq)]
 pub struct Capacities {
     /// Largest pressure on the part, Pa.
-    pub pressure_pa: Option<f32>,
+    pub pressure_pa: Option<Stated>,
     /// Hoop tension of a course, N/m.
-    pub hoop_tension_n_m: Option<f32>,
+    pub hoop_tension_n_m: Option<Stated>,
     /// Force on a plane part, N.
-    pub force_n: Option<f32>,
-    /// Largest bolt share, N.
-    pub bolt_n: Option<f32>,
+    pub force_n: Option<Stated>,
+    /// Largest share of a bolt, or force on a pin or hinge line, N.
+    pub bolt_n: Option<Stated>,
+    /// Moment about the hinge or pivot, N m; a latch's force times its lever.
+    pub moment_n_m: Option<Stated>,
 }
 
 impl Capacities {
@@ -78,6 +113,7 @@ impl Capacities {
             && self.hoop_tension_n_m.is_none()
             && self.force_n.is_none()
             && self.bolt_n.is_none()
+            && self.moment_n_m.is_none()
     }
 }
 

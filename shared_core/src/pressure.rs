@@ -14,7 +14,7 @@
 //! against the outside is one more surface with a negative step.
 
 use crate::lane::Lane;
-use crate::shape::{Cut, Face, Wetted};
+use crate::shape::{Cut, Face};
 use heapless::Vec;
 
 /// Most surfaces of one state: four layers, and two liquids against the outside.
@@ -37,7 +37,7 @@ pub struct Pressure<const N: usize> {
     surfaces: Vec<Surface<N>, SURFACES_MAX>,
 }
 
-/// Force and moment of a pressure on a plane part or a piece of it.
+/// Force and moments of a pressure on a plane part.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Resultant<const N: usize> {
     /// Force, N, positive from the liquid outwards.
@@ -45,6 +45,8 @@ pub struct Resultant<const N: usize> {
     /// Moment about the level line through the centroid, N m, positive when it pushes the upper
     /// side outward.
     pub moment_n_m: Lane<N>,
+    /// The same about the level line through the lowest point, N m.
+    pub foot_moment_n_m: Lane<N>,
     /// Pressure at the part's lowest point, Pa gauge.
     pub foot_pa: Lane<N>,
 }
@@ -83,43 +85,49 @@ impl<const N: usize> Pressure<N> {
         p
     }
 
-    /// Resultant on a whole plane part.
+    /// Resultant on a whole plane part: the one formula for its weightings at once.
     #[must_use]
     #[inline]
     pub fn on(&self, face: &Face<'_>) -> Resultant<N> {
-        self.resultant(face.shape.area_m2(), 0.0, face.bottom_m, |y| face.wetted(y))
-    }
-
-    /// Resultant on the piece of a plane part below a cut, about the centroid of the whole part.
-    #[must_use]
-    #[inline]
-    pub fn below(&self, cut: &Cut, face: &Face<'_>) -> Resultant<N> {
-        self.resultant(cut.area_m2, cut.static_m3, face.bottom_m, |y| cut.wetted(face, y))
-    }
-
-    /// `R = p_g W + sum step_i M(h_i)` for the two weightings of a plane part at once.
-    #[inline]
-    fn resultant(
-        &self,
-        area_m2: f32,
-        static_m3: f32,
-        bottom_m: f32,
-        m: impl Fn(Lane<N>) -> Wetted<N>,
-    ) -> Resultant<N> {
-        let mut force_n = self.gas_pa * area_m2;
-        let mut moment_n_m = self.gas_pa * static_m3;
-        let mut foot_pa = self.gas_pa;
+        let force_n = self.gas_pa * face.shape.area_m2();
+        let mut found = Resultant {
+            force_n,
+            moment_n_m: Lane::ZERO,
+            foot_moment_n_m: force_n * face.shape.centroid_up_m(),
+            foot_pa: self.gas_pa,
+        };
         for surface in self.surfaces() {
-            let y_m = surface.height_m - bottom_m;
+            let y_m = surface.height_m - face.bottom_m;
             if y_m.none_positive() {
                 continue;
             }
-            foot_pa = foot_pa + surface.step_n_m3 * y_m.ramp();
-            let wetted = m(y_m);
-            force_n = force_n + surface.step_n_m3 * wetted.q0;
-            moment_n_m = moment_n_m + surface.step_n_m3 * wetted.q1;
+            let step_n_m3 = surface.step_n_m3;
+            found.foot_pa = found.foot_pa + step_n_m3 * y_m.ramp();
+            let wetted = face.wetted(y_m);
+            found.force_n = found.force_n + step_n_m3 * wetted.q0;
+            found.moment_n_m = found.moment_n_m + step_n_m3 * wetted.q1;
+            found.foot_moment_n_m = found.foot_moment_n_m + step_n_m3 * wetted.q2;
         }
-        Resultant { force_n, moment_n_m, foot_pa }
+        found
+    }
+
+    /// Force and moment about the level line through the lowest point, N and N m, on the piece of a
+    /// plane part below a cut.
+    #[must_use]
+    #[inline]
+    pub fn below(&self, cut: &Cut, face: &Face<'_>) -> [Lane<N>; 2] {
+        let mut found = cut.dry(face.shape).map(|integral| self.gas_pa * integral);
+        for surface in self.surfaces() {
+            let y_m = surface.height_m - face.bottom_m;
+            if y_m.none_positive() {
+                continue;
+            }
+            let wetted = cut.wetted(face, y_m);
+            for (sum, integral) in found.iter_mut().zip(wetted) {
+                *sum = *sum + surface.step_n_m3 * integral;
+            }
+        }
+        found
     }
 }
 

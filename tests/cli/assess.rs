@@ -9,8 +9,18 @@ const BRINE: &str = "configs/brine_day_tank.toml";
 const SET_POINT: &[&str] =
     &["pressure_pa", "current_a", "level_lightest_m", "level_nominal_m", "level_densest_m"];
 
+const EXAMPLES: [&str; 7] = [
+    "brine_day_tank",
+    "laboratory_tank",
+    "rinse_basin",
+    "odd_shapes",
+    "hatch_test_tank",
+    "plate_box",
+    "wine_drum",
+];
+
 /// Every key that the document may have, by the place where it stands.
-const KEYS: [(&str, &[&str]); 14] = [
+const KEYS: [(&str, &[&str]); 15] = [
     (
         "",
         &[
@@ -41,6 +51,7 @@ const KEYS: [(&str, &[&str]); 14] = [
             "capacity",
             "capacity_inward",
             "plates",
+            "opening",
             "utilisation",
             "utilisation_bound",
             "utilisation_inward",
@@ -64,6 +75,9 @@ const KEYS: [(&str, &[&str]); 14] = [
             "moment_centroid_n_m",
             "bolt_n",
             "stress_pa",
+            "moment_n_m",
+            "latch_n",
+            "hinge_n",
         ],
     ),
     (
@@ -85,6 +99,7 @@ const KEYS: [(&str, &[&str]); 14] = [
         ],
     ),
     ("capacity", &["load", "value", "basis"]),
+    ("opening", &["state", "why", "says"]),
     ("not_judged", &["name", "why"]),
     ("warn_set_point", SET_POINT),
     ("alarm_set_point", SET_POINT),
@@ -126,7 +141,7 @@ fn check(place: &str, value: &Value, seen: &mut Vec<String>) {
 #[test]
 fn the_examples_together_show_every_documented_key_and_no_other() {
     let mut seen = Vec::new();
-    for name in ["brine_day_tank", "laboratory_tank", "rinse_basin", "odd_shapes", "plate_box"] {
+    for name in EXAMPLES {
         let (_, value) = document(&["assess", &format!("configs/{name}.toml"), "--level", "0.6 m"]);
         assert_eq!(value["schema"], "strake.assess/1");
         check("", &value, &mut seen);
@@ -248,15 +263,7 @@ fn the_text_of_the_brine_day_tank_to_the_letter() {
 
 #[test]
 fn pages_keep_to_a_hundred_columns_in_both_systems() {
-    let names = [
-        "brine_day_tank",
-        "laboratory_tank",
-        "rinse_basin",
-        "odd_shapes",
-        "plate_box",
-        "wine_drum",
-    ];
-    for name in names {
+    for name in EXAMPLES {
         for units in ["si", "us"] {
             let text = run(&["assess", &format!("configs/{name}.toml"), "--units", units]).stdout;
             for line in text.lines() {

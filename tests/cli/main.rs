@@ -2,6 +2,7 @@
 
 mod assess;
 mod errors;
+mod hatches;
 mod liquids;
 mod odd_shapes;
 mod plates;

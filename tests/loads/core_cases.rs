@@ -8,7 +8,7 @@ use crate::core_engine::{
 use strake::assess::centre;
 use strake_core::lane::Lane;
 use strake_core::liquid::Band;
-use strake_core::part::{Capacities, Part, acting, evaluate};
+use strake_core::part::{Capacities, Part, Stated, acting, evaluate};
 use strake_core::signal::{LoopClass, classify};
 use strake_oracle::cases::{
     Answer, BoundAsk, CourseAsk, DesignedForAsk, PlaneAsk, Plate, Problem, Reason, Row, edge_rows,
@@ -113,7 +113,8 @@ fn shell(part: &Part, liquid: &Liquid, plate: &Plate, ask: CourseAsk) -> Result<
     let strength = plate.allowable_pa * plate.joint_efficiency;
     let capacity = strength * (plate.thickness_m - plate.allowance_m);
     let mut part = part.clone();
-    part.outward.hoop_tension_n_m = (capacity > 0.0).then(|| narrow(capacity));
+    part.outward.hoop_tension_n_m =
+        (capacity > 0.0).then(|| narrow(capacity)).and_then(Stated::new);
     let now = loads_of(&part, liquid)?;
     let tension = f64::from(now.estimate.hoop_tension_n_m.lane(0));
     Ok(match ask {

@@ -11,7 +11,7 @@ use strake_core::alarm::{FAULT_CAUSES, FaultCause, MachineId, PARTS_MAX, Thresho
 use strake_core::evaluate::TimeToLimit;
 use strake_core::journal::Entry;
 use strake_core::journal::entry::Presser;
-use strake_core::part::{Geometry, PartLoads};
+use strake_core::part::{Cover, Geometry, Held, PartLoads, Shut};
 use strake_core::plan::PLAN_FORMAT;
 use strake_core::wire::{
     ErrorCode, FaultStatus, FillingStatus, Head, Identity, JournalBounds, LinkCounters, LoadValue,
@@ -103,6 +103,8 @@ impl<B: Board> Served for Device<B> {
             inward_judged: one.judged_inward(),
             alarms: [Threshold::Warn, Threshold::Alarm, Threshold::Inward].map(state),
             loads: load_values(&one.geometry, &of),
+            opening: Shut::of(&self.memory.plan, one, &reading)
+                .map_or(0, |shut| PartStatus::OPENING | shut.0),
         })
     }
 
@@ -239,7 +241,7 @@ impl<B: Board> Served for Device<B> {
 }
 
 /// The loads of a part by their number in the plan format plus one: pressure, hoop tension, force,
-/// bolt share.
+/// bolt share, moment.
 fn load_values(geometry: &Geometry, of: &PartLoads<1>) -> [LoadValue; 4] {
     let value = |load: u8, pick: fn(&strake_core::part::Loads<1>) -> f32| LoadValue {
         load,
@@ -252,11 +254,16 @@ fn load_values(geometry: &Geometry, of: &PartLoads<1>) -> [LoadValue; 4] {
         Geometry::Course { .. } => {
             [pressure, value(2, |loads| loads.hoop_tension_n_m.lane(0)), unused, unused]
         }
-        Geometry::Plane { bolts, .. } => {
+        Geometry::Plane { cover, .. } => {
             let force = value(3, |loads| loads.force_n.lane(0));
-            let bolt =
-                if bolts.is_some() { value(4, |loads| loads.bolt_n.lane(0)) } else { unused };
-            [pressure, force, bolt, unused]
+            let held = cover.as_ref().map_or(Held::Otherwise, Cover::held);
+            let bolt = value(4, |loads| loads.bolt_n.lane(0));
+            let moment = value(5, |loads| loads.moment_n_m.lane(0));
+            match held {
+                Held::Otherwise => [pressure, force, unused, unused],
+                Held::Bolts(_) => [pressure, force, bolt, unused],
+                Held::Line | Held::Side => [pressure, force, bolt, moment],
+            }
         }
     }
 }

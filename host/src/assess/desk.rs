@@ -5,7 +5,8 @@ use crate::compile::{Compiled, HEIGHT_MAX_M};
 use crate::inverse::{Interval, LimitedBy};
 use crate::tank::TankFile;
 use strake_core::lane::Lane;
-use strake_core::liquid::{Band, Readings, States, states};
+use strake_core::liquid::{Band, Readings, States, highest_surface_m, states};
+use strake_core::part::{Part, acting};
 use strake_core::plan::{LevelSensor, Plan, Reference};
 use strake_core::pressure::Pressure;
 use strake_core::signal::half_width;
@@ -84,6 +85,23 @@ impl Desk {
         let bounds = states(&self.plan, &self.readings(sensed, half));
         // Below the diaphragm a head sensor cannot tell the level that is stated here.
         States { estimate: exact.estimate, level_m: exact.level_m, ..bounds }
+    }
+
+    /// Height above which no liquid stands when the sensor reads what the estimate gives at a
+    /// level.
+    #[must_use]
+    pub fn highest_surface_m(&self, level_m: f32) -> f32 {
+        let sensed = self.reading(level_m);
+        let high = sensed + half_width(&self.plan, sensed);
+        let seen = highest_surface_m(&self.plan, high, self.plan.liquid.top.low_kg_m3);
+        // Below the diaphragm a head sensor cannot tell; the level is stated here all the same.
+        if level_m > seen { level_m } else { seen }
+    }
+
+    /// The states at a true level as they act on a part.
+    #[must_use]
+    pub fn acting(&self, part: &Part, level_m: Lane<1>) -> States<1> {
+        acting(&self.plan, part, &self.at_true_level(level_m))
     }
 
     /// What the sensor reads when the estimate stands at a level: Pa of a head sensor, else m.

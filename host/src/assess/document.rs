@@ -7,6 +7,7 @@ use super::margin::Margin;
 use super::set_point::SetPoint;
 use crate::energy::Energy;
 use serde::Serialize;
+use strake_core::part::Shut;
 
 /// The whole document.
 #[derive(Clone, Debug, Serialize)]
@@ -80,6 +81,9 @@ pub struct PartRow {
     /// The plates among its capacities.
     #[serde(skip_serializing_if = "Vec::is_empty")]
     pub plates: Vec<PlateRow>,
+    /// Whether the opening under a cover must stay shut; of a hatch.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub opening: Option<Opening>,
     /// How the loads compare; empty of a part without capacities.
     #[serde(flatten)]
     pub judgement: Judgement,
@@ -109,6 +113,32 @@ pub struct Loads {
     /// Largest bending stress in the plate of a panel, of the estimate and of the outward bound.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub stress_pa: Option<f32>,
+    /// About the hinge or pivot, positive when it turns the cover outward (about a pivot: when it
+    /// opens the side of the latch, without one the upper side).
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub moment_n_m: Option<f32>,
+    /// Of the latch that carries most, positive in tension against outward motion; zero while the
+    /// load presses the cover on its seat.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub latch_n: Option<f32>,
+    /// Of each pin, the lower first, or of the whole hinge line; signed likewise.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub hinge_n: Vec<f32>,
+}
+
+/// Whether an opening must stay shut, judged by wetting, never by load. There is no state "safe to
+/// open".
+#[derive(Clone, Debug, PartialEq, Eq, Serialize)]
+pub struct Opening {
+    /// `do_not_open` or `no_liquid_computed`.
+    pub state: &'static str,
+    /// The reasons to keep it shut.
+    pub why: Vec<String>,
+    /// What is said to a person.
+    pub says: String,
+    /// The verdict as the core gives it.
+    #[serde(skip)]
+    pub shut: Shut,
 }
 
 /// Where the force acts; none when the pressures nearly cancel and only a couple is left.
@@ -132,6 +162,9 @@ pub struct Capacity {
     pub value: f32,
     /// Where it comes from.
     pub basis: String,
+    /// Its place in the file's list.
+    #[serde(skip)]
+    pub place: usize,
 }
 
 /// Loads against capacities.

@@ -4,8 +4,9 @@ use super::desk::Desk;
 use super::document::{NotJudged, PartRow};
 use super::judged;
 use super::request::{Request, Source};
-use crate::compile::{Bending, HEIGHT_MAX_M, Substitute};
-use crate::tank::{Capacity, Hatch, Opens, Part as Stated, Rating, TankFile, Vessel};
+use super::securing;
+use crate::compile::{Bending, HEIGHT_MAX_M, Substitute, cover_pressure_pa};
+use crate::tank::{Axis, Capacity, Hatch, Part as Stated, Rating, Secured, TankFile, Vessel};
 use crate::units::Quantity::{Length, Pressure, Temperature};
 use crate::units::{UnitSystem, format};
 use strake_core::lane::Lane;
@@ -28,6 +29,7 @@ pub(crate) fn not_judged(file: &TankFile, desk: &Desk, units: UnitSystem) -> Vec
         }
         if let Stated::Hatch(hatch) = stated {
             hatch_notes(hatch, &mut note);
+            turning_notes(desk, hatch, part, &mut note);
         }
         let said = !stated.capacity_inward().is_empty();
         if !said && may_turn_inward(desk, part) {
@@ -102,18 +104,83 @@ fn reasons(ratings: &[Rating]) -> impl Iterator<Item = &str> {
 
 /// A cover is held by something and is something: what has no capacity is not judged.
 fn hatch_notes(hatch: &Hatch, note: &mut impl FnMut(String)) {
-    let has = |pick: fn(&Capacity) -> bool| {
-        hatch.capacity.iter().any(|rating| pick(&rating.capacity.value))
+    for (side, ratings, outward) in
+        [("outward", &hatch.capacity, true), ("inward", &hatch.capacity_inward, false)]
+    {
+        withheld(hatch, ratings, (side, outward), note);
+        // An inward load without any capacity is noted where it may come.
+        if ratings.is_empty() {
+            continue;
+        }
+        let has = |keys: &[&str]| {
+            ratings.iter().any(|rating| keys.contains(&rating.capacity.value.key()))
+        };
+        if has(&["none", "designed_for"]) {
+            continue;
+        }
+        if !has(&["force", "pressure", "cover"]) {
+            note(format!("{side}: the cover plate, no capacity is stated"));
+        }
+        if hatch.seats(outward) {
+            continue;
+        }
+        match hatch.secured.as_ref().map(|secured| &secured.value) {
+            None => note(format!("{side}: what secures the cover, no capacity is stated")),
+            Some(Secured::Bolts(_)) if !has(&["bolt"]) => {
+                note(format!("{side}: the bolts, no capacity is stated"));
+            }
+            Some(Secured::Bolts(_)) => {}
+            Some(Secured::Hinged(hinged)) => {
+                let (latch, hinge) = match hinged.axis {
+                    Axis::Pivot { .. } if hinged.latches.is_empty() => {
+                        ("what holds the cover against the moment", "the pivot")
+                    }
+                    Axis::Pivot { .. } => ("the latch", "the pivot"),
+                    _ => ("the latch", "the hinge"),
+                };
+                if !has(&["latch", "moment"]) {
+                    note(format!("{side}: {latch}, no capacity is stated"));
+                }
+                if !has(&["hinge"]) {
+                    note(format!("{side}: {hinge}, no capacity is stated"));
+                }
+            }
+        }
+    }
+}
+
+/// Covers whose rule gives no number, with the reason.
+fn withheld(
+    hatch: &Hatch,
+    ratings: &[Rating],
+    (side, outward): (&str, bool),
+    note: &mut impl FnMut(String),
+) {
+    for rating in ratings {
+        if let Capacity::Cover(plate) = &rating.capacity.value
+            && let Err(why) = cover_pressure_pa(plate, rating, hatch, outward)
+        {
+            note(format!("{side}: the cover plate, {why}"));
+        }
+    }
+}
+
+/// A pin or a pivot that is loaded the other way than the one it is rated for.
+fn turning_notes(desk: &Desk, hatch: &Hatch, part: &Part, note: &mut impl FnMut(String)) {
+    let [pin, pivot] = securing::turns_back(desk, hatch, part);
+    let stated = |keys: &[&str]| {
+        let ratings = hatch.capacity_inward.iter();
+        ratings.into_iter().any(|rating| keys.contains(&rating.capacity.value.key()))
     };
-    if has(|capacity| matches!(capacity, Capacity::None { .. } | Capacity::DesignedFor { .. })) {
-        return;
+    if pin && !stated(&["hinge", "none"]) {
+        let what = "inward: a pin or the hinge line may be pushed inward, no inward capacity of \
+                    the hinge is stated";
+        note(what.to_owned());
     }
-    if !has(|capacity| matches!(capacity, Capacity::Force { .. } | Capacity::Pressure { .. })) {
-        note("outward: the cover plate, no capacity is stated".to_owned());
-    }
-    if hatch.opens.value == Opens::Outward && !has(|one| matches!(one, Capacity::Bolt { .. })) {
-        let what = if hatch.bolts.is_some() { "the bolts" } else { "what secures the cover" };
-        note(format!("outward: {what}, no capacity is stated"));
+    if pivot && !stated(&["moment", "latch", "none"]) {
+        let what = "inward: the moment about the pivot may turn inward, no inward capacity for it \
+                    is stated";
+        note(what.to_owned());
     }
 }
 

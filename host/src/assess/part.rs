@@ -5,26 +5,27 @@ use super::centre::centre;
 use super::desk::Desk;
 use super::document::{Capacity, Judgement, Limits, Loads, Lowest, PartRow};
 use super::request::Request;
-use crate::compile::{Bending, centroid_cut, without_plates};
+use super::securing;
+use crate::compile::{Bending, about_centroid, cover_pressure_pa, without_plates};
 use crate::inverse::{self, PartLimits};
-use crate::tank::{self, Hatch, Opens, Part as Stated, PartKind, Plane, Rating, TankFile};
+use crate::tank::{self, Part as Stated, PartKind, Plane, Rating, TankFile};
 use strake_core::lane::Lane;
 use strake_core::liquid::States;
-use strake_core::part::{Geometry, Part, PartLoads, acting, evaluate};
-use strake_core::pressure::Pressure;
-use strake_core::shape::{Cut, Face};
+use strake_core::part::{Geometry, Held, Part, PartLoads, Weighting, acting, evaluate};
+use strake_core::shape::{Face, Shape};
 
 /// All rows, in the order of the file.
 pub(super) fn rows(file: &TankFile, desk: &Desk, request: &Request) -> Vec<PartRow> {
-    let states = desk.as_seen(Lane([single(request.level_m)]));
+    let level_m = single(request.level_m);
     let parts = file.parts.iter().zip(&desk.plan().parts);
+    let states = desk.as_seen(Lane([level_m]));
     let judged = |(stated, part): (&Stated, &Part)| {
         let plates = Bending::of_part(stated);
         if plates.is_empty() {
-            return row(file, desk, stated, part, &states);
+            return row(file, desk, stated, part, level_m);
         }
         let part = without_plates(stated, part);
-        let mut row = row(file, desk, stated, &part, &states);
+        let mut row = row(file, desk, stated, &part, level_m);
         bending::judge(desk, &plates, &part, &states, &mut row);
         row
     };
@@ -36,46 +37,55 @@ pub(super) fn single(value: f64) -> f32 {
     value as f32
 }
 
-fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, all: &States<1>) -> PartRow {
-    let computed: PartLoads<1> = evaluate(desk.plan(), part, all);
-    let states = acting(desk.plan(), part, all);
+fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, level_m: f32) -> PartRow {
+    let all = desk.as_seen(Lane([level_m]));
+    let computed: PartLoads<1> = evaluate(desk.plan(), part, &all);
+    let states = acting(desk.plan(), part, &all);
     let plane = match stated {
         Stated::Course(_) => None,
         Stated::Panel(panel) => Some(&panel.plane),
         Stated::Hatch(hatch) => Some(&hatch.sealed),
     };
-    let moments = moments(part, &desk.plan().numbers, plane, &states, &computed);
+    let face_of = |shape| Face { shape, numbers: &desk.plan().numbers, bottom_m: part.bottom_m };
+    let moments = moments(part, face_of, plane, &states, &computed);
+    let hatch = match stated {
+        Stated::Hatch(hatch) => Some(hatch),
+        _ => None,
+    };
+    let reactions = hatch.and_then(|hatch| securing::reactions(desk, hatch, part, &states));
     // What holds a cover that opens inward carries nothing while the load presses it on its seat.
-    let pulled =
-        !matches!(stated, Stated::Hatch(Hatch { opens, .. }) if opens.value == Opens::Inward);
-    let loads = |loads: &strake_core::part::Loads<1>, moment: f32, bolts: bool| {
-        let (course, bolted) = match &part.geometry {
-            Geometry::Course { .. } => (true, false),
-            Geometry::Plane { bolts, .. } => (false, bolts.is_some()),
-        };
+    let seated = hatch.is_some_and(|hatch| hatch.seats(true));
+    let loads = |loads: &strake_core::part::Loads<1>, state: usize, bolts: bool| {
+        let course = matches!(part.geometry, Geometry::Course { .. });
+        let held = securing::cover_of(part).map_or(Held::Otherwise, |cover| cover.held());
+        let bolted = matches!(held, Held::Bolts(_));
+        let reactions = reactions.as_ref().map(|all| &all[state]);
         Loads {
             pressure_pa: loads.pressure_pa.lane(0),
             hoop_tension_n_m: course.then(|| loads.hoop_tension_n_m.lane(0)),
             force_n: (!course).then(|| loads.force_n.lane(0)),
             centre: None,
-            moment_centroid_n_m: (!course).then_some(moment),
+            moment_centroid_n_m: (!course).then_some(moments[state]),
             bolt_n: (bolted && bolts).then(|| loads.bolt_n.lane(0)),
             stress_pa: None,
+            moment_n_m: reactions.map(|one| one.moment_n_m),
+            latch_n: reactions.and_then(|one| one.latch_n),
+            hinge_n: reactions.map_or_else(Vec::new, |one| one.hinge_n.clone()),
         }
     };
-    let [moment, moment_outward, moment_inward] = moments;
-    let mut estimate = loads(&computed.estimate, moment, pulled);
-    estimate.centre = plane
-        .map(|plane| centre(plane, &states.estimate, computed.estimate.force_n.lane(0), moment));
+    let mut estimate = loads(&computed.estimate, 0, !seated);
+    let force = computed.estimate.force_n.lane(0);
+    estimate.centre = plane.map(|plane| centre(plane, &states.estimate, force, moments[0]));
     PartRow {
         name: stated.name().to_owned(),
         kind: stated.kind().as_str(),
         loads: estimate,
-        loads_outward_bound: loads(&computed.outward, moment_outward, pulled),
-        loads_inward_bound: loads(&computed.inward, moment_inward, true),
-        capacity: capacities(file, stated, stated.capacity()),
-        capacity_inward: capacities(file, stated, stated.capacity_inward()),
+        loads_outward_bound: loads(&computed.outward, 1, !seated),
+        loads_inward_bound: loads(&computed.inward, 2, true),
+        capacity: capacities(file, stated, true),
+        capacity_inward: capacities(file, stated, false),
         plates: Vec::new(),
+        opening: securing::opening(desk, part, level_m),
         judgement: judgement(desk, stated, part, &computed),
     }
 }
@@ -84,9 +94,9 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, all: &States<
 ///
 /// The weighting is negative below the centroid and positive above it, so a bound takes the one
 /// pressure on the lower piece and the other on the upper.
-fn moments(
-    part: &Part,
-    numbers: &[f32],
+fn moments<'a>(
+    part: &'a Part,
+    face_of: impl Fn(&'a Shape) -> Face<'a>,
     plane: Option<&Plane>,
     states: &States<1>,
     computed: &PartLoads<1>,
@@ -95,22 +105,10 @@ fn moments(
     let (Geometry::Plane { shape, .. }, Some(plane)) = (&part.geometry, plane) else {
         return [0.0; 3];
     };
-    let Some([y_m, area_m2, static_m3]) = centroid_cut(plane) else {
-        return [estimate; 3];
-    };
-    let face = Face { shape, numbers, bottom_m: part.bottom_m };
-    let cut = Cut::new(&face, y_m, area_m2, static_m3);
-    let pieces = |pressure: &Pressure<1>| pieces(pressure, &face, &cut);
-    let ([upper_low, upper_high], [lower_low, lower_high]) =
-        (pieces(&states.upper), pieces(&states.lower));
-    [estimate, lower_low + upper_high, upper_low + lower_high]
-}
-
-/// Moments of one pressure on the pieces below and above a cut.
-fn pieces(pressure: &Pressure<1>, face: &Face<'_>, cut: &Cut) -> [f32; 2] {
-    let below = pressure.below(cut, face).moment_n_m.lane(0);
-    let whole = pressure.on(face).moment_n_m.lane(0);
-    [below, whole - below]
+    let face = face_of(shape);
+    let weighting = Weighting::new(&about_centroid(plane), &face);
+    let [_, most, least] = weighting.under(&face, states);
+    [estimate, most.lane(0), least.lane(0)]
 }
 
 fn judgement(desk: &Desk, stated: &Stated, part: &Part, computed: &PartLoads<1>) -> Judgement {
@@ -160,12 +158,17 @@ fn thickness(stated: &Stated, computed: &PartLoads<1>) -> Option<f64> {
     plates.max_by(f64::total_cmp)
 }
 
-fn capacities(file: &TankFile, stated: &Stated, ratings: &[Rating]) -> Vec<Capacity> {
-    ratings.iter().filter_map(|rating| capacity(file, stated, rating)).collect()
+fn capacities(file: &TankFile, stated: &Stated, outward: bool) -> Vec<Capacity> {
+    let ratings = if outward { stated.capacity() } else { stated.capacity_inward() };
+    let found = ratings.iter().enumerate().filter_map(|(place, rating)| {
+        let one = capacity(file, stated, rating, outward)?;
+        Some(Capacity { place, ..one })
+    });
+    found.collect()
 }
 
-/// `None` for a capacity that is none.
-fn capacity(file: &TankFile, stated: &Stated, rating: &Rating) -> Option<Capacity> {
+/// `None` for a capacity that is none, or whose rule gives no number.
+fn capacity(file: &TankFile, stated: &Stated, rating: &Rating, outward: bool) -> Option<Capacity> {
     let stated_capacity = &rating.capacity.value;
     let (load, value) = match stated_capacity {
         tank::Capacity::Plate { .. } | tank::Capacity::HoopTension { .. } => {
@@ -179,10 +182,17 @@ fn capacity(file: &TankFile, stated: &Stated, rating: &Rating) -> Option<Capacit
             ("pressure_pa", (gas_pa.value + head) * share)
         }
         tank::Capacity::Bolt { n } => ("bolt_n", *n),
+        tank::Capacity::Latch { n } => ("latch_n", *n),
+        tank::Capacity::Hinge { n } => ("hinge_n", *n),
+        tank::Capacity::Moment { n_m } => ("moment_n_m", *n_m),
+        tank::Capacity::Cover(plate) => {
+            let Stated::Hatch(hatch) = stated else { return None };
+            ("pressure_pa", cover_pressure_pa(plate, rating, hatch, outward).ok()?)
+        }
         tank::Capacity::Force { n } => ("force_n", *n),
         tank::Capacity::Pressure { pa } => ("pressure_pa", *pa),
         tank::Capacity::None { .. } => return None,
     };
     let basis = rating.basis.as_ref().map_or_else(String::new, |basis| basis.value.text.clone());
-    Some(Capacity { load, value: single(value), basis })
+    Some(Capacity { load, value: single(value), basis, place: 0 })
 }

@@ -5,6 +5,7 @@ mod limits;
 mod margin;
 mod parts;
 mod plate;
+mod secured;
 mod state;
 
 use super::Assessment;
@@ -50,6 +51,7 @@ pub fn render(
     provisional(&sheet, &mut page);
     state::state(&sheet, &mut page);
     parts::loads(&sheet, &mut page);
+    secured::openings(&sheet, &mut page);
     limits::limits(&sheet, &mut page);
     limits::thresholds(&sheet, &mut page);
     margin::set_points(&sheet, &mut page);

@@ -1,17 +1,18 @@
 //! Parts: geometry, and in each direction the smallest of equal capacities.
 
 use super::bending::Bending;
-use super::bolts;
 use super::faults::Faults;
 use super::number::{located, single};
 use super::shape::{Numbers, plane_shape};
 use super::site::HEIGHTS_M;
+use super::{cover, cover_rule};
 use crate::tank::{
-    Capacity, Code, Course, Hatch, Located, Part as Stated, Plane, Rating, TankFile, Vessel,
+    Capacity, Code, Course, Hatch, Located, Part as Stated, Plane, Rating, Secured, TankFile,
+    Vessel,
 };
 use crate::units::Quantity::Length;
 use heapless::Vec;
-use strake_core::part::{Bolts, Capacities, DESIGN_STATES_MAX, DesignState, Geometry, Part};
+use strake_core::part::{Capacities, Cover, DESIGN_STATES_MAX, DesignState, Geometry, Part};
 use strake_core::plan::NUMBERS_MAX;
 use strake_core::shape::Face;
 
@@ -28,8 +29,8 @@ pub(super) fn part(
     let mut list = Numbers { list: numbers };
     let geometry = match stated {
         Stated::Course(course) => Some(self::course(file, course, faults)?),
-        Stated::Panel(panel) => plane(&panel.plane, None, &mut list),
-        Stated::Hatch(hatch) => plane(&hatch.sealed, Some(hatch), &mut list),
+        Stated::Panel(panel) => plane(&panel.plane, None, file, &mut list),
+        Stated::Hatch(hatch) => plane(&hatch.sealed, Some(hatch), file, &mut list),
     };
     let Some(geometry) = geometry else {
         faults.too_many(stated.located_name().span, "numbers of all shapes", NUMBERS_MAX);
@@ -39,8 +40,8 @@ pub(super) fn part(
         geometry,
         bottom_m: single(heights.bottom_m),
         top_m: single(heights.top_m),
-        outward: with_plates(stated, capacities(stated.capacity())),
-        inward: capacities(stated.capacity_inward()),
+        outward: with_plates(stated, capacities(stated, true)),
+        inward: capacities(stated, false),
         designed_for: Vec::new(),
         outside: outside_mask(file, stated.name()),
     };
@@ -68,14 +69,17 @@ fn course(file: &TankFile, course: &Course, faults: &mut Faults) -> Option<Geome
     })
 }
 
-fn plane(plane: &Plane, hatch: Option<&Hatch>, numbers: &mut Numbers<'_>) -> Option<Geometry> {
-    let sine = plane.sine();
+fn plane(
+    plane: &Plane,
+    hatch: Option<&Hatch>,
+    file: &TankFile,
+    numbers: &mut Numbers<'_>,
+) -> Option<Geometry> {
     let shape = plane_shape(plane, numbers)?;
     let face = Face { shape: &shape, numbers: numbers.list, bottom_m: 0.0 };
-    let bolts = hatch
-        .and_then(|hatch| hatch.bolts)
-        .map(|stated| Bolts::new(&bolts::pattern(&stated.value, &plane.shape, sine), &face));
-    Some(Geometry::plane(shape, single(sine), bolts))
+    let cover =
+        hatch.map(|hatch| Cover::new(&cover::numbers(hatch, file.gravity.m_s2(), &shape), &face));
+    Some(Geometry::plane(shape, single(plane.sine()), cover))
 }
 
 /// The device judges a plate by its safe substitute, a pressure at the lowest edge.
@@ -84,38 +88,57 @@ fn with_plates(stated: &Stated, mut capacities: Capacities) -> Capacities {
         let Some(pressure_pa) = plate.substitute().map(|one| single(one.pressure_pa)) else {
             continue;
         };
-        let least = capacities.pressure_pa.filter(|&stated_pa| stated_pa < pressure_pa);
-        capacities.pressure_pa = Some(least.unwrap_or(pressure_pa));
+        let least = capacities.pressure_pa.filter(|stated_pa| stated_pa.get() < pressure_pa);
+        capacities.pressure_pa = least.or_else(|| strake_core::part::Stated::new(pressure_pa));
     }
     capacities
 }
 
 /// The part without what stands for its plates, for the desk, which has their moments.
 pub(crate) fn without_plates(stated: &Stated, part: &Part) -> Part {
-    Part { outward: capacities(stated.capacity()), ..part.clone() }
+    Part { outward: capacities(stated, true), ..part.clone() }
 }
 
-/// The smallest of each kind.
-fn capacities(ratings: &[Rating]) -> Capacities {
-    let smallest = |pick: fn(&Capacity) -> Option<f64>| {
-        let values = ratings.iter().filter_map(|rating| pick(&rating.capacity.value));
-        values.min_by(f64::total_cmp).map(single)
+/// The smallest of each kind in one direction.
+fn capacities(stated: &Stated, outward: bool) -> Capacities {
+    let ratings = if outward { stated.capacity() } else { stated.capacity_inward() };
+    let smallest = |pick: &dyn Fn(&Rating) -> Option<f64>| {
+        let values = ratings.iter().filter_map(pick);
+        values.min_by(f64::total_cmp).map(single).and_then(strake_core::part::Stated::new)
     };
     Capacities {
-        pressure_pa: smallest(|capacity| match *capacity {
-            Capacity::Pressure { pa } => Some(pa),
+        pressure_pa: smallest(&|rating| match &rating.capacity.value {
+            Capacity::Pressure { pa } => Some(*pa),
+            Capacity::Cover(plate) => match stated {
+                Stated::Hatch(hatch) => cover_rule::pressure_pa(plate, rating, hatch, outward).ok(),
+                _ => None,
+            },
             _ => None,
         }),
-        hoop_tension_n_m: smallest(Capacity::hoop_tension_n_m),
-        force_n: smallest(|capacity| match *capacity {
+        hoop_tension_n_m: smallest(&|rating| rating.capacity.value.hoop_tension_n_m()),
+        force_n: smallest(&|rating| match rating.capacity.value {
             Capacity::Force { n } => Some(n),
             _ => None,
         }),
-        bolt_n: smallest(|capacity| match *capacity {
-            Capacity::Bolt { n } => Some(n),
+        bolt_n: smallest(&|rating| match rating.capacity.value {
+            Capacity::Bolt { n } | Capacity::Hinge { n } => Some(n),
+            _ => None,
+        }),
+        moment_n_m: smallest(&|rating| match rating.capacity.value {
+            Capacity::Moment { n_m } => Some(n_m),
+            Capacity::Latch { n } => latch_moment_n_m(stated, n),
             _ => None,
         }),
     }
+}
+
+/// Moment about the hinge at which the latch that carries most carries `n`.
+fn latch_moment_n_m(stated: &Stated, n: f64) -> Option<f64> {
+    let Stated::Hatch(hatch) = stated else { return None };
+    let Some(Secured::Hinged(hinged)) = hatch.secured.as_ref().map(|secured| &secured.value) else {
+        return None;
+    };
+    cover::latch_per_moment(hinged, hatch.sealed.sine()).map(|per_moment| n / per_moment)
 }
 
 /// A design state with its share of strength that remains; "as new" where the file states none.

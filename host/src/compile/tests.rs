@@ -1,8 +1,8 @@
-use super::{Contents, bolts, for_desk, for_device, liquid};
-use crate::tank::{self, Bolts, FirstBolt, Plane, Shape, TankFile};
+use super::{Contents, cover, for_desk, for_device, liquid};
+use crate::tank::{self, BoltLine, Bolts, FirstBolt, Plane, Shape, TankFile};
 use std::f64::consts::PI;
+use strake_core::part::Stated;
 use strake_core::plan::{LevelSensor, Reference, SignalKind, codec};
-use strake_core::shape::Cut;
 
 const BRINE: &str = include_str!("../../../configs/brine_day_tank.toml");
 const LABORATORY: &str = include_str!("../../../configs/laboratory_tank.toml");
@@ -89,11 +89,11 @@ fn the_smallest_of_equal_kinds_governs() {
         "{ force = \"80 N\", basis = \"drawing\" }, { force = \"60 N\"",
     );
     let plan = for_device(&parse(&text)).unwrap().plan;
-    assert_eq!(plan.parts[1].outward.force_n, Some(60.0));
-    assert_eq!(plan.parts[1].outward.pressure_pa, Some(7700.0));
+    assert_eq!(plan.parts[1].outward.force_n, Stated::new(60.0));
+    assert_eq!(plan.parts[1].outward.pressure_pa, Stated::new(7700.0));
     // 137 MPa x 0.85 x (4.6 - 1) mm.
     let plan = for_device(&parse(BRINE)).unwrap().plan;
-    assert!(near(plan.parts[0].outward.hoop_tension_n_m.unwrap(), 419_220.0, 1e-7));
+    assert!(near(plan.parts[0].outward.hoop_tension_n_m.unwrap().get(), 419_220.0, 1e-7));
 }
 
 #[test]
@@ -125,9 +125,14 @@ fn bolts_and_their_cuts_against_counting() {
         (7, FirstBolt::Astride),
         (8, FirstBolt::Astride),
     ] {
-        let bolts = Bolts { count, circle_diameter_m: 0.77, first };
+        let line = BoltLine::Circle { diameter_m: 0.77 };
+        let bolts = Bolts { count, line, first };
         for shape in [&circle, &rectangle] {
-            let pattern = bolts::pattern(&bolts, shape, 0.8);
+            // A slope with the sine 0.8.
+            let plane = Plane::centred(shape.clone(), 0.8_f64.asin().to_degrees(), 1.0);
+            let numbers = &mut heapless::Vec::new();
+            let made = super::plane_shape(&plane, &mut super::Numbers { list: numbers }).unwrap();
+            let weightings = cover::bolts(&bolts, &plane, &made).weightings;
             let pitch = 2.0 * PI / f64::from(count);
             let start = if first == FirstBolt::Lowest { 0.0 } else { 0.5 * pitch };
             let heights: Vec<f64> =
@@ -135,11 +140,13 @@ fn bolts_and_their_cuts_against_counting() {
             let square_sum: f64 = heights.iter().map(|s| s * s).sum();
             let low = heights.iter().copied().fold(f64::INFINITY, f64::min);
             let high = heights.iter().copied().fold(f64::NEG_INFINITY, f64::max);
-            assert!(near(pattern.per_moment[0], low / square_sum, 1e-6));
-            assert!(near(pattern.per_moment[1], high / square_sum, 1e-6));
-            for (s_i, cut) in [low, high].into_iter().zip(pattern.cuts) {
+            for (s_i, found) in [low, high].into_iter().zip(weightings) {
+                assert!(near(found.slope, s_i / square_sum, 1e-6));
+                let at_centroid =
+                    f64::from(found.foot) + f64::from(found.slope) * 0.5 * shape.length_m();
+                assert!(near(at_centroid, 1.0 / f64::from(count), 1e-5));
                 let kern = -square_sum / (f64::from(count) * s_i);
-                let Some([y_m, area_m2, static_m3]) = cut else {
+                let Some([y_m, area_m2, static_m3]) = found.cut else {
                     assert!(kern.abs() >= 0.5 * shape.length_m(), "a cut is missing");
                     continue;
                 };
@@ -171,14 +178,11 @@ fn below(shape: &Shape, s_m: f64) -> (f64, f64) {
 
 #[test]
 fn the_lower_half_of_a_disc() {
-    let disc = strake_core::shape::Circle::new(0.33, 1.0);
-    let shape = strake_core::shape::Shape::Circle(disc);
-    let [y_m, area_m2, static_m3] =
-        super::centroid_cut(&Plane::centred(Shape::Circle { diameter_m: 0.66 }, 90.0, 1.0))
-            .unwrap();
-    let cut = Cut::new(&strake_core::shape::Face::of(&shape, 0.0), y_m, area_m2, static_m3);
-    assert!(near(cut.area_m2, 0.5 * PI * 0.33 * 0.33, 1e-6));
-    assert!(near(cut.static_m3, -2.0 / 3.0 * 0.33_f64.powi(3), 1e-6));
+    let disc = Plane::centred(Shape::Circle { diameter_m: 0.66 }, 90.0, 1.0);
+    let [y_m, area_m2, static_m3] = super::about_centroid(&disc).cut.unwrap();
+    assert!(near(y_m, 0.33, 1e-6));
+    assert!(near(area_m2, 0.5 * PI * 0.33 * 0.33, 1e-6));
+    assert!(near(static_m3, -2.0 / 3.0 * 0.33_f64.powi(3), 1e-6));
 }
 
 #[test]

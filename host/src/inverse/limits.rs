@@ -3,8 +3,9 @@
 use super::{Criterion, Interval, intervals};
 use crate::assess::Desk;
 use strake_core::lane::Lane;
-use strake_core::part::{Capacities, Part, PartLoads, evaluate};
+use strake_core::part::{Capacities, Geometry, Part, PartLoads, evaluate};
 use strake_core::plan::{LevelSensor, Plan};
+use strake_core::shape::Face;
 
 /// What ends the way up.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -126,36 +127,66 @@ pub fn of_part(desk: &Desk, part: &Part) -> Option<PartLimits> {
     }
     let within = |which| Within { desk, part, which };
     let find = |criterion: &Within<'_>| intervals(criterion, desk.range(), kinks(desk, part));
-    let lowest_m = part.judged_inward().then(|| {
-        let found = find(&within(Which::Inward));
-        found.last().filter(|last| last.high_m >= desk.range().high_m).map(|last| last.low_m)
-    });
+    let inward =
+        part.judged_inward().then(|| Inward::of(desk, part, &find(&within(Which::Inward))));
     let both = Both(within(Which::Estimate), within(Which::Inward));
     let limit = |which| {
         let outward = outward_limit(desk, part, which);
-        match (outward.level_m, lowest_m) {
-            (Some(_), Some(None)) => Limit::none(LimitedBy::Inward),
-            (Some(high_m), Some(Some(low_m))) if low_m > high_m => Limit::none(LimitedBy::Inward),
-            _ => outward,
-        }
+        inward.as_ref().map_or(outward, |inward| inward.cuts(outward))
     };
     Some(PartLimits {
         estimate: limit(Which::Estimate),
         bound: limit(Which::Bound),
         intervals: intervals(&both, desk.range(), kinks(desk, part)),
-        lowest_m,
+        lowest_m: inward.as_ref().map(|inward| inward.lowest_m),
     })
+}
+
+/// Where the inward capacities are kept on the way up.
+struct Inward {
+    /// Level from which upward they are; `None` when there is none.
+    lowest_m: Option<f32>,
+    /// Level at which they end though they hold from the floor on (a reaction whose weighting
+    /// changes its sign), and what ends them.
+    end: Option<(f32, LimitedBy)>,
+}
+
+impl Inward {
+    fn of(desk: &Desk, part: &Part, found: &[Interval]) -> Self {
+        let range = desk.range();
+        let from_floor = found.first().is_some_and(|first| first.low_m <= range.low_m);
+        if from_floor {
+            let end = least_end(desk, &inward_singles(part), Which::Inward, range).ok().flatten();
+            return Self { lowest_m: Some(range.low_m), end };
+        }
+        let last = found.last().filter(|last| last.high_m >= range.high_m);
+        Self { lowest_m: last.map(|last| last.low_m), end: None }
+    }
+
+    /// The outward limit, cut where the inward capacities end before it.
+    fn cuts(&self, outward: Limit) -> Limit {
+        let Some(high_m) = outward.level_m else { return outward };
+        match (self.lowest_m, self.end) {
+            (None, _) => Limit::none(LimitedBy::Inward),
+            (Some(low_m), _) if low_m > high_m => Limit::none(LimitedBy::Inward),
+            (_, Some((end_m, limited_by))) if end_m < high_m => {
+                Limit { level_m: Some(end_m), limited_by, capacity_alone_m: None }
+            }
+            _ => outward,
+        }
+    }
 }
 
 /// The least of the limits that each capacity sets for itself, and which one that is.
 fn outward_limit(desk: &Desk, part: &Part, which: Which) -> Limit {
-    let Ok(reached) = least_end(desk, part, which, desk.range()) else {
+    let singles = outward_singles(part);
+    let Ok(reached) = least_end(desk, &singles, which, desk.range()) else {
         return Limit::none(LimitedBy::Gas);
     };
     if let Some((level_m, limited_by)) = reached {
         return Limit { level_m: Some(level_m), limited_by, capacity_alone_m: None };
     }
-    let beyond = least_end(desk, part, which, desk.beyond()).ok().flatten();
+    let beyond = least_end(desk, &singles, which, desk.beyond()).ok().flatten();
     Limit {
         level_m: Some(desk.range().high_m),
         limited_by: desk.limited_at_top(),
@@ -170,42 +201,54 @@ struct BrokenBelow;
 /// its upper end.
 fn least_end(
     desk: &Desk,
-    part: &Part,
+    singles: &[(LimitedBy, Part)],
     which: Which,
     range: Interval,
 ) -> Result<Option<(f32, LimitedBy)>, BrokenBelow> {
     let mut least: Option<(f32, LimitedBy)> = None;
-    for (kind, alone) in one_by_one(part) {
-        let criterion = Within { desk, part: &alone, which };
-        let found = intervals(&criterion, range, kinks(desk, part));
+    for (kind, alone) in singles {
+        let criterion = Within { desk, part: alone, which };
+        let found = intervals(&criterion, range, kinks(desk, alone));
         let from_below = found.first().filter(|first| first.low_m <= range.low_m);
         let end_m = from_below.ok_or(BrokenBelow)?.high_m;
         if end_m < range.high_m && least.is_none_or(|(level_m, _)| end_m < level_m) {
-            least = Some((end_m, kind));
+            least = Some((end_m, *kind));
         }
     }
     Ok(least)
 }
 
-/// The part with each of its outward capacities alone.
-fn one_by_one(part: &Part) -> Vec<(LimitedBy, Part)> {
-    let bare = Part {
+/// The part without any capacity.
+fn bare(part: &Part) -> Part {
+    Part {
         outward: Capacities::default(),
         inward: Capacities::default(),
         designed_for: heapless::Vec::new(),
         ..part.clone()
-    };
-    let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n } = part.outward;
+    }
+}
+
+/// Each stated capacity alone, with what a limit by it is called.
+fn singles(capacities: &Capacities, strength: LimitedBy) -> Vec<(LimitedBy, Capacities)> {
+    let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n, moment_n_m } = *capacities;
     let none = Capacities::default();
-    let singles = [
-        (LimitedBy::Strength, Capacities { pressure_pa, ..none }),
-        (LimitedBy::Strength, Capacities { hoop_tension_n_m, ..none }),
-        (LimitedBy::Strength, Capacities { force_n, ..none }),
+    let all = [
+        (strength, Capacities { pressure_pa, ..none }),
+        (strength, Capacities { hoop_tension_n_m, ..none }),
+        (strength, Capacities { force_n, ..none }),
         (LimitedBy::Securing, Capacities { bolt_n, ..none }),
+        (LimitedBy::Securing, Capacities { moment_n_m, ..none }),
     ];
-    let stated = singles.into_iter().filter(|(_, one)| !one.is_empty());
-    let mut all: Vec<(LimitedBy, Part)> =
-        stated.map(|(kind, outward)| (kind, Part { outward, ..bare.clone() })).collect();
+    all.into_iter().filter(|(_, one)| !one.is_empty()).collect()
+}
+
+/// The part with each of its outward capacities alone.
+fn outward_singles(part: &Part) -> Vec<(LimitedBy, Part)> {
+    let bare = bare(part);
+    let mut all: Vec<(LimitedBy, Part)> = singles(&part.outward, LimitedBy::Strength)
+        .into_iter()
+        .map(|(kind, outward)| (kind, Part { outward, ..bare.clone() }))
+        .collect();
     if !part.designed_for.is_empty() {
         let designed_for = part.designed_for.clone();
         all.push((LimitedBy::DesignState, Part { designed_for, ..bare }));
@@ -213,11 +256,54 @@ fn one_by_one(part: &Part) -> Vec<(LimitedBy, Part)> {
     all
 }
 
+/// The part with each of its inward capacities alone.
+fn inward_singles(part: &Part) -> Vec<(LimitedBy, Part)> {
+    let bare = bare(part);
+    singles(&part.inward, LimitedBy::Inward)
+        .into_iter()
+        .map(|(kind, inward)| (kind, Part { inward, ..bare.clone() }))
+        .collect()
+}
+
 /// Levels at which a load of the part may change its course.
 pub(super) fn kinks(desk: &Desk, part: &Part) -> Vec<f32> {
     let plan = desk.plan();
     let designed = part.designed_for.iter().map(|state| state.level_m);
-    plan_kinks(plan).into_iter().chain([part.bottom_m, part.top_m]).chain(designed).collect()
+    plan_kinks(plan)
+        .into_iter()
+        .chain([part.bottom_m, part.top_m])
+        .chain(designed)
+        .chain(turning_levels(plan, part))
+        .collect()
+}
+
+/// Levels at which a reaction of the cover turns back while its opening fills: where the integral
+/// of its weighting below the surface is zero. Between two of them and the other kinks every
+/// reaction rises or falls.
+fn turning_levels(plan: &Plan, part: &Part) -> Vec<f32> {
+    let Geometry::Plane { shape, cover: Some(cover), .. } = &part.geometry else {
+        return Vec::new();
+    };
+    let face = Face { shape, numbers: &plan.numbers, bottom_m: part.bottom_m };
+    let mut found = Vec::new();
+    for weighting in cover.weightings() {
+        for sign in [1.0, -1.0] {
+            let load = |y_m: f32| sign * weighting.wetted(&face, y_m);
+            // The load has one extreme at most there: the weighting changes its sign once.
+            let (mut low_m, mut high_m) = (0.0, shape.rise_m());
+            for _ in 0..60 {
+                let third = (high_m - low_m) / 3.0;
+                let (left_m, right_m) = (low_m + third, high_m - third);
+                if load(left_m) < load(right_m) {
+                    low_m = left_m;
+                } else {
+                    high_m = right_m;
+                }
+            }
+            found.push(part.bottom_m + 0.5 * (low_m + high_m));
+        }
+    }
+    found
 }
 
 fn plan_kinks(plan: &Plan) -> Vec<f32> {
@@ -259,8 +345,8 @@ impl Criterion for Below<'_> {
 #[must_use]
 pub fn first_reached(desk: &Desk, threshold: f32) -> Option<f32> {
     let range = desk.range();
-    let parts = desk.plan().parts.iter().flat_map(|part| [part.bottom_m, part.top_m]);
-    let kinks = plan_kinks(desk.plan()).into_iter().chain(parts);
+    let parts = desk.plan().parts.iter();
+    let kinks: Vec<f32> = parts.flat_map(|part| kinks(desk, part)).collect();
     let found = intervals(&Below { desk, threshold }, range, kinks);
     match found.first().filter(|first| first.low_m <= range.low_m) {
         None => Some(range.low_m),

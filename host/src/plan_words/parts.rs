@@ -1,8 +1,8 @@
 //! The parts of a plan in words.
 
 use super::Words;
-use crate::units::Quantity::{AngleDegrees, Density, Force, Length, LineLoad, Pressure};
-use strake_core::part::{Capacities, DesignState, Geometry, Part};
+use crate::units::Quantity::{AngleDegrees, Density, Force, Length, LineLoad, Moment, Pressure};
+use strake_core::part::{Capacities, Cover, DesignState, Geometry, Held, Part, Stated};
 use strake_core::shape::Shape;
 
 impl Words {
@@ -11,10 +11,10 @@ impl Words {
         self.line("is", &exact(geometry, numbers), self.geometry(geometry));
         let heights = format!("{} to {}", self.show(*bottom_m, Length), self.show(*top_m, Length));
         self.line("stands from", &(bottom_m, top_m), heights);
-        let mut carries = self.capacities(outward);
+        let mut carries = self.capacities(geometry, outward);
         carries.extend(designed_for.iter().map(|state| self.design_state(state)));
         self.line("carries", &(outward, designed_for), joined(&carries));
-        self.line("carries inward", inward, joined(&self.capacities(inward)));
+        self.line("carries inward", inward, joined(&self.capacities(geometry, inward)));
         if *outside != 0 {
             let numbers: Vec<String> = (0..8)
                 .filter(|bit| outside >> bit & 1 == 1)
@@ -32,7 +32,7 @@ impl Words {
                 self.show(*height_m, Length),
                 self.show(*design_point_m, Length)
             ),
-            Geometry::Plane { shape, sine, centroid_above_m: _, bolts } => {
+            Geometry::Plane { shape, sine, centroid_above_m: _, cover } => {
                 let shape_words = match shape {
                     Shape::Circle(circle) if (circle.aspect() - 1.0).abs() > 0.0 => {
                         let length_m = 2.0 * f64::from(circle.radius_m());
@@ -69,23 +69,51 @@ impl Words {
                     let degrees = f64::from(*sine).asin().to_degrees();
                     format!(", {} from level", self.show(degrees, AngleDegrees))
                 };
-                let bolts = bolts.as_ref().map(|bolts| bolts.pattern().count);
-                let bolts = bolts.map_or_else(String::new, |count| format!(", {count} bolts"));
-                format!("{shape_words}{slope}{bolts}")
+                let cover = cover.as_ref().map_or_else(String::new, |cover| self.cover(cover));
+                format!("{shape_words}{slope}{cover}")
             }
         }
     }
 
-    fn capacities(&self, capacities: &Capacities) -> Vec<String> {
-        let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n } = *capacities;
+    /// How a cover is held and what it weighs.
+    fn cover(&self, cover: &Cover) -> String {
+        let numbers = cover.numbers();
+        let held = match cover.held() {
+            Held::Otherwise => ", a cover".to_owned(),
+            Held::Bolts(count) => format!(", {count} bolts"),
+            Held::Line => ", on a level hinge or pivot".to_owned(),
+            Held::Side => {
+                format!(", on a hinge {} beside its centre", self.show(numbers.arm_m, Length))
+            }
+        };
+        if numbers.weight_n == 0.0 {
+            return held;
+        }
+        let measured = if numbers.weight_is_measured { "measured" } else { "not measured" };
+        let weight = self.show(numbers.weight_n, Force);
+        format!("{held}, its weight along the outward normal {weight}, {measured}")
+    }
+
+    fn capacities(&self, geometry: &Geometry, capacities: &Capacities) -> Vec<String> {
+        let held = match geometry {
+            Geometry::Plane { cover: Some(cover), .. } => cover.held(),
+            _ => Held::Otherwise,
+        };
+        let each = match held {
+            Held::Line => "hinge or pivot",
+            Held::Side => "each pin",
+            Held::Bolts(_) | Held::Otherwise => "each bolt",
+        };
+        let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n, moment_n_m } = *capacities;
         let all = [
             ("pressure", pressure_pa, Pressure),
             ("hoop tension", hoop_tension_n_m, LineLoad),
             ("force", force_n, Force),
-            ("each bolt", bolt_n, Force),
+            (each, bolt_n, Force),
+            ("moment about the hinge", moment_n_m, Moment),
         ];
-        let stated = |(name, value, quantity): (&str, Option<f32>, _)| {
-            value.map(|value| format!("{name} {}", self.show(value, quantity)))
+        let stated = |(name, value, quantity): (&str, Option<Stated>, _)| {
+            value.map(|value| format!("{name} {}", self.show(value.get(), quantity)))
         };
         all.into_iter().filter_map(stated).collect()
     }

@@ -4,6 +4,7 @@ use super::{changes, lines};
 use crate::compile;
 use crate::plan_file::PlanFile;
 use crate::units::UnitSystem::{Si, UsCustomary};
+use strake_core::part::Stated;
 use strake_core::plan::Plan;
 
 /// Changes one number.
@@ -70,7 +71,7 @@ fn every_number_that_moves_is_told_even_below_the_last_digit() {
         ("at rest", |plan| plan.logging.idle_interval_ms = 1_000),
         ("written after", |plan| plan.logging.flush_after_ms = 0),
         ("carries", |plan| plan.parts[0].outward.hoop_tension_n_m = None),
-        ("carries inward", |plan| plan.parts[4].inward.force_n = Some(9e3)),
+        ("carries inward", |plan| plan.parts[4].inward.force_n = Stated::new(9e3)),
         ("stands from", |plan| plan.parts[1].top_m = 5.0),
     ];
     for (label, change) in moves {

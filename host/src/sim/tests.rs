@@ -11,7 +11,7 @@ use std::cell::RefCell;
 use std::ops::ControlFlow;
 use std::rc::Rc;
 use strake_core::liquid::{Band, Gas};
-use strake_core::part::{Capacities, Geometry, Part};
+use strake_core::part::{Capacities, Geometry, Part, Stated};
 use strake_core::plan::{
     AlarmPlan, LevelPlan, LevelSensor, LoggingPlan, Plan, PlanHeader, Reference, SignalKind,
     ThresholdPlan, codec,
@@ -67,7 +67,7 @@ fn plan() -> Plan {
         geometry: Geometry::Course { half_diameter_m: 4.0, design_point_m: 0.3, height_m: 2.4 },
         bottom_m: 0.0,
         top_m: 2.4,
-        outward: Capacities { hoop_tension_n_m: Some(419_000.0), ..Capacities::default() },
+        outward: Capacities { hoop_tension_n_m: Stated::new(419_000.0), ..Capacities::default() },
         inward: Capacities::default(),
         designed_for: heapless::Vec::new(),
         outside: 0,

@@ -6,10 +6,11 @@ use super::document::{
 };
 use super::words::{cause_words, health_name, reading_name, state_name};
 use super::{InForce, Seen};
-use crate::assess::{FIELD_CHECK, PROVISIONAL};
+use crate::assess::{FIELD_CHECK, Opening, PROVISIONAL};
 use crate::plan_file::PlanFile;
 use strake_core::alarm::AlarmState;
 use strake_core::journal::SECTOR_BYTES;
+use strake_core::part::Shut;
 use strake_core::signal::ReadingClass;
 use strake_core::wire::{FillingStatus, Identity, LinkCounters, LoadValue, PartStatus, Status};
 
@@ -140,10 +141,23 @@ fn part_row(part: &PartStatus, plan: Option<&PlanFile>, reading: u8) -> PartRow 
         utilisation_bound: part.utilisation_bound,
         utilisation_inward: part.inward_judged.then_some(part.utilisation_inward),
         above_alarm,
+        opening: opening(part.opening),
         loads: loads(&part.loads, |load| load.estimate),
         loads_outward_bound: loads(&part.loads, |load| load.bound),
         share_of_threshold: if alarm.is_some() { share } else { part.utilisation_bound },
     }
+}
+
+/// The device's verdict on an opening; none of what is no opening.
+const fn shut(opening: u8) -> Option<Shut> {
+    if opening & PartStatus::OPENING == 0 {
+        return None;
+    }
+    Some(Shut(opening & !PartStatus::OPENING))
+}
+
+fn opening(opening: u8) -> Option<Opening> {
+    shut(opening).map(Opening::of)
 }
 
 /// Loads by the numbers of the link: those of the plan format plus one.
@@ -154,6 +168,7 @@ fn loads(loads: &[LoadValue], pick: fn(&LoadValue) -> f32) -> LoadsRow {
         hoop_tension_n_m: value(2),
         force_n: value(3),
         bolt_n: value(4),
+        moment_n_m: value(5),
     }
 }
 

@@ -1,6 +1,7 @@
 //! The document `strake.status/1`. Its keys are a promise to scripts; quantities are SI, the unit
 //! stands in the key.
 
+use crate::assess::Opening;
 use crate::plan_file::PlanFile;
 use serde::Serialize;
 use strake_core::wire::{Identity, Status};
@@ -183,6 +184,9 @@ pub struct PartRow {
     pub utilisation_inward: Option<f32>,
     /// At or above its alarm threshold, outward or inward.
     pub above_alarm: bool,
+    /// Whether the opening under a cover must stay shut; of a hatch.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub opening: Option<Opening>,
     /// Estimates of its loads by their names in `strake.assess/1`.
     pub loads: LoadsRow,
     /// Their outward bounds.
@@ -203,9 +207,12 @@ pub struct LoadsRow {
     /// Force on a plane part.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub force_n: Option<f32>,
-    /// Largest share of a bolt.
+    /// Largest share of a bolt, or force on a pin or hinge line.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub bolt_n: Option<f32>,
+    /// Moment about the hinge or pivot.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub moment_n_m: Option<f32>,
 }
 
 /// The device's clock.

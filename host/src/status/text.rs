@@ -138,6 +138,22 @@ fn parts(document: &Document, page: &mut Page) {
             row.name, row.utilisation, row.utilisation_bound
         ));
     }
+    openings(document, page);
+}
+
+/// Openings, by wetting and never by load.
+fn openings(document: &Document, page: &mut Page) {
+    let rows = document.parts.iter();
+    let openings: Vec<_> =
+        rows.filter_map(|row| row.opening.as_ref().map(|one| (&row.name, one))).collect();
+    if openings.is_empty() {
+        return;
+    }
+    page.blank();
+    page.heading("Openings, judged by wetting and never by load");
+    for (name, opening) in openings {
+        page.paragraph("  ", &format!("{name}: {}", opening.says));
+    }
 }
 
 fn device(document: &Document, page: &mut Page) {

@@ -149,6 +149,8 @@ codes! {
     GasketInside = "gasket-inside",
     /// A bolt circle that passes through the opening.
     BoltCircle = "bolt-circle",
+    /// A hinge, pivot, latch or pin where it cannot hold the cover.
+    Securing = "securing",
     /// A range written from high to low.
     ReversedRange = "reversed-range",
     /// A temperature outside the range of the liquid.

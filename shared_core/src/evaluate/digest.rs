@@ -6,7 +6,7 @@
 //! each collection; the replay recomputes it. It finds a differing bit; it is no seal.
 
 use crate::lane::Lane;
-use crate::part::{Geometry, Loads, Part, PartLoads};
+use crate::part::{Cover, Geometry, Held, Loads, Part, PartLoads};
 
 /// Two words per lane over all results of one sample.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -39,10 +39,11 @@ impl<const N: usize> Digest<N> {
                     self.word(one.hoop_tension_n_m);
                 }
             }
-            Geometry::Plane { bolts, .. } => {
+            Geometry::Plane { cover, .. } => {
                 self.word(loads.estimate.moment_centroid_n_m);
+                let held = cover.as_ref().map_or(Held::Otherwise, Cover::held);
                 for one in [&loads.estimate, &loads.outward, &loads.inward] {
-                    self.plane(one, bolts.is_some());
+                    self.plane(one, held);
                 }
             }
         }
@@ -51,11 +52,14 @@ impl<const N: usize> Digest<N> {
         self.word(loads.utilisation_inward);
     }
 
-    fn plane(&mut self, loads: &Loads<N>, bolts: bool) {
+    fn plane(&mut self, loads: &Loads<N>, held: Held) {
         self.word(loads.pressure_pa);
         self.word(loads.force_n);
-        if bolts {
+        if held != Held::Otherwise {
             self.word(loads.bolt_n);
+        }
+        if matches!(held, Held::Line | Held::Side) {
+            self.word(loads.moment_n_m);
         }
     }
 

@@ -4,7 +4,7 @@ use super::{Digest, Output, Rhythm, State, judge, loads, step};
 use crate::alarm::{AlarmState, FaultCause, MachineId, Threshold};
 use crate::journal::entry::{Sample, TransitionCause};
 use crate::liquid::truth::Random;
-use crate::part::PartLoads;
+use crate::part::{PartLoads, Stated};
 use crate::plan::builder::{count_of, random, reads, water_tank};
 use crate::plan::{Filling, LevelSensor, Plan};
 use crate::signal::{Channel, Quality, ReadingClass, Resolved, SensorError, resolve};
@@ -120,7 +120,7 @@ proptest! {
 /// Hoop capacity for 6 m of water at the design point of a course of 8 m diameter.
 fn course_tank() -> Plan {
     let mut plan = water_tank();
-    plan.parts[0].outward.hoop_tension_n_m = Some(9_806.65 * 5.7 * 4.0);
+    plan.parts[0].outward.hoop_tension_n_m = Stated::new(9_806.65 * 5.7 * 4.0);
     plan
 }
 

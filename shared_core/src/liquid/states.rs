@@ -92,6 +92,31 @@ fn surface<const N: usize>(plan: &Plan, readings: &Readings<N>) -> States<N> {
     }
 }
 
+/// Height above which no liquid in the tank stands, m, for a reading not above `high` and a top
+/// liquid not lighter than `light_kg_m3`.
+///
+/// It is no height of the upper pressure bound: that has the highest gas pressure, while a surface
+/// over a diaphragm stands highest under the lowest.
+#[must_use]
+pub fn highest_surface_m(plan: &Plan, high: f32, light_kg_m3: f32) -> f32 {
+    let surface_m = match plan.level.sensor {
+        LevelSensor::Surface => high,
+        LevelSensor::Head { at_m, reference } => {
+            let layers = plan.liquid.below.iter();
+            let light = layers.fold(light_kg_m3, |light, layer| {
+                crate::lane::at_most(light, layer.density.low_kg_m3)
+            });
+            let gas_pa = match reference {
+                Reference::Atmosphere { offset_pa: [_, lowest, _] } => lowest + plan.gas.lowest_pa,
+                Reference::GasSpace => 0.0,
+            };
+            // Below the diaphragm nothing is seen.
+            at_m + crate::lane::ramp(high - gas_pa) / (light * plan.gravity_m_s2)
+        }
+    };
+    capped(plan, Lane([surface_m])).lane(0)
+}
+
 /// A level that does not stand above the brim of an open tank.
 fn capped<const N: usize>(plan: &Plan, level_m: Lane<N>) -> Lane<N> {
     match plan.open_top_m() {

@@ -1,6 +1,8 @@
 //! One part under the three pressure states: its loads and its utilisation.
 
-use super::{Capacities, DESIGN_PRESSURE_FLOOR_PA, DesignState, Geometry, Part, UTILISATION_MAX};
+use super::{
+    Capacities, DESIGN_PRESSURE_FLOOR_PA, DesignState, Geometry, Part, Stated, UTILISATION_MAX,
+};
 use crate::lane::Lane;
 use crate::liquid::States;
 use crate::plan::Plan;
@@ -19,8 +21,12 @@ pub struct Loads<const N: usize> {
     pub force_n: Lane<N>,
     /// Moment about the level line through the centroid, N m; of the estimate only.
     pub moment_centroid_n_m: Lane<N>,
-    /// Largest bolt share (the least under the inward bound), N.
+    /// Largest share of a bolt, or force on a pin or hinge line (the least under the inward bound),
+    /// N, positive in tension against outward motion.
     pub bolt_n: Lane<N>,
+    /// Moment about the hinge or pivot, N m, positive when it turns the cover outward; about a
+    /// pivot, when it pushes the upper side outward.
+    pub moment_n_m: Lane<N>,
 }
 
 /// What is computed of a part.
@@ -47,6 +53,7 @@ impl<const N: usize> Loads<N> {
         force_n: Lane::ZERO,
         moment_centroid_n_m: Lane::ZERO,
         bolt_n: Lane::ZERO,
+        moment_n_m: Lane::ZERO,
     };
 
     /// Hoop tension `p D / 2` at the design point (thin cylinder; Timoshenko, Strength of
@@ -135,7 +142,7 @@ fn judge<const N: usize>(plan: &Plan, part: &Part, states: &States<N>, loads: &m
             loads.outward.put_course(upper.at(point_m), *half_diameter_m);
             loads.inward.put_course(lower.at(point_m), *half_diameter_m);
         }
-        Geometry::Plane { shape, bolts, .. } => {
+        Geometry::Plane { shape, cover, .. } => {
             let face = Face { shape, numbers: &plan.numbers, bottom_m: part.bottom_m };
             let middle = estimate.on(&face);
             let most = upper.on(&face);
@@ -144,13 +151,13 @@ fn judge<const N: usize>(plan: &Plan, part: &Part, states: &States<N>, loads: &m
             loads.estimate.moment_centroid_n_m = middle.moment_n_m;
             loads.outward.put_plane(largest_pressure(part, upper, &most), most.force_n);
             loads.inward.put_plane(least_pressure(part, lower), least.force_n);
-            [loads.estimate.bolt_n, loads.outward.bolt_n, loads.inward.bolt_n] = match bolts {
-                None => [Lane::ZERO; 3],
-                Some(bolts) => {
-                    let [largest, least] = bolts.bounds(&face, (upper, &most), (lower, &least));
-                    [bolts.largest(&middle), largest, least]
-                }
+            let pressings = [(estimate, &middle), (upper, &most), (lower, &least)];
+            let [moment, held] = match cover {
+                None => [[Lane::ZERO; 3]; 2],
+                Some(cover) => cover.reactions(&face, &pressings),
             };
+            [loads.estimate.bolt_n, loads.outward.bolt_n, loads.inward.bolt_n] = held;
+            [loads.estimate.moment_n_m, loads.outward.moment_n_m, loads.inward.moment_n_m] = moment;
         }
     }
     // Zero where no capacity is stated.
@@ -257,16 +264,17 @@ fn ratio<const N: usize, const K: usize>(
     sign: f32,
 ) -> [Lane<N>; K] {
     let mut largest = [Lane::ZERO; K];
-    let mut compare = |capacity: Option<f32>, loads: [Lane<N>; K]| {
+    let mut compare = |capacity: Option<Stated>, loads: [Lane<N>; K]| {
         let Some(capacity) = capacity else { return };
         for (largest, load) in largest.iter_mut().zip(loads) {
-            *largest = largest.at_least(load * sign / Lane::splat(capacity));
+            *largest = largest.at_least(load * sign / Lane::splat(capacity.get()));
         }
     };
     compare(capacities.pressure_pa, pressure_pa);
     compare(capacities.hoop_tension_n_m, loads.map(|loads| loads.hoop_tension_n_m));
     compare(capacities.force_n, loads.map(|loads| loads.force_n));
     compare(capacities.bolt_n, loads.map(|loads| loads.bolt_n));
+    compare(capacities.moment_n_m, loads.map(|loads| loads.moment_n_m));
     largest
 }
 

@@ -9,7 +9,9 @@ use super::{
 use crate::alarm::FaultCause;
 use crate::journal::entry::Sample;
 use crate::liquid::{Band, DensityTable, Gas, Layer};
-use crate::part::{BoltPattern, Bolts, Capacities, Geometry, Part};
+use crate::part::{
+    BoltPattern, Capacities, Cover, CoverNumbers, Geometry, Held, Part, WeightingNumbers,
+};
 use crate::plan::LiquidPlan;
 use crate::shape::{Circle, Face, Pieces, Rectangle, Shape};
 use crate::signal::{Channel, ReadingClass, Resolved};
@@ -143,9 +145,9 @@ pub(crate) fn course(bottom_m: f32, height_m: f32, half_diameter_m: f32, point_m
     part(Geometry::Course { half_diameter_m, design_point_m, height_m }, bottom_m, height_m)
 }
 
-pub(crate) fn plane(shape: Shape, bottom_m: f32, sine: f32, bolts: Option<Bolts>) -> Part {
+pub(crate) fn plane(shape: Shape, bottom_m: f32, sine: f32, cover: Option<Cover>) -> Part {
     let rise_m = shape.rise_m();
-    part(Geometry::plane(shape, sine, bolts), bottom_m, rise_m)
+    part(Geometry::plane(shape, sine, cover), bottom_m, rise_m)
 }
 
 pub(crate) fn disc(bottom_m: f32, radius_m: f32, sine: f32) -> Part {
@@ -187,8 +189,24 @@ pub(crate) fn bolted_disc(
         per_moment: [-per_moment as f32, per_moment as f32],
         cuts: [cut(cut_s), cut(-cut_s)],
     };
-    let bolts = Bolts::new(&pattern, &Face::of(&shape, 0.0));
-    plane(shape, bottom_m, sine, Some(bolts))
+    let cover = Cover::new(&pattern.cover(&shape), &Face::of(&shape, 0.0));
+    plane(shape, bottom_m, sine, Some(cover))
+}
+
+/// A disc on a hinge at its highest point and a latch at its lowest.
+pub(crate) fn hinged_disc(bottom_m: f32, radius_m: f32, sine: f32) -> Part {
+    let shape = Shape::Circle(Circle::new(radius_m, sine));
+    let length_m = 2.0 * radius_m;
+    let numbers = CoverNumbers {
+        held: Held::Line,
+        weightings: [
+            WeightingNumbers { foot: length_m, slope: -1.0, cut: None },
+            WeightingNumbers { foot: 0.0, slope: 1.0 / length_m, cut: None },
+        ],
+        ..CoverNumbers::default()
+    };
+    let cover = Cover::new(&numbers, &Face::of(&shape, 0.0));
+    plane(shape, bottom_m, sine, Some(cover))
 }
 
 /// A rectangle on bolts with the given `s / sum s²` of the highest, the same below.
@@ -215,8 +233,8 @@ pub(crate) fn bolted_rectangle(
         per_moment: [-per_moment, per_moment],
         cuts: [cut(zero_s), cut(-zero_s)],
     };
-    let bolts = Bolts::new(&pattern, &Face::of(&shape, 0.0));
-    plane(shape, bottom_m, sine, Some(bolts))
+    let cover = Cover::new(&pattern.cover(&shape), &Face::of(&shape, 0.0));
+    plane(shape, bottom_m, sine, Some(cover))
 }
 
 /// The count (in sixteenths) that a value stands for.

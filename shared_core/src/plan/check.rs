@@ -5,7 +5,7 @@ use super::{
     ThresholdPlan,
 };
 use crate::liquid::Band;
-use crate::part::{Capacities, Geometry, Part};
+use crate::part::{Capacities, Cover, Geometry, Held, Part, Stated};
 use crate::shape::{Pieces, Shape};
 use core::fmt;
 
@@ -203,7 +203,7 @@ impl Plan {
             PlanError::Geometry,
         )?;
         let stated_rise_m = part.top_m - part.bottom_m;
-        let (rise_m, is_course, has_bolts) = match &part.geometry {
+        let (rise_m, held) = match &part.geometry {
             Geometry::Course { half_diameter_m, design_point_m, height_m } => {
                 require(
                     within(*half_diameter_m, 0.01, LENGTH_M_MAX)
@@ -211,21 +211,21 @@ impl Plan {
                         && within(*height_m, 0.001, LENGTH_M_MAX),
                     PlanError::Geometry,
                 )?;
-                (*height_m, true, false)
+                (*height_m, None)
             }
-            Geometry::Plane { shape, sine, bolts, .. } => {
-                let bolts = bolts.as_ref();
+            Geometry::Plane { shape, sine, cover, .. } => {
+                let cover = cover.as_ref();
                 require(
                     check_shape(shape, *sine, &self.numbers)
-                        && bolts.is_none_or(|bolts| bolts.pattern().is_sound(shape, *sine)),
+                        && cover.is_none_or(|cover| cover.is_sound(shape, *sine)),
                     PlanError::Geometry,
                 )?;
-                (shape.rise_m(), false, bolts.is_some())
+                (shape.rise_m(), Some(cover.map_or(Held::Otherwise, Cover::held)))
             }
         };
         require((stated_rise_m - rise_m).abs() <= LENGTH_SLACK_M, PlanError::Geometry)?;
         for capacities in [&part.outward, &part.inward] {
-            check_capacities(capacities, is_course, has_bolts)?;
+            check_capacities(capacities, held)?;
         }
         for state in &part.designed_for {
             require(
@@ -293,21 +293,22 @@ fn check_pieces(pieces: &Pieces, numbers: &[f32]) -> bool {
         && first_m3.abs() <= PIECES_SLACK * area_m2 * length_m
 }
 
-fn check_capacities(
-    capacities: &Capacities,
-    is_course: bool,
-    has_bolts: bool,
-) -> Result<(), PlanError> {
+/// `held`: how a cover is held; none for a course.
+fn check_capacities(capacities: &Capacities, held: Option<Held>) -> Result<(), PlanError> {
+    let turns = matches!(held, Some(Held::Line | Held::Side));
+    let bears = turns || matches!(held, Some(Held::Bolts(_)));
     let positive =
-        |capacity: Option<f32>| capacity.is_none_or(|value| within(value, 1.0e-3, 1.0e12));
+        |capacity: Option<Stated>| capacity.is_none_or(|one| within(one.get(), 1.0e-3, 1.0e12));
     require(
         positive(capacities.pressure_pa)
             && positive(capacities.hoop_tension_n_m)
             && positive(capacities.force_n)
             && positive(capacities.bolt_n)
-            && (is_course || capacities.hoop_tension_n_m.is_none())
-            && (!is_course || capacities.force_n.is_none())
-            && (has_bolts || capacities.bolt_n.is_none()),
+            && positive(capacities.moment_n_m)
+            && (held.is_none() || capacities.hoop_tension_n_m.is_none())
+            && (held.is_some() || capacities.force_n.is_none())
+            && (bears || capacities.bolt_n.is_none())
+            && (turns || capacities.moment_n_m.is_none()),
         PlanError::Capacity,
     )
 }

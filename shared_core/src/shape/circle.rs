@@ -26,6 +26,16 @@ const M: [f32; 6] =
 const M1: [f32; 6] =
     [-7.542_472e-1, 4.040_587e-1, -3.925_702_2e-2, -2.787_091_2e-3, -2.331_560_7e-4, -2.332_418e-4];
 
+/// `m2(u) / a^(7/2)` on `a` in [0, 1], lowest power first.
+const M2: [f32; 6] = [
+    3.232_488_3e-1,
+    -4.489_690_8e-2,
+    -3.557_155_8e-3,
+    -6.752_370_4e-4,
+    -4.156_358_4e-5,
+    -1.103_570_9e-4,
+];
+
 /// A disc, or an ellipse with a level axis, on a slope that is not level.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Circle {
@@ -84,28 +94,28 @@ impl Circle {
     /// See [`super::Shape::wetted`].
     #[inline]
     pub(super) fn wetted<const N: usize>(&self, y_m: Lane<N>) -> Wetted<N> {
-        let (m, m1) = unit(y_m * self.per_half_rise);
-        Wetted { q0: m * self.q0_scale, q1: m1 * self.q1_scale }
+        let [m, m1, m2] = unit(y_m * self.per_half_rise);
+        Wetted { q0: m * self.q0_scale, q1: m1 * self.q1_scale, q2: m2 * self.q1_scale }
     }
 }
 
-/// `m(u)` and `m1(u)` of a surface `a = 1 + u` radii above the lowest point.
+/// `m(u)`, `m1(u)` and `m2(u)` of a surface `a = 1 + u` radii above the lowest point.
 #[expect(clippy::inline_always, reason = "the call would cost a fifth of what it does")]
 #[inline(always)]
-pub(super) fn unit<const N: usize>(a: Lane<N>) -> (Lane<N>, Lane<N>) {
+pub(super) fn unit<const N: usize>(a: Lane<N>) -> [Lane<N>; 3] {
     let u = a - 1.0;
     // Distance of the surface from the nearer end of the vertical diameter: zero when dry or
     // covered. Below the centre it is `a` itself, which keeps all digits at first wetting.
     let end = u.positive_selects(Lane::splat(2.0) - a, a).ramp();
-    let (m, m1) = if end.none_positive() {
-        (Lane::ZERO, Lane::ZERO)
+    let [m, m1, m2] = if end.none_positive() {
+        [Lane::ZERO; 3]
     } else {
         let k = end * end * end.root();
-        (k * polynomial(&M, end), k * polynomial(&M1, end))
+        [k * polynomial(&M, end), k * polynomial(&M1, end), k * end * polynomial(&M2, end)]
     };
     let m = u.positive_selects(u * PI + m, m);
     let m1 = u.positive_selects(Lane::splat(-PI / 4.0) - m1, m1);
-    (m, m1)
+    [m, m1, u.positive_selects(m + m1, m2)]
 }
 
 #[inline]

@@ -79,19 +79,21 @@ impl Pieces {
     pub(super) fn wetted<const N: usize>(&self, numbers: &[f32], y_m: Lane<N>) -> Wetted<N> {
         let [strips, discs] = self.pieces(numbers);
         let surface_m = y_m / Lane::splat(self.sine);
-        let (mut q0, mut q1) = (Lane::ZERO, Lane::ZERO);
+        let [mut q0, mut q1, mut q2] = [Lane::ZERO; 3];
         for strip in strips {
             let [low_m, ..] = strip;
             let (part, lever) = wetted_strip(strip, surface_m - *low_m);
             q0 = q0 + part;
             q1 = q1 + part * (*low_m - self.centroid_m) + lever;
+            q2 = q2 + part * *low_m + lever;
         }
         for disc in discs {
-            let (part, lever) = wetted_disc(disc, self.centroid_m, surface_m);
+            let [part, lever, foot] = wetted_disc(disc, self.centroid_m, surface_m);
             q0 = q0 + part;
             q1 = q1 + lever;
+            q2 = q2 + foot;
         }
-        Wetted { q0: q0 * self.sine, q1: q1 * self.sine }
+        Wetted { q0: q0 * self.sine, q1: q1 * self.sine, q2: q2 * self.sine }
     }
 
     /// Area and its first moment about the centroid, as the pieces give them.
@@ -130,17 +132,18 @@ fn wetted_strip<const N: usize>(
     (x * first, x * x * second)
 }
 
-/// The two integrals of a disc, the second about the line `centroid_m` up the slope.
+/// The integrals of a disc: the second about the line `centroid_m` up the slope, the third about
+/// the shape's lowest point.
 #[inline]
 fn wetted_disc<const N: usize>(
     &[low_m, radius_m, aspect, middle_m]: &[f32; PIECE_NUMBERS],
     centroid_m: f32,
     surface_m: Lane<N>,
-) -> (Lane<N>, Lane<N>) {
+) -> [Lane<N>; 3] {
     let d = surface_m - low_m;
     let apart = (d - radius_m).ramp().at_most(Lane::splat(middle_m));
     let a = (d - apart) / Lane::splat(radius_m);
-    let (m, m1) = unit(a);
+    let [m, m1, m2] = unit(a);
     let square = aspect * radius_m * radius_m;
     let cube = square * radius_m;
     let whole = m * cube;
@@ -148,8 +151,11 @@ fn wetted_disc<const N: usize>(
     // The upper half carries what the lower, covered, does not.
     let u = a - 1.0;
     let upper = u.positive_selects(m - u * FRAC_PI_2 - 2.0 / 3.0, Lane::ZERO) * cube;
+    let drawn = upper * middle_m;
     let second = m1 * (cube * radius_m) - apart * (cube * (2.0 / 3.0))
         + first * (low_m + radius_m - centroid_m)
-        + upper * middle_m;
-    (first, second)
+        + drawn;
+    let third =
+        m2 * (cube * radius_m) + apart * (cube * (FRAC_PI_2 - 2.0 / 3.0)) + first * low_m + drawn;
+    [first, second, third]
 }

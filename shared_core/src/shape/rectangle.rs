@@ -5,7 +5,8 @@
 //! surfaces):
 //!
 //! * `q0 = b x (y - x sin / 2)`,
-//! * `q1 = b x (y (x - l) / 2 - x sin (x / 3 - l / 4))`, about the level line at half length.
+//! * `q1 = b x (y (x - l) / 2 - x sin (x / 3 - l / 4))`, about the level line at half length,
+//! * `q2 = b x² (y / 2 - x sin / 3)`, about the lower side.
 
 use super::Wetted;
 use crate::lane::Lane;
@@ -53,6 +54,7 @@ impl Rectangle {
         let q0 = strip * (y_m - drop * 0.5);
         let lever =
             y_m * (x - self.length_m) * 0.5 - drop * (x * (1.0 / 3.0) - 0.25 * self.length_m);
-        Wetted { q0, q1: strip * lever }
+        let q2 = strip * x * (y_m * 0.5 - drop * (1.0 / 3.0));
+        Wetted { q0, q1: strip * lever, q2 }
     }
 }

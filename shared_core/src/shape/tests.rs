@@ -47,21 +47,26 @@ fn random_surface(random: &mut Random, rise_m: f32) -> f32 {
     surface as f32
 }
 
-/// Error of `q0` and `q1` over `integral (h - z) dA` and `integral (h - z) |s| dA`.
-fn errors(found: Wetted<1>, strips: &Strips, surface_m: f32, up_to_s: f64) -> [f64; 2] {
+/// Error of `q0`, `q1` and `q2` over `integral (h - z) dA`, `integral (h - z) |s| dA` and `q2`.
+fn errors(found: Wetted<1>, strips: &Strips, surface_m: f32, up_to_s: f64) -> [f64; 3] {
     let h = f64::from(surface_m);
     let surface_s = (h - strips.centroid_m) / strips.sine;
     let top = surface_s.clamp(-strips.half_m, up_to_s);
-    let over = |weight: fn(f64) -> f64| {
+    let over = |weight: &dyn Fn(f64) -> f64| {
         let depth = |z: f64, s: f64| (h - z) * weight(s);
         let middle = if top < 0.0 { top } else { 0.0 };
         strips.integral([-strips.half_m, middle], depth) + strips.integral([middle, top], depth)
     };
-    let [q0, q1, arm] = [over(|_| 1.0), over(|s| s), over(f64::abs)];
+    let up = |s: f64| s + strips.half_m;
+    let [q0, q1, arm, q2] = [over(&|_| 1.0), over(&|s| s), over(&f64::abs), over(&up)];
     let relative = |found: f32, exact: f64, scale: f64| {
         if scale <= 0.0 { f64::from(found).abs() } else { (f64::from(found) - exact).abs() / scale }
     };
-    [relative(found.q0.lane(0), q0, q0), relative(found.q1.lane(0), q1, arm)]
+    [
+        relative(found.q0.lane(0), q0, q0),
+        relative(found.q1.lane(0), q1, arm),
+        relative(found.q2.lane(0), q2, q2),
+    ]
 }
 
 proptest! {
@@ -74,7 +79,9 @@ proptest! {
         let surface_m = random_surface(&mut random, shape.rise_m());
         let found = Face::of(&shape, 0.0).wetted(Lane([surface_m]));
         let errors = errors(found, &strips, surface_m, strips.half_m);
-        prop_assert!(errors.iter().all(|&one| one <= 1e-6), "{errors:?} {surface_m} {shape:?}");
+        let [q0, q1, q2] = errors;
+        let kept = q0 <= 1e-6 && q1 <= 1e-6 && q2 <= 1.3e-6;
+        prop_assert!(kept, "{errors:?} {surface_m} {shape:?}");
     }
 
     #[test]
@@ -87,9 +94,14 @@ proptest! {
         let first = strips.integral([-strips.half_m, cut_s], |_, s| s);
         let cut = Cut::new(&Face::of(&shape, 0.0), cut_y as f32, area as f32, first as f32);
         let surface_m = random_surface(&mut random, shape.rise_m());
-        let found = cut.wetted(&Face::of(&shape, 0.0), Lane([surface_m]));
-        let errors = errors(found, &strips, surface_m, cut_s);
-        prop_assert!(errors.iter().all(|&one| one <= 2e-6), "{errors:?} {surface_m} {shape:?}");
+        let [q0, q2] = cut.wetted(&Face::of(&shape, 0.0), Lane([surface_m]));
+        let found = Wetted { q0, q1: Lane::ZERO, q2 };
+        let [of_q0, _, of_q2] = errors(found, &strips, surface_m, cut_s);
+        // The plan states the first moment about the centroid: carried to the foot of a small piece
+        // it keeps its rounding, which is small beside the piece's area times that way.
+        let carried = f64::from(q0.lane(0)) * strips.half_m;
+        let slack = 1.3e-6 + 1e-7 * carried / f64::from(q2.lane(0)).max(1e-30);
+        prop_assert!(of_q0 <= 2e-6 && of_q2 <= slack, "{of_q0} {of_q2} {surface_m} {shape:?}");
     }
 
     /// Eight surfaces at once, dry and deep ones among them, have the bits of each alone.
@@ -103,12 +115,15 @@ proptest! {
         let mut surfaces: [f32; 8] =
             core::array::from_fn(|_| random_surface(&mut random, shape.rise_m()));
         surfaces[0] = cut_y;
-        let together = [face.wetted(Lane(surfaces)), cut.wetted(&face, Lane(surfaces))];
+        let lanes = |whole: Wetted<8>| [whole.q0, whole.q1, whole.q2];
+        let [q0, q2] = cut.wetted(&face, Lane(surfaces));
+        let together = [lanes(face.wetted(Lane(surfaces))), [q0, q0, q2]];
         for (lane, surface_m) in surfaces.into_iter().enumerate() {
             let one = Lane([surface_m]);
-            let singly = [face.wetted(one), cut.wetted(&face, one)];
+            let (whole, [q0, q2]) = (face.wetted(one), cut.wetted(&face, one));
+            let singly = [[whole.q0, whole.q1, whole.q2], [q0, q0, q2]];
             for (many, alone) in together.into_iter().zip(singly) {
-                for (many, alone) in [(many.q0, alone.q0), (many.q1, alone.q1)] {
+                for (many, alone) in many.into_iter().zip(alone) {
                     let bits = [many.lane(lane), alone.lane(0)].map(|q| (q + 0.0).to_bits());
                     prop_assert_eq!(bits[0], bits[1]);
                 }
@@ -201,7 +216,7 @@ proptest! {
                 prop_assert!(error <= 1.5e-6, "{error:e}: {shape:?} at {surface_m}");
             }
         } else {
-            prop_assert_eq!(found, Wetted { q0: Lane::ZERO, q1: Lane::ZERO });
+            prop_assert_eq!(found, Wetted { q0: Lane::ZERO, q1: Lane::ZERO, q2: Lane::ZERO });
         }
     }
 }

@@ -123,7 +123,15 @@ pub struct PartStatus {
     pub alarms: [u8; 3],
     /// Its first loads.
     pub loads: [LoadValue; 4],
+    /// Zero of what is no opening; else [`PartStatus::OPENING`] and the reasons to keep it shut.
+    pub opening: u8,
 }
+
+impl PartStatus {
+    /// The part is an opening with a cover.
+    pub const OPENING: u8 = 0x80;
+}
+
 message!(
     PartStatus,
     PartStatus {
@@ -134,6 +142,7 @@ message!(
         inward_judged,
         alarms,
         loads,
+        opening,
     }
 );
 

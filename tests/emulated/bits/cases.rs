@@ -4,7 +4,7 @@ use std::error::Error;
 use std::fmt;
 
 use strake_core::alarm::FaultCause;
-use strake_core::part::Geometry;
+use strake_core::part::{Geometry, Held};
 use strake_core::plan::codec::decode;
 use strake_core::plan::{LevelSensor, Plan, Reference, SignalKind};
 use strake_core::shape::Shape;
@@ -85,6 +85,16 @@ impl Coverage {
         let inputs = || cases.iter().flat_map(|case| &case.inputs);
         let geometry =
             |holds: fn(&Geometry) -> bool| parts().filter(|p| holds(&p.geometry)).count();
+        let covers = || {
+            parts().filter_map(|part| match &part.geometry {
+                Geometry::Plane { cover: Some(cover), .. } => Some(cover.numbers()),
+                _ => None,
+            })
+        };
+        let held = |holds: fn(Held) -> bool| covers().filter(|one| holds(one.held)).count();
+        let weighing = |measured: bool| {
+            covers().filter(|c| c.weight_n != 0.0 && c.weight_is_measured == measured).count()
+        };
         let quality = |holds: fn(Quality) -> bool| {
             let of = |input: &&Input| matches!(input, Input::Sample(s) if holds(s.level.quality));
             inputs().filter(of).count()
@@ -111,8 +121,14 @@ impl Coverage {
             ("ellipses", geometry(|g| shape(g, is_ellipse))),
             ("pieces", geometry(|g| shape(g, |s| matches!(s, Shape::Pieces(_))))),
             ("level parts", geometry(|g| shape(g, |s| matches!(s, Shape::Level { .. })))),
-            ("bolts, even", geometry(|g| bolts(g) == Some(0))),
-            ("bolts, odd", geometry(|g| bolts(g) == Some(1))),
+            ("bolts, even", held(|h| matches!(h, Held::Bolts(n) if n % 2 == 0))),
+            ("bolts, odd", held(|h| matches!(h, Held::Bolts(n) if n % 2 == 1))),
+            ("hinge line or pivot", held(|h| h == Held::Line)),
+            ("hinge at the side", held(|h| h == Held::Side)),
+            ("covers held otherwise", held(|h| h == Held::Otherwise)),
+            ("weight, measured", weighing(true)),
+            ("weight, not measured", weighing(false)),
+            ("weightings with a cut", covers().filter(|c| c.weightings[0].cut.is_some()).count()),
             ("liquid outside", parts().filter(|part| part.outside != 0).count()),
             ("designed for", parts().filter(|part| !part.designed_for.is_empty()).count()),
             ("judged inward", parts().filter(|part| part.judged_inward()).count()),
@@ -166,12 +182,4 @@ fn shape(geometry: &Geometry, holds: fn(&Shape) -> bool) -> bool {
 
 fn is_ellipse(shape: &Shape) -> bool {
     matches!(shape, Shape::Circle(circle) if (circle.aspect() - 1.0).abs() > 0.0)
-}
-
-/// Remainder of the number of bolts by two.
-fn bolts(geometry: &Geometry) -> Option<u16> {
-    match geometry {
-        Geometry::Plane { bolts: Some(bolts), .. } => Some(bolts.pattern().count % 2),
-        _ => None,
-    }
 }

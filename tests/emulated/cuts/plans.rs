@@ -4,7 +4,7 @@
 use std::error::Error;
 
 use strake_core::liquid::{Band, Gas};
-use strake_core::part::{Capacities, Geometry, Part};
+use strake_core::part::{Capacities, Geometry, Part, Stated};
 use strake_core::plan::codec::{PLAN_BYTES_MAX, encode};
 use strake_core::plan::{
     AlarmPlan, LevelPlan, LevelSensor, LiquidPlan, LoggingPlan, Plan, PlanHeader, SignalKind,
@@ -50,7 +50,7 @@ fn plan(capacity_pa: f32) -> Plan {
         geometry,
         bottom_m,
         top_m,
-        outward: Capacities { pressure_pa: Some(capacity_pa), ..Capacities::default() },
+        outward: Capacities { pressure_pa: Stated::new(capacity_pa), ..Capacities::default() },
         inward: Capacities::default(),
         designed_for: heapless::Vec::new(),
         outside: 0,

@@ -4,6 +4,7 @@
 //! [`strake_core::plan::Plan::check`], with every kind of part, sensor, liquid and setting in
 //! them. They are made for comparing two machines, so numbers need not belong to a sensible tank.
 
+mod cover;
 mod liquid;
 mod part;
 mod plan;

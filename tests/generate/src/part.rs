@@ -1,8 +1,8 @@
 //! Parts of every kind, with capacities of the size of their loads.
 
+use crate::cover::{Outline, cover};
 use crate::{between, ratio, single};
-use std::f64::consts::{FRAC_PI_2, PI};
-use strake_core::part::{BoltPattern, Bolts, Capacities, DesignState, Geometry, Part};
+use strake_core::part::{Capacities, Cover, DesignState, Geometry, Held, Part, Stated};
 use strake_core::plan::NUMBERS_MAX;
 use strake_core::shape::{Circle, Face, Pieces, Rectangle, Shape};
 use strake_oracle::random::Random;
@@ -80,16 +80,15 @@ fn plane(random: &mut Random) -> (Geometry, f32) {
         (true, false) => Shape::Rectangle(Rectangle::new(a, b, sine)),
     };
     let is_ellipse = matches!(&shape, Shape::Circle(circle) if (circle.aspect() - 1.0).abs() > 0.0);
-    let bolts = (!is_ellipse && !random.one_in(3)).then(|| {
+    let cover = (!is_ellipse && !random.one_in(4)).then(|| {
         let outline = match shape {
             Shape::Circle(_) => Outline::Disc { radius_m: f64::from(a) },
             _ => Outline::Rectangle { width_m: f64::from(a), half_m: 0.5 * f64::from(b) },
         };
-        let pattern = bolts(random, outline, f64::from(sine));
-        Bolts::new(&pattern, &Face::of(&shape, 0.0))
+        cover(random, outline, &Face::of(&shape, 0.0), f64::from(sine))
     });
     let rise_m = shape.rise_m();
-    (Geometry::plane(shape, sine, bolts), rise_m)
+    (Geometry::plane(shape, sine, cover), rise_m)
 }
 
 /// One to six strips on top of each other and up to two discs anywhere beside them; one disc in
@@ -123,76 +122,32 @@ fn pieces(random: &mut Random, numbers: &mut Numbers) -> (Geometry, f32) {
     (Geometry::plane(shape, sine, None), shape.rise_m())
 }
 
-#[derive(Clone, Copy)]
-enum Outline {
-    Disc { radius_m: f64 },
-    Rectangle { width_m: f64, half_m: f64 },
-}
-
-/// Three to forty bolts on a circle, the lowest at the lowest point or two astride it. For an odd
-/// number only one end of the upright diameter has a bolt.
-fn bolts(random: &mut Random, outline: Outline, sine: f64) -> BoltPattern {
-    let count = 3 + u16::try_from(random.below(38)).unwrap_or(0);
-    let n = f64::from(count);
-    let first = if random.one_in(2) { 0.0 } else { PI / n };
-    let half_m = match outline {
-        Outline::Disc { radius_m } => radius_m,
-        Outline::Rectangle { half_m, .. } => half_m,
-    };
-    let circle_m = half_m * random.between(0.7, 1.3);
-    let heights = (0..count).map(|i| -(first + 2.0 * PI * f64::from(i) / n).cos() * circle_m);
-    let heights: Vec<f64> = heights.collect();
-    let squares: f64 = heights.iter().map(|s| s * s).sum();
-    let lowest = heights.iter().copied().fold(f64::INFINITY, f64::min);
-    let highest = heights.iter().copied().fold(f64::NEG_INFINITY, f64::max);
-    // Weighting (1 + s s_i n / sum s²) / n of bolt i: its zero.
-    let cut_at = |bolt_m: f64| cut(outline, sine, -squares / (n * bolt_m));
-    BoltPattern {
-        count,
-        per_moment: [single(lowest / squares), single(highest / squares)],
-        cuts: [cut_at(lowest), cut_at(highest)],
-    }
-}
-
-/// Height of a line `s_m` above the centroid, over the lowest point; area and its first moment
-/// below. None where the line misses the shape or the part is level.
-fn cut(outline: Outline, sine: f64, s_m: f64) -> Option<[f32; 3]> {
-    let (half_m, area_m2, static_m3) = match outline {
-        Outline::Disc { radius_m: r } if s_m.abs() < r => {
-            let t = s_m / r;
-            let chord = (1.0 - t * t).sqrt();
-            let area_m2 = r * r * (FRAC_PI_2 + t * chord + t.asin());
-            (r, area_m2, -2.0 / 3.0 * (r * chord).powi(3))
-        }
-        Outline::Rectangle { width_m, half_m } if s_m.abs() < half_m => {
-            (half_m, width_m * (s_m + half_m), 0.5 * width_m * (s_m * s_m - half_m * half_m))
-        }
-        _ => return None,
-    };
-    (sine > 0.0).then(|| [(s_m + half_m) * sine, area_m2, static_m3].map(single))
-}
-
 /// Outward and inward capacities, each stated or not, from a third of to three times the load of
 /// water to the top.
 fn capacities(random: &mut Random, geometry: &Geometry, around: Around) -> [Capacities; 2] {
     let head_pa = single(9806.65 * around.height_m);
-    let (tension, force, bolt) = match geometry {
+    let (tension, force, cover) = match geometry {
         Geometry::Course { half_diameter_m, .. } => (Some(head_pa * half_diameter_m), None, None),
-        Geometry::Plane { shape, bolts, .. } => {
-            let force = head_pa * shape.area_m2();
-            let per_bolt = |bolts: &Bolts| force / f32::from(bolts.pattern().count);
-            (None, Some(force), bolts.as_ref().map(per_bolt))
+        Geometry::Plane { shape, cover, .. } => {
+            (None, Some(head_pa * shape.area_m2()), cover.as_ref())
         }
+    };
+    let held = cover.map_or(Held::Otherwise, Cover::held);
+    let (bolt, moment) = match held {
+        Held::Otherwise => (None, None),
+        Held::Bolts(count) => (force.map(|n| n / f32::from(count)), None),
+        Held::Line | Held::Side => (force.map(|n| 0.5 * n), force),
     };
     let mut stated = |load: Option<f32>, one_in: u32| {
         let share = ratio(random, 0.3, 3.0);
-        load.filter(|_| random.one_in(one_in)).map(|load| load * share)
+        load.filter(|_| random.one_in(one_in)).and_then(|load| Stated::new(load * share))
     };
     [2, 4].map(|one_in| Capacities {
         pressure_pa: stated(Some(head_pa), one_in),
         hoop_tension_n_m: stated(tension, one_in),
         force_n: stated(force, one_in),
         bolt_n: stated(bolt, one_in),
+        moment_n_m: stated(moment, one_in),
     })
 }
 

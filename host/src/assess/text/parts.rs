@@ -1,5 +1,6 @@
 //! The table of loads, part by part.
 
+use super::secured::secured;
 use super::{Sheet, plate};
 use crate::assess::document::{Capacity, Loads, PartRow};
 use crate::page::{Page, WIDTH, wrap};
@@ -46,11 +47,8 @@ fn describe(sheet: &Sheet<'_>, stated: &Stated) -> String {
         }
         Stated::Panel(panel) => format!("{name}, {kind}: {}", surface(sheet, &panel.plane, &span)),
         Stated::Hatch(hatch) => {
-            let bolts = hatch.bolts.map_or_else(String::new, |bolts| {
-                let circle = show(bolts.value.circle_diameter_m);
-                format!(", {} bolts on {circle}", bolts.value.count)
-            });
-            format!("{name}, {kind}: {} to the gasket{bolts}", surface(sheet, &hatch.sealed, &span))
+            let held = secured(sheet, hatch);
+            format!("{name}, {kind}: {} to the gasket{held}", surface(sheet, &hatch.sealed, &span))
         }
     }
 }
@@ -111,6 +109,19 @@ fn part(sheet: &Sheet<'_>, page: &mut Page, stated: &Stated, row: &PartRow) {
     if row.loads.stress_pa.is_some() {
         put("bending stress, largest", three(|loads| loads.stress_pa, Pressure), "stress_pa");
     }
+    if row.loads.moment_n_m.is_some() {
+        let pivots = matches!(stated, Stated::Hatch(hatch) if hatch.pivots());
+        let (moment, line) = if pivots {
+            ("moment about pivot", "pivot")
+        } else {
+            ("moment about hinge", "hinge line")
+        };
+        put(moment, three(|loads| loads.moment_n_m, Moment), "moment_n_m");
+        if row.loads.latch_n.is_some() {
+            put("latch, largest share", three(|loads| loads.latch_n, Force), "latch_n");
+        }
+        pins(sheet, row, line, &mut put);
+    }
     let judged = &row.judgement;
     let used = [judged.utilisation, judged.utilisation_bound, judged.utilisation_inward];
     let used = used.map(|one| one.map_or_else(|| "-".to_owned(), |u| format!("{u:.3}")));
@@ -120,6 +131,26 @@ fn part(sheet: &Sheet<'_>, page: &mut Page, stated: &Stated, row: &PartRow) {
         put("thickness, this state", [thickness, String::new(), String::new()], "");
     }
     plate::lines(sheet, page, row);
+}
+
+/// A pin or hinge line in each line.
+fn pins(
+    sheet: &Sheet<'_>,
+    row: &PartRow,
+    line: &str,
+    put: &mut impl FnMut(&str, [String; 3], &str),
+) {
+    let states = [&row.loads, &row.loads_outward_bound, &row.loads_inward_bound];
+    let labels: &[&str] =
+        if row.loads.hinge_n.len() == 2 { &["lower pin", "upper pin"] } else { &[line] };
+    for (index, label) in labels.iter().enumerate() {
+        let cells = states.map(|loads| {
+            let pin = loads.hinge_n.get(index);
+            pin.map_or_else(|| "-".to_owned(), |value| sheet.load(*value, Force))
+        });
+        // The capacity stands beside the first.
+        put(label, cells, if index == 0 { "hinge_n" } else { "" });
+    }
 }
 
 /// A thickness rounded up: to 0.01 mm, or 0.001 in.
@@ -146,8 +177,8 @@ fn capacities(sheet: &Sheet<'_>, stated: &Stated, row: &PartRow, key: &str) -> V
         ("inward ", stated.capacity_inward(), &row.capacity_inward),
     ];
     for (side, ratings, values) in lists {
-        let stated = ratings.iter().filter(|rating| rating.basis.is_some());
-        for (rating, value) in stated.zip(values).filter(|(_, value)| value.load == key) {
+        for value in values.iter().filter(|value| value.load == key) {
+            let Some(rating) = ratings.get(value.place) else { continue };
             let text = format!("{side}{}", capacity(sheet, rating, value));
             lines.extend(wrap(&text, WIDTH - CAPACITY_AT));
         }
@@ -186,10 +217,19 @@ fn capacity(sheet: &Sheet<'_>, rating: &Rating, value: &Capacity) -> String {
             )
         }
         tank::Capacity::HoopTension { .. } => format!("{}, {basis}", shown(LineLoad)),
-        tank::Capacity::Bolt { .. } | tank::Capacity::Force { .. } => {
-            format!("{}, {basis}", shown(Force))
-        }
+        tank::Capacity::Bolt { .. }
+        | tank::Capacity::Latch { .. }
+        | tank::Capacity::Hinge { .. }
+        | tank::Capacity::Force { .. } => format!("{}, {basis}", shown(Force)),
+        tank::Capacity::Moment { .. } => format!("{}, {basis}", shown(Moment)),
         tank::Capacity::Pressure { .. } => format!("{}, {basis}", shown(Pressure)),
+        tank::Capacity::Cover(plate) => format!(
+            "{} of the cover {} thick, {}, C = {}, {basis}",
+            shown(Pressure),
+            sheet.show(plate.thickness_m.value, Length),
+            sheet.show(plate.allowable_stress_pa.value, Pressure),
+            plate.attachment_factor.value
+        ),
         tank::Capacity::None { .. } => String::new(),
     }
 }

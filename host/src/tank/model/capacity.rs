@@ -60,6 +60,23 @@ pub enum Capacity {
         /// Force on one bolt.
         n: f64,
     },
+    /// Force on the latch that carries most.
+    Latch {
+        /// Force on one latch.
+        n: f64,
+    },
+    /// Force on a pin, or on the whole hinge line or pivot where pins are not stated.
+    Hinge {
+        /// Force.
+        n: f64,
+    },
+    /// Moment about the hinge or pivot.
+    Moment {
+        /// Moment.
+        n_m: f64,
+    },
+    /// A flat circular cover by its thickness.
+    Cover(CoverPlate),
     /// Resulting force on the part.
     Force {
         /// Force.
@@ -86,6 +103,10 @@ impl Capacity {
             Self::HoopTension { .. } => "hoop_tension",
             Self::DesignedFor { .. } => "designed_for",
             Self::Bolt { .. } => "bolt",
+            Self::Latch { .. } => "latch",
+            Self::Hinge { .. } => "hinge",
+            Self::Moment { .. } => "moment",
+            Self::Cover(_) => "cover",
             Self::Force { .. } => "force",
             Self::Pressure { .. } => "pressure",
             Self::None { .. } => "none",
@@ -112,6 +133,23 @@ impl Capacity {
             _ => None,
         }
     }
+}
+
+/// The plate of a flat circular cover.
+#[derive(Clone, Debug, PartialEq)]
+pub struct CoverPlate {
+    /// Thickness now, as measured or drawn.
+    pub thickness_m: Located<f64>,
+    /// Part of it that is kept for corrosion; none when not stated.
+    pub corrosion_allowance_m: Option<Located<f64>>,
+    /// Allowable stress of the plate.
+    pub allowable_stress_pa: Located<f64>,
+    /// Strength of a seam in the cover as a share of that of the plate; one piece when not stated.
+    pub joint_efficiency: Option<Located<f64>>,
+    /// The factor C of the rule, for the way in which the cover is attached.
+    pub attachment_factor: Located<f64>,
+    /// Force of all bolts where it exceeds that of the liquid, as in seating a gasket.
+    pub bolt_load_n: Option<Located<f64>>,
 }
 
 /// Where a capacity comes from.

@@ -7,19 +7,18 @@ mod liquid;
 mod outline;
 mod part;
 mod plate;
+mod secured;
 mod service;
 mod signal;
 mod vessel;
 
-pub use capacity::{Basis, BasisKind, Capacity, Rating};
+pub use capacity::{Basis, BasisKind, Capacity, CoverPlate, Rating};
 pub use liquid::{Layer, Liquid, Thermal};
 pub use outline::{CORNERS_MAX, Corners, Disc, Pieces, Shape, Strip};
 pub(in crate::tank) use part::sine;
-pub use part::{
-    Bolts, Course, DesignPoint, FirstBolt, Hatch, Heights, Hole, Opens, Panel, Part, PartKind,
-    Plane,
-};
+pub use part::{Course, DesignPoint, Hatch, Heights, Hole, Opens, Panel, Part, PartKind, Plane};
 pub use plate::{Elastic, PanelPlate, outline};
+pub use secured::{Axis, BoltLine, Bolts, CoverMass, FirstBolt, Hinged, Latch, Secured};
 pub use service::{Alarms, Cell, Logging, Power, SensorSupply, Threshold};
 pub use signal::{
     Count, LevelSensor, Modbus, PressureReference, Sensing, Signal, TemperatureSignal,

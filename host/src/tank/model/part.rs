@@ -2,6 +2,7 @@
 
 use super::capacity::Rating;
 use super::outline::{Pieces, Shape};
+use super::secured::{Axis, CoverMass, Secured};
 use crate::tank::finding::{Located, Span};
 
 /// One part.
@@ -293,14 +294,34 @@ pub struct Hatch {
     pub placed_at: Span,
     /// To which side it opens.
     pub opens: Located<Opens>,
-    /// The bolts that hold it, when stated.
-    pub bolts: Option<Located<Bolts>>,
+    /// What holds it, when stated.
+    pub secured: Option<Located<Secured>>,
+    /// Its mass, when stated.
+    pub mass: Option<Located<CoverMass>>,
     /// What it may carry outwards.
     pub capacity: Vec<Rating>,
     /// What it may carry inwards.
     pub capacity_inward: Vec<Rating>,
     /// Where it begins in the file.
     pub span: Span,
+}
+
+impl Hatch {
+    /// Whether an outward load (or an inward one) presses the cover on its seat, so that what
+    /// secures it carries nothing. A cover on a pivot has one half on either side.
+    #[must_use]
+    pub fn seats(&self, outward: bool) -> bool {
+        !self.pivots() && (self.opens.value == Opens::Inward) == outward
+    }
+
+    /// Whether it turns about a line across the opening.
+    #[must_use]
+    pub fn pivots(&self) -> bool {
+        match self.secured.as_ref().map(|secured| &secured.value) {
+            Some(Secured::Hinged(hinged)) => matches!(hinged.axis, Axis::Pivot { .. }),
+            _ => false,
+        }
+    }
 }
 
 /// To which side a cover opens.
@@ -310,24 +331,4 @@ pub enum Opens {
     Outward,
     /// Into the liquid: an outward load presses it on its seat.
     Inward,
-}
-
-/// Bolts on a circle, concentric with the cover.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Bolts {
-    /// Number of bolts, 3 at least.
-    pub count: u32,
-    /// Diameter of the circle through their axes.
-    pub circle_diameter_m: f64,
-    /// Where the first one stands.
-    pub first: FirstBolt,
-}
-
-/// Where the first bolt of a circle stands.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum FirstBolt {
-    /// At the lowest point.
-    Lowest,
-    /// Half a pitch beside the lowest point.
-    Astride,
 }

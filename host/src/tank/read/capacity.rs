@@ -4,8 +4,10 @@ use super::field::{Range, field};
 use super::plate;
 use super::section::{Section, shorten};
 use crate::tank::finding::{Code, Located, Span};
-use crate::tank::model::{Basis, BasisKind, Capacity, Opens, PartKind, Rating};
-use crate::units::Quantity::{Density, Force, Length, LineLoad, Pressure};
+use crate::tank::model::{
+    Axis, Basis, BasisKind, Capacity, CoverPlate, Opens, PartKind, Rating, Secured,
+};
+use crate::units::Quantity::{Density, Force, Length, LineLoad, Moment, Pressure};
 
 /// Every capacity that a file may name, also those for a later version.
 const KINDS: [&str; 11] = [
@@ -28,14 +30,57 @@ pub(super) struct Bearer {
     pub(super) kind: PartKind,
     /// To which side a hatch opens, when that could be read.
     pub(super) opens: Option<Opens>,
-    /// Whether `secured` stands.
-    pub(super) bolted: bool,
+    /// What holds a cover.
+    pub(super) holding: Holding,
+}
+
+/// What holds a cover, as far as it decides which capacities mean something.
+#[derive(Clone, Copy, PartialEq, Eq)]
+pub(super) enum Holding {
+    /// Not stated.
+    Nothing,
+    /// Stated and not readable: nothing is concluded.
+    Unreadable,
+    /// Bolts.
+    Bolts,
+    /// A hinge beside the opening, and latches.
+    Hinge,
+    /// A pivot across the opening.
+    Pivot {
+        /// Whether it has latches.
+        latched: bool,
+    },
+}
+
+impl Holding {
+    pub(super) fn of(secured: Option<&Secured>, stated: bool) -> Self {
+        match secured {
+            None if stated => Self::Unreadable,
+            None => Self::Nothing,
+            Some(Secured::Bolts(_)) => Self::Bolts,
+            Some(Secured::Hinged(hinged)) => match hinged.axis {
+                Axis::Pivot { .. } => Self::Pivot { latched: !hinged.latches.is_empty() },
+                _ => Self::Hinge,
+            },
+        }
+    }
+
+    /// Whether a capacity of this key has something to be compared with.
+    fn has(self, key: &str) -> bool {
+        match self {
+            Self::Unreadable => true,
+            Self::Nothing => false,
+            Self::Bolts => key == "bolt",
+            Self::Hinge => key != "bolt",
+            Self::Pivot { latched } => key != "bolt" && (latched || key != "latch"),
+        }
+    }
 }
 
 impl Bearer {
     /// A part without a cover.
     pub(super) const fn plain(kind: PartKind) -> Self {
-        Self { kind, opens: None, bolted: false }
+        Self { kind, opens: None, holding: Holding::Nothing }
     }
 }
 
@@ -156,8 +201,20 @@ fn offered(bearer: Bearer, inward: bool) -> &'static [&'static str] {
         (PartKind::Course, true) => &["pressure", "none"],
         (PartKind::Panel, false) => &["plate", "force", "pressure", "designed_for", "none"],
         (PartKind::Panel, true) => &["force", "pressure", "none"],
-        (PartKind::Hatch, false) => &["bolt", "force", "pressure", "designed_for", "none"],
-        (PartKind::Hatch, true) => &["bolt", "force", "pressure", "none"],
+        (PartKind::Hatch, false) => &[
+            "bolt",
+            "latch",
+            "hinge",
+            "force",
+            "moment",
+            "pressure",
+            "cover",
+            "designed_for",
+            "none",
+        ],
+        (PartKind::Hatch, true) => {
+            &["bolt", "latch", "hinge", "force", "moment", "pressure", "cover", "none"]
+        }
     }
 }
 
@@ -166,31 +223,41 @@ fn may_have(entry: &Section<'_>, key: &str, span: Span, bearer: Bearer, inward: 
     let part = bearer.kind.as_str();
     let offered = offered(bearer, inward);
     let hint = format!("a {part} may have {} here", offered.join(", "));
-    let later = match bearer.kind {
-        PartKind::Course | PartKind::Panel => false,
-        PartKind::Hatch => ["latch", "hinge", "moment", "cover"].contains(&key),
-    };
-    if later {
-        let message = format!("capacity `{key}` of a {part} is not offered by this version");
-        entry.report(Code::NotOffered, span, message, hint);
-        return false;
-    }
     if !offered.contains(&key) {
         let side = if inward { "inward" } else { "outward" };
         let message = format!("capacity `{key}` means nothing for the {side} load of a {part}");
         entry.report(Code::CapacityKind, span, message, hint);
         return false;
     }
-    key != "bolt" || bolts_carry(entry, span, bearer, inward)
+    !["bolt", "latch", "hinge", "moment"].contains(&key) || held(entry, key, span, bearer, inward)
 }
 
-/// Bolts carry only the load that pulls the cover off its seat.
-fn bolts_carry(entry: &Section<'_>, span: Span, bearer: Bearer, inward: bool) -> bool {
-    if !bearer.bolted {
-        let message = "capacity `bolt` needs the bolts of the cover";
-        let hint = "write secured = { bolts = 28, bolt_circle_diameter = \"0.77 m\" } in the hatch";
+/// What secures a cover carries only the load that pulls it off its seat. Pins of a hinge may be
+/// pulled one way by a load the other way.
+fn held(entry: &Section<'_>, key: &str, span: Span, bearer: Bearer, inward: bool) -> bool {
+    if !bearer.holding.has(key) {
+        let (needs, hint) = match key {
+            "bolt" => (
+                "the bolts of the cover",
+                "write secured = { bolts = 28, bolt_circle_diameter = \"0.77 m\" } in the hatch",
+            ),
+            "latch" => (
+                "a latch of the cover",
+                "write secured = { hinge = \"top\", offset = \"80 mm\", latch_at = \"0.70 m\" } in \
+                 the hatch",
+            ),
+            _ => (
+                "a hinge or pivot of the cover",
+                "write secured = { hinge = \"top\", offset = \"80 mm\", latch_at = \"0.70 m\" } in \
+                 the hatch",
+            ),
+        };
+        let message = format!("capacity `{key}` needs {needs}");
         entry.report(Code::MissingKey, span, message, hint);
         return false;
+    }
+    if key == "hinge" || matches!(bearer.holding, Holding::Pivot { .. }) {
+        return true;
     }
     let on_seat = match bearer.opens {
         Some(Opens::Outward) => inward,
@@ -200,7 +267,7 @@ fn bolts_carry(entry: &Section<'_>, span: Span, bearer: Bearer, inward: bool) ->
     if on_seat {
         let (load, side) = if inward { ("inward", "outward") } else { ("outward", "inward") };
         let message = format!("an {load} load presses a cover that opens {side} on its seat");
-        let hint = "its bolts carry nothing of it: rate the cover by force or pressure";
+        let hint = "what secures it carries nothing of it: rate the cover by force or pressure";
         entry.report(Code::CapacityKind, span, message, hint);
     }
     !on_seat
@@ -218,6 +285,12 @@ fn capacity(
     match kind {
         "hoop_tension" => single(LineLoad, "\"419 kN/m\"").map(|n_m| Capacity::HoopTension { n_m }),
         "bolt" => single(Force, "\"18 kN\", on one bolt").map(|n| Capacity::Bolt { n }),
+        "latch" => single(Force, "\"6 kN\", on one latch").map(|n| Capacity::Latch { n }),
+        "hinge" => single(Force, "\"8 kN\", on one pin").map(|n| Capacity::Hinge { n }),
+        "moment" => {
+            single(Moment, "\"4 kN m\", about the hinge").map(|n_m| Capacity::Moment { n_m })
+        }
+        "cover" => cover(entry).map(Capacity::Cover),
         "force" => single(Force, "\"20 kN\", on the whole part").map(|n| Capacity::Force { n }),
         "pressure" => single(Pressure, "\"60 kPa\"").map(|pa| Capacity::Pressure { pa }),
         "plate" if part == PartKind::Panel => plate::panel(entry).map(Capacity::Panel),
@@ -273,6 +346,64 @@ fn course_plate(entry: &mut Section<'_>) -> Option<Capacity> {
         corrosion_allowance_m,
         allowable_stress_pa: stress?,
         joint_efficiency: joint?,
+    })
+}
+
+fn cover(entry: &mut Section<'_>) -> Option<CoverPlate> {
+    const WRITE: &str = "{ thickness = \"14 mm\", allowable_stress = \"137 MPa\", \
+                         attachment_factor = 0.3 }";
+    let mut cover = entry.table("cover", WRITE)?;
+    let thickness = cover.need(field(
+        "thickness",
+        Length,
+        Range::above(0.0, 0.5),
+        "\"14 mm\", as measured or drawn",
+    ));
+    let allowance_stated = cover.item("corrosion_allowance").is_some();
+    let allowance = cover.take(field(
+        "corrosion_allowance",
+        Length,
+        Range::NOT_NEGATIVE,
+        "\"1 mm\", kept for corrosion",
+    ));
+    let stress = cover.need(field(
+        "allowable_stress",
+        Pressure,
+        Range::POSITIVE,
+        "\"137 MPa\", of the plate, by the design code",
+    ));
+    let joint_stated = cover.item("joint_efficiency").is_some();
+    let joint = cover.take_ratio("joint_efficiency", Range::SHARE, "0.85, of a seam in the cover");
+    let factor = cover.need_ratio(
+        "attachment_factor",
+        Range::between(0.1, 0.75),
+        "0.3, the rule's factor C for the way in which the cover is attached",
+    );
+    let load_stated = cover.item("bolt_load").is_some();
+    let write = "\"390 kN\", of all bolts, where it exceeds the load of the liquid";
+    let load = cover.take(field("bolt_load", Force, Range::POSITIVE, write));
+    cover.finish();
+    let unread = |stated: bool, value: Option<Located<f64>>| stated && value.is_none();
+    if unread(allowance_stated, allowance)
+        || unread(joint_stated, joint)
+        || unread(load_stated, load)
+    {
+        return None;
+    }
+    let thickness_m = thickness?;
+    if let Some(allowance) = allowance.filter(|one| one.value >= thickness_m.value) {
+        let message = "`corrosion_allowance` takes the whole thickness, nothing is left to carry";
+        let hint = "give the thickness as measured, and the allowance that is kept of it";
+        entry.report(Code::NoStrength, allowance.span, message, hint);
+        return None;
+    }
+    Some(CoverPlate {
+        thickness_m,
+        corrosion_allowance_m: allowance,
+        allowable_stress_pa: stress?,
+        joint_efficiency: joint,
+        attachment_factor: factor?,
+        bolt_load_n: load,
     })
 }
 

@@ -1,16 +1,15 @@
 //! `[[course]]`, `[[panel]]` and `[[hatch]]`.
 
-use super::capacity::{self, Bearer};
+use super::capacity::{self, Bearer, Holding};
 use super::field::{Range, field};
 use super::section::Section;
 use super::secured;
 use super::shape::{self, Cut, Placed};
 use crate::tank::finding::{Code, Located};
 use crate::tank::model::{
-    Bolts, Course, DesignPoint, Hatch, Heights, Opens, Panel, Part, PartKind, Plane, Shape,
+    Course, DesignPoint, Hatch, Heights, Opens, Panel, Part, PartKind, Plane, Shape,
 };
 use crate::units::Quantity::{Length, Speed};
-use crate::units::format_si;
 
 /// The parts in the order of the file.
 pub(super) struct Parts {
@@ -160,16 +159,22 @@ fn hatch(mut section: Section<'_>, name: Option<Located<String>>) -> Option<Hatc
         &OPENS,
         "\"outward\", or \"inward\" when the liquid presses the cover on its seat",
     );
-    section.refuse("cover_mass", "leave it out: the weight of a cover then relieves nothing");
-    let bolts_stated = section.item("secured").is_some();
-    let bolts = secured::bolts(&mut section);
-    let bearer =
-        Bearer { kind: PartKind::Hatch, opens: opens.map(|o| o.value), bolted: bolts_stated };
+    let mass = secured::cover_mass(&mut section);
+    let secured_stated = section.item("secured").is_some();
+    let secured = secured::secured(&mut section);
+    let holding = Holding::of(secured.as_ref().map(|secured| &secured.value), secured_stated);
+    let bearer = Bearer { kind: PartKind::Hatch, opens: opens.map(|o| o.value), holding };
     let ratings = capacity::both(&mut section, bearer);
-    gasket_and_bolts(&section, shape.as_ref(), sealed.as_ref(), bolts);
+    gasket(&section, shape.as_ref(), sealed.as_ref());
+    let works = match (&secured, &placed, &sealed) {
+        (Some(secured), Some(placed), Some(sealed)) => {
+            secured::works(&section, secured, &placed.plane, sealed)
+        }
+        _ => true,
+    };
     let span = section.span;
     section.finish();
-    if bolts_stated && bolts.is_none() {
+    if !works || (secured_stated && secured.is_none()) {
         return None;
     }
     let (Placed { plane, placed_at }, (capacity, capacity_inward)) = (placed?, ratings?);
@@ -180,20 +185,16 @@ fn hatch(mut section: Section<'_>, name: Option<Located<String>>) -> Option<Hatc
         sealed,
         placed_at,
         opens: opens?,
-        bolts,
+        secured,
+        mass: mass?,
         capacity,
         capacity_inward,
         span,
     })
 }
 
-/// The gasket encloses the opening, the bolts stand outside it.
-fn gasket_and_bolts(
-    section: &Section<'_>,
-    shape: Option<&Located<Shape>>,
-    sealed: Option<&Located<Shape>>,
-    bolts: Option<Located<Bolts>>,
-) {
+/// The gasket encloses the opening.
+fn gasket(section: &Section<'_>, shape: Option<&Located<Shape>>, sealed: Option<&Located<Shape>>) {
     let Some(shape) = shape else { return };
     if let Some(sealed) = sealed.filter(|sealed| !sealed.value.encloses(&shape.value)) {
         let message = format!(
@@ -204,27 +205,5 @@ fn gasket_and_bolts(
         );
         let hint = "give the mean line of the gasket; it runs around the clear opening";
         section.report(Code::GasketInside, sealed.span, message, hint);
-    }
-    let Some(bolts) = bolts else { return };
-    if let Some(sealed) = sealed.filter(|sealed| !sealed.value.has_a_middle()) {
-        let message = format!(
-            "bolts on a circle hold `{}` in {} unevenly: their middle is not that of the cover",
-            sealed.value.word(),
-            section.place
-        );
-        let hint = "rate the cover by force or pressure, or describe the circle, ellipse, obround \
-                    or rectangle that encloses it";
-        section.report(Code::BoltCircle, sealed.span, message, hint);
-    }
-    let circle = Shape::Circle { diameter_m: bolts.value.circle_diameter_m };
-    if !circle.encloses(&shape.value) {
-        let message = format!(
-            "`bolt_circle_diameter` in {} is {}: the bolts would stand in the opening, {}",
-            section.place,
-            format_si(bolts.value.circle_diameter_m, Length),
-            shape::describe(&shape.value)
-        );
-        let hint = "give the diameter of the circle through the axes of the bolts";
-        section.report(Code::BoltCircle, bolts.span, message, hint);
     }
 }

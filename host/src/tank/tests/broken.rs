@@ -84,12 +84,7 @@ fn keys_of_later_versions_are_refused_by_name() {
     let vessel = "cylinder   = { diameter = \"8.0 m\", height = \"9.6 m\" }";
     let dished = "lying = { diameter = \"8 m\", length = \"9 m\", heads = \"dished\" }";
     later(vessel, dished, "`dished`, only flat ones are offered");
-    later("opens     = \"outward\"", "opens = \"outward\"\ncover_mass = \"9 kg\"", "`cover_mass`");
     later("[alarm]", "[[curved]]\nname = \"cone\"\n[alarm]", "curved parts are not offered");
-    for kind in ["latch", "hinge", "moment", "cover"] {
-        let to = format!("{{ {kind} = \"1 kN\"");
-        later("{ force = \"60 kN\"", &to, &format!("capacity `{kind}` of a hatch is not offered"));
-    }
 }
 
 #[test]

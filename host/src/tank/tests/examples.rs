@@ -2,8 +2,8 @@
 
 use super::{configs, tank_files};
 use crate::tank::{
-    BasisKind, Capacity, FirstBolt, Gas, Gravity, Opens, Part, Sensing, Shape, Signal, TankFile,
-    Thermal, Vessel, normal_gravity_m_s2, parse,
+    BasisKind, Capacity, FirstBolt, Gas, Gravity, Hatch, Opens, Part, Secured, Sensing, Shape,
+    Signal, TankFile, Thermal, Vessel, normal_gravity_m_s2, parse,
 };
 
 fn example(name: &str) -> TankFile {
@@ -74,12 +74,15 @@ fn a_hatch_is_loaded_inside_its_gasket() {
     assert!(near(hatch.sealed.heights.bottom_m, 0.52));
     assert!(near(hatch.sealed.heights.top_m, 1.18));
     assert_eq!(hatch.opens.value, Opens::Outward);
-    let bolts = hatch.bolts.unwrap().value;
-    assert_eq!((bolts.count, bolts.first), (28, FirstBolt::Lowest));
+    let bolts = |hatch: &Hatch| match hatch.secured.as_ref().map(|one| &one.value) {
+        Some(Secured::Bolts(bolts)) => (bolts.count, bolts.first),
+        other => panic!("{other:?}"),
+    };
+    assert_eq!(bolts(hatch), (28, FirstBolt::Lowest));
     let Some(Part::Hatch(roof)) = file.part("roof hatch") else { panic!("no hatch") };
     assert!(roof.sealed.is_level());
     assert!(near(roof.sealed.heights.bottom_m, 9.6) && near(roof.sealed.heights.top_m, 9.6));
-    assert_eq!(roof.bolts.unwrap().value.first, FirstBolt::Astride);
+    assert_eq!(bolts(roof).1, FirstBolt::Astride);
     assert!(matches!(&roof.capacity[1].capacity.value, Capacity::None { .. }));
 }
 

@@ -3,7 +3,7 @@
 use super::{Digest, fold};
 use crate::lane::Lane;
 use crate::part::{Loads, Part, PartLoads};
-use crate::plan::builder::{bolted_disc, course, disc};
+use crate::plan::builder::{bolted_disc, course, disc, hinged_disc};
 
 fn loads(first: f32) -> Loads<1> {
     let mut next = first;
@@ -17,6 +17,7 @@ fn loads(first: f32) -> Loads<1> {
         force_n: number(),
         moment_centroid_n_m: number(),
         bolt_n: number(),
+        moment_n_m: number(),
     }
 }
 
@@ -57,6 +58,8 @@ const PLANE: [Field; 7] = [
 ];
 const BOLTS: [Field; 3] =
     [|l| &mut l.estimate.bolt_n, |l| &mut l.outward.bolt_n, |l| &mut l.inward.bolt_n];
+const MOMENT: [Field; 3] =
+    [|l| &mut l.estimate.moment_n_m, |l| &mut l.outward.moment_n_m, |l| &mut l.inward.moment_n_m];
 const EVERY: [Field; 3] =
     [|l| &mut l.utilisation, |l| &mut l.utilisation_bound, |l| &mut l.utilisation_inward];
 
@@ -77,6 +80,7 @@ fn every_bit_of_every_result_counts() {
     sees_every_bit(&course(0.0, 2.4, 4.0, 0.3), &[&COURSE, &EVERY]);
     sees_every_bit(&disc(0.5, 0.3, 1.0), &[&PLANE, &EVERY]);
     sees_every_bit(&bolted_disc(0.5, 0.3, 1.0, 8, 0.35), &[&PLANE, &BOLTS, &EVERY]);
+    sees_every_bit(&hinged_disc(0.5, 0.3, 1.0), &[&PLANE, &BOLTS, &MOMENT, &EVERY]);
 }
 
 #[test]

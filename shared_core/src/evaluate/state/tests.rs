@@ -5,6 +5,7 @@ use crate::alarm::{AlarmState, FaultCause, MachineId, Threshold};
 use crate::evaluate::step;
 use crate::journal::entry::Sample;
 use crate::liquid::truth::Random;
+use crate::part::Stated;
 use crate::plan::Plan;
 use crate::plan::builder::{random, reads, water_tank};
 use crate::signal::{Channel, SensorError};
@@ -142,7 +143,7 @@ fn the_largest_state_fits() {
 /// The alarm latches; the pressure is in the tank for the first sample only.
 fn latched() -> (Plan, State, MachineId, MachineId) {
     let mut plan = water_tank();
-    plan.parts[0].outward.hoop_tension_n_m = Some(200_000.0);
+    plan.parts[0].outward.hoop_tension_n_m = Stated::new(200_000.0);
     let mut state = State::default();
     step(&plan, &mut state, &reads(&plan, 10_000, 8.0), |_| {});
     step(&plan, &mut state, &reads(&plan, 20_000, 1.0), |_| {});

@@ -6,7 +6,7 @@ use crate::evaluate::pressures;
 use crate::lane::at_most;
 use crate::liquid::truth::{Profile, Random, Strips};
 use crate::liquid::{Outside, States};
-use crate::part::{Bolts, Capacities, DesignState, Geometry, Part};
+use crate::part::{Capacities, Cover, DesignState, Geometry, Part, Stated};
 use crate::plan::builder::{
     G, GAUGE, band, bolted_disc, course, disc, exact, gas, head_sensor, level_cover, random,
     reading, rectangle, water_tank, with_inward_alarm,
@@ -201,7 +201,7 @@ proptest! {
             prop_assert!(inward_only.utilisation_bound.lane(0) <= 0.0);
             prop_assert_eq!(inward_only.utilisation_inward, loads.utilisation_inward);
             let plane = matches!(part.geometry, Geometry::Plane { .. });
-            if let Some(capacity) = part.inward.force_n.filter(|_| plane) {
+            if let Some(capacity) = part.inward.force_n.filter(|_| plane).map(Stated::get) {
                 let least = -loads.inward.force_n.lane(0) / capacity;
                 prop_assert!(loads.utilisation_inward.lane(0) >= at_most(least, 999.0));
             }
@@ -286,8 +286,8 @@ fn a_flooded_bund_presses_inwards() {
     plan.liquid.top = exact(900.0);
     let mut wall = rectangle(0.0, 1.0, 1.2, 1.0);
     wall.outside = 1;
-    wall.inward.pressure_pa = Some(10_000.0);
-    wall.outward.pressure_pa = Some(100.0);
+    wall.inward.pressure_pa = Stated::new(10_000.0);
+    wall.outward.pressure_pa = Stated::new(100.0);
     let loads = of(&plan, &wall, 0.5);
     near(loads.inward.force_n.lane(0), -5_958.0, 1.0);
     near(loads.inward.pressure_pa.lane(0), -7_355.0, 1.0);
@@ -295,7 +295,7 @@ fn a_flooded_bund_presses_inwards() {
     // Outwards nothing is relieved, and nothing inward is judged by the outward capacity.
     near(loads.utilisation_bound.lane(0), 900.0 * 0.5 * G / 100.0, 1e-2);
     wall.outward.pressure_pa = None;
-    wall.outward.force_n = Some(1.0);
+    wall.outward.force_n = Stated::new(1.0);
     let mut empty = flooded(1.2, 1.2, 1000.0);
     empty.liquid.top = exact(900.0);
     near(of(&empty, &wall, 0.5).utilisation_bound.lane(0), 0.0, 0.0);
@@ -308,7 +308,7 @@ fn inward_hoop_is_judged_over_the_whole_course() {
     let mut plan = with_inward_alarm(water_tank());
     plan.gas = gas(-1_500.0, 0.0, 0.0);
     let mut part = course(0.0, 2.4, 4.0, 0.3);
-    part.inward.hoop_tension_n_m = Some(10_000.0);
+    part.inward.hoop_tension_n_m = Stated::new(10_000.0);
     near(of(&plan, &part, 1.0).utilisation_inward.lane(0), 0.6, 1e-5);
     near(
         of(&plan, &part, 1.0).inward.hoop_tension_n_m.lane(0),
@@ -316,7 +316,7 @@ fn inward_hoop_is_judged_over_the_whole_course() {
         0.1,
     );
     // A pressure stated for the course holds for all of it.
-    part.outward.pressure_pa = Some(20_000.0);
+    part.outward.pressure_pa = Stated::new(20_000.0);
     near(of(&plan, &part, 1.0).utilisation.lane(0), 1000.0 * G / 20_000.0, 1e-5);
 }
 
@@ -325,7 +325,7 @@ fn inward_hoop_is_judged_over_the_whole_course() {
 fn bolts_of_a_round_hatch_by_hand() {
     let plan = water_tank();
     let mut part = bolted_disc(0.52, 0.33, 1.0, 28, 0.385);
-    part.outward.bolt_n = Some(18_000.0);
+    part.outward.bolt_n = Stated::new(18_000.0);
     let loads = of(&plan, &part, 9.0);
     // Covered: F = rho g h_c A, Mc = -rho g pi r⁴ / 4 (inertia of a disc).
     let weight = 1000.0 * G;
@@ -338,14 +338,14 @@ fn bolts_of_a_round_hatch_by_hand() {
     // Exact inputs: the least share is that of the highest bolt.
     let highest = force / 28.0 + moment * 0.385 / (14.0 * 0.385 * 0.385);
     near(loads.inward.bolt_n.lane(0), highest, 0.01);
-    let Geometry::Plane { bolts: Some(bolts), shape, .. } = &part.geometry else { unreachable!() };
-    assert_eq!(Bolts::new(&bolts.pattern(), &Face::of(shape, 0.0)), *bolts);
+    let Geometry::Plane { cover: Some(cover), shape, .. } = &part.geometry else { unreachable!() };
+    assert_eq!(Cover::new(&cover.numbers(), &Face::of(shape, 0.0)), *cover);
 }
 
 #[test]
 fn utilisations_end_at_their_cap() {
     let plan = water_tank();
     let mut part = disc(0.5, 0.3, 1.0);
-    part.outward.force_n = Some(0.001);
+    part.outward.force_n = Stated::new(0.001);
     near(of(&plan, &part, 9.0).utilisation_bound.lane(0), 999.0, 0.0);
 }

@@ -7,7 +7,7 @@ use super::{
 };
 use crate::liquid::truth::Random;
 use crate::liquid::{Band, DensityTable, Outside};
-use crate::part::{Capacities, DesignState, Geometry, Part};
+use crate::part::{Capacities, DesignState, Geometry, Part, Stated};
 use crate::plan::{Plan, Reference, TemperaturePlan};
 
 fn random_band(random: &mut Random, least: f64) -> Band {
@@ -116,16 +116,19 @@ fn part(random: &mut Random) -> Part {
         }
     };
     let mut capacities = || {
-        let mut some =
-            |scale: f64| (random.below(2) == 0).then(|| random.between(scale, 20.0 * scale) as f32);
+        let mut some = |scale: f64| {
+            (random.below(2) == 0)
+                .then(|| random.between(scale, 20.0 * scale) as f32)
+                .and_then(Stated::new)
+        };
         let (pressure_pa, force_n) = (some(5.0e3), some(2.0e3));
         let (hoop_tension_n_m, bolt_n) = (some(4.0e4), some(300.0));
         match &part.geometry {
             Geometry::Course { .. } => {
                 Capacities { pressure_pa, hoop_tension_n_m, ..Capacities::default() }
             }
-            Geometry::Plane { bolts, .. } => {
-                let bolt_n = if bolts.is_some() { bolt_n } else { None };
+            Geometry::Plane { cover, .. } => {
+                let bolt_n = if cover.is_some() { bolt_n } else { None };
                 Capacities { pressure_pa, force_n, bolt_n, ..Capacities::default() }
             }
         }

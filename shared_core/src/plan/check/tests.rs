@@ -11,7 +11,10 @@ use super::PlanError as E;
 use crate::evaluate::loads;
 use crate::liquid::truth::Random;
 use crate::liquid::{DensityTable, Outside};
-use crate::part::{BoltPattern, Bolts, DesignState, Geometry, PartLoads};
+use crate::part::{
+    BoltPattern, Cover, CoverNumbers, DesignState, Geometry, Held, PartLoads, Stated,
+    WeightingNumbers,
+};
 use crate::plan::builder::{
     GAUGE, band, bolted_disc, bolted_rectangle, course, disc, ellipse, exact, gas, head_sensor,
     layer, level_cover, plane, push_pieces, reads, rectangle, water_tank, with_inward_alarm,
@@ -105,7 +108,7 @@ fn sensor_alarm_and_logging() {
     broken(E::Alarm, |p| p.alarm.alarm.off_delay_ms = u32::MAX);
     broken(E::Alarm, |p| p.alarm.sounds_again_after_ms = 0);
     broken(E::Alarm, |p| p.alarm.response_time_ms = u32::MAX);
-    broken(E::Alarm, |p| p.parts[0].inward.pressure_pa = Some(1.0));
+    broken(E::Alarm, |p| p.parts[0].inward.pressure_pa = Stated::new(1.0));
     broken(E::Logging, |p| p.logging.interval_ms = 99);
     broken(E::Logging, |p| p.logging.idle_interval_ms = 9_999);
     broken(E::Logging, |p| p.logging.flush_after_ms = 86_400_001);
@@ -133,14 +136,14 @@ fn parts() {
         p.parts[0] = disc(1.0, 0.3, 1.0);
         p.parts[0].top_m = 1.4;
     });
-    for capacity in [0.0, -1.0, f32::NAN, f32::INFINITY] {
-        broken(E::Capacity, |p| p.parts[0].outward.pressure_pa = Some(capacity));
+    for capacity in [-0.0, -1.0, f32::NAN, f32::INFINITY] {
+        broken(E::Capacity, |p| p.parts[0].outward.pressure_pa = Stated::new(capacity));
     }
-    broken(E::Capacity, |p| p.parts[0].outward.force_n = Some(1.0));
-    broken(E::Capacity, |p| p.parts[0].outward.bolt_n = Some(1.0));
+    broken(E::Capacity, |p| p.parts[0].outward.force_n = Stated::new(1.0));
+    broken(E::Capacity, |p| p.parts[0].outward.bolt_n = Stated::new(1.0));
     broken(E::Capacity, |p| {
         p.parts[0] = disc(1.0, 0.3, 1.0);
-        p.parts[0].outward.hoop_tension_n_m = Some(1.0);
+        p.parts[0].outward.hoop_tension_n_m = Stated::new(1.0);
     });
     let design = |weight_n_m3| DesignState { level_m: 6.0, weight_n_m3, gas_pa: 0.0 };
     broken(E::Capacity, |p| p.parts[0].designed_for.push(design(0.5)).unwrap());
@@ -151,10 +154,11 @@ fn parts() {
 fn bolts_are_cut_where_their_share_changes_sign() {
     let shape = Shape::Circle(Circle::new(0.33, 1.0));
     let sound = bolted_disc(0.5, 0.33, 1.0, 28, 0.385);
-    let Geometry::Plane { bolts: Some(bolts), .. } = &sound.geometry else { unreachable!() };
-    let good = bolts.pattern();
+    let Geometry::Plane { cover: Some(cover), .. } = &sound.geometry else { unreachable!() };
+    let good = BoltPattern::of(&cover.numbers(), &shape).unwrap();
     let with = |pattern: &BoltPattern| {
-        plane(shape, 0.5, 1.0, Some(Bolts::new(pattern, &Face::of(&shape, 0.0))))
+        let cover = Cover::new(&pattern.cover(&shape), &Face::of(&shape, 0.0));
+        plane(shape, 0.5, 1.0, Some(cover))
     };
     let mut plan = water_tank();
     plan.parts[0] = with(&good);
@@ -162,6 +166,7 @@ fn bolts_are_cut_where_their_share_changes_sign() {
     let [Some([y_m, area_m2, static_m3]), high] = good.cuts else { unreachable!() };
     for pattern in [
         BoltPattern { count: 2, ..good },
+        BoltPattern { count: 0x2000, ..good },
         BoltPattern { per_moment: [0.1, 0.2], ..good },
         BoltPattern { per_moment: [f32::NAN, 0.2], ..good },
         BoltPattern { per_moment: [-0.2, 1.0e30], ..good },
@@ -180,8 +185,71 @@ fn bolts_are_cut_where_their_share_changes_sign() {
     assert_eq!(plan.check(), Ok(()));
     let level = Shape::Level { area_m2: 0.4 };
     let even = BoltPattern { count: 8, per_moment: [-0.5, 0.5], cuts: [None; 2] };
-    plan.parts[0] = plane(level, 3.0, 0.0, Some(Bolts::new(&even, &Face::of(&level, 0.0))));
+    let cover = Cover::new(&even.cover(&level), &Face::of(&level, 0.0));
+    plan.parts[0] = plane(level, 3.0, 0.0, Some(cover));
     assert_eq!(plan.check(), Ok(()));
+}
+
+/// A door on two pins: each number out of its range, and each capacity that it cannot have.
+#[test]
+fn covers_of_every_kind_are_checked() {
+    let shape = Shape::Rectangle(Rectangle::new(0.8, 1.2, 1.0));
+    let cut = |t_m: f32| {
+        let area_m2 = 0.8 * t_m;
+        Some([t_m, area_m2, area_m2 * (0.5 * t_m - 0.6)])
+    };
+    let good = CoverNumbers {
+        held: Held::Side,
+        arm_m: 0.46,
+        sill_above_m: 0.02,
+        weight_n: 300.0,
+        weight_is_measured: true,
+        weightings: [
+            WeightingNumbers { foot: 0.5, slope: -1.0, cut: cut(0.5) },
+            WeightingNumbers { foot: 0.1, slope: 1.0, cut: None },
+        ],
+    };
+    let part = |numbers: &CoverNumbers| {
+        plane(shape, 0.3, 1.0, Some(Cover::new(numbers, &Face::of(&shape, 0.0))))
+    };
+    let mut plan = water_tank();
+    plan.parts[0] = part(&good);
+    plan.parts[0].outward.bolt_n = Stated::new(1.0);
+    plan.parts[0].outward.moment_n_m = Stated::new(1.0);
+    assert_eq!(plan.check(), Ok(()));
+    let [low, high] = good.weightings;
+    for wrong in [
+        CoverNumbers { arm_m: 0.0, ..good },
+        CoverNumbers { arm_m: f32::NAN, ..good },
+        CoverNumbers { held: Held::Line, ..good },
+        CoverNumbers { held: Held::Otherwise, ..good },
+        CoverNumbers { held: Held::Bolts(2), arm_m: 0.0, ..good },
+        CoverNumbers { sill_above_m: -0.1, ..good },
+        CoverNumbers { sill_above_m: 1.3, ..good },
+        CoverNumbers { sill_above_m: f32::NAN, ..good },
+        CoverNumbers { weight_n: f32::INFINITY, ..good },
+        CoverNumbers { weight_n: f32::NAN, ..good },
+        CoverNumbers { weightings: [WeightingNumbers { cut: None, ..low }, high], ..good },
+        CoverNumbers { weightings: [WeightingNumbers { cut: cut(0.51), ..low }, high], ..good },
+        CoverNumbers { weightings: [low, WeightingNumbers { cut: cut(0.5), ..high }], ..good },
+        CoverNumbers { weightings: [low, WeightingNumbers { foot: f32::NAN, ..high }], ..good },
+        CoverNumbers { weightings: [low, WeightingNumbers { slope: 1.0e30, ..high }], ..good },
+    ] {
+        broken(E::Geometry, |p| p.parts[0] = part(&wrong));
+    }
+    let otherwise = CoverNumbers { sill_above_m: 0.02, ..CoverNumbers::default() };
+    broken(E::Capacity, |p| {
+        p.parts[0] = part(&otherwise);
+        p.parts[0].outward.bolt_n = Stated::new(1.0);
+    });
+    broken(E::Capacity, |p| {
+        p.parts[0] = bolted_disc(0.5, 0.33, 1.0, 28, 0.385);
+        p.parts[0].outward.moment_n_m = Stated::new(1.0);
+    });
+    broken(E::Capacity, |p| {
+        p.parts[0] = part(&good);
+        p.parts[0].inward.moment_n_m = Stated::new(-1.0);
+    });
 }
 
 /// One of a few figures, the ends of the permitted range among them.
@@ -230,21 +298,21 @@ fn extreme_plan(random: &mut Random) -> Plan {
         disc(bottom_m, size, sine),
         rectangle(bottom_m, 200.0, size, sine),
         level_cover(bottom_m, one_of(random, &[1.0e-6, 1.0e5])),
-        bolted_disc(bottom_m, size, sine, one_of(random, &[4.0, 60_000.0]) as u16, 1.01 * size),
+        bolted_disc(bottom_m, size, sine, one_of(random, &[4.0, 8_000.0]) as u16, 1.01 * size),
         bolted_rectangle(bottom_m, [size, size], sine, 3, one_of(random, &[0.0, 1.0, 1.0e4])),
     ] {
         plan.parts.push(part).unwrap();
     }
     for part in &mut plan.parts {
         part.outside = u8::from(random.below(2) == 0);
-        part.outward.pressure_pa = Some(1.0e-3);
-        part.inward.pressure_pa = Some(1.0e-3);
+        part.outward.pressure_pa = Stated::new(1.0e-3);
+        part.inward.pressure_pa = Stated::new(1.0e-3);
         match &part.geometry {
-            Geometry::Course { .. } => part.outward.hoop_tension_n_m = Some(1.0e-3),
-            Geometry::Plane { bolts, .. } => {
-                part.outward.force_n = Some(1.0e-3);
-                part.inward.force_n = Some(1.0e12);
-                part.outward.bolt_n = bolts.as_ref().map(|_| 1.0e-3);
+            Geometry::Course { .. } => part.outward.hoop_tension_n_m = Stated::new(1.0e-3),
+            Geometry::Plane { cover, .. } => {
+                part.outward.force_n = Stated::new(1.0e-3);
+                part.inward.force_n = Stated::new(1.0e12);
+                part.outward.bolt_n = cover.as_ref().and_then(|_| Stated::new(1.0e-3));
             }
         }
         let weight_n_m3 = one_of(random, &[1.0, 2.5e5]);
@@ -265,6 +333,7 @@ fn numbers(part: &PartLoads<1>) -> Vec<f32> {
                 loads.force_n,
                 loads.moment_centroid_n_m,
                 loads.bolt_n,
+                loads.moment_n_m,
             ]
             .map(|number| number.lane(0)),
         );

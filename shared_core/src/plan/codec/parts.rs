@@ -8,13 +8,16 @@
 //! | disc: radius, sine; rectangle: width, length, sine; level: area; f32 | 4 to 12 |
 //! | ellipse: half length up the slope, width over length, sine f32 | 12 |
 //! | pieces: area, length, centroid, sine f32; strips, discs u8; 4 f32 each | 18 + 16 n |
-//! | plane parts: bolts u16 (0 none), then 2 f32 and two cuts (u8 0 or 1, 3 f32) | 2 to 36 |
-//! | capacities outward, then inward: mask u8, f32 for each set bit (pressure, hoop, force, bolt) | |
+//! | plane parts: cover u16, see [`put_cover`] | 2 to 58 |
+//! | capacities outward, then inward: mask u8, f32 for each set bit | |
 //! | design states u8, 3 f32 each | |
 
 use super::{PlanError, count, flag, take_list};
 use crate::cursor::{Fetch, Sink, Source};
-use crate::part::{BoltPattern, Bolts, Capacities, DesignState, Geometry, Part};
+use crate::part::{
+    BoltPattern, Capacities, Cover, CoverNumbers, DesignState, Geometry, Held, Part, Stated,
+    WeightingNumbers,
+};
 use crate::plan::NUMBERS_MAX;
 use crate::shape::{Circle, Face, Pieces, Rectangle, Shape};
 use heapless::Vec;
@@ -41,7 +44,7 @@ pub(super) fn put(sink: &mut Sink<'_>, part: &Part, numbers: &[f32]) -> Result<(
             sink.f32(*design_point_m);
             sink.f32(*height_m);
         }
-        Geometry::Plane { shape, sine, bolts, .. } => {
+        Geometry::Plane { shape, sine, cover, .. } => {
             match shape {
                 Shape::Circle(circle) => {
                     sink.f32(circle.radius_m());
@@ -57,7 +60,7 @@ pub(super) fn put(sink: &mut Sink<'_>, part: &Part, numbers: &[f32]) -> Result<(
                 Shape::Level { area_m2 } => sink.f32(*area_m2),
                 Shape::Pieces(pieces) => put_pieces(sink, pieces, numbers),
             }
-            put_bolts(sink, bolts.as_ref());
+            put_cover(sink, cover.as_ref(), shape);
         }
     }
     put_capacities(sink, &part.outward);
@@ -145,37 +148,125 @@ fn take_geometry<F: Fetch>(
         _ => return None,
     };
     let face = Face { shape: &shape, numbers, bottom_m: 0.0 };
-    let bolts = take_bolts(source)?.map(|pattern| Bolts::new(&pattern, &face));
-    Some(Geometry::plane(shape, sine, bolts))
+    let cover = take_cover(source, &face)?;
+    Some(Geometry::plane(shape, sine, cover))
 }
 
-fn put_bolts(sink: &mut Sink<'_>, bolts: Option<&Bolts>) {
-    let Some(pattern) = bolts.map(Bolts::pattern) else {
+/// Below this many bits stands what holds a cover.
+const HELD: u16 = 0x1FFF;
+const WEIGHT: u16 = 0x2000;
+const MEASURED: u16 = 0x4000;
+const SILL: u16 = 0x8000;
+/// The record of two weightings; an opening of which nothing else is known.
+const ANYHOW: u16 = 1;
+const OTHERWISE: u16 = 2;
+
+/// The lower 13 bits of the first word: 0 no cover, 1 two weightings anywhere, 2 an opening held
+/// otherwise, 3 and more that many bolts about the centroid.
+///
+/// Bolts: `s / sum s²` of the lowest and the highest, their cuts. Weightings: u16 (0 a level line,
+/// 1 a hinge at the side, 3 and more bolts), arm, and for each foot, slope, cut. A cut is u8 0, or
+/// 1 and 3 f32. Then, where their bits are set, weight and sill.
+fn put_cover(sink: &mut Sink<'_>, cover: Option<&Cover>, shape: &Shape) {
+    let Some(cover) = cover.map(Cover::numbers) else {
         sink.u16(0);
         return;
     };
-    sink.u16(pattern.count);
-    pattern.per_moment.iter().for_each(|&number| sink.f32(number));
-    for cut in pattern.cuts {
-        sink.u8(u8::from(cut.is_some()));
-        cut.iter().flatten().for_each(|&number| sink.f32(number));
+    let bit = |holds: bool, bit: u16| if holds { bit } else { 0 };
+    let flags = bit(cover.weight_n != 0.0, WEIGHT)
+        | bit(cover.weight_is_measured, MEASURED)
+        | bit(cover.sill_above_m > 0.0, SILL);
+    match (BoltPattern::of(&cover, shape), cover.held) {
+        (Some(pattern), _) => {
+            sink.u16(pattern.count | flags);
+            pattern.per_moment.iter().for_each(|&number| sink.f32(number));
+            pattern.cuts.into_iter().for_each(|cut| put_cut(sink, cut));
+        }
+        (None, Held::Otherwise) => sink.u16(OTHERWISE | flags),
+        (None, held) => {
+            sink.u16(ANYHOW | flags);
+            sink.u16(match held {
+                Held::Bolts(count) => count,
+                Held::Side => 1,
+                Held::Line | Held::Otherwise => 0,
+            });
+            sink.f32(cover.arm_m);
+            for weighting in cover.weightings {
+                sink.f32(weighting.foot);
+                sink.f32(weighting.slope);
+                put_cut(sink, weighting.cut);
+            }
+        }
+    }
+    if flags & WEIGHT != 0 {
+        sink.f32(cover.weight_n);
+    }
+    if flags & SILL != 0 {
+        sink.f32(cover.sill_above_m);
     }
 }
 
-#[expect(clippy::option_option, reason = "outer: bytes ran out; inner: no bolts")]
-fn take_bolts<F: Fetch>(source: &mut Source<F>) -> Option<Option<BoltPattern>> {
-    let count = source.u16()?;
-    if count == 0 {
+fn put_cut(sink: &mut Sink<'_>, cut: Option<[f32; 3]>) {
+    sink.u8(u8::from(cut.is_some()));
+    cut.iter().flatten().for_each(|&number| sink.f32(number));
+}
+
+#[expect(clippy::option_option, reason = "outer: bytes ran out; inner: no cover")]
+fn take_cover<F: Fetch>(source: &mut Source<F>, face: &Face<'_>) -> Option<Option<Cover>> {
+    let word = source.u16()?;
+    let mut cover = match word & HELD {
+        0 if word == 0 => return Some(None),
+        0 => return None,
+        ANYHOW => {
+            let held = match source.u16()? {
+                0 => Held::Line,
+                1 => Held::Side,
+                count => Held::Bolts(count),
+            };
+            let arm_m = source.f32()?;
+            let weightings = [take_weighting(source)?, take_weighting(source)?];
+            CoverNumbers { held, arm_m, weightings, ..CoverNumbers::default() }
+        }
+        OTHERWISE => CoverNumbers::default(),
+        count => {
+            let per_moment = [source.f32()?, source.f32()?];
+            let cuts = [take_cut(source)?, take_cut(source)?];
+            BoltPattern { count, per_moment, cuts }.cover(face.shape)
+        }
+    };
+    if word & WEIGHT != 0 {
+        cover.weight_n = source.f32()?;
+    }
+    cover.weight_is_measured = word & MEASURED != 0;
+    if word & SILL != 0 {
+        cover.sill_above_m = source.f32()?;
+    }
+    Some(Some(Cover::new(&cover, face)))
+}
+
+fn take_weighting<F: Fetch>(source: &mut Source<F>) -> Option<WeightingNumbers> {
+    let mut straight = [0.0; 2];
+    take_numbers(source, &mut straight)?;
+    let [foot, slope] = straight;
+    Some(WeightingNumbers { foot, slope, cut: take_cut(source)? })
+}
+
+#[expect(clippy::option_option, reason = "outer: bytes ran out; inner: no cut")]
+fn take_cut<F: Fetch>(source: &mut Source<F>) -> Option<Option<[f32; 3]>> {
+    if !flag(source)? {
         return Some(None);
     }
-    let per_moment = [source.f32()?, source.f32()?];
-    let mut cuts = [None; 2];
-    for cut in &mut cuts {
-        if flag(source)? {
-            *cut = Some([source.f32()?, source.f32()?, source.f32()?]);
-        }
+    let mut cut = [0.0; 3];
+    take_numbers(source, &mut cut)?;
+    Some(Some(cut))
+}
+
+#[inline(never)]
+fn take_numbers<F: Fetch>(source: &mut Source<F>, numbers: &mut [f32]) -> Option<()> {
+    for number in numbers {
+        *number = source.f32()?;
     }
-    Some(Some(BoltPattern { count, per_moment, cuts }))
+    Some(())
 }
 
 fn put_capacities(sink: &mut Sink<'_>, capacities: &Capacities) {
@@ -184,23 +275,24 @@ fn put_capacities(sink: &mut Sink<'_>, capacities: &Capacities) {
         capacities.hoop_tension_n_m,
         capacities.force_n,
         capacities.bolt_n,
+        capacities.moment_n_m,
     ];
     let mask = all.iter().rev().fold(0, |mask, one| mask << 1 | u8::from(one.is_some()));
     sink.u8(mask);
-    all.iter().flatten().for_each(|&capacity| sink.f32(capacity));
+    all.iter().flatten().for_each(|capacity| sink.f32(capacity.get()));
 }
 
 fn take_capacities<F: Fetch>(source: &mut Source<F>) -> Option<Capacities> {
     let mask = source.u8()?;
-    if mask > 0b1111 {
+    if mask > 0b1_1111 {
         return None;
     }
-    let mut all = [None; 4];
+    let mut all = [None; 5];
     for (bit, slot) in all.iter_mut().enumerate() {
         if mask >> bit & 1 == 1 {
-            *slot = Some(source.f32()?);
+            *slot = Some(Stated::new(source.f32()?)?);
         }
     }
-    let [pressure_pa, hoop_tension_n_m, force_n, bolt_n] = all;
-    Some(Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n })
+    let [pressure_pa, hoop_tension_n_m, force_n, bolt_n, moment_n_m] = all;
+    Some(Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n, moment_n_m })
 }

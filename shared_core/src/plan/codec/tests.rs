@@ -2,7 +2,7 @@
 
 use super::{Fetch, PLAN_BYTES_MAX, decode, decode_into, encode, names};
 use crate::liquid::truth::Random;
-use crate::part::DesignState;
+use crate::part::{DesignState, Stated};
 use crate::plan::builder::{
     bolted_disc, course, ellipse, exact, gas, head_sensor, layer, level_cover, on_loop,
     push_pieces, random, rectangle, surface_sensor, water_tank, with_inward_alarm,
@@ -37,7 +37,7 @@ fn bytes_of(hex: &str) -> Vec<u8> {
 fn the_bytes_of_format_1() {
     let mut plan = water_tank();
     plan.level = on_loop(surface_sensor(), 0.0, 10.0);
-    plan.parts[0].outward.hoop_tension_n_m = Some(419_000.0);
+    plan.parts[0].outward.hoop_tension_n_m = Stated::new(419_000.0);
     let fields = [
         "534b5001",                           // SKP, format 1
         "0807060504030201",                   // serial
@@ -86,7 +86,7 @@ fn every_kind_of_thing_comes_back() {
             bolted_disc(0.5, 0.33, 1.0, 28, 0.385),
             ellipse(0.5, 0.3, 0.5, 0.9),
         ] {
-            part.inward.pressure_pa = Some(1_500.0);
+            part.inward.pressure_pa = Stated::new(1_500.0);
             part.designed_for.push(design).unwrap();
             plan.parts.push(part).unwrap();
         }
@@ -216,9 +216,9 @@ fn the_largest_plan() {
     let length = encode(&header(), &plan, "", &names, &mut out).unwrap();
     assert!(length <= PLAN_BYTES_MAX);
     assert_eq!(decode(&out[..length]).unwrap().1, plan);
-    part.outward.pressure_pa = Some(1.0e5);
-    part.outward.force_n = Some(1.0e5);
-    part.outward.bolt_n = Some(1.0e4);
+    part.outward.pressure_pa = Stated::new(1.0e5);
+    part.outward.force_n = Stated::new(1.0e5);
+    part.outward.bolt_n = Stated::new(1.0e4);
     part.inward = part.outward;
     let design = DesignState { level_m: 6.0, weight_n_m3: 9_800.0, gas_pa: 50.0 };
     part.designed_for.extend([design; 2]);

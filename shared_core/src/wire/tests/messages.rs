@@ -79,6 +79,7 @@ fn part_status() -> PartStatus {
         inward_judged: false,
         alarms: [1, 0, 0],
         loads: [load, LoadValue::default(), LoadValue::default(), LoadValue::default()],
+        opening: 0x81,
     }
 }
 

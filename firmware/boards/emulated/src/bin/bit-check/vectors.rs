@@ -150,6 +150,7 @@ pub(crate) fn put_part<const N: usize>(
             &loads.force_n,
             &loads.moment_centroid_n_m,
             &loads.bolt_n,
+            &loads.moment_n_m,
         ] {
             put(load.lane(lane).to_bits());
         }
