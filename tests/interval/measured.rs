@@ -8,7 +8,7 @@ use strake_core::alarm::{MachineId, Threshold};
 use strake_core::journal::Entry;
 use strake_core::journal::entry::TransitionCause;
 use strake_core::liquid::Band;
-use strake_core::part::{Capacities, Geometry, Part};
+use strake_core::part::{Capacities, Geometry, Part, Stated};
 use strake_core::plan::{LevelPlan, LevelSensor, Plan, SignalKind, ThresholdPlan};
 
 /// A tank around a series: one course whose thresholds lie within what the series reaches.
@@ -61,7 +61,7 @@ fn plan(levels: &[(f64, f64)], interval_s: u32, idle_s: u32) -> Plan {
         geometry: Geometry::Course { half_diameter_m: 4.0, design_point_m: 0.0, height_m: 19.0 },
         bottom_m: 0.0,
         top_m: 19.0,
-        outward: Capacities { hoop_tension_n_m: Some(full as f32), ..Capacities::default() },
+        outward: Capacities { hoop_tension_n_m: Stated::new(full as f32), ..Capacities::default() },
         inward: Capacities::default(),
         designed_for: heapless::Vec::new(),
         outside: 0,

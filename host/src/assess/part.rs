@@ -11,7 +11,7 @@ use crate::inverse::{self, PartLimits};
 use crate::tank::{self, Part as Stated, PartKind, Plane, Rating, TankFile};
 use strake_core::lane::Lane;
 use strake_core::liquid::States;
-use strake_core::part::{Geometry, Held, Part, PartLoads, Weighting, acting, evaluate};
+use strake_core::part::{Cover, Geometry, Held, Part, PartLoads, Weighting, acting, evaluate};
 use strake_core::shape::{Face, Shape};
 
 /// All rows, in the order of the file.
@@ -57,7 +57,7 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, level_m: f32)
     let seated = hatch.is_some_and(|hatch| hatch.seats(true));
     let loads = |loads: &strake_core::part::Loads<1>, state: usize, bolts: bool| {
         let course = matches!(part.geometry, Geometry::Course { .. });
-        let held = securing::cover_of(part).map_or(Held::Otherwise, |cover| cover.held());
+        let held = securing::cover_of(part).map_or(Held::Otherwise, Cover::held);
         let bolted = matches!(held, Held::Bolts(_));
         let reactions = reactions.as_ref().map(|all| &all[state]);
         Loads {

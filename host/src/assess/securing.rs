@@ -5,7 +5,7 @@ use super::document::Opening;
 use crate::compile::latch_per_moment;
 use crate::tank::{Axis, Hatch, Hinged, Opens, Secured};
 use crate::units::{Quantity, UnitSystem, format};
-use strake_core::lane::Lane;
+use strake_core::lane::{self, Lane};
 use strake_core::liquid::States;
 use strake_core::part::{Cover, Geometry, OPENING_GAS_PA, Part, Shut};
 use strake_core::shape::Face;
@@ -101,8 +101,8 @@ impl Pulls {
             0 => 0.0,
             _ if self.always => value,
             _ if !self.ever => 0.0,
-            1 => value.max(0.0),
-            _ => value.min(0.0),
+            1 => lane::at_least(value, 0.0),
+            _ => lane::at_most(value, 0.0),
         }
     }
 }

@@ -39,7 +39,7 @@ pub(crate) fn numbers(hatch: &Hatch, gravity_m_s2: f64, shape: &Shape) -> CoverN
 
 /// Cosine of a slope, exact where people write exact angles.
 fn cosine(slope_deg: f64) -> f64 {
-    if slope_deg == 90.0 { 0.0 } else { slope_deg.to_radians().cos() }
+    if (slope_deg - 90.0).abs() < 1e-9 { 0.0 } else { slope_deg.to_radians().cos() }
 }
 
 /// Force of the latch that carries most, N per N m of moment; `None` without a latch.

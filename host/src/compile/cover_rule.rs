@@ -15,7 +15,7 @@ use std::f64::consts::PI;
 
 /// Poisson's ratio of metals.
 const POISSON: f64 = 0.3;
-/// Modulus of elasticity, GPa, where no metal is named: steel.
+/// Modulus of elasticity in units of 1e9 Pa where no metal is named: steel.
 const STEEL_GPA: f64 = 200.0;
 /// By the first of these words in `material`; the lower end of what handbooks give.
 const METALS_GPA: [(&str, f64); 9] = [

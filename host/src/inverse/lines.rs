@@ -10,6 +10,7 @@ use super::{Criterion, intervals};
 use crate::assess::Desk;
 use strake_core::lane::Lane;
 use strake_core::liquid::States;
+use strake_core::part::Held as Fastened;
 use strake_core::part::{Capacities, DesignState, Geometry, Loads, Part, evaluate};
 use strake_core::pressure::Pressure;
 use strake_core::shape::{Rectangle, Shape};
@@ -91,12 +92,12 @@ pub fn lines(desk: &Desk, part: &Part) -> Vec<Line> {
         ..part.clone()
     };
     let none = Capacities::default();
-    let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n, .. } = part.outward;
+    let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n, moment_n_m } = part.outward;
     let stated = [
         (By::Pressure, Capacities { pressure_pa, ..none }),
         (By::HoopTension, Capacities { hoop_tension_n_m, ..none }),
         (By::Force, Capacities { force_n, ..none }),
-        (By::Securing, Capacities { bolt_n, ..none }),
+        (By::Securing, Capacities { bolt_n, moment_n_m, ..none }),
     ];
     let mut found = Vec::new();
     for (by, outward) in stated.into_iter().filter(|(_, one)| !one.is_empty()) {
@@ -149,8 +150,19 @@ fn resultants(part: &Part) -> Vec<(By, Pick)> {
             loads.force_n.lane(0) * up_m + loads.moment_centroid_n_m.lane(0)
         }));
     }
-    if matches!(part.geometry, Geometry::Plane { bolts: Some(_), .. }) {
-        found.push((By::Securing, |loads, _| loads.bolt_n.lane(0)));
+    let held = match &part.geometry {
+        Geometry::Plane { cover: Some(cover), .. } => cover.held(),
+        _ => Fastened::Otherwise,
+    };
+    match held {
+        Fastened::Otherwise => {}
+        Fastened::Bolts(_) => {
+            found.push((By::Securing, |loads, _| loads.bolt_n.lane(0)));
+        }
+        // The latch carries in proportion to the moment.
+        Fastened::Line | Fastened::Side => {
+            found.push((By::Securing, |loads, _| loads.moment_n_m.lane(0)));
+        }
     }
     found
 }

@@ -45,8 +45,8 @@ impl Shut {
     pub fn under(plan: &Plan, part: &Part, surface_m: f32) -> Option<Self> {
         let Geometry::Plane { cover: Some(cover), .. } = &part.geometry else { return None };
         let sill_m = part.bottom_m + cover.sill_above_m();
-        // What is no number is no proof: everything but "not above" counts.
-        let above = |height_m: f32| !(height_m <= sill_m);
+        // What is no number is no proof.
+        let above = |height_m: f32| height_m > sill_m || height_m.is_nan();
         let mut reasons = 0;
         if above(surface_m) {
             reasons |= Self::LIQUID_INSIDE;

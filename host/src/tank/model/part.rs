@@ -6,6 +6,7 @@ use super::secured::{Axis, CoverMass, Secured};
 use crate::tank::finding::{Located, Span};
 
 /// One part.
+#[expect(clippy::large_enum_variant, reason = "a file has some thirty parts")]
 #[derive(Clone, Debug, PartialEq)]
 pub enum Part {
     /// Ring of a cylindrical shell.

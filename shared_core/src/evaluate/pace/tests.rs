@@ -7,7 +7,7 @@ use crate::evaluate::{State, loads, part_loads, step};
 use crate::journal::entry::{Sample, TransitionCause};
 use crate::lane::at_least;
 use crate::liquid::truth::Random;
-use crate::part::Capacities;
+use crate::part::{Capacities, Stated};
 use crate::plan::builder::{count_of, exact, random, reads, water_tank};
 use crate::plan::{LevelSensor, Plan, Reference};
 use crate::signal::{Channel, Resolved, SensorError, resolve};
@@ -111,9 +111,12 @@ fn ease(plan: &mut Plan, index: usize, reading: &Resolved) {
     if stronger > 1.4 {
         let part = &mut plan.parts[index];
         for capacities in [&mut part.outward, &mut part.inward] {
-            let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n } = capacities;
-            for capacity in [pressure_pa, hoop_tension_n_m, force_n, bolt_n].into_iter().flatten() {
-                *capacity *= stronger;
+            let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n, moment_n_m } =
+                capacities;
+            for capacity in
+                [pressure_pa, hoop_tension_n_m, force_n, bolt_n, moment_n_m].into_iter().flatten()
+            {
+                *capacity = Stated::new(capacity.get() * stronger).unwrap();
             }
         }
         if worst(plan) > 0.7 {
@@ -204,7 +207,7 @@ fn next_s(plan: &Plan, minutes: u64, level_m: f64) -> u32 {
 fn tank() -> Plan {
     let mut plan = water_tank();
     plan.level.uncertainty = 0.002;
-    plan.parts[0].outward.hoop_tension_n_m = Some(9_806.65 * 5.7 * 4.0);
+    plan.parts[0].outward.hoop_tension_n_m = Stated::new(9_806.65 * 5.7 * 4.0);
     plan.logging.idle_interval_ms = 300_000;
     plan
 }
