@@ -70,7 +70,7 @@ const CEILINGS: Budgets = Budgets {
 };
 /// Rows whose ceiling the device does not keep yet. They keep their budget, so that they grow no
 /// further, and the table says so; a row that comes below its ceiling has to leave this list.
-const NOT_KEPT: [&str; 1] = ["evaluate, instructions"];
+const NOT_KEPT: [&str; 2] = ["flash, B", "evaluate, instructions"];
 
 impl Budgets {
     fn rows(self) -> [(&'static str, u64); 8] {
