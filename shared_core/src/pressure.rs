@@ -116,13 +116,14 @@ impl<const N: usize> Pressure<N> {
     #[must_use]
     #[inline]
     pub fn below(&self, cut: &Cut, face: &Face<'_>) -> [Lane<N>; 2] {
-        let mut found = cut.dry(face.shape).map(|integral| self.gas_pa * integral);
+        let dry = cut.dry(face.shape);
+        let mut found = dry.map(|integral| self.gas_pa * integral);
         for surface in self.surfaces() {
             let y_m = surface.height_m - face.bottom_m;
             if y_m.none_positive() {
                 continue;
             }
-            let wetted = cut.wetted(face, y_m);
+            let wetted = cut.wetted(face, dry, y_m);
             for (sum, integral) in found.iter_mut().zip(wetted) {
                 *sum = *sum + surface.step_n_m3 * integral;
             }

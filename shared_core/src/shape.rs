@@ -169,12 +169,17 @@ impl Cut {
         [self.area_m2, self.static_m3 + shape.centroid_up_m() * self.area_m2]
     }
 
-    /// `q0` and `q2` over the piece below the cut.
+    /// `q0` and `q2` over the piece below the cut; `dry` is [`Cut::dry`].
     ///
     /// Above the cut the piece is covered and both grow linearly with the surface.
     #[must_use]
     #[inline]
-    pub fn wetted<const N: usize>(&self, face: &Face<'_>, y_m: Lane<N>) -> [Lane<N>; 2] {
+    pub fn wetted<const N: usize>(
+        &self,
+        face: &Face<'_>,
+        [area_m2, foot_static_m3]: [f32; 2],
+        y_m: Lane<N>,
+    ) -> [Lane<N>; 2] {
         let above = (y_m - self.y_m).ramp();
         // Where every lane is covered the stored integrals are the same bits, without the root.
         let [q0, q2] = if above.all_positive() {
@@ -183,7 +188,6 @@ impl Cut {
             let lower = face.wetted(y_m.at_most(Lane::splat(self.y_m)));
             [lower.q0, lower.q2]
         };
-        let [area_m2, foot_static_m3] = self.dry(face.shape);
         [q0 + above * area_m2, q2 + above * foot_static_m3]
     }
 }

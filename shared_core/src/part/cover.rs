@@ -212,7 +212,7 @@ impl Cover {
 
     /// The reaction with a weighting: of the estimate, largest and least. The weight of the cover
     /// acts at the centroid; where it relieves it counts only when it was measured.
-    #[inline(never)]
+    #[inline]
     pub(crate) fn reaction<const N: usize>(
         &self,
         weighting: &Weighting,
@@ -223,17 +223,29 @@ impl Cover {
         let [most, least] = weighting.bounds(face, [upper, lower]);
         let mut found = [weighting.of(middle.1), most, least];
         if self.weight_n != 0.0 {
-            let at_centroid = weighting.foot + weighting.slope * face.shape.centroid_up_m();
-            let added_n = at_centroid * self.weight_n;
-            for (index, sum) in found.iter_mut().enumerate() {
-                // The least value is relieved by what adds to the others.
-                let adds = if index == 2 { added_n < 0.0 } else { added_n > 0.0 };
-                if adds || self.weight_is_measured {
-                    *sum = *sum + added_n;
-                }
-            }
+            self.add_weight(weighting, face, &mut found);
         }
         found
+    }
+
+    /// The weight of the cover acts at the centroid; where it relieves it counts only when it was
+    /// measured.
+    #[inline(never)]
+    fn add_weight<const N: usize>(
+        &self,
+        weighting: &Weighting,
+        face: &Face<'_>,
+        found: &mut Reaction<N>,
+    ) {
+        let at_centroid = weighting.foot + weighting.slope * face.shape.centroid_up_m();
+        let added_n = at_centroid * self.weight_n;
+        for (index, sum) in found.iter_mut().enumerate() {
+            // The least value is relieved by what adds to the others.
+            let adds = if index == 2 { added_n < 0.0 } else { added_n > 0.0 };
+            if adds || self.weight_is_measured {
+                *sum = *sum + added_n;
+            }
+        }
     }
 
     /// Moment about the hinge or pivot and both weightings, each of the estimate, largest and

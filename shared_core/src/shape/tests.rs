@@ -94,7 +94,7 @@ proptest! {
         let first = strips.integral([-strips.half_m, cut_s], |_, s| s);
         let cut = Cut::new(&Face::of(&shape, 0.0), cut_y as f32, area as f32, first as f32);
         let surface_m = random_surface(&mut random, shape.rise_m());
-        let [q0, q2] = cut.wetted(&Face::of(&shape, 0.0), Lane([surface_m]));
+        let [q0, q2] = cut.wetted(&Face::of(&shape, 0.0), cut.dry(&shape), Lane([surface_m]));
         let found = Wetted { q0, q1: Lane::ZERO, q2 };
         let [of_q0, _, of_q2] = errors(found, &strips, surface_m, cut_s);
         // The plan states the first moment about the centroid: carried to the foot of a small piece
@@ -116,11 +116,11 @@ proptest! {
             core::array::from_fn(|_| random_surface(&mut random, shape.rise_m()));
         surfaces[0] = cut_y;
         let lanes = |whole: Wetted<8>| [whole.q0, whole.q1, whole.q2];
-        let [q0, q2] = cut.wetted(&face, Lane(surfaces));
+        let [q0, q2] = cut.wetted(&face, cut.dry(&shape), Lane(surfaces));
         let together = [lanes(face.wetted(Lane(surfaces))), [q0, q0, q2]];
         for (lane, surface_m) in surfaces.into_iter().enumerate() {
             let one = Lane([surface_m]);
-            let (whole, [q0, q2]) = (face.wetted(one), cut.wetted(&face, one));
+            let (whole, [q0, q2]) = (face.wetted(one), cut.wetted(&face, cut.dry(&shape), one));
             let singly = [[whole.q0, whole.q1, whole.q2], [q0, q0, q2]];
             for (many, alone) in together.into_iter().zip(singly) {
                 for (many, alone) in many.into_iter().zip(alone) {
