@@ -30,6 +30,11 @@
 //! cannot know shows up to `T` late: a sensor that fails, and a level that moves faster than the
 //! plan's highest rates.
 //!
+//! **Time to limit.** It is never less than (distance up to the limit level) / highest rise. While
+//! that stays above the response time, deadband included, until after the next sample and until the
+//! trend of the volume has forgotten the long intervals, its alarm cannot stand either, and when it
+//! can, the trend is the one of the fixed interval.
+//!
 //! A liquid that the plan knows may take the place of another at any time: densities are those of
 //! all of them, at any temperature.
 //!
@@ -37,7 +42,10 @@
 //! change, all of which the journal holds.
 
 use super::loads;
+use super::step::TIME_DEADBAND;
+use super::trend::REMEMBERED_WINDOWS;
 use crate::lane::at_most;
+use crate::liquid::Band;
 use crate::plan::{LevelSensor, LoggingPlan, Plan, ThresholdPlan};
 use crate::signal::{ReadingClass, Resolved, half_width, reach};
 
@@ -101,7 +109,7 @@ impl Pace {
 }
 
 /// Whether no alarm of a part is met by any reading of the next `ahead_ms`, deadbands included, nor
-/// the roof by a sensor of the surface. What is not a number is met.
+/// the roof by a sensor of the surface, nor the time to limit. What is not a number is met.
 #[inline]
 fn is_clear(plan: &Plan, resolved: &Resolved, around: f32, ahead_ms: u32) -> bool {
     let density = resolved.density.hull(plan.liquid.any_product());
@@ -115,11 +123,24 @@ fn is_clear(plan: &Plan, resolved: &Resolved, around: f32, ahead_ms: u32) -> boo
     let outward = at_most(gone(&plan.alarm.warn), gone(&plan.alarm.alarm));
     let inward = plan.alarm.inward.as_ref().map_or(f32::MAX, gone);
     let mut clear = plan.level.sensor != LevelSensor::Surface || high < plan.shell_top_m;
+    clear &= is_far_from_limit(plan, high, density);
     loads(plan, &[ends], |_, part| {
         clear &= part.utilisation_bound.lane(0) < outward;
         clear &= part.utilisation_inward.lane(0) < inward;
     });
     clear
+}
+
+/// Whether the alarm of the time to limit cannot stand until the trend has forgotten the intervals
+/// before a reading of `high`, which means the highest level for the lightest liquid.
+fn is_far_from_limit(plan: &Plan, high: f32, density: Band) -> bool {
+    let limit_m = plan.limits_m().iter().fold(f32::MAX, |least, &limit_m| at_most(least, limit_m));
+    let lightest = Band { estimate_kg_m3: density.low_kg_m3, ..density };
+    #[expect(clippy::cast_precision_loss, reason = "to 6e-8 of the time, and a tenth is added")]
+    let [window_s, response_s] = [plan.filling.window_ms, plan.alarm.response_time_ms]
+        .map(|time_ms| time_ms as f32 * 1.0e-3);
+    let later_s = REMEMBERED_WINDOWS * window_s + (1.0 + TIME_DEADBAND) * response_s;
+    crate::liquid::level_m(plan, high, lightest) + plan.highest_rise_m_s * later_s < limit_m
 }
 
 impl Plan {

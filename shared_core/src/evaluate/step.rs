@@ -106,7 +106,7 @@ pub fn judge<const N: usize>(
 }
 
 /// Share of the response time by which an alarm of the time to limit must clear it to go.
-const TIME_DEADBAND: f32 = 0.1;
+pub(super) const TIME_DEADBAND: f32 = 0.1;
 
 /// Takes the volume in and judges the time to limit against the response time. While it is not
 /// known, nothing is raised and nothing returns.

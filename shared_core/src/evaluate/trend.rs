@@ -3,9 +3,14 @@
 //! The inflow is the slope of a straight line through the last few volumes (ordinary least squares)
 //! over the plan's window, with half the width of its confidence band from the residuals (Draper
 //! and Smith, Applied Regression Analysis, 3rd ed., section 1.4; Student's t, 95 % one-sided). The
-//! time to limit takes the upper end of that band. A sudden change of the inflow is in the slope by
-//! half after half the window, and wholly after the window: that is its lag.
+//! time to limit takes the upper end of that band, but never a level that rises faster than the
+//! plan's highest rise: noise would be believed otherwise. A sudden change of the inflow is in the
+//! slope by half after half the window, and wholly after the window: that is its lag.
+//!
+//! Points are the first samples in fifths of the window that lie fixed in time. So what was sampled
+//! before, at whatever interval, is forgotten wholly within [`REMEMBERED_WINDOWS`].
 
+use crate::lane::{at_least, ramp};
 use crate::plan::Plan;
 use crate::signal::{ReadingClass, Resolved};
 
@@ -13,6 +18,10 @@ use crate::signal::{ReadingClass, Resolved};
 pub(super) const POINTS: usize = 6;
 /// Steps from the oldest to the youngest of them in a window.
 const STEPS: u32 = 5;
+/// No point is older than this many windows, in quarters: six steps and late samples.
+const WINDOW_QUARTERS: u32 = 5;
+/// After so many windows nothing is left of how it was sampled before.
+pub(super) const REMEMBERED_WINDOWS: f32 = 1.5;
 /// Fewer give no slope: with two degrees of freedom the band has a width.
 const LEAST: usize = 4;
 /// Student's t, 95 % one-sided, for two and more degrees of freedom.
@@ -105,11 +114,11 @@ impl Trend {
         self.count = self.count.saturating_sub(1);
     }
 
-    /// Forgets what is older than the window (and an eighth of it, as samples come late).
+    /// Forgets what is older than the window (and a quarter of it, as points stand where they do).
     fn forget(&mut self, tick: u32, window_ms: u32) {
         let before = self.count;
         while self.points().first().is_some_and(|oldest| {
-            tick.wrapping_sub(oldest.tick_ms) > window_ms.saturating_add(window_ms / 8)
+            tick.wrapping_sub(oldest.tick_ms) > (window_ms / 4).saturating_mul(WINDOW_QUARTERS)
         }) {
             self.drop_oldest();
         }
@@ -118,11 +127,10 @@ impl Trend {
         }
     }
 
-    /// A new point is due when none is as young as a fifth of the window.
+    /// A new point is due when there is none of this fifth of a window.
     fn is_due(&self, tick: u32, window_ms: u32) -> bool {
-        self.points()
-            .last()
-            .is_none_or(|youngest| tick.wrapping_sub(youngest.tick_ms) >= window_ms / STEPS)
+        let fifth = |tick: u32| tick.checked_div(window_ms / STEPS).unwrap_or(tick);
+        self.points().last().is_none_or(|youngest| fifth(tick) != fifth(youngest.tick_ms))
     }
 
     /// The line through the points, about the first of them, which keeps the sums small.
@@ -180,7 +188,8 @@ impl Trend {
         if !is_measured(resolved) || !self.is_due(tick, window_ms) {
             return false;
         }
-        let volume_bits = volume_m3(plan, resolved, resolved.estimate).to_bits();
+        let level_m = crate::liquid::level_m(plan, resolved.estimate, resolved.density);
+        let volume_bits = plan.volume_m3(level_m).to_bits();
         self.push(Point { tick_ms: tick, volume_bits });
         true
     }
@@ -199,15 +208,12 @@ impl Trend {
         }
         let Some(inflow_m3_s) = self.inflow_m3_s() else { return TimeToLimit::NotFilling };
         let reading = if is_measured(resolved) { resolved.estimate } else { resolved.high };
-        let left_m3 = plan.volume_m3(limit_m) - volume_m3(plan, resolved, reading);
-        TimeToLimit::Filling { time_s: crate::lane::ramp(left_m3) / inflow_m3_s, inflow_m3_s }
+        let level_m = crate::liquid::level_m(plan, reading, resolved.density);
+        let left_m3 = plan.volume_m3(limit_m) - plan.volume_m3(level_m);
+        let soonest_s = ramp(limit_m - level_m) / plan.highest_rise_m_s;
+        let time_s = at_least(ramp(left_m3) / inflow_m3_s, soonest_s);
+        TimeToLimit::Filling { time_s, inflow_m3_s }
     }
-}
-
-/// Volume at a reading in the sensor's own quantity, m³.
-#[inline(never)]
-fn volume_m3(plan: &Plan, resolved: &Resolved, reading: f32) -> f32 {
-    plan.volume_m3(crate::liquid::level_m(plan, reading, resolved.density))
 }
 
 /// A level of this cycle that nothing speaks against.

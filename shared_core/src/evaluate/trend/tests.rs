@@ -12,6 +12,8 @@ use crate::signal::{Channel, Resolved, SensorError};
 /// 10 m tall, 50 m² across, limit at 8 m, samples every 10 s, a window of 100 s.
 fn tank() -> Plan {
     let mut plan = water_tank();
+    // Faster than anything here rises: the curve alone decides.
+    plan.highest_rise_m_s = 0.01;
     plan.state_filling(100_000, &[8.0, 8.0], &[[0.0, 0.0], [10.0, 500.0]]).unwrap();
     plan
 }
@@ -19,6 +21,8 @@ fn tank() -> Plan {
 /// The same with another curve and limit.
 fn with_curve(limit_m: f32, curve: &[[f32; 2]]) -> Plan {
     let mut plan = water_tank();
+    // Faster than anything here rises: the curve alone decides.
+    plan.highest_rise_m_s = 0.01;
     plan.state_filling(100_000, &[limit_m; 2], curve).unwrap();
     plan
 }
@@ -135,6 +139,22 @@ fn the_curve_counts_not_the_present_rate_of_rise() {
     };
     // 50 m³ at 0.1 m³/s; 2 m at 2 mm/s would be 1000 s.
     near(time_s, 500.0, 2e-4);
+}
+
+/// A rate beyond what the plan knows as the highest is noise.
+#[test]
+fn no_rise_beyond_the_highest_is_believed() {
+    let mut plan = tank();
+    plan.highest_rise_m_s = 0.001;
+    let mut state = State::default();
+    let (last, moves) = play(&plan, &mut state, 0, rising(6.0 - 0.4, 0.02, 21));
+    let TimeToLimit::Filling { time_s, inflow_m3_s } = state.time_to_limit(&plan, &last.unwrap())
+    else {
+        panic!("it fills");
+    };
+    near(inflow_m3_s, 0.1, 1e-4);
+    near(time_s, 2000.0, 1e-4);
+    assert!(moves.is_empty());
 }
 
 #[test]
