@@ -57,10 +57,6 @@ impl<F: Fetch> Source<F> {
     pub(crate) fn i32(&mut self) -> Option<i32> {
         self.array().map(i32::from_le_bytes)
     }
-
-    pub(crate) fn f32(&mut self) -> Option<f32> {
-        self.array().map(f32::from_le_bytes)
-    }
 }
 
 /// Writes numbers into a slice and remembers whether they fitted.

@@ -21,6 +21,7 @@
 //! A reader that meets another format refuses; formats are never reused.
 
 mod parts;
+mod reader;
 mod sections;
 
 pub use sections::{REASON_BYTES_MAX, accepted_margin, append_accepted_margin};
@@ -30,9 +31,10 @@ use super::{
     PlanHeader, Reference, SignalKind, TemperaturePlan, ThresholdPlan,
 };
 pub use crate::cursor::Fetch;
-use crate::cursor::{Sink, Source};
+use crate::cursor::Sink;
 use crate::liquid::{Band, DensityTable, Gas, Layer, Outside};
 use heapless::Vec;
+use reader::Reader;
 
 /// Most bytes of a plan: it fits one journal sector beside a slot header.
 pub const PLAN_BYTES_MAX: usize = 3840;
@@ -102,10 +104,11 @@ pub fn decode(bytes: &[u8]) -> Result<(PlanHeader, Plan), PlanError> {
 ///
 /// # Errors
 /// What is wrong with the bytes or the numbers. `plan` is then no plan.
-pub fn decode_into(bytes: &mut impl Fetch, plan: &mut Plan) -> Result<PlanHeader, PlanError> {
-    let mut source = Source(bytes);
+pub fn decode_into(bytes: &mut dyn Fetch, plan: &mut Plan) -> Result<PlanHeader, PlanError> {
+    let mut source = Reader::new(bytes);
     let mut start = [0; 4];
-    source.fill(&mut start).ok_or(PlanError::NotAPlan)?;
+    source.fill(&mut start);
+    source.whole().ok_or(PlanError::NotAPlan)?;
     let [m0, m1, m2, format] = start;
     if [m0, m1, m2] != MAGIC {
         return Err(PlanError::NotAPlan);
@@ -117,55 +120,49 @@ pub fn decode_into(bytes: &mut impl Fetch, plan: &mut Plan) -> Result<PlanHeader
     for _ in 0..=plan.parts.len() {
         take_text(&mut source).ok_or(PlanError::Names)?;
     }
+    source.whole().ok_or(PlanError::Names)?;
     sections::take(&mut source, plan).ok_or(PlanError::Damaged)?;
     plan.check()?;
     Ok(header)
 }
 
-impl<F: Fetch> Fetch for &mut F {
-    fn fetch(&mut self, out: &mut [u8]) -> Option<()> {
-        (**self).fetch(out)
-    }
-}
-
-fn take<F: Fetch>(source: &mut Source<F>, plan: &mut Plan) -> Option<PlanHeader> {
+fn take(source: &mut Reader<'_>, plan: &mut Plan) -> Option<PlanHeader> {
     let mut header =
-        PlanHeader { serial: source.u64()?, device_id: take_text(source)?, provisional: false };
-    plan.gravity_m_s2 = source.f32()?;
-    plan.shell_top_m = source.f32()?;
-    plan.overflow_m = source.f32()?;
-    plan.floor_m = source.f32()?;
-    plan.highest_rise_m_s = source.f32()?;
-    plan.highest_fall_m_s = source.f32()?;
-    let flags = source.u8()?;
+        PlanHeader { serial: source.u64(), device_id: take_text(source)?, provisional: false };
+    plan.gravity_m_s2 = source.f32();
+    plan.shell_top_m = source.f32();
+    plan.overflow_m = source.f32();
+    plan.floor_m = source.f32();
+    plan.highest_rise_m_s = source.f32();
+    plan.highest_fall_m_s = source.f32();
+    let flags = source.u8();
     if flags > 0b11 {
         return None;
     }
     plan.closed = flags & 1 != 0;
     header.provisional = flags & 2 != 0;
     plan.liquid = take_liquid(source)?;
-    plan.gas =
-        Gas { lowest_pa: source.f32()?, nominal_pa: source.f32()?, highest_pa: source.f32()? };
+    plan.gas = Gas { lowest_pa: source.f32(), nominal_pa: source.f32(), highest_pa: source.f32() };
     plan.outside = take_list(source, |source| {
         Some(Outside {
-            highest_m: source.f32()?,
-            lowest_m: source.f32()?,
-            density: take_band(source)?,
+            highest_m: source.f32(),
+            lowest_m: source.f32(),
+            density: take_band(source),
         })
     })?;
     plan.level = take_level(source)?;
     plan.alarm = take_alarm(source)?;
     plan.logging = LoggingPlan {
-        interval_ms: source.u32()?,
-        idle_interval_ms: source.u32()?,
-        flush_after_ms: source.u32()?,
+        interval_ms: source.u32(),
+        idle_interval_ms: source.u32(),
+        flush_after_ms: source.u32(),
     };
     plan.parts.clear();
     plan.numbers.clear();
-    for _ in 0..source.u8()? {
+    for _ in 0..source.u8() {
         plan.parts.push(parts::take(source, &mut plan.numbers)?).ok()?;
     }
-    Some(header)
+    source.whole().map(|()| header)
 }
 
 /// The names in a plan's bytes: calls `part` with each part's index and name, and gives the tank's.
@@ -183,14 +180,16 @@ fn names_and_rest(
     mut part: impl FnMut(usize, &str),
 ) -> Result<(Name, &[u8]), PlanError> {
     let mut plan = Plan::empty();
-    let mut source = Source(bytes.get(4..).ok_or(PlanError::NotAPlan)?);
+    let mut rest = bytes.get(4..).ok_or(PlanError::NotAPlan)?;
+    let mut source = Reader::new(&mut rest);
     take(&mut source, &mut plan).ok_or(PlanError::Damaged)?;
     for index in 0..plan.parts.len() {
         let name: Name = take_text(&mut source).ok_or(PlanError::Names)?;
         part(index, &name);
     }
     let tank = take_text(&mut source).ok_or(PlanError::Names)?;
-    Ok((tank, source.0))
+    source.whole().ok_or(PlanError::Names)?;
+    Ok((tank, rest))
 }
 
 fn text(sink: &mut Sink<'_>, text: &str) -> Result<(), PlanError> {
@@ -202,10 +201,10 @@ fn text(sink: &mut Sink<'_>, text: &str) -> Result<(), PlanError> {
     Ok(())
 }
 
-fn take_text<F: Fetch>(source: &mut Source<F>) -> Option<Name> {
+fn take_text(source: &mut Reader<'_>) -> Option<Name> {
     let mut bytes = [0; NAME_BYTES_MAX];
-    let text = bytes.get_mut(..usize::from(source.u8()?))?;
-    source.fill(text)?;
+    let text = bytes.get_mut(..usize::from(source.u8()))?;
+    source.fill(text);
     core::str::from_utf8(text).ok()?.try_into().ok()
 }
 
@@ -213,19 +212,19 @@ fn count(length: usize) -> Result<u8, PlanError> {
     u8::try_from(length).map_err(|_| PlanError::TooLarge)
 }
 
-fn take_list<F: Fetch, T, const N: usize>(
-    source: &mut Source<F>,
-    mut take: impl FnMut(&mut Source<F>) -> Option<T>,
+fn take_list<T, const N: usize>(
+    source: &mut Reader<'_>,
+    mut take: impl FnMut(&mut Reader<'_>) -> Option<T>,
 ) -> Option<Vec<T, N>> {
     let mut list = Vec::new();
-    for _ in 0..source.u8()? {
+    for _ in 0..source.u8() {
         list.push(take(source)?).ok()?;
     }
     Some(list)
 }
 
-fn flag<F: Fetch>(source: &mut Source<F>) -> Option<bool> {
-    match source.u8()? {
+fn flag(source: &mut Reader<'_>) -> Option<bool> {
+    match source.u8() {
         0 => Some(false),
         1 => Some(true),
         _ => None,
@@ -238,12 +237,8 @@ fn put_band(sink: &mut Sink<'_>, band: &Band) {
     sink.f32(band.high_kg_m3);
 }
 
-fn take_band<F: Fetch>(source: &mut Source<F>) -> Option<Band> {
-    Some(Band {
-        estimate_kg_m3: source.f32()?,
-        low_kg_m3: source.f32()?,
-        high_kg_m3: source.f32()?,
-    })
+fn take_band(source: &mut Reader<'_>) -> Band {
+    Band { estimate_kg_m3: source.f32(), low_kg_m3: source.f32(), high_kg_m3: source.f32() }
 }
 
 fn put_site(sink: &mut Sink<'_>, plan: &Plan, provisional: bool) {
@@ -287,28 +282,28 @@ fn put_liquid(sink: &mut Sink<'_>, liquid: &LiquidPlan) -> Result<(), PlanError>
     Ok(())
 }
 
-fn take_liquid<F: Fetch>(source: &mut Source<F>) -> Option<LiquidPlan> {
-    let top = take_band(source)?;
-    let table_uncertainty = source.f32()?;
+fn take_liquid(source: &mut Reader<'_>) -> Option<LiquidPlan> {
+    let top = take_band(source);
+    let table_uncertainty = source.f32();
     let points: Vec<(f32, f32), 8> =
-        take_list(source, |source| Some((source.f32()?, source.f32()?)))?;
+        take_list(source, |source| Some((source.f32(), source.f32())))?;
     let temperature = if flag(source)? {
         Some(TemperaturePlan {
-            celsius_at_zero: source.f32()?,
-            celsius_per_count_16: source.f32()?,
-            uncertainty_k: source.f32()?,
+            celsius_at_zero: source.f32(),
+            celsius_per_count_16: source.f32(),
+            uncertainty_k: source.f32(),
         })
     } else {
         None
     };
     let below = take_list(source, |source| {
         Some(Layer {
-            surface_m: source.f32()?,
-            surface_uncertainty_m: source.f32()?,
-            density: take_band(source)?,
+            surface_m: source.f32(),
+            surface_uncertainty_m: source.f32(),
+            density: take_band(source),
         })
     })?;
-    let products = take_list(source, take_band)?;
+    let products = take_list(source, |source| Some(take_band(source)))?;
     let table = DensityTable::new(&points)?;
     Some(LiquidPlan { top, table, table_uncertainty, temperature, below, products })
 }
@@ -364,37 +359,37 @@ fn put_level(sink: &mut Sink<'_>, level: &LevelPlan) {
     sink.u32(level.failed_after_ms);
 }
 
-fn take_level<F: Fetch>(source: &mut Source<F>) -> Option<LevelPlan> {
-    let sensor = match source.u8()? {
+fn take_level(source: &mut Reader<'_>) -> Option<LevelPlan> {
+    let sensor = match source.u8() {
         0 => LevelSensor::Surface,
-        1 => LevelSensor::Head { at_m: source.f32()?, reference: Reference::GasSpace },
+        1 => LevelSensor::Head { at_m: source.f32(), reference: Reference::GasSpace },
         2 => {
-            let at_m = source.f32()?;
-            let offset_pa = [source.f32()?, source.f32()?, source.f32()?];
+            let at_m = source.f32();
+            let offset_pa = [source.f32(), source.f32(), source.f32()];
             LevelSensor::Head { at_m, reference: Reference::Atmosphere { offset_pa } }
         }
         _ => return None,
     };
-    let signal = match source.u8()? {
+    let signal = match source.u8() {
         0 => SignalKind::CurrentLoop,
         1 => SignalKind::Register {
-            unit: source.u8()?,
-            function: source.u8()?,
-            register: source.u16()?,
-            coding: source.u8()?,
+            unit: source.u8(),
+            function: source.u8(),
+            register: source.u16(),
+            coding: source.u8(),
         },
         _ => return None,
     };
     Some(LevelPlan {
         sensor,
         signal,
-        zero_count_16: source.i32()?,
-        value_at_zero: source.f32()?,
-        value_per_count_16: source.f32()?,
-        uncertainty: source.f32()?,
-        uncertainty_per_distance: source.f32()?,
-        reference_m: source.f32()?,
-        failed_after_ms: source.u32()?,
+        zero_count_16: source.i32(),
+        value_at_zero: source.f32(),
+        value_per_count_16: source.f32(),
+        uncertainty: source.f32(),
+        uncertainty_per_distance: source.f32(),
+        reference_m: source.f32(),
+        failed_after_ms: source.u32(),
     })
 }
 
@@ -406,12 +401,12 @@ fn put_threshold(sink: &mut Sink<'_>, threshold: &ThresholdPlan) {
     sink.u8(u8::from(threshold.latch));
 }
 
-fn take_threshold<F: Fetch>(source: &mut Source<F>) -> Option<ThresholdPlan> {
+fn take_threshold(source: &mut Reader<'_>) -> Option<ThresholdPlan> {
     Some(ThresholdPlan {
-        utilisation: source.f32()?,
-        deadband: source.f32()?,
-        on_delay_ms: source.u32()?,
-        off_delay_ms: source.u32()?,
+        utilisation: source.f32(),
+        deadband: source.f32(),
+        on_delay_ms: source.u32(),
+        off_delay_ms: source.u32(),
         latch: flag(source)?,
     })
 }
@@ -427,13 +422,13 @@ fn put_alarm(sink: &mut Sink<'_>, alarm: &AlarmPlan) {
     sink.u32(alarm.sounds_again_after_ms);
 }
 
-fn take_alarm<F: Fetch>(source: &mut Source<F>) -> Option<AlarmPlan> {
+fn take_alarm(source: &mut Reader<'_>) -> Option<AlarmPlan> {
     Some(AlarmPlan {
         warn: take_threshold(source)?,
         alarm: take_threshold(source)?,
         inward: if flag(source)? { Some(take_threshold(source)?) } else { None },
-        response_time_ms: source.u32()?,
-        sounds_again_after_ms: source.u32()?,
+        response_time_ms: source.u32(),
+        sounds_again_after_ms: source.u32(),
     })
 }
 

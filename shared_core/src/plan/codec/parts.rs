@@ -12,8 +12,9 @@
 //! | capacities outward, then inward: mask u8, f32 for each set bit | |
 //! | design states u8, 3 f32 each | |
 
+use super::reader::Reader;
 use super::{PlanError, count, flag, take_list};
-use crate::cursor::{Fetch, Sink, Source};
+use crate::cursor::Sink;
 use crate::part::{
     BoltPattern, Capacities, Cover, CoverNumbers, DesignState, Geometry, Held, Part, Stated,
     WeightingNumbers,
@@ -88,60 +89,52 @@ fn put_pieces(sink: &mut Sink<'_>, pieces: &Pieces, numbers: &[f32]) {
     pieces.pieces(numbers).iter().copied().flatten().flatten().for_each(|&one| sink.f32(one));
 }
 
-fn take_pieces<F: Fetch>(source: &mut Source<F>, numbers: &mut Numbers) -> Option<(Shape, f32)> {
-    let sizes = [source.f32()?, source.f32()?, source.f32()?];
-    let sine = source.f32()?;
-    let counts = [source.u8()?, source.u8()?];
+fn take_pieces(source: &mut Reader<'_>, numbers: &mut Numbers) -> Option<(Shape, f32)> {
+    let sizes = [source.f32(), source.f32(), source.f32()];
+    let sine = source.f32();
+    let counts = [source.u8(), source.u8()];
     let first = u16::try_from(numbers.len()).ok()?;
     let pieces = Pieces::new(sizes, sine, first, counts);
     for _ in 0..pieces.count() {
-        numbers.push(source.f32()?).ok()?;
+        numbers.push(source.f32()).ok()?;
     }
     Some((Shape::Pieces(pieces), sine))
 }
 
-pub(super) fn take<F: Fetch>(source: &mut Source<F>, numbers: &mut Numbers) -> Option<Part> {
-    let kind = source.u8()?;
-    let bottom_m = source.f32()?;
-    let top_m = source.f32()?;
-    let outside = source.u8()?;
+pub(super) fn take(source: &mut Reader<'_>, numbers: &mut Numbers) -> Option<Part> {
+    let kind = source.u8();
+    let bottom_m = source.f32();
+    let top_m = source.f32();
+    let outside = source.u8();
     let geometry = take_geometry(source, kind, numbers)?;
     let outward = take_capacities(source)?;
     let inward = take_capacities(source)?;
     let designed_for = take_list(source, |source| {
-        Some(DesignState {
-            level_m: source.f32()?,
-            weight_n_m3: source.f32()?,
-            gas_pa: source.f32()?,
-        })
+        Some(DesignState { level_m: source.f32(), weight_n_m3: source.f32(), gas_pa: source.f32() })
     })?;
     Some(Part { geometry, bottom_m, top_m, outward, inward, designed_for, outside })
 }
 
-fn take_geometry<F: Fetch>(
-    source: &mut Source<F>,
-    kind: u8,
-    numbers: &mut Numbers,
-) -> Option<Geometry> {
+fn take_geometry(source: &mut Reader<'_>, kind: u8, numbers: &mut Numbers) -> Option<Geometry> {
     let (shape, sine) = match kind {
         0 => {
             return Some(Geometry::Course {
-                half_diameter_m: source.f32()?,
-                design_point_m: source.f32()?,
-                height_m: source.f32()?,
+                half_diameter_m: source.f32(),
+                design_point_m: source.f32(),
+                height_m: source.f32(),
             });
         }
         1 => {
-            let (radius_m, sine) = (source.f32()?, source.f32()?);
+            let (radius_m, sine) = (source.f32(), source.f32());
             (Shape::Circle(Circle::new(radius_m, sine)), sine)
         }
         2 => {
-            let (width_m, length_m, sine) = (source.f32()?, source.f32()?, source.f32()?);
+            let (width_m, length_m, sine) = (source.f32(), source.f32(), source.f32());
             (Shape::Rectangle(Rectangle::new(width_m, length_m, sine)), sine)
         }
-        3 => (Shape::Level { area_m2: source.f32()? }, 0.0),
+        3 => (Shape::Level { area_m2: source.f32() }, 0.0),
         4 => {
-            let (half_m, aspect, sine) = (source.f32()?, source.f32()?, source.f32()?);
+            let (half_m, aspect, sine) = (source.f32(), source.f32(), source.f32());
             (Shape::Circle(Circle::ellipse(half_m, aspect, sine)), sine)
         }
         5 => take_pieces(source, numbers)?,
@@ -212,61 +205,60 @@ fn put_cut(sink: &mut Sink<'_>, cut: Option<[f32; 3]>) {
 }
 
 #[expect(clippy::option_option, reason = "outer: bytes ran out; inner: no cover")]
-fn take_cover<F: Fetch>(source: &mut Source<F>, face: &Face<'_>) -> Option<Option<Cover>> {
-    let word = source.u16()?;
+fn take_cover(source: &mut Reader<'_>, face: &Face<'_>) -> Option<Option<Cover>> {
+    let word = source.u16();
     let mut cover = match word & HELD {
         0 if word == 0 => return Some(None),
         0 => return None,
         ANYHOW => {
-            let held = match source.u16()? {
+            let held = match source.u16() {
                 0 => Held::Line,
                 1 => Held::Side,
                 count => Held::Bolts(count),
             };
-            let arm_m = source.f32()?;
+            let arm_m = source.f32();
             let weightings = [take_weighting(source)?, take_weighting(source)?];
             CoverNumbers { held, arm_m, weightings, ..CoverNumbers::default() }
         }
         OTHERWISE => CoverNumbers::default(),
         count => {
-            let per_moment = [source.f32()?, source.f32()?];
+            let per_moment = [source.f32(), source.f32()];
             let cuts = [take_cut(source)?, take_cut(source)?];
             BoltPattern { count, per_moment, cuts }.cover(face.shape)
         }
     };
     if word & WEIGHT != 0 {
-        cover.weight_n = source.f32()?;
+        cover.weight_n = source.f32();
     }
     cover.weight_is_measured = word & MEASURED != 0;
     if word & SILL != 0 {
-        cover.sill_above_m = source.f32()?;
+        cover.sill_above_m = source.f32();
     }
     Some(Some(Cover::new(&cover, face)))
 }
 
-fn take_weighting<F: Fetch>(source: &mut Source<F>) -> Option<WeightingNumbers> {
+fn take_weighting(source: &mut Reader<'_>) -> Option<WeightingNumbers> {
     let mut straight = [0.0; 2];
-    take_numbers(source, &mut straight)?;
+    take_numbers(source, &mut straight);
     let [foot, slope] = straight;
     Some(WeightingNumbers { foot, slope, cut: take_cut(source)? })
 }
 
 #[expect(clippy::option_option, reason = "outer: bytes ran out; inner: no cut")]
-fn take_cut<F: Fetch>(source: &mut Source<F>) -> Option<Option<[f32; 3]>> {
+fn take_cut(source: &mut Reader<'_>) -> Option<Option<[f32; 3]>> {
     if !flag(source)? {
         return Some(None);
     }
     let mut cut = [0.0; 3];
-    take_numbers(source, &mut cut)?;
+    take_numbers(source, &mut cut);
     Some(Some(cut))
 }
 
 #[inline(never)]
-fn take_numbers<F: Fetch>(source: &mut Source<F>, numbers: &mut [f32]) -> Option<()> {
+fn take_numbers(source: &mut Reader<'_>, numbers: &mut [f32]) {
     for number in numbers {
-        *number = source.f32()?;
+        *number = source.f32();
     }
-    Some(())
 }
 
 fn put_capacities(sink: &mut Sink<'_>, capacities: &Capacities) {
@@ -282,15 +274,15 @@ fn put_capacities(sink: &mut Sink<'_>, capacities: &Capacities) {
     all.iter().flatten().for_each(|capacity| sink.f32(capacity.get()));
 }
 
-fn take_capacities<F: Fetch>(source: &mut Source<F>) -> Option<Capacities> {
-    let mask = source.u8()?;
+fn take_capacities(source: &mut Reader<'_>) -> Option<Capacities> {
+    let mask = source.u8();
     if mask > 0b1_1111 {
         return None;
     }
     let mut all = [None; 5];
     for (bit, slot) in all.iter_mut().enumerate() {
         if mask >> bit & 1 == 1 {
-            *slot = Some(Stated::new(source.f32()?)?);
+            *slot = Some(Stated::new(source.f32())?);
         }
     }
     let [pressure_pa, hoop_tension_n_m, force_n, bolt_n, moment_n_m] = all;

@@ -3,8 +3,9 @@
 //! A plan ends with its names, or with sections `tag u8, length u16, bytes`, by rising tag. A tag
 //! that is not known here is refused: the plan asks for something that would not be done.
 
+use super::reader::Reader;
 use super::{PlanError, count, names_and_rest};
-use crate::cursor::{Fetch, Sink, Source};
+use crate::cursor::Sink;
 use crate::plan::{Filling, Plan};
 
 const FILLING: u8 = 1;
@@ -30,12 +31,12 @@ pub(super) fn put(sink: &mut Sink<'_>, plan: &Plan) -> Result<(), PlanError> {
 }
 
 /// Reads the sections up to the end of the bytes.
-pub(super) fn take<F: Fetch>(source: &mut Source<F>, plan: &mut Plan) -> Option<()> {
+pub(super) fn take(source: &mut Reader<'_>, plan: &mut Plan) -> Option<()> {
     plan.filling = Filling::NONE;
     let mut last = 0;
     // Nothing behind the names, or behind a section, is the end.
-    while let Some(tag) = source.u8() {
-        let length = source.u16()?;
+    while let Some(tag) = source.more() {
+        let length = source.u16();
         if tag <= last {
             return None;
         }
@@ -44,24 +45,25 @@ pub(super) fn take<F: Fetch>(source: &mut Source<F>, plan: &mut Plan) -> Option<
             FILLING => take_filling(source, length, plan)?,
             ACCEPTED_MARGIN => {
                 for _ in 0..length {
-                    source.u8()?;
+                    source.u8();
                 }
             }
             _ => return None,
         }
+        source.whole()?;
     }
     Some(())
 }
 
-fn take_filling<F: Fetch>(source: &mut Source<F>, length: u16, plan: &mut Plan) -> Option<()> {
+fn take_filling(source: &mut Reader<'_>, length: u16, plan: &mut Plan) -> Option<()> {
     let first = u16::try_from(plan.numbers.len()).ok()?;
-    let (window_ms, limits, rows) = (source.u32()?, source.u8()?, source.u8()?);
+    let (window_ms, limits, rows) = (source.u32(), source.u8(), source.u8());
     let numbers = u16::from(limits) + 2 * u16::from(rows);
     if length != 6 + 4 * numbers || rows == 0 {
         return None;
     }
     for _ in 0..numbers {
-        plan.numbers.push(source.f32()?).ok()?;
+        plan.numbers.push(source.f32()).ok()?;
     }
     plan.filling = Filling { window_ms, first, limits, rows };
     Some(())
