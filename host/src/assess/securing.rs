@@ -173,6 +173,3 @@ pub(super) fn cover_of(part: &Part) -> Option<&Cover> {
         Geometry::Course { .. } => None,
     }
 }
-
-#[cfg(test)]
-mod tests;

@@ -91,6 +91,3 @@ fn modulus_gpa(rating: &Rating) -> f64 {
     });
     named.map_or(STEEL_GPA, |(_, gpa)| *gpa)
 }
-
-#[cfg(test)]
-mod tests;
