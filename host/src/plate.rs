@@ -148,7 +148,7 @@ pub struct Solution {
     /// Checked deflections.
     pub deflections: Vec<DeflectionAt>,
     /// What cutting the series off costs: largest difference between two orders over all checked
-    /// moments and the loads of [`probe`], as a share of the largest moment under that load.
+    /// moments and three probing loads, as a share of the largest moment under that load.
     pub series_error: f64,
 }
 

@@ -82,7 +82,7 @@ fn finds_the_next_frame_after_garbage() {
 fn refuses_what_it_does_not_know() {
     let mut device = Device::default();
     let reply = |answers: Vec<(u8, Vec<u8>)>| ErrorReply::decode(&answers[0].1).unwrap();
-    for kind in [0x00, 0x05, 0x7F, 0x80, Kind::Status.number(), 0xFE] {
+    for kind in [0x00, 0x06, 0x7F, 0x80, Kind::Status.number(), 0xFE] {
         device.link.push_raw(kind, &[1, 2]);
         assert_eq!(reply(device.run()), ErrorCode::UnknownKind.reply(kind, u32::from(kind)));
     }

@@ -123,7 +123,7 @@ fn is_clear(plan: &Plan, resolved: &Resolved, around: f32, ahead_ms: u32) -> boo
     let outward = at_most(gone(&plan.alarm.warn), gone(&plan.alarm.alarm));
     let inward = plan.alarm.inward.as_ref().map_or(f32::MAX, gone);
     let mut clear = plan.level.sensor != LevelSensor::Surface || high < plan.shell_top_m;
-    clear &= is_far_from_limit(plan, high, density);
+    clear &= is_far_from_limit(plan, high);
     loads(plan, &[ends], |_, part| {
         clear &= part.utilisation_bound.lane(0) < outward;
         clear &= part.utilisation_inward.lane(0) < inward;
@@ -132,15 +132,31 @@ fn is_clear(plan: &Plan, resolved: &Resolved, around: f32, ahead_ms: u32) -> boo
 }
 
 /// Whether the alarm of the time to limit cannot stand until the trend has forgotten the intervals
-/// before a reading of `high`, which means the highest level for the lightest liquid.
-fn is_far_from_limit(plan: &Plan, high: f32, density: Band) -> bool {
-    let limit_m = plan.limits_m().iter().fold(f32::MAX, |least, &limit_m| at_most(least, limit_m));
-    let lightest = Band { estimate_kg_m3: density.low_kg_m3, ..density };
+/// before a reading of `high`, whatever product is confirmed.
+fn is_far_from_limit(plan: &Plan, high: f32) -> bool {
     #[expect(clippy::cast_precision_loss, reason = "to 6e-8 of the time, and a tenth is added")]
     let [window_s, response_s] = [plan.filling.window_ms, plan.alarm.response_time_ms]
         .map(|time_ms| time_ms as f32 * 1.0e-3);
     let later_s = REMEMBERED_WINDOWS * window_s + (1.0 + TIME_DEADBAND) * response_s;
-    crate::liquid::level_m(plan, high, lightest) + plan.highest_rise_m_s * later_s < limit_m
+    let rise_m = plan.highest_rise_m_s * later_s;
+    plan.limits_m().iter().enumerate().all(|(index, &limit_m)| {
+        let estimate_kg_m3 = lightest_kg_m3(plan, index);
+        let level_m =
+            crate::liquid::level_m(plan, high, Band { estimate_kg_m3, ..plan.liquid.top });
+        level_m + rise_m < limit_m
+    })
+}
+
+/// Least density by which the level is estimated that goes with the limit level of this index
+/// ([`Plan::state_filling`]); it gives the highest level.
+fn lightest_kg_m3(plan: &Plan, index: usize) -> f32 {
+    let crate::plan::LiquidPlan { top, products, .. } = &plan.liquid;
+    match index.checked_sub(2).map(|product| products.get(product)) {
+        Some(product) => product.unwrap_or(top).low_kg_m3,
+        // While it is not known which product it is, no temperature moves the estimate.
+        None if index == 0 && !products.is_empty() => top.estimate_kg_m3,
+        None => top.low_kg_m3,
+    }
 }
 
 impl Plan {
