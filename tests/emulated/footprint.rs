@@ -71,6 +71,9 @@ const CEILINGS: Budgets = Budgets {
 /// Rows whose ceiling the device does not keep yet. They keep their budget, so that they grow no
 /// further, and the table says so; a row that comes below its ceiling has to leave this list.
 const NOT_KEPT: [&str; 2] = ["flash, B", "evaluate, instructions"];
+/// A row whose figure moves by some 1,500 with the pace of the sensor's peer, about its ceiling: its
+/// budget alone decides, and the table shows on which side of the ceiling it was this time.
+const MOVES: &str = "cycle without bus waits, median, instructions";
 
 impl Budgets {
     fn rows(self) -> [(&'static str, u64); 8] {
@@ -101,7 +104,8 @@ fn the_device_keeps_its_budgets() -> Outcome {
         let kept = found <= ceiling;
         let said = if kept { "" } else { "  OVER THE CEILING" };
         println!("{what:<46} {found:>9} {budget:>9} {shown:>9}{said}");
-        if found > budget || kept == NOT_KEPT.contains(&what) {
+        let is_out_of_date = what != MOVES && kept == NOT_KEPT.contains(&what);
+        if found > budget || is_out_of_date {
             over.push(format!("{what}: {found}, budget {budget}, ceiling {shown}"));
         }
     }
