@@ -8,6 +8,7 @@ mod bending;
 mod contents;
 mod cover;
 mod cover_rule;
+pub mod curved;
 mod device;
 mod faults;
 mod filling;
@@ -22,6 +23,7 @@ pub(crate) use bending::{Bending, Bent, Substitute};
 pub use contents::Contents;
 pub(crate) use cover::{about_centroid, latch_per_moment};
 pub(crate) use cover_rule::pressure_pa as cover_pressure_pa;
+pub use part::table;
 pub(crate) use part::without_plates;
 pub use shape::{Numbers, plane_shape};
 

@@ -24,7 +24,7 @@ pub use trend::{TimeToLimit, Trend};
 
 use crate::lane::Lane;
 use crate::liquid::{Readings, States, states};
-use crate::part::{Geometry, PartLoads, evaluate_into};
+use crate::part::{Geometry, Part, PartLoads, evaluate_into};
 use crate::plan::Plan;
 use crate::signal::Resolved;
 use core::array;
@@ -95,17 +95,37 @@ fn each_load<const N: usize>(
     let states = pressures(plan, resolved);
     let mut digest = Digest::new();
     // One room for each kind of part: what a kind does not have stays zero in its own.
-    let (mut of_course, mut of_plane) = (PartLoads::NONE, PartLoads::NONE);
+    let [mut of_course, mut of_plane] = [PartLoads::NONE; 2];
     for (index, one) in plan.parts.iter().enumerate() {
         let loads = match one.geometry {
             Geometry::Course { .. } => &mut of_course,
             Geometry::Plane { .. } => &mut of_plane,
+            Geometry::Curved(_) => {
+                // Rare: its own room is made anew.
+                each_curved(plan, one, &states, &mut digest, &mut |loads| part(index, loads));
+                continue;
+            }
         };
         evaluate_into(plan, one, &states, loads);
         digest.add(one, loads);
         part(index, loads);
     }
     digest
+}
+
+/// One part of tables, its loads in a room that only it needs.
+#[inline(never)]
+fn each_curved<const N: usize>(
+    plan: &Plan,
+    one: &Part,
+    states: &States<N>,
+    digest: &mut Digest<N>,
+    take: &mut dyn FnMut(&PartLoads<N>),
+) {
+    let mut loads = PartLoads::NONE;
+    evaluate_into(plan, one, states, &mut loads);
+    digest.add(one, &loads);
+    take(&loads);
 }
 
 #[cfg(test)]

@@ -4,10 +4,12 @@
 //! loads of a part are elementary loads (one weighting each) or the largest of several.
 
 mod cover;
+pub mod curved;
 mod evaluate;
 mod opening;
 
 pub use cover::{BOLTS_MAX, BoltPattern, Cover, CoverNumbers, Held, Weighting, WeightingNumbers};
+pub use curved::Curved;
 pub(crate) use evaluate::evaluate_into;
 pub use evaluate::{Loads, PartLoads, acting, evaluate};
 pub use opening::{OPENING_GAS_PA, Shut};
@@ -48,6 +50,8 @@ pub enum Geometry {
         /// The cover of an opening; none of a panel.
         cover: Option<Cover>,
     },
+    /// A curved part, or whatever else has tables.
+    Curved(Curved),
 }
 
 impl Geometry {
@@ -94,9 +98,10 @@ impl fmt::Debug for Stated {
 pub struct Capacities {
     /// Largest pressure on the part, Pa.
     pub pressure_pa: Option<Stated>,
-    /// Hoop tension of a course, N/m.
+    /// Hoop tension of a course, N/m; of a shell of revolution largest tension in any direction,
+    /// inward largest compression.
     pub hoop_tension_n_m: Option<Stated>,
-    /// Force on a plane part, N.
+    /// Force on a plane part, or size of the force on a curved one, N.
     pub force_n: Option<Stated>,
     /// Largest share of a bolt, or force on a pin or hinge line, N.
     pub bolt_n: Option<Stated>,

@@ -19,7 +19,7 @@ mod pieces;
 mod rectangle;
 
 use crate::lane::Lane;
-pub use circle::Circle;
+pub use circle::{Circle, disc_prism};
 pub use pieces::{PIECE_NUMBERS, Pieces};
 pub use rectangle::Rectangle;
 

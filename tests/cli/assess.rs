@@ -9,7 +9,7 @@ const BRINE: &str = "configs/brine_day_tank.toml";
 const SET_POINT: &[&str] =
     &["pressure_pa", "current_a", "level_lightest_m", "level_nominal_m", "level_densest_m"];
 
-const EXAMPLES: [&str; 7] = [
+const EXAMPLES: [&str; 8] = [
     "brine_day_tank",
     "laboratory_tank",
     "rinse_basin",
@@ -17,6 +17,7 @@ const EXAMPLES: [&str; 7] = [
     "hatch_test_tank",
     "plate_box",
     "wine_drum",
+    "curved_parts",
 ];
 
 /// Every key that the document may have, by the place where it stands.
@@ -68,7 +69,11 @@ const KEYS: [(&str, &[&str]); 15] = [
         &[
             "pressure_pa",
             "hoop_tension_n_m",
+            "tension_n_m",
+            "compression_n_m",
             "force_n",
+            "force_x_n",
+            "force_z_n",
             "centre_of_pressure_m",
             "centre_of_pressure_slope_m",
             "centre_of_pressure_sideways_m",

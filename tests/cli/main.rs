@@ -1,6 +1,7 @@
 //! The command line as a user meets it: numbers, texts, exit statuses, streams.
 
 mod assess;
+mod curved_parts;
 mod errors;
 mod hatches;
 mod liquids;

@@ -1,6 +1,7 @@
 //! The published, own and edge cases through the core.
 
 use crate::cases::holds;
+use crate::core_curved;
 use crate::core_engine::{
     at_head, at_level, course, design_of, loads_of, loads_with, narrow, part_of, plan_of, plane_of,
     wall,
@@ -23,7 +24,8 @@ use strake_oracle::plane::PlanePart;
 const ALLOWANCE: f64 = 4e-6;
 
 /// Rows answered by the core, by topic.
-const OPEN_ANSWERED: &[(&str, usize)] = &[("hatch", 5), ("plane", 45), ("signal", 3)];
+const OPEN_ANSWERED: &[(&str, usize)] =
+    &[("curved", 23), ("hatch", 5), ("plane", 45), ("signal", 3)];
 const OWN_ANSWERED: &[(&str, usize)] =
     &[("bound", 5), ("density", 3), ("hatch", 4), ("plane", 8), ("shell", 5)];
 const EDGE_ANSWERED: &[(&str, usize)] =
@@ -47,7 +49,10 @@ fn core_answer(row: &Row) -> Result<Answer, Reason> {
             designed_for(&design, &now, edges_m, ask)
         }
         Problem::LoopClass(current_a) => Ok(Answer::Text(loop_class(current_a).into())),
-        Problem::Curved { .. } => Err("curved parts are not offered by this version"),
+        Problem::Curved { part, liquid, ask } => {
+            let found = core_curved::answer(&part, &liquid, &ask)?;
+            Ok(Answer::Number(if row.unit == "rad" { found.to_radians() } else { found }))
+        }
         Problem::InferredDensity { .. } => Err("inferred density is not offered by this version"),
         Problem::Filling { .. } => Err("time to limit is not offered by this version"),
         Problem::Rule(_) => Err("rule formulas are the engineer's"),

@@ -141,7 +141,7 @@ pub(crate) fn wall(bottom_m: f64, top_m: f64) -> Part {
     bare(Geometry::plane(shape, 1.0, None), narrow(bottom_m), narrow(top_m))
 }
 
-fn bare(geometry: Geometry, bottom_m: f32, top_m: f32) -> Part {
+pub(crate) fn bare(geometry: Geometry, bottom_m: f32, top_m: f32) -> Part {
     Part {
         geometry,
         bottom_m,

@@ -2,6 +2,7 @@
 
 mod cases;
 mod core_cases;
+mod core_curved;
 mod core_engine;
 mod core_error;
 mod plate_cases;

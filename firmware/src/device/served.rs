@@ -241,7 +241,7 @@ impl<B: Board> Served for Device<B> {
 }
 
 /// The loads of a part by their number in the plan format plus one: pressure, hoop tension, force,
-/// bolt share, moment.
+/// bolt share, moment; 8 and 9 the force on a curved part along angle 0 and upwards.
 fn load_values(geometry: &Geometry, of: &PartLoads<1>) -> [LoadValue; 4] {
     let value = |load: u8, pick: fn(&strake_core::part::Loads<1>) -> f32| LoadValue {
         load,
@@ -264,6 +264,12 @@ fn load_values(geometry: &Geometry, of: &PartLoads<1>) -> [LoadValue; 4] {
                 Held::Bolts(_) => [pressure, force, bolt, unused],
                 Held::Line | Held::Side => [pressure, force, bolt, moment],
             }
+        }
+        Geometry::Curved(curved) => {
+            let tension = value(2, |loads| loads.hoop_tension_n_m.lane(0));
+            let x = value(8, |loads| loads.force_x_n.lane(0));
+            let z = value(9, |loads| loads.force_z_n.lane(0));
+            [pressure, x, z, if curved.places > 0 { tension } else { unused }]
         }
     }
 }

@@ -65,7 +65,7 @@ pub struct State {
 pub struct PartRow {
     /// Its name.
     pub name: String,
-    /// course, panel or hatch.
+    /// course, panel, hatch or curved.
     pub kind: &'static str,
     /// Of the estimate.
     pub loads: Loads,
@@ -98,9 +98,21 @@ pub struct Loads {
     /// Hoop tension of a course.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub hoop_tension_n_m: Option<f32>,
-    /// Force on a plane part, positive from the liquid outwards.
+    /// Largest tension of a shell of revolution, in any direction and place.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub tension_n_m: Option<f32>,
+    /// Its largest compression, as a positive number; of the outward bound none.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub compression_n_m: Option<f32>,
+    /// Force on a plane part, positive from the liquid outwards; of a curved part its size.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub force_n: Option<f32>,
+    /// Force on a curved part along angle 0.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub force_x_n: Option<f32>,
+    /// Force on a curved part, positive up.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub force_z_n: Option<f32>,
     /// Centre of pressure of a plane part; of the estimate only.
     #[serde(flatten)]
     pub centre: Option<Centre>,

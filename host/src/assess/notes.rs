@@ -10,7 +10,7 @@ use crate::tank::{Axis, Capacity, Hatch, Part as Stated, Rating, Secured, TankFi
 use crate::units::Quantity::{Length, Pressure, Temperature};
 use crate::units::{UnitSystem, format};
 use strake_core::lane::Lane;
-use strake_core::part::{Part, evaluate};
+use strake_core::part::{Geometry, Part, evaluate};
 
 /// The line under every output that shows a load.
 pub const FIELD_CHECK: &str = "field check: it replaces no licensed inspection and is no overfill \
@@ -30,6 +30,11 @@ pub(crate) fn not_judged(file: &TankFile, desk: &Desk, units: UnitSystem) -> Vec
         if let Stated::Hatch(hatch) = stated {
             hatch_notes(hatch, &mut note);
             turning_notes(desk, hatch, part, &mut note);
+        }
+        if let Geometry::Curved(curved) = &part.geometry
+            && curved.places > 0
+        {
+            shell_notes(desk, part, &mut note);
         }
         let said = !stated.capacity_inward().is_empty();
         if !said && may_turn_inward(desk, part) {
@@ -181,6 +186,20 @@ fn turning_notes(desk: &Desk, hatch: &Hatch, part: &Part, note: &mut impl FnMut(
         let what = "inward: the moment about the pivot may turn inward, no inward capacity for it \
                     is stated";
         note(what.to_owned());
+    }
+}
+
+/// A shell holds its rim and may be pressed together in places.
+fn shell_notes(desk: &Desk, part: &Part, note: &mut impl FnMut(String)) {
+    note("the ring at its rim, which the shell pulls at".to_owned());
+    let range = desk.range();
+    let pressed =
+        [range.low_m, part.bottom_m, part.top_m, range.high_m].into_iter().any(|level_m| {
+            let states = desk.at_true_level(Lane([level_m]));
+            evaluate(desk.plan(), part, &states).inward.hoop_tension_n_m.lane(0) < 0.0
+        });
+    if pressed && part.inward.hoop_tension_n_m.is_none() {
+        note("compression: it is pressed together in places and no capacity is stated".to_owned());
     }
 }
 

@@ -11,7 +11,9 @@ use crate::inverse::{self, PartLimits};
 use crate::tank::{self, Part as Stated, PartKind, Plane, Rating, TankFile};
 use strake_core::lane::Lane;
 use strake_core::liquid::States;
-use strake_core::part::{Cover, Geometry, Held, Part, PartLoads, Weighting, acting, evaluate};
+use strake_core::part::{
+    Cover, Curved, Geometry, Held, Part, PartLoads, Weighting, acting, evaluate,
+};
 use strake_core::shape::{Face, Shape};
 
 /// All rows, in the order of the file.
@@ -42,7 +44,7 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, level_m: f32)
     let computed: PartLoads<1> = evaluate(desk.plan(), part, &all);
     let states = acting(desk.plan(), part, &all);
     let plane = match stated {
-        Stated::Course(_) => None,
+        Stated::Course(_) | Stated::Curved(_) => None,
         Stated::Panel(panel) => Some(&panel.plane),
         Stated::Hatch(hatch) => Some(&hatch.sealed),
     };
@@ -55,18 +57,27 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, level_m: f32)
     let reactions = hatch.and_then(|hatch| securing::reactions(desk, hatch, part, &states));
     // What holds a cover that opens inward carries nothing while the load presses it on its seat.
     let seated = hatch.is_some_and(|hatch| hatch.seats(true));
+    let curved = match &part.geometry {
+        Geometry::Curved(curved) => Some(curved),
+        _ => None,
+    };
     let loads = |loads: &strake_core::part::Loads<1>, state: usize, bolts: bool| {
+        let has = |holds: bool, value: Lane<1>| holds.then(|| value.lane(0));
         let course = matches!(part.geometry, Geometry::Course { .. });
         let held = securing::cover_of(part).map_or(Held::Otherwise, Cover::held);
         let bolted = matches!(held, Held::Bolts(_));
         let reactions = reactions.as_ref().map(|all| &all[state]);
         Loads {
             pressure_pa: loads.pressure_pa.lane(0),
-            hoop_tension_n_m: course.then(|| loads.hoop_tension_n_m.lane(0)),
-            force_n: (!course).then(|| loads.force_n.lane(0)),
+            hoop_tension_n_m: has(course, loads.hoop_tension_n_m),
+            tension_n_m: None,
+            compression_n_m: None,
+            force_n: has(!course, loads.force_n),
+            force_x_n: has(curved.is_some_and(|one| one.places == 0), loads.force_x_n),
+            force_z_n: has(curved.is_some(), loads.force_z_n),
             centre: None,
-            moment_centroid_n_m: (!course).then_some(moments[state]),
-            bolt_n: (bolted && bolts).then(|| loads.bolt_n.lane(0)),
+            moment_centroid_n_m: (!course && curved.is_none()).then_some(moments[state]),
+            bolt_n: has(bolted && bolts, loads.bolt_n),
             stress_pa: None,
             moment_n_m: reactions.map(|one| one.moment_n_m),
             latch_n: reactions.and_then(|one| one.latch_n),
@@ -76,18 +87,47 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, level_m: f32)
     let mut estimate = loads(&computed.estimate, 0, !seated);
     let force = computed.estimate.force_n.lane(0);
     estimate.centre = plane.map(|plane| centre(plane, &states.estimate, force, moments[0]));
+    let mut outward = loads(&computed.outward, 1, !seated);
+    let mut inward = loads(&computed.inward, 2, true);
+    if let Some(curved) = curved {
+        // The size of a force has no least value that would say anything.
+        inward.force_n = None;
+        shell(desk, part, curved, &states, [&mut estimate, &mut outward, &mut inward]);
+    }
     PartRow {
         name: stated.name().to_owned(),
         kind: stated.kind().as_str(),
         loads: estimate,
-        loads_outward_bound: loads(&computed.outward, 1, !seated),
-        loads_inward_bound: loads(&computed.inward, 2, true),
+        loads_outward_bound: outward,
+        loads_inward_bound: inward,
         capacity: capacities(file, stated, true),
         capacity_inward: capacities(file, stated, false),
         plates: Vec::new(),
         opening: securing::opening(desk, part, level_m),
         judgement: judgement(desk, stated, part, &computed),
     }
+}
+
+/// Tensions of a shell: largest and least of the estimate, the largest and the least of the bounds.
+fn shell(
+    desk: &Desk,
+    part: &Part,
+    curved: &Curved,
+    states: &States<1>,
+    [estimate, outward, inward]: [&mut Loads; 3],
+) {
+    if curved.places == 0 {
+        return;
+    }
+    let three = [&states.estimate, &states.upper, &states.lower];
+    let of = |hoop| curved.tensions(hoop, &desk.plan().numbers, part.bottom_m, three);
+    let both = of(true).with(&of(false));
+    let [most, least] = both.estimate.map(|one| one.lane(0));
+    let pressed = |tension: f32| Some(if tension < 0.0 { -tension } else { 0.0 });
+    estimate.tension_n_m = Some(most);
+    estimate.compression_n_m = pressed(least);
+    outward.tension_n_m = Some(both.most.lane(0));
+    inward.compression_n_m = pressed(both.least.lane(0));
 }
 
 /// Moment about the centroid: of the estimate, its largest and its least value.
@@ -190,6 +230,8 @@ fn capacity(file: &TankFile, stated: &Stated, rating: &Rating, outward: bool) ->
             ("pressure_pa", cover_pressure_pa(plate, rating, hatch, outward).ok()?)
         }
         tank::Capacity::Force { n } => ("force_n", *n),
+        tank::Capacity::Tension { n_m } => ("tension_n_m", *n_m),
+        tank::Capacity::Compression { n_m } => ("compression_n_m", *n_m),
         tank::Capacity::Pressure { pa } => ("pressure_pa", *pa),
         tank::Capacity::None { .. } => return None,
     };

@@ -170,6 +170,6 @@ fn says(why: &[String]) -> String {
 pub(super) fn cover_of(part: &Part) -> Option<&Cover> {
     match &part.geometry {
         Geometry::Plane { cover, .. } => cover.as_ref(),
-        Geometry::Course { .. } => None,
+        Geometry::Course { .. } | Geometry::Curved(_) => None,
     }
 }

@@ -1,14 +1,15 @@
 //! Parts: geometry, and in each direction the smallest of equal capacities.
 
 use super::bending::Bending;
+use super::curved::{self, PLACES, Table};
 use super::faults::Faults;
 use super::number::{located, single};
 use super::shape::{Numbers, plane_shape};
 use super::site::HEIGHTS_M;
 use super::{cover, cover_rule};
 use crate::tank::{
-    Capacity, Code, Course, Hatch, Located, Part as Stated, Plane, Rating, Secured, TankFile,
-    Vessel,
+    Capacity, Code, Course, Hatch, Located, Part as Stated, Plane, Rating, Secured, Surface,
+    TankFile, Vessel,
 };
 use crate::units::Quantity::Length;
 use heapless::Vec;
@@ -31,6 +32,7 @@ pub(super) fn part(
         Stated::Course(course) => Some(self::course(file, course, faults)?),
         Stated::Panel(panel) => plane(&panel.plane, None, file, &mut list),
         Stated::Hatch(hatch) => plane(&hatch.sealed, Some(hatch), file, &mut list),
+        Stated::Curved(part) => table(&part.surface).curved(&mut list).map(Geometry::Curved),
     };
     let Some(geometry) = geometry else {
         faults.too_many(stated.located_name().span, "numbers of all shapes", NUMBERS_MAX);
@@ -99,6 +101,20 @@ pub(crate) fn without_plates(stated: &Stated, part: &Part) -> Part {
     Part { outward: capacities(stated, true), ..part.clone() }
 }
 
+/// A curved surface as a table.
+#[must_use]
+pub fn table(surface: &Surface) -> Table {
+    match *surface {
+        Surface::Arc { radius_m, length_m, from_deg, to_deg, inside } => {
+            curved::arc(radius_m, length_m, from_deg, to_deg, inside)
+        }
+        Surface::Dome { radius_m, inside } => curved::dome(radius_m, inside),
+        Surface::Revolved { profile, base_radius_m, height_m, apex_up } => {
+            curved::revolved(profile, base_radius_m, height_m, apex_up)
+        }
+    }
+}
+
 /// The smallest of each kind in one direction.
 fn capacities(stated: &Stated, outward: bool) -> Capacities {
     let ratings = if outward { stated.capacity() } else { stated.capacity_inward() };
@@ -115,7 +131,13 @@ fn capacities(stated: &Stated, outward: bool) -> Capacities {
             },
             _ => None,
         }),
-        hoop_tension_n_m: smallest(&|rating| rating.capacity.value.hoop_tension_n_m()),
+        hoop_tension_n_m: smallest(&|rating| match rating.capacity.value {
+            // What is missed between two places is taken off here.
+            Capacity::Tension { n_m } | Capacity::Compression { n_m } => {
+                Some(n_m * (1.0 - f64::from(PLACES).powi(-2)))
+            }
+            _ => rating.capacity.value.hoop_tension_n_m(),
+        }),
         force_n: smallest(&|rating| match rating.capacity.value {
             Capacity::Force { n } => Some(n),
             _ => None,

@@ -32,6 +32,13 @@ impl Words {
                 self.show(*height_m, Length),
                 self.show(*design_point_m, Length)
             ),
+            Geometry::Curved(curved) => {
+                let [x, z] = curved.rows.map(|rows| rows.map(usize::from).iter().sum::<usize>());
+                format!(
+                    "curved, {x} rows sideways, {z} rows upwards, {} places of tension",
+                    curved.places
+                )
+            }
             Geometry::Plane { shape, sine, centroid_above_m: _, cover } => {
                 let shape_words = match shape {
                     Shape::Circle(circle) if (circle.aspect() - 1.0).abs() > 0.0 => {
@@ -131,13 +138,21 @@ impl Words {
 }
 
 /// The geometry with its own numbers of the plan, wherever they stand in it.
-fn exact<'a>(geometry: &Geometry, numbers: &'a [f32]) -> (Geometry, [&'a [[f32; 4]]; 2]) {
+fn exact<'a>(geometry: &Geometry, numbers: &'a [f32]) -> (Geometry, Vec<&'a [f32]>) {
     let mut geometry = geometry.clone();
-    let mut own: [&[[f32; 4]]; 2] = [&[], &[]];
-    if let Geometry::Plane { shape: Shape::Pieces(pieces), .. } = &mut geometry {
-        own = pieces.pieces(numbers);
-        pieces.first = 0;
-    }
+    let own = match &mut geometry {
+        Geometry::Plane { shape: Shape::Pieces(pieces), .. } => {
+            let own = pieces.pieces(numbers).map(|list| list.as_flattened());
+            pieces.first = 0;
+            own.to_vec()
+        }
+        Geometry::Curved(curved) => {
+            let own = curved.numbers(numbers);
+            curved.first = 0;
+            vec![own]
+        }
+        _ => Vec::new(),
+    };
     (geometry, own)
 }
 

@@ -169,6 +169,8 @@ fn loads(loads: &[LoadValue], pick: fn(&LoadValue) -> f32) -> LoadsRow {
         force_n: value(3),
         bolt_n: value(4),
         moment_n_m: value(5),
+        force_x_n: value(8),
+        force_z_n: value(9),
     }
 }
 

@@ -213,6 +213,12 @@ pub struct LoadsRow {
     /// Moment about the hinge or pivot.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub moment_n_m: Option<f32>,
+    /// Force on a curved part along angle 0.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub force_x_n: Option<f32>,
+    /// Force on a curved part upwards.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub force_z_n: Option<f32>,
 }
 
 /// The device's clock.

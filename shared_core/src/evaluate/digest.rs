@@ -46,6 +46,14 @@ impl<const N: usize> Digest<N> {
                     self.plane(one, held);
                 }
             }
+            Geometry::Curved(_) => {
+                for one in [&loads.estimate, &loads.outward, &loads.inward] {
+                    self.plane(one, Held::Otherwise);
+                    self.word(one.force_x_n);
+                    self.word(one.force_z_n);
+                    self.word(one.hoop_tension_n_m);
+                }
+            }
         }
         self.word(loads.utilisation);
         self.word(loads.utilisation_bound);

@@ -1,7 +1,8 @@
 //! One part under the three pressure states: its loads and its utilisation.
 
 use super::{
-    Capacities, DESIGN_PRESSURE_FLOOR_PA, DesignState, Geometry, Part, Stated, UTILISATION_MAX,
+    Capacities, Curved, DESIGN_PRESSURE_FLOOR_PA, DesignState, Geometry, Part, Stated,
+    UTILISATION_MAX,
 };
 use crate::lane::Lane;
 use crate::liquid::States;
@@ -15,10 +16,15 @@ pub struct Loads<const N: usize> {
     /// At the design point of a course, else the largest on the part (the least under the inward
     /// bound), Pa gauge.
     pub pressure_pa: Lane<N>,
-    /// Hoop tension of a course, N/m.
+    /// Hoop tension of a course, N/m; of a shell of revolution the largest tension in any
+    /// direction and place, under the inward bound the least.
     pub hoop_tension_n_m: Lane<N>,
-    /// Force on a plane part, N, positive from the liquid outwards.
+    /// Force on a plane part, N, positive from the liquid outwards; of a curved part its size.
     pub force_n: Lane<N>,
+    /// Force on a curved part along angle 0, N.
+    pub force_x_n: Lane<N>,
+    /// Force on a curved part upwards, N.
+    pub force_z_n: Lane<N>,
     /// Moment about the level line through the centroid, N m; of the estimate only.
     pub moment_centroid_n_m: Lane<N>,
     /// Largest share of a bolt, or force on a pin or hinge line (the least under the inward bound),
@@ -51,6 +57,8 @@ impl<const N: usize> Loads<N> {
         pressure_pa: Lane::ZERO,
         hoop_tension_n_m: Lane::ZERO,
         force_n: Lane::ZERO,
+        force_x_n: Lane::ZERO,
+        force_z_n: Lane::ZERO,
         moment_centroid_n_m: Lane::ZERO,
         bolt_n: Lane::ZERO,
         moment_n_m: Lane::ZERO,
@@ -159,6 +167,7 @@ fn judge<const N: usize>(plan: &Plan, part: &Part, states: &States<N>, loads: &m
             [loads.estimate.bolt_n, loads.outward.bolt_n, loads.inward.bolt_n] = held;
             [loads.estimate.moment_n_m, loads.outward.moment_n_m, loads.inward.moment_n_m] = moment;
         }
+        Geometry::Curved(curved) => judge_curved(plan, part, curved, states, loads),
     }
     // Zero where no capacity is stated.
     [loads.utilisation, loads.utilisation_bound] =
@@ -168,6 +177,50 @@ fn judge<const N: usize>(plan: &Plan, part: &Part, states: &States<N>, loads: &m
     } else {
         Lane::ZERO
     };
+}
+
+/// `sqrt(a² + b²)` of two that are not negative; the squares would not fit.
+#[inline]
+fn across<const N: usize>(a: Lane<N>, b: Lane<N>) -> Lane<N> {
+    let (larger, smaller) = (a.at_least(b), a.at_most(b));
+    let ratio = smaller / larger.at_least(Lane::splat(1.0e-30));
+    larger * (ratio * ratio + 1.0).root()
+}
+
+/// The loads of a part of tables.
+#[inline(never)]
+fn judge_curved<const N: usize>(
+    plan: &Plan,
+    part: &Part,
+    curved: &Curved,
+    states: &States<N>,
+    loads: &mut PartLoads<N>,
+) {
+    let States { estimate, upper, lower, .. } = states;
+    let three = [estimate, upper, lower];
+    let (mut size, mut largest) = (Lane::ZERO, Lane::ZERO);
+    for force in 0..2 {
+        let [middle, most, least] = curved.force(force, &plan.numbers, part.bottom_m, three);
+        let all = [&mut loads.estimate, &mut loads.outward, &mut loads.inward];
+        for (loads, found) in all.into_iter().zip([middle, most, least]) {
+            let slot = if force == 0 { &mut loads.force_x_n } else { &mut loads.force_z_n };
+            *slot = found;
+        }
+        size = across(size, middle.magnitude());
+        largest = across(largest, most.magnitude().at_least(least.magnitude()));
+    }
+    loads.estimate.force_n = size;
+    loads.outward.force_n = largest;
+    loads.estimate.pressure_pa = extremes(part, estimate, Lane::at_least);
+    loads.outward.pressure_pa = extremes(part, upper, Lane::at_least);
+    loads.inward.pressure_pa = extremes(part, lower, Lane::at_most);
+    if curved.places > 0 {
+        let tensions = |hoop| curved.tensions(hoop, &plan.numbers, part.bottom_m, three);
+        let found = tensions(true).with(&tensions(false));
+        [loads.estimate.hoop_tension_n_m, _] = found.estimate;
+        loads.outward.hoop_tension_n_m = found.most;
+        loads.inward.hoop_tension_n_m = found.least;
+    }
 }
 
 /// Largest pressure on a plane part. Without liquid outside the pressure falls with height, and the

@@ -10,7 +10,7 @@ use crate::alarm::FaultCause;
 use crate::journal::entry::Sample;
 use crate::liquid::{Band, DensityTable, Gas, Layer};
 use crate::part::{
-    BoltPattern, Capacities, Cover, CoverNumbers, Geometry, Held, Part, WeightingNumbers,
+    BoltPattern, Capacities, Cover, CoverNumbers, Curved, Geometry, Held, Part, WeightingNumbers,
 };
 use crate::plan::LiquidPlan;
 use crate::shape::{Circle, Face, Pieces, Rectangle, Shape};
@@ -276,4 +276,25 @@ pub(crate) fn push_pieces(plan: &mut Plan, bottom_m: f32, sine: f32) {
 /// An ellipse without bolts.
 pub(crate) fn ellipse(bottom_m: f32, radius_m: f32, aspect: f32, sine: f32) -> Part {
     plane(Shape::Circle(Circle::ellipse(radius_m, aspect, sine)), bottom_m, sine, None)
+}
+
+/// Adds a part of rows of every kind, or a shell with two places, to the plan.
+pub(crate) fn push_curved(plan: &mut Plan, bottom_m: f32, shell: bool) {
+    let first = u16::try_from(plan.numbers.len()).unwrap();
+    let even = [0.0, 1.5, -2.0, 0.5, 0.1];
+    let root = [0.0, 0.5, 1.0, 0.5, 0.0];
+    let down = [1.5, -0.5, -1.0, 0.2, 0.0];
+    let disc = [0.25, 0.5, 1.0, 0.0, 0.0];
+    let cone = [0.0, 1.5, 0.0, -4.0, 0.0];
+    let (rows, places): (Vec<[f32; 5], 4>, u8) = if shell {
+        plan.numbers.extend_from_slice(&cone).unwrap();
+        plan.numbers.extend_from_slice(&[0.75, -0.3, 0.9, 0.0, 1.5, -0.15, 1.8, -0.05]).unwrap();
+        (Vec::new(), 2)
+    } else {
+        (Vec::from_iter([disc, even, root, down]), 0)
+    };
+    plan.numbers.extend_from_slice(rows.as_flattened()).unwrap();
+    let rows = if shell { [[0; 3], [1, 0, 0]] } else { [[0, 0, 1], [1, 2, 0]] };
+    let curved = Curved { first, rows, places, apex_up: false };
+    plan.parts.push(part(Geometry::Curved(curved), bottom_m, 1.5)).unwrap();
 }

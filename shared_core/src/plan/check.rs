@@ -5,7 +5,8 @@ use super::{
     ThresholdPlan,
 };
 use crate::liquid::Band;
-use crate::part::{Capacities, Cover, Geometry, Held, Part, Stated};
+use crate::part::curved::{Row, RowKind, weight};
+use crate::part::{Capacities, Cover, Curved, Geometry, Held, Part, Stated};
 use crate::shape::{Pieces, Shape};
 use core::fmt;
 
@@ -203,7 +204,7 @@ impl Plan {
             PlanError::Geometry,
         )?;
         let stated_rise_m = part.top_m - part.bottom_m;
-        let (rise_m, held) = match &part.geometry {
+        let (rise_m, tension, held) = match &part.geometry {
             Geometry::Course { half_diameter_m, design_point_m, height_m } => {
                 require(
                     within(*half_diameter_m, 0.01, LENGTH_M_MAX)
@@ -211,7 +212,7 @@ impl Plan {
                         && within(*height_m, 0.001, LENGTH_M_MAX),
                     PlanError::Geometry,
                 )?;
-                (*height_m, None)
+                (*height_m, true, None)
             }
             Geometry::Plane { shape, sine, cover, .. } => {
                 let cover = cover.as_ref();
@@ -220,12 +221,18 @@ impl Plan {
                         && cover.is_none_or(|cover| cover.is_sound(shape, *sine)),
                     PlanError::Geometry,
                 )?;
-                (shape.rise_m(), Some(cover.map_or(Held::Otherwise, Cover::held)))
+                (shape.rise_m(), false, Some(cover.map_or(Held::Otherwise, Cover::held)))
+            }
+            Geometry::Curved(curved) => {
+                require(check_curved(curved, stated_rise_m, &self.numbers), PlanError::Geometry)?;
+                // The size of a force has no direction that could be judged inward.
+                require(part.inward.force_n.is_none(), PlanError::Capacity)?;
+                (stated_rise_m, curved.places > 0, Some(Held::Otherwise))
             }
         };
         require((stated_rise_m - rise_m).abs() <= LENGTH_SLACK_M, PlanError::Geometry)?;
         for capacities in [&part.outward, &part.inward] {
-            check_capacities(capacities, held)?;
+            check_capacities(capacities, tension, held)?;
         }
         for state in &part.designed_for {
             require(
@@ -293,8 +300,51 @@ fn check_pieces(pieces: &Pieces, numbers: &[f32]) -> bool {
         && first_m3.abs() <= PIECES_SLACK * area_m2 * length_m
 }
 
-/// `held`: how a cover is held; none for a course.
-fn check_capacities(capacities: &Capacities, held: Option<Held>) -> Result<(), PlanError> {
+/// Every row inside the part and of one sign, every place on it.
+fn check_curved(curved: &Curved, rise_m: f32, numbers: &[f32]) -> bool {
+    let own = curved.numbers(numbers);
+    let inside = |y_m: f32| within(y_m, -LENGTH_SLACK_M, rise_m + LENGTH_SLACK_M);
+    let row_is_sound = |(kind, row): (RowKind, &Row)| {
+        let [low_m, length_m, c0, c1, c2] = *row;
+        let x = length_m.abs();
+        // Bernstein's coefficients: a polynomial lies between the least and the largest of them.
+        let middle = c0 + 0.5 * c1 * x;
+        let (ends, one_sign) = match kind {
+            RowKind::Disc => {
+                let even = within(c1, 0.0, 0.0) && within(c2, 0.0, 0.0);
+                ([low_m, low_m + 2.0 * length_m], even)
+            }
+            _ => {
+                let all = [c0, middle, c0 + x * (c1 + c2 * x)];
+                let signed = |sign: f32| all.iter().all(|&one| sign * one >= 0.0);
+                ([low_m, low_m + length_m], signed(1.0) || signed(-1.0))
+            }
+        };
+        let may_run_down = kind == RowKind::Root;
+        ends.into_iter().all(inside)
+            && one_sign
+            && within(x, 1.0e-6, LENGTH_M_MAX)
+            && (length_m > 0.0 || may_run_down)
+            && [c0, c1, c2].into_iter().all(|one| within(one.abs(), 0.0, 1.0e12))
+            && within(weight(kind, row).abs(), 0.0, 1.0e5)
+    };
+    let hung = curved.rows[1] == [1, 0, 0];
+    own.len() == curved.count()
+        && (0..2).all(|force| curved.rows_of(force, numbers).all(row_is_sound))
+        && (curved.places == 0 || hung)
+        && curved.places_of(numbers).iter().all(|&[y_m, along, around, taken]| {
+            inside(y_m)
+                && [along, taken].into_iter().all(|one| within(one.abs(), 0.0, 1.0e6))
+                && within(around, 0.0, 1.0e6)
+        })
+}
+
+/// `tension`: whether it has one; `held`: how a cover is held, none for a course.
+fn check_capacities(
+    capacities: &Capacities,
+    tension: bool,
+    held: Option<Held>,
+) -> Result<(), PlanError> {
     let turns = matches!(held, Some(Held::Line | Held::Side));
     let bears = turns || matches!(held, Some(Held::Bolts(_)));
     let positive =
@@ -305,7 +355,7 @@ fn check_capacities(capacities: &Capacities, held: Option<Held>) -> Result<(), P
             && positive(capacities.force_n)
             && positive(capacities.bolt_n)
             && positive(capacities.moment_n_m)
-            && (held.is_none() || capacities.hoop_tension_n_m.is_none())
+            && (tension || capacities.hoop_tension_n_m.is_none())
             && (held.is_some() || capacities.force_n.is_none())
             && (bears || capacities.bolt_n.is_none())
             && (turns || capacities.moment_n_m.is_none()),

@@ -123,3 +123,12 @@ fn polynomial<const N: usize>(coefficients: &[f32; 6], x: Lane<N>) -> Lane<N> {
     let [c0, c1, c2, c3, c4, c5] = *coefficients;
     ((((x * c5 + c4) * x + c3) * x + c2) * x + c1) * x + c0
 }
+
+/// `integral of (h - z) over the wetted part` of a disc of radius 1 whose lowest point lies `a`
+/// below the surface.
+#[must_use]
+#[inline]
+pub fn disc_prism<const N: usize>(a: Lane<N>) -> Lane<N> {
+    let [prism, ..] = unit(a);
+    prism
+}

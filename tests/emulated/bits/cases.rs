@@ -120,6 +120,7 @@ impl Coverage {
             ("rectangles", geometry(|g| shape(g, |s| matches!(s, Shape::Rectangle(_))))),
             ("ellipses", geometry(|g| shape(g, is_ellipse))),
             ("pieces", geometry(|g| shape(g, |s| matches!(s, Shape::Pieces(_))))),
+            ("curved", geometry(|g| matches!(g, Geometry::Curved(_)))),
             ("level parts", geometry(|g| shape(g, |s| matches!(s, Shape::Level { .. })))),
             ("bolts, even", held(|h| matches!(h, Held::Bolts(n) if n % 2 == 0))),
             ("bolts, odd", held(|h| matches!(h, Held::Bolts(n) if n % 2 == 1))),

@@ -2,7 +2,7 @@
 
 use crate::cover::{Outline, cover};
 use crate::{between, ratio, single};
-use strake_core::part::{Capacities, Cover, DesignState, Geometry, Held, Part, Stated};
+use strake_core::part::{Capacities, Cover, Curved, DesignState, Geometry, Held, Part, Stated};
 use strake_core::plan::NUMBERS_MAX;
 use strake_core::shape::{Circle, Face, Pieces, Rectangle, Shape};
 use strake_oracle::random::Random;
@@ -29,6 +29,7 @@ pub(crate) fn part(random: &mut Random, around: Around, numbers: &mut Numbers) -
     let (geometry, rise_m) = match random.below(3) {
         0 => course(random, bottom_m),
         1 if numbers.len() < NUMBERS && random.one_in(2) => pieces(random, numbers),
+        1 if numbers.len() < NUMBERS => curved(random, numbers),
         _ => plane(random),
     };
     let [outward, inward] = capacities(random, &geometry, around);
@@ -122,12 +123,65 @@ fn pieces(random: &mut Random, numbers: &mut Numbers) -> (Geometry, f32) {
     (Geometry::plane(shape, sine, None), shape.rise_m())
 }
 
+/// Rows of every kind and sign, or one row and places of tension.
+fn curved(random: &mut Random, numbers: &mut Numbers) -> (Geometry, f32) {
+    let first = u16::try_from(numbers.len()).unwrap_or(0);
+    let rise_m = ratio(random, 0.2, 4.0);
+    let shell = random.one_in(2);
+    let mut list: Vec<f32> = Vec::new();
+    let mut counts = [[0_u8; 3]; 2];
+    for (force, counts) in counts.iter_mut().enumerate() {
+        for (kind, count) in counts.iter_mut().enumerate() {
+            let most = if shell { u32::from(force == 1 && kind == 0) } else { random.below(3) };
+            for _ in 0..most {
+                *count += 1;
+                list.extend(row(random, kind, rise_m, shell));
+            }
+        }
+    }
+    let places = if shell { 1 + random.below(6) } else { 0 };
+    for _ in 0..places {
+        let y_m = rise_m * between(random, 0.0, 1.0);
+        let sign = if random.one_in(2) { 1.0 } else { -1.0 };
+        let (along, around) = (sign * ratio(random, 0.1, 2.0), ratio(random, 0.1, 4.0));
+        list.extend([y_m, along, around, along * between(random, 0.0, 1.5)]);
+    }
+    let _ = numbers.extend_from_slice(&list);
+    let places = u8::try_from(places).unwrap_or(0);
+    let apex_up = random.one_in(2);
+    (Geometry::Curved(Curved { first, rows: counts, places, apex_up }), rise_m)
+}
+
+/// A row of one sign: both ends and the middle of its polynomial have it.
+fn row(random: &mut Random, kind: usize, rise_m: f32, shell: bool) -> [f32; 5] {
+    let sign = if random.one_in(2) { 1.0 } else { -1.0 };
+    if kind == 2 {
+        let radius_m = 0.25 * rise_m;
+        return [rise_m * between(random, 0.0, 0.45), radius_m, sign, 0.0, 0.0];
+    }
+    let share = if shell { 1.0 } else { between(random, 0.05, 0.9) };
+    let low_m = if shell { 0.0 } else { rise_m * (1.0 - share) * between(random, 0.0, 1.0) };
+    let x = rise_m * share;
+    let (c0, end) = (ratio(random, 0.1, 3.0), ratio(random, 0.1, 3.0));
+    let c2 = if shell { 0.0 } else { between(random, 0.0, 0.1) / (x * x) };
+    let c1 = (end - c0 - c2 * x * x) / x;
+    let [c0, c1, c2] = [c0, c1, c2].map(|c| sign * c);
+    if kind == 1 && random.one_in(2) {
+        return [low_m + x, -x, c0, c1, c2];
+    }
+    [low_m, x, c0, c1, c2]
+}
+
 /// Outward and inward capacities, each stated or not, from a third of to three times the load of
 /// water to the top.
 fn capacities(random: &mut Random, geometry: &Geometry, around: Around) -> [Capacities; 2] {
     let head_pa = single(9806.65 * around.height_m);
     let (tension, force, cover) = match geometry {
         Geometry::Course { half_diameter_m, .. } => (Some(head_pa * half_diameter_m), None, None),
+        Geometry::Curved(curved) => {
+            let tension = (curved.places > 0).then_some(head_pa);
+            (tension, Some(head_pa * single(around.height_m.powi(2))), None)
+        }
         Geometry::Plane { shape, cover, .. } => {
             (None, Some(head_pa * shape.area_m2()), cover.as_ref())
         }
@@ -142,13 +196,18 @@ fn capacities(random: &mut Random, geometry: &Geometry, around: Around) -> [Capa
         let share = ratio(random, 0.3, 3.0);
         load.filter(|_| random.one_in(one_in)).and_then(|load| Stated::new(load * share))
     };
-    [2, 4].map(|one_in| Capacities {
+    let mut both = [2, 4].map(|one_in| Capacities {
         pressure_pa: stated(Some(head_pa), one_in),
         hoop_tension_n_m: stated(tension, one_in),
         force_n: stated(force, one_in),
         bolt_n: stated(bolt, one_in),
         moment_n_m: stated(moment, one_in),
-    })
+    });
+    if matches!(geometry, Geometry::Curved(_)) {
+        // The size of a force has no direction.
+        both[1].force_n = None;
+    }
+    both
 }
 
 fn design_state(random: &mut Random, around: Around) -> DesignState {

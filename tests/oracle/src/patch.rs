@@ -85,6 +85,12 @@ pub fn resultant(patches: &[Patch], pressure: &dyn Pressure, about: Vec3) -> Res
 }
 
 impl Patch {
+    /// Height of its lowest point, m.
+    #[must_use]
+    pub fn lowest_m(&self) -> f64 {
+        (self.height)(self.range.0).min((self.height)(self.range.1))
+    }
+
     /// Parameters u at which the height passes one of `heights`, by bisection.
     fn breaks(&self, heights: &[f64]) -> Vec<f64> {
         heights.iter().filter_map(|z| self.parameter_at(*z)).collect()

@@ -45,10 +45,40 @@ fn describe(sheet: &Sheet<'_>, stated: &Stated) -> String {
             let point = show(course.design_height_m());
             format!("{name}, {kind}: {span}, diameter {diameter}, design point {point}{rule}")
         }
+        Stated::Curved(part) => format!("{name}, {kind}: {span}, {}", curved(sheet, &part.surface)),
         Stated::Panel(panel) => format!("{name}, {kind}: {}", surface(sheet, &panel.plane, &span)),
         Stated::Hatch(hatch) => {
             let held = secured(sheet, hatch);
             format!("{name}, {kind}: {} to the gasket{held}", surface(sheet, &hatch.sealed, &span))
+        }
+    }
+}
+
+fn curved(sheet: &Sheet<'_>, surface: &tank::Surface) -> String {
+    let show = |value: f64| sheet.show(value, Length);
+    let angle = |value: f64| sheet.show(value, Quantity::AngleDegrees);
+    let side = |inside: bool| if inside { "inside" } else { "outside" };
+    match *surface {
+        tank::Surface::Arc { radius_m, length_m, from_deg, to_deg, inside } => format!(
+            "arc of radius {}, {} long, {} to {}, wetted {}",
+            show(radius_m),
+            show(length_m),
+            angle(from_deg),
+            angle(to_deg),
+            side(inside)
+        ),
+        tank::Surface::Dome { radius_m, inside } => {
+            format!("dome of radius {} on a wall, wetted {}", show(radius_m), side(inside))
+        }
+        tank::Surface::Revolved { profile, base_radius_m, height_m, apex_up } => {
+            let word = match profile {
+                tank::Profile::Cone => "cone",
+                tank::Profile::Sphere => "sphere",
+                tank::Profile::Ellipsoid => "ellipsoid",
+            };
+            let apex = if apex_up { "up" } else { "down" };
+            let (base, height) = (show(base_radius_m), show(height_m));
+            format!("{word}, rim of radius {base}, {height} high, apex {apex}")
         }
     }
 }
@@ -91,6 +121,17 @@ fn part(sheet: &Sheet<'_>, page: &mut Page, stated: &Stated, row: &PartRow) {
     put(pressure, three(|loads| Some(loads.pressure_pa), Pressure), "pressure_pa");
     if course {
         put("hoop tension", three(|loads| loads.hoop_tension_n_m, LineLoad), "hoop_tension_n_m");
+    } else if row.loads.force_z_n.is_some() {
+        if row.loads.force_x_n.is_some() {
+            put("force along angle 0", three(|loads| loads.force_x_n, Force), "");
+        }
+        put("force upwards", three(|loads| loads.force_z_n, Force), "");
+        put("force, size", three(|loads| loads.force_n, Force), "force_n");
+        if row.loads.tension_n_m.is_some() {
+            put("tension, largest", three(|loads| loads.tension_n_m, LineLoad), "tension_n_m");
+            let compression = three(|loads| loads.compression_n_m, LineLoad);
+            put("compression, largest", compression, "compression_n_m");
+        }
     } else {
         put("force", three(|loads| loads.force_n, Force), "force_n");
         put("moment about centroid", three(|loads| loads.moment_centroid_n_m, Moment), "");
@@ -216,7 +257,9 @@ fn capacity(sheet: &Sheet<'_>, rating: &Rating, value: &Capacity) -> String {
                 sheet.load(gas_pa.value, Pressure)
             )
         }
-        tank::Capacity::HoopTension { .. } => format!("{}, {basis}", shown(LineLoad)),
+        tank::Capacity::HoopTension { .. }
+        | tank::Capacity::Tension { .. }
+        | tank::Capacity::Compression { .. } => format!("{}, {basis}", shown(LineLoad)),
         tank::Capacity::Bolt { .. }
         | tank::Capacity::Latch { .. }
         | tank::Capacity::Hinge { .. }

@@ -51,7 +51,7 @@ fn inside_shell(part: &Part, vessel: &Vessel, sink: &Sink) {
 /// A flat part is no wider than the tank.
 fn fits_across(part: &Part, vessel: &Vessel, sink: &Sink) {
     let plane: &Plane = match part {
-        Part::Course(_) => return,
+        Part::Course(_) | Part::Curved(_) => return,
         Part::Panel(panel) => &panel.plane,
         Part::Hatch(hatch) => &hatch.sealed,
     };

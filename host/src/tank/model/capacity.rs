@@ -82,6 +82,16 @@ pub enum Capacity {
         /// Force.
         n: f64,
     },
+    /// Tension of a shell of revolution, in any direction and place.
+    Tension {
+        /// Force per length.
+        n_m: f64,
+    },
+    /// Compression of a shell of revolution, in any direction and place.
+    Compression {
+        /// Force per length.
+        n_m: f64,
+    },
     /// Largest pressure on the part; of a course, that at its design point.
     Pressure {
         /// Pressure.
@@ -108,6 +118,8 @@ impl Capacity {
             Self::Moment { .. } => "moment",
             Self::Cover(_) => "cover",
             Self::Force { .. } => "force",
+            Self::Tension { .. } => "tension",
+            Self::Compression { .. } => "compression",
             Self::Pressure { .. } => "pressure",
             Self::None { .. } => "none",
         }

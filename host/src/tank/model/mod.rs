@@ -16,7 +16,10 @@ pub use capacity::{Basis, BasisKind, Capacity, CoverPlate, Rating};
 pub use liquid::{Layer, Liquid, Thermal};
 pub use outline::{CORNERS_MAX, Corners, Disc, Pieces, Shape, Strip};
 pub(in crate::tank) use part::sine;
-pub use part::{Course, DesignPoint, Hatch, Heights, Hole, Opens, Panel, Part, PartKind, Plane};
+pub use part::{
+    Course, Curved, DesignPoint, Hatch, Heights, Hole, Opens, Panel, Part, PartKind, Plane,
+    Profile, Surface,
+};
 pub use plate::{Elastic, PanelPlate, outline};
 pub use secured::{Axis, BoltLine, Bolts, CoverMass, FirstBolt, Hinged, Latch, Secured};
 pub use service::{Alarms, Cell, Logging, Power, SensorSupply, Threshold};

@@ -3,6 +3,7 @@
 use super::capacity::Rating;
 use super::outline::{Pieces, Shape};
 use super::secured::{Axis, CoverMass, Secured};
+pub use crate::compile::curved::Profile;
 use crate::tank::finding::{Located, Span};
 
 /// One part.
@@ -15,6 +16,8 @@ pub enum Part {
     Panel(Panel),
     /// Cover over an opening.
     Hatch(Hatch),
+    /// Curved piece of wall, bottom or roof.
+    Curved(Curved),
 }
 
 /// The kind of a part.
@@ -26,6 +29,8 @@ pub enum PartKind {
     Panel,
     /// Cover over an opening.
     Hatch,
+    /// Curved piece of wall, bottom or roof.
+    Curved,
 }
 
 impl PartKind {
@@ -36,6 +41,7 @@ impl PartKind {
             Self::Course => "course",
             Self::Panel => "panel",
             Self::Hatch => "hatch",
+            Self::Curved => "curved",
         }
     }
 }
@@ -48,6 +54,7 @@ impl Part {
             Self::Course(_) => PartKind::Course,
             Self::Panel(_) => PartKind::Panel,
             Self::Hatch(_) => PartKind::Hatch,
+            Self::Curved(_) => PartKind::Curved,
         }
     }
 
@@ -64,6 +71,7 @@ impl Part {
             Self::Course(part) => &part.name,
             Self::Panel(part) => &part.name,
             Self::Hatch(part) => &part.name,
+            Self::Curved(part) => &part.name,
         }
     }
 
@@ -74,6 +82,7 @@ impl Part {
             Self::Course(part) => part.span,
             Self::Panel(part) => part.span,
             Self::Hatch(part) => part.span,
+            Self::Curved(part) => part.span,
         }
     }
 
@@ -84,6 +93,7 @@ impl Part {
             Self::Course(part) => part.heights,
             Self::Panel(part) => part.plane.heights,
             Self::Hatch(part) => part.sealed.heights,
+            Self::Curved(part) => part.heights,
         }
     }
 
@@ -94,6 +104,7 @@ impl Part {
             Self::Course(part) => part.bottom_m.span,
             Self::Panel(part) => part.placed_at,
             Self::Hatch(part) => part.placed_at,
+            Self::Curved(part) => part.placed_at,
         }
     }
 
@@ -104,6 +115,7 @@ impl Part {
             Self::Course(part) => &part.capacity,
             Self::Panel(part) => &part.capacity,
             Self::Hatch(part) => &part.capacity,
+            Self::Curved(part) => &part.capacity,
         }
     }
 
@@ -114,6 +126,7 @@ impl Part {
             Self::Course(part) => &part.capacity_inward,
             Self::Panel(part) => &part.capacity_inward,
             Self::Hatch(part) => &part.capacity_inward,
+            Self::Curved(part) => &part.capacity_inward,
         }
     }
 }
@@ -323,6 +336,61 @@ impl Hatch {
             _ => false,
         }
     }
+}
+
+/// Curved piece of wall, bottom or roof.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Curved {
+    /// Its name.
+    pub name: Located<String>,
+    /// Its surface.
+    pub surface: Surface,
+    /// Its heights; the centre is that of the axis, the centre of a dome, or the base.
+    pub heights: Heights,
+    /// Where its height is written.
+    pub placed_at: Span,
+    /// What it may carry outwards.
+    pub capacity: Vec<Rating>,
+    /// What it may carry inwards.
+    pub capacity_inward: Vec<Rating>,
+    /// Where it begins in the file.
+    pub span: Span,
+}
+
+/// A curved surface.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Surface {
+    /// Arc about a level axis, x along angle 0.
+    Arc {
+        /// Radius.
+        radius_m: f64,
+        /// Length along the axis.
+        length_m: f64,
+        /// First angle from the horizontal, counter-clockwise.
+        from_deg: f64,
+        /// Last angle.
+        to_deg: f64,
+        /// Whether the liquid stands on the side of the axis.
+        inside: bool,
+    },
+    /// Hemisphere on a vertical wall, x outward.
+    Dome {
+        /// Radius.
+        radius_m: f64,
+        /// Whether it bulges out of the tank.
+        inside: bool,
+    },
+    /// Bottom or head about a vertical axis, wetted on its hollow side, held at its rim.
+    Revolved {
+        /// Its meridian.
+        profile: Profile,
+        /// Radius of its rim.
+        base_radius_m: f64,
+        /// Distance of the apex from the rim.
+        height_m: f64,
+        /// Whether the apex is its highest point.
+        apex_up: bool,
+    },
 }
 
 /// To which side a cover opens.

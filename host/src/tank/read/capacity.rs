@@ -10,7 +10,7 @@ use crate::tank::model::{
 use crate::units::Quantity::{Density, Force, Length, LineLoad, Moment, Pressure};
 
 /// Every capacity that a file may name, also those for a later version.
-const KINDS: [&str; 11] = [
+const KINDS: [&str; 13] = [
     "plate",
     "hoop_tension",
     "designed_for",
@@ -22,6 +22,8 @@ const KINDS: [&str; 11] = [
     "hinge",
     "moment",
     "cover",
+    "tension",
+    "compression",
 ];
 
 /// The part that carries, as far as it decides which capacities mean something.
@@ -32,6 +34,8 @@ pub(super) struct Bearer {
     pub(super) opens: Option<Opens>,
     /// What holds a cover.
     pub(super) holding: Holding,
+    /// Whether it is a shell of revolution.
+    pub(super) shell: bool,
 }
 
 /// What holds a cover, as far as it decides which capacities mean something.
@@ -80,7 +84,7 @@ impl Holding {
 impl Bearer {
     /// A part without a cover.
     pub(super) const fn plain(kind: PartKind) -> Self {
-        Self { kind, opens: None, holding: Holding::Nothing }
+        Self { kind, opens: None, holding: Holding::Nothing, shell: false }
     }
 }
 
@@ -94,7 +98,7 @@ pub(super) fn both(
         let message = format!("{} has no capacity, it would never be judged", section.place);
         let example = match bearer.kind {
             PartKind::Course => "hoop_tension = \"419 kN/m\"",
-            PartKind::Panel | PartKind::Hatch => "force = \"20 kN\"",
+            PartKind::Panel | PartKind::Hatch | PartKind::Curved => "force = \"20 kN\"",
         };
         let hint = format!(
             "write capacity = [ {{ {example}, basis = \"drawing\" }} ], or say why there is none: \
@@ -127,7 +131,7 @@ fn rating(mut entry: Section<'_>, bearer: Bearer, inward: bool) -> Option<Rating
     if kind.is_none() {
         let message = format!("{} names no capacity", entry.place);
         let hint =
-            format!("a {} may have {}", bearer.kind.as_str(), offered(bearer, inward).join(", "));
+            format!("a {} may have {}", noun(bearer.kind), offered(bearer, inward).join(", "));
         entry.report(Code::MissingKey, entry.span, message, hint);
     }
     let basis = entry.text("basis", WRITE_BASIS);
@@ -194,13 +198,23 @@ fn check_basis(
     None
 }
 
+/// The kind as a word for a sentence.
+const fn noun(kind: PartKind) -> &'static str {
+    match kind {
+        PartKind::Curved => "curved part",
+        _ => kind.as_str(),
+    }
+}
+
 /// The capacities that mean something for this part and this side.
 fn offered(bearer: Bearer, inward: bool) -> &'static [&'static str] {
     match (bearer.kind, inward) {
+        (PartKind::Curved, false) if bearer.shell => &["tension", "force", "pressure", "none"],
+        (PartKind::Curved, true) if bearer.shell => &["compression", "pressure", "none"],
         (PartKind::Course, false) => &["plate", "hoop_tension", "designed_for", "pressure", "none"],
-        (PartKind::Course, true) => &["pressure", "none"],
+        (PartKind::Course | PartKind::Curved, true) => &["pressure", "none"],
         (PartKind::Panel, false) => &["plate", "force", "pressure", "designed_for", "none"],
-        (PartKind::Panel, true) => &["force", "pressure", "none"],
+        (PartKind::Panel, true) | (PartKind::Curved, false) => &["force", "pressure", "none"],
         (PartKind::Hatch, false) => &[
             "bolt",
             "latch",
@@ -220,7 +234,7 @@ fn offered(bearer: Bearer, inward: bool) -> &'static [&'static str] {
 
 /// Reports and returns false when the part cannot have this capacity.
 fn may_have(entry: &Section<'_>, key: &str, span: Span, bearer: Bearer, inward: bool) -> bool {
-    let part = bearer.kind.as_str();
+    let part = noun(bearer.kind);
     let offered = offered(bearer, inward);
     let hint = format!("a {part} may have {} here", offered.join(", "));
     if !offered.contains(&key) {
@@ -293,6 +307,11 @@ fn capacity(
         "cover" => cover(entry).map(Capacity::Cover),
         "force" => single(Force, "\"20 kN\", on the whole part").map(|n| Capacity::Force { n }),
         "pressure" => single(Pressure, "\"60 kPa\"").map(|pa| Capacity::Pressure { pa }),
+        "tension" => {
+            single(LineLoad, "\"120 kN/m\", in any direction").map(|n_m| Capacity::Tension { n_m })
+        }
+        "compression" => single(LineLoad, "\"30 kN/m\", in any direction, by a buckling check")
+            .map(|n_m| Capacity::Compression { n_m }),
         "plate" if part == PartKind::Panel => plate::panel(entry).map(Capacity::Panel),
         "plate" => course_plate(entry),
         "designed_for" => designed_for(entry, remaining),

@@ -2,6 +2,7 @@
 
 mod alarm;
 mod capacity;
+mod curved;
 pub(super) mod field;
 mod level;
 mod liquid;

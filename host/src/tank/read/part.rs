@@ -1,6 +1,7 @@
-//! `[[course]]`, `[[panel]]` and `[[hatch]]`.
+//! The parts; `[[course]]`, `[[panel]]` and `[[hatch]]`.
 
 use super::capacity::{self, Bearer, Holding};
+use super::curved;
 use super::field::{Range, field};
 use super::section::Section;
 use super::secured;
@@ -27,14 +28,14 @@ pub(super) fn parts(root: &mut Section<'_>) -> Parts {
         ("course", "[[course]] at the head of each course"),
         ("panel", "[[panel]] at the head of each panel"),
         ("hatch", "[[hatch]] at the head of each hatch"),
+        ("curved", "[[curved]] at the head of each curved part"),
     ] {
         stated |= root.item(key).is_some();
         sections.extend(root.tables(key, write).into_iter().map(|section| (key, section)));
     }
-    stated |= curved(root);
     if !stated {
         let message = "the file describes no part: nothing would be judged";
-        let hint = "write at least one [[course]], [[panel]] or [[hatch]]";
+        let hint = "write at least one [[course]], [[panel]], [[hatch]] or [[curved]]";
         root.report(Code::NoPart, root.span, message, hint);
     }
     sections.sort_by_key(|(_, section)| section.span);
@@ -47,22 +48,13 @@ pub(super) fn parts(root: &mut Section<'_>) -> Parts {
         let part = match kind {
             "course" => course(section, name).map(Part::Course),
             "panel" => panel(section, name).map(Part::Panel),
-            _ => hatch(section, name).map(Part::Hatch),
+            "hatch" => hatch(section, name).map(Part::Hatch),
+            _ => curved::curved(section, name).map(Part::Curved),
         };
         parts.extend(part);
     }
     let complete = parts.len() == count;
     Parts { read: parts, names, complete }
-}
-
-/// Refuses curved parts; whether there are any.
-fn curved(root: &mut Section<'_>) -> bool {
-    let Some(span) = root.key_span("curved") else { return false };
-    let message = "curved parts are not offered by this version";
-    let hint = "remove [[curved]] and judge these parts by another means; course, panel and hatch \
-                are offered";
-    root.report(Code::NotOffered, span, message, hint);
-    true
 }
 
 fn name(section: &mut Section<'_>, kind: &str) -> Option<Located<String>> {
@@ -163,7 +155,8 @@ fn hatch(mut section: Section<'_>, name: Option<Located<String>>) -> Option<Hatc
     let secured_stated = section.item("secured").is_some();
     let secured = secured::secured(&mut section);
     let holding = Holding::of(secured.as_ref().map(|secured| &secured.value), secured_stated);
-    let bearer = Bearer { kind: PartKind::Hatch, opens: opens.map(|o| o.value), holding };
+    let bearer =
+        Bearer { opens: opens.map(|o| o.value), holding, ..Bearer::plain(PartKind::Hatch) };
     let ratings = capacity::both(&mut section, bearer);
     gasket(&section, shape.as_ref(), sealed.as_ref());
     let works = match (&secured, &placed, &sealed) {

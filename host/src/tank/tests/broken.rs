@@ -84,7 +84,9 @@ fn keys_of_later_versions_are_refused_by_name() {
     let vessel = "cylinder   = { diameter = \"8.0 m\", height = \"9.6 m\" }";
     let dished = "lying = { diameter = \"8 m\", length = \"9 m\", heads = \"dished\" }";
     later(vessel, dished, "`dished`, only flat ones are offered");
-    later("[alarm]", "[[curved]]\nname = \"cone\"\n[alarm]", "curved parts are not offered");
+    let mesh = "[[curved]]\nname = \"door\"\nmesh = \"door.stl\"\n\
+                capacity = [ { none = \"loads\" } ]\n[alarm]";
+    later("[alarm]", mesh, "a mesh is not offered");
 }
 
 #[test]

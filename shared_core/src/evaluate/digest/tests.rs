@@ -15,6 +15,8 @@ fn loads(first: f32) -> Loads<1> {
         pressure_pa: number(),
         hoop_tension_n_m: number(),
         force_n: number(),
+        force_x_n: number(),
+        force_z_n: number(),
         moment_centroid_n_m: number(),
         bolt_n: number(),
         moment_n_m: number(),

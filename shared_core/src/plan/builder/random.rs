@@ -82,6 +82,7 @@ pub(crate) fn plan(random: &mut Random) -> Plan {
     for _ in 0..random.below(3) {
         let bottom_m = random.between(0.0, 2.5) as f32;
         super::push_pieces(&mut plan, bottom_m, random.between(0.05, 1.0) as f32);
+        super::push_curved(&mut plan, bottom_m, random.below(2) == 0);
     }
     for _ in 0..=random.below(6) {
         let mut part = part(random);
@@ -127,6 +128,7 @@ fn part(random: &mut Random) -> Part {
             Geometry::Course { .. } => {
                 Capacities { pressure_pa, hoop_tension_n_m, ..Capacities::default() }
             }
+            Geometry::Curved(_) => Capacities { pressure_pa, ..Capacities::default() },
             Geometry::Plane { cover, .. } => {
                 let bolt_n = if cover.is_some() { bolt_n } else { None };
                 Capacities { pressure_pa, force_n, bolt_n, ..Capacities::default() }

@@ -17,7 +17,8 @@ use crate::part::{
 };
 use crate::plan::builder::{
     GAUGE, band, bolted_disc, bolted_rectangle, course, disc, ellipse, exact, gas, head_sensor,
-    layer, level_cover, plane, push_pieces, reads, rectangle, water_tank, with_inward_alarm,
+    layer, level_cover, plane, push_curved, push_pieces, reads, rectangle, water_tank,
+    with_inward_alarm,
 };
 use crate::plan::{LevelSensor, Plan, Reference, SignalKind, TemperaturePlan};
 use crate::shape::{Circle, Face, Pieces, Rectangle, Shape};
@@ -303,6 +304,11 @@ fn extreme_plan(random: &mut Random) -> Plan {
     ] {
         plan.parts.push(part).unwrap();
     }
+    plan.numbers.clear();
+    push_pieces(&mut plan, bottom_m, sine);
+    for shell in [true, false] {
+        push_curved(&mut plan, bottom_m, shell);
+    }
     for part in &mut plan.parts {
         part.outside = u8::from(random.below(2) == 0);
         part.outward.pressure_pa = Stated::new(1.0e-3);
@@ -314,6 +320,7 @@ fn extreme_plan(random: &mut Random) -> Plan {
                 part.inward.force_n = Stated::new(1.0e12);
                 part.outward.bolt_n = cover.as_ref().and_then(|_| Stated::new(1.0e-3));
             }
+            Geometry::Curved(_) => part.outward.force_n = Stated::new(1.0e-3),
         }
         let weight_n_m3 = one_of(random, &[1.0, 2.5e5]);
         let gas_pa = one_of(random, &[-1.0e7, 0.0, 1.0e7]);
@@ -331,6 +338,8 @@ fn numbers(part: &PartLoads<1>) -> Vec<f32> {
                 loads.pressure_pa,
                 loads.hoop_tension_n_m,
                 loads.force_n,
+                loads.force_x_n,
+                loads.force_z_n,
                 loads.moment_centroid_n_m,
                 loads.bolt_n,
                 loads.moment_n_m,
@@ -387,6 +396,52 @@ fn pieces_that_do_not_make_their_shape() {
     for aspect in [0.0, -1.0, 1.1e3, f32::NAN] {
         plan.parts[0] = ellipse(1.0, 0.3, aspect, 1.0);
         assert_eq!(plan.check(), Err(E::Geometry), "{aspect}");
+    }
+}
+
+/// Slips in the rows and places of a table.
+#[test]
+fn tables_that_bound_nothing() {
+    for shell in [true, false] {
+        let mut sound = with_inward_alarm(water_tank());
+        push_curved(&mut sound, 1.0, shell);
+        sound.parts[1].outward.force_n = Stated::new(1e4);
+        assert_eq!(sound.check(), Ok(()));
+        let broken = |slip: &dyn Fn(&mut Plan), error| {
+            let mut plan = sound.clone();
+            slip(&mut plan);
+            assert_eq!(plan.check(), Err(error), "{:?}", plan.numbers);
+        };
+        for place in 0..sound.numbers.len() {
+            for value in [f32::NAN, f32::INFINITY, 1e13] {
+                broken(&|p| p.numbers[place] = value, E::Geometry);
+            }
+        }
+        broken(&|p| p.numbers.truncate(12), E::Geometry);
+        broken(&|p| p.parts[1].inward.force_n = Stated::new(1.0), E::Capacity);
+        broken(&|p| p.parts[1].outward.bolt_n = Stated::new(1.0), E::Capacity);
+        broken(
+            &|p| {
+                let Geometry::Curved(curved) = &mut p.parts[1].geometry else { return };
+                curved.places += 1;
+            },
+            E::Geometry,
+        );
+        let mut tension = sound.clone();
+        tension.parts[1].inward.hoop_tension_n_m = Stated::new(1e3);
+        assert_eq!(tension.check(), if shell { Ok(()) } else { Err(E::Capacity) });
+        if shell {
+            // A weighting that turns its sign inside the row, a place above the rim.
+            broken(&|p| p.numbers[2] = 1.0, E::Geometry);
+            broken(&|p| p.numbers[5] = 1.6, E::Geometry);
+            broken(&|p| p.numbers[7] = -0.9, E::Geometry);
+        } else {
+            // A disc that is none, an even row that runs down, a row above the part.
+            broken(&|p| p.numbers[3] = 0.1, E::Geometry);
+            broken(&|p| p.numbers[6] = -1.5, E::Geometry);
+            broken(&|p| p.numbers[5] = 0.2, E::Geometry);
+            broken(&|p| p.numbers[8] = 3.0, E::Geometry);
+        }
     }
 }
 

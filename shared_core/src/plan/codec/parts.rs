@@ -2,12 +2,14 @@
 //!
 //! | field | bytes |
 //! | --- | --- |
-//! | kind u8: 0 course, 1 disc, 2 rectangle, 3 level shape, 4 ellipse, 5 pieces | 1 |
+//! | kind u8: 0 course, 1 disc, 2 rectangle, 3 level shape, 4 ellipse, 5 pieces, 6 curved | 1 |
 //! | bottom, top f32; outside mask u8 | 9 |
 //! | course: half diameter, design point, height f32 | 12 |
 //! | disc: radius, sine; rectangle: width, length, sine; level: area; f32 | 4 to 12 |
 //! | ellipse: half length up the slope, width over length, sine f32 | 12 |
 //! | pieces: area, length, centroid, sine f32; strips, discs u8; 4 f32 each | 18 + 16 n |
+//! | curved: six counts of rows u8, places u8, apex up u8, see [`take_curved`] | 8 |
+//! | and 5 f32 a row, 4 f32 a place | 20 n + 16 m |
 //! | plane parts: cover u16, see [`put_cover`] | 2 to 58 |
 //! | capacities outward, then inward: mask u8, f32 for each set bit | |
 //! | design states u8, 3 f32 each | |
@@ -16,8 +18,8 @@ use super::reader::Reader;
 use super::{PlanError, count, flag, take_list};
 use crate::cursor::Sink;
 use crate::part::{
-    BoltPattern, Capacities, Cover, CoverNumbers, DesignState, Geometry, Held, Part, Stated,
-    WeightingNumbers,
+    BoltPattern, Capacities, Cover, CoverNumbers, Curved, DesignState, Geometry, Held, Part,
+    Stated, WeightingNumbers,
 };
 use crate::plan::NUMBERS_MAX;
 use crate::shape::{Circle, Face, Pieces, Rectangle, Shape};
@@ -34,6 +36,7 @@ pub(super) fn put(sink: &mut Sink<'_>, part: &Part, numbers: &[f32]) -> Result<(
         Geometry::Plane { shape: Shape::Level { .. }, .. } => 3,
         Geometry::Plane { shape: Shape::Circle(_), .. } => 4,
         Geometry::Plane { shape: Shape::Pieces(_), .. } => 5,
+        Geometry::Curved(_) => 6,
     };
     sink.u8(kind);
     sink.f32(part.bottom_m);
@@ -62,6 +65,12 @@ pub(super) fn put(sink: &mut Sink<'_>, part: &Part, numbers: &[f32]) -> Result<(
                 Shape::Pieces(pieces) => put_pieces(sink, pieces, numbers),
             }
             put_cover(sink, cover.as_ref(), shape);
+        }
+        Geometry::Curved(curved) => {
+            curved.rows.as_flattened().iter().for_each(|&count| sink.u8(count));
+            sink.u8(curved.places);
+            sink.u8(u8::from(curved.apex_up));
+            curved.numbers(numbers).iter().for_each(|&one| sink.f32(one));
         }
     }
     put_capacities(sink, &part.outward);
@@ -95,10 +104,26 @@ fn take_pieces(source: &mut Reader<'_>, numbers: &mut Numbers) -> Option<(Shape,
     let counts = [source.u8(), source.u8()];
     let first = u16::try_from(numbers.len()).ok()?;
     let pieces = Pieces::new(sizes, sine, first, counts);
-    for _ in 0..pieces.count() {
+    take_own(source, numbers, pieces.count())?;
+    Some((Shape::Pieces(pieces), sine))
+}
+
+fn take_own(source: &mut Reader<'_>, numbers: &mut Numbers, count: usize) -> Option<()> {
+    for _ in 0..count {
         numbers.push(source.f32()).ok()?;
     }
-    Some((Shape::Pieces(pieces), sine))
+    Some(())
+}
+
+/// Even, root and disc rows of the force along angle 0, then of that upwards; then the numbers of
+/// all rows, and of the places.
+fn take_curved(source: &mut Reader<'_>, numbers: &mut Numbers) -> Option<Geometry> {
+    let first = u16::try_from(numbers.len()).ok()?;
+    let mut rows = [[0; 3]; 2];
+    source.fill(rows.as_flattened_mut());
+    let curved = Curved { first, rows, places: source.u8(), apex_up: flag(source)? };
+    take_own(source, numbers, curved.count())?;
+    Some(Geometry::Curved(curved))
 }
 
 pub(super) fn take(source: &mut Reader<'_>, numbers: &mut Numbers) -> Option<Part> {
@@ -138,6 +163,7 @@ fn take_geometry(source: &mut Reader<'_>, kind: u8, numbers: &mut Numbers) -> Op
             (Shape::Circle(Circle::ellipse(half_m, aspect, sine)), sine)
         }
         5 => take_pieces(source, numbers)?,
+        6 => return take_curved(source, numbers),
         _ => return None,
     };
     let face = Face { shape: &shape, numbers, bottom_m: 0.0 };

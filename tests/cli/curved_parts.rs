@@ -1,0 +1,74 @@
+//! Curved parts through the command line: check cases worked by hand, and the text.
+
+use crate::{document, run};
+use serde_json::Value;
+
+const TANK: &str = "configs/curved_parts.toml";
+const G: f64 = 9.806_65;
+
+fn loads<'a>(document: &'a Value, name: &str) -> &'a Value {
+    let parts = document["parts"].as_array().expect("parts");
+    &parts.iter().find(|part| part["name"] == name).expect("a part of that name")["loads"]
+}
+
+#[track_caller]
+fn near(found: &Value, due: f64, share: f64) {
+    let found = found.as_f64().expect("a number");
+    assert!((found - due).abs() <= share * due.abs(), "{found} is not {due}");
+}
+
+#[test]
+fn a_cone_and_an_arc_carry_what_is_above_them() {
+    let (_, found) = document(&["assess", TANK, "--level", "2.1 m", "--density", "1100 kg/m3"]);
+    // own-11: 0.9 m over the rim, 5 kPa.
+    let cone = loads(&found, "cone bottom");
+    near(&cone["tension_n_m"], 35_317.832_8, 2e-5);
+    near(&cone["force_z_n"], -134_469.265, 2e-5);
+    assert!(cone.get("force_x_n").is_none(), "{cone}");
+    // Quadrant wetted inside: x on its upright, z the liquid over it and the gas.
+    let arc = loads(&found, "lower quadrant");
+    let (r, l, gas, weight) = (0.8, 3.0, 5_000.0, 1100.0 * G);
+    let x = (gas + weight * (2.1 - 0.8)) * r * l;
+    let over = (2.1 - 1.2) * r + std::f64::consts::FRAC_PI_4 * r * r;
+    let z = -(gas * r * l + weight * over * l);
+    near(&arc["force_x_n"], x, 1e-5);
+    near(&arc["force_z_n"], z, 1e-5);
+    near(&arc["force_n"], x.hypot(z), 1e-5);
+    // A dome weighs what it holds, and carries its disc's pressure outwards.
+    let dome = loads(&found, "inspection dome");
+    let volume = 2.0 / 3.0 * std::f64::consts::PI * 0.4_f64.powi(3);
+    let (_, full) = document(&["assess", TANK, "--level", "4.0 m", "--density", "1100 kg/m3"]);
+    near(&loads(&full, "inspection dome")["force_z_n"], -weight * volume, 1e-5);
+    let outwards = (gas + weight * 2.2) * std::f64::consts::PI * 0.16;
+    near(&loads(&full, "inspection dome")["force_x_n"], outwards, 1e-5);
+    assert!(dome["force_x_n"].as_f64() < Some(outwards));
+}
+
+#[test]
+fn a_flat_head_is_judged_for_compression() {
+    let (_, found) = document(&["assess", TANK, "--level", "2.0 m"]);
+    // R = 1.5, b = 0.75 under 5 kPa: N_theta at the rim = p R (1 - R² / (2 b²)) = -p R.
+    let head = loads(&found, "domed head");
+    near(&head["compression_n_m"], 7_500.0, 1e-5);
+    let parts = found["parts"].as_array().expect("parts");
+    let head = parts.iter().find(|part| part["name"] == "domed head").expect("the head");
+    // Under 8 kPa of the 40 kN/m stated, less what is missed between places.
+    near(&head["utilisation_inward"], 12_000.0 / (40_000.0 * (1.0 - 1.0 / 256.0)), 1e-4);
+}
+
+#[test]
+fn the_text_names_surface_and_signs() {
+    let ran = run(&["assess", TANK, "--level", "2.1 m"]);
+    let text = ran.stdout.split_whitespace().collect::<Vec<_>>().join(" ");
+    assert_eq!(ran.status, 0, "{text}{}", ran.stderr);
+    for words in [
+        "cone, rim of radius 1.500 m, 1.200 m high, apex down",
+        "arc of radius 800.0 mm, 3.000 m long, 270.0 deg to 360.0 deg, wetted inside",
+        "force along angle 0",
+        "force upwards -",
+        "compression, largest",
+        "the ring at its rim, which the shell pulls at",
+    ] {
+        assert!(text.contains(words), "{words} is not in\n{text}");
+    }
+}
