@@ -15,6 +15,9 @@ use strake_oracle::random::Random;
 
 const BOUND: f64 = 2e-6;
 
+/// The tensions at a share of a shell's height.
+type Cut = fn(f64, &Liquid) -> membrane::Tensions;
+
 /// A table in its place.
 struct Placed {
     table: curved::Table,
@@ -306,7 +309,6 @@ fn tensions_against_cuts_through_the_shell() {
             let full = Liquid::uniform(1050.0, 1.2).with_gas(gas);
             let cone = curved::revolved(curved::Profile::Cone, 1.5, 1.2, false);
             let bowl = curved::revolved(curved::Profile::Sphere, 1.2, 1.2, false);
-            type Cut = fn(f64, &Liquid) -> membrane::Tensions;
             let cuts: [(curved::Table, Cut); 2] = [
                 (cone, |share, state| membrane::cone(1.5, 1.2, 0.0, 1.2 * share, state)),
                 (bowl, |share, state| membrane::bowl(1.2, 1.2, (1.0 - share).acos(), state)),

@@ -142,7 +142,7 @@ fn exact<'a>(geometry: &Geometry, numbers: &'a [f32]) -> (Geometry, Vec<&'a [f32
     let mut geometry = geometry.clone();
     let own = match &mut geometry {
         Geometry::Plane { shape: Shape::Pieces(pieces), .. } => {
-            let own = pieces.pieces(numbers).map(|list| list.as_flattened());
+            let own = pieces.pieces(numbers).map(<[[f32; 4]]>::as_flattened);
             pieces.first = 0;
             own.to_vec()
         }

@@ -272,71 +272,65 @@ fn check_shape(shape: &Shape, sine: f32, numbers: &[f32]) -> bool {
 }
 
 /// Every piece in its place, and together the area and the centroid that are stated.
+#[inline(never)]
 fn check_pieces(pieces: &Pieces, numbers: &[f32]) -> bool {
     let Pieces { area_m2, length_m, centroid_m, .. } = *pieces;
-    let slack_m = PIECES_SLACK * length_m;
-    let inside = |low_m: f32, high_m: f32| {
-        within(low_m, 0.0, length_m) && within(high_m, low_m, length_m + slack_m)
-    };
     let [strips, discs] = pieces.pieces(numbers);
     let [area, first_m3] = pieces.moments(numbers);
-    size(length_m)
+    let mut sound = size(length_m)
         && within(centroid_m, 0.0, length_m)
         && within(area_m2, 1.0e-6, 1.0e5)
         && 4 * (strips.len() + discs.len()) == pieces.count()
-        && strips.iter().all(|&[low_m, length_m, width_m, growth]| {
-            inside(low_m, low_m + length_m)
-                && length(width_m)
-                && length(width_m + growth * length_m)
-        })
-        && discs.iter().all(|&[low_m, radius_m, aspect, middle_m]| {
-            let [least, most] = ASPECT;
-            size(radius_m)
-                && within(aspect.abs(), least, most)
-                && within(middle_m, 0.0, length_m)
-                && inside(low_m, low_m + 2.0 * radius_m + middle_m)
-        })
         && (area - area_m2).abs() <= PIECES_SLACK * area_m2
-        && first_m3.abs() <= PIECES_SLACK * area_m2 * length_m
+        && first_m3.abs() <= PIECES_SLACK * area_m2 * length_m;
+    let most_m = length_m + PIECES_SLACK * length_m;
+    let inside = |low_m: f32, long_m: f32| {
+        within(low_m, 0.0, length_m) && long_m >= 0.0 && low_m + long_m <= most_m
+    };
+    for &[low_m, long_m, width_m, growth] in strips {
+        sound &= inside(low_m, long_m) && length(width_m) && length(width_m + growth * long_m);
+    }
+    for &[low_m, radius_m, aspect, middle_m] in discs {
+        let [least, most] = ASPECT;
+        sound &= size(radius_m)
+            && within(aspect.abs(), least, most)
+            && within(middle_m, 0.0, length_m)
+            && inside(low_m, 2.0 * radius_m + middle_m);
+    }
+    sound
 }
 
 /// Every row inside the part and of one sign, every place on it.
+#[inline(never)]
 fn check_curved(curved: &Curved, rise_m: f32, numbers: &[f32]) -> bool {
     let own = curved.numbers(numbers);
+    let mut sound = own.len() == curved.count()
+        && (curved.places == 0 || curved.rows[1] == [1, 0, 0])
+        && own.iter().all(|&one| within(one, -1.0e12, 1.0e12));
     let inside = |y_m: f32| within(y_m, -LENGTH_SLACK_M, rise_m + LENGTH_SLACK_M);
-    let row_is_sound = |(kind, row): (RowKind, &Row)| {
-        let [low_m, length_m, c0, c1, c2] = *row;
-        let x = length_m.abs();
-        // Bernstein's coefficients: a polynomial lies between the least and the largest of them.
-        let middle = c0 + 0.5 * c1 * x;
-        let (ends, one_sign) = match kind {
-            RowKind::Disc => {
-                let even = within(c1, 0.0, 0.0) && within(c2, 0.0, 0.0);
-                ([low_m, low_m + 2.0 * length_m], even)
-            }
-            _ => {
-                let all = [c0, middle, c0 + x * (c1 + c2 * x)];
-                let signed = |sign: f32| all.iter().all(|&one| sign * one >= 0.0);
-                ([low_m, low_m + length_m], signed(1.0) || signed(-1.0))
-            }
-        };
-        let may_run_down = kind == RowKind::Root;
-        ends.into_iter().all(inside)
-            && one_sign
-            && within(x, 1.0e-6, LENGTH_M_MAX)
-            && (length_m > 0.0 || may_run_down)
-            && [c0, c1, c2].into_iter().all(|one| within(one.abs(), 0.0, 1.0e12))
-            && within(weight(kind, row).abs(), 0.0, 1.0e5)
-    };
-    let hung = curved.rows[1] == [1, 0, 0];
-    own.len() == curved.count()
-        && (0..2).all(|force| curved.rows_of(force, numbers).all(row_is_sound))
-        && (curved.places == 0 || hung)
-        && curved.places_of(numbers).iter().all(|&[y_m, along, around, taken]| {
-            inside(y_m)
-                && [along, taken].into_iter().all(|one| within(one.abs(), 0.0, 1.0e6))
-                && within(around, 0.0, 1.0e6)
-        })
+    for force in 0..2 {
+        for (kind, row) in curved.rows_of(force, numbers) {
+            let [low_m, length_m, c0, c1, c2] = *row;
+            let x = length_m.abs();
+            // Bernstein's coefficients: a polynomial lies between the least and the largest.
+            let (middle, end) = (c0 + 0.5 * c1 * x, c0 + x * (c1 + c2 * x));
+            let one_sign = c0 * middle >= 0.0 && c0 * end >= 0.0 && middle * end >= 0.0;
+            let is_disc = kind == RowKind::Disc;
+            let high_m = low_m + if is_disc { 2.0 * length_m } else { length_m };
+            sound &= inside(low_m)
+                && inside(high_m)
+                && one_sign
+                && (!is_disc || (within(c1, 0.0, 0.0) && within(c2, 0.0, 0.0)))
+                && (length_m > 0.0 || kind == RowKind::Root)
+                && x >= 1.0e-6
+                && within(weight(kind, row), -1.0e5, 1.0e5);
+        }
+    }
+    for &[y_m, along, around, taken] in curved.places_of(numbers) {
+        let span = [along, around, taken].into_iter().all(|one| within(one, -1.0e6, 1.0e6));
+        sound &= inside(y_m) && span && around >= 0.0;
+    }
+    sound
 }
 
 /// `tension`: whether it has one; `held`: how a cover is held, none for a course.

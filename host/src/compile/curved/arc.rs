@@ -59,7 +59,12 @@ fn quarters(from_deg: f64, to_deg: f64) -> Vec<(f64, f64)> {
 fn sine(angle_deg: f64) -> f64 {
     let quarter = angle_deg / 90.0;
     if (quarter - quarter.round()).abs() < 1e-12 {
-        return [0.0, 1.0, 0.0, -1.0][quarter.round().rem_euclid(4.0) as usize];
+        return match quarter.round().rem_euclid(4.0) {
+            turn if turn < 0.5 => 0.0,
+            turn if turn < 1.5 => 1.0,
+            turn if turn < 2.5 => 0.0,
+            _ => -1.0,
+        };
     }
     angle_deg.to_radians().sin()
 }
