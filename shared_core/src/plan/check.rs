@@ -5,7 +5,7 @@ use super::{
     ThresholdPlan,
 };
 use crate::liquid::Band;
-use crate::part::curved::{Row, RowKind, weight};
+use crate::part::curved::{RowKind, weight};
 use crate::part::{Capacities, Cover, Curved, Geometry, Held, Part, Stated};
 use crate::shape::{Pieces, Shape};
 use core::fmt;
