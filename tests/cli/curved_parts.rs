@@ -55,7 +55,7 @@ fn a_flat_head_is_judged_for_compression() {
     // N_theta = R p - 2 p' R: the bound takes p at its lowest, -0.5 kPa, and p' at its highest,
     // 8 kPa, whatever ties the two; of the 40 kN/m stated what is missed between places is taken
     // off.
-    near(&head["utilisation_inward"], 24_750.0 / (40_000.0 * (1.0 - 1.0 / 256.0)), 1e-5);
+    near(&head["utilisation_inward"], 24_750.0 / (40_000.0 * (1.0 - 1.0 / 144.0)), 1e-5);
 }
 
 #[test]

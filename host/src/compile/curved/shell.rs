@@ -6,7 +6,7 @@ use strake_core::part::curved::RowKind;
 
 /// Places at which the tensions are looked at, beside the apex. Between two of them a tension that
 /// peaks there, a parabola, is missed by the square of one over this number, of its peak just full.
-pub const PLACES: u16 = 16;
+pub const PLACES: u16 = 12;
 
 /// The meridian of a shell.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]

@@ -82,7 +82,6 @@ pub(crate) fn plan(random: &mut Random) -> Plan {
     for _ in 0..random.below(3) {
         let bottom_m = random.between(0.0, 2.5) as f32;
         super::push_pieces(&mut plan, bottom_m, random.between(0.05, 1.0) as f32);
-        super::push_curved(&mut plan, bottom_m, random.below(2) == 0);
     }
     for _ in 0..=random.below(6) {
         let mut part = part(random);
