@@ -1,5 +1,8 @@
 //! `capacity` and `capacity_inward`: which capacities a part may have, and what each says.
 
+mod offered;
+
+use self::offered::{noun, offered};
 use super::field::{Range, field};
 use super::plate;
 use super::section::{Section, shorten};
@@ -196,40 +199,6 @@ fn check_basis(
     );
     entry.report(Code::Basis, basis.span, message, format!("write basis = {WRITE_BASIS}"));
     None
-}
-
-/// The kind as a word for a sentence.
-const fn noun(kind: PartKind) -> &'static str {
-    match kind {
-        PartKind::Curved => "curved part",
-        _ => kind.as_str(),
-    }
-}
-
-/// The capacities that mean something for this part and this side.
-fn offered(bearer: Bearer, inward: bool) -> &'static [&'static str] {
-    match (bearer.kind, inward) {
-        (PartKind::Curved, false) if bearer.shell => &["tension", "force", "pressure", "none"],
-        (PartKind::Curved, true) if bearer.shell => &["compression", "pressure", "none"],
-        (PartKind::Course, false) => &["plate", "hoop_tension", "designed_for", "pressure", "none"],
-        (PartKind::Course | PartKind::Curved, true) => &["pressure", "none"],
-        (PartKind::Panel, false) => &["plate", "force", "pressure", "designed_for", "none"],
-        (PartKind::Panel, true) | (PartKind::Curved, false) => &["force", "pressure", "none"],
-        (PartKind::Hatch, false) => &[
-            "bolt",
-            "latch",
-            "hinge",
-            "force",
-            "moment",
-            "pressure",
-            "cover",
-            "designed_for",
-            "none",
-        ],
-        (PartKind::Hatch, true) => {
-            &["bolt", "latch", "hinge", "force", "moment", "pressure", "cover", "none"]
-        }
-    }
 }
 
 /// Reports and returns false when the part cannot have this capacity.
