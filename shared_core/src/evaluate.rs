@@ -95,7 +95,7 @@ fn each_load<const N: usize>(
     let states = pressures(plan, resolved);
     let mut digest = Digest::new();
     // One room for each kind of part: what a kind does not have stays zero in its own.
-    let [mut of_course, mut of_plane] = [PartLoads::NONE; 2];
+    let (mut of_course, mut of_plane) = (PartLoads::NONE, PartLoads::NONE);
     for (index, one) in plan.parts.iter().enumerate() {
         let loads = match one.geometry {
             Geometry::Course { .. } => &mut of_course,
@@ -114,6 +114,7 @@ fn each_load<const N: usize>(
 }
 
 /// One part of tables, its loads in a room that only it needs.
+#[cold]
 #[inline(never)]
 fn each_curved<const N: usize>(
     plan: &Plan,
