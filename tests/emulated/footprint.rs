@@ -71,8 +71,8 @@ const CEILINGS: Budgets = Budgets {
 /// Rows whose ceiling the device does not keep yet. They keep their budget, so that they grow no
 /// further, and the table says so; a row that comes below its ceiling has to leave this list.
 const NOT_KEPT: [&str; 2] = ["flash, B", "evaluate, instructions"];
-/// A row whose figure moves by some 1,500 with the pace of the sensor's peer, about its ceiling: its
-/// budget alone decides, and the table shows on which side of the ceiling it was this time.
+/// A row whose figure moves by some 1,500 with the pace of the sensor's peer, about its ceiling.
+/// Its budget alone decides; the table shows on which side of the ceiling it was this time.
 const MOVES: &str = "cycle without bus waits, median, instructions";
 
 impl Budgets {
