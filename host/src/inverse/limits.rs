@@ -319,9 +319,17 @@ fn plan_kinks(plan: &Plan) -> Vec<f32> {
     layers.chain(outside).chain(sensor).collect()
 }
 
-/// Every part's bound, for the sensor at hand, below a threshold.
+/// The direction in which parts are judged.
+#[derive(Clone, Copy)]
+enum Direction {
+    Outward,
+    Inward,
+}
+
+/// Every part's bound in a direction, for the sensor at hand, below a threshold.
 struct Below<'a> {
     desk: &'a Desk,
+    direction: Direction,
     threshold: f32,
 }
 
@@ -332,7 +340,11 @@ impl Criterion for Below<'_> {
         let mut holds = [true; N];
         for part in &plan.parts {
             let loads = evaluate(plan, part, &states);
-            for (holds, u) in holds.iter_mut().zip(loads.utilisation_bound.0) {
+            let bound = match self.direction {
+                Direction::Outward => loads.utilisation_bound,
+                Direction::Inward => loads.utilisation_inward,
+            };
+            for (holds, u) in holds.iter_mut().zip(bound.0) {
                 *holds &= u < self.threshold;
             }
         }
@@ -347,32 +359,11 @@ pub fn first_reached(desk: &Desk, threshold: f32) -> Option<f32> {
     let range = desk.range();
     let parts = desk.plan().parts.iter();
     let kinks: Vec<f32> = parts.flat_map(|part| kinks(desk, part)).collect();
-    let found = intervals(&Below { desk, threshold }, range, kinks);
+    let found = intervals(&Below { desk, direction: Direction::Outward, threshold }, range, kinks);
     match found.first().filter(|first| first.low_m <= range.low_m) {
         None => Some(range.low_m),
         Some(first) if first.high_m >= range.high_m => None,
         Some(first) => Some(first.high_m),
-    }
-}
-
-/// Every part's inward bound, for the sensor at hand, below a threshold.
-struct InwardBelow<'a> {
-    desk: &'a Desk,
-    threshold: f32,
-}
-
-impl Criterion for InwardBelow<'_> {
-    fn holds<const N: usize>(&self, level_m: Lane<N>) -> [bool; N] {
-        let plan = self.desk.plan();
-        let states = self.desk.as_seen(level_m);
-        let mut holds = [true; N];
-        for part in &plan.parts {
-            let loads = evaluate(plan, part, &states);
-            for (holds, u) in holds.iter_mut().zip(loads.utilisation_inward.0) {
-                *holds &= u < self.threshold;
-            }
-        }
-        holds
     }
 }
 
@@ -384,7 +375,7 @@ pub fn held_above(desk: &Desk, threshold: f32) -> Option<f32> {
     let range = desk.range();
     let parts = desk.plan().parts.iter().flat_map(|part| [part.bottom_m, part.top_m]);
     let kinks = plan_kinks(desk.plan()).into_iter().chain(parts);
-    let found = intervals(&InwardBelow { desk, threshold }, range, kinks);
+    let found = intervals(&Below { desk, direction: Direction::Inward, threshold }, range, kinks);
     match found.last().filter(|last| last.high_m >= range.high_m) {
         None => Some(range.high_m),
         Some(last) if last.low_m <= range.low_m => None,
