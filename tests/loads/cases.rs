@@ -33,14 +33,18 @@ const EDGE_ANSWERED: &[(&str, usize)] = &[
     ("time", 7),
 ];
 
-/// Prints the tally; nothing in it may disagree and each topic answers as many rows as stated.
+/// Prints the tally; nothing in it may disagree, and each topic answers as many rows as stated:
+/// topics that are not stated none.
 pub(crate) fn holds(tally: &Tally, counts: &[(&str, usize)]) {
     println!("{tally}");
     assert!(tally.disagreements.is_empty(), "{tally}");
-    for (topic, count) in counts {
-        let answered = tally.answered(topic);
-        assert_eq!(answered, *count, "{topic}: a row lost or found its answer\n{tally}");
-    }
+    let stated =
+        |topic: &str| counts.iter().find(|(name, _)| *name == topic).map_or(0, |(_, count)| *count);
+    let found: Vec<(&str, usize)> =
+        tally.topics.keys().map(|topic| (topic.as_str(), tally.answered(topic))).collect();
+    let due: Vec<(&str, usize)> = found.iter().map(|(topic, _)| (*topic, stated(topic))).collect();
+    assert_eq!(found, due, "a row lost or found its answer\n{tally}");
+    assert!(counts.iter().all(|(topic, _)| tally.topics.contains_key(*topic)), "{tally}");
 }
 
 #[test]

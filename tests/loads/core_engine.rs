@@ -3,12 +3,12 @@
 use strake::compile::{self, plane_shape};
 use strake::tank;
 use strake_core::lane::Lane;
-use strake_core::liquid::{Band, Gas, Layer, Outside, Readings, States, states};
-use strake_core::part::{Capacities, DesignState, Geometry, Part, PartLoads, evaluate};
+use strake_core::liquid::{Band, Gas, Layer as Below, Outside, Readings, States, states};
+use strake_core::part::{Capacities, Geometry, Part, PartLoads, evaluate};
 use strake_core::plan::{LevelSensor, NUMBERS_MAX, Plan, Reference};
 use strake_core::shape::{Rectangle, Shape};
 use strake_oracle::cases::Reason;
-use strake_oracle::liquid::Liquid;
+use strake_oracle::liquid::{Layer, Liquid};
 use strake_oracle::plane::PlanePart;
 use strake_oracle::shape::Shape as Outline;
 
@@ -35,10 +35,12 @@ pub(crate) fn plan_of(liquid: &Liquid) -> Result<(Plan, f32), Reason> {
     plan.overflow_m = 200.0;
     let gas = narrow(liquid.gas_pa);
     plan.gas = Gas { lowest_pa: gas, nominal_pa: gas, highest_pa: gas };
-    let (top, below) = liquid.layers.split_first().ok_or("no liquid")?;
+    // Without a liquid the tank is dry.
+    let dry = Layer { surface_m: -50.0, density_kg_m3: 1000.0 };
+    let (top, below) = liquid.layers.split_first().unwrap_or((&dry, &[]));
     plan.liquid.top = exactly(top.density_kg_m3);
     for layer in below {
-        let layer = Layer {
+        let layer = Below {
             surface_m: narrow(layer.surface_m),
             surface_uncertainty_m: 0.0,
             density: exactly(layer.density_kg_m3),
@@ -167,16 +169,4 @@ pub(crate) fn loads_with(
     let (mut plan, level_m) = plan_of(liquid)?;
     plan.numbers.clone_from(numbers);
     Ok(evaluate(&plan, part, &at_level(&plan, level_m)))
-}
-
-/// The design state of one liquid.
-pub(crate) fn design_of(liquid: &Liquid) -> Result<DesignState, Reason> {
-    match liquid.layers[..] {
-        [layer] => Ok(DesignState {
-            level_m: narrow(layer.surface_m),
-            weight_n_m3: narrow(layer.density_kg_m3 * liquid.gravity_m_s2),
-            gas_pa: narrow(liquid.gas_pa),
-        }),
-        _ => Err("a design state of several layers"),
-    }
 }

@@ -7,4 +7,5 @@ mod core_engine;
 mod core_error;
 mod plate_cases;
 mod plate_series;
+mod product;
 mod states;

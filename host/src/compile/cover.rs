@@ -28,7 +28,8 @@ pub(crate) fn numbers(hatch: &Hatch, gravity_m_s2: f64, shape: &Shape) -> CoverN
     cover.sill_above_m = if plane.is_level() {
         0.0
     } else {
-        single(hatch.opening.heights.bottom_m - plane.heights.bottom_m)
+        // Two outlines that are the same may differ in the last bit of their heights.
+        single((hatch.opening.heights.bottom_m - plane.heights.bottom_m).max(0.0))
     };
     if let Some(mass) = hatch.mass {
         cover.weight_n = single(mass.value.kg * gravity_m_s2 * cosine(plane.slope_deg));

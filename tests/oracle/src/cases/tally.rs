@@ -23,8 +23,8 @@ pub struct TopicCount {
     pub answered: usize,
     /// Rows answered outside their tolerance.
     pub wrong: usize,
-    /// Rows without an answer, by reason.
-    pub unanswered: BTreeMap<Reason, usize>,
+    /// Names of the rows without an answer, by reason.
+    pub unanswered: BTreeMap<Reason, Vec<String>>,
 }
 
 /// The outcome of a run.
@@ -44,6 +44,25 @@ impl Tally {
     pub fn answered(&self, topic: &str) -> usize {
         self.topics.get(topic).map_or(0, |count| count.answered)
     }
+
+    /// Two runs over different rows as one.
+    #[must_use]
+    pub fn and(mut self, other: Self) -> Self {
+        for (topic, more) in other.topics {
+            let count = self.topics.entry(topic).or_default();
+            count.rows += more.rows;
+            count.answered += more.answered;
+            count.wrong += more.wrong;
+            for (reason, rows) in more.unanswered {
+                count.unanswered.entry(reason).or_default().extend(rows);
+            }
+        }
+        self.disagreements.extend(other.disagreements);
+        if other.closest.0 > self.closest.0 {
+            self.closest = other.closest;
+        }
+        self
+    }
 }
 
 impl fmt::Display for Tally {
@@ -53,10 +72,10 @@ impl fmt::Display for Tally {
             if count.wrong > 0 {
                 write!(f, " {:3} WRONG", count.wrong)?;
             }
-            for (reason, rows) in &count.unanswered {
-                write!(f, "; {rows} {reason}")?;
-            }
             writeln!(f)?;
+            for (reason, rows) in &count.unanswered {
+                writeln!(f, "    {reason}: {}", rows.join(" "))?;
+            }
         }
         writeln!(f, "largest share of a tolerance: {:.2e} ({})", self.closest.0, self.closest.1)?;
         self.disagreements.iter().try_for_each(|line| writeln!(f, "{line}"))
@@ -78,7 +97,7 @@ pub fn run(
         let answer = match outcome {
             Ok(answer) => answer,
             Err(reason) => {
-                *count.unanswered.entry(reason).or_default() += 1;
+                count.unanswered.entry(reason).or_default().push(row.id.clone());
                 continue;
             }
         };
@@ -134,7 +153,7 @@ mod tests {
         let tally = run(&rows, 0.0, &blind);
         let plane = &tally.topics["plane"];
         assert_eq!((plane.rows, plane.answered, plane.wrong), (3, 0, 2));
-        assert_eq!(plane.unanswered["not asked"], 1);
+        assert_eq!(plane.unanswered["not asked"].len(), 1);
         assert_eq!(run(&rows, 1e-3, &blind).answered("plane"), 1);
     }
 }
