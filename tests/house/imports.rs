@@ -9,7 +9,8 @@ const ALLOWED: &[(&str, &[&str])] = &[
     ("Cargo.toml", &[]),
     ("shared_core/Cargo.toml", &[]),
     ("firmware/Cargo.toml", &["strake-core"]),
-    ("firmware/boards/", &["strake-core", "strake-firmware"]),
+    ("firmware/boards/common/", &["strake-firmware"]),
+    ("firmware/boards/", &["strake-board-common", "strake-core", "strake-firmware"]),
     ("host/Cargo.toml", &["strake-core", "strake-firmware"]),
     ("tests/fuzz/engine/Cargo.toml", &["strake", "strake-core"]),
     ("tests/generate/Cargo.toml", &["strake-core", "strake-oracle"]),
@@ -71,4 +72,7 @@ fn the_rules_find_what_they_should() {
     assert_eq!(upward("shared_core/Cargo.toml", of(&["strake-firmware", "libm"])).len(), 1);
     assert_eq!(upward("firmware/Cargo.toml", of(&["strake-core", "strake"])).len(), 1);
     assert!(upward("firmware/boards/a/Cargo.toml", of(&["strake-firmware"])).is_empty());
+    assert!(upward("firmware/boards/a/Cargo.toml", of(&["strake-board-common"])).is_empty());
+    assert_eq!(upward("firmware/Cargo.toml", of(&["strake-board-common"])).len(), 1);
+    assert_eq!(upward("firmware/boards/common/Cargo.toml", of(&["strake-board-a"])).len(), 1);
 }

@@ -2,11 +2,11 @@
 
 use cortex_m::Peripherals;
 use cortex_m::peripheral::SCB;
+use strake_board_common::retained::{self, Failure, Mark, Retained};
 use strake_firmware::board::ResetCause;
 
 use crate::flash::{self, NorRegion};
 use crate::pins::{Button, CONTACT_BIT, LAMP_BIT, Output};
-use crate::retained::{self, Failure, Mark, Retained};
 use crate::timer::{self, MonotonicClock};
 use crate::uart::{LINK, SENSOR_BUS, SerialPort};
 use crate::watchdog::Stopped;

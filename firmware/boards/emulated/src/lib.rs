@@ -31,19 +31,9 @@ mod interrupts;
 #[cfg(target_os = "none")]
 mod log;
 #[cfg(target_os = "none")]
-mod memory;
-#[cfg(target_os = "none")]
 pub mod mpu;
 #[cfg(target_os = "none")]
-mod panic;
-#[cfg(target_os = "none")]
 pub mod pins;
-#[cfg(target_os = "none")]
-mod register;
-#[cfg(target_os = "none")]
-pub mod retained;
-#[cfg(target_os = "none")]
-pub mod stack;
 #[cfg(target_os = "none")]
 pub mod timer;
 #[cfg(target_os = "none")]
@@ -53,3 +43,5 @@ pub mod watchdog;
 
 #[cfg(target_os = "none")]
 pub use board::{Parts, restart};
+#[cfg(target_os = "none")]
+pub use strake_board_common::{retained, stack};

@@ -19,11 +19,17 @@ fn send(bytes: &[u8]) {
     }
 }
 
-/// Ends a frame that a failure interrupted, so that the failure's own can be told apart from it.
-pub(crate) fn abandon_frame() {
-    if OPEN.swap(false, Ordering::Relaxed) {
-        // Zero ends a frame in defmt's default encoding.
-        uart::LOG.send_polled(0);
+#[expect(unsafe_code, reason = "the end of a run finds it by its name")]
+mod ending {
+    use super::{OPEN, Ordering, uart};
+
+    /// The failure's own frame can then be told apart from the one it interrupted.
+    #[unsafe(no_mangle)]
+    extern "Rust" fn _strake_abandon_frame() {
+        if OPEN.swap(false, Ordering::Relaxed) {
+            // Zero ends a frame in defmt's default encoding.
+            uart::LOG.send_polled(0);
+        }
     }
 }
 

@@ -7,9 +7,11 @@
 use core::cell::Cell;
 
 use critical_section::Mutex;
+use strake_board_common::register::Register;
+use strake_board_common::serial::Line as _;
+use strake_board_common::ticks::Elapsed;
 use strake_firmware::board::Clock;
 
-use crate::register::Register;
 use crate::{pins, uart};
 
 /// Clock of the timers, the watchdog and the UARTs, hertz.
@@ -54,14 +56,8 @@ impl Timer {
 const TIME: Timer = Timer::at(0x4000_0000);
 const WAKE: Timer = Timer::at(0x4000_1000);
 
-#[derive(Clone, Copy)]
-struct Elapsed {
-    ticks: u64,
-    last_value: u32,
-}
-
-static ELAPSED: Mutex<Cell<Elapsed>> =
-    Mutex::new(Cell::new(Elapsed { ticks: 0, last_value: u32::MAX }));
+/// The timer counts down, so its complement counts up.
+static ELAPSED: Mutex<Cell<Elapsed<32>>> = Mutex::new(Cell::new(Elapsed::from(0)));
 
 pub(crate) fn start() {
     TIME.start(u32::MAX, u32::MAX);
@@ -72,11 +68,9 @@ pub(crate) fn start() {
 fn elapsed_ticks() -> u64 {
     critical_section::with(|cs| {
         let cell = ELAPSED.borrow(cs);
-        let before = cell.get();
-        let value = TIME.value.read();
-        let ticks = before.ticks.wrapping_add(u64::from(before.last_value.wrapping_sub(value)));
-        cell.set(Elapsed { ticks, last_value: value });
-        ticks
+        let elapsed = cell.get().advanced_to(!TIME.value.read());
+        cell.set(elapsed);
+        elapsed.ticks()
     })
 }
 

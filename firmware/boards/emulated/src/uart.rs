@@ -5,13 +5,12 @@
 //! a real line would overrun. Overrun, parity and framing errors do not exist on this machine.
 
 use core::cell::RefCell;
-use core::convert::Infallible;
 
 use critical_section::Mutex;
-use embedded_io::{ErrorType, Read, ReadReady, Write, WriteReady};
 use heapless::Deque;
+use strake_board_common::register::Register;
+use strake_board_common::serial::{self, Line};
 
-use crate::register::Register;
 use crate::timer::TICKS_PER_SECOND;
 
 /// Bytes that each queue holds.
@@ -88,7 +87,8 @@ static LINK_QUEUES: SharedQueues = empty();
 static SENSOR_BUS_QUEUES: SharedQueues = empty();
 
 /// A UART with its queues, shared between a [`SerialPort`] and the interrupts.
-pub(crate) struct Buffered {
+#[expect(missing_debug_implementations, reason = "queues change under interrupts")]
+pub struct Buffered {
     uart: Uart,
     queues: &'static SharedQueues,
 }
@@ -140,90 +140,49 @@ impl Buffered {
         self.uart.interrupt.write(TX_FULL);
         self.with(|queues| self.pump_to_send(queues));
     }
+}
 
-    pub(crate) fn has_received(&self) -> bool {
+/// A serial line of this board.
+pub type SerialPort = serial::SerialPort<Buffered>;
+
+impl Line for Buffered {
+    fn take(&self, out: &mut [u8]) -> usize {
+        self.with(|queues| {
+            let mut taken = 0;
+            for slot in out.iter_mut() {
+                let Some(byte) = queues.received.pop_front() else { break };
+                *slot = byte;
+                taken += 1;
+            }
+            // A byte held back in the UART raises no second interrupt.
+            self.pump_received(queues);
+            taken
+        })
+    }
+
+    fn give(&self, bytes: &[u8]) -> usize {
+        self.with(|queues| {
+            let mut given = 0;
+            for &byte in bytes {
+                if queues.to_send.push_back(byte).is_err() {
+                    break;
+                }
+                given += 1;
+            }
+            self.pump_to_send(queues);
+            given
+        })
+    }
+
+    fn has_received(&self) -> bool {
         self.with(|queues| !queues.received.is_empty())
     }
-}
 
-/// One serial line, taken through the embedded-io traits.
-#[expect(missing_debug_implementations, reason = "queues change under interrupts")]
-pub struct SerialPort {
-    port: &'static Buffered,
-}
-
-impl SerialPort {
-    pub(crate) fn new(port: &'static Buffered) -> Self {
-        Self { port }
-    }
-}
-
-impl ErrorType for SerialPort {
-    type Error = Infallible;
-}
-
-impl ReadReady for SerialPort {
-    fn read_ready(&mut self) -> Result<bool, Infallible> {
-        Ok(self.port.has_received())
-    }
-}
-
-impl Read for SerialPort {
-    /// Waits for the first byte, as embedded-io asks; ask `read_ready` first to avoid that.
-    fn read(&mut self, out: &mut [u8]) -> Result<usize, Infallible> {
-        if out.is_empty() {
-            return Ok(0);
-        }
-        loop {
-            let taken = self.port.with(|queues| {
-                let mut taken = 0;
-                for slot in out.iter_mut() {
-                    let Some(byte) = queues.received.pop_front() else { break };
-                    *slot = byte;
-                    taken += 1;
-                }
-                // A byte held back in the UART raises no second interrupt.
-                self.port.pump_received(queues);
-                taken
-            });
-            if taken > 0 {
-                return Ok(taken);
-            }
-        }
-    }
-}
-
-impl WriteReady for SerialPort {
-    fn write_ready(&mut self) -> Result<bool, Infallible> {
-        Ok(self.port.with(|queues| !queues.to_send.is_full()))
-    }
-}
-
-impl Write for SerialPort {
-    fn write(&mut self, bytes: &[u8]) -> Result<usize, Infallible> {
-        if bytes.is_empty() {
-            return Ok(0);
-        }
-        loop {
-            let given = self.port.with(|queues| {
-                let mut given = 0;
-                for &byte in bytes {
-                    if queues.to_send.push_back(byte).is_err() {
-                        break;
-                    }
-                    given += 1;
-                }
-                self.port.pump_to_send(queues);
-                given
-            });
-            if given > 0 {
-                return Ok(given);
-            }
-        }
+    fn has_room(&self) -> bool {
+        self.with(|queues| !queues.to_send.is_full())
     }
 
-    fn flush(&mut self) -> Result<(), Infallible> {
-        while !self.port.with(|queues| queues.to_send.is_empty()) {}
-        Ok(())
+    fn has_sent(&self) -> bool {
+        self.with(|queues| queues.to_send.is_empty())
     }
 }

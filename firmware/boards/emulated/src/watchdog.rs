@@ -5,10 +5,10 @@
 //! machine. Feeding takes the mark back. Under `-icount ...,sleep=off` the emulator stops with no
 //! event left once the program no longer runs; tests of the watchdog leave that option out.
 
+use strake_board_common::register::Register;
+use strake_board_common::retained;
 use strake_firmware::board::Watchdog;
 
-use crate::register::Register;
-use crate::retained;
 use crate::timer::TICKS_PER_SECOND;
 
 /// Longest time-out, milliseconds: two halves of a 32-bit count at 25 MHz.

@@ -20,10 +20,14 @@ const SET_UP: u32 = 0x5354_524B;
 /// Why a run ended, in retained memory.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 #[repr(u32)]
-pub(crate) enum Mark {
+pub enum Mark {
+    /// The watchdog is about to bite.
     Watchdog = 1,
+    /// A panic.
     Panic = 2,
+    /// A fault of the processor.
     Fault = 3,
+    /// On purpose.
     Software = 4,
 }
 
@@ -70,11 +74,13 @@ fn is_set_up() -> bool {
     word(0).read() == SET_UP && word(1).read() == !SET_UP
 }
 
-pub(crate) fn leave_mark(mark: Mark) {
+/// Leaves a mark for the next start.
+pub fn leave_mark(mark: Mark) {
     word(2).write(mark as u32);
 }
 
-pub(crate) fn leave_failure(failure: Failure) {
+/// Leaves a failure, with its mark.
+pub fn leave_failure(failure: Failure) {
     let (mark, first, second) = match failure {
         Failure::Panic { line } => (Mark::Panic, line, 0),
         Failure::Fault { status, address } => (Mark::Fault, status, address),
@@ -84,12 +90,15 @@ pub(crate) fn leave_failure(failure: Failure) {
     leave_mark(mark);
 }
 
-pub(crate) fn clear_mark() {
+/// Takes the mark back.
+pub fn clear_mark() {
     word(2).write(0);
 }
 
-/// Takes the mark of the last run. Called once, at the start.
-pub(crate) fn take_cause() -> (ResetCause, Option<Failure>) {
+/// What the mark of the last run says; a board whose controller knows the cause of a reset puts
+/// that first. Called once, at the start.
+#[must_use]
+pub fn take_cause() -> (ResetCause, Option<Failure>) {
     if !is_set_up() {
         word(0).write(SET_UP);
         word(1).write(!SET_UP);
@@ -116,7 +125,10 @@ pub(crate) fn take_cause() -> (ResetCause, Option<Failure>) {
 pub struct Retained(());
 
 impl Retained {
-    pub(crate) fn new() -> Self {
+    /// The application's share; make one only.
+    #[must_use]
+    #[expect(clippy::new_without_default, reason = "there is one")]
+    pub const fn new() -> Self {
         Self(())
     }
 }

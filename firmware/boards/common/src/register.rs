@@ -4,7 +4,7 @@ use core::ptr;
 
 /// A 32-bit register at a fixed address.
 #[derive(Clone, Copy, Debug)]
-pub(crate) struct Register {
+pub struct Register {
     address: usize,
 }
 
@@ -15,18 +15,20 @@ impl Register {
     /// # Safety
     /// `address` must be that of a 32-bit register of this machine, which stays mapped, and whose
     /// reading or writing has no effect on memory that Rust knows of.
-    pub(crate) const unsafe fn at(address: usize) -> Self {
+    #[must_use]
+    pub const unsafe fn at(address: usize) -> Self {
         Self { address }
     }
 
     /// Present value.
-    pub(crate) fn read(self) -> u32 {
+    #[must_use]
+    pub fn read(self) -> u32 {
         // SAFETY: `at` promised a mapped, aligned 32-bit register here.
         unsafe { ptr::read_volatile(ptr::with_exposed_provenance(self.address)) }
     }
 
     /// Stores `value`.
-    pub(crate) fn write(self, value: u32) {
+    pub fn write(self, value: u32) {
         // SAFETY: as in `read`; no Rust object lives at this address.
         unsafe { ptr::write_volatile(ptr::with_exposed_provenance_mut(self.address), value) }
     }

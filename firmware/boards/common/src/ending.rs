@@ -2,6 +2,8 @@
 //!
 //! In this order, so that each step needs less than the one before could break: open the alarm
 //! contact, record the cause in retained memory, log it, reset.
+//!
+//! Two functions come from the board, by name: a board without them does not link.
 
 use core::arch::naked_asm;
 use core::panic::PanicInfo;
@@ -11,17 +13,27 @@ use cortex_m::peripheral::SCB;
 
 use crate::register::Register;
 use crate::retained::{self, Failure};
-use crate::{log, pins};
+
+#[expect(unsafe_code, reason = "functions of the board, found by the linker")]
+mod hooks {
+    unsafe extern "Rust" {
+        /// Opens the alarm contact, from wherever the program is and whatever is started.
+        pub(super) safe fn _strake_open_contact();
+        /// Ends a frame of the log that the failure interrupted.
+        pub(super) safe fn _strake_abandon_frame();
+    }
+}
 
 static ENDING: AtomicBool = AtomicBool::new(false);
 
-fn end(failure: Failure, report: impl FnOnce()) -> ! {
+/// Ends the run: contact open, cause recorded, `report` made, reset.
+pub fn end(failure: Failure, report: impl FnOnce()) -> ! {
     cortex_m::interrupt::disable();
-    pins::open_contact();
+    hooks::_strake_open_contact();
     // A second failure on the way out keeps the first one's record.
     if !ENDING.swap(true, Ordering::Relaxed) {
         retained::leave_failure(failure);
-        log::abandon_frame();
+        hooks::_strake_abandon_frame();
         report();
     }
     SCB::sys_reset()
