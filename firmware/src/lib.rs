@@ -14,3 +14,4 @@ pub mod plan_store;
 pub mod rooms;
 pub mod sensor;
 pub mod serve;
+pub mod spi_nor;
