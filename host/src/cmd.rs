@@ -10,6 +10,7 @@ pub mod ports;
 mod quantities;
 pub mod replay;
 pub mod rerate;
+pub mod schema;
 pub mod seal;
 pub mod status;
 mod tank_file;
@@ -39,6 +40,8 @@ pub enum Command {
     Replay(replay::Args),
     /// The inverse questions for another liquid: limit level, density, thickness, remaining life
     Rerate(rerate::Args),
+    /// The JSON Schema of the tank file, for editors
+    Schema(schema::Args),
     /// Compile a tank file into the plan that a device loads
     Seal(seal::Args),
     /// What a device says now: its health, the level, the parts, alarms and faults
@@ -63,6 +66,7 @@ impl Command {
             Self::Ports(args) => ports::run(args, term),
             Self::Replay(args) => replay::run(args, term),
             Self::Rerate(args) => rerate::run(args, term),
+            Self::Schema(args) => schema::run(args, term),
             Self::Seal(args) => seal::run(args, term),
             Self::Status(args) => status::run(args, term),
             Self::Trial(args) => trial::run(args, term),

@@ -8,6 +8,7 @@ mod liquids;
 mod odd_shapes;
 mod plates;
 mod rerate;
+mod schema;
 mod seal;
 mod streams;
 mod tank_text;

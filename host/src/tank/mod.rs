@@ -8,13 +8,15 @@
 //! relief from outside liquid, a first bolt at the lowest point, an alarm that does not latch.
 //!
 //! Reading goes in three steps: `read` takes each table apart (one file per table), `check` looks
-//! at what needs two tables or two parts, and `render` shows what was found.
+//! at what needs two tables or two parts, and `render` shows what was found. [`schema`] describes
+//! every key once, for the readers and for editors.
 
 mod check;
 mod finding;
 mod model;
 mod read;
 mod render;
+pub mod schema;
 
 pub use finding::{Code, Finding, Findings, Located, Span};
 pub use model::*;

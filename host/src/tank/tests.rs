@@ -5,6 +5,7 @@ mod broken;
 mod damaged;
 mod examples;
 mod invalid;
+mod schema;
 
 use std::fs;
 use std::path::{Path, PathBuf};

@@ -1,6 +1,6 @@
 //! `capacity` and `capacity_inward`: which capacities a part may have, and what each says.
 
-mod offered;
+pub(in crate::tank) mod offered;
 
 use self::offered::{noun, offered};
 use super::field::{Range, field};

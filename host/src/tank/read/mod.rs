@@ -17,6 +17,9 @@ mod surroundings;
 mod value;
 mod vessel;
 
+#[cfg(test)]
+pub(super) use self::capacity::offered;
+
 use toml::de::{DeTable, DeValue};
 
 use self::section::{Section, Sink};
@@ -25,6 +28,7 @@ use super::model::{
     Alarms, Fill, Gas, Gravity, Layer, LevelSensor, Liquid, Logging, Outside, Part, Power,
     Strapping, TankFile, TemperatureSignal, Vessel,
 };
+use super::schema::ROOT;
 use super::{MAX_FILE_BYTES, check};
 use crate::nearest::nearest;
 
@@ -123,7 +127,7 @@ fn from_parser(error: &toml::de::Error, len: usize) -> Finding {
 
 fn root_tables(table: &DeTable<'_>, len: usize, sink: &Sink) -> Draft {
     let end = Span { start: len, end: len };
-    let mut root = Section::new(table, end, "", sink);
+    let mut root = Section::new(table, end, "", &ROOT, sink);
     let vessel::Tank { name, vessel, strapping, conditions } = vessel::tank(&mut root);
     let fill = vessel::fill(&mut root);
     let liquid::State { liquid, below, temperature_signal } = liquid::state(&mut root);

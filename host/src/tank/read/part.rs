@@ -3,7 +3,7 @@
 use super::capacity::{self, Bearer, Holding};
 use super::curved;
 use super::field::{Range, field};
-use super::section::Section;
+use super::section::{Item, Section};
 use super::secured;
 use super::shape::{self, Cut, Placed};
 use crate::tank::finding::{Code, Located};
@@ -30,7 +30,8 @@ pub(super) fn parts(root: &mut Section<'_>) -> Parts {
         ("hatch", "[[hatch]] at the head of each hatch"),
         ("curved", "[[curved]] at the head of each curved part"),
     ] {
-        stated |= root.item(key).is_some();
+        let empty = |item: Item<'_>| item.get_ref().as_array().is_some_and(|list| list.is_empty());
+        stated |= root.item(key).is_some_and(|item| !empty(item));
         sections.extend(root.tables(key, write).into_iter().map(|section| (key, section)));
     }
     if !stated {

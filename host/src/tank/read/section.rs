@@ -11,6 +11,7 @@ use toml::de::{DeTable, DeValue};
 
 use crate::nearest::nearest;
 use crate::tank::finding::{Code, Finding, Located, Span};
+use crate::tank::schema::{Holds, Table};
 
 /// A value with its place, as the parser gives it.
 pub(crate) type Item<'a> = &'a Spanned<DeValue<'a>>;
@@ -52,6 +53,8 @@ pub(crate) struct Section<'a> {
     /// Its name for messages, such as `[liquid]`.
     pub(crate) place: String,
     asked: Vec<&'static str>,
+    /// What is described of it.
+    described: &'static Table,
     pub(crate) sink: &'a Sink,
 }
 
@@ -60,20 +63,43 @@ impl<'a> Section<'a> {
         table: &'a DeTable<'a>,
         span: Span,
         place: impl Into<String>,
+        described: &'static Table,
         sink: &'a Sink,
     ) -> Self {
-        Self { table, span, place: place.into(), asked: Vec::new(), sink }
+        Self { table, span, place: place.into(), asked: Vec::new(), described, sink }
+    }
+
+    /// Takes note of a key that is asked for, which must be described.
+    fn ask(&mut self, key: &'static str) {
+        debug_assert!(
+            self.described.knows(key),
+            "`{key}` is not described in table `{}`",
+            self.described.name
+        );
+        #[cfg(test)]
+        asked::note(self.described.name, key);
+        self.asked.push(key);
+    }
+
+    /// Holds what is asked of a key against what is described.
+    pub(crate) fn expect(&self, key: &str, fits: impl Fn(Holds) -> bool) {
+        let described = self.described.key(key);
+        debug_assert!(
+            described.is_none_or(|key| fits(key.holds)),
+            "`{key}` of table `{}` is described otherwise",
+            self.described.name
+        );
     }
 
     /// The value of a key, which is known from now on.
     pub(crate) fn item(&mut self, key: &'static str) -> Option<Item<'a>> {
-        self.asked.push(key);
+        self.ask(key);
         self.table.get(key)
     }
 
     /// Where a key stands, if it does; the key is known from now on.
     pub(crate) fn key_span(&mut self, key: &'static str) -> Option<Span> {
-        self.asked.push(key);
+        self.ask(key);
         self.table.get_key_value(key).map(|(key, _)| key.span().into())
     }
 
@@ -128,7 +154,8 @@ impl<'a> Section<'a> {
             return None;
         };
         let place = if self.place.is_empty() { format!("[{key}]") } else { self.place_of(key) };
-        Some(Section::new(table, item.span().into(), place, self.sink))
+        let below = self.described.below(key);
+        Some(Section::new(table, item.span().into(), place, below, self.sink))
     }
 
     /// A table below this one that must be there.
@@ -152,7 +179,8 @@ impl<'a> Section<'a> {
             if let DeValue::Table(table) = entry.get_ref() {
                 let root = self.place.is_empty();
                 let place = if root { format!("[[{key}]]") } else { self.place_of(key) };
-                found.push(Section::new(table, entry.span().into(), place, self.sink));
+                let below = self.described.below(key);
+                found.push(Section::new(table, entry.span().into(), place, below, self.sink));
             } else {
                 self.wrong_type(key, entry, "a list of tables", write);
             }
@@ -271,5 +299,25 @@ fn article(type_name: &str) -> String {
         "float" => "a number".to_owned(),
         "datetime" => "a date".to_owned(),
         other => format!("a {other}"),
+    }
+}
+
+/// What the readers asked for, for the test of the description.
+#[cfg(test)]
+pub(crate) mod asked {
+    use std::cell::RefCell;
+    use std::collections::BTreeSet;
+
+    thread_local! {
+        static ASKED: RefCell<BTreeSet<(&'static str, &'static str)>> = RefCell::default();
+    }
+
+    pub(super) fn note(table: &'static str, key: &'static str) {
+        ASKED.with_borrow_mut(|asked| asked.insert((table, key)));
+    }
+
+    /// Table and key of all that was asked for on this thread.
+    pub(crate) fn all() -> BTreeSet<(&'static str, &'static str)> {
+        ASKED.with_borrow(Clone::clone)
     }
 }

@@ -7,6 +7,7 @@ use super::section::{Item, Section, listed, shorten};
 use crate::nearest::nearest;
 use crate::tank::NAME_BYTES;
 use crate::tank::finding::{Code, Located, Span};
+use crate::tank::schema::Holds;
 use crate::units::{Quantity, UnitError, format_si, parse};
 
 impl Section<'_> {
@@ -28,6 +29,7 @@ impl Section<'_> {
     /// Reads an item as the quantity that `field` describes.
     pub(crate) fn quantity(&self, field: Field, item: Item<'_>) -> Option<Located<f64>> {
         let Field { key, quantity, range, write } = field;
+        self.expect(key, |holds| holds.quantity(quantity));
         let span = item.span().into();
         let text = match item.get_ref() {
             DeValue::String(text) => text,
@@ -138,6 +140,7 @@ impl Section<'_> {
         write: &str,
     ) -> Option<Located<f64>> {
         let item = self.item(key)?;
+        self.expect(key, |holds| matches!(holds, Holds::Ratio));
         let number = match item.get_ref() {
             DeValue::Float(float) => float.as_str().replace('_', "").parse::<f64>().ok(),
             DeValue::Integer(_) => {
@@ -175,6 +178,7 @@ impl Section<'_> {
             self.missing(key, write);
             return None;
         };
+        self.expect(key, |holds| matches!(holds, Holds::Integer(a, b) if (a, b) == (low, high)));
         let DeValue::Integer(number) = item.get_ref() else {
             self.wrong_type(key, item, "a whole number", write);
             return None;
@@ -199,6 +203,7 @@ impl Section<'_> {
     /// `true` or `false`.
     pub(crate) fn flag(&mut self, key: &'static str) -> Option<Located<bool>> {
         let item = self.item(key)?;
+        self.expect(key, |holds| matches!(holds, Holds::Flag));
         if let DeValue::Boolean(value) = item.get_ref() {
             return Some(Located::new(*value, item.span().into()));
         }
@@ -284,6 +289,8 @@ impl Section<'_> {
         write: &str,
     ) -> Option<Located<T>> {
         let item = self.item(key)?;
+        let same = |all: &[&str]| all.iter().eq(words.iter().map(|(word, _)| word));
+        self.expect(key, |holds| matches!(holds, Holds::Words(all) if same(all)));
         let text = self.text_of(key, item, write)?;
         if let Some((_, value)) = words.iter().find(|(word, _)| *word == text.value) {
             return Some(Located::new(*value, text.span));

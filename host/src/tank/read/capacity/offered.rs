@@ -36,3 +36,18 @@ pub(super) fn offered(bearer: Bearer, inward: bool) -> &'static [&'static str] {
         }
     }
 }
+
+/// Kind of part, whether inward, and every capacity that such a part may have.
+#[cfg(test)]
+pub(in crate::tank) fn all() -> Vec<(&'static str, bool, std::collections::BTreeSet<&'static str>)>
+{
+    let kinds = [PartKind::Course, PartKind::Panel, PartKind::Hatch, PartKind::Curved];
+    let sides = kinds.into_iter().flat_map(|kind| [(kind, false), (kind, true)]);
+    let of = |(kind, inward): (PartKind, bool)| {
+        let bearer = Bearer::plain(kind);
+        let shell = Bearer { shell: true, ..bearer };
+        let both = [bearer, shell].map(|bearer| offered(bearer, inward));
+        (kind.as_str(), inward, both.into_iter().flatten().copied().collect())
+    };
+    sides.map(of).collect()
+}
