@@ -25,7 +25,7 @@ pub use document::{
 };
 pub use margin::{Margin, PartMargin, Times, margin, together};
 pub use notes::{FIELD_CHECK, PROVISIONAL, assumed};
-pub(crate) use notes::{not_judged, plate_cautions};
+pub(crate) use notes::{cautions, not_judged, plate_cautions, plates_not_judged};
 pub use request::{Overrides, Request, RequestError, Source};
 pub use set_point::SetPoint;
 
@@ -55,9 +55,9 @@ pub fn assess(file: &TankFile, request: &Request) -> Result<Assessment, Findings
     let desk = Desk::new(compile::for_desk(file, &request.contents)?, file);
     let parts = part::rows(file, &desk, request);
     let mut not_judged = not_judged(file, &desk, UnitSystem::Si);
-    not_judged.extend(notes::plates_not_judged(&parts));
+    not_judged.extend(plates_not_judged(&parts));
     let above_alarm = judged::above_alarm(file, &desk, &parts);
-    let cautions = notes::cautions(file, request, &desk, &parts, UnitSystem::Si);
+    let said = cautions(file, request, &desk, &parts, UnitSystem::Si);
     let thresholds = file.alarm.as_ref().map(|_| &desk.plan().alarm);
     let reached =
         |threshold: Option<f32>| threshold.and_then(|at| inverse::first_reached(&desk, at));
@@ -84,7 +84,7 @@ pub fn assess(file: &TankFile, request: &Request) -> Result<Assessment, Findings
         warn_set_point: warn.and_then(|level_m| set_point::of(&desk, file, level_m)),
         alarm_set_point: alarm.and_then(|level_m| set_point::of(&desk, file, level_m)),
         energy: energy::estimate(file),
-        cautions,
+        cautions: said,
     };
     Ok(Assessment { document, above_alarm, desk })
 }

@@ -12,6 +12,7 @@ pub mod replay;
 pub mod rerate;
 pub mod schema;
 pub mod seal;
+pub mod sheet;
 pub mod status;
 mod tank_file;
 pub mod trial;
@@ -44,6 +45,8 @@ pub enum Command {
     Schema(schema::Args),
     /// Compile a tank file into the plan that a device loads
     Seal(seal::Args),
+    /// The calculation to check and file, as one HTML page that prints
+    Sheet(sheet::Args),
     /// What a device says now: its health, the level, the parts, alarms and faults
     Status(status::Args),
     /// The whole job on a simulated device
@@ -68,6 +71,7 @@ impl Command {
             Self::Rerate(args) => rerate::run(args, term),
             Self::Schema(args) => schema::run(args, term),
             Self::Seal(args) => seal::run(args, term),
+            Self::Sheet(args) => sheet::run(args, term),
             Self::Status(args) => status::run(args, term),
             Self::Trial(args) => trial::run(args, term),
             Self::Verify(args) => verify::run(args, term),

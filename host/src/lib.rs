@@ -20,6 +20,7 @@ pub mod plan_words;
 pub mod plate;
 pub mod replay;
 pub mod rerate;
+pub mod sheet;
 pub mod sim;
 pub mod status;
 pub mod tank;

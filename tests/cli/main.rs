@@ -10,6 +10,7 @@ mod plates;
 mod rerate;
 mod schema;
 mod seal;
+mod sheet;
 mod streams;
 mod tank_text;
 

@@ -55,7 +55,7 @@ pub(crate) fn not_judged(file: &TankFile, desk: &Desk, units: UnitSystem) -> Vec
 }
 
 /// Plates for which no number is given.
-pub(super) fn plates_not_judged(parts: &[PartRow]) -> Vec<NotJudged> {
+pub(crate) fn plates_not_judged(parts: &[PartRow]) -> Vec<NotJudged> {
     let mut found = Vec::new();
     for row in parts {
         for why in row.plates.iter().filter_map(|plate| plate.why_not.as_ref()) {
@@ -214,7 +214,7 @@ fn may_turn_inward(desk: &Desk, part: &Part) -> bool {
 pub const PROVISIONAL: &str = "PROVISIONAL: a capacity of the plan is assumed";
 
 /// The cautions, the most pressing first.
-pub(super) fn cautions(
+pub(crate) fn cautions(
     file: &TankFile,
     request: &Request,
     desk: &Desk,

@@ -16,21 +16,26 @@ use crate::page::Page;
 use crate::tank::TankFile;
 use crate::units::{Quantity, UnitSystem, format};
 
+pub(crate) use limits::{down, unrounded, up};
+pub(crate) use parts::{capacity_words, describe, thickness_up};
+pub(crate) use state::{reading, state_rows};
+
 /// What every section needs.
-struct Sheet<'a> {
-    file: &'a TankFile,
-    request: &'a Request,
-    assessment: &'a Assessment,
-    units: UnitSystem,
+#[derive(Clone, Copy)]
+pub(crate) struct Sheet<'a> {
+    pub(crate) file: &'a TankFile,
+    pub(crate) request: &'a Request,
+    pub(crate) assessment: &'a Assessment,
+    pub(crate) units: UnitSystem,
 }
 
 impl Sheet<'_> {
-    fn show(&self, value: impl Into<f64>, quantity: Quantity) -> String {
+    pub(crate) fn show(&self, value: impl Into<f64>, quantity: Quantity) -> String {
         format(value.into(), quantity, self.units)
     }
 
     /// A load: nothing is nothing in any unit.
-    fn load(&self, value: impl Into<f64>, quantity: Quantity) -> String {
+    pub(crate) fn load(&self, value: impl Into<f64>, quantity: Quantity) -> String {
         let value = value.into();
         if value == 0.0 { "0".to_owned() } else { self.show(value, quantity) }
     }

@@ -132,6 +132,15 @@ impl Bending {
         })
     }
 
+    /// The influence function of a moment: its table up the slope, with both parts.
+    pub(crate) fn influence(&self, bent: &Bent) -> Option<&Weighted> {
+        let mut moments = self.solved.moments.iter();
+        let here = |place: &Place, direction: Direction| {
+            *place == bent.place && direction == bent.direction
+        };
+        moments.find(|(place, direction, _)| here(place, *direction)).map(|(.., weight)| weight)
+    }
+
     fn most(&self, load: impl Fn(&Weighted) -> f64) -> Bent {
         let mut bent = Bent {
             moment_n: 0.0,

@@ -58,6 +58,20 @@ impl Table {
         self.rows.last().map_or(0.0, |last| last.area)
     }
 
+    /// `W_cum(h) = integral over s < h of w ds`.
+    #[must_use]
+    pub fn area(&self, h_m: f64) -> f64 {
+        let above = self.rows.partition_point(|row| row.s_m <= h_m);
+        let Some(row) = above.checked_sub(1).and_then(|i| self.rows.get(i)) else { return 0.0 };
+        match self.rows.get(above) {
+            None => row.area,
+            Some(next) => {
+                let slope = (next.w - row.w) / (next.s_m - row.s_m);
+                row.ahead(h_m, row.w + slope * (h_m - row.s_m)).0
+            }
+        }
+    }
+
     /// `M(h) = integral over s < h of (h - s) w ds`; above the last row it goes on with the slope
     /// `total`.
     #[must_use]

@@ -21,7 +21,7 @@ const fn step(units: UnitSystem) -> Step {
 }
 
 /// A level as calculated.
-fn unrounded(units: UnitSystem, level_m: f32) -> String {
+pub(crate) fn unrounded(units: UnitSystem, level_m: f32) -> String {
     let level_m = f64::from(level_m);
     match units {
         UnitSystem::Si => format!("{level_m:.6} m"),
@@ -37,10 +37,19 @@ fn stepped(units: UnitSystem, level_m: f64) -> String {
     }
 }
 
-fn down(units: UnitSystem, level_m: Option<f32>) -> String {
+/// A limit level rounded down.
+pub(crate) fn down(units: UnitSystem, level_m: Option<f32>) -> String {
     level_m.map_or_else(
         || "no level".to_owned(),
         |level_m| stepped(units, rounded_down(level_m, step(units))),
+    )
+}
+
+/// A lowest level rounded up.
+pub(crate) fn up(units: UnitSystem, level_m: Option<f32>) -> String {
+    level_m.map_or_else(
+        || "no level".to_owned(),
+        |level_m| stepped(units, rounded_up(level_m, step(units))),
     )
 }
 
@@ -79,10 +88,7 @@ pub(super) fn limits(sheet: &Sheet<'_>, page: &mut Page) {
         };
         let lowest = match &row.judgement.lowest {
             None => "-".to_owned(),
-            Some(lowest) => lowest.lowest_level_m.map_or_else(
-                || "no level".to_owned(),
-                |level_m| stepped(units, rounded_up(level_m, step(units))),
-            ),
+            Some(lowest) => up(units, lowest.lowest_level_m),
         };
         page.line(&line(&format!("  {}", row.name), &exact, [&limit, &bound, &lowest], &by));
     }

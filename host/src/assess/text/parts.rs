@@ -29,7 +29,7 @@ pub(super) fn loads(sheet: &Sheet<'_>, page: &mut Page) {
 }
 
 /// The part in one line.
-fn describe(sheet: &Sheet<'_>, stated: &Stated) -> String {
+pub(crate) fn describe(sheet: &Sheet<'_>, stated: &Stated) -> String {
     let heights = stated.heights();
     let show = |value: f64| sheet.show(value, Length);
     let (kind, name) = (stated.kind().as_str(), stated.name());
@@ -195,7 +195,7 @@ fn pins(
 }
 
 /// A thickness rounded up: to 0.01 mm, or 0.001 in.
-fn thickness_up(sheet: &Sheet<'_>, thickness_m: f64) -> String {
+pub(crate) fn thickness_up(sheet: &Sheet<'_>, thickness_m: f64) -> String {
     let steps_per_m = match sheet.units {
         crate::units::UnitSystem::Si => 1e5,
         crate::units::UnitSystem::UsCustomary => 1e3 / 0.0254,
@@ -212,7 +212,18 @@ fn line(label: &str, cells: [String; 3], capacity: &str) -> String {
 
 /// The capacities that a load is compared with, in lines that fit beside it.
 fn capacities(sheet: &Sheet<'_>, stated: &Stated, row: &PartRow, key: &str) -> Vec<String> {
-    let mut lines = Vec::new();
+    let words = capacity_words(sheet, stated, row, key);
+    words.iter().flat_map(|text| wrap(text, WIDTH - CAPACITY_AT)).collect()
+}
+
+/// The capacities that a load is compared with, in words.
+pub(crate) fn capacity_words(
+    sheet: &Sheet<'_>,
+    stated: &Stated,
+    row: &PartRow,
+    key: &str,
+) -> Vec<String> {
+    let mut found = Vec::new();
     let lists = [
         ("", stated.capacity(), &row.capacity),
         ("inward ", stated.capacity_inward(), &row.capacity_inward),
@@ -220,11 +231,10 @@ fn capacities(sheet: &Sheet<'_>, stated: &Stated, row: &PartRow, key: &str) -> V
     for (side, ratings, values) in lists {
         for value in values.iter().filter(|value| value.load == key) {
             let Some(rating) = ratings.get(value.place) else { continue };
-            let text = format!("{side}{}", capacity(sheet, rating, value));
-            lines.extend(wrap(&text, WIDTH - CAPACITY_AT));
+            found.push(format!("{side}{}", capacity(sheet, rating, value)));
         }
     }
-    lines
+    found
 }
 
 fn capacity(sheet: &Sheet<'_>, rating: &Rating, value: &Capacity) -> String {

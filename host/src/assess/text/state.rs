@@ -15,6 +15,13 @@ type Row = (&'static str, String, String);
 pub(super) fn state(sheet: &Sheet<'_>, page: &mut Page) {
     page.blank();
     page.heading("State");
+    for (label, value, note) in state_rows(sheet) {
+        page.paragraph(&format!("  {label:<10}{value:<42}  "), &note);
+    }
+}
+
+/// What was assessed: each value, and where it comes from.
+pub(crate) fn state_rows(sheet: &Sheet<'_>) -> Vec<Row> {
     let mut rows = vec![level(sheet)];
     liquids(sheet, &mut rows);
     surroundings(sheet, &mut rows);
@@ -22,9 +29,7 @@ pub(super) fn state(sheet: &Sheet<'_>, page: &mut Page) {
     rows.push(("sensor", value, note));
     let datum = "inside bottom at the shell; levels are heights above it";
     rows.push(("datum", datum.to_owned(), String::new()));
-    for (label, value, note) in rows {
-        page.paragraph(&format!("  {label:<10}{value:<42}  "), &note);
-    }
+    rows
 }
 
 const fn source(overridden: bool) -> &'static str {
@@ -144,7 +149,7 @@ fn sensor(sheet: &Sheet<'_>) -> (String, String) {
 }
 
 /// What the sensor gives at a true level: the quantity it senses, and the current of a loop.
-pub(super) fn reading(sheet: &Sheet<'_>, level_m: f64) -> String {
+pub(crate) fn reading(sheet: &Sheet<'_>, level_m: f64) -> String {
     let Some(level) = &sheet.file.level else { return String::new() };
     let seen = f64::from(sheet.assessment.desk.reading(single(level_m)));
     let (sensed, quantity) = match level.sensing {

@@ -1,0 +1,46 @@
+//! Both methods over every example, at many levels.
+
+use super::{compare, worst};
+use crate::assess::{Overrides, Request, assess};
+use crate::tank;
+
+const EXAMPLES: [(&str, &[u8]); 8] = [
+    ("brine_day_tank", include_bytes!("../../../../configs/brine_day_tank.toml")),
+    ("curved_parts", include_bytes!("../../../../configs/curved_parts.toml")),
+    ("hatch_test_tank", include_bytes!("../../../../configs/hatch_test_tank.toml")),
+    ("laboratory_tank", include_bytes!("../../../../configs/laboratory_tank.toml")),
+    ("odd_shapes", include_bytes!("../../../../configs/odd_shapes.toml")),
+    ("plate_box", include_bytes!("../../../../configs/plate_box.toml")),
+    ("rinse_basin", include_bytes!("../../../../configs/rinse_basin.toml")),
+    ("wine_drum", include_bytes!("../../../../configs/wine_drum.toml")),
+];
+
+#[test]
+fn both_methods_agree_on_every_load_of_every_example() {
+    for (name, bytes) in EXAMPLES {
+        let file = tank::parse(name, bytes).unwrap();
+        let top_m = file.fill.overflow_m.unwrap().value;
+        for level in 0..=6_u8 {
+            let level_m = Some(top_m * f64::from(level) / 6.0);
+            let overrides = Overrides { level_m, ..Overrides::default() };
+            let request = Request::new(&file, overrides).unwrap();
+            let assessment = assess(&file, &request).unwrap();
+            let found = compare(&file, &request, &assessment);
+            for (part, list) in file.parts.iter().zip(&found) {
+                for one in list {
+                    for (state, pair) in one.states.iter().enumerate() {
+                        let Some(pair) = pair else { continue };
+                        assert!(
+                            pair.share() <= 1.0,
+                            "{name} at {level_m:?}, {} {} state {state}: {pair:?}",
+                            part.name(),
+                            one.load
+                        );
+                    }
+                }
+            }
+            let (count, _) = worst(&found);
+            assert!(count >= 4 * file.parts.len(), "{name}: {count} figures");
+        }
+    }
+}
