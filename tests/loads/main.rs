@@ -5,6 +5,8 @@ mod core_cases;
 mod core_curved;
 mod core_engine;
 mod core_error;
+mod core_laws;
+mod covers;
 mod plate_cases;
 mod plate_series;
 mod product;

@@ -7,7 +7,7 @@
 mod alarms;
 mod bytes;
 mod courses;
-mod file;
+pub(crate) mod file;
 mod hatches;
 mod places;
 mod times;

@@ -26,7 +26,8 @@ impl Tank {
         Self { vessel: String::new(), liquid: liquid.clone(), contents: None, rest }
     }
 
-    fn text(&self) -> String {
+    /// Its text.
+    pub(crate) fn text(&self) -> String {
         let Liquid { gas_pa, layers, gravity_m_s2, outside } = &self.liquid;
         let mut text = format!("[tank]\nname = \"case\"\n{}\n[fill]\nclosed = true\n", self.vessel);
         for (index, layer) in layers.iter().enumerate() {
