@@ -83,7 +83,7 @@ fn loads_do_not_know_where_the_datum_lies() {
     }
 }
 
-/// Liquid over a plate and liquid under it press alike: the slope from the floor and its supplement.
+/// Liquid over a plate and liquid under it press alike: a slope and its supplement.
 #[test]
 fn a_wall_and_its_overhang_carry_the_same() {
     let mut random = Random::new(43);
