@@ -29,6 +29,7 @@ pub use shape::{Numbers, plane_shape};
 
 pub(crate) use filling::each_liquid;
 pub use filling::{Curve, curve};
+pub(crate) use liquid::table_error;
 pub(crate) use site::{HEIGHT_MAX_M, floor_m};
 pub use strake_core::plan_slot::fingerprint;
 

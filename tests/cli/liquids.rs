@@ -115,3 +115,45 @@ fn a_dry_diaphragm_does_not_say_empty() {
     near(bound, 1320.0 * 9.80665 * 0.25, 0.1);
     near(&value["parts"][0]["loads_inward_bound"]["pressure_pa"], 0.0, 1e-6);
 }
+
+const PETROLEUM: &str = "tests/cli/petroleum.toml";
+
+/// ASTM D1250 in the form of 1980, by hand: crude of 850 kg/m3 at 15 degC has the coefficient
+/// 613.9723 / 850^2 = 8.49789e-4 /K; 40 degC make -0.0216056 in the exponent and 831.83 kg/m3.
+#[test]
+fn petroleum_liquids_follow_their_tables() {
+    let (_, value) = document(&["assess", PETROLEUM, "--level", "5 m", "--temperature", "40 degC"]);
+    near(&value["state"]["density_kg_m3"], 831.832, 0.002);
+    near(&value["parts"][0]["loads"]["pressure_pa"], 831.832 * 9.80665 * 5.0, 0.2);
+    // 880 kg/m3 at 15 degC: 0.6278 / 880 = 7.13409e-4; 20 K make -0.0144311 and 867.392 at 35.
+    let oil = ["assess", PETROLEUM, "--level", "5 m", "--product", "test lubricating oil"];
+    let text = run(&oil).stdout;
+    assert!(text.contains("lubricating oil, API MPMS 11.1 (1980)"), "{text}");
+    assert!(text.contains("880.0 kg/m3 at 15 degC"), "{text}");
+}
+
+#[test]
+fn the_table_of_the_device_states_its_error() {
+    let text = run(&["assess", PETROLEUM, "--level", "5 m"]).stdout;
+    let line = text.lines().find(|line| line.starts_with("    table")).unwrap();
+    assert!(line.contains("8 points, straight lines") && line.contains("within "), "{line}");
+}
+
+#[test]
+fn what_the_tables_do_not_cover_is_refused() {
+    let ran = run(&["assess", PETROLEUM, "--level", "5 m", "--density", "1200 kg/m3"]);
+    assert_eq!(ran.status, 2, "{}", ran.stdout);
+    assert!(ran.stderr.contains("above the tables for crude, 610.5 kg/m3 to"), "{}", ran.stderr);
+    let ran = run(&["assess", PETROLEUM, "--level", "5 m", "--temperature", "160 degC"]);
+    assert_eq!(ran.status, 2, "{}", ran.stdout);
+    assert!(ran.stderr.contains("-18.0 degC to 150.0 degC"), "{}", ran.stderr);
+    let text = std::fs::read_to_string(concat!(
+        env!("CARGO_MANIFEST_DIR"),
+        "/../tests/cli/petroleum.toml"
+    ));
+    let tank = TankText::new(&text.unwrap().replace("\"45 degC\"", "\"155 degC\""));
+    let ran = run(&["assess", &tank.path()]);
+    assert_eq!(ran.status, 3, "{}", ran.stdout);
+    assert!(ran.stderr.contains("error[out-of-range]"), "{}", ran.stderr);
+    assert!(ran.stderr.contains("^^^^^^^^^^^^^^^^^^^^^^^"), "{}", ran.stderr);
+}

@@ -91,6 +91,10 @@ impl Request {
             }
             contents.temperature_c = temperature_c;
         }
+        if let Some(why) = contents.liquid.beyond(contents.temperature_c) {
+            let message = format!("the density cannot be followed: {why}");
+            return refuse(message, "check --density and --temperature, or the file's `expansion`");
+        }
         if let Some(gas_pa) = overrides.gas_pa {
             if !(-101_325.0..=1e7).contains(&gas_pa) {
                 let message =

@@ -43,12 +43,19 @@ pub(super) fn table(liquid: &Liquid) -> Option<(DensityTable, f32)> {
     Some((table, single(liquid.uncertainty.value + left_out)))
 }
 
+/// Points of the table that the device gets, and the largest relative distance of its straight
+/// lines from the density of the liquid, over the range of service; beside the rounding to f32.
+pub(crate) fn table_error(liquid: &Liquid) -> (usize, f64) {
+    let points = points(liquid);
+    (points.len(), largest_miss(liquid, &points))
+}
+
 fn points(liquid: &Liquid) -> Vec<(f64, f64)> {
     let (cold, hot) = (liquid.coldest_c.value, liquid.hottest_c.value);
     let at = |celsius: f64| (celsius, liquid.density_at(celsius));
     match &liquid.thermal.value {
         Thermal::None => vec![at(cold)],
-        Thermal::Expansion { .. } => {
+        Thermal::Expansion { .. } | Thermal::Petroleum(_) => {
             let steps = u8::try_from(TABLE_POINTS_MAX - 1).unwrap_or(1);
             let width = (hot - cold) / f64::from(steps);
             (0..=steps).map(|step| at(cold + width * f64::from(step))).collect()

@@ -1,4 +1,4 @@
-use super::{Contents, cover, for_desk, for_device, liquid};
+use super::{Contents, cover, for_desk, for_device, liquid, number};
 use crate::tank::{self, BoltLine, Bolts, FirstBolt, Plane, Shape, TankFile};
 use std::f64::consts::PI;
 use strake_core::part::Stated;
@@ -212,6 +212,42 @@ fn a_table_of_many_rows_keeps_eight_points_and_says_what_that_costs() {
         let off = f64::from(table.at(f32::from(tenth) / 10.0).unwrap()) / own - 1.0;
         assert!(off.abs() <= left_out + 1.2e-7, "{celsius}: {off}");
     }
+}
+
+/// The device's straight lines stay within what is stated, and that is small.
+#[test]
+fn tables_of_petroleum_liquids_keep_their_stated_error() {
+    let text = include_str!("../../../tests/cli/petroleum.toml");
+    let mut worst = 0.0_f64;
+    for (group, density, range) in [
+        ("crude", 620.0, [-18, 95]),
+        ("crude", 850.0, [5, 45]),
+        ("refined", 660.0, [-18, 95]),
+        ("refined", 780.0, [-18, 125]),
+        ("refined", 990.3, [-18, 150]),
+        ("lubricating oil", 880.0, [-18, 150]),
+    ] {
+        let range = range.map(|celsius| format!("\"{celsius} degC\"")).join(", ");
+        let text = text
+            .replacen("\"850 kg/m3\"", &format!("\"{density} kg/m3\""), 1)
+            .replacen("\"5 degC\", \"45 degC\"", &range, 1)
+            .replacen("\"crude\"", &format!("\"{group}\""), 1);
+        let liquid = parse(&text).liquid;
+        let (table, uncertainty) = liquid::table(&liquid).unwrap();
+        let (points, stated) = liquid::table_error(&liquid);
+        assert_eq!((points, table.points().len()), (8, 8));
+        assert!((f64::from(uncertainty) - 0.002 - stated).abs() < 1e-9);
+        worst = worst.max(stated);
+        let (cold, hot) = (liquid.coldest_c.value, liquid.hottest_c.value);
+        for step in 0..=1000_u16 {
+            let celsius = number::single(cold + (hot - cold) * f64::from(step) / 1000.0);
+            let read = f64::from(table.at(celsius).unwrap());
+            let off = read / liquid.density_at(f64::from(celsius)) - 1.0;
+            assert!(off.abs() <= stated + 2.0e-7, "{group} {density} at {celsius}: {off:e}");
+        }
+    }
+    println!("largest stated error: {worst:.1e}");
+    assert!((1e-6..1e-4).contains(&worst), "{worst:e}");
 }
 
 #[test]

@@ -46,8 +46,6 @@ pub(crate) struct Key {
 pub(crate) enum Holds {
     /// A text with a number and a unit of one of these quantities.
     Quantity(&'static [Quantity]),
-    /// The same, or this word.
-    QuantityOrWord(&'static [Quantity], &'static str),
     /// The same, or a list of such texts.
     Several(Quantity),
     /// Two such texts.
@@ -70,6 +68,8 @@ pub(crate) enum Holds {
     Table(&'static Table),
     /// A list of tables.
     Tables(&'static Table),
+    /// A quantity, this word, or a table that says more.
+    QuantityWordOrTable(&'static [Quantity], &'static str, &'static Table),
     /// A quantity, or a table that says more.
     QuantityOrTable(Quantity, &'static Table),
 }
@@ -173,9 +173,10 @@ impl Table {
 impl Holds {
     pub(crate) const fn table(self) -> Option<&'static Table> {
         match self {
-            Self::Table(table) | Self::Tables(table) | Self::QuantityOrTable(_, table) => {
-                Some(table)
-            }
+            Self::Table(table)
+            | Self::Tables(table)
+            | Self::QuantityOrTable(_, table)
+            | Self::QuantityWordOrTable(_, _, table) => Some(table),
             _ => None,
         }
     }
@@ -183,7 +184,7 @@ impl Holds {
     /// Whether a text may hold this quantity.
     pub(crate) fn quantity(self, asked: Quantity) -> bool {
         match self {
-            Self::Quantity(all) | Self::QuantityOrWord(all, _) | Self::Pair(all) => {
+            Self::Quantity(all) | Self::QuantityWordOrTable(all, ..) | Self::Pair(all) => {
                 all.contains(&asked)
             }
             Self::Several(one) | Self::QuantityOrTable(one, _) => one == asked,

@@ -3,8 +3,9 @@
 use super::Sheet;
 use crate::assess::part::single;
 use crate::assess::request::Source;
+use crate::compile::table_error;
 use crate::page::Page;
-use crate::tank::{Gas, Gravity, PressureReference, Sensing, Signal};
+use crate::tank::{Gas, Gravity, PressureReference, Sensing, Signal, Thermal};
 use crate::units::Quantity::{
     Acceleration, Current, Density, Length, Pressure, Ratio, Temperature,
 };
@@ -73,6 +74,7 @@ fn liquids(sheet: &Sheet<'_>, rows: &mut Vec<Row>) {
         sheet.show(liquid.uncertainty.value, Ratio)
     );
     rows.push(("  band", band, range));
+    rows.extend(expansion(sheet));
     for layer in &sheet.file.below {
         let value = format!(
             "{}, {} up to {}",
@@ -83,6 +85,24 @@ fn liquids(sheet: &Sheet<'_>, rows: &mut Vec<Row>) {
         let within = sheet.show(layer.surface_uncertainty_m.value, Length);
         rows.push(("  below", value, format!("file, surface +-{within}")));
     }
+}
+
+/// How a petroleum liquid follows the temperature, and what the device's table leaves out.
+fn expansion(sheet: &Sheet<'_>) -> Vec<Row> {
+    let liquid = &sheet.request.contents.liquid;
+    let mut rows = Vec::new();
+    if let Thermal::Petroleum(group) = liquid.thermal.value {
+        let base = group.base_kg_m3(liquid.density_kg_m3.value, liquid.temperature_c.value);
+        let value = format!("{} at 15 degC", sheet.show(base, Density));
+        let note = format!("{}, API MPMS 11.1 (1980), {}", group.word(), group.table());
+        rows.push(("  base", value, note));
+    }
+    if sheet.file.temperature_signal.is_some() && !matches!(liquid.thermal.value, Thermal::None) {
+        let (points, error) = table_error(liquid);
+        let value = format!("of the device: {points} points, straight lines");
+        rows.push(("  table", value, format!("within {error:.1e} of the density")));
+    }
+    rows
 }
 
 fn surroundings(sheet: &Sheet<'_>, rows: &mut Vec<Row>) {

@@ -13,6 +13,7 @@ pub(super) fn all(draft: &Draft, sink: &Sink) {
     for liquid in draft.liquid.iter().chain(layers).chain(&draft.products) {
         temperature(liquid, sink);
         expansion(liquid, sink);
+        petroleum(liquid, sink);
         table(liquid, sink);
     }
 }
@@ -57,6 +58,15 @@ fn expansion(liquid: &Liquid, sink: &Sink) {
             sink.report(Code::OutOfRange, liquid.thermal.span, message, hint);
             return;
         }
+    }
+}
+
+/// The tables hold for the liquid in service.
+fn petroleum(liquid: &Liquid, sink: &Sink) {
+    if let Some(why) = liquid.beyond(liquid.temperature_c.value) {
+        let message = format!("`expansion` of `{}`: {why}", liquid.name.value);
+        let hint = "check density, temperature and range, or write density_table for this liquid";
+        sink.report(Code::OutOfRange, liquid.thermal.span, message, hint);
     }
 }
 

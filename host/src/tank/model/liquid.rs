@@ -1,5 +1,6 @@
 //! Liquids and how their density follows the temperature.
 
+use super::petroleum::Petroleum;
 use crate::tank::finding::{Located, Span};
 
 /// A liquid, a layer or a product.
@@ -33,6 +34,8 @@ pub enum Thermal {
         /// Coefficient of cubic expansion.
         per_k: f64,
     },
+    /// As petroleum liquids of a group do.
+    Petroleum(Petroleum),
     /// Straight lines between the rows; the rows cover the range of service.
     Table {
         /// Temperature in °C, rising, and density in kg/m³; two rows at least.
@@ -53,10 +56,24 @@ impl Liquid {
                 let warmer_by = temperature_c - self.temperature_c.value;
                 self.density_kg_m3.value / (1.0 + per_k * warmer_by)
             }
+            Thermal::Petroleum(group) => {
+                let stated = (self.density_kg_m3.value, self.temperature_c.value);
+                group.density_kg_m3(group.base_kg_m3(stated.0, stated.1), temperature_c)
+            }
             Thermal::Table { rows } => {
                 interpolate(rows, temperature_c).unwrap_or(self.density_kg_m3.value)
             }
         }
+    }
+
+    /// Why the density cannot be followed over the temperatures of service and `celsius`.
+    #[must_use]
+    pub fn beyond(&self, celsius: f64) -> Option<String> {
+        let Thermal::Petroleum(group) = self.thermal.value else { return None };
+        let coldest_c = self.coldest_c.value.min(celsius);
+        let hottest_c = self.hottest_c.value.max(celsius);
+        let (density, at) = (self.density_kg_m3.value, self.temperature_c.value);
+        group.beyond(density, at, (coldest_c, hottest_c))
     }
 
     /// Lowest and highest density in service, kg/m³: over the range of temperature, widened by the

@@ -6,6 +6,7 @@ mod capacity;
 mod liquid;
 mod outline;
 mod part;
+mod petroleum;
 mod plate;
 mod secured;
 mod service;
@@ -20,6 +21,7 @@ pub use part::{
     Course, Curved, DesignPoint, Hatch, Heights, Hole, Opens, Panel, Part, PartKind, Plane,
     Profile, Surface,
 };
+pub use petroleum::Petroleum;
 pub use plate::{Elastic, PanelPlate, outline};
 pub use secured::{Axis, BoltLine, Bolts, CoverMass, FirstBolt, Hinged, Latch, Secured};
 pub use service::{Alarms, Cell, Logging, Power, SensorSupply, Threshold};

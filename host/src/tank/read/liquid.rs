@@ -4,7 +4,7 @@ use super::field::{Range, field};
 use super::level;
 use super::section::Section;
 use crate::tank::finding::{Code, Located};
-use crate::tank::model::{Layer, Liquid, TemperatureSignal, Thermal};
+use crate::tank::model::{Layer, Liquid, Petroleum, TemperatureSignal, Thermal};
 use crate::units::Quantity::{Density, Length, PerKelvin, Ratio, Temperature};
 
 pub(super) const NOT_HYDROSTATIC: &str =
@@ -146,6 +146,15 @@ fn thermal(section: &mut Section<'_>) -> Option<Located<Thermal>> {
 
 fn expansion(section: &mut Section<'_>) -> Option<Located<Thermal>> {
     let item = section.item("expansion")?;
+    if item.get_ref().is_table() {
+        let write = "{ petroleum = \"crude\" }";
+        let mut table = section.table("expansion", write)?;
+        let write = "\"crude\", \"refined\" or \"lubricating oil\"";
+        let group = table.need_choice("petroleum", &Petroleum::WORDS, write);
+        table.finish();
+        let span = item.span().into();
+        return group.map(|group| Located::new(Thermal::Petroleum(group.value), span));
+    }
     if item.get_ref().as_str().is_some_and(|text| text.trim() == "none") {
         return Some(Located::new(Thermal::None, item.span().into()));
     }

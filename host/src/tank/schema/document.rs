@@ -73,7 +73,9 @@ fn holds(holds: Holds) -> Value {
     let two = || json!({ "type": "array", "items": quantity(), "minItems": 2, "maxItems": 2 });
     match holds {
         Holds::Quantity(_) => quantity(),
-        Holds::QuantityOrWord(_, word) => json!({ "anyOf": [quantity(), { "const": word }] }),
+        Holds::QuantityWordOrTable(_, word, table) => {
+            json!({ "anyOf": [quantity(), { "const": word }, reference(table)] })
+        }
         Holds::Several(_) => json!({
             "anyOf": [quantity(), { "type": "array", "items": quantity(), "minItems": 1 }]
         }),
@@ -141,7 +143,7 @@ impl Holds {
     /// The units that people usually write, as a sentence lists them; empty without a quantity.
     fn units(self) -> String {
         let quantities: &[Quantity] = match self {
-            Self::Quantity(all) | Self::QuantityOrWord(all, _) | Self::Pair(all) => all,
+            Self::Quantity(all) | Self::QuantityWordOrTable(all, ..) | Self::Pair(all) => all,
             Self::Several(ref one) | Self::QuantityOrTable(ref one, _) => std::slice::from_ref(one),
             Self::Rows(first, second) if first == second => &[first],
             Self::Rows(first, second) => &[first, second],

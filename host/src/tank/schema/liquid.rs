@@ -1,7 +1,7 @@
 //! `[liquid]`, its layers, and `[[product]]`.
 
 use super::sensor::TEMPERATURE_SIGNAL;
-use super::{DENSITY, Holds, Key, LENGTH, Rule, Table, may, need};
+use super::{DENSITY, Holds, Key, LENGTH, Rule, Table, may, need, plain};
 use crate::units::Quantity::{Density, PerKelvin, Ratio, Temperature};
 
 /// Keys of every liquid.
@@ -12,8 +12,8 @@ const EVERY: &[Key] = &[
     need("range", Holds::Pair(&[Temperature]), "The coldest and the hottest in service."),
     may(
         "expansion",
-        Holds::QuantityOrWord(&[PerKelvin], "none"),
-        "Its coefficient of cubical expansion; none when the density does not change.",
+        Holds::QuantityWordOrTable(&[PerKelvin], "none", &PETROLEUM),
+        "Its coefficient of cubical expansion; none when the density does not change; or a group.",
     ),
     may(
         "density_table",
@@ -26,6 +26,16 @@ const EVERY: &[Key] = &[
         "The half-width that the density never exceeds, in percent.",
     ),
 ];
+
+static PETROLEUM: Table = plain(
+    "petroleum",
+    "A group of petroleum liquids, by ASTM D1250 / API MPMS 11.1.",
+    &[&[need(
+        "petroleum",
+        Holds::Words(&["crude", "refined", "lubricating oil"]),
+        "Table 54A, 54B or 54D.",
+    )]],
+);
 
 const THERMAL: &[Rule] = &[Rule::OneOf(&["expansion", "density_table"])];
 

@@ -34,8 +34,12 @@ fn as_json(value: &toml::Value) -> Value {
 
 fn examples() -> Vec<(String, toml::Value)> {
     let files = tank_files(&configs()).into_iter();
-    files.map(|(name, bytes)| (name, toml_value(&bytes).unwrap())).collect()
+    let more = ("petroleum".to_owned(), PETROLEUM.to_vec());
+    files.chain([more]).map(|(name, bytes)| (name, toml_value(&bytes).unwrap())).collect()
 }
+
+/// What no example shows.
+const PETROLEUM: &[u8] = include_bytes!("../../../../tests/cli/petroleum.toml");
 
 /// Every table of the description, by its name.
 fn tables() -> BTreeMap<&'static str, &'static Table> {
@@ -69,6 +73,7 @@ fn every_key_described_is_read() {
             let _ = parse(&name, &bytes);
         }
     }
+    let _ = parse("petroleum", PETROLEUM);
     let asked = asked::all();
     let tables = tables();
     let described: BTreeSet<(&str, &str)> = tables
