@@ -12,6 +12,7 @@ pub mod failure;
 pub mod inverse;
 pub mod journal_file;
 pub mod link;
+pub mod mesh;
 pub mod nearest;
 pub mod output_file;
 pub mod page;

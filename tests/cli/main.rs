@@ -2,9 +2,11 @@
 
 mod assess;
 mod curved_parts;
+
 mod errors;
 mod hatches;
 mod liquids;
+mod mesh_parts;
 mod odd_shapes;
 mod plates;
 mod rerate;

@@ -8,11 +8,12 @@ use markup::Page;
 use serde_json::Value;
 use strake::units::{Quantity, UnitSystem, format};
 
-const EXAMPLES: [&str; 8] = [
+const EXAMPLES: [&str; 9] = [
     "brine_day_tank",
     "curved_parts",
     "hatch_test_tank",
     "laboratory_tank",
+    "mesh_parts",
     "odd_shapes",
     "plate_box",
     "rinse_basin",

@@ -1,6 +1,7 @@
 //! Curved parts through the core: the cases, the error of every table, closed vessels.
 
 use crate::core_engine::{Numbers, at_level, bare, loads_with, narrow, plan_of};
+use crate::meshes::{AS_IT_IS, read};
 use std::f64::consts::{FRAC_PI_2, TAU};
 use strake::compile::{self, curved};
 use strake_core::part::curved::Tensions;
@@ -19,9 +20,9 @@ const BOUND: f64 = 2e-6;
 type Cut = fn(f64, &Liquid) -> membrane::Tensions;
 
 /// A table in its place.
-struct Placed {
-    table: curved::Table,
-    bottom_m: f64,
+pub(crate) struct Placed {
+    pub(crate) table: curved::Table,
+    pub(crate) bottom_m: f64,
 }
 
 impl Placed {
@@ -36,7 +37,7 @@ impl Placed {
     }
 
     /// Force along x and up, N.
-    fn force(&self, liquid: &Liquid) -> Result<[f64; 2], Reason> {
+    pub(crate) fn force(&self, liquid: &Liquid) -> Result<[f64; 2], Reason> {
         let (part, numbers, _) = self.part();
         let loads = loads_with(&part, &numbers, liquid)?.estimate;
         Ok([loads.force_x_n.lane(0).into(), loads.force_z_n.lane(0).into()])
@@ -74,7 +75,10 @@ fn placed(part: &CurvedPart) -> Result<Placed, Reason> {
         }
         CurvedPart::FloorDome { .. } => return Err("a hole in a dome is not offered"),
         CurvedPart::CubicProfile { .. } => return Err("the profile is no part of a tank file"),
-        CurvedPart::Mesh { .. } => return Err("meshes are not offered by this version"),
+        CurvedPart::Mesh { ref triangles } => {
+            let mesh = read(triangles, AS_IT_IS).map_err(|_| "no surface")?;
+            Placed { table: curved::mesh(&mesh), bottom_m: mesh.heights_m()[0] }
+        }
     })
 }
 

@@ -45,7 +45,7 @@ const OPEN_ANSWERED: &[(&str, usize)] = &[
 ];
 const OWN_ANSWERED: &[(&str, usize)] = &[
     ("bound", 5),
-    ("curved", 13),
+    ("curved", 15),
     ("density", 3),
     ("hatch", 16),
     ("plane", 8),

@@ -6,9 +6,11 @@
 
 mod arc;
 mod fit;
+mod mesh;
 mod shell;
 
 pub use arc::arc;
+pub use mesh::{MESH_ERROR_MAX, mesh, sideways};
 pub use shell::{PLACES, Profile, revolved};
 
 use super::number::single;
@@ -33,6 +35,9 @@ pub struct Table {
     /// Largest error of a force, for any surface, over what the surface at the highest point gives
     /// when all weights count as positive.
     pub error: f64,
+    /// The same as a force over the specific weight of the liquid, m³: what a force is off at most
+    /// is this times the specific weight of the heaviest liquid.
+    pub error_m3: f64,
 }
 
 impl Table {

@@ -1,14 +1,14 @@
 //! Parts: geometry, and in each direction the smallest of equal capacities.
 
 use super::bending::Bending;
-use super::curved::{self, PLACES, Table};
+use super::curved::{self, MESH_ERROR_MAX, PLACES, Table};
 use super::faults::Faults;
 use super::number::{located, single};
 use super::shape::{Numbers, plane_shape};
 use super::site::HEIGHTS_M;
 use super::{cover, cover_rule};
 use crate::tank::{
-    Capacity, Code, Course, Hatch, Located, Part as Stated, Plane, Rating, Secured, Surface,
+    self, Capacity, Code, Course, Hatch, Located, Part as Stated, Plane, Rating, Secured, Surface,
     TankFile, Vessel,
 };
 use crate::units::Quantity::Length;
@@ -16,6 +16,9 @@ use heapless::Vec;
 use strake_core::part::{Capacities, Cover, DESIGN_STATES_MAX, DesignState, Geometry, Part};
 use strake_core::plan::NUMBERS_MAX;
 use strake_core::shape::Face;
+
+/// Largest share of its area with which a mesh may be pressed across and be judged by its force.
+const SIDEWAYS_MAX: f64 = 1e-4;
 
 /// The part as the plan holds it; `None` with a finding when it cannot.
 pub(super) fn part(
@@ -32,7 +35,11 @@ pub(super) fn part(
         Stated::Course(course) => Some(self::course(file, course, faults)?),
         Stated::Panel(panel) => plane(&panel.plane, None, file, &mut list),
         Stated::Hatch(hatch) => plane(&hatch.sealed, Some(hatch), file, &mut list),
-        Stated::Curved(part) => table(&part.surface).curved(&mut list).map(Geometry::Curved),
+        Stated::Curved(part) => {
+            let table = table(&part.surface);
+            within_table(part, &table, faults)?;
+            table.curved(&mut list).map(Geometry::Curved)
+        }
     };
     let Some(geometry) = geometry else {
         faults.too_many(stated.located_name().span, "numbers of all shapes", NUMBERS_MAX);
@@ -101,6 +108,38 @@ pub(crate) fn without_plates(stated: &Stated, part: &Part) -> Part {
     Part { outward: capacities(stated, true), ..part.clone() }
 }
 
+/// What a table of a mesh cannot hold.
+fn within_table(part: &tank::Curved, table: &Table, faults: &mut Faults) -> Option<()> {
+    let Surface::Mesh(mesh) = &part.surface else { return Some(()) };
+    let name = &part.name.value;
+    if table.error > MESH_ERROR_MAX {
+        let message = format!(
+            "the mesh of `{name}` turns too often: its table is off by {:.2} %, the limit is {} %",
+            100.0 * table.error,
+            100.0 * MESH_ERROR_MAX
+        );
+        let hint = "smooth or coarsen the mesh, or cut it into parts of less height";
+        faults.report(Code::Mesh, part.placed_at, message, hint);
+        return None;
+    }
+    let force =
+        part.capacity.iter().find(|one| matches!(one.capacity.value, Capacity::Force { .. }));
+    let sideways = curved::sideways(mesh);
+    if let Some(rating) = force
+        && sideways > SIDEWAYS_MAX
+    {
+        let message = format!(
+            "`{name}` is pressed along its y axis too, with {:.2} % of its area: the device judges \
+             x and z",
+            100.0 * sideways
+        );
+        let hint = "turn the mesh so that its horizontal force lies along x, or give a pressure";
+        faults.report(Code::CapacityKind, rating.capacity.span, message, hint);
+        return None;
+    }
+    Some(())
+}
+
 /// A curved surface as a table.
 #[must_use]
 pub fn table(surface: &Surface) -> Table {
@@ -112,6 +151,7 @@ pub fn table(surface: &Surface) -> Table {
         Surface::Revolved { profile, base_radius_m, height_m, apex_up } => {
             curved::revolved(profile, base_radius_m, height_m, apex_up)
         }
+        Surface::Mesh(ref mesh) => curved::mesh(mesh),
     }
 }
 

@@ -11,6 +11,7 @@
 
 mod contents;
 pub(crate) mod curved;
+mod mesh;
 mod outline;
 mod part;
 mod plane;

@@ -133,6 +133,8 @@ codes! {
     WiderThanTank = "wider-than-tank",
     /// An outline that encloses nothing, crosses itself, or has a hole that it cannot have.
     Outline = "outline",
+    /// A mesh that cannot be read, is no surface, or takes more than a table.
+    Mesh = "mesh",
     /// A plate whose bending is not solved.
     Plate = "plate",
     /// Two courses cover the same height.

@@ -21,6 +21,8 @@ pub mod schema;
 pub use finding::{Code, Finding, Findings, Located, Span};
 pub use model::*;
 
+use std::path::Path;
+
 /// Most parts of a tank.
 pub const MAX_PARTS: usize = 32;
 /// Most layers, the liquid on top included.
@@ -36,13 +38,23 @@ pub const MAX_FILE_BYTES: usize = 256 << 10;
 /// Most findings kept of one file; a file with more is no tank file.
 pub const MAX_FINDINGS: usize = 200;
 
-/// Reads a tank file. `path_name` is only shown in findings.
+/// Reads a tank file. `path_name` is shown in findings; paths in the file count from its folder.
 ///
 /// # Errors
 ///
 /// [`Findings`] with everything that is wrong with the file, in the order of the file.
 pub fn parse(path_name: &str, bytes: &[u8]) -> Result<TankFile, Findings> {
-    read::file(path_name, bytes)
+    let folder = Path::new(path_name).parent().unwrap_or(Path::new(""));
+    parse_in(folder, path_name, bytes)
+}
+
+/// The same with the folder from which paths in the file count.
+///
+/// # Errors
+///
+/// As [`parse`].
+pub fn parse_in(folder: &Path, path_name: &str, bytes: &[u8]) -> Result<TankFile, Findings> {
+    read::file(path_name, folder, bytes)
 }
 
 #[cfg(test)]

@@ -3,6 +3,7 @@
 use super::secured::secured;
 use super::{Sheet, plate};
 use crate::assess::document::{Capacity, Loads, PartRow};
+use crate::mesh::{Closed, Side};
 use crate::page::{Page, WIDTH, wrap};
 use crate::tank::{self, Part as Stated, Plane, Rating, Shape};
 use crate::units::Quantity::{self, Density, Force, Length, LineLoad, Moment, Pressure, Ratio};
@@ -79,6 +80,22 @@ fn curved(sheet: &Sheet<'_>, surface: &tank::Surface) -> String {
             let apex = if apex_up { "up" } else { "down" };
             let (base, height) = (show(base_radius_m), show(height_m));
             format!("{word}, rim of radius {base}, {height} high, apex {apex}")
+        }
+        tank::Surface::Mesh(ref mesh) => {
+            let side = if mesh.reading.side == Side::Front { "into" } else { "out of" };
+            let rims = match (mesh.reading.closed, mesh.rims) {
+                (Some(Closed::Vessel), _) => "closed around the liquid".to_owned(),
+                (Some(Closed::Body), _) => "closed within the liquid".to_owned(),
+                (None, 0) => "no open rim".to_owned(),
+                (None, 1) => "one open rim".to_owned(),
+                (None, rims) => format!("{rims} open rims"),
+            };
+            format!(
+                "mesh {} (CRC-32 {:08x}), {} triangles, {rims}, normals {side} the liquid",
+                mesh.file,
+                mesh.check,
+                mesh.triangles.len()
+            )
         }
     }
 }

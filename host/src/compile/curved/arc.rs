@@ -37,7 +37,9 @@ pub fn arc(radius_m: f64, length_m: f64, from_deg: f64, to_deg: f64, inside: boo
         let up = away * length_m * middle.sin().signum();
         table.rows[1].extend(lying(radius_m, [bottom, top], up, -low));
     }
-    table.error = error(&table, radius_m, low, from_deg, to_deg, away * length_m);
+    let [worst, scale] = error(&table, radius_m, low, from_deg, to_deg, away * length_m);
+    table.error_m3 = worst;
+    table.error = if scale > 0.0 { worst / scale } else { 0.0 };
     table
 }
 
@@ -116,8 +118,8 @@ fn lying(radius: f64, [bottom, top]: [f64; 2], weight: f64, shift: f64) -> Vec<E
     rows
 }
 
-/// Largest error of the upward force over the weight of all rows times the rise.
-fn error(table: &Table, radius: f64, low: f64, from: f64, to: f64, weight: f64) -> f64 {
+/// Largest error of the upward force, and the largest force when all rows count as positive, m³.
+fn error(table: &Table, radius: f64, low: f64, from: f64, to: f64, weight: f64) -> [f64; 2] {
     // M_z = integral of the distance from the end, by the area under the circle.
     let area = |v: f64| {
         let u = (v / radius).clamp(-1.0, 1.0);
@@ -145,5 +147,5 @@ fn error(table: &Table, radius: f64, low: f64, from: f64, to: f64, weight: f64) 
         worst = worst.max((prism(&table.rows[1], y) - exact).abs());
         scale = scale.max(all);
     }
-    if scale > 0.0 { worst / scale } else { 0.0 }
+    [worst, scale]
 }

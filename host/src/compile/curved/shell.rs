@@ -64,7 +64,7 @@ pub fn revolved(profile: Profile, base_radius_m: f64, height_m: f64, apex_up: bo
         places: places.collect(),
         apex_up,
         rise_m: h,
-        error: 0.0,
+        ..Table::default()
     }
 }
 

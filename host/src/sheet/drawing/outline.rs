@@ -106,7 +106,32 @@ fn curved(surface: &Surface, reference_m: f64) -> Outline {
             let left: Vec<[f64; 2]> = shares().map(|share| [-radius(share), at(share)]).collect();
             centred(right.chain(left.into_iter().rev()).collect(), false)
         }
+        Surface::Mesh(ref mesh) => {
+            let corners = mesh.triangles.iter().flatten();
+            centred(hull(corners.map(|corner| [corner[0], corner[2]]).collect()), false)
+        }
     }
+}
+
+/// The convex line around points (Andrew's monotone chain).
+fn hull(mut points: Vec<[f64; 2]>) -> Vec<[f64; 2]> {
+    points.sort_by(|a, b| a[0].total_cmp(&b[0]).then(a[1].total_cmp(&b[1])));
+    let side = |points: &mut dyn Iterator<Item = [f64; 2]>| {
+        let mut line: Vec<[f64; 2]> = Vec::new();
+        for point in points {
+            while let [.., a, b] = line[..]
+                && (b[0] - a[0]) * (point[1] - a[1]) <= (b[1] - a[1]) * (point[0] - a[0])
+            {
+                line.pop();
+            }
+            line.push(point);
+        }
+        line.pop();
+        line
+    };
+    let mut around = side(&mut points.iter().copied());
+    around.extend(side(&mut points.iter().rev().copied()));
+    around
 }
 
 fn centred(points: Vec<[f64; 2]>, open: bool) -> Outline {

@@ -11,10 +11,12 @@ use std::f64::consts::{FRAC_PI_2, PI};
 pub(crate) const PLACES: u32 = 12;
 
 /// A surface by one parameter: height above its reference, and the components of `n dA` over it.
-struct Swept {
-    ends: Vec<f64>,
+pub(super) struct Swept {
+    pub(super) ends: Vec<f64>,
     /// From the parameter to the height and the two components.
-    at: Box<dyn Fn(f64) -> (f64, [f64; 2])>,
+    pub(super) at: Box<dyn Fn(f64) -> (f64, [f64; 2])>,
+    /// What lies level: height, and the two components of `n A`.
+    pub(super) level: Vec<(f64, [f64; 2])>,
 }
 
 /// Parameters at which a surface crosses heights: where `at` equals one of them, by bisection
@@ -57,7 +59,7 @@ fn swept(surface: &Surface, reference_m: f64) -> Swept {
                 let height_m = reference_m + radius_m * angle.sin();
                 (height_m, [n * angle.cos(), n * angle.sin()])
             };
-            Swept { ends, at: Box::new(at) }
+            Swept { ends, at: Box::new(at), level: Vec::new() }
         }
         Surface::Dome { radius_m, inside } => {
             let side = if inside { 1.0 } else { -1.0 };
@@ -67,7 +69,7 @@ fn swept(surface: &Surface, reference_m: f64) -> Swept {
                 let height_m = reference_m + radius_m * angle.cos();
                 (height_m, [2.0 * ring * angle.sin(), PI * ring * angle.cos()])
             };
-            Swept { ends: vec![0.0, FRAC_PI_2, PI], at: Box::new(at) }
+            Swept { ends: vec![0.0, FRAC_PI_2, PI], at: Box::new(at), level: Vec::new() }
         }
         Surface::Revolved { profile, base_radius_m, height_m, apex_up } => {
             let meridian = Shell { profile, base_m: base_radius_m, height_m, apex_up };
@@ -77,18 +79,19 @@ fn swept(surface: &Surface, reference_m: f64) -> Swept {
                 let z_m = reference_m + up * (height_m - here.from_apex_m);
                 (z_m, [0.0, up * 2.0 * PI * here.radius_m * here.radius_slope])
             };
-            Swept { ends: vec![0.0, 1.0], at: Box::new(at) }
+            Swept { ends: vec![0.0, 1.0], at: Box::new(at), level: Vec::new() }
         }
+        Surface::Mesh(ref mesh) => super::mesh::swept(mesh),
     }
 }
 
-/// Force along angle 0 and upwards: of the estimate, largest and least. `rows_m` is what the rows
-/// of the first method may be off, in metres of liquid on all of the surface.
+/// Force along angle 0 and upwards: of the estimate, largest and least. The rows of the first
+/// method may be off by so many metres of liquid on all of the surface, and m³ of it together.
 pub(super) fn forces(
     surface: &Surface,
     reference_m: f64,
     profiles: &Profiles,
-    rows_m: f64,
+    [rows_m, rows_m3]: [f64; 2],
 ) -> [[Figure; 3]; 2] {
     let swept = swept(surface, reference_m);
     let (from, to) = (swept.ends.first().copied(), swept.ends.last().copied());
@@ -96,15 +99,24 @@ pub(super) fn forces(
     let inside = swept.ends.iter().copied().chain(crossed(&swept, &profiles.kinks()));
     let ends = stretches(from, to, inside);
     [0, 1].map(|axis| {
-        let [estimate, most, least, allowed] = integral(&ends, |t| {
-            let (z_m, n) = (swept.at)(t);
+        let pressed = |z_m: f64, n: [f64; 2]| {
             let [p, upper, lower] = profiles.all().map(|one| one.at(z_m));
             let (out, back) = if n[axis] > 0.0 { (upper, lower) } else { (lower, upper) };
             let largest = p.abs().max(upper.abs()).max(lower.abs());
             let rows_pa = rows_m * profiles.heaviest_n_m3();
             let off = ERROR * largest + profiles.rounding_pa(z_m) + rows_pa;
             [p * n[axis], out * n[axis], back * n[axis], off * n[axis].abs()]
+        };
+        let mut sums = integral(&ends, |t| {
+            let (z_m, n) = (swept.at)(t);
+            pressed(z_m, n)
         });
+        for &(z_m, n) in &swept.level {
+            sums = sum(sums, pressed(z_m, n));
+        }
+        let [estimate, most, least, allowed] = sums;
+        // In a bound both signs may be off apart.
+        let allowed = allowed + 2.0 * rows_m3 * profiles.heaviest_n_m3();
         [estimate, most, least].map(|value| Figure { value, allowed })
     })
 }
@@ -116,10 +128,19 @@ pub(crate) fn below(surface: &Surface, reference_m: f64, height_m: f64) -> [f64;
         return [0.0; 2];
     };
     let inside = swept.ends.iter().copied().chain(crossed(&swept, &[height_m]));
-    integral(&stretches(from, to, inside), |t| {
+    let found = integral(&stretches(from, to, inside), |t| {
         let (z_m, n) = (swept.at)(t);
         if z_m < height_m { n } else { [0.0; 2] }
-    })
+    });
+    let level = swept.level.iter().filter(|(z_m, _)| *z_m < height_m);
+    level.fold(found, |found, &(_, n)| sum(found, n))
+}
+
+fn sum<const K: usize>(mut one: [f64; K], other: [f64; K]) -> [f64; K] {
+    for (sum, more) in one.iter_mut().zip(other) {
+        *sum += more;
+    }
+    one
 }
 
 /// A shell of revolution along its meridian.

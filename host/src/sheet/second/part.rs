@@ -186,8 +186,8 @@ impl Found<'_> {
         let name = ("pressure_pa", "pressure, largest (inward: least)");
         self.put(name, Quantity::Pressure, |loads| Some(loads.pressure_pa), largest);
         let table = compile::table(&part.surface);
-        let rows_m = table.error * table.rise_m;
-        let [x, z] = curved::forces(&part.surface, heights.centre_m, profiles, rows_m);
+        let rows = [table.error * table.rise_m, table.error_m3];
+        let [x, z] = curved::forces(&part.surface, heights.centre_m, profiles, rows);
         self.put(("force_x_n", "force along angle 0"), Quantity::Force, |loads| loads.force_x_n, x);
         self.put(("force_z_n", "force upwards"), Quantity::Force, |loads| loads.force_z_n, z);
         self.put(("force_n", "force, size"), Quantity::Force, |loads| loads.force_n, size(x, z));

@@ -3,12 +3,14 @@
 use super::{compare, worst};
 use crate::assess::{Overrides, Request, assess};
 use crate::tank;
+use std::path::Path;
 
-const EXAMPLES: [(&str, &[u8]); 8] = [
+const EXAMPLES: [(&str, &[u8]); 9] = [
     ("brine_day_tank", include_bytes!("../../../../configs/brine_day_tank.toml")),
     ("curved_parts", include_bytes!("../../../../configs/curved_parts.toml")),
     ("hatch_test_tank", include_bytes!("../../../../configs/hatch_test_tank.toml")),
     ("laboratory_tank", include_bytes!("../../../../configs/laboratory_tank.toml")),
+    ("mesh_parts", include_bytes!("../../../../configs/mesh_parts.toml")),
     ("odd_shapes", include_bytes!("../../../../configs/odd_shapes.toml")),
     ("plate_box", include_bytes!("../../../../configs/plate_box.toml")),
     ("rinse_basin", include_bytes!("../../../../configs/rinse_basin.toml")),
@@ -17,8 +19,9 @@ const EXAMPLES: [(&str, &[u8]); 8] = [
 
 #[test]
 fn both_methods_agree_on_every_load_of_every_example() {
+    let configs = Path::new(concat!(env!("CARGO_MANIFEST_DIR"), "/../configs"));
     for (name, bytes) in EXAMPLES {
-        let file = tank::parse(name, bytes).unwrap();
+        let file = tank::parse_in(configs, name, bytes).unwrap();
         let top_m = file.fill.overflow_m.unwrap().value;
         for level in 0..=6_u8 {
             let level_m = Some(top_m * f64::from(level) / 6.0);

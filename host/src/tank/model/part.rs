@@ -4,7 +4,9 @@ use super::capacity::Rating;
 use super::outline::{Pieces, Shape};
 use super::secured::{Axis, CoverMass, Secured};
 pub use crate::compile::curved::Profile;
+use crate::mesh::Mesh;
 use crate::tank::finding::{Located, Span};
+use std::sync::Arc;
 
 /// One part.
 #[expect(clippy::large_enum_variant, reason = "a file has some thirty parts")]
@@ -345,7 +347,7 @@ pub struct Curved {
     pub name: Located<String>,
     /// Its surface.
     pub surface: Surface,
-    /// Its heights; the centre is that of the axis, the centre of a dome, or the base.
+    /// Its heights; the centre is that of the axis, of a dome, of the base, or a mesh's z = 0.
     pub heights: Heights,
     /// Where its height is written.
     pub placed_at: Span,
@@ -358,7 +360,7 @@ pub struct Curved {
 }
 
 /// A curved surface.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub enum Surface {
     /// Arc about a level axis, x along angle 0.
     Arc {
@@ -391,6 +393,8 @@ pub enum Surface {
         /// Whether the apex is its highest point.
         apex_up: bool,
     },
+    /// Triangles, x along the mesh's own x axis.
+    Mesh(Arc<Mesh>),
 }
 
 /// To which side a cover opens.

@@ -1,4 +1,6 @@
-//! `[[curved]]`: arcs, domes, bottoms and heads.
+//! `[[curved]]`: arcs, domes, bottoms and heads, meshes.
+
+mod mesh;
 
 use super::capacity::{self, Bearer};
 use super::field::{Range, field};
@@ -7,6 +9,7 @@ use crate::tank::finding::{Code, Located};
 use crate::tank::model::{Curved, Heights, PartKind, Profile, Surface};
 use crate::units::Quantity::{AngleDegrees, Length};
 use crate::units::format_si;
+use std::path::Path;
 
 const KINDS: [&str; 4] = ["arc", "dome", "revolved", "mesh"];
 const ARC: &str = "{ radius = \"2.0 m\", length = \"4.0 m\", from = \"270 deg\", to = \"360 deg\", \
@@ -15,9 +18,16 @@ const REVOLVED: &str =
     "{ kind = \"cone\", base_radius = \"1.5 m\", height = \"1.2 m\", apex = \"down\" }";
 const WETTED: [(&str, bool); 2] = [("inside", true), ("outside", false)];
 
-pub(super) fn curved(mut section: Section<'_>, name: Option<Located<String>>) -> Option<Curved> {
-    let write =
-        format!("write arc = {ARC}, dome = {{ radius = \"0.4 m\" }}, or revolved = {REVOLVED}");
+/// `folder` is that of the tank file, from which the path of a mesh counts.
+pub(super) fn curved(
+    mut section: Section<'_>,
+    name: Option<Located<String>>,
+    folder: &Path,
+) -> Option<Curved> {
+    let write = format!(
+        "write arc = {ARC}, dome = {{ radius = \"0.4 m\" }}, revolved = {REVOLVED}, or \
+         mesh = \"sump.stl\""
+    );
     let kind = section.one_of(&KINDS, &write);
     let (key, surface) = match kind {
         Some("arc") => ("axis", arc(&mut section)),
@@ -25,37 +35,38 @@ pub(super) fn curved(mut section: Section<'_>, name: Option<Located<String>>) ->
         Some("revolved") => ("base", revolved(&mut section)),
         _ => ("axis", None),
     };
-    if let Some(span) = section.key_span("mesh") {
-        let message = "a mesh is not offered by this version";
-        let hint = "arc, dome and revolved are";
-        section.report(Code::NotOffered, span, message, hint);
-    }
     let write = "\"2.0 m\", the height of the axis, of a dome's centre, or of a shell's rim";
-    let place = match kind {
-        Some("mesh") | None => {
-            for key in ["axis", "centre", "base", "wetted", "unit"] {
+    let placed = match kind {
+        Some("mesh") => {
+            let span = section.key_span("mesh").unwrap_or(section.span);
+            mesh::mesh(&mut section, folder).map(|mesh| {
+                let [bottom_m, top_m] = mesh.heights_m();
+                let heights = Heights { bottom_m, centre_m: mesh.reading.origin_m, top_m };
+                (Surface::Mesh(mesh.into()), heights, span)
+            })
+        }
+        None => {
+            for key in ["axis", "centre", "base", "wetted", "unit", "origin", "normals", "closed"] {
                 section.item(key);
             }
             None
         }
-        _ => section.need(field(key, Length, Range::ANY, write)),
+        _ => {
+            let place = section.need(field(key, Length, Range::ANY, write));
+            let heights = |(surface, at): (Surface, Located<f64>)| {
+                let heights = heights(&surface, at.value);
+                (surface, heights, at.span)
+            };
+            surface.zip(place).map(heights)
+        }
     };
     let is_shell = kind == Some("revolved");
     let bearer = Bearer { shell: is_shell, ..Bearer::plain(PartKind::Curved) };
     let ratings = capacity::both(&mut section, bearer);
     let span = section.span;
     section.finish();
-    let (surface, place, (capacity, capacity_inward)) = (surface?, place?, ratings?);
-    let heights = heights(&surface, place.value);
-    Some(Curved {
-        name: name?,
-        surface,
-        heights,
-        placed_at: place.span,
-        capacity,
-        capacity_inward,
-        span,
-    })
+    let ((surface, heights, placed_at), (capacity, capacity_inward)) = (placed?, ratings?);
+    Some(Curved { name: name?, surface, heights, placed_at, capacity, capacity_inward, span })
 }
 
 fn heights(surface: &Surface, at_m: f64) -> Heights {
@@ -67,6 +78,7 @@ fn heights(surface: &Surface, at_m: f64) -> Heights {
         Surface::Dome { radius_m, .. } => (radius_m, radius_m),
         Surface::Revolved { height_m, apex_up: true, .. } => (0.0, height_m),
         Surface::Revolved { height_m, .. } => (height_m, 0.0),
+        Surface::Mesh(_) => (0.0, 0.0),
     };
     Heights { bottom_m: at_m - below_m, centre_m: at_m, top_m: at_m + above_m }
 }

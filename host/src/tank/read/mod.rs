@@ -20,6 +20,7 @@ mod vessel;
 #[cfg(test)]
 pub(super) use self::capacity::offered;
 
+use std::path::Path;
 use toml::de::{DeTable, DeValue};
 
 use self::section::{Section, Sink};
@@ -59,7 +60,7 @@ pub(super) struct Draft {
 }
 
 /// Reads and checks a file.
-pub(super) fn file(path: &str, bytes: &[u8]) -> Result<TankFile, Findings> {
+pub(super) fn file(path: &str, folder: &Path, bytes: &[u8]) -> Result<TankFile, Findings> {
     let text = match decode(bytes) {
         Ok(text) => text,
         Err(finding) => {
@@ -73,7 +74,7 @@ pub(super) fn file(path: &str, bytes: &[u8]) -> Result<TankFile, Findings> {
         return Err(Findings::new(path, text, syntax));
     }
     let sink = Sink::default();
-    let draft = root_tables(root.get_ref(), text.len(), &sink);
+    let draft = root_tables(root.get_ref(), text.len(), folder, &sink);
     check::all(&draft, &sink);
     let mut findings = sink.into_inner();
     findings.extend(syntax);
@@ -125,7 +126,7 @@ fn from_parser(error: &toml::de::Error, len: usize) -> Finding {
     Finding { code, span, message, hint: hint.to_owned() }
 }
 
-fn root_tables(table: &DeTable<'_>, len: usize, sink: &Sink) -> Draft {
+fn root_tables(table: &DeTable<'_>, len: usize, folder: &Path, sink: &Sink) -> Draft {
     let end = Span { start: len, end: len };
     let mut root = Section::new(table, end, "", &ROOT, sink);
     let vessel::Tank { name, vessel, strapping, conditions } = vessel::tank(&mut root);
@@ -137,7 +138,7 @@ fn root_tables(table: &DeTable<'_>, len: usize, sink: &Sink) -> Draft {
     let gravity = surroundings::gravity(&mut root);
     let level = level::level(&mut root);
     let part::Parts { read: parts, names: part_names, complete: parts_complete } =
-        part::parts(&mut root);
+        part::parts(&mut root, folder);
     let alarm = alarm::alarms(&mut root);
     let logging = service::logging(&mut root);
     let device_id = service::device(&mut root);

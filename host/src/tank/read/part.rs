@@ -11,6 +11,7 @@ use crate::tank::model::{
     Course, DesignPoint, Hatch, Heights, Opens, Panel, Part, PartKind, Plane, Shape,
 };
 use crate::units::Quantity::{Length, Speed};
+use std::path::Path;
 
 /// The parts in the order of the file.
 pub(super) struct Parts {
@@ -21,7 +22,8 @@ pub(super) struct Parts {
     pub(super) complete: bool,
 }
 
-pub(super) fn parts(root: &mut Section<'_>) -> Parts {
+/// `folder` is that of the file.
+pub(super) fn parts(root: &mut Section<'_>, folder: &Path) -> Parts {
     let mut sections = Vec::new();
     let mut stated = false;
     for (key, write) in [
@@ -50,7 +52,7 @@ pub(super) fn parts(root: &mut Section<'_>) -> Parts {
             "course" => course(section, name).map(Part::Course),
             "panel" => panel(section, name).map(Part::Panel),
             "hatch" => hatch(section, name).map(Part::Hatch),
-            _ => curved::curved(section, name).map(Part::Curved),
+            _ => curved::curved(section, name, folder).map(Part::Curved),
         };
         parts.extend(part);
     }

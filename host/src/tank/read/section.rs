@@ -97,6 +97,11 @@ impl<'a> Section<'a> {
         self.table.get(key)
     }
 
+    /// Whether a key stands, which was asked for before.
+    pub(crate) fn item_is_there(&self, key: &str) -> bool {
+        self.table.contains_key(key)
+    }
+
     /// Where a key stands, if it does; the key is known from now on.
     pub(crate) fn key_span(&mut self, key: &'static str) -> Option<Span> {
         self.ask(key);

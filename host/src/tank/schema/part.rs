@@ -132,7 +132,7 @@ static BOLT_RECTANGLE: Table = plain(
 
 pub(super) static CURVED: Table = Table {
     name: "curved",
-    about: "A curved part: an arc, a dome, or a bottom or head.",
+    about: "A curved part: an arc, a dome, a bottom or head, or a mesh.",
     keys: &[
         NAME,
         &[
@@ -143,13 +143,18 @@ pub(super) static CURVED: Table = Table {
             may("wetted", WETTED, "The side of a dome that the liquid touches."),
             may("revolved", Holds::Table(&REVOLVED), "A bottom or head about a vertical axis."),
             may("base", LENGTH, "Height of the rim of a bottom or head above the datum."),
+            may("mesh", Holds::Text, "An STL file, counted from the folder of the tank file."),
+            may("unit", Holds::Words(&["mm", "cm", "m", "in", "ft"]), "Of the mesh's numbers."),
+            may("origin", LENGTH, "Height of the mesh's z = 0; without it at the datum."),
+            may("normals", NORMALS, "Where those of the mesh point; else into the liquid."),
+            may("closed", CLOSED, "What a mesh without a rim is; it is checked."),
             need("capacity", Holds::Tables(&CURVED_OUTWARD), OUTWARD),
             may("capacity_inward", Holds::Tables(&CURVED_INWARD), INWARD),
         ],
     ],
-    refused: &["mesh", "unit"],
+    refused: &[],
     rules: &[
-        Rule::OneOf(&["arc", "dome", "revolved"]),
+        Rule::OneOf(&["arc", "dome", "revolved", "mesh"]),
         Rule::When(When {
             needs: &["axis"],
             else_forbids: &["axis"],
@@ -165,9 +170,16 @@ pub(super) static CURVED: Table = Table {
             else_forbids: &["base"],
             ..When::new("revolved", Is::There)
         }),
+        Rule::When(When {
+            needs: &["unit"],
+            else_forbids: &["unit", "origin", "normals", "closed"],
+            ..When::new("mesh", Is::There)
+        }),
     ],
 };
 
+const NORMALS: Holds = Holds::Words(&["into the liquid", "out of the liquid"]);
+const CLOSED: Holds = Holds::Words(&["vessel", "body"]);
 const WETTED: Holds = Holds::Words(&["inside", "outside"]);
 
 static ARC: Table = plain(

@@ -1,7 +1,7 @@
 //! Single slips in an otherwise sound file, each with its class and what the message must name.
 
 use super::{configs, tank_files};
-use crate::tank::{Code, parse};
+use crate::tank::{Code, parse, parse_in};
 
 /// The brine tank with one text replaced.
 fn with(from: &str, to: &str) -> Vec<u8> {
@@ -14,7 +14,7 @@ fn with(from: &str, to: &str) -> Vec<u8> {
 
 /// The replaced text gives this one finding, and its message or hint holds the words.
 fn slip(from: &str, to: &str, code: Code, words: &str) {
-    let findings = parse("t.toml", &with(from, to)).expect_err(to);
+    let findings = parse_in(&configs(), "t.toml", &with(from, to)).expect_err(to);
     let list = findings.list();
     assert_eq!(list.len(), 1, "{findings}");
     assert_eq!(list[0].code, code, "{findings}");
@@ -84,9 +84,24 @@ fn keys_of_later_versions_are_refused_by_name() {
     let vessel = "cylinder   = { diameter = \"8.0 m\", height = \"9.6 m\" }";
     let dished = "lying = { diameter = \"8 m\", length = \"9 m\", heads = \"dished\" }";
     later(vessel, dished, "`dished`, only flat ones are offered");
-    let mesh = "[[curved]]\nname = \"door\"\nmesh = \"door.stl\"\n\
-                capacity = [ { none = \"loads\" } ]\n[alarm]";
-    later("[alarm]", mesh, "a mesh is not offered");
+}
+
+#[test]
+fn a_mesh_says_its_unit_and_is_there() {
+    let mesh = |keys: &str| {
+        format!(
+            "[[curved]]\nname = \"door\"\n{keys}\ncapacity = [ {{ none = \"loads\" }} ]\n[alarm]"
+        )
+    };
+    let there = "mesh = \"sampling_pocket.stl\"";
+    slip("[alarm]", &mesh(there), Code::MissingKey, "`unit` is missing");
+    let unit = format!("{there}\nunit = \"mm\"");
+    let sound = with("[alarm]", &mesh(&unit));
+    assert!(parse_in(&configs(), "t.toml", &sound).is_ok());
+    let absent = mesh("mesh = \"absent.stl\"\nunit = \"mm\"");
+    slip("[alarm]", &absent, Code::Mesh, "counts from the folder of the tank file");
+    let placed = mesh(&format!("{unit}\naxis = \"2 m\""));
+    slip("[alarm]", &placed, Code::UnknownKey, "key `axis` is not known");
 }
 
 #[test]

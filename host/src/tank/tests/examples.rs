@@ -3,12 +3,12 @@
 use super::{configs, tank_files};
 use crate::tank::{
     BasisKind, Capacity, FirstBolt, Gas, Gravity, Hatch, Opens, Part, Secured, Sensing, Shape,
-    Signal, TankFile, Thermal, Vessel, normal_gravity_m_s2, parse,
+    Signal, TankFile, Thermal, Vessel, normal_gravity_m_s2, parse_in,
 };
 
 fn example(name: &str) -> TankFile {
     let (_, bytes) = tank_files(&configs()).into_iter().find(|(stem, _)| stem == name).unwrap();
-    parse(name, &bytes).unwrap_or_else(|findings| panic!("{findings}"))
+    parse_in(&configs(), name, &bytes).unwrap_or_else(|findings| panic!("{findings}"))
 }
 
 fn near(value: f64, expected: f64) -> bool {
@@ -18,7 +18,8 @@ fn near(value: f64, expected: f64) -> bool {
 #[test]
 fn every_example_can_be_sealed() {
     for (name, bytes) in tank_files(&configs()) {
-        let file = parse(&name, &bytes).unwrap_or_else(|findings| panic!("{findings}"));
+        let file =
+            parse_in(&configs(), &name, &bytes).unwrap_or_else(|findings| panic!("{findings}"));
         let missing = file.findings(file.missing_for_seal());
         assert!(missing.list().is_empty(), "{missing}");
         assert!(file.uncovered_shell().is_empty(), "{name}");

@@ -5,11 +5,11 @@ use std::collections::BTreeSet;
 use std::fs;
 
 use super::{configs, tank_files};
-use crate::tank::{Code, Findings, MAX_FILE_BYTES, parse};
+use crate::tank::{Code, Findings, MAX_FILE_BYTES, parse, parse_in};
 
 /// All findings of a file: those of reading it, or, for a sound one, those of sealing it.
 fn findings(name: &str, bytes: &[u8]) -> Findings {
-    match parse(&format!("{name}.toml"), bytes) {
+    match parse_in(&configs().join("invalid"), &format!("{name}.toml"), bytes) {
         Ok(file) => file.findings(file.missing_for_seal()),
         Err(findings) => findings,
     }
