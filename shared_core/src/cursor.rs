@@ -24,6 +24,13 @@ pub(crate) fn fill(target: &mut [u8], source: &[u8]) {
     }
 }
 
+/// The bytes before the last `N`, and these; `None` where there are fewer. The library's function
+/// of this purpose keeps a way to panic where the compiler leaves it a function.
+pub(crate) fn split_last<const N: usize>(bytes: &[u8]) -> Option<(&[u8], &[u8; N])> {
+    let (before, last) = bytes.split_at_checked(bytes.len().checked_sub(N)?)?;
+    Some((before, last.first_chunk()?))
+}
+
 /// Reads numbers off something that hands out bytes.
 #[derive(Clone, Copy, Debug)]
 pub(crate) struct Source<F>(pub(crate) F);

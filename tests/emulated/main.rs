@@ -18,6 +18,7 @@ mod footprint;
 mod image;
 mod log;
 mod machine;
+mod nrf52840;
 mod operation;
 mod panics;
 mod plugin;
@@ -69,6 +70,7 @@ fn main() {
         recovery::TESTS,
         footprint::TESTS,
         panics::TESTS,
+        nrf52840::TESTS,
     ];
     let trials: Vec<Trial> = groups
         .into_iter()

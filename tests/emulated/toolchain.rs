@@ -46,6 +46,10 @@ pub(crate) fn missing() -> Option<(&'static str, String)> {
     None
 }
 
+/// The board whose images are run, and the one whose image is only looked at.
+pub(crate) const EMULATED: &str = "strake-board-emulated";
+pub(crate) const NRF52840: &str = "strake-board-nrf52840";
+
 /// The image of a program of the emulated board as it is shipped, built once in a run.
 pub(crate) fn image(program: &'static str) -> Result<Arc<Image>, Box<dyn Error>> {
     image_with(program, "")
@@ -56,19 +60,28 @@ pub(crate) fn image_with(
     program: &'static str,
     feature: &'static str,
 ) -> Result<Arc<Image>, Box<dyn Error>> {
+    image_of(EMULATED, program, feature)
+}
+
+/// The image of a program of a board, with one of its features or none.
+pub(crate) fn image_of(
+    board: &'static str,
+    program: &'static str,
+    feature: &'static str,
+) -> Result<Arc<Image>, Box<dyn Error>> {
     type Built = Result<Arc<Image>, String>;
     static IMAGES: Mutex<BTreeMap<(&str, &str), Built>> = Mutex::new(BTreeMap::new());
     let mut images = IMAGES.lock().unwrap_or_else(PoisonError::into_inner);
     let built = images.entry((program, feature)).or_insert_with(|| {
-        let image = build(program, feature).and_then(|path| Image::read(&path));
+        let image = build(board, program, feature).and_then(|path| Image::read(&path));
         image.map(Arc::new).map_err(|error| error.to_string())
     });
     Ok(built.clone()?)
 }
 
-fn build(program: &str, feature: &str) -> Result<PathBuf, Box<dyn Error>> {
+fn build(board: &str, program: &str, feature: &str) -> Result<PathBuf, Box<dyn Error>> {
     let output = target_cargo()
-        .args(["build", "--quiet", "--package", "strake-board-emulated"])
+        .args(["build", "--quiet", "--package", board])
         .args(["--profile", "device", "--bin", program, "--features", feature])
         .output()?;
     if !output.status.success() {

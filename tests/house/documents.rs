@@ -8,7 +8,12 @@ use strake::exit::Exit;
 use crate::files::{self, File};
 use crate::{none, tell};
 
-const DOCUMENTS: &[&str] = &["README.md", "DEVELOPERS.md", "firmware/boards/README.md"];
+const DOCUMENTS: &[&str] = &[
+    "README.md",
+    "DEVELOPERS.md",
+    "firmware/boards/README.md",
+    "firmware/boards/nrf52840/README.md",
+];
 
 /// The commands README.md promises: the main job and every check.
 const PROMISED: &[&str] = &["cargo run --release -p strake -- trial", "./.ci/test"];

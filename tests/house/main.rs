@@ -11,6 +11,7 @@ mod documents;
 mod files;
 mod imports;
 mod layout;
+mod wiring;
 mod words;
 
 /// Fails with all findings of a rule at once.

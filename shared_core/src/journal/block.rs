@@ -25,7 +25,7 @@ use super::check::{CARELESS, block_check};
 use super::entry::{Entry, Sample};
 use super::samples::Chain;
 use super::{PAGE_BYTES, checkpoint, events, is_blank};
-use crate::cursor::fill;
+use crate::cursor::{fill, split_last};
 
 /// Most entries in one block.
 pub const ENTRIES_MAX: usize = 32;
@@ -258,7 +258,7 @@ impl<'a> Blocks<'a> {
     fn block(&self, rest: &'a [u8], offset: u16) -> Option<(usize, Block<'a>)> {
         let (&words, _) = rest.split_first()?;
         let len = usize::from(words) * self.place.word.bytes();
-        let (body, check) = rest.get(..len)?.split_last_chunk::<CHECK_BYTES>()?;
+        let (body, check) = split_last::<CHECK_BYTES>(rest.get(..len)?)?;
         let ([_, form_count], payload) = body.split_first_chunk::<HEAD_BYTES>()?;
         let check = u32::from_le_bytes(*check);
         let whole = CARELESS || check == block_check(self.place.sequence, offset, body);

@@ -2,6 +2,7 @@
 
 use super::cobs;
 use super::field::Writer;
+use crate::cursor::split_last;
 use crate::journal::check::CRC32;
 
 /// The check of a frame, over kind and body.
@@ -49,7 +50,7 @@ pub fn build(kind: u8, out: &mut [u8], write: impl FnOnce(&mut Writer<'_>)) -> O
 pub fn open(bytes: &mut [u8]) -> Result<Frame<'_>, FrameError> {
     let length = cobs::decode_in_place(bytes).ok_or(FrameError::Framing)?;
     let raw = bytes.get(..length).ok_or(FrameError::Framing)?;
-    let (checked, check) = raw.split_last_chunk::<CHECK_BYTES>().ok_or(FrameError::Framing)?;
+    let (checked, check) = split_last::<CHECK_BYTES>(raw).ok_or(FrameError::Framing)?;
     let (&kind, body) = checked.split_first().ok_or(FrameError::Framing)?;
     if CRC32.checksum(checked) != u32::from_le_bytes(*check) {
         return Err(FrameError::Check);
