@@ -96,6 +96,15 @@ impl Context<'_> {
         line_of(self.file.text(), span.start)
     }
 
+    /// What the reader must know, but what has a place of its own on every sheet.
+    fn cautions(&self) -> Vec<String> {
+        let parts = &self.assessment.document.parts;
+        let desk = &self.assessment.desk;
+        let mut found = assess::cautions(self.file, self.request, desk, parts, self.units);
+        found.retain(|one| !one.starts_with("PROVISIONAL") && one != FIELD_CHECK);
+        found
+    }
+
     /// What the text output of `assess` is made with.
     const fn text(&self) -> text::Sheet<'_> {
         text::Sheet {
@@ -133,9 +142,10 @@ fn render(context: &Context<'_>, fingerprint: u64, agreement: (usize, f64)) -> S
     front::provisional(context, &mut blocks);
     front::disagreement(context, &mut blocks);
     front::result(context, &mut blocks);
-    drawing::section(context, &mut blocks);
     front::scope(&mut blocks);
-    let sections: [fn(&Context<'_>, &mut Vec<Block>); 6] = [
+    let sections: [fn(&Context<'_>, &mut Vec<Block>); 8] = [
+        inputs::state,
+        drawing::section,
         inputs::section,
         pressure::section,
         parts::section,

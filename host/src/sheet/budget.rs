@@ -5,10 +5,12 @@ use super::Context;
 use super::model::{Block, Table, Words};
 use super::pressure::single;
 use crate::assess::{Desk, together};
+use crate::compile::{Bending, without_plates};
+use crate::tank::Part as Stated;
 use crate::units::Quantity::Length;
 use strake_core::lane::Lane;
 use strake_core::liquid::{Band, Gas};
-use strake_core::part::evaluate;
+use strake_core::part::{acting, evaluate};
 use strake_core::plan::Plan;
 
 /// What a bound is made of.
@@ -77,27 +79,38 @@ fn utilisations(context: &Context<'_>) -> Table {
     let desks: Vec<Desk> = (0..SOURCES.len())
         .map(|source| Desk::of_plan(alone(desk.plan(), source), context.file))
         .collect();
-    let level = Lane([single(context.request.level_m)]);
-    // How far the bound lies above the estimate.
-    let over = |desk: &Desk, part: usize| {
-        let part = desk.plan().parts.get(part)?;
-        let loads = evaluate(desk.plan(), part, &desk.as_seen(level));
-        let over = loads.utilisation_bound.lane(0) - loads.utilisation.lane(0);
-        part.judged_outward().then_some(f64::from(over))
-    };
-    for (index, row) in context.assessment.document.parts.iter().enumerate() {
-        if !row.plates.is_empty() {
-            continue;
-        }
-        let Some(envelope) = over(desk, index) else { continue };
-        let each: Vec<f64> = desks.iter().filter_map(|desk| over(desk, index)).collect();
+    for (index, stated) in context.file.parts.iter().enumerate() {
+        let over = |desk: &Desk| over(context, desk, (index, stated));
+        let Some(envelope) = over(desk) else { continue };
+        let each: Vec<f64> = desks.iter().filter_map(over).collect();
         let (straight, quadrature) = together(&each);
-        let mut cells = vec![row.name.as_str().into()];
+        let mut cells = vec![stated.name().into()];
         let shown = each.iter().chain([&straight, &quadrature, &envelope]);
         cells.extend(shown.map(|one| format!("{one:.4}").into()));
         table.row(cells);
     }
     table
+}
+
+/// How far the utilisation of the bound lies above that of the estimate; none of a part that is not
+/// judged outward.
+fn over(context: &Context<'_>, desk: &Desk, (index, stated): (usize, &Stated)) -> Option<f64> {
+    let row = context.assessment.document.parts.get(index)?;
+    row.judgement.utilisation?;
+    let all = desk.as_seen(Lane([single(context.request.level_m)]));
+    // Plates by their moments, not by what stands for them on the device.
+    let part = without_plates(stated, desk.plan().parts.get(index)?);
+    let loads = evaluate(desk.plan(), &part, &all);
+    let mut pair = [loads.utilisation.lane(0), loads.utilisation_bound.lane(0)].map(f64::from);
+    let states = acting(desk.plan(), &part, &all);
+    for (plate, row) in Bending::of_part(stated).iter().zip(&row.plates) {
+        if row.bent.is_some() {
+            let used = [plate.under(&states.estimate, 0), plate.bound(&states, 0)];
+            let used = used.map(|bent| plate.utilisation(&bent));
+            pair = [pair[0].max(used[0]), pair[1].max(used[1])];
+        }
+    }
+    Some(pair[1] - pair[0])
 }
 
 fn levels(context: &Context<'_>) -> Table {

@@ -58,6 +58,11 @@ pub(super) fn limits_of_the_method(
         let each = found.iter().map(|one| Words::from(format!("{}: {}", one.name, one.why)));
         blocks.push(Block::List(each.collect()));
     }
+    let cautions = context.cautions();
+    if !cautions.is_empty() {
+        blocks.push(Block::Section("Cautions".to_owned()));
+        blocks.push(Block::List(cautions.into_iter().map(Words::from).collect()));
+    }
     blocks.push(Block::Section("Not covered".to_owned()));
     blocks.push(Block::List(NOT_COVERED.into_iter().map(Words::from).collect()));
     blocks.push(Block::Section("How it was worked out".to_owned()));

@@ -4,7 +4,7 @@ use super::Context;
 use super::measure::short;
 use super::model::{Block, Cell, Frame, Row, Table, Words, strong};
 use super::second::Pair;
-use crate::assess::{FIELD_CHECK, PartRow, assumed, cautions, text};
+use crate::assess::{FIELD_CHECK, PartRow, assumed, text};
 use crate::inverse::Step;
 
 /// Identity of the tank and of the calculation; what the program cannot know is left blank.
@@ -107,12 +107,10 @@ fn governing(context: &Context<'_>) -> Words {
     strong(text)
 }
 
-/// Cautions that have no other place on the sheet.
+/// Bounds above their thresholds, and where the level comes from when nobody stated it.
 fn pressing(context: &Context<'_>) -> Vec<String> {
-    let parts = &context.assessment.document.parts;
-    let desk = &context.assessment.desk;
-    let mut found = cautions(context.file, context.request, desk, parts, context.units);
-    found.retain(|one| !one.starts_with("PROVISIONAL") && one != FIELD_CHECK);
+    let mut found = context.cautions();
+    found.retain(|one| one.contains("is at or above") || one.starts_with("no level stated"));
     found
 }
 

@@ -33,13 +33,16 @@ const QUANTITIES: [Quantity; 21] = [
     Quantity::Charge,
 ];
 
-pub(super) fn section(context: &Context<'_>, blocks: &mut Vec<Block>) {
+pub(super) fn state(context: &Context<'_>, blocks: &mut Vec<Block>) {
     blocks.push(Block::Section("State assessed".to_owned()));
     let mut state = Table::new("lll", &["quantity", "value", "where it comes from"]);
     for (label, value, note) in text::state_rows(&context.text()) {
         state.row(vec![label.trim().into(), value.into(), note.into()]);
     }
     blocks.push(Block::Table(state));
+}
+
+pub(super) fn section(context: &Context<'_>, blocks: &mut Vec<Block>) {
     blocks.push(Block::Section("Inputs of the tank file".to_owned()));
     blocks.push(Block::text(format!(
         "Every key of {}, as it is written there, and the value as it was read. The basis is that \

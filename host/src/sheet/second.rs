@@ -15,6 +15,7 @@ mod mesh;
 mod outline;
 mod part;
 mod plane;
+mod plate;
 mod profile;
 mod quadrature;
 pub(crate) mod secured;
@@ -22,8 +23,11 @@ pub(crate) mod secured;
 pub(crate) use profile::Profiles;
 
 use crate::assess::{Assessment, Request};
-use crate::tank::TankFile;
+use crate::compile::{Bending, Bent};
+use crate::tank::{Part as Stated, TankFile};
 use crate::units::Quantity;
+use strake_core::lane::Lane;
+use strake_core::part::{Part, acting};
 
 /// A figure of the second method, and how far the first may be from it.
 #[derive(Clone, Copy, Debug)]
@@ -85,8 +89,31 @@ pub(crate) fn compare(
     request: &Request,
     assessment: &Assessment,
 ) -> Vec<Vec<Compared>> {
-    let parts = file.parts.iter().zip(&assessment.document.parts);
-    parts.map(|(stated, row)| part::compared(file, request, stated, row)).collect()
+    let rows = file.parts.iter().zip(&assessment.document.parts);
+    let parts = assessment.desk.plan().parts.iter();
+    let each = rows.zip(parts).map(|((stated, row), part)| {
+        let bent = bent(assessment, request, (stated, part));
+        part::compared(file, request, stated, row, &bent)
+    });
+    each.collect()
+}
+
+/// Where the first method finds the largest moment of each plate of a part, under the estimate and
+/// under the bound: there the second one looks.
+fn bent(
+    assessment: &Assessment,
+    request: &Request,
+    (stated, part): (&Stated, &Part),
+) -> Vec<[Bent; 2]> {
+    let plates = Bending::of_part(stated);
+    if plates.is_empty() {
+        return Vec::new();
+    }
+    let desk = &assessment.desk;
+    let level = Lane([super::pressure::single(request.level_m)]);
+    let states = acting(desk.plan(), part, &desk.as_seen(level));
+    let both = |one: &Bending| [one.under(&states.estimate, 0), one.bound(&states, 0)];
+    plates.iter().map(both).collect()
 }
 
 /// The pair that uses up most of what is allowed, and how many there are.

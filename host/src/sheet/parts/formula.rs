@@ -34,7 +34,8 @@ pub(super) fn sum(terms: &[String]) -> String {
 
 /// Heights of a table: four stretches of the part, and where the surfaces of the estimate stand.
 pub(super) fn heights(one: &One<'_>, state: &Pressure<1>) -> Vec<f64> {
-    let (bottom, top) = (f64::from(one.part.bottom_m), f64::from(one.part.top_m));
+    let stated = one.stated.heights();
+    let (bottom, top) = (stated.bottom_m, stated.top_m);
     let quarters = (0..=4_u8).map(|quarter| bottom + (top - bottom) * f64::from(quarter) / 4.0);
     let surfaces = surfaces(state).into_iter().map(|(height_m, _)| height_m);
     rising(quarters.chain(surfaces))
@@ -44,6 +45,6 @@ pub(super) fn heights(one: &One<'_>, state: &Pressure<1>) -> Vec<f64> {
 pub(super) fn rising(heights_m: impl Iterator<Item = f64>) -> Vec<f64> {
     let mut found: Vec<f64> = heights_m.collect();
     found.sort_by(f64::total_cmp);
-    found.dedup_by(|a, b| (*a - *b).abs() < 1e-9);
+    found.dedup_by(|a, b| (*a - *b).abs() < 1e-6);
     found
 }

