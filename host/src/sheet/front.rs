@@ -10,7 +10,8 @@ use crate::inverse::Step;
 /// Identity of the tank and of the calculation; what the program cannot know is left blank.
 pub(super) fn identity(context: &Context<'_>, fingerprint: u64, blocks: &mut Vec<Block>) {
     let file = context.file;
-    let mut table = Table::new("llll", &["", "", "", ""]);
+    let blank = Table::new("llll", &["", "", "", ""]);
+    let mut table = Table { look: "identity", ..blank };
     let date = context.date.unwrap_or("");
     let version = env!("CARGO_PKG_VERSION");
     let rows = [

@@ -59,8 +59,10 @@ impl Banded {
         for row in (0..right.len()).rev() {
             right[row] /= self.rows[row][width];
             let value = right[row];
-            for k in row.saturating_sub(width)..row {
-                right[k] -= self.rows[row][width + k - row] * value;
+            let first = row.saturating_sub(width);
+            let own = &self.rows[row][width + first - row..width];
+            for (left, own) in right[first..row].iter_mut().zip(own) {
+                *left -= own * value;
             }
         }
         Some(right)
