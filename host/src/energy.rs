@@ -11,6 +11,10 @@
 //! The sensor's figures are the file's. Those of the device are estimates from data sheets of its
 //! class of parts, stated with every result; nothing was measured on hardware.
 
+mod text;
+
+pub(crate) use text::battery;
+
 use crate::tank::{Power, TankFile};
 use serde::Serialize;
 use strake_core::evaluate::REST_MS_MIN;

@@ -5,6 +5,7 @@
 
 mod build;
 mod document;
+mod energy;
 mod text;
 mod words;
 
@@ -12,6 +13,7 @@ pub use document::{
     AlarmRow, ClockRow, DeviceRow, Document, FaultRow, JournalRow, LevelRow, LinkRow, LoadsRow,
     PartRow, PlanRow,
 };
+pub use energy::EnergyRow;
 pub(crate) use text::ahead_words;
 pub use text::render;
 pub use words::{cause_words, state_words};

@@ -1,6 +1,7 @@
 //! Status: the device's health, never the tank's; the worst on top.
 
-use crate::bench::{Swing, commissioned, device, document, on, run_for};
+use crate::bench::{Swing, TANK, commissioned, device, document, on, run_for};
+use serde_json::Value;
 use strake::sim::machine::Happening;
 use strake::sim::pty::PtyMachine;
 use strake::sim::sensor::Failure;
@@ -93,4 +94,75 @@ fn a_device_without_a_plan_judges_nothing() {
     assert_eq!(ran.exit, 0, "{}", ran.err);
     assert!(ran.out.contains("Parts: none: without a plan nothing is judged\n"), "{}", ran.out);
     assert!(ran.out.contains("  clock     NOT SET"), "{}", ran.out);
+}
+
+/// A file of the shipped tank, with something in it replaced.
+fn tank_with(from: &str, to: &str) -> tempfile::NamedTempFile {
+    let text = TANK.replacen(from, to, 1);
+    assert!(from.is_empty() || text != TANK, "{from} is not in the tank file");
+    let file = tempfile::NamedTempFile::new().unwrap();
+    std::fs::write(file.path(), text).unwrap();
+    file
+}
+
+fn energy_of(device: &PtyMachine, tank: &tempfile::NamedTempFile) -> (Value, Value) {
+    let path = tank.path().to_str().unwrap();
+    let status = document(&on(device, &["status", "--format", "json", "--tank", path]));
+    (status["energy"].clone(), status)
+}
+
+#[test]
+fn with_the_tank_file_it_says_how_long_the_cell_lasts() {
+    let device = commissioned(Swing::still(5.0));
+    run_for(&device, 60_000);
+    let shipped = tank_with("", "");
+    let (energy, _) = energy_of(&device, &shipped);
+    let file = strake::tank::parse("tank.toml", TANK.as_bytes()).unwrap();
+    let estimate = strake::energy::estimate(&file).unwrap();
+    for (name, of) in [("fixed", estimate.fixed), ("adaptive", estimate.adaptive)] {
+        assert_eq!(energy[name]["life_days"], of.life_days);
+    }
+    assert_eq!(energy["cautions"].as_array().unwrap().len(), estimate.cautions.len());
+    // A minute says nothing of the pace of a day.
+    assert!(energy["since_start"].is_null());
+
+    run_for(&device, 2 * 86_400_000);
+    let (energy, status) = energy_of(&device, &shipped);
+    let shown = &energy["since_start"];
+    let samples = status["journal"]["samples"].as_f64().unwrap();
+    let running_s = status["device"]["running_s"].as_f64().unwrap();
+    let per_day = shown["samples_per_day"].as_f64().unwrap();
+    assert!((per_day - samples * 86_400.0 / running_s).abs() < 0.01, "{per_day}");
+    // At rest for two days and not for four fifths of each: fewer samples, a longer life.
+    assert!(per_day < estimate.adaptive.samples_per_day, "{per_day}");
+    // 19 Ah, and what a day takes of them.
+    let charge_c = shown["charge_per_day_c"].as_f64().unwrap();
+    let life_days = shown["life_days"].as_f64().unwrap();
+    assert!((life_days - 19.0 * 3600.0 / charge_c).abs() < 1e-6 * life_days, "{life_days}");
+    assert!(life_days > estimate.adaptive.life_days, "{life_days}");
+    let text = on(&device, &["status", "--tank", shipped.path().to_str().unwrap()]).out;
+    let head = "Battery, an estimate                 fixed      adaptive   since start\n";
+    assert!(text.contains(head), "{text}");
+}
+
+#[test]
+fn another_tank_file_is_told() {
+    let device = commissioned(Swing::still(5.0));
+    let slower = tank_with("idle_interval = \"60 s\"", "idle_interval = \"120 s\"");
+    let (energy, _) = energy_of(&device, &slower);
+    let caution = "the tank file samples every 10 s and 120 s at rest, the device every 10 s and \
+                   60 s: the columns fixed and adaptive are the file's";
+    assert_eq!(energy["cautions"][0], caution);
+    let (energy, _) = energy_of(&device, &tank_with("brine day tank 3", "brine day tank 4"));
+    let caution = energy["cautions"][0].as_str().unwrap();
+    assert!(caution.starts_with("the tank file is of brine day tank 4"), "{caution}");
+
+    let silent = tank_with("[power]\ncell ", "# none\n# cell ");
+    let silent = std::fs::read_to_string(silent.path()).unwrap();
+    let silent = silent.lines().filter(|line| !line.starts_with("sensor = {"));
+    let file = tempfile::NamedTempFile::new().unwrap();
+    std::fs::write(file.path(), silent.collect::<Vec<_>>().join("\n")).unwrap();
+    let ran = on(&device, &["status", "--tank", file.path().to_str().unwrap()]);
+    assert_eq!((ran.exit, ran.out.as_str()), (3, ""));
+    assert!(ran.err.contains("says nothing of the cell\n  hint: give the file"), "{}", ran.err);
 }

@@ -1,6 +1,5 @@
 //! The document as text that an engineer can check by hand.
 
-mod battery;
 mod limits;
 mod margin;
 mod parts;
@@ -12,6 +11,7 @@ use super::Assessment;
 use super::notes::{self, FIELD_CHECK, assumed};
 use super::request::Request;
 use crate::compile::fingerprint;
+use crate::energy::battery;
 use crate::page::Page;
 use crate::tank::TankFile;
 use crate::units::{Quantity, UnitSystem, format};
@@ -61,7 +61,9 @@ pub fn render(
     limits::thresholds(&sheet, &mut page);
     margin::set_points(&sheet, &mut page);
     margin::margin(&sheet, &mut page);
-    battery::battery(&sheet, &mut page);
+    if let Some(energy) = &sheet.assessment.document.energy {
+        battery(energy, None, &mut page);
+    }
     notes(&sheet, &mut page);
     page.into_text()
 }

@@ -59,6 +59,7 @@ impl Document {
             filling: seen.filling.as_ref().and_then(|filling| filling_row(filling, plan)),
             parts,
             battery_v: (status.battery_mv > 0).then(|| f64::from(status.battery_mv) / 1000.0),
+            energy: None,
             clock: ClockRow::of(status, seen.utc_s),
             journal: journal_row(status, identity),
             link: LinkRow { bytes_in, bytes_out, bad_frames },

@@ -1,6 +1,7 @@
 //! The document `strake.status/1`. Its keys are a promise to scripts; quantities are SI, the unit
 //! stands in the key.
 
+use super::EnergyRow;
 use crate::assess::Opening;
 use crate::plan_file::PlanFile;
 use serde::Serialize;
@@ -35,6 +36,8 @@ pub struct Document {
     pub parts: Vec<PartRow>,
     /// Supply; null when the board cannot tell.
     pub battery_v: Option<f64>,
+    /// How long the cell lasts; null unless a tank file was given.
+    pub energy: Option<EnergyRow>,
     /// The device's clock.
     pub clock: ClockRow,
     /// The journal.
@@ -270,6 +273,6 @@ pub struct LinkRow {
 }
 
 #[expect(clippy::cast_precision_loss, reason = "a device does not run for 2^53 ms")]
-fn seconds(tick_ms: u64) -> f64 {
+pub(super) fn seconds(tick_ms: u64) -> f64 {
     tick_ms as f64 / 1000.0
 }

@@ -2,6 +2,7 @@
 
 use super::document::{ClockRow, Document};
 use super::words::state_words;
+use crate::energy::battery;
 use crate::page::Page;
 use crate::units::Quantity::{Flow, Length, Time};
 use crate::units::{UnitSystem, format};
@@ -18,6 +19,9 @@ pub fn render(document: &Document, units: UnitSystem, coloured: bool) -> String 
     filling(document, units, &mut page);
     parts(document, &mut page);
     device(document, &mut page);
+    if let Some(energy) = &document.energy {
+        battery(&energy.estimate, energy.since_start.as_ref(), &mut page);
+    }
     page.blank();
     for caution in &document.cautions {
         page.paragraph("", &format!("{caution}."));
