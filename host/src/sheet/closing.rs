@@ -74,7 +74,8 @@ pub(super) fn limits_of_the_method(
                 .to_owned(),
             format!(
                 "Second method: the pressure read straight off the tank file in double precision and \
-                 integrated numerically over the dimensions; equilibrium for what holds a cover. {compared} \
+                 integrated numerically over the dimensions; equilibrium for what holds a cover, finite \
+                 elements for the bending of plates. {compared} \
                  figures were compared; the largest difference is {} of what is allowed for its \
                  load. Allowed is the error of the first method and what rounding the file's \
                  decimals to single precision may cost.",

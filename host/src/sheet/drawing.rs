@@ -23,6 +23,8 @@ const HEAD: f64 = 5.0;
 /// Least room for one part, for its figures.
 const SLOT: f64 = 13.0;
 const GAP: f64 = 3.0;
+/// Fill of what is below its warning.
+const CALM: &str = "#f4f6f8";
 
 /// One drawing in the row.
 struct Item {
@@ -217,7 +219,7 @@ fn look(context: &Context<'_>, row: &PartRow) -> (&'static str, &'static str) {
     } else if f64::from(bound) >= warn {
         ("#f2d7a0", "0.35")
     } else {
-        ("#f4f6f8", "0.3")
+        (CALM, "0.3")
     }
 }
 
@@ -233,12 +235,17 @@ fn part(
     for ring in &shape.outline.rings {
         let points: Vec<String> = ring.iter().map(|&point| at(point).map(mm).join(",")).collect();
         let points = points.join(" ");
-        let (fill, tag) = if shape.outline.open { ("none", "polyline") } else { (fill, "polygon") };
+        // What is seen edge on is a line: the fill would not show.
+        let (tag, fill, stroke, width) = if shape.outline.open {
+            ("polyline", "none", if fill == CALM { "#111" } else { fill }, "1.1")
+        } else {
+            ("polygon", fill, "#111", edge)
+        };
         let attributes = [
             ("points", points.as_str()),
             ("fill", fill),
-            ("stroke", "#111"),
-            ("stroke-width", if shape.outline.open { "0.8" } else { edge }),
+            ("stroke", stroke),
+            ("stroke-width", width),
         ];
         html.empty(tag, &attributes);
     }

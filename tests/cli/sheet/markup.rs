@@ -75,6 +75,24 @@ impl Page {
         text.split_whitespace().collect::<Vec<_>>().join(" ")
     }
 
+    /// The text of each paragraph.
+    pub(crate) fn paragraphs(&self) -> Vec<String> {
+        let mut found: Vec<String> = Vec::new();
+        let mut inside = false;
+        for piece in &self.pieces {
+            match piece {
+                Piece::Open(name, _) if name == "p" => {
+                    inside = true;
+                    found.push(String::new());
+                }
+                Piece::Close(name) if name == "p" => inside = false,
+                Piece::Text(text) if inside => last(&mut found).push_str(text),
+                _ => {}
+            }
+        }
+        found
+    }
+
     /// How often an element stands in it.
     pub(crate) fn count(&self, tag: &str) -> usize {
         self.pieces.iter().filter(|one| matches!(one, Piece::Open(name, _) if name == tag)).count()

@@ -35,10 +35,17 @@ pub(super) fn hatch(one: &One<'_>, hatch: &Hatch, blocks: &mut Vec<Block>) {
     }
     blocks.push(Block::Formula(lines));
     blocks.push(Block::Table(table(one, hatch)));
-    blocks.push(Block::text(
-        "A cover that the load presses on its seat hangs on nothing: seat and gasket carry it, and \
-         latch and hinge are reported as 0.",
-    ));
+    let hangs = one.row.loads.moment_n_m.is_some() && !hatch.pivots();
+    if hangs {
+        blocks.push(Block::text(
+            "A cover that the load presses on its seat hangs on nothing: seat and gasket carry it, \
+             and latch and hinge are reported as 0.",
+        ));
+    } else if hatch.seats(true) {
+        blocks.push(Block::text(
+            "An outward load presses the cover on its seat: the bolts carry an inward one only.",
+        ));
+    }
 }
 
 fn table(one: &One<'_>, hatch: &Hatch) -> Table {

@@ -49,3 +49,26 @@ fn both_methods_agree_on_every_load_of_every_example() {
         }
     }
 }
+
+/// A fault on purpose: a level that is 5 mm off in one of the two shows on every wetted part of
+/// every example.
+#[test]
+fn a_difference_of_five_millimetres_shows() {
+    let configs = Path::new(concat!(env!("CARGO_MANIFEST_DIR"), "/../configs"));
+    for (name, bytes) in EXAMPLES {
+        let file = tank::parse_in(configs, name, bytes).unwrap();
+        let top_m = file.fill.overflow_m.unwrap().value;
+        let at = |level_m: f64| {
+            let overrides = Overrides { level_m: Some(level_m), ..Overrides::default() };
+            Request::new(&file, overrides).unwrap()
+        };
+        let assessment = assess(&file, &at(0.9 * top_m)).unwrap();
+        let found = compare(&file, &at(0.9 * top_m + 0.005), &assessment);
+        for (part, list) in file.parts.iter().zip(&found) {
+            let wetted = part.heights().bottom_m < 0.8 * top_m;
+            let pairs = list.iter().flat_map(|one| one.states.iter().flatten());
+            let seen = pairs.filter(|pair| pair.share() > 1.0).count();
+            assert!(!wetted || seen > 0, "{name}, {}", part.name());
+        }
+    }
+}
