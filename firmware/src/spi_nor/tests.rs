@@ -3,8 +3,12 @@
 use embedded_hal::spi::ErrorKind;
 use embedded_storage::nor_flash::{NorFlash, NorFlashError, NorFlashErrorKind, ReadNorFlash};
 
+use strake_core::journal::{Entry, Sample, SectorHeader};
+use strake_core::signal::{Channel, Quality};
+
 use super::chip::{Fault, Shared};
 use super::{SpiNor, SpiNorError};
+use crate::journal::{Journal, OpenError, Restore, Snapshot};
 
 const BYTES: u32 = 64 << 10;
 const CHIP_BYTES: usize = 128 << 10;
@@ -176,4 +180,84 @@ fn a_failing_bus_is_told() {
     assert_eq!(nor.read(0, &mut [0]), Err(failed));
     assert_eq!(nor.write(0, &[0]), Err(failed));
     assert_eq!(nor.erase(0, 4096), Err(failed));
+}
+
+/// An application without a state of its own.
+struct Plain;
+
+impl Snapshot for Plain {
+    fn plan_fingerprint(&self) -> u64 {
+        7
+    }
+    fn boot(&self) -> u16 {
+        1
+    }
+    fn tick_ms(&self) -> u64 {
+        0
+    }
+    fn utc_s(&self) -> Option<u64> {
+        None
+    }
+    fn write_state(&mut self, out: &mut [u8]) -> usize {
+        out[..4].copy_from_slice(b"same");
+        4
+    }
+}
+
+/// Ticks of the samples behind the newest checkpoint.
+#[derive(Default)]
+struct Ticks(Vec<u64>);
+
+impl Restore for Ticks {
+    fn checkpoint(&mut self, bytes: &[u8]) {
+        assert_eq!(bytes, b"same");
+        self.0.clear();
+    }
+    fn sector(&mut self, header: &SectorHeader) {
+        assert_eq!(header.plan_fingerprint, 7);
+    }
+    fn entry(&mut self, entry: &Entry) {
+        if let Entry::Sample(sample) = entry {
+            self.0.push(sample.tick_ms);
+        }
+    }
+}
+
+fn sample(number: u64) -> Sample {
+    // Steps of their own each time, so that a lap of the ring comes soon.
+    let count_16 = i32::try_from(number * number % 100_003).expect("small");
+    let level = Channel { count_16, quality: Quality::Good };
+    Sample { tick_ms: number * 10_000, level, ..Sample::default() }
+}
+
+#[test]
+fn the_journal_laps_its_ring_on_the_chip() {
+    const SAMPLES: u64 = 30_000;
+    let (nor, chip) = nor();
+    let (mut journal, _) = Journal::open(nor, &mut Ticks::default()).expect("open");
+    for number in 1..=SAMPLES {
+        journal.push(&sample(number), &mut Plain).expect("taken");
+        if number % 6 == 0 {
+            journal.flush().expect("written");
+        }
+        journal.housekeeping(number).expect("erased ahead");
+    }
+    journal.flush().expect("written");
+    assert_eq!(journal.counters().flash_errors, 0);
+    let mut found = Ticks::default();
+    let (_, recovery) = Journal::open(journal.into_flash(), &mut found).expect("open");
+    assert_eq!(found.0.last(), Some(&(SAMPLES * 10_000)));
+    assert!(found.0.windows(2).all(|pair| pair[1] - pair[0] == 10_000), "none is missing");
+    assert!(recovery.newest_sequence > Some(20), "{recovery:?}");
+    assert_eq!((recovery.damaged_blocks, recovery.damaged_sectors), (0, 0));
+    assert_eq!(chip.0.borrow().unheard, 0);
+}
+
+#[test]
+fn without_its_chip_there_is_no_journal() {
+    let (nor, chip) = nor();
+    chip.0.borrow_mut().fault = Fault::Absent(0xFF);
+    let opened = Journal::open(nor, &mut Ticks::default());
+    let absent = SpiNorError::WrongChip { id: [0xFF; 3] };
+    assert!(matches!(opened, Err(OpenError::Flash(error)) if error == absent), "not an empty one");
 }
