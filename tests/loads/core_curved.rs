@@ -1,6 +1,7 @@
 //! Curved parts through the core: the cases, the error of every table, closed vessels.
 
 use crate::core_engine::{Numbers, at_level, bare, loads_with, narrow, plan_of};
+use crate::core_error::sides;
 use crate::meshes::{AS_IT_IS, read};
 use std::f64::consts::{FRAC_PI_2, TAU};
 use strake::compile::{self, curved};
@@ -209,18 +210,9 @@ fn forces_within(seed: u64, cases: u32) {
         let (placed, surface) = random_part(&mut random);
         let state = random_liquid(&mut random, placed.bottom_m);
         let found = placed.force(&state).unwrap();
-        let sides = [
-            Liquid { outside: None, ..state.clone() },
-            Liquid {
-                gas_pa: 0.0,
-                layers: state.outside.into_iter().collect(),
-                outside: None,
-                ..state.clone()
-            },
-        ];
         let mut pressed = [0.0; 2];
-        for side in sides.iter().filter(|side| !side.layers.is_empty()) {
-            let by_axis = resultant(&surface, side, [0.0; 3]).pressed_by_axis_n;
+        for side in sides(&state) {
+            let by_axis = resultant(&surface, &side, [0.0; 3]).pressed_by_axis_n;
             pressed = [pressed[0] + by_axis[0], pressed[1] + by_axis[2]];
         }
         let heaviest = state.layers.iter().map(|layer| layer.density_kg_m3).fold(1400.0, f64::max);

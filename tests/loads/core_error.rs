@@ -1,8 +1,9 @@
 //! The error of every load against the oracle, over the whole domain.
 //!
 //! The oracle takes the plan's and the state's f32 values as exact. The error is relative to
-//! `integral |p| |w|` of the same state, inside and outside counted apart: where they nearly
-//! cancel, no arithmetic on the two can be exact to the small difference. The bound is 2e-6.
+//! `integral |p| |w|` of the same state; gas, liquid inside and liquid outside are counted apart:
+//! where a vacuum or what stands outside nearly cancels the rest, no arithmetic in f32 can be exact
+//! to the small difference. The bound is 2e-6.
 
 use crate::core_engine::{at_head, course, loads_of, loads_with, narrow, part_of, plan_of};
 use strake_core::liquid::{Band as DensityBand, Gas, States};
@@ -34,16 +35,12 @@ pub(crate) fn part(random: &mut Random) -> PlanePart {
     part
 }
 
-/// Each side by itself, as if it stood inside.
+/// Gas, liquid inside and liquid outside, each by itself as if it stood inside.
 pub(crate) fn sides(state: &Liquid) -> Vec<Liquid> {
-    let inside = Liquid { outside: None, ..state.clone() };
-    let outside = state.outside.map(|layer| Liquid {
-        gas_pa: 0.0,
-        layers: vec![layer],
-        outside: None,
-        ..state.clone()
-    });
-    std::iter::once(inside).chain(outside).collect()
+    let gas = Liquid { layers: Vec::new(), outside: None, ..state.clone() };
+    let inside = Liquid { gas_pa: 0.0, outside: None, ..state.clone() };
+    let outside = state.outside.map(|layer| Liquid { layers: vec![layer], ..inside.clone() });
+    [gas, inside].into_iter().chain(outside).collect()
 }
 
 /// The worst error of one load, and where it was met.
@@ -61,11 +58,19 @@ impl Worst {
         }
     }
 
-    /// Prints it and holds it against the bound.
-    pub(crate) fn holds(&self, load: &str) {
+    /// Prints it; says where it was met when it is beyond the bound.
+    fn beyond(&self, load: &str) -> Option<String> {
         println!("worst error of the {load}: {:.2e}", self.error);
-        assert!(self.error <= BOUND, "{load}: {:.2e} at {}", self.error, self.at);
+        (self.error.is_nan() || self.error > BOUND)
+            .then(|| format!("{load}: {:.2e} at {}", self.error, self.at))
     }
+}
+
+/// Prints the worst of each load and holds all against the bound.
+pub(crate) fn hold(worst: &[Worst], loads: &[&str]) {
+    let beyond: Vec<String> =
+        worst.iter().zip(loads).filter_map(|(worst, load)| worst.beyond(load)).collect();
+    assert!(beyond.is_empty(), "{}", beyond.join("\n"));
 }
 
 /// Force and moment about the centroid of plane parts.
@@ -214,10 +219,6 @@ const PLANES: [&str; 2] = ["force", "moment about the centroid"];
 const POINTS: [&str; 2] = ["hoop tension", "pressure"];
 const BOUNDS: [&str; 2] = ["bound of a force by a head", "bound of a hoop tension by a head"];
 
-fn hold(worst: &[Worst], loads: &[&str]) {
-    worst.iter().zip(loads).for_each(|(worst, load)| worst.holds(load));
-}
-
 #[test]
 fn forces_and_moments_stay_within_the_stated_error() {
     hold(&planes(2026, PARTS), &PLANES);
@@ -236,7 +237,6 @@ fn bounds_by_a_head_sensor_stay_within_the_stated_error() {
 #[test]
 #[ignore = "long proof of a million cases each, see DEVELOPERS.md"]
 fn long_loads_stay_within_the_stated_error() {
-    hold(&planes(1_000_003, many()), &PLANES);
-    hold(&points(1_000_033, many()), &POINTS);
-    hold(&bounds(1_000_037, many()), &BOUNDS);
+    let all = [planes(1_000_003, many()), points(1_000_033, many()), bounds(1_000_037, many())];
+    hold(&all.concat(), &[PLANES, POINTS, BOUNDS].concat());
 }

@@ -93,7 +93,9 @@ impl<const N: usize> PartLoads<N> {
 
 /// All loads and utilisations of one part.
 ///
-/// Error of each load against the exact integral: 2e-6 of `integral |p| |w| dz`.
+/// Error of each load against the exact integral: 2e-6 of `integral |p| |w| dz`, the pressures of
+/// gas, liquid inside and liquid outside counted apart (a vacuum may cancel the others). Where the
+/// surface follows from a head sensor, also what one f32 step of its height adds.
 #[must_use]
 pub fn evaluate<const N: usize>(plan: &Plan, part: &Part, states: &States<N>) -> PartLoads<N> {
     let mut loads = PartLoads::NONE;

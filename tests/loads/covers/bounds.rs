@@ -3,7 +3,7 @@
 
 use super::draw::Holding;
 use super::{Placed, Straight, drawn};
-use crate::core_error::{BOUND, Worst, many, random_head, sensed, surface_step_pa};
+use crate::core_error::{BOUND, Worst, hold, many, random_head, sensed, surface_step_pa};
 use strake_core::liquid::States;
 use strake_core::part::{acting, evaluate};
 use strake_core::plan::Plan;
@@ -116,13 +116,13 @@ const LOAD: &str = "bound of a reaction by a head";
 
 #[test]
 fn no_liquid_of_the_band_passes_the_bound_of_a_reaction() {
-    worst_bound(31, 1_000, 6).holds(LOAD);
+    hold(&[worst_bound(31, 1_000, 6)], &[LOAD]);
 }
 
 #[test]
 #[ignore = "long proof of a million covers, see DEVELOPERS.md"]
 fn long_bounds_of_reactions_stay_within_the_stated_error() {
-    worst_bound(3_100, many(), 1).holds(LOAD);
+    hold(&[worst_bound(3_100, many(), 1)], &[LOAD]);
 }
 
 /// The control: a bound without the cut, the upper pressure everywhere, is passed.
