@@ -13,3 +13,4 @@ mod plate_cases;
 mod plate_series;
 mod product;
 mod states;
+mod traps;
