@@ -71,7 +71,8 @@ impl Parts {
         // As early as can be: whatever hangs from here on ends in a restart.
         let watchdog = watchdog::start(chip.WDT)?;
         let (reset_cause, last_failure) = cause(&chip.POWER);
-        // A quarter of a second; the watchdog makes do with the oscillator inside until then.
+        // A quarter of a second; the watchdog makes do with the oscillator inside until then. After
+        // a restart it still runs, and the clock with it, but without this no time would count.
         clocks.start_lfclk();
         timer::start();
         let pins = Pins::take(chip.P0);

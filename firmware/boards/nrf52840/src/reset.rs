@@ -22,16 +22,19 @@ impl Reason {
     const REQUEST: u32 = 1 << 2;
     const LOCK_UP: u32 = 1 << 3;
 
-    /// The gravest of the reasons in the register.
+    /// The gravest of the reasons in the register. Beside the reset pin's, others may stand that
+    /// never were (errata of the chip: bits in RESETREAS are set when they should not be).
     #[must_use]
     pub const fn of(register: u32) -> Self {
         if register == 0 {
             Self::Power
+        } else if register & Self::PIN != 0 {
+            Self::Other
         } else if register & Self::WATCHDOG != 0 {
             Self::Watchdog
         } else if register & Self::LOCK_UP != 0 {
             Self::LockUp
-        } else if register & Self::PIN == 0 && register & Self::REQUEST != 0 {
+        } else if register & Self::REQUEST != 0 {
             Self::Request
         } else {
             Self::Other
@@ -53,11 +56,13 @@ mod tests {
             (1 << 3, Reason::LockUp),
             (1 << 16, Reason::Other),
             (1 << 18, Reason::Other),
-            // Gathered: the gravest is told, and a person at the pin comes before a request.
+            // Gathered: the gravest is told.
             (0b0110, Reason::Watchdog),
             (0b1100, Reason::LockUp),
+            // With the pin's, no other is believed.
             (0b0101, Reason::Other),
-            (u32::MAX, Reason::Watchdog),
+            (0b0011, Reason::Other),
+            (u32::MAX, Reason::Other),
         ];
         for (register, reason) in cases {
             assert_eq!(Reason::of(register), reason, "{register:#b}");
