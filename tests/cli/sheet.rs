@@ -231,6 +231,77 @@ fn the_formulas_with_their_numbers_give_their_results() {
     assert!(count > 250, "{count} formulas");
 }
 
+/// An example with other lines in it, and levels at which both methods are held together.
+type Variant = (&'static str, &'static [(&'static str, &'static str)], [&'static str; 3]);
+
+const HEAD: &str = "reference    = \"atmosphere\"";
+
+/// What no example has: every reference of a head sensor, one far up and wide, layers under a head
+/// sensor, liquid outside that relieves.
+const VARIANTS: [Variant; 5] = [
+    (
+        "brine_day_tank",
+        &[
+            (HEAD, "reference = \"gas space\""),
+            ("vented = true", "lowest = \"-1 kPa\"\npressure = \"2 kPa\"\nhighest = \"5 kPa\""),
+            ("closed       = false", "closed = true"),
+        ],
+        ["0.1 m", "4.9 m", "9.6 m"],
+    ),
+    (
+        "brine_day_tank",
+        &[(HEAD, "reference = \"absolute\"\natmosphere = [\"97 kPa(a)\", \"104 kPa(a)\"]")],
+        ["0.2 m", "6.1 m", "9.3 m"],
+    ),
+    (
+        "brine_day_tank",
+        &[
+            ("at           = \"0.15 m\"", "at = \"2.0 m\""),
+            ("uncertainty  = \"0.2 kPa\"", "uncertainty = \"6 kPa\""),
+        ],
+        ["1.5 m", "2.3 m", "9.5 m"],
+    ),
+    (
+        "rinse_basin",
+        &[
+            ("sensor      = \"ullage\"", "sensor = \"head\"\nreference = \"atmosphere\""),
+            ("at          = \"2.9 m\"", "at = \"0.1 m\""),
+            (
+                "{ modbus = { unit = 1, function = 4, register = 0, count = \"u16\", scale = \"1 mm\" } }",
+                "{ current_loop = [\"0 kPa\", \"40 kPa\"] }",
+            ),
+            ("uncertainty = \"5 mm\"", "uncertainty = \"0.3 kPa\""),
+            ("uncertainty_of_distance = \"0.3 %\"", ""),
+        ],
+        ["0.2 m", "0.9 m", "2.2 m"],
+    ),
+    (
+        "rinse_basin",
+        &[("highest = \"0.6 m\"", "highest = \"0.6 m\"\nlowest = \"0.4 m\"")],
+        ["0 m", "0.5 m", "1.9 m"],
+    ),
+];
+
+#[test]
+fn both_methods_agree_for_every_sensor_and_surrounding() {
+    for (name, changes, levels) in VARIANTS {
+        let tank = TankText::example(name, |text| {
+            changes.iter().fold(text, |text, (from, to)| {
+                assert!(text.contains(from), "{name}: {from}");
+                text.replace(from, to)
+            })
+        });
+        let output = tank.inside("a.html").display().to_string();
+        for level in levels {
+            let path = tank.path();
+            let arguments = ["sheet", &path, "-o", &output, "--force", "--level", level];
+            let (status, value) = document(&arguments);
+            assert_eq!((status, &value["agrees"]), (0, &Value::Bool(true)), "{name} at {level}");
+            assert!(value["loads_compared"].as_u64().unwrap() > 40, "{name}: {value}");
+        }
+    }
+}
+
 #[test]
 fn what_a_file_says_stays_text() {
     let hostile = "<script>alert(1)</script>&";
