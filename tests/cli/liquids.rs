@@ -1,13 +1,9 @@
 //! Layers, temperature, datum: states whose pressures can be worked out by hand (common practice).
 
+use crate::figures::near;
 use crate::tank_text::TankText;
 use crate::{document, run};
 use serde_json::Value;
-
-fn near(value: &Value, expected: f64, within: f64) {
-    let got = value.as_f64().unwrap_or_else(|| panic!("{value} is no number"));
-    assert!((got - expected).abs() <= within, "{got} against {expected}");
-}
 
 fn liquid(header: &str, density: &str, more: &str) -> String {
     format!(

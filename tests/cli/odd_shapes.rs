@@ -1,21 +1,10 @@
 //! Outlines of every kind through the command line: numbers by two other methods, and the text.
 
+use crate::figures::{near, part};
 use crate::tank_text::TankText;
 use crate::{document, run};
-use serde_json::Value;
 
 const TANK: &str = "configs/odd_shapes.toml";
-
-fn part<'a>(document: &'a Value, name: &str) -> &'a Value {
-    let parts = document["parts"].as_array().expect("parts");
-    parts.iter().find(|part| part["name"] == name).expect("a part of that name")
-}
-
-#[track_caller]
-fn near(found: &Value, due: f64, tolerance: f64) {
-    let found = found.as_f64().expect("a number");
-    assert!((found - due).abs() <= tolerance, "{found} is not {due} within {tolerance}");
-}
 
 #[test]
 fn a_polygon_with_a_hole_has_a_sideways_centre() {

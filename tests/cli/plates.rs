@@ -1,5 +1,6 @@
 //! Panels judged by the bending of their plates, through the command line.
 
+use crate::figures::part;
 use crate::tank_text::TankText;
 use crate::{document, run};
 use serde_json::Value;
@@ -12,11 +13,6 @@ use strake_oracle::bending::{Held, Sheet};
 const TANK: &str = "configs/plate_box.toml";
 /// Density of the example, and gravity.
 const WEIGHT_N_M3: f64 = 1020.0 * 9.806_65;
-
-fn part<'a>(document: &'a Value, name: &str) -> &'a Value {
-    let parts = document["parts"].as_array().expect("parts");
-    parts.iter().find(|part| part["name"] == name).expect("a part of that name")
-}
 
 fn number(value: &Value) -> f64 {
     value.as_f64().unwrap_or_else(|| panic!("{value} is no number"))

@@ -3,6 +3,7 @@
 //! Where a case comes from a page that prints it wrong, or from the practice of the trade, the test
 //! says so; formulas of documents are named with their clause.
 
+use crate::figures::near;
 use crate::tank_text::TankText;
 use crate::{document, run};
 use serde_json::Value;
@@ -13,11 +14,6 @@ const FT: f64 = 0.3048;
 
 fn number(value: &Value) -> f64 {
     value.as_f64().unwrap_or_else(|| panic!("{value} is no number"))
-}
-
-fn near(value: &Value, expected: f64, within: f64) {
-    let got = number(value);
-    assert!((got - expected).abs() <= within, "{got} against {expected}");
 }
 
 /// What stands in the tank, of water without any uncertainty.

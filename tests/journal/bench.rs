@@ -46,6 +46,36 @@ impl<const WORD: usize> Medium for Nor<WORD> {
     }
 }
 
+/// A flash around another one, which it forwards to.
+pub(crate) trait Around: NorFlash<Error = NorError> + Clone {
+    fn inner(&self) -> &Nor<4>;
+    fn inner_mut(&mut self) -> &mut Nor<4>;
+    /// What the device around it loses with the power.
+    fn forget(&mut self);
+}
+
+impl<F: Around> Medium for F {
+    fn cut_after(&mut self, cut: Option<Cut>) {
+        self.inner_mut().cut_after(cut);
+    }
+    fn power_on(&mut self) {
+        self.forget();
+        self.inner_mut().power_on();
+    }
+    fn seed(&mut self, seed: u64) {
+        self.inner_mut().seed(seed);
+    }
+    fn steps(&self) -> u64 {
+        self.inner().steps()
+    }
+    fn torn_words(&self) -> u64 {
+        self.inner().torn_words()
+    }
+    fn half_erased(&self) -> u64 {
+        self.inner().half_erased()
+    }
+}
+
 /// State of the application: how many entries it took, and a hash over them.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
 pub(crate) struct State {

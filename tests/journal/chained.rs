@@ -6,10 +6,10 @@
 //! misses the end of the page before, or takes another one for it, reads something else: what
 //! chaining across pages comes to. Length, place, and check stay as the device wrote them.
 
-use crate::bench::{Bench, Medium, op};
+use crate::bench::{Around, Bench, Medium, op};
 use crate::cuts::{Seen, every_cut, goes_on};
 use embedded_storage::nor_flash::{ErrorType, NorFlash, ReadNorFlash};
-use strake::sim::nor::{Cut, Nor, NorError};
+use strake::sim::nor::{Nor, NorError};
 use strake_core::journal::check::{CRC32, block_check};
 use strake_core::journal::{Entry, Item, SectorReader};
 
@@ -154,28 +154,18 @@ impl NorFlash for Chained {
     }
 }
 
-impl Medium for Chained {
-    fn cut_after(&mut self, cut: Option<Cut>) {
-        self.flash.cut_after(cut);
+impl Around for Chained {
+    fn inner(&self) -> &Nor<4> {
+        &self.flash
     }
-    fn power_on(&mut self) {
+    fn inner_mut(&mut self) -> &mut Nor<4> {
+        &mut self.flash
+    }
+    fn forget(&mut self) {
         if !self.flash.is_powered() {
             self.in_ram = End::default();
         }
         self.check = None;
-        self.flash.power_on();
-    }
-    fn seed(&mut self, seed: u64) {
-        self.flash.seed(seed);
-    }
-    fn steps(&self) -> u64 {
-        self.flash.steps()
-    }
-    fn torn_words(&self) -> u64 {
-        self.flash.torn_words()
-    }
-    fn half_erased(&self) -> u64 {
-        self.flash.half_erased()
     }
 }
 

@@ -1,10 +1,10 @@
 //! Controls that must fail: without the check, and with the check written first, the very runs that
 //! pass elsewhere lose or invent. So those runs can see what they are there for.
 
-use crate::bench::Medium;
+use crate::bench::Around;
 use crate::cuts::{Seen, every_cut};
 use embedded_storage::nor_flash::{ErrorType, NorFlash, ReadNorFlash};
-use strake::sim::nor::{Cut, Nor, NorError};
+use strake::sim::nor::{Nor, NorError};
 use strake_core::journal::check::block_check;
 
 #[derive(Clone, Copy, PartialEq, Eq)]
@@ -96,25 +96,15 @@ impl NorFlash for Lax {
     }
 }
 
-impl Medium for Lax {
-    fn cut_after(&mut self, cut: Option<Cut>) {
-        self.flash.cut_after(cut);
+impl Around for Lax {
+    fn inner(&self) -> &Nor<4> {
+        &self.flash
     }
-    fn power_on(&mut self) {
+    fn inner_mut(&mut self) -> &mut Nor<4> {
+        &mut self.flash
+    }
+    fn forget(&mut self) {
         self.held = None;
-        self.flash.power_on();
-    }
-    fn seed(&mut self, seed: u64) {
-        self.flash.seed(seed);
-    }
-    fn steps(&self) -> u64 {
-        self.flash.steps()
-    }
-    fn torn_words(&self) -> u64 {
-        self.flash.torn_words()
-    }
-    fn half_erased(&self) -> u64 {
-        self.flash.half_erased()
     }
 }
 

@@ -6,6 +6,7 @@ use self::offered::{noun, offered};
 use super::field::{Range, field};
 use super::plate;
 use super::section::{Section, shorten};
+use super::wall::{Asked, Wall, wall};
 use crate::tank::finding::{Code, Located, Span};
 use crate::tank::model::{
     Axis, Basis, BasisKind, Capacity, CoverPlate, Opens, PartKind, Rating, Secured,
@@ -293,24 +294,12 @@ fn capacity(
 
 fn course_plate(entry: &mut Section<'_>) -> Option<Capacity> {
     let mut plate = entry.table("plate", "{ thickness = \"4.6 mm\", .. }")?;
-    let thickness = plate.need(field(
-        "thickness",
-        Length,
-        Range::above(0.0, 0.2),
-        "\"4.6 mm\", as measured or drawn",
-    ));
-    let allowance = plate.need(field(
-        "corrosion_allowance",
-        Length,
-        Range::NOT_NEGATIVE,
-        "\"1 mm\", kept for corrosion; \"0 mm\" when none is",
-    ));
-    let stress = plate.need(field(
-        "allowable_stress",
-        Pressure,
-        Range::POSITIVE,
-        "\"137 MPa\", of the plate, by the design code",
-    ));
+    let asked = Asked {
+        thickness: ("\"4.6 mm\", as measured or drawn", 0.2),
+        allowance_needed: true,
+        stress: "\"137 MPa\", of the plate, by the design code",
+    };
+    let wall = wall(&mut plate, &asked);
     let joint = plate.need_ratio(
         "joint_efficiency",
         Range::SHARE,
@@ -322,17 +311,11 @@ fn course_plate(entry: &mut Section<'_>) -> Option<Capacity> {
         plate.report(Code::UnknownKey, span, message, "remove it: a course is a closed ring");
     }
     plate.finish();
-    let (thickness_m, corrosion_allowance_m) = (thickness?, allowance?);
-    if corrosion_allowance_m.value >= thickness_m.value {
-        let message = "`corrosion_allowance` takes the whole thickness, nothing is left to carry";
-        let hint = "give the thickness as measured, and the allowance that is kept of it";
-        entry.report(Code::NoStrength, corrosion_allowance_m.span, message, hint);
-        return None;
-    }
+    let Wall { thickness_m, allowance_m, stress_pa } = wall?;
     Some(Capacity::Plate {
         thickness_m,
-        corrosion_allowance_m,
-        allowable_stress_pa: stress?,
+        corrosion_allowance_m: allowance_m?,
+        allowable_stress_pa: stress_pa,
         joint_efficiency: joint?,
     })
 }
@@ -341,25 +324,12 @@ fn cover(entry: &mut Section<'_>) -> Option<CoverPlate> {
     const WRITE: &str = "{ thickness = \"14 mm\", allowable_stress = \"137 MPa\", \
                          attachment_factor = 0.3 }";
     let mut cover = entry.table("cover", WRITE)?;
-    let thickness = cover.need(field(
-        "thickness",
-        Length,
-        Range::above(0.0, 0.5),
-        "\"14 mm\", as measured or drawn",
-    ));
-    let allowance_stated = cover.item("corrosion_allowance").is_some();
-    let allowance = cover.take(field(
-        "corrosion_allowance",
-        Length,
-        Range::NOT_NEGATIVE,
-        "\"1 mm\", kept for corrosion",
-    ));
-    let stress = cover.need(field(
-        "allowable_stress",
-        Pressure,
-        Range::POSITIVE,
-        "\"137 MPa\", of the plate, by the design code",
-    ));
+    let asked = Asked {
+        thickness: ("\"14 mm\", as measured or drawn", 0.5),
+        allowance_needed: false,
+        stress: "\"137 MPa\", of the plate, by the design code",
+    };
+    let wall = wall(&mut cover, &asked);
     let joint_stated = cover.item("joint_efficiency").is_some();
     let joint = cover.take_ratio("joint_efficiency", Range::SHARE, "0.85, of a seam in the cover");
     let factor = cover.need_ratio(
@@ -372,23 +342,14 @@ fn cover(entry: &mut Section<'_>) -> Option<CoverPlate> {
     let load = cover.take(field("bolt_load", Force, Range::POSITIVE, write));
     cover.finish();
     let unread = |stated: bool, value: Option<Located<f64>>| stated && value.is_none();
-    if unread(allowance_stated, allowance)
-        || unread(joint_stated, joint)
-        || unread(load_stated, load)
-    {
+    if unread(joint_stated, joint) || unread(load_stated, load) {
         return None;
     }
-    let thickness_m = thickness?;
-    if let Some(allowance) = allowance.filter(|one| one.value >= thickness_m.value) {
-        let message = "`corrosion_allowance` takes the whole thickness, nothing is left to carry";
-        let hint = "give the thickness as measured, and the allowance that is kept of it";
-        entry.report(Code::NoStrength, allowance.span, message, hint);
-        return None;
-    }
+    let Wall { thickness_m, allowance_m, stress_pa } = wall?;
     Some(CoverPlate {
         thickness_m,
-        corrosion_allowance_m: allowance,
-        allowable_stress_pa: stress?,
+        corrosion_allowance_m: allowance_m,
+        allowable_stress_pa: stress_pa,
         joint_efficiency: joint,
         attachment_factor: factor?,
         bolt_load_n: load,

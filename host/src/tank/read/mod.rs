@@ -16,6 +16,7 @@ mod shape;
 mod surroundings;
 mod value;
 mod vessel;
+mod wall;
 
 #[cfg(test)]
 pub(super) use self::capacity::offered;

@@ -2,10 +2,10 @@
 
 use super::field::{Range, field};
 use super::section::Section;
+use super::wall::{Asked, Wall, wall};
 use crate::plate::Edges;
-use crate::tank::finding::Code;
 use crate::tank::model::PanelPlate;
-use crate::units::Quantity::{Length, Pressure};
+use crate::units::Quantity::Pressure;
 
 const EDGES: [(&str, Edges); 3] =
     [("clamped", Edges::Clamped), ("supported", Edges::Supported), ("top free", Edges::TopFree)];
@@ -13,25 +13,12 @@ const EDGES: [(&str, Edges); 3] =
 /// `plate = { thickness, allowable_stress, edges }` of a panel.
 pub(super) fn panel(entry: &mut Section<'_>) -> Option<PanelPlate> {
     let mut plate = entry.table("plate", "{ thickness = \"12 mm\", .. }")?;
-    let thickness = plate.need(field(
-        "thickness",
-        Length,
-        Range::above(0.0, 0.2),
-        "\"12 mm\", as measured or drawn",
-    ));
-    let allowance_stated = plate.item("corrosion_allowance").is_some();
-    let allowance = plate.take(field(
-        "corrosion_allowance",
-        Length,
-        Range::NOT_NEGATIVE,
-        "\"1 mm\", kept for corrosion",
-    ));
-    let stress = plate.need(field(
-        "allowable_stress",
-        Pressure,
-        Range::POSITIVE,
-        "\"160 MPa\", in bending, by the design code",
-    ));
+    let asked = Asked {
+        thickness: ("\"12 mm\", as measured or drawn", 0.2),
+        allowance_needed: false,
+        stress: "\"160 MPa\", in bending, by the design code",
+    };
+    let wall = wall(&mut plate, &asked);
     let edges = plate.need_choice(
         "edges",
         &EDGES,
@@ -47,20 +34,14 @@ pub(super) fn panel(entry: &mut Section<'_>) -> Option<PanelPlate> {
     let poisson =
         plate.take_ratio("poisson_ratio", Range::between(0.0, 0.5), "0.3, that of the material");
     plate.finish();
-    let thickness_m = thickness?;
-    if let Some(allowance) = allowance.filter(|one| one.value >= thickness_m.value) {
-        let message = "`corrosion_allowance` takes the whole thickness, nothing is left to carry";
-        let hint = "give the thickness as measured, and the allowance that is kept of it";
-        entry.report(Code::NoStrength, allowance.span, message, hint);
+    if poisson_stated && poisson.is_none() {
         return None;
     }
-    if (allowance_stated && allowance.is_none()) || (poisson_stated && poisson.is_none()) {
-        return None;
-    }
+    let Wall { thickness_m, allowance_m, stress_pa } = wall?;
     Some(PanelPlate {
         thickness_m,
-        corrosion_allowance_m: allowance,
-        allowable_stress_pa: stress?,
+        corrosion_allowance_m: allowance_m,
+        allowable_stress_pa: stress_pa,
         edges: edges?,
         elastic_modulus_pa: modulus,
         poisson_ratio: poisson,
