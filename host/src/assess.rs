@@ -8,6 +8,7 @@ mod bending;
 mod centre;
 mod desk;
 mod document;
+mod filling;
 mod judged;
 mod margin;
 mod notes;
@@ -21,8 +22,9 @@ pub use bending::{BentRow, PlateRow};
 pub use centre::centre;
 pub use desk::Desk;
 pub use document::{
-    Capacity, Centre, Document, Judgement, Loads, NotJudged, Opening, PartRow, State,
+    Capacity, Centre, Document, Judgement, Loads, NotJudged, Opening, PartRow, PartTable, State,
 };
+pub use filling::{Filling, Way};
 pub use margin::{Margin, PartMargin, Times, margin, together};
 pub use notes::{FIELD_CHECK, PROVISIONAL, assumed};
 pub(crate) use notes::{cautions, not_judged, plate_cautions, plates_not_judged};
@@ -76,15 +78,18 @@ pub fn assess(file: &TankFile, request: &Request) -> Result<Assessment, Findings
             gravity_m_s2: file.gravity.m_s2(),
         },
         governing: judged::governing(&parts),
-        parts,
         not_judged,
         warn_level_m: warn,
         alarm_level_m: alarm,
         margin: margin(file, desk.plan()),
         warn_set_point: warn.and_then(|level_m| set_point::of(&desk, file, level_m)),
         alarm_set_point: alarm.and_then(|level_m| set_point::of(&desk, file, level_m)),
+        filling: request.inflow_m3_s.and_then(|inflow_m3_s| {
+            filling::filling(file, &desk, &parts, (request.level_m, inflow_m3_s, alarm))
+        }),
         energy: energy::estimate(file),
         cautions: said,
+        parts,
     };
     Ok(Assessment { document, above_alarm, desk })
 }

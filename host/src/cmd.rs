@@ -13,6 +13,7 @@ pub mod rerate;
 pub mod schema;
 pub mod seal;
 pub mod sheet;
+mod state;
 pub mod status;
 mod tank_file;
 pub mod trial;

@@ -44,6 +44,24 @@ fn a_cone_and_an_arc_carry_what_is_above_them() {
     assert!(dome["force_x_n"].as_f64() < Some(outwards));
 }
 
+/// What stands for a part on the device says how far it may be off.
+#[test]
+fn tables_state_their_error() {
+    let (_, found) = document(&["assess", TANK, "--level", "2.1 m"]);
+    let parts = found["parts"].as_array().expect("parts");
+    let table = |name: &str| {
+        let part = parts.iter().find(|part| part["name"] == name).expect("a part of that name");
+        (part["table"]["rows"].as_u64().unwrap(), part["table"]["error"].as_f64().unwrap())
+    };
+    let (rows, error) = table("lower quadrant");
+    assert!(rows > 2 && error > 0.0 && error < 1e-3, "{rows} {error}");
+    assert_eq!(table("inspection dome").1.to_bits(), 0.0_f64.to_bits());
+    let text = run(&["assess", TANK, "--level", "2.1 m"]).stdout;
+    let words: Vec<&str> = text.lines().filter(|line| line.starts_with("  table:")).collect();
+    assert_eq!(words.len(), parts.iter().filter(|part| part["kind"] == "curved").count());
+    assert!(words.iter().any(|line| line.contains("a force is within")), "{words:?}");
+}
+
 #[test]
 fn a_flat_head_is_judged_for_compression() {
     let (_, found) = document(&["assess", TANK, "--level", "2.0 m"]);

@@ -2,21 +2,11 @@
 //! on opening.
 
 use crate::document;
+use crate::figures::{near, part};
 use crate::tank_text::TankText;
 use serde_json::Value;
 
 const TANK: &str = "configs/hatch_test_tank.toml";
-
-fn part<'a>(document: &'a Value, name: &str) -> &'a Value {
-    let parts = document["parts"].as_array().expect("parts");
-    parts.iter().find(|part| part["name"] == name).expect("a part of that name")
-}
-
-#[track_caller]
-fn near(found: &Value, due: f64, tolerance: f64) {
-    let found = found.as_f64().expect("a number");
-    assert!((found - due).abs() <= tolerance, "{found} is not {due} within {tolerance}");
-}
 
 /// The example filled with water under a vacuum.
 fn water(gas: &str) -> TankText {
@@ -60,20 +50,25 @@ fn an_inward_door_hangs_on_its_latch_under_vacuum_alone() {
     assert!(loads["force_n"].as_f64().unwrap() > 4_000.0);
 }
 
-/// own-02: the moment of a pivoted flap passes 250 N m at 2.085 m on the way up, and again at
-/// 3.90 m: the first counts.
-#[test]
-fn the_first_passing_limits_a_pivot() {
-    let tank = TankText::example("hatch_test_tank", |text| {
+/// Water without any uncertainty in an open tank, and a flap that carries a moment.
+fn flap(moment: &str) -> TankText {
+    TankText::example("hatch_test_tank", |text| {
         text.replace("\"995 kg/m3\"", "\"1000 kg/m3\"")
             .replace(
                 "lowest   = \"-0.6 kPa\"\npressure = \"0 kPa\"\nhighest  = \"0.4 kPa\"",
                 "vented = true",
             )
-            .replace("\"400 N m\"", "\"250 N m\"")
+            .replace("\"400 N m\"", &format!("\"{moment}\""))
             .replace("expansion   = \"2.3e-4 /K\"", "expansion   = \"none\"")
             .replace("uncertainty = \"0.4 %\"", "uncertainty = \"0 %\"")
-    });
+    })
+}
+
+/// own-02: the moment of a pivoted flap passes 250 N m at 2.085 m on the way up, and again at
+/// 3.90 m: the first counts.
+#[test]
+fn the_first_passing_limits_a_pivot() {
+    let tank = flap("250 N m");
     let (_, found) = document(&["assess", &tank.path(), "--level", "2.4 m"]);
     let flap = part(&found, "pivoted flap");
     near(&flap["loads"]["moment_n_m"], -319.130_188, 0.0064);
@@ -90,16 +85,7 @@ fn the_first_passing_limits_a_pivot() {
 fn a_dip_between_two_levels_is_not_overlooked() {
     // The moment is least, -325.6 N m, at 2.3317 m: a hair less of capacity ends the way there.
     for (capacity, ends) in [("325.7 N m", false), ("325.6 N m", true)] {
-        let tank = TankText::example("hatch_test_tank", |text| {
-            text.replace("\"995 kg/m3\"", "\"1000 kg/m3\"")
-                .replace(
-                    "lowest   = \"-0.6 kPa\"\npressure = \"0 kPa\"\nhighest  = \"0.4 kPa\"",
-                    "vented = true",
-                )
-                .replace("\"400 N m\"", &format!("\"{capacity}\""))
-                .replace("expansion   = \"2.3e-4 /K\"", "expansion   = \"none\"")
-                .replace("uncertainty = \"0.4 %\"", "uncertainty = \"0 %\"")
-        });
+        let tank = flap(capacity);
         let (_, found) = document(&["assess", &tank.path(), "--level", "0.4 m"]);
         let flap = part(&found, "pivoted flap");
         let limit = flap["limit_level_m"].as_f64().unwrap();
@@ -182,4 +168,36 @@ fn a_flat_cover_by_its_rule_and_where_the_rule_ends() {
     assert_eq!(part(&found, "bolts on a circle")["capacity"].as_array().unwrap().len(), 1);
     let why = found["not_judged"].to_string();
     assert!(why.contains("too thin for the flat-cover rule"), "{why}");
+}
+
+/// Latch, hinge and pivot each have their own limit level; the lowest of what decides is that of
+/// the part.
+#[test]
+fn every_fastening_has_its_own_limit() {
+    let (_, found) = document(&["rerate", TANK, "--density", "2500 kg/m3"]);
+    for (name, loads) in [
+        ("bolts on a rectangle", &["force", "securing"][..]),
+        ("hinge at the top", &["force", "hinge", "latch"]),
+        ("door on two pins", &["force", "hinge", "latch"]),
+        ("pivoted flap", &["force", "pivot", "pivot_moment"]),
+    ] {
+        let side = &part(&found, name)["new"];
+        let lines = side["by"].as_array().unwrap();
+        let words: Vec<&str> = lines.iter().map(|line| line["load"].as_str().unwrap()).collect();
+        assert_eq!(words, loads, "{name}");
+        let level = |line: &Value| line["limit_level_m"].as_f64().unwrap();
+        let lowest = lines.iter().map(level).fold(f64::INFINITY, f64::min);
+        // A pin that is pushed inward may end the way before.
+        if side["limited_by"] == "inward" {
+            assert!(side["limit_level_m"].as_f64().unwrap() < lowest);
+        } else {
+            near(&side["limit_level_m"], lowest, 1e-6);
+        }
+    }
+    // The moment passes its capacity inward, as the pivot turns.
+    let (_, found) = document(&["rerate", &flap("250 N m").path(), "--density", "1000 kg/m3"]);
+    let lines = part(&found, "pivoted flap")["new"]["by"].as_array().unwrap();
+    let line = lines.iter().find(|line| line["load"] == "pivot_moment").unwrap();
+    near(&line["limit_level_m"], 2.084_706_89, 4.2e-5);
+    assert_eq!(line["reached"], true);
 }

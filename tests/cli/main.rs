@@ -4,6 +4,8 @@ mod assess;
 mod curved_parts;
 
 mod errors;
+mod figures;
+mod filling;
 mod hatches;
 mod liquids;
 mod mesh_parts;
@@ -13,6 +15,7 @@ mod rerate;
 mod schema;
 mod seal;
 mod sheet;
+mod slips;
 mod streams;
 mod tank_text;
 

@@ -3,6 +3,7 @@
 //! Numbers of the load path stay f32 and are written with the fewest digits that give them back.
 
 use super::bending::PlateRow;
+use super::filling::Filling;
 use super::margin::Margin;
 use super::set_point::SetPoint;
 use crate::energy::Energy;
@@ -38,6 +39,9 @@ pub struct Document {
     /// Margin of the alarm thresholds, given and needed; none while times or rates are not stated.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub margin: Option<Margin>,
+    /// How long the tank takes to its limits at a given inflow; none when no inflow is given.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub filling: Option<Filling>,
     /// How long the cell lasts; none without `[power]` or `[logging]`.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub energy: Option<Energy>,
@@ -81,12 +85,25 @@ pub struct PartRow {
     /// The plates among its capacities.
     #[serde(skip_serializing_if = "Vec::is_empty")]
     pub plates: Vec<PlateRow>,
+    /// The table that stands for a curved part.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub table: Option<PartTable>,
     /// Whether the opening under a cover must stay shut; of a hatch.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub opening: Option<Opening>,
     /// How the loads compare; empty of a part without capacities.
     #[serde(flatten)]
     pub judgement: Judgement,
+}
+
+/// A weighting compiled to rows.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize)]
+pub struct PartTable {
+    /// Rows of both forces together, or places at which a shell's tensions are looked at.
+    pub rows: usize,
+    /// Largest error of a force, over what the surface at the highest point gives when all weights
+    /// count as positive; zero where the rows are exact. It adds to that of f32.
+    pub error: f64,
 }
 
 /// Loads under one state. Only what the part has.

@@ -3,9 +3,11 @@
 use super::desk::Desk;
 use super::document::{NotJudged, PartRow};
 use super::judged;
+use super::part::single;
 use super::request::{Request, Source};
 use super::securing;
 use crate::compile::{Bending, HEIGHT_MAX_M, Substitute, cover_pressure_pa};
+use crate::inverse::first_reached;
 use crate::tank::{Axis, Capacity, Hatch, Part as Stated, Rating, Secured, TankFile, Vessel};
 use crate::units::Quantity::{Length, Pressure, Temperature};
 use crate::units::{UnitSystem, format};
@@ -238,6 +240,7 @@ pub(crate) fn cautions(
         found.push("no part is judged outward".to_owned());
     }
     state_cautions(file, request, units, &mut found);
+    found.extend(chatter(file, desk, units));
     file_cautions(file, units, &mut found);
     let words = ("the device judges", "; the moments here are true");
     found.extend(plate_cautions(file, units, words));
@@ -288,6 +291,28 @@ fn state_cautions(file: &TankFile, request: &Request, units: UnitSystem, found: 
     }
 }
 
+/// Thresholds whose deadband is narrower than what the sensor may waver.
+fn chatter(file: &TankFile, desk: &Desk, units: UnitSystem) -> Vec<String> {
+    let Some(alarms) = &file.alarm else { return Vec::new() };
+    let pairs = [("warn", &alarms.warn), ("alarm", &alarms.alarm)];
+    let said = pairs.into_iter().filter_map(|(name, threshold)| {
+        let (at, deadband) = (threshold.utilisation.value, threshold.deadband.value);
+        let reached_m = first_reached(desk, single(at))?;
+        let gone_m = first_reached(desk, single(at - deadband))?;
+        let apart_m = f64::from(reached_m) - f64::from(gone_m);
+        let [(_, half_m), ..] = desk.half_widths_m(reached_m);
+        (apart_m < 2.0 * half_m).then(|| {
+            format!(
+                "{name}: its deadband, {deadband}, is {} of level, less than the sensor's +-{}: \
+                 the alarm may come and go",
+                format(apart_m, Length, units),
+                format(half_m, Length, units)
+            )
+        })
+    });
+    said.collect()
+}
+
 fn file_cautions(file: &TankFile, units: UnitSystem, found: &mut Vec<String>) {
     for part in &file.parts {
         let as_new = part.capacity().iter().any(|rating| {
@@ -296,6 +321,10 @@ fn file_cautions(file: &TankFile, units: UnitSystem, found: &mut Vec<String>) {
         if as_new {
             found.push(format!("{}: designed-for is taken as new, no loss is stated", part.name()));
         }
+    }
+    if !file.outside.is_empty() {
+        let still = "liquid outside is taken at rest: no wave of a tank that bursts";
+        found.push(still.to_owned());
     }
     if file.level.is_none() {
         found.push("no [level]: the bounds hold no uncertainty of a level sensor".to_owned());

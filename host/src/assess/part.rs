@@ -3,10 +3,10 @@
 use super::bending;
 use super::centre::centre;
 use super::desk::Desk;
-use super::document::{Capacity, Judgement, Limits, Loads, Lowest, PartRow};
+use super::document::{Capacity, Judgement, Limits, Loads, Lowest, PartRow, PartTable};
 use super::request::Request;
 use super::securing;
-use crate::compile::{Bending, about_centroid, cover_pressure_pa, without_plates};
+use crate::compile::{self, Bending, about_centroid, cover_pressure_pa, without_plates};
 use crate::inverse::{self, PartLimits};
 use crate::tank::{self, Part as Stated, PartKind, Plane, Rating, TankFile};
 use strake_core::lane::Lane;
@@ -103,9 +103,19 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, level_m: f32)
         capacity: capacities(file, stated, true),
         capacity_inward: capacities(file, stated, false),
         plates: Vec::new(),
+        table: table(stated),
         opening: securing::opening(desk, part, level_m),
         judgement: judgement(desk, stated, part, &computed),
     }
+}
+
+/// The table of a curved part, as it was compiled.
+fn table(stated: &Stated) -> Option<PartTable> {
+    let Stated::Curved(curved) = stated else { return None };
+    let table = compile::table(&curved.surface);
+    let rows = table.rows.iter().map(Vec::len).sum();
+    let places = table.places.len();
+    Some(PartTable { rows: if places > 0 { places } else { rows }, error: table.error })
 }
 
 /// Tensions of a shell: largest and least of the estimate, the largest and the least of the bounds.

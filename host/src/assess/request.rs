@@ -3,7 +3,7 @@
 use crate::compile::{Contents, HEIGHT_MAX_M, floor_m};
 use crate::nearest::nearest;
 use crate::tank::TankFile;
-use crate::units::Quantity::{Density, Length, Temperature};
+use crate::units::Quantity::{Density, Flow, Length, Temperature};
 use crate::units::format_si;
 
 /// Numbers given beside the file, SI.
@@ -43,6 +43,8 @@ pub struct Request {
     pub contents: Contents,
     /// What was overridden.
     pub overrides: Overrides,
+    /// Net inflow to ask the time to the limits for, m³/s; negative when it runs out.
+    pub inflow_m3_s: Option<f64>,
 }
 
 /// Why a state cannot be assessed.
@@ -104,7 +106,29 @@ impl Request {
             contents.take_gas(gas_pa);
         }
         lighter_than_below(file, &contents)?;
-        Ok(Self { level_m, level_source, contents, overrides })
+        Ok(Self { level_m, level_source, contents, overrides, inflow_m3_s: None })
+    }
+
+    /// The same with an inflow to ask the time to the limits for.
+    ///
+    /// # Errors
+    /// [`RequestError`] when the file describes no volume, or the flow is none of a tank.
+    pub fn with_inflow(
+        self,
+        file: &TankFile,
+        inflow_m3_s: Option<f64>,
+    ) -> Result<Self, RequestError> {
+        let Some(flow) = inflow_m3_s else { return Ok(self) };
+        if flow.abs() > 1e3 {
+            let shown = format_si(flow, Flow);
+            let message = format!("--inflow is {shown}; flows run up to 1000 m3/s");
+            return refuse(message, "check the number and its unit");
+        }
+        if file.volume_m3(self.level_m).is_none() {
+            let message = "--inflow: the file describes no volume".to_owned();
+            return refuse(message, "state the tank's shape or a strapping table in [tank]");
+        }
+        Ok(Self { inflow_m3_s, ..self })
     }
 }
 

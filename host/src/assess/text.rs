@@ -1,5 +1,6 @@
 //! The document as text that an engineer can check by hand.
 
+mod filling;
 mod limits;
 mod margin;
 mod parts;
@@ -61,6 +62,7 @@ pub fn render(
     limits::thresholds(&sheet, &mut page);
     margin::set_points(&sheet, &mut page);
     margin::margin(&sheet, &mut page);
+    filling::filling(&sheet, &mut page);
     if let Some(energy) = &sheet.assessment.document.energy {
         battery(energy, None, &mut page);
     }

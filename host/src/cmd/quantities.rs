@@ -18,6 +18,10 @@ pub(super) fn pressure(text: &str) -> Result<f64, String> {
     quantity(text, Quantity::Pressure)
 }
 
+pub(super) fn flow(text: &str) -> Result<f64, String> {
+    quantity(text, Quantity::Flow)
+}
+
 fn quantity(text: &str, quantity: Quantity) -> Result<f64, String> {
     parse(text, quantity)
         .map_err(|error| format!("{error}; write a number and a unit: {}", quantity.usual_units()))

@@ -1,8 +1,8 @@
 //! `strake rerate`: the inverse questions for another liquid.
 
-use super::quantities::{density, length, pressure, temperature};
+use super::quantities::{density, length};
+use super::state::{StateArgs, refused};
 use super::tank_file;
-use crate::assess::Overrides;
 use crate::exit::Exit;
 use crate::failure::Failure;
 use crate::rerate::{self, Question, Tested};
@@ -16,26 +16,23 @@ use std::path::PathBuf;
     strake rerate day_tank.toml --product \"rinse water\" --level \"6.5 m\"\n  \
     strake rerate day_tank.toml --density \"11 lb/US gal\" --units us \\\n    \
     --tested-level \"24 ft\" --tested-density \"62.4 lb/ft3\"")]
+#[command(
+    mut_arg("level", |level| level.help(
+        "Level for densities and thicknesses; else the maximum of service, the overflow, the shell \
+         top"
+    )),
+    mut_arg("density", |density| density.help(
+        "Density of the new liquid at the reference temperature, as \"1320 kg/m3\" or \"50 Baume \
+         heavy\""
+    ))
+)]
 pub struct Args {
     /// The tank file
     #[arg(value_name = "TANK")]
     pub tank: PathBuf,
-    /// Density of the new liquid at the reference temperature, as "1320 kg/m3" or "50 Baume heavy"
-    #[arg(long, value_parser = density, allow_hyphen_values = true)]
-    pub density: Option<f64>,
-    /// Temperature of the new liquid, as "12 degC"
-    #[arg(long, value_parser = temperature, allow_hyphen_values = true)]
-    pub temperature: Option<f64>,
-    /// Gas pressure above the new liquid, gauge, as "2 kPa"
-    #[arg(long, value_parser = pressure, allow_hyphen_values = true, value_name = "PRESSURE")]
-    pub gas_pressure: Option<f64>,
-    /// One of the file's liquids by its name
-    #[arg(long, value_name = "NAME")]
-    pub product: Option<String>,
-    /// Level for densities and thicknesses; else the maximum of service, the overflow, the shell
-    /// top
-    #[arg(long, value_parser = length, allow_hyphen_values = true)]
-    pub level: Option<f64>,
+    /// The state to calculate.
+    #[command(flatten)]
+    pub state: StateArgs,
     /// Level of a water test, to show how far it covers the new liquid
     #[arg(long, value_parser = length, requires = "tested_density", value_name = "LEVEL")]
     pub tested_level: Option<f64>,
@@ -50,19 +47,11 @@ pub struct Args {
 /// When the file is invalid, a state impossible, or the result cannot be written.
 pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
     let file = tank_file::read(&args.tank)?;
-    let overrides = Overrides {
-        level_m: args.level,
-        density_kg_m3: args.density,
-        temperature_c: args.temperature,
-        gas_pa: args.gas_pressure,
-        product: args.product.clone(),
-    };
     let tested = args
         .tested_level
         .zip(args.tested_density)
         .map(|(level_m, density_kg_m3)| Tested { level_m, density_kg_m3 });
-    let question = Question::new(&file, overrides, tested)
-        .map_err(|error| Failure::new(Exit::Usage, "state", error.message, error.hint))?;
+    let question = Question::new(&file, args.state.overrides(), tested).map_err(refused)?;
     let rerating = rerate::rerate(&file, &question)?;
     match term.settings().format {
         Format::Json => term.document(&rerating.document)?,

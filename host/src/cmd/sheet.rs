@@ -1,8 +1,8 @@
 //! `strake sheet`: the calculation to check and file.
 
-use super::quantities::{density, length, pressure, temperature};
+use super::state::{StateArgs, refused};
 use super::tank_file;
-use crate::assess::{FIELD_CHECK, Overrides, Request, assumed};
+use crate::assess::{FIELD_CHECK, Request, assumed};
 use crate::exit::Exit;
 use crate::failure::Failure;
 use crate::output_file;
@@ -28,21 +28,9 @@ pub struct Args {
     /// The HTML file to write
     #[arg(short, long, value_name = "FILE")]
     pub output: PathBuf,
-    /// Level above the datum, as "6.5 m"; else the overflow, else the shell top
-    #[arg(long, value_parser = length, allow_hyphen_values = true)]
-    pub level: Option<f64>,
-    /// Density at the file's reference temperature, as "1280 kg/m3" or "1.28 SG"
-    #[arg(long, value_parser = density, allow_hyphen_values = true)]
-    pub density: Option<f64>,
-    /// Temperature of the liquid, as "12 degC"
-    #[arg(long, value_parser = temperature, allow_hyphen_values = true)]
-    pub temperature: Option<f64>,
-    /// Gas pressure above the liquid, gauge, as "2 kPa"
-    #[arg(long, value_parser = pressure, allow_hyphen_values = true, value_name = "PRESSURE")]
-    pub gas_pressure: Option<f64>,
-    /// One of the file's liquids by its name
-    #[arg(long, value_name = "NAME")]
-    pub product: Option<String>,
+    /// The state to calculate.
+    #[command(flatten)]
+    pub state: StateArgs,
     /// What stands in the line of the date; left blank without it
     #[arg(long, value_name = "TEXT")]
     pub date: Option<String>,
@@ -74,15 +62,7 @@ struct Document {
 /// written.
 pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
     let file = tank_file::read(&args.tank)?;
-    let overrides = Overrides {
-        level_m: args.level,
-        density_kg_m3: args.density,
-        temperature_c: args.temperature,
-        gas_pa: args.gas_pressure,
-        product: args.product.clone(),
-    };
-    let request = Request::new(&file, overrides)
-        .map_err(|error| Failure::new(Exit::Usage, "state", error.message, error.hint))?;
+    let request = Request::new(&file, args.state.overrides()).map_err(refused)?;
     let options = Options { units: term.settings().units, date: args.date.as_deref() };
     let sheet = sheet::sheet(&file, &request, options)?;
     output_file::write(&args.output, sheet.html.as_bytes(), args.force)?;

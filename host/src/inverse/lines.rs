@@ -1,4 +1,5 @@
-//! The limit level by each load for itself: pressure, force, moment, securing.
+//! The limit level by each load for itself: pressure, force, moment, what secures a cover (its
+//! bolts, its latch, its hinge or pivot).
 //!
 //! Of a part that was *designed for* a state, the pressure at every height decides: a load with a
 //! weighting that is nowhere negative is then within its value in that state. The levels at which
@@ -8,6 +9,7 @@
 use super::limits::{Which, Within, kinks};
 use super::{Criterion, intervals};
 use crate::assess::Desk;
+use crate::tank::{Axis, Part as Stated, Secured};
 use strake_core::lane::Lane;
 use strake_core::liquid::States;
 use strake_core::part::Held as Fastened;
@@ -26,8 +28,12 @@ pub enum By {
     Force,
     /// Moment about the part's lower edge; of a course on the same strip.
     Moment,
-    /// What carries most of what secures a cover.
+    /// The bolt that carries most.
     Securing,
+    /// The moment that a cover's latches carry, or that a hinge or pivot is rated by.
+    Turning,
+    /// The pin of a hinge that carries most, or the whole hinge line or pivot.
+    Pins,
 }
 
 impl By {
@@ -40,6 +46,28 @@ impl By {
             Self::Force => "force",
             Self::Moment => "moment",
             Self::Securing => "securing",
+            Self::Turning => "turning",
+            Self::Pins => "pins",
+        }
+    }
+
+    /// The same of a part that is known: of a cover its latch, its hinge, its pivot.
+    #[must_use]
+    pub fn of(self, stated: &Stated) -> &'static str {
+        let Stated::Hatch(hatch) = stated else { return self.as_str() };
+        let Some(Secured::Hinged(hinged)) = hatch.secured.as_ref().map(|one| &one.value) else {
+            return self.as_str();
+        };
+        let pivot = matches!(hinged.axis, Axis::Pivot { .. });
+        // The latches carry the moment; where it is rated by itself, that is said.
+        let rated = hatch.capacity.iter().any(|one| one.capacity.value.key() == "moment");
+        match self {
+            Self::Turning if pivot && rated => "pivot_moment",
+            Self::Turning if rated => "hinge_moment",
+            Self::Turning => "latch",
+            Self::Pins if pivot => "pivot",
+            Self::Pins => "hinge",
+            _ => self.as_str(),
         }
     }
 }
@@ -97,12 +125,14 @@ pub fn lines(desk: &Desk, part: &Part) -> Vec<Line> {
         (By::Pressure, Capacities { pressure_pa, ..none }),
         (By::HoopTension, Capacities { hoop_tension_n_m, ..none }),
         (By::Force, Capacities { force_n, ..none }),
-        (By::Securing, Capacities { bolt_n, moment_n_m, ..none }),
+        (if bolted(part) { By::Securing } else { By::Pins }, Capacities { bolt_n, ..none }),
+        (By::Turning, Capacities { moment_n_m, ..none }),
     ];
     let mut found = Vec::new();
     for (by, outward) in stated.into_iter().filter(|(_, one)| !one.is_empty()) {
         let alone = Part { outward, ..bare.clone() };
-        found.push(end(desk, part, &within(desk, &alone), by, Against::Capacity, true));
+        let line = end(desk, part, &within(desk, &alone), by, Against::Capacity, true);
+        found.push(turned_back(desk, &bare, part.inward, line));
     }
     for state in &part.designed_for {
         let mut alone = bare.clone();
@@ -116,6 +146,28 @@ pub fn lines(desk: &Desk, part: &Part) -> Vec<Line> {
         }
     }
     found
+}
+
+/// A reaction whose weighting changes its sign may reach its inward capacity on the way up.
+fn turned_back(desk: &Desk, bare: &Part, inward: Capacities, line: Line) -> Line {
+    let Capacities { bolt_n, moment_n_m, .. } = inward;
+    let inward = match line.by {
+        By::Pins => Capacities { bolt_n, ..Capacities::default() },
+        By::Turning => Capacities { moment_n_m, ..Capacities::default() },
+        _ => return line,
+    };
+    let alone = Part { inward, ..bare.clone() };
+    let range = desk.range();
+    let criterion = Within { desk, part: &alone, which: Which::Inward };
+    let found = intervals(&criterion, range, kinks(desk, &alone));
+    // Where it does not hold from the floor on, a lowest level is what it sets.
+    let first = found.first().filter(|one| !inward.is_empty() && one.low_m <= range.low_m);
+    match (first, line.level_m) {
+        (Some(one), Some(level_m)) if one.high_m < level_m => {
+            Line { level_m: Some(one.high_m), reached: true, ..line }
+        }
+        _ => line,
+    }
 }
 
 const fn within<'a>(desk: &'a Desk, part: &'a Part) -> Within<'a> {
@@ -150,21 +202,28 @@ fn resultants(part: &Part) -> Vec<(By, Pick)> {
             loads.force_n.lane(0) * up_m + loads.moment_centroid_n_m.lane(0)
         }));
     }
-    let held = match &part.geometry {
-        Geometry::Plane { cover: Some(cover), .. } => cover.held(),
-        _ => Fastened::Otherwise,
-    };
-    match held {
+    match held(part) {
         Fastened::Otherwise => {}
         Fastened::Bolts(_) => {
             found.push((By::Securing, |loads, _| loads.bolt_n.lane(0)));
         }
         // The latch carries in proportion to the moment.
         Fastened::Line | Fastened::Side => {
-            found.push((By::Securing, |loads, _| loads.moment_n_m.lane(0)));
+            found.push((By::Turning, |loads, _| loads.moment_n_m.lane(0)));
         }
     }
     found
+}
+
+fn held(part: &Part) -> Fastened {
+    match &part.geometry {
+        Geometry::Plane { cover: Some(cover), .. } => cover.held(),
+        _ => Fastened::Otherwise,
+    }
+}
+
+fn bolted(part: &Part) -> bool {
+    matches!(held(part), Fastened::Bolts(_))
 }
 
 /// A load held against its value in a design state.

@@ -155,7 +155,8 @@ pub struct Side {
 /// The limit level by one load.
 #[derive(Clone, Copy, Debug, Serialize)]
 pub struct ByLoad {
-    /// `pressure`, `hoop_tension`, `force`, `moment` or `securing`.
+    /// `pressure`, `hoop_tension`, `force`, `moment`, `securing` (bolts), `latch`, `hinge`,
+    /// `hinge_moment`, `pivot` or `pivot_moment`.
     pub load: &'static str,
     /// `capacity` or `design_state`.
     pub against: &'static str,

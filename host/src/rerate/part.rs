@@ -34,8 +34,8 @@ impl Sides<'_> {
         PartRow {
             name: stated.name().to_owned(),
             kind: stated.kind().as_str(),
-            old: side(self.old, old),
-            new: side(self.new, new),
+            old: side(self.old, stated, old),
+            new: side(self.new, stated, new),
             highest_density: outward.then(|| density::highest(self, index)),
             lowest_density: outward.then(|| density::lowest(self, index)).flatten(),
             thickness: thickness::of(self, stated, (old, new)),
@@ -44,10 +44,10 @@ impl Sides<'_> {
     }
 }
 
-fn side(desk: &Desk, part: &Part) -> Option<Side> {
+fn side(desk: &Desk, stated: &Stated, part: &Part) -> Option<Side> {
     let limits = inverse::of_part(desk, part)?;
     let by = |line: Line| ByLoad {
-        load: line.by.as_str(),
+        load: line.by.of(stated),
         against: line.against.as_str(),
         limit_level_m: line.level_m,
         reached: line.reached,

@@ -247,7 +247,7 @@ impl One<'_> {
             );
             let reached = if line.reached { "" } else { " (not reached)" };
             let decides = if line.decides { "" } else { ", beside it" };
-            let by = line.by.as_str().replace('_', " ");
+            let by = line.by.of(self.stated).replace('_', " ");
             let against = line.against.as_str().replace('_', " ");
             format!("{by} against the {against} {level}{reached}{decides}")
         });

@@ -2,7 +2,7 @@
 
 use super::secured::secured;
 use super::{Sheet, plate};
-use crate::assess::document::{Capacity, Loads, PartRow};
+use crate::assess::document::{Capacity, Loads, PartRow, PartTable};
 use crate::mesh::{Closed, Side};
 use crate::page::{Page, WIDTH, wrap};
 use crate::tank::{self, Part as Stated, Plane, Rating, Shape};
@@ -26,6 +26,9 @@ pub(super) fn loads(sheet: &Sheet<'_>, page: &mut Page) {
         page.blank();
         page.paragraph("", &describe(sheet, stated));
         part(sheet, page, stated, row);
+        if let Some(table) = row.table {
+            page.paragraph("  table: ", &table_words(table));
+        }
     }
 }
 
@@ -189,6 +192,19 @@ fn part(sheet: &Sheet<'_>, page: &mut Page, stated: &Stated, row: &PartRow) {
         put("thickness, this state", [thickness, String::new(), String::new()], "");
     }
     plate::lines(sheet, page, row);
+}
+
+/// How far a table of rows may be off.
+fn table_words(table: PartTable) -> String {
+    if table.error > 0.0 {
+        format!(
+            "{} rows; a force is within {:.1e} of what the surface at the part's highest point \
+             gives, all weights taken as positive.",
+            table.rows, table.error
+        )
+    } else {
+        format!("{} rows, exact but for the rounding to f32.", table.rows)
+    }
 }
 
 /// A pin or hinge line in each line.

@@ -28,6 +28,7 @@ pub(crate) fn state_rows(sheet: &Sheet<'_>) -> Vec<Row> {
     surroundings(sheet, &mut rows);
     let (value, note) = sensor(sheet);
     rows.push(("sensor", value, note));
+    rows.extend(in_water(sheet));
     let datum = "inside bottom at the shell; levels are heights above it";
     rows.push(("datum", datum.to_owned(), String::new()));
     rows
@@ -166,6 +167,20 @@ fn sensor(sheet: &Sheet<'_>) -> (String, String) {
         _ => String::new(),
     };
     (value, format!("file, +-{within}{share}; reads {}", reading(sheet, sheet.request.level_m)))
+}
+
+/// What a head sensor whose scale is in heights of water would show: its reading is taken for a
+/// level where nobody knows the density.
+fn in_water(sheet: &Sheet<'_>) -> Option<Row> {
+    let level = sheet.file.level.as_ref()?;
+    let Sensing::Head { at_m, reference } = &level.sensing else { return None };
+    if matches!(reference.value, PressureReference::Absolute { .. }) {
+        return None;
+    }
+    let read_pa = f64::from(sheet.assessment.desk.reading(single(sheet.request.level_m)));
+    let shown_m = at_m.value + read_pa / (1000.0 * sheet.file.gravity.m_s2());
+    let note = "where its scale is for water".to_owned();
+    Some(("  shows", sheet.show(shown_m, Length), note))
 }
 
 /// What the sensor gives at a true level: the quantity it senses, and the current of a loop.
