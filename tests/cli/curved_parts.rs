@@ -60,6 +60,7 @@ fn tables_state_their_error() {
     let words: Vec<&str> = text.lines().filter(|line| line.starts_with("  table:")).collect();
     assert_eq!(words.len(), parts.iter().filter(|part| part["kind"] == "curved").count());
     assert!(words.iter().any(|line| line.contains("a force is within")), "{words:?}");
+    assert!(words.iter().any(|line| line.contains("tensions at 13 places")), "{words:?}");
 }
 
 #[test]

@@ -27,7 +27,8 @@ pub(super) fn loads(sheet: &Sheet<'_>, page: &mut Page) {
         page.paragraph("", &describe(sheet, stated));
         part(sheet, page, stated, row);
         if let Some(table) = row.table {
-            page.paragraph("  table: ", &table_words(table));
+            let shell = row.loads.tension_n_m.is_some();
+            page.paragraph("  table: ", &table_words(table, shell));
         }
     }
 }
@@ -195,8 +196,14 @@ fn part(sheet: &Sheet<'_>, page: &mut Page, stated: &Stated, row: &PartRow) {
 }
 
 /// How far a table of rows may be off.
-fn table_words(table: PartTable) -> String {
-    if table.error > 0.0 {
+fn table_words(table: PartTable, shell: bool) -> String {
+    if shell {
+        format!(
+            "tensions at {} places; what may be missed between two of them is taken off the \
+             capacity.",
+            table.rows
+        )
+    } else if table.error > 0.0 {
         format!(
             "{} rows; a force is within {:.1e} of what the surface at the part's highest point \
              gives, all weights taken as positive.",
