@@ -17,6 +17,7 @@
 //! gives the deflection with which that is checked.
 
 mod circle;
+pub mod governing;
 mod legendre;
 mod linear;
 mod rectangle;

@@ -7,6 +7,7 @@ mod cover;
 pub mod curved;
 mod evaluate;
 mod opening;
+pub mod plate;
 
 pub use cover::{BOLTS_MAX, BoltPattern, Cover, CoverNumbers, Held, Weighting, WeightingNumbers};
 pub use curved::Curved;
@@ -47,7 +48,7 @@ pub enum Geometry {
         sine: f32,
         /// Height of the centroid above the lowest point, m.
         centroid_above_m: f32,
-        /// The cover of an opening; none of a panel.
+        /// The cover of an opening, or what the plate of a panel is judged by.
         cover: Option<Cover>,
     },
     /// A curved part, or whatever else has tables.
@@ -105,7 +106,8 @@ pub struct Capacities {
     pub force_n: Option<Stated>,
     /// Largest share of a bolt, or force on a pin or hinge line, N.
     pub bolt_n: Option<Stated>,
-    /// Moment about the hinge or pivot, N m; a latch's force times its lever.
+    /// Moment about the hinge or pivot, N m; a latch's force times its lever. Of a panel the
+    /// bending moment of its plate, N m/m.
     pub moment_n_m: Option<Stated>,
 }
 

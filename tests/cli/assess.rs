@@ -96,6 +96,8 @@ const KEYS: [(&str, &[&str]); 18] = [
             "poisson_ratio",
             "taken_as_steel",
             "series_error",
+            "device_points",
+            "device_excess",
             "device_pressure_pa",
             "bending_moment_n",
             "bending_at_x_m",

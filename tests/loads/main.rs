@@ -10,6 +10,7 @@ mod core_mesh;
 mod covers;
 mod meshes;
 mod plate_cases;
+mod plate_device;
 mod plate_series;
 mod product;
 mod states;

@@ -263,6 +263,7 @@ fn load_values(geometry: &Geometry, of: &PartLoads<1>) -> [LoadValue; 4] {
                 Held::Otherwise => [pressure, force, unused, unused],
                 Held::Bolts(_) => [pressure, force, bolt, unused],
                 Held::Line | Held::Side => [pressure, force, bolt, moment],
+                Held::Plate(_) => [pressure, force, moment, unused],
             }
         }
         Geometry::Curved(curved) => {

@@ -4,7 +4,7 @@
 use super::desk::Desk;
 use super::document::{Limits, PartRow};
 use super::part::single;
-use crate::compile::{Bending, Bent};
+use crate::compile::{Bending, Bent, Judged};
 use crate::inverse::{Criterion, Interval, LimitedBy, intervals};
 use crate::plate::{DEFLECTION_PER_THICKNESS_MAX, Direction};
 use serde::Serialize;
@@ -25,8 +25,16 @@ pub struct PlateRow {
     pub taken_as_steel: bool,
     /// What cutting the series off costs, as a share of the largest moment.
     pub series_error: f64,
-    /// Pressure at the lowest edge by which the device judges the plate, as if it were even
-    /// (conservative substitute); none where the theory does not hold.
+    /// Points at whose true moments the device judges the plate.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub device_points: Option<usize>,
+    /// Largest share by which they say more than the largest moment of all points, under one liquid
+    /// that wets half of the plate or more, and gas; never less.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub device_excess: Option<f64>,
+    /// Pressure at the lowest edge by which the device judges a plate instead, as if it were even:
+    /// exact of a level plate, else the conservative substitute.
+    #[serde(skip_serializing_if = "Option::is_none")]
     pub device_pressure_pa: Option<f64>,
     /// Of the estimate; none when the theory does not hold at this state and up to the limit.
     #[serde(flatten)]
@@ -56,11 +64,15 @@ pub struct BentRow {
 /// Adds what the plates of a part say to its row.
 pub(super) fn judge(
     desk: &Desk,
-    plates: &[Bending],
+    (plates, judged): (&[Bending], Option<&Judged>),
     part: &Part,
     all: &States<1>,
     row: &mut PartRow,
 ) {
+    let tables = match judged {
+        Some(Judged::Moments { tables, .. }) => Some(tables),
+        _ => None,
+    };
     let states = acting(desk.plan(), part, all);
     for bending in plates {
         let (now, bound) = (bending.under(&states.estimate, 0), bending.bound(&states, 0));
@@ -72,7 +84,12 @@ pub(super) fn judge(
             poisson_ratio: bending.elastic.poisson,
             taken_as_steel: bending.elastic.taken_as_steel,
             series_error: bending.series_error(),
-            device_pressure_pa: bending.substitute().map(|one| one.pressure_pa),
+            device_points: tables.map(|tables| tables.points.len()),
+            device_excess: tables.map(|tables| tables.excess),
+            device_pressure_pa: match judged {
+                Some(Judged::Level(pa) | Judged::Substitute(pa, _)) => Some(*pa),
+                Some(Judged::Moments { .. }) | None => None,
+            },
             bent: why_not.is_none().then(|| shown(bending, &now, &bound)),
             why_not: why_not.clone(),
         });

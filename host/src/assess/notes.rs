@@ -6,7 +6,7 @@ use super::judged;
 use super::part::single;
 use super::request::{Request, Source};
 use super::securing;
-use crate::compile::{Bending, HEIGHT_MAX_M, Substitute, cover_pressure_pa};
+use crate::compile::{Bending, HEIGHT_MAX_M, Judged, cover_pressure_pa, judged};
 use crate::inverse::first_reached;
 use crate::tank::{Axis, Capacity, Hatch, Part as Stated, Rating, Secured, TankFile, Vessel};
 use crate::units::Quantity::{Length, Pressure, Temperature};
@@ -67,25 +67,47 @@ pub(crate) fn plates_not_judged(parts: &[PartRow]) -> Vec<NotJudged> {
     found
 }
 
+/// By what a plan judges plates, in words.
+fn by_what(judged: &Judged, units: UnitSystem) -> String {
+    match judged {
+        Judged::Moments { tables, by_deflection, .. } => {
+            let points = tables.points.len();
+            format!(
+                "the plate outward by its true moments at {points} governing point{}, at most \
+                 {:.1} % above the largest checked one from half wetted up and never below it{}",
+                if points == 1 { "" } else { "s" },
+                (1e3 * tables.excess).ceil() / 10.0,
+                if *by_deflection {
+                    "; its limit is where it sags by half its thickness"
+                } else {
+                    ""
+                }
+            )
+        }
+        Judged::Level(pa) => format!(
+            "the level plate outward by its even pressure, up to {}",
+            format(*pa, Pressure, units)
+        ),
+        Judged::Substitute(pa, why) => format!(
+            "the plate outward by the pressure at its lowest edge taken as even (conservative \
+             substitute: {why}), up to {}",
+            format(*pa, Pressure, units)
+        ),
+    }
+}
+
 /// What the numbers of plates leave out, and how the device judges them.
-pub(crate) fn plate_cautions(
-    file: &TankFile,
-    units: UnitSystem,
-    (who, rest): (&str, &str),
-) -> Vec<String> {
+pub(crate) fn plate_cautions(file: &TankFile, units: UnitSystem, who: &str) -> Vec<String> {
     let (mut found, mut upright) = (Vec::new(), false);
-    for part in &file.parts {
-        for bending in Bending::of_part(part) {
-            let name = part.name();
-            found.push(match bending.substitute() {
-                Some(Substitute { pressure_pa, by_deflection }) => format!(
-                    "{name}: {who} the plate outward by the pressure at its lowest edge taken \
-                     as even (conservative substitute), up to {}{}{rest}",
-                    format(pressure_pa, Pressure, units),
-                    if by_deflection { ", where it sags by half its thickness" } else { "" }
-                ),
-                None => format!("{name}: the device does not judge the plate"),
-            });
+    for (part, judged) in file.parts.iter().zip(judged(file)) {
+        let plates = Bending::of_part(part);
+        let name = part.name();
+        match &judged {
+            Some(judged) => found.push(format!("{name}: {who} {}", by_what(judged, units))),
+            None if plates.is_empty() => {}
+            None => found.push(format!("{name}: the device does not judge the plate")),
+        }
+        for bending in plates {
             if bending.elastic.taken_as_steel {
                 found.push(format!(
                     "{name}: no material is stated, the plate is taken as steel, 200 GPa and 0.3"
@@ -242,8 +264,7 @@ pub(crate) fn cautions(
     state_cautions(file, request, units, &mut found);
     found.extend(chatter(file, desk, units));
     file_cautions(file, units, &mut found);
-    let words = ("the device judges", "; the moments here are true");
-    found.extend(plate_cautions(file, units, words));
+    found.extend(plate_cautions(file, units, "the device judges"));
     found.push(FIELD_CHECK.to_owned());
     found
 }

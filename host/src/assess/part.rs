@@ -6,7 +6,9 @@ use super::desk::Desk;
 use super::document::{Capacity, Judgement, Limits, Loads, Lowest, PartRow, PartTable};
 use super::request::Request;
 use super::securing;
-use crate::compile::{self, Bending, about_centroid, cover_pressure_pa, without_plates};
+use crate::compile::{
+    self, Bending, Judged, about_centroid, cover_pressure_pa, judged, without_plates,
+};
 use crate::inverse::{self, PartLimits};
 use crate::tank::{self, Part as Stated, PartKind, Plane, Rating, TankFile};
 use strake_core::lane::Lane;
@@ -21,17 +23,18 @@ pub(super) fn rows(file: &TankFile, desk: &Desk, request: &Request) -> Vec<PartR
     let level_m = single(request.level_m);
     let parts = file.parts.iter().zip(&desk.plan().parts);
     let states = desk.as_seen(Lane([level_m]));
-    let judged = |(stated, part): (&Stated, &Part)| {
+    let plates_judged = judged(file);
+    let judged = |((stated, part), judged): ((&Stated, &Part), &Option<Judged>)| {
         let plates = Bending::of_part(stated);
         if plates.is_empty() {
             return row(file, desk, stated, part, level_m);
         }
         let part = without_plates(stated, part);
         let mut row = row(file, desk, stated, &part, level_m);
-        bending::judge(desk, &plates, &part, &states, &mut row);
+        bending::judge(desk, (&plates, judged.as_ref()), &part, &states, &mut row);
         row
     };
-    parts.map(judged).collect()
+    parts.zip(&plates_judged).map(judged).collect()
 }
 
 #[expect(clippy::cast_possible_truncation, reason = "a level for the core, and file values shown")]

@@ -129,7 +129,7 @@ pub fn run(args: &Args, term: &mut Term) -> Result<Exit, Failure> {
     let parts = compiled.plan.parts.len();
     let desk = Desk::new(compiled, &file);
     let mut cautions = vec!["unsigned: a device cannot tell who made this plan".to_owned()];
-    cautions.extend(plate_cautions(&file, term.settings().units, ("the device judges", "")));
+    cautions.extend(plate_cautions(&file, term.settings().units, "the device judges"));
     cautions.push(FIELD_CHECK.to_owned());
     let document = Document {
         schema: "strake.seal/1",

@@ -1,5 +1,9 @@
 //! The plate of a panel under the core's pressure states, in f64: largest moment and deflection
-//! over the checked points, and the pressure that stands for it on the device.
+//! over the checked points, and what stands for it on the device.
+
+mod device;
+
+pub(crate) use device::{Judged, judged};
 
 use crate::plate::{
     DEFLECTION_PER_THICKNESS_MAX, Direction, Edges, Outline, Place, SPAN_PER_THICKNESS_MIN,
@@ -18,7 +22,9 @@ pub(crate) struct Bending {
     pub(crate) plate: PanelPlate,
     /// How stiff it is.
     pub(crate) elastic: Elastic,
+    key: Key,
     span_m: f64,
+    length_m: f64,
     sine: f64,
     bottom_m: f64,
     solved: Arc<Solved>,
@@ -63,15 +69,6 @@ fn solved(key: Key) -> Option<Arc<Solved>> {
     Some(new)
 }
 
-/// What stands for a plate on the device.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub(crate) struct Substitute {
-    /// Pressure at the lowest edge, Pa.
-    pub(crate) pressure_pa: f64,
-    /// The deflection reaches half the thickness before the stress is used up.
-    pub(crate) by_deflection: bool,
-}
-
 /// What bends most.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(crate) struct Bent {
@@ -86,10 +83,14 @@ pub(crate) struct Bent {
 }
 
 impl Bending {
-    /// The plates among the capacities of a part.
+    /// The plates among the outward capacities of a part.
     pub(crate) fn of_part(stated: &Stated) -> Vec<Self> {
+        Self::among(stated, stated.capacity())
+    }
+
+    fn among(stated: &Stated, ratings: &[Rating]) -> Vec<Self> {
         let Stated::Panel(panel) = stated else { return Vec::new() };
-        let plates = panel.capacity.iter().filter_map(|rating| match &rating.capacity.value {
+        let plates = ratings.iter().filter_map(|rating| match &rating.capacity.value {
             Capacity::Panel(plate) => Self::new(panel, plate, rating),
             _ => None,
         });
@@ -100,8 +101,11 @@ impl Bending {
     fn new(panel: &Panel, plate: &PanelPlate, rating: &Rating) -> Option<Self> {
         let outline = outline(panel)?;
         let elastic = plate.elastic(rating);
-        let solved = solved((outline, plate.edges.value, elastic.poisson))?;
+        let key = (outline, plate.edges.value, elastic.poisson);
+        let solved = solved(key)?;
         Some(Self {
+            key,
+            length_m: outline.length_m(),
             plate: plate.clone(),
             elastic,
             span_m: outline.span_m(),
@@ -221,23 +225,5 @@ impl Bending {
         let small = self.deflection_at(bent, sound_m) <= DEFLECTION_PER_THICKNESS_MAX * sound_m;
         let thin = self.span_m >= SPAN_PER_THICKNESS_MIN * whole_m;
         (sound_m > 0.0 && small && thin).then_some(whole_m)
-    }
-
-    /// The conservative substitute: the pressure at the lowest edge that, even and wherever it
-    /// bends a point more, brings a checked moment to the capacity or a deflection to its limit.
-    ///
-    /// Every outward pressure that is nowhere above it bends less: `|integral p w| <= p_edge
-    /// max(integral w+, integral w-)`. `None` where the theory does not hold.
-    pub(crate) fn substitute(&self) -> Option<Substitute> {
-        let even = |weight: &Weighted| weight.positive.total().max(weight.negative.total());
-        let moment_m2 =
-            self.solved.moments.iter().map(|(_, _, weight)| even(weight)).fold(0.0, f64::max);
-        let deflection_m4 = self.solved.deflections.iter().map(even).fold(0.0, f64::max);
-        let sound_m = self.plate.sound_m();
-        let rigidity = rigidity_n_m(self.elastic.modulus_pa, self.elastic.poisson, sound_m);
-        let strong = self.plate.moment_n() / moment_m2;
-        let small = DEFLECTION_PER_THICKNESS_MAX * sound_m * rigidity / deflection_m4;
-        let found = Substitute { pressure_pa: strong.min(small), by_deflection: small < strong };
-        self.too_thick().is_none().then_some(found)
     }
 }

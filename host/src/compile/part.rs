@@ -1,6 +1,6 @@
 //! Parts: geometry, and in each direction the smallest of equal capacities.
 
-use super::bending::Bending;
+use super::bending::Judged;
 use super::curved::{self, MESH_ERROR_MAX, PLACES, Table};
 use super::faults::Faults;
 use super::number::{located, single};
@@ -13,9 +13,12 @@ use crate::tank::{
 };
 use crate::units::Quantity::Length;
 use heapless::Vec;
-use strake_core::part::{Capacities, Cover, DESIGN_STATES_MAX, DesignState, Geometry, Part};
+use strake_core::part::plate::Nodes;
+use strake_core::part::{
+    Capacities, Cover, CoverNumbers, DESIGN_STATES_MAX, DesignState, Geometry, Held, Part,
+};
 use strake_core::plan::NUMBERS_MAX;
-use strake_core::shape::Face;
+use strake_core::shape::{Face, Shape};
 
 /// Largest share of its area with which a mesh may be pressed across and be judged by its force.
 const SIDEWAYS_MAX: f64 = 1e-4;
@@ -24,6 +27,7 @@ const SIDEWAYS_MAX: f64 = 1e-4;
 pub(super) fn part(
     file: &TankFile,
     stated: &Stated,
+    plate: Option<&Judged>,
     numbers: &mut Vec<f32, NUMBERS_MAX>,
     faults: &mut Faults,
 ) -> Option<Part> {
@@ -33,8 +37,11 @@ pub(super) fn part(
     let mut list = Numbers { list: numbers };
     let geometry = match stated {
         Stated::Course(course) => Some(self::course(file, course, faults)?),
-        Stated::Panel(panel) => plane(&panel.plane, None, file, &mut list),
-        Stated::Hatch(hatch) => plane(&hatch.sealed, Some(hatch), file, &mut list),
+        Stated::Panel(panel) => {
+            let shape = plane_shape(&panel.plane, &mut list);
+            shape.and_then(|shape| bent(&panel.plane, shape, plate, &mut list))
+        }
+        Stated::Hatch(hatch) => plane(hatch, file, &mut list),
         Stated::Curved(part) => {
             let table = table(&part.surface);
             within_table(part, &table, faults)?;
@@ -49,7 +56,7 @@ pub(super) fn part(
         geometry,
         bottom_m: single(heights.bottom_m),
         top_m: single(heights.top_m),
-        outward: with_plates(stated, capacities(stated, true)),
+        outward: with_plates(plate, capacities(stated, true)),
         inward: capacities(stated, false),
         designed_for: Vec::new(),
         outside: outside_mask(file, stated.name()),
@@ -78,27 +85,50 @@ fn course(file: &TankFile, course: &Course, faults: &mut Faults) -> Option<Geome
     })
 }
 
-fn plane(
+fn plane(hatch: &Hatch, file: &TankFile, numbers: &mut Numbers<'_>) -> Option<Geometry> {
+    let shape = plane_shape(&hatch.sealed, numbers)?;
+    let face = Face { shape: &shape, numbers: numbers.list, bottom_m: 0.0 };
+    let cover = Cover::new(&cover::numbers(hatch, file.gravity.m_s2(), &shape), &face);
+    Some(Geometry::plane(shape, single(hatch.sealed.sine()), Some(cover)))
+}
+
+/// Share that the core's arithmetic may lose of a load, with a factor of five.
+const ROUNDING: f64 = 1e-5;
+
+/// A panel with the tables of its plates.
+fn bent(
     plane: &Plane,
-    hatch: Option<&Hatch>,
-    file: &TankFile,
+    shape: Shape,
+    plate: Option<&Judged>,
     numbers: &mut Numbers<'_>,
 ) -> Option<Geometry> {
-    let shape = plane_shape(plane, numbers)?;
-    let face = Face { shape: &shape, numbers: numbers.list, bottom_m: 0.0 };
-    let cover =
-        hatch.map(|hatch| Cover::new(&cover::numbers(hatch, file.gravity.m_s2(), &shape), &face));
+    let mut cover = None;
+    if let Some(Judged::Moments { tables, .. }) = plate {
+        let first = u16::try_from(numbers.list.len()).ok()?;
+        for nodes in &tables.points {
+            numbers.list.extend_from_slice(nodes.as_flattened()).ok()?;
+        }
+        let count = u8::try_from(tables.nodes()).ok()?;
+        let held = Held::Plate(Nodes { count, first });
+        let face = Face { shape: &shape, numbers: numbers.list, bottom_m: 0.0 };
+        cover = Some(Cover::new(&CoverNumbers { held, ..CoverNumbers::default() }, &face));
+    }
     Some(Geometry::plane(shape, single(plane.sine()), cover))
 }
 
-/// The device judges a plate by its safe substitute, a pressure at the lowest edge.
-fn with_plates(stated: &Stated, mut capacities: Capacities) -> Capacities {
-    for plate in Bending::of_part(stated) {
-        let Some(pressure_pa) = plate.substitute().map(|one| single(one.pressure_pa)) else {
-            continue;
-        };
-        let least = capacities.pressure_pa.filter(|stated_pa| stated_pa.get() < pressure_pa);
-        capacities.pressure_pa = least.or_else(|| strake_core::part::Stated::new(pressure_pa));
+/// With what stands for the plates.
+fn with_plates(plate: Option<&Judged>, mut capacities: Capacities) -> Capacities {
+    match plate {
+        None => {}
+        Some(Judged::Moments { moment_n, .. }) => {
+            let moment_n = moment_n * (1.0 - ROUNDING);
+            capacities.moment_n_m = strake_core::part::Stated::new(single(moment_n));
+        }
+        Some(Judged::Level(pressure_pa) | Judged::Substitute(pressure_pa, _)) => {
+            let pressure_pa = single(pressure_pa * (1.0 - ROUNDING));
+            let least = capacities.pressure_pa.filter(|stated_pa| stated_pa.get() < pressure_pa);
+            capacities.pressure_pa = least.or_else(|| strake_core::part::Stated::new(pressure_pa));
+        }
     }
     capacities
 }
@@ -217,7 +247,7 @@ fn design_state(file: &TankFile, capacity: &Capacity) -> Option<DesignState> {
 }
 
 /// Bit `i`: the file's outside liquid `i` touches the part.
-fn outside_mask(file: &TankFile, name: &str) -> u8 {
+pub(super) fn outside_mask(file: &TankFile, name: &str) -> u8 {
     let touching = file.outside.iter().map(|outside| u8::from(outside.touches(name)));
     touching.rev().fold(0, |mask, bit| mask << 1 | bit)
 }

@@ -3,7 +3,7 @@
 use super::{Criterion, Interval, intervals};
 use crate::assess::Desk;
 use strake_core::lane::Lane;
-use strake_core::part::{Capacities, Geometry, Part, PartLoads, evaluate};
+use strake_core::part::{Capacities, Geometry, Held, Part, PartLoads, evaluate};
 use strake_core::plan::{LevelSensor, Plan};
 use strake_core::shape::Face;
 
@@ -228,16 +228,30 @@ fn bare(part: &Part) -> Part {
     }
 }
 
+/// Whether a part's moment is the bending moment of a plate.
+pub(super) const fn is_plate(part: &Part) -> bool {
+    match &part.geometry {
+        Geometry::Plane { cover: Some(cover), .. } => matches!(cover.held(), Held::Plate(_)),
+        _ => false,
+    }
+}
+
 /// Each stated capacity alone, with what a limit by it is called.
-fn singles(capacities: &Capacities, strength: LimitedBy) -> Vec<(LimitedBy, Capacities)> {
+fn singles(part: &Part, outward: bool) -> Vec<(LimitedBy, Capacities)> {
+    let (capacities, strength, held) = match (outward, is_plate(part)) {
+        (true, true) => (&part.outward, LimitedBy::Strength, LimitedBy::Strength),
+        (true, false) => (&part.outward, LimitedBy::Strength, LimitedBy::Securing),
+        (false, true) => (&part.inward, LimitedBy::Inward, LimitedBy::Inward),
+        (false, false) => (&part.inward, LimitedBy::Inward, LimitedBy::Securing),
+    };
     let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n, moment_n_m } = *capacities;
     let none = Capacities::default();
     let all = [
         (strength, Capacities { pressure_pa, ..none }),
         (strength, Capacities { hoop_tension_n_m, ..none }),
         (strength, Capacities { force_n, ..none }),
-        (LimitedBy::Securing, Capacities { bolt_n, ..none }),
-        (LimitedBy::Securing, Capacities { moment_n_m, ..none }),
+        (held, Capacities { bolt_n, ..none }),
+        (held, Capacities { moment_n_m, ..none }),
     ];
     all.into_iter().filter(|(_, one)| !one.is_empty()).collect()
 }
@@ -245,7 +259,7 @@ fn singles(capacities: &Capacities, strength: LimitedBy) -> Vec<(LimitedBy, Capa
 /// The part with each of its outward capacities alone.
 fn outward_singles(part: &Part) -> Vec<(LimitedBy, Part)> {
     let bare = bare(part);
-    let mut all: Vec<(LimitedBy, Part)> = singles(&part.outward, LimitedBy::Strength)
+    let mut all: Vec<(LimitedBy, Part)> = singles(part, true)
         .into_iter()
         .map(|(kind, outward)| (kind, Part { outward, ..bare.clone() }))
         .collect();
@@ -259,7 +273,7 @@ fn outward_singles(part: &Part) -> Vec<(LimitedBy, Part)> {
 /// The part with each of its inward capacities alone.
 fn inward_singles(part: &Part) -> Vec<(LimitedBy, Part)> {
     let bare = bare(part);
-    singles(&part.inward, LimitedBy::Inward)
+    singles(part, false)
         .into_iter()
         .map(|(kind, inward)| (kind, Part { inward, ..bare.clone() }))
         .collect()
@@ -284,6 +298,10 @@ fn turning_levels(plan: &Plan, part: &Part) -> Vec<f32> {
     let Geometry::Plane { shape, cover: Some(cover), .. } = &part.geometry else {
         return Vec::new();
     };
+    if let Held::Plate(nodes) = cover.held() {
+        // Between two nodes a weighting keeps its sign.
+        return nodes.of(&plan.numbers).iter().map(|node| part.bottom_m + node[0]).collect();
+    }
     let face = Face { shape, numbers: &plan.numbers, bottom_m: part.bottom_m };
     let mut found = Vec::new();
     for weighting in cover.weightings() {

@@ -6,7 +6,7 @@
 //! resulting force, moment and largest bolt share come to theirs lie higher, and who takes one of
 //! them for the limit overloads the foot of the part; they are shown beside it.
 
-use super::limits::{Which, Within, kinks};
+use super::limits::{Which, Within, is_plate, kinks};
 use super::{Criterion, intervals};
 use crate::assess::Desk;
 use crate::tank::{Axis, Part as Stated, Secured};
@@ -34,6 +34,8 @@ pub enum By {
     Turning,
     /// The pin of a hinge that carries most, or the whole hinge line or pivot.
     Pins,
+    /// Largest bending moment of a panel's plate.
+    Bending,
 }
 
 impl By {
@@ -48,6 +50,7 @@ impl By {
             Self::Securing => "securing",
             Self::Turning => "turning",
             Self::Pins => "pins",
+            Self::Bending => "bending",
         }
     }
 
@@ -121,12 +124,13 @@ pub fn lines(desk: &Desk, part: &Part) -> Vec<Line> {
     };
     let none = Capacities::default();
     let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n, moment_n_m } = part.outward;
+    let turning = if is_plate(part) { By::Bending } else { By::Turning };
     let stated = [
         (By::Pressure, Capacities { pressure_pa, ..none }),
         (By::HoopTension, Capacities { hoop_tension_n_m, ..none }),
         (By::Force, Capacities { force_n, ..none }),
         (if bolted(part) { By::Securing } else { By::Pins }, Capacities { bolt_n, ..none }),
-        (By::Turning, Capacities { moment_n_m, ..none }),
+        (turning, Capacities { moment_n_m, ..none }),
     ];
     let mut found = Vec::new();
     for (by, outward) in stated.into_iter().filter(|(_, one)| !one.is_empty()) {
@@ -204,6 +208,7 @@ fn resultants(part: &Part) -> Vec<(By, Pick)> {
     }
     match held(part) {
         Fastened::Otherwise => {}
+        Fastened::Plate(_) => found.push((By::Bending, |loads, _| loads.moment_n_m.lane(0))),
         Fastened::Bolts(_) => {
             found.push((By::Securing, |loads, _| loads.bolt_n.lane(0)));
         }

@@ -2,8 +2,11 @@
 
 use super::Words;
 use crate::units::Quantity::{AngleDegrees, Density, Force, Length, LineLoad, Moment, Pressure};
-use strake_core::part::{Capacities, Cover, DesignState, Geometry, Held, Part, Stated};
-use strake_core::shape::Shape;
+use strake_core::part::plate::Nodes;
+use strake_core::part::{
+    Capacities, Cover, CoverNumbers, DesignState, Geometry, Held, Part, Stated,
+};
+use strake_core::shape::{Face, Shape};
 
 impl Words {
     pub(super) fn part(&mut self, part: &Part, numbers: &[f32]) {
@@ -87,6 +90,7 @@ impl Words {
         let numbers = cover.numbers();
         let held = match cover.held() {
             Held::Otherwise => ", a cover".to_owned(),
+            Held::Plate(nodes) => format!(", a plate that bends, {} nodes", nodes.count),
             Held::Bolts(count) => format!(", {count} bolts"),
             Held::Line => ", on a level hinge or pivot".to_owned(),
             Held::Side => {
@@ -109,7 +113,12 @@ impl Words {
         let each = match held {
             Held::Line => "hinge or pivot",
             Held::Side => "each pin",
-            Held::Bolts(_) | Held::Otherwise => "each bolt",
+            Held::Bolts(_) | Held::Otherwise | Held::Plate(_) => "each bolt",
+        };
+        // A moment per width is a force.
+        let (moment, of) = match held {
+            Held::Plate(_) => ("bending moment per width", Force),
+            _ => ("moment about the hinge", Moment),
         };
         let Capacities { pressure_pa, hoop_tension_n_m, force_n, bolt_n, moment_n_m } = *capacities;
         let all = [
@@ -117,7 +126,7 @@ impl Words {
             ("hoop tension", hoop_tension_n_m, LineLoad),
             ("force", force_n, Force),
             (each, bolt_n, Force),
-            ("moment about the hinge", moment_n_m, Moment),
+            (moment, moment_n_m, of),
         ];
         let stated = |(name, value, quantity): (&str, Option<Stated>, _)| {
             value.map(|value| format!("{name} {}", self.show(value.get(), quantity)))
@@ -150,6 +159,13 @@ fn exact<'a>(geometry: &Geometry, numbers: &'a [f32]) -> (Geometry, Vec<&'a [f32
             let own = curved.numbers(numbers);
             curved.first = 0;
             vec![own]
+        }
+        Geometry::Plane { cover: Some(cover), shape, .. } => {
+            let Held::Plate(nodes) = cover.held() else { return (geometry, Vec::new()) };
+            let held = Held::Plate(Nodes { first: 0, ..nodes });
+            let face = Face { shape, numbers, bottom_m: 0.0 };
+            *cover = Cover::new(&CoverNumbers { held, ..cover.numbers() }, &face);
+            vec![nodes.of(numbers).as_flattened()]
         }
         _ => Vec::new(),
     };

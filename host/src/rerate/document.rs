@@ -156,7 +156,7 @@ pub struct Side {
 #[derive(Clone, Copy, Debug, Serialize)]
 pub struct ByLoad {
     /// `pressure`, `hoop_tension`, `force`, `moment`, `securing` (bolts), `latch`, `hinge`,
-    /// `hinge_moment`, `pivot` or `pivot_moment`.
+    /// `hinge_moment`, `pivot`, `pivot_moment` or `bending`.
     pub load: &'static str,
     /// `capacity` or `design_state`.
     pub against: &'static str,

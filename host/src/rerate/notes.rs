@@ -40,8 +40,7 @@ pub(super) fn cautions(
         ));
     }
     designed(file, &mut found);
-    let words = ("device and rerate judge", "; assess has the true moments");
-    found.extend(plate_cautions(file, units, words));
+    found.extend(plate_cautions(file, units, "device and rerate judge"));
     courses(file, &mut found);
     if let Some(overflow) = file.fill.overflow_m.filter(|top| question.new.level_m > top.value) {
         found.push(format!(

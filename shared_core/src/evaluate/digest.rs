@@ -66,7 +66,7 @@ impl<const N: usize> Digest<N> {
         if held != Held::Otherwise {
             self.word(loads.bolt_n);
         }
-        if matches!(held, Held::Line | Held::Side) {
+        if matches!(held, Held::Line | Held::Side | Held::Plate(_)) {
             self.word(loads.moment_n_m);
         }
     }

@@ -15,6 +15,7 @@ mod numbers;
 
 pub use numbers::{BOLTS_MAX, BoltPattern, CoverNumbers, Held, WeightingNumbers};
 
+use super::plate;
 use crate::lane::Lane;
 use crate::liquid::States;
 use crate::pressure::{Pressure, Resultant};
@@ -201,7 +202,7 @@ impl Cover {
         let arm_m = if self.held == Held::Side { [1.0e-3, 200.0] } else { [0.0; 2] };
         let held = match self.held {
             Held::Bolts(count) => (3..=BOLTS_MAX).contains(&count),
-            Held::Otherwise | Held::Line | Held::Side => true,
+            Held::Otherwise | Held::Line | Held::Side | Held::Plate(_) => true,
         };
         held && all_within(&[
             (self.arm_m, arm_m),
@@ -269,8 +270,13 @@ impl Cover {
         pressings: &[Pressing<'_, N>; 3],
     ) -> [Reaction<N>; 2] {
         let none = [Lane::ZERO; 3];
-        if self.held == Held::Otherwise {
-            return [none; 2];
+        match self.held {
+            Held::Otherwise => return [none; 2],
+            Held::Plate(nodes) => {
+                let states = pressings.map(|(state, _)| state);
+                return [plate::moments(nodes.of(face.numbers), face.bottom_m, states), none];
+            }
+            Held::Bolts(_) | Held::Line | Held::Side => {}
         }
         let [first, second] = &self.weightings;
         let first = self.reaction(first, face, pressings);

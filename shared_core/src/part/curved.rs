@@ -143,6 +143,22 @@ fn on_row<const N: usize>(
     sum
 }
 
+/// Adds what a row carries of the estimate, at most and at least.
+#[inline(never)]
+pub(super) fn add_row<const N: usize>(
+    sums: &mut [Lane<N>; 3],
+    kind: RowKind,
+    row: &Row,
+    bottom_m: f32,
+    [estimate, upper, lower]: [&Pressure<N>; 3],
+) {
+    let weight = weight(kind, row);
+    let states = if weight < 0.0 { [estimate, lower, upper] } else { [estimate, upper, lower] };
+    for (sum, state) in sums.iter_mut().zip(states) {
+        *sum = *sum + on_row(kind, row, weight, bottom_m, state);
+    }
+}
+
 impl Curved {
     /// How many numbers it has in the plan.
     #[must_use]
@@ -196,12 +212,7 @@ impl Curved {
     ) -> [Lane<N>; 3] {
         let mut sums = [Lane::ZERO; 3];
         for (kind, row) in self.rows_of(force, numbers) {
-            let weight = weight(kind, row);
-            let states =
-                if weight < 0.0 { [estimate, lower, upper] } else { [estimate, upper, lower] };
-            for (sum, state) in sums.iter_mut().zip(states) {
-                *sum = *sum + on_row(kind, row, weight, bottom_m, state);
-            }
+            add_row(&mut sums, kind, row, bottom_m, [estimate, upper, lower]);
         }
         sums
     }

@@ -31,7 +31,8 @@ pub struct Loads<const N: usize> {
     /// N, positive in tension against outward motion.
     pub bolt_n: Lane<N>,
     /// Moment about the hinge or pivot, N m, positive when it turns the cover outward; about a
-    /// pivot, when it pushes the upper side outward.
+    /// pivot, when it pushes the upper side outward. Of a panel the largest bending moment of its
+    /// plate, N m/m, positive as pressure from the liquid bends it.
     pub moment_n_m: Lane<N>,
 }
 

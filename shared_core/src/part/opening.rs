@@ -4,7 +4,7 @@
 //! and still runs out. There is no state "safe to open"; the other answer is that no liquid is
 //! computed at this opening.
 
-use super::{Geometry, Part};
+use super::{Geometry, Held, Part};
 use crate::liquid::highest_surface_m;
 use crate::plan::Plan;
 use crate::signal::{ReadingClass, Resolved};
@@ -44,6 +44,9 @@ impl Shut {
     #[must_use]
     pub fn under(plan: &Plan, part: &Part, surface_m: f32) -> Option<Self> {
         let Geometry::Plane { cover: Some(cover), .. } = &part.geometry else { return None };
+        if matches!(cover.held(), Held::Plate(_)) {
+            return None;
+        }
         let sill_m = part.bottom_m + cover.sill_above_m();
         // What is no number is no proof.
         let above = |height_m: f32| height_m > sill_m || height_m.is_nan();

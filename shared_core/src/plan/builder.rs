@@ -9,8 +9,10 @@ use super::{
 use crate::alarm::FaultCause;
 use crate::journal::entry::Sample;
 use crate::liquid::{Band, DensityTable, Gas, Layer};
+use crate::part::plate::Nodes;
 use crate::part::{
-    BoltPattern, Capacities, Cover, CoverNumbers, Curved, Geometry, Held, Part, WeightingNumbers,
+    BoltPattern, Capacities, Cover, CoverNumbers, Curved, Geometry, Held, Part, Stated,
+    WeightingNumbers,
 };
 use crate::plan::LiquidPlan;
 use crate::shape::{Circle, Face, Pieces, Rectangle, Shape};
@@ -297,4 +299,23 @@ pub(crate) fn push_curved(plan: &mut Plan, bottom_m: f32, shell: bool) {
     let rows = if shell { [[0; 3], [1, 0, 0]] } else { [[0, 0, 1], [1, 2, 0]] };
     let curved = Curved { first, rows, places, apex_up: false };
     plan.parts.push(part(Geometry::Curved(curved), bottom_m, 1.5)).unwrap();
+}
+
+/// Adds a rectangular panel whose plate is judged at two points, one with a weighting that turns
+/// its sign.
+pub(crate) fn push_plate(plan: &mut Plan, bottom_m: f32, length_m: f32, sine: f32) {
+    let first = u16::try_from(plan.numbers.len()).unwrap();
+    let rise_m = length_m * sine;
+    let nodes = [[0.0, 0.01], [0.3, 0.2], [1.0, 0.0], [0.0, 0.0], [0.4, -0.02], [0.5, 0.0]];
+    let above = [[1.0, 0.3]];
+    for [share, w] in nodes.into_iter().chain(above) {
+        plan.numbers.extend_from_slice(&[share * rise_m, w]).unwrap();
+    }
+    let held = Held::Plate(Nodes { count: 7, first });
+    let mut judged = rectangle(bottom_m, 1.5, length_m, sine);
+    let Geometry::Plane { shape, cover, .. } = &mut judged.geometry else { unreachable!() };
+    let face = Face { shape, numbers: &plan.numbers, bottom_m: 0.0 };
+    *cover = Some(Cover::new(&CoverNumbers { held, ..CoverNumbers::default() }, &face));
+    judged.outward.moment_n_m = Stated::new(1e3);
+    plan.parts.push(judged).unwrap();
 }

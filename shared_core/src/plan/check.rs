@@ -216,12 +216,14 @@ impl Plan {
             }
             Geometry::Plane { shape, sine, cover, .. } => {
                 let cover = cover.as_ref();
+                let held = cover.map_or(Held::Otherwise, Cover::held);
                 require(
                     check_shape(shape, *sine, &self.numbers)
-                        && cover.is_none_or(|cover| cover.is_sound(shape, *sine)),
+                        && cover.is_none_or(|cover| cover.is_sound(shape, *sine))
+                        && check_plate(held, stated_rise_m, &self.numbers),
                     PlanError::Geometry,
                 )?;
-                (shape.rise_m(), false, Some(cover.map_or(Held::Otherwise, Cover::held)))
+                (shape.rise_m(), false, Some(held))
             }
             Geometry::Curved(curved) => {
                 require(check_curved(curved, stated_rise_m, &self.numbers), PlanError::Geometry)?;
@@ -333,6 +335,23 @@ fn check_curved(curved: &Curved, rise_m: f32, numbers: &[f32]) -> bool {
     sound
 }
 
+/// Every node of a plate on it, and the weighting of one sign between two.
+#[inline(never)]
+fn check_plate(held: Held, rise_m: f32, numbers: &[f32]) -> bool {
+    let Held::Plate(nodes) = held else { return true };
+    let own = nodes.of(numbers);
+    let mut sound = own.len() == usize::from(nodes.count);
+    let mut below = [f32::INFINITY; 2];
+    for &[y_m, w] in own {
+        let rise = y_m - below[0];
+        sound &= within(y_m, -LENGTH_SLACK_M, rise_m + LENGTH_SLACK_M)
+            && w.abs() <= 1.0e5
+            && (rise <= 0.0 || rise >= 1.0e-6 && w * below[1] >= 0.0);
+        below = [y_m, w];
+    }
+    sound && !own.is_empty()
+}
+
 /// `tension`: whether it has one; `held`: how a cover is held, none for a course.
 fn check_capacities(
     capacities: &Capacities,
@@ -352,7 +371,7 @@ fn check_capacities(
             && (tension || capacities.hoop_tension_n_m.is_none())
             && (held.is_some() || capacities.force_n.is_none())
             && (bears || capacities.bolt_n.is_none())
-            && (turns || capacities.moment_n_m.is_none()),
+            && (turns || matches!(held, Some(Held::Plate(_))) || capacities.moment_n_m.is_none()),
         PlanError::Capacity,
     )
 }

@@ -126,6 +126,7 @@ impl Coverage {
             ("bolts, odd", held(|h| matches!(h, Held::Bolts(n) if n % 2 == 1))),
             ("hinge line or pivot", held(|h| h == Held::Line)),
             ("hinge at the side", held(|h| h == Held::Side)),
+            ("plates", held(|h| matches!(h, Held::Plate(_)))),
             ("covers held otherwise", held(|h| h == Held::Otherwise)),
             ("weight, measured", weighing(true)),
             ("weight, not measured", weighing(false)),

@@ -2,7 +2,10 @@
 
 use crate::cover::{Outline, cover};
 use crate::{between, ratio, single};
-use strake_core::part::{Capacities, Cover, Curved, DesignState, Geometry, Held, Part, Stated};
+use strake_core::part::plate::Nodes;
+use strake_core::part::{
+    Capacities, Cover, CoverNumbers, Curved, DesignState, Geometry, Held, Part, Stated,
+};
 use strake_core::plan::NUMBERS_MAX;
 use strake_core::shape::{Circle, Face, Pieces, Rectangle, Shape};
 use strake_oracle::random::Random;
@@ -30,7 +33,7 @@ pub(crate) fn part(random: &mut Random, around: Around, numbers: &mut Numbers) -
         0 => course(random, bottom_m),
         1 if numbers.len() < NUMBERS && random.one_in(2) => pieces(random, numbers),
         1 if numbers.len() < NUMBERS => curved(random, numbers),
-        _ => plane(random),
+        _ => plane(random, numbers),
     };
     let [outward, inward] = capacities(random, &geometry, around);
     let designed_for = if random.one_in(3) { 1 + random.below(2) } else { 0 };
@@ -64,7 +67,7 @@ fn course(random: &mut Random, bottom_m: f32) -> (Geometry, f32) {
 }
 
 /// One in four level; of the others half upright.
-fn plane(random: &mut Random) -> (Geometry, f32) {
+fn plane(random: &mut Random, numbers: &mut Numbers) -> (Geometry, f32) {
     let sine = match random.below(8) {
         0 | 1 => 0.0,
         2..=4 => 1.0,
@@ -81,6 +84,14 @@ fn plane(random: &mut Random) -> (Geometry, f32) {
         (true, false) => Shape::Rectangle(Rectangle::new(a, b, sine)),
     };
     let is_ellipse = matches!(&shape, Shape::Circle(circle) if (circle.aspect() - 1.0).abs() > 0.0);
+    let is_plate = sine > 0.0 && numbers.len() < NUMBERS && random.one_in(3);
+    if !is_ellipse && is_plate {
+        let rise_m = shape.rise_m();
+        let held = Held::Plate(nodes(random, rise_m, numbers));
+        let bent = CoverNumbers { held, ..CoverNumbers::default() };
+        let cover = Cover::new(&bent, &Face { shape: &shape, numbers, bottom_m: 0.0 });
+        return (Geometry::plane(shape, sine, Some(cover)), rise_m);
+    }
     let cover = (!is_ellipse && !random.one_in(4)).then(|| {
         let outline = match shape {
             Shape::Circle(_) => Outline::Disc { radius_m: f64::from(a) },
@@ -90,6 +101,25 @@ fn plane(random: &mut Random) -> (Geometry, f32) {
     });
     let rise_m = shape.rise_m();
     (Geometry::plane(shape, sine, cover), rise_m)
+}
+
+/// Up to three points of two to four nodes; between nodes the weighting keeps its sign.
+fn nodes(random: &mut Random, rise_m: f32, numbers: &mut Numbers) -> Nodes {
+    let first = u16::try_from(numbers.len()).unwrap_or(0);
+    for _ in 0..=random.below(3) {
+        let (stretches, mut sign) = (1 + random.below(3), 1.0);
+        let mut y_m = 0.0;
+        for left in (0..=stretches).rev() {
+            let turns = left > 0 && left < stretches && random.one_in(3);
+            let w = if turns { 0.0 } else { sign * ratio(random, 0.01, 1.0) };
+            sign = if turns { -sign } else { sign };
+            let _ = numbers.extend_from_slice(&[y_m, w]);
+            let ahead = if left <= 1 { 1.0 } else { between(random, 0.2, 0.6) };
+            y_m += (rise_m - y_m) * ahead;
+        }
+    }
+    let count = (numbers.len() - usize::from(first)) / 2;
+    Nodes { count: u8::try_from(count).unwrap_or(0), first }
 }
 
 /// One to six strips on top of each other and up to two discs anywhere beside them; one disc in
@@ -191,6 +221,7 @@ fn capacities(random: &mut Random, geometry: &Geometry, around: Around) -> [Capa
         Held::Otherwise => (None, None),
         Held::Bolts(count) => (force.map(|n| n / f32::from(count)), None),
         Held::Line | Held::Side => (force.map(|n| 0.5 * n), force),
+        Held::Plate(_) => (None, Some(head_pa)),
     };
     let mut stated = |load: Option<f32>, one_in: u32| {
         let share = ratio(random, 0.3, 3.0);

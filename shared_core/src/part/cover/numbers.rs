@@ -1,5 +1,6 @@
 //! The numbers of a cover as the plan holds them.
 
+use crate::part::plate::Nodes;
 use crate::shape::Shape;
 
 /// Most bolts of a cover; the plan keeps larger numbers for other things.
@@ -18,6 +19,9 @@ pub enum Held {
     Line,
     /// A hinge line up the slope with two pins; the weightings are the forces on the pins.
     Side,
+    /// No cover: a panel whose plate is judged by its bending moments, see
+    /// [`crate::part::plate`]. The two weightings are zero.
+    Plate(Nodes),
 }
 
 /// A weighting that is straight along the slope.

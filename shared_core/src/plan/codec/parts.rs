@@ -17,6 +17,7 @@
 use super::reader::Reader;
 use super::{PlanError, count, flag, take_list};
 use crate::cursor::Sink;
+use crate::part::plate::{NODE_NUMBERS, Nodes};
 use crate::part::{
     BoltPattern, Capacities, Cover, CoverNumbers, Curved, DesignState, Geometry, Held, Part,
     Stated, WeightingNumbers,
@@ -64,7 +65,7 @@ pub(super) fn put(sink: &mut Sink<'_>, part: &Part, numbers: &[f32]) -> Result<(
                 Shape::Level { area_m2 } => sink.f32(*area_m2),
                 Shape::Pieces(pieces) => put_pieces(sink, pieces, numbers),
             }
-            put_cover(sink, cover.as_ref(), shape);
+            put_cover(sink, cover.as_ref(), shape, numbers);
         }
         Geometry::Curved(curved) => {
             curved.rows.as_flattened().iter().for_each(|&count| sink.u8(count));
@@ -166,8 +167,7 @@ fn take_geometry(source: &mut Reader<'_>, kind: u8, numbers: &mut Numbers) -> Op
         6 => return take_curved(source, numbers),
         _ => return None,
     };
-    let face = Face { shape: &shape, numbers, bottom_m: 0.0 };
-    let cover = take_cover(source, &face)?;
+    let cover = take_cover(source, &shape, numbers)?;
     Some(Geometry::plane(shape, sine, cover))
 }
 
@@ -179,14 +179,17 @@ const SILL: u16 = 0x8000;
 /// The record of two weightings; an opening of which nothing else is known.
 const ANYHOW: u16 = 1;
 const OTHERWISE: u16 = 2;
+/// In the record of two weightings: there are none, a plate bends.
+const PLATE: u16 = 2;
 
 /// The lower 13 bits of the first word: 0 no cover, 1 two weightings anywhere, 2 an opening held
 /// otherwise, 3 and more that many bolts about the centroid.
 ///
 /// Bolts: `s / sum s²` of the lowest and the highest, their cuts. Weightings: u16 (0 a level line,
 /// 1 a hinge at the side, 3 and more bolts), arm, and for each foot, slope, cut. A cut is u8 0, or
-/// 1 and 3 f32. Then, where their bits are set, weight and sill.
-fn put_cover(sink: &mut Sink<'_>, cover: Option<&Cover>, shape: &Shape) {
+/// 1 and 3 f32. Then, where their bits are set, weight and sill. 2 in the place of a line: no
+/// cover but a plate, nodes u8 and 2 f32 each.
+fn put_cover(sink: &mut Sink<'_>, cover: Option<&Cover>, shape: &Shape, numbers: &[f32]) {
     let Some(cover) = cover.map(Cover::numbers) else {
         sink.u16(0);
         return;
@@ -202,12 +205,18 @@ fn put_cover(sink: &mut Sink<'_>, cover: Option<&Cover>, shape: &Shape) {
             pattern.cuts.into_iter().for_each(|cut| put_cut(sink, cut));
         }
         (None, Held::Otherwise) => sink.u16(OTHERWISE | flags),
+        (None, Held::Plate(nodes)) => {
+            sink.u16(ANYHOW);
+            sink.u16(PLATE);
+            sink.u8(nodes.count);
+            nodes.of(numbers).as_flattened().iter().for_each(|&one| sink.f32(one));
+        }
         (None, held) => {
             sink.u16(ANYHOW | flags);
             sink.u16(match held {
                 Held::Bolts(count) => count,
                 Held::Side => 1,
-                Held::Line | Held::Otherwise => 0,
+                Held::Line | Held::Otherwise | Held::Plate(_) => 0,
             });
             sink.f32(cover.arm_m);
             for weighting in cover.weightings {
@@ -231,26 +240,40 @@ fn put_cut(sink: &mut Sink<'_>, cut: Option<[f32; 3]>) {
 }
 
 #[expect(clippy::option_option, reason = "outer: bytes ran out; inner: no cover")]
-fn take_cover(source: &mut Reader<'_>, face: &Face<'_>) -> Option<Option<Cover>> {
+fn take_cover(
+    source: &mut Reader<'_>,
+    shape: &Shape,
+    numbers: &mut Numbers,
+) -> Option<Option<Cover>> {
     let word = source.u16();
     let mut cover = match word & HELD {
         0 if word == 0 => return Some(None),
         0 => return None,
-        ANYHOW => {
-            let held = match source.u16() {
-                0 => Held::Line,
-                1 => Held::Side,
-                count => Held::Bolts(count),
-            };
-            let arm_m = source.f32();
-            let weightings = [take_weighting(source)?, take_weighting(source)?];
-            CoverNumbers { held, arm_m, weightings, ..CoverNumbers::default() }
-        }
+        ANYHOW => match source.u16() {
+            PLATE if word == ANYHOW => {
+                let first = u16::try_from(numbers.len()).ok()?;
+                let count = source.u8();
+                take_own(source, numbers, NODE_NUMBERS * usize::from(count))?;
+                let held = Held::Plate(Nodes { count, first });
+                CoverNumbers { held, ..CoverNumbers::default() }
+            }
+            PLATE => return None,
+            line => {
+                let held = match line {
+                    0 => Held::Line,
+                    1 => Held::Side,
+                    count => Held::Bolts(count),
+                };
+                let arm_m = source.f32();
+                let weightings = [take_weighting(source)?, take_weighting(source)?];
+                CoverNumbers { held, arm_m, weightings, ..CoverNumbers::default() }
+            }
+        },
         OTHERWISE => CoverNumbers::default(),
         count => {
             let per_moment = [source.f32(), source.f32()];
             let cuts = [take_cut(source)?, take_cut(source)?];
-            BoltPattern { count, per_moment, cuts }.cover(face.shape)
+            BoltPattern { count, per_moment, cuts }.cover(shape)
         }
     };
     if word & WEIGHT != 0 {
@@ -260,7 +283,8 @@ fn take_cover(source: &mut Reader<'_>, face: &Face<'_>) -> Option<Option<Cover>>
     if word & SILL != 0 {
         cover.sill_above_m = source.f32();
     }
-    Some(Some(Cover::new(&cover, face)))
+    let face = Face { shape, numbers, bottom_m: 0.0 };
+    Some(Some(Cover::new(&cover, &face)))
 }
 
 fn take_weighting(source: &mut Reader<'_>) -> Option<WeightingNumbers> {

@@ -5,7 +5,8 @@ use crate::liquid::truth::Random;
 use crate::part::{DesignState, Stated};
 use crate::plan::builder::{
     bolted_disc, course, ellipse, exact, gas, head_sensor, layer, level_cover, on_loop,
-    push_curved, push_pieces, random, rectangle, surface_sensor, water_tank, with_inward_alarm,
+    push_curved, push_pieces, push_plate, random, rectangle, surface_sensor, water_tank,
+    with_inward_alarm,
 };
 use crate::plan::{Filling, Plan, PlanError, PlanHeader, Reference};
 use proptest::prelude::*;
@@ -94,6 +95,7 @@ fn every_kind_of_thing_comes_back() {
         push_pieces(&mut plan, 0.0, 1.0);
         push_curved(&mut plan, 0.0, true);
         push_curved(&mut plan, 1.0, false);
+        push_plate(&mut plan, 1.0, 0.7, 0.9);
         let (_, again) = decode(&encoded(&plan)).unwrap();
         assert_eq!(again, plan);
         plan.numbers.clear();
