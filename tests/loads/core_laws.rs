@@ -2,9 +2,9 @@
 //! vessels.
 
 use crate::core_engine::{Numbers, bare, course, loads_of, loads_with, narrow, part_of};
-use crate::core_error::{part, sides};
+use crate::core_error::{part, random_head, sensed, sides};
 use strake::compile::{self, curved};
-use strake_core::part::{Geometry, Loads};
+use strake_core::part::{Geometry, Loads, evaluate};
 use strake_oracle::generate::{course as random_course, liquid};
 use strake_oracle::liquid::{Layer, Liquid, Pressure as _};
 use strake_oracle::plane::PlanePart;
@@ -233,4 +233,33 @@ fn closed_vessels_of_every_kind_carry_the_weight_of_their_contents() {
         worst = worst.max(error);
     }
     println!("closed vessels through the core: worst {worst:.1e}, tables included");
+}
+
+/// The size of the force on a curved part is that of its components, and its bound that of the
+/// largest of each.
+#[test]
+fn a_force_on_a_curved_part_has_the_size_of_its_components() {
+    let mut random = Random::new(46);
+    for _ in 0..400 {
+        let (from, span) = (random.between(0.0, 360.0), random.between(5.0, 180.0));
+        let table = curved::arc(random.between(0.3, 4.0), 2.0, from, from + span, random.one_in(2));
+        let mut numbers = Numbers::new();
+        let one = table.curved(&mut compile::Numbers { list: &mut numbers }).expect("room");
+        let bottom = random.between(-0.5, 5.0);
+        let (low, high) = (narrow(bottom), narrow(bottom + table.rise_m));
+        let part = bare(Geometry::Curved(one), low, high);
+        let (mut plan, states) = sensed(&random_head(&mut random));
+        plan.numbers = numbers;
+        let loads = evaluate(&plan, &part, &states);
+        let [middle, most, least] = [&loads.estimate, &loads.outward, &loads.inward]
+            .map(|loads| [loads.force_x_n, loads.force_z_n].map(|lane| f64::from(lane.lane(0))));
+        let size = f64::from(loads.estimate.force_n.lane(0));
+        let due = middle[0].hypot(middle[1]);
+        assert!((size - due).abs() <= 1e-6 * due, "{size} for {due}");
+        let farthest = [0, 1].map(|axis| most[axis].abs().max(least[axis].abs()));
+        let bound = f64::from(loads.outward.force_n.lane(0));
+        let due = farthest[0].hypot(farthest[1]);
+        assert!((bound - due).abs() <= 1e-6 * due, "{bound} for {due}");
+        assert!(size <= bound * (1.0 + 1e-6), "{size} {bound}");
+    }
 }

@@ -71,7 +71,7 @@ pub(super) fn volume(row: &Row) -> Result<f64, Reason> {
 /// density that a load is taken with.
 pub(super) fn density(row: &Row) -> Result<f64, Reason> {
     if row.has("VCF") {
-        return Err("the volume correction of petroleum is not offered by this version");
+        return Err("a mass in air by a factor read in a table is not given");
     }
     let celsius = |row: &Row| row.number("t_C").or_else(|| row.number("t68_C"));
     let at_c = celsius(row).ok_or(UNREAD)?;
