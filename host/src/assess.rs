@@ -4,8 +4,10 @@
 //! level and what is in the tank ([`Request`]), asks ([`Desk`]), and lays the answers out
 //! ([`Document`]).
 
+mod action;
 mod bending;
 mod centre;
+mod curved;
 mod desk;
 mod document;
 mod filling;
@@ -18,11 +20,13 @@ mod securing;
 mod set_point;
 pub mod text;
 
+pub use action::{Action, action};
 pub use bending::{BentRow, PlateRow};
 pub use centre::centre;
 pub use desk::Desk;
 pub use document::{
-    Capacity, Centre, Document, Judgement, Loads, NotJudged, Opening, PartRow, PartTable, State,
+    Capacity, Centre, Document, Judgement, LineOfAction, Loads, NotJudged, Opening, PartRow,
+    PartTable, State,
 };
 pub use filling::{Filling, Way};
 pub use margin::{Margin, PartMargin, Times, margin, together};

@@ -10,7 +10,7 @@ const BRINE: &str = "configs/brine_day_tank.toml";
 const SET_POINT: &[&str] =
     &["pressure_pa", "current_a", "level_lightest_m", "level_nominal_m", "level_densest_m"];
 
-const EXAMPLES: [&str; 8] = [
+const EXAMPLES: [&str; 9] = [
     "brine_day_tank",
     "laboratory_tank",
     "rinse_basin",
@@ -19,10 +19,11 @@ const EXAMPLES: [&str; 8] = [
     "plate_box",
     "wine_drum",
     "curved_parts",
+    "mesh_parts",
 ];
 
 /// Every key that the document may have, by the place where it stands.
-const KEYS: [(&str, &[&str]); 18] = [
+const KEYS: [(&str, &[&str]); 19] = [
     (
         "",
         &[
@@ -65,6 +66,7 @@ const KEYS: [(&str, &[&str]); 18] = [
             "limit_intervals_m",
             "lowest_level_m",
             "thickness_for_state_m",
+            "line_of_action",
         ],
     ),
     (
@@ -108,6 +110,7 @@ const KEYS: [(&str, &[&str]); 18] = [
             "why_not",
         ],
     ),
+    ("line_of_action", &["angle_deg", "force_x_at_m", "force_z_at_m", "force_y_n", "moment_n_m"]),
     ("capacity", &["load", "value", "basis"]),
     ("table", &["rows", "error"]),
     (

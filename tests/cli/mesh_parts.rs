@@ -63,6 +63,25 @@ fn a_pocket_and_a_hopper_carry_what_presses_on_them() {
     assert!(hopper["force_x_n"].as_f64().unwrap().abs() < 1e-6 * 1200.0 * G * carried);
 }
 
+#[test]
+fn a_mesh_says_where_its_force_acts() {
+    let (_, found) = document(&["assess", TANK, "--level", "1.1 m"]);
+    let parts = found["parts"].as_array().expect("parts");
+    let pocket = parts.iter().find(|part| part["name"] == "sampling pocket").expect("the pocket");
+    // own-17c without its gas, about (0 0 1.0): the gas has its centre there along x, and presses
+    // nothing upwards in sum, so that its own moment is none.
+    let number = |at: &Value| at.as_f64().expect("a number");
+    let line = &pocket["line_of_action"];
+    let (x, z) = (number(&pocket["loads"]["force_x_n"]), number(&pocket["loads"]["force_z_n"]));
+    let about = number(&line["moment_n_m"][1]) - 1.0 * x;
+    assert!((about + 232.993_746).abs() < 0.005, "{about}");
+    let again = (number(&line["force_x_at_m"]) - 1.0) * x - number(&line["force_z_at_m"]) * z;
+    assert!((again - about).abs() < 1e-3, "{again}");
+    assert!(number(&line["force_y_n"]).abs() < 1e-9);
+    near(&line["angle_deg"], z.atan2(x).to_degrees(), 1e-6);
+    assert_eq!(pocket["table"]["rows"], 3);
+}
+
 fn round(value: f64) -> f64 {
     (value * 1e6).round() / 1e6
 }
@@ -135,4 +154,14 @@ fn a_mesh_pressed_across_is_not_judged_by_its_force() {
     let ran = run(&["assess", &path]);
     assert_eq!(ran.status, 3, "{}", ran.stdout);
     assert!(ran.stderr.contains("is pressed along its y axis too"), "{}", ran.stderr);
+    // Judged by its pressure it is told, with the force that the device does not have.
+    let text =
+        fs::read_to_string(&path).unwrap().replace("force = \"24 kN\"", "pressure = \"24 kPa\"");
+    fs::write(&path, text).unwrap();
+    let (_, found) = document(&["assess", &path, "--level", "2.0 m"]);
+    let parts = found["parts"].as_array().expect("parts");
+    let pocket = parts.iter().find(|part| part["name"] == "sampling pocket").expect("the pocket");
+    // Swapping two axes turns the surface inside out: out of the wall is along -y now.
+    near(&pocket["line_of_action"]["force_y_n"], -1200.0 * G * 0.64, 1e-5);
+    assert!(pocket["loads"].get("force_n").is_none(), "{pocket}");
 }

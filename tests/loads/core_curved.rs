@@ -4,7 +4,10 @@ use crate::core_engine::{Numbers, at_level, bare, loads_with, narrow, plan_of};
 use crate::core_error::sides;
 use crate::meshes::{AS_IT_IS, read};
 use std::f64::consts::{FRAC_PI_2, TAU};
+use strake::assess::{Action, action};
 use strake::compile::{self, curved};
+use strake::mesh::Triangle;
+use strake::tank::Surface;
 use strake_core::part::curved::Tensions;
 use strake_core::part::{Curved, Geometry, Part};
 use strake_oracle::cases::{CurvedAsk, CurvedPart, Reason};
@@ -27,7 +30,7 @@ pub(crate) struct Placed {
 }
 
 impl Placed {
-    fn part(&self) -> (Part, Numbers, Curved) {
+    pub(crate) fn part(&self) -> (Part, Numbers, Curved) {
         let mut numbers = Numbers::new();
         let list = &mut compile::Numbers { list: &mut numbers };
         let curved = self.table.curved(list).expect("room for the numbers");
@@ -48,45 +51,101 @@ impl Placed {
         let (part, numbers, curved) = self.part();
         let (plan, level_m) = plan_of(liquid)?;
         let states = at_level(&plan, level_m);
-        let three = [&states.estimate, &states.upper, &states.lower];
-        Ok(curved.tensions(hoop, &numbers, part.bottom_m, three))
+        Ok(curved.tensions(hoop, &numbers, part.bottom_m, &states))
     }
 }
 
-fn placed(part: &CurvedPart) -> Result<Placed, Reason> {
+/// A part as a tank file states it, with the height of its reference.
+fn stated(part: &CurvedPart) -> Result<(Surface, f64), Reason> {
     Ok(match *part {
-        CurvedPart::Arc { radius, length, axis_m, angles_deg: (from, to), wetted } => {
-            let table = curved::arc(radius, length, from, to, wetted == Wetted::Inside);
-            let low = arc(radius, length, axis_m, (from.to_radians(), to.to_radians()), wetted)
-                .iter()
-                .map(Patch::lowest_m)
-                .fold(f64::INFINITY, f64::min);
-            Placed { table, bottom_m: low }
+        CurvedPart::Arc { radius, length, axis_m, angles_deg: (from_deg, to_deg), wetted } => {
+            let inside = wetted == Wetted::Inside;
+            let (radius_m, length_m) = (radius, length);
+            (Surface::Arc { radius_m, length_m, from_deg, to_deg, inside }, axis_m)
         }
         CurvedPart::Cone { base_radius, height, apex_m } => {
-            let table = curved::revolved(curved::Profile::Cone, base_radius, height, false);
-            Placed { table, bottom_m: apex_m }
+            (revolved(curved::Profile::Cone, base_radius, height, false), apex_m + height)
         }
         CurvedPart::Bowl { radius, equator_m } => {
-            let table = curved::revolved(curved::Profile::Sphere, radius, radius, false);
-            Placed { table, bottom_m: equator_m - radius }
+            (revolved(curved::Profile::Sphere, radius, radius, false), equator_m)
         }
         CurvedPart::WallDome { radius, centre_m } => {
-            Placed { table: curved::dome(radius, true), bottom_m: centre_m - radius }
+            (Surface::Dome { radius_m: radius, inside: true }, centre_m)
         }
-        CurvedPart::FloorDome { .. } => return Err("a hole in a dome is not offered"),
-        CurvedPart::CubicProfile { .. } => return Err("the profile is no part of a tank file"),
-        CurvedPart::Mesh { ref triangles } => {
-            let mesh = read(triangles, AS_IT_IS).map_err(|_| "no surface")?;
-            Placed { table: curved::mesh(&mesh), bottom_m: mesh.heights_m()[0] }
+        CurvedPart::FloorDome { .. } => return Err("what holds a shell is not offered"),
+        CurvedPart::CubicProfile { constant, height, length } => {
+            (meshed(&cubic(constant, height, length))?, 0.0)
         }
+        CurvedPart::Mesh { ref triangles } => (meshed(triangles)?, 0.0),
     })
+}
+
+fn revolved(profile: curved::Profile, base_radius_m: f64, height_m: f64, apex_up: bool) -> Surface {
+    Surface::Revolved { profile, base_radius_m, height_m, apex_up }
+}
+
+fn meshed(triangles: &[Triangle]) -> Result<Surface, Reason> {
+    read(triangles, AS_IT_IS).map(|mesh| Surface::Mesh(mesh.into())).map_err(|_| "no surface")
+}
+
+/// The wall `z = x³ / constant` in strips, liquid on the side of the lesser x.
+fn cubic(constant: f64, height: f64, length: f64) -> Vec<Triangle> {
+    let at = |step: u16, y: f64| {
+        let x = (constant * height).cbrt() * f64::from(step) / 400.0;
+        [x, y, x.powi(3) / constant]
+    };
+    let strip = |step: u16| {
+        let (next, far) = (step + 1, length);
+        let [a, b] = [at(step, 0.0), at(step, far)];
+        let [c, d] = [at(next, far), at(next, 0.0)];
+        [[a, c, b], [a, d, c]]
+    };
+    (0..400).flat_map(strip).collect()
+}
+
+fn placed(surface: &Surface, reference_m: f64) -> Placed {
+    let below_m = match *surface {
+        Surface::Arc { radius_m, from_deg, to_deg, .. } => {
+            let angles = (from_deg.to_radians(), to_deg.to_radians());
+            let surface = arc(radius_m, 1.0, 0.0, angles, Wetted::Inside);
+            -surface.iter().map(Patch::lowest_m).fold(f64::INFINITY, f64::min)
+        }
+        Surface::Dome { radius_m, .. } => radius_m,
+        Surface::Revolved { apex_up: true, .. } => 0.0,
+        Surface::Revolved { height_m, .. } => height_m,
+        Surface::Mesh(ref mesh) => reference_m - mesh.heights_m()[0],
+    };
+    Placed { table: compile::table(surface), bottom_m: reference_m - below_m }
+}
+
+/// The upward force on a dome on the floor less that on what its hole takes out of it.
+fn holed(part: &CurvedPart, liquid: &Liquid) -> Option<f64> {
+    let CurvedPart::FloorDome { radius, base_m, hole_diameter } = *part else { return None };
+    let edge = 0.5 * hole_diameter;
+    let up = (radius * radius - edge * edge).sqrt();
+    let of = |base, height, at_m: f64| {
+        let cap = revolved(curved::Profile::Sphere, base, height, true);
+        placed(&cap, at_m).force(liquid).map_or(0.0, |[_, z]| z)
+    };
+    Some(of(radius, radius, base_m) - of(edge, radius - up, base_m + up))
+}
+
+/// Force and moment of the estimate, by the desk.
+fn acting(surface: &Surface, reference_m: f64, liquid: &Liquid) -> Result<Action, Reason> {
+    let (plan, level_m) = plan_of(liquid)?;
+    let found = action(surface, reference_m, &at_level(&plan, level_m).estimate);
+    found.ok_or("its force runs along its axis")
 }
 
 /// What the core says of a curved part.
 pub(crate) fn answer(part: &CurvedPart, liquid: &Liquid, ask: &CurvedAsk) -> Result<f64, Reason> {
-    let placed = placed(part)?;
+    if let (CurvedAsk::Z, Some(z)) = (ask, holed(part, liquid)) {
+        return Ok(z);
+    }
+    let (surface, reference_m) = stated(part)?;
+    let placed = placed(&surface, reference_m);
     let [x, z] = placed.force(liquid)?;
+    let acting = || acting(&surface, reference_m, liquid);
     let z_at = |level: f64| placed.force(&liquid.clone().filled_to(level)).map_or(0.0, |f| f[1]);
     Ok(match *ask {
         CurvedAsk::X => x,
@@ -104,10 +163,14 @@ pub(crate) fn answer(part: &CurvedPart, liquid: &Liquid, ask: &CurvedAsk) -> Res
         CurvedAsk::ZeroZLevel(low, high) => root(low, high, z_at).ok_or("force keeps its sign")?,
         CurvedAsk::LargestHoop => placed.tensions(true, liquid)?.estimate[0].lane(0).into(),
         CurvedAsk::LargestMeridional => placed.tensions(false, liquid)?.estimate[0].lane(0).into(),
-        CurvedAsk::HorizontalDepth | CurvedAsk::HorizontalBelow(_) | CurvedAsk::VerticalLine => {
-            return Err("lines of action of curved parts are not offered");
+        CurvedAsk::HorizontalDepth => liquid.surface_m() - acting()?.x_acts_at_m().ok_or("none")?,
+        CurvedAsk::HorizontalBelow(height) => height - acting()?.x_acts_at_m().ok_or("none")?,
+        CurvedAsk::VerticalLine => acting()?.z_acts_at_m().ok_or("none")?.abs(),
+        CurvedAsk::MomentAboutY([ax, _, az]) => {
+            let found = acting()?;
+            let [fx, _, fz] = found.force_n;
+            found.moment_n_m[1] - ((az - reference_m) * fx - ax * fz)
         }
-        CurvedAsk::MomentAboutY(_) => return Err("moments of curved parts are not offered"),
         CurvedAsk::HoopAt(_) | CurvedAsk::MeridionalAt(_) => {
             return Err("the largest tension is given, not that of a place");
         }

@@ -1,12 +1,14 @@
 //! Loads against published values, own values and the oracle.
 
 mod cases;
+mod core_action;
 mod core_cases;
 mod core_curved;
 mod core_engine;
 mod core_error;
 mod core_laws;
 mod core_mesh;
+mod core_shells;
 mod covers;
 mod meshes;
 mod plate_cases;

@@ -30,7 +30,7 @@ const OPEN_ANSWERED: &[(&str, usize)] = &[
     ("alarm", 7),
     ("comms", 8),
     ("corrosion", 3),
-    ("curved", 23),
+    ("curved", 29),
     ("density", 13),
     ("fatigue", 6),
     ("gravity", 4),
@@ -45,7 +45,7 @@ const OPEN_ANSWERED: &[(&str, usize)] = &[
 ];
 const OWN_ANSWERED: &[(&str, usize)] = &[
     ("bound", 5),
-    ("curved", 15),
+    ("curved", 16),
     ("density", 3),
     ("hatch", 16),
     ("plane", 8),

@@ -91,6 +91,9 @@ pub struct PartRow {
     /// Whether the opening under a cover must stay shut; of a hatch.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub opening: Option<Opening>,
+    /// Where the force on a curved part acts; of the estimate only.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub line_of_action: Option<LineOfAction>,
     /// How the loads compare; empty of a part without capacities.
     #[serde(flatten)]
     pub judgement: Judgement,
@@ -180,6 +183,24 @@ pub struct Centre {
     /// Sideways, in the coordinates of the part's outline; only where its sides may differ.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub centre_of_pressure_sideways_m: Option<f64>,
+}
+
+/// Where the force on a curved part acts. A member is none when pressures nearly cancel.
+#[derive(Clone, Debug, Serialize)]
+pub struct LineOfAction {
+    /// Of the resultant above the horizontal, counter-clockwise from angle 0.
+    pub angle_deg: Option<f64>,
+    /// Height above the datum at which the force along angle 0 acts.
+    pub force_x_at_m: Option<f64>,
+    /// Distance along angle 0 at which the force upwards acts: from the axis of an arc, the centre
+    /// of a dome, the origin of a mesh.
+    pub force_z_at_m: Option<f64>,
+    /// Force along the y axis; of a mesh only.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub force_y_n: Option<f64>,
+    /// Moment about the three axes through the origin of a mesh.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub moment_n_m: Option<[f64; 3]>,
 }
 
 /// One capacity.

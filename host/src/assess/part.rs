@@ -2,6 +2,7 @@
 
 use super::bending;
 use super::centre::centre;
+use super::curved;
 use super::desk::Desk;
 use super::document::{Capacity, Judgement, Limits, Loads, Lowest, PartRow, PartTable};
 use super::request::Request;
@@ -60,7 +61,7 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, level_m: f32)
     let reactions = hatch.and_then(|hatch| securing::reactions(desk, hatch, part, &states));
     // What holds a cover that opens inward carries nothing while the load presses it on its seat.
     let seated = hatch.is_some_and(|hatch| hatch.seats(true));
-    let curved = match &part.geometry {
+    let rows = match &part.geometry {
         Geometry::Curved(curved) => Some(curved),
         _ => None,
     };
@@ -76,10 +77,10 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, level_m: f32)
             tension_n_m: None,
             compression_n_m: None,
             force_n: has(!course, loads.force_n),
-            force_x_n: has(curved.is_some_and(|one| one.places == 0), loads.force_x_n),
-            force_z_n: has(curved.is_some(), loads.force_z_n),
+            force_x_n: has(rows.is_some_and(|one| one.places == 0), loads.force_x_n),
+            force_z_n: has(rows.is_some(), loads.force_z_n),
             centre: None,
-            moment_centroid_n_m: (!course && curved.is_none()).then_some(moments[state]),
+            moment_centroid_n_m: (!course && rows.is_none()).then_some(moments[state]),
             bolt_n: has(bolted && bolts, loads.bolt_n),
             stress_pa: None,
             moment_n_m: reactions.map(|one| one.moment_n_m),
@@ -92,11 +93,13 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, level_m: f32)
     estimate.centre = plane.map(|plane| centre(plane, &states.estimate, force, moments[0]));
     let mut outward = loads(&computed.outward, 1, !seated);
     let mut inward = loads(&computed.inward, 2, true);
-    if let Some(curved) = curved {
+    if let Some(rows) = rows {
         // The size of a force has no least value that would say anything.
         inward.force_n = None;
-        shell(desk, part, curved, &states, [&mut estimate, &mut outward, &mut inward]);
+        shell(desk, part, rows, &states, [&mut estimate, &mut outward, &mut inward]);
     }
+    let line_of_action = curved::line_of_action(stated, &states);
+    curved::withhold(line_of_action.as_ref(), [&mut estimate, &mut outward]);
     PartRow {
         name: stated.name().to_owned(),
         kind: stated.kind().as_str(),
@@ -108,6 +111,7 @@ fn row(file: &TankFile, desk: &Desk, stated: &Stated, part: &Part, level_m: f32)
         plates: Vec::new(),
         table: table(stated),
         opening: securing::opening(desk, part, level_m),
+        line_of_action,
         judgement: judgement(desk, stated, part, &computed),
     }
 }
@@ -132,8 +136,7 @@ fn shell(
     if curved.places == 0 {
         return;
     }
-    let three = [&states.estimate, &states.upper, &states.lower];
-    let of = |hoop| curved.tensions(hoop, &desk.plan().numbers, part.bottom_m, three);
+    let of = |hoop| curved.tensions(hoop, &desk.plan().numbers, part.bottom_m, states);
     let both = of(true).with(&of(false));
     let [most, least] = both.estimate.map(|one| one.lane(0));
     let pressed = |tension: f32| Some(if tension < 0.0 { -tension } else { 0.0 });

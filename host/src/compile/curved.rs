@@ -10,6 +10,7 @@ mod mesh;
 mod shell;
 
 pub use arc::arc;
+pub(crate) use fit::GAUSS;
 pub use mesh::{MESH_ERROR_MAX, mesh, sideways};
 pub use shell::{PLACES, Profile, revolved};
 

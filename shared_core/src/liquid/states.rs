@@ -42,6 +42,8 @@ pub struct States<const N: usize> {
     pub lower: Pressure<N>,
     /// Height of the estimated surface, m above the datum.
     pub level_m: Lane<N>,
+    /// Whether the reading counts the gas in, so that more of it means less liquid.
+    pub tied: bool,
 }
 
 /// The three states of a reading.
@@ -89,6 +91,7 @@ fn surface<const N: usize>(plan: &Plan, readings: &Readings<N>) -> States<N> {
         upper: stack(plan.gas.highest_pa, capped(plan, readings.high), high, End::High),
         lower: stack(plan.gas.lowest_pa, capped(plan, readings.low), low, End::Low),
         level_m,
+        tied: false,
     }
 }
 
@@ -158,6 +161,7 @@ fn head<const N: usize>(
         upper: upper_envelope(plan, excess_high.ramp(), at_m, light, heavy),
         lower: lower_envelope(plan, wet, excess_low, at_m, light, heavy),
         level_m,
+        tied: matches!(reference, Reference::Atmosphere { .. }),
     }
 }
 

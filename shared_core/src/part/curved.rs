@@ -19,6 +19,7 @@
 //! They are looked at in a list of places.
 
 use crate::lane::Lane;
+use crate::liquid::States;
 use crate::pressure::Pressure;
 use crate::shape::disc_prism;
 use core::f32::consts::PI;
@@ -219,7 +220,10 @@ impl Curved {
 
     /// The tensions around the axis (`hoop`) or along the meridians.
     ///
-    /// Exact at the places; between them up to what their host states is missed.
+    /// Exact at the places; between them up to what their host states is missed. The bounds hold
+    /// for every gas pressure and every pressure of the liquid between the states, each for
+    /// itself. Where a reading ties one to the other and the liquid may reach the shell, they hold
+    /// for every pressure of both together, which is wider.
     #[must_use]
     #[inline(never)]
     pub fn tensions<const N: usize>(
@@ -227,14 +231,24 @@ impl Curved {
         hoop: bool,
         numbers: &[f32],
         bottom_m: f32,
-        states: [&Pressure<N>; 3],
+        states: &States<N>,
     ) -> Tensions<N> {
         let none = Lane::ZERO;
+        let States { estimate, upper, lower, .. } = states;
+        let one = Lane::splat(1.0);
+        let mut alone = one;
+        if let (true, Some(top)) = (states.tied, upper.surfaces().first()) {
+            // Under the least gas the surface stands highest.
+            let more_pa = upper.gas_pa - lower.gas_pa;
+            let highest_m = top.height_m + more_pa / top.step_n_m3;
+            alone = (highest_m - bottom_m).positive_selects(none, one);
+        }
+        let three = [estimate, upper, lower];
         let mut found: Option<Tensions<N>> = None;
         let row = self.rows_of(1, numbers).next().map_or([0.0; ROW_NUMBERS], |(_, row)| *row);
         for place in self.places_of(numbers) {
             let [estimate, upper, lower] =
-                at_place(hoop, place, &row, self.apex_up, bottom_m, states);
+                at_place(hoop, place, &row, self.apex_up, bottom_m, alone, three);
             let here = Tensions { estimate: [estimate; 2], most: upper, least: lower };
             found = Some(match found {
                 None => here,
@@ -259,27 +273,34 @@ impl<const N: usize> Tensions<N> {
 }
 
 /// A tension at a place: of the estimate, the largest and the least.
+///
+/// It is `around p - taken V`, along the meridians `along V`. The gas presses alike on all of the
+/// shell: taken alone (1, else 0) its share is one number times its pressure, and only what is left
+/// is bounded by each term at its own end.
 fn at_place<const N: usize>(
     hoop: bool,
     &[y_m, along, around, taken]: &Place,
     &[low_m, length_m, c0, c1, _]: &Row,
     apex_up: bool,
     bottom_m: f32,
+    alone: Lane<N>,
     states: [&Pressure<N>; 3],
 ) -> [Lane<N>; 3] {
+    let (per_force, per_pressure) = if hoop { (-taken, around) } else { (along, 0.0) };
     // What lies between the place and the apex.
     let [from, to] = if apex_up { [y_m, low_m + length_m] } else { [low_m, y_m] };
     let row = [from, to - from, c0 + c1 * (from - low_m), c1, 0.0];
     let weight = weight(RowKind::Even, &row);
-    let [estimate, upper, lower] =
-        states.map(|state| on_row(RowKind::Even, &row, weight, bottom_m, state));
-    let force = if hoop { -taken } else { along };
-    let [one, other] = [upper * force, lower * force];
-    let forces = [estimate * force, one.at_least(other), one.at_most(other)];
-    if !hoop {
-        return forces;
-    }
+    let per_gas = per_pressure + per_force * weight;
     let z_m = Lane::splat(bottom_m + y_m);
-    let mut pressures = states.map(|state| state.at(z_m) * around).into_iter();
-    forces.map(|force| force + pressures.next().unwrap_or(Lane::ZERO))
+    let [estimate, upper, lower] = states.map(|state| {
+        let gas_pa = state.gas_pa * alone;
+        let force = on_row(RowKind::Even, &row, 0.0, bottom_m, state);
+        let force = (force + (state.gas_pa - gas_pa) * weight) * per_force;
+        [force, (state.at(z_m) - gas_pa) * per_pressure, gas_pa * per_gas]
+    });
+    let [force, pressure, gas] = estimate;
+    let most = upper[0].at_least(lower[0]) + upper[1] + upper[2].at_least(lower[2]);
+    let least = upper[0].at_most(lower[0]) + lower[1] + upper[2].at_most(lower[2]);
+    [force + pressure + gas, most, least]
 }

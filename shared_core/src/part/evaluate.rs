@@ -218,7 +218,7 @@ fn judge_curved<const N: usize>(
     loads.outward.pressure_pa = extremes(part, upper, Lane::at_least);
     loads.inward.pressure_pa = extremes(part, lower, Lane::at_most);
     if curved.places > 0 {
-        let tensions = |hoop| curved.tensions(hoop, &plan.numbers, part.bottom_m, three);
+        let tensions = |hoop| curved.tensions(hoop, &plan.numbers, part.bottom_m, states);
         let found = tensions(true).with(&tensions(false));
         [loads.estimate.hoop_tension_n_m, _] = found.estimate;
         loads.outward.hoop_tension_n_m = found.most;

@@ -12,6 +12,8 @@ use crate::units::Quantity::{self, Density, Force, Length, LineLoad, Moment, Pre
 const LABEL: usize = 24;
 const NUMBER: usize = 14;
 const CAPACITY_AT: usize = LABEL + 3 * NUMBER + 2;
+/// Moments of a mesh about the axes through its origin.
+const MOMENTS: [&str; 3] = ["  moment about x", "  moment about y", "  moment about z"];
 
 pub(super) fn loads(sheet: &Sheet<'_>, page: &mut Page) {
     page.blank();
@@ -153,18 +155,12 @@ fn part(sheet: &Sheet<'_>, page: &mut Page, stated: &Stated, row: &PartRow) {
             let compression = three(|loads| loads.compression_n_m, LineLoad);
             put("compression, largest", compression, "compression_n_m");
         }
+        action(sheet, row, &mut put);
     } else {
         put("force", three(|loads| loads.force_n, Force), "force_n");
         put("moment about centroid", three(|loads| loads.moment_centroid_n_m, Moment), "");
     }
-    if let Some(centre) = &row.loads.centre {
-        let height = centre.centre_of_pressure_m;
-        let height = height.map_or_else(|| "none".to_owned(), |at| sheet.show(at, Length));
-        put("centre of pressure", [height, String::new(), String::new()], "");
-        if let Some(x_m) = centre.centre_of_pressure_sideways_m {
-            put("  sideways", [sheet.show(x_m, Length), String::new(), String::new()], "");
-        }
-    }
+    centre(sheet, row, &mut put);
     if row.loads_inward_bound.bolt_n.is_some() {
         put("bolt, largest share", three(|loads| loads.bolt_n, Force), "bolt_n");
     }
@@ -211,6 +207,41 @@ fn table_words(table: PartTable, shell: bool) -> String {
         )
     } else {
         format!("{} rows, exact but for the rounding to f32.", table.rows)
+    }
+}
+
+/// Where the force on a plane part acts.
+fn centre(sheet: &Sheet<'_>, row: &PartRow, put: &mut impl FnMut(&str, [String; 3], &str)) {
+    if let Some(centre) = &row.loads.centre {
+        let height = centre.centre_of_pressure_m;
+        let height = height.map_or_else(|| "none".to_owned(), |at| sheet.show(at, Length));
+        put("centre of pressure", [height, String::new(), String::new()], "");
+        if let Some(x_m) = centre.centre_of_pressure_sideways_m {
+            put("  sideways", [sheet.show(x_m, Length), String::new(), String::new()], "");
+        }
+    }
+}
+
+/// Where the force on a curved part acts.
+fn action(sheet: &Sheet<'_>, row: &PartRow, put: &mut impl FnMut(&str, [String; 3], &str)) {
+    let mut one = |label: &str, value: Option<f64>, quantity: Quantity| {
+        let shown = value.map_or_else(|| "none".to_owned(), |at| sheet.show(at, quantity));
+        put(label, [shown, String::new(), String::new()], "");
+    };
+    if let Some(line) = &row.line_of_action {
+        if line.force_y_n.is_some_and(|y_n| y_n.abs() > 0.0) {
+            one("force along y", line.force_y_n, Force);
+        }
+        one("angle of the force", line.angle_deg, Quantity::AngleDegrees);
+        if row.loads.force_x_n.is_some() {
+            one("  x acts at a height of", line.force_x_at_m, Length);
+        }
+        one("  z acts aside by", line.force_z_at_m, Length);
+        if let Some(moment) = line.moment_n_m {
+            for (label, value) in MOMENTS.into_iter().zip(moment) {
+                one(label, Some(value), Moment);
+            }
+        }
     }
 }
 

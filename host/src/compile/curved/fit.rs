@@ -7,7 +7,7 @@ use super::ExactRow;
 use strake_core::part::curved::RowKind;
 
 /// Nodes and weights of Gauss's rule of eight points on [0, 1].
-const GAUSS: [(f64, f64); 8] = [
+pub(crate) const GAUSS: [(f64, f64); 8] = [
     (0.019_855_071_751_231_9, 0.050_614_268_145_188_1),
     (0.101_666_761_293_186_6, 0.111_190_517_226_687_2),
     (0.237_233_795_041_835_5, 0.156_853_322_938_943_6),

@@ -288,19 +288,21 @@ impl Shell {
     fn tensions_at(&self, from_apex_m: f64, reference_m: f64, profiles: &Profiles) -> Membrane {
         let up = if self.apex_up { 1.0 } else { -1.0 };
         let height = |from_apex_m: f64| reference_m + up * (self.height_m - from_apex_m);
-        let kinks = profiles.kinks().into_iter().map(|z| self.height_m - up * (z - reference_m));
+        let kinks = profiles.kinks().into_iter();
+        let kinks = kinks.map(|z| self.height_m - up * (z - reference_m));
         let inside = kinks.filter(|s| (0.0..=self.height_m).contains(s));
         let parameters = inside.map(|s| self.parameter(s));
         let end = self.parameter(from_apex_m);
-        let [force, upper, lower, off] = integral(&stretches(0.0, end, parameters), |t| {
+        let sums = integral(&stretches(0.0, end, parameters), |t| {
             let here = self.at(t);
             let z_m = height(here.from_apex_m);
             let ring = 2.0 * PI * here.radius_m * here.radius_slope;
             let [p, upper, lower] = profiles.all().map(|one| one.at(z_m));
             let largest = p.abs().max(upper.abs()).max(lower.abs());
             let off = ERROR * largest + profiles.rounding_pa(z_m);
-            [p * ring, upper * ring, lower * ring, off * ring]
+            [p * ring, upper * ring, lower * ring, off * ring, ring]
         });
+        let [force, upper, lower, off, area] = sums;
         let here = self.at(end);
         let z_m = height(from_apex_m);
         let [p, p_upper, p_lower] = profiles.all().map(|one| one.at(z_m));
@@ -323,10 +325,28 @@ impl Shell {
         let taken = here.around_m * here.along_per_m;
         let around = |p: f64, along: f64| here.around_m * p - taken * along;
         let (low, high) = (along[1].min(along[2]), along[1].max(along[2]));
+        // Around the axis the gas, alike everywhere, counts by one number, unless a reading that
+        // holds it may mean liquid at the shell instead.
+        let foot_m = height(0.0).min(height(self.height_m));
+        let traded_pa = profiles.traded_pa;
+        let tied = traded_pa > 0.0 && profiles.upper.reaches(foot_m, traded_pa);
+        let per_gas = around(1.0, area * per_force);
+        let gases = [&profiles.upper, &profiles.lower].map(|one| one.gas_pa);
+        let of_gas = gases.map(|gas| gas * per_gas);
+        let [fuller, emptier] = [0, 1].map(|end| {
+            let along = along[end + 1] - gases[end] * area * per_force;
+            (here.around_m * ([p_upper, p_lower][end] - gases[end]), -taken * along)
+        });
+        let apart = [
+            of_gas[0].max(of_gas[1]) + fuller.0 + fuller.1.max(emptier.1),
+            of_gas[0].min(of_gas[1]) + emptier.0 + fuller.1.min(emptier.1),
+        ];
+        let together = [around(p_upper, low), around(p_lower, high)];
+        let [most, least] = if tied { together } else { apart };
         Membrane {
             at: at(along[0], around(p, along[0])),
-            most: high.max(around(p_upper, low)),
-            least: low.min(around(p_lower, high)),
+            most: high.max(most),
+            least: low.min(least),
             allowed: off * per_force * (1.0 + taken) + off_pa * here.around_m,
         }
     }

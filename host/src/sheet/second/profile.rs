@@ -6,7 +6,7 @@
 
 use super::contents::Contents;
 use crate::assess::Request;
-use crate::tank::TankFile;
+use crate::tank::{PressureReference, Sensing, TankFile};
 
 /// What single precision loses of a number, with a few operations behind it.
 const SINGLE: f64 = 2e-7;
@@ -48,6 +48,8 @@ pub(crate) struct Profiles {
     pub(crate) estimate: Profile,
     pub(crate) upper: Profile,
     pub(crate) lower: Profile,
+    /// Gas pressure that a reading may count as liquid, Pa: its whole band where it holds the gas.
+    pub(super) traded_pa: f64,
     /// Largest specific weight and height, and the largest pressure that was read: for rounding.
     scale: [f64; 3],
 }
@@ -61,6 +63,17 @@ impl Profile {
         };
         let outside: f64 = self.outside.iter().map(|&(h, w)| w * (h - z_m).max(0.0)).sum();
         self.gas_pa + inside - outside
+    }
+
+    /// Whether liquid stands above a height once so much more of it does under a head sensor.
+    pub(super) fn reaches(&self, z_m: f64, more_pa: f64) -> bool {
+        match &self.liquid {
+            Liquid::Column(layers) => column(layers, z_m) > 0.0,
+            Liquid::Envelope(one) => {
+                let excess_pa = one.excess_pa + more_pa;
+                Envelope { excess_pa, brim: None, ..*one }.at(z_m) > 0.0
+            }
+        }
     }
 
     /// Heights at which the pressure turns.
@@ -124,7 +137,12 @@ impl Profiles {
         let kinks = [&estimate, &upper, &lower].map(Profile::kinks);
         let highest_m = kinks.iter().flatten().map(|kink| kink.abs()).fold(0.0, f64::max);
         let scale = [contents.heaviest_n_m3(), highest_m, read_pa];
-        Self { estimate, upper, lower, scale }
+        let holds_gas = file.level.as_ref().is_some_and(|level| match level.sensing {
+            Sensing::Head { reference, .. } => reference.value != PressureReference::GasSpace,
+            _ => false,
+        });
+        let traded_pa = if holds_gas { upper.gas_pa - lower.gas_pa } else { 0.0 };
+        Self { estimate, upper, lower, traded_pa, scale }
     }
 
     /// The three in the order estimate, upper, lower.
