@@ -21,7 +21,7 @@ mod set_point;
 pub mod text;
 
 pub use action::{Action, action};
-pub use bending::{BentRow, PlateRow};
+pub use bending::{BentRow, EdgeRow, PlateRow};
 pub use centre::centre;
 pub use desk::Desk;
 pub use document::{

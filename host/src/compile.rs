@@ -19,7 +19,7 @@ mod part;
 mod shape;
 mod site;
 
-pub(crate) use bending::{Bending, Bent, Judged, judged};
+pub(crate) use bending::{Bending, Bent, Inward, Judged, Plates, judged};
 pub use contents::Contents;
 pub(crate) use cover::{about_centroid, latch_per_moment};
 pub(crate) use cover_rule::pressure_pa as cover_pressure_pa;
@@ -118,8 +118,8 @@ fn build(file: &TankFile, contents: &Contents, faults: &mut Faults) -> Plan {
     level::level(file, &mut plan, faults);
     device::alarm(file, &mut plan);
     device::logging(file, &mut plan);
-    for (stated, plate) in file.parts.iter().zip(judged(file)) {
-        if let Some(part) = part::part(file, stated, plate.as_ref(), &mut plan.numbers, faults)
+    for (stated, plates) in file.parts.iter().zip(judged(file)) {
+        if let Some(part) = part::part(file, stated, &plates, &mut plan.numbers, faults)
             && plan.parts.push(part).is_err()
         {
             faults.too_many(file.name.span, "parts", crate::tank::MAX_PARTS);

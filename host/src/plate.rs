@@ -141,6 +141,33 @@ pub struct DeflectionAt {
     pub weight: Table,
 }
 
+/// An edge of a rectangle, or a corner.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Edge {
+    /// The lowest.
+    Base,
+    /// Either side.
+    Side,
+    /// The highest.
+    Top,
+    /// A lower corner: the force that holds it down.
+    LowerCorner,
+    /// An upper corner, likewise.
+    UpperCorner,
+}
+
+/// What the plate presses on its support at one point of an edge, per width of the edge.
+#[derive(Clone, Debug)]
+pub struct ReactionAt {
+    /// The edge.
+    pub edge: Edge,
+    /// The point.
+    pub place: Place,
+    /// `w`: the reaction is `integral p w ds`, N/m, positive away from the liquid; of a corner N,
+    /// positive where it has to be held against rising towards the liquid.
+    pub weight: Table,
+}
+
 /// A solved plate.
 #[derive(Clone, Debug)]
 pub struct Solution {
@@ -148,6 +175,9 @@ pub struct Solution {
     pub moments: Vec<MomentAt>,
     /// Checked deflections.
     pub deflections: Vec<DeflectionAt>,
+    /// Reactions of the edges of a rectangle that is supported all round. The series of the others
+    /// give moments well and shear, a third derivative, badly: none.
+    pub reactions: Vec<ReactionAt>,
     /// What cutting the series off costs: largest difference between two orders over all checked
     /// moments and three probing loads, as a share of the largest moment under that load.
     pub series_error: f64,

@@ -93,6 +93,7 @@ const KEYS: [(&str, &[&str]); 19] = [
     (
         "plates",
         &[
+            "side",
             "edges",
             "elastic_modulus_pa",
             "poisson_ratio",
@@ -107,6 +108,11 @@ const KEYS: [(&str, &[&str]); 19] = [
             "bending_direction",
             "deflection_m",
             "deflection_bound_m",
+            "edge_base_n_m",
+            "edge_side_n_m",
+            "edge_top_n_m",
+            "corner_lower_n",
+            "corner_upper_n",
             "why_not",
         ],
     ),

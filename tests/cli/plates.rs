@@ -237,3 +237,45 @@ fn rerate_judges_plates_by_their_moments() {
     println!("{name}: {desk:.3} m by all points, {device:.3} m by the tables");
     assert!(device <= desk && device > 0.99 * desk, "{name}: {desk} {device}");
 }
+
+/// A plate against suction: the moment of the empty tank is that of even suction, turned inward,
+/// and the device says no less; filled over its top the pressure presses outward again.
+#[test]
+fn a_plate_against_suction_is_judged_by_its_own_capacity() {
+    let tank = TankText::example("plate_box", |text| {
+        let inward = "capacity_inward = [ { plate = { thickness = \"8 mm\", allowable_stress = \
+                      \"100 MPa\", edges = \"clamped\" }, material = \"steel\", basis = \
+                      \"drawing\" } ]\n\n[[panel]]\nname     = \"side wall\"";
+        text.replacen("\n[[panel]]\nname     = \"side wall\"", inward, 1)
+            .replace(
+                "vented = true",
+                "lowest = \"-3 kPa\"\npressure = \"0 kPa\"\nhighest = \"1 kPa\"",
+            )
+            .replace(
+                "response_time ",
+                "inward = { utilisation = 0.9, deadband = 0.02, on_delay = \
+                      \"5 s\", off_delay = \"60 s\" }\nresponse_time ",
+            )
+    });
+    let at = |level: &str| {
+        let (_, found) = document(&["assess", &tank.path(), "--level", level]);
+        part(&found, "end wall, lower").clone()
+    };
+    let empty = at("0 m");
+    let sheet =
+        Sheet { width: 1.0, length: 1.2, poisson: 0.3, held: [Held::Clamped; 3], mesh: (20, 48) };
+    let bent = sheet.bent(|_| 3e3, &[]);
+    let nodes = (0..=48).flat_map(|j| (0..=20).map(move |i| (i, j)));
+    let due = nodes.map(|(i, j)| bent.moments(i, j).principal()).fold(0.0, f64::max);
+    let stress = number(&empty["loads_inward_bound"]["stress_pa"]);
+    assert!((-stress * 0.008 * 0.008 / 6.0 / due - 1.0).abs() < 1e-2, "{stress} {due}");
+    let utilisation = number(&empty["utilisation_inward"]);
+    assert!((utilisation + stress / 100e6).abs() < 1e-6, "{utilisation} {stress}");
+    let inward = empty["plates"].as_array().unwrap().iter().find(|one| one["side"] == "inward");
+    let suction = number(&inward.unwrap()["device_pressure_pa"]);
+    let device = 3e3 / suction;
+    assert!(device >= utilisation && device < 1.3 * utilisation, "{device} {utilisation}");
+    let full = number(&at("2.2 m")["utilisation_inward"]);
+    // What is left is what the liquid turns inward between the edges and the middle.
+    assert!(full < 0.5 * utilisation, "{full} {utilisation}");
+}

@@ -1,6 +1,8 @@
 //! Panels judged by the bending of their plates: true moments at the desk, merged into the row that
 //! the core's loads gave.
 
+pub(super) mod inward;
+
 use super::desk::Desk;
 use super::document::{Limits, PartRow};
 use super::part::single;
@@ -15,6 +17,8 @@ use strake_core::part::{Part, acting};
 /// The bending of one plate, as the document shows it.
 #[derive(Clone, Debug, Serialize)]
 pub struct PlateRow {
+    /// outward or inward: what its capacity is for.
+    pub side: &'static str,
     /// How the edges are held.
     pub edges: &'static str,
     /// Modulus of elasticity that the deflection is worked out with.
@@ -39,9 +43,27 @@ pub struct PlateRow {
     /// Of the estimate; none when the theory does not hold at this state and up to the limit.
     #[serde(flatten)]
     pub bent: Option<BentRow>,
+    /// Of the estimate, where the series gives them.
+    #[serde(flatten)]
+    pub edges_carry: Option<EdgeRow>,
     /// Why it is not judged.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub why_not: Option<String>,
+}
+
+/// What a plate presses on its supports under the estimate.
+#[derive(Clone, Copy, Debug, Serialize)]
+pub struct EdgeRow {
+    /// At the middle of the base, N/m.
+    pub edge_base_n_m: f64,
+    /// Largest along a side, N/m.
+    pub edge_side_n_m: f64,
+    /// At the middle of the top, N/m.
+    pub edge_top_n_m: f64,
+    /// What holds each lower corner down, N.
+    pub corner_lower_n: f64,
+    /// What holds each upper corner down, N.
+    pub corner_upper_n: f64,
 }
 
 /// Where a plate bends most under the estimate.
@@ -79,11 +101,6 @@ pub(super) fn judge(
         let limits = PlateLimits::new(desk, bending, part);
         let why_not = why_not(desk, bending, part, (&now, &bound), &limits);
         row.plates.push(PlateRow {
-            edges: bending.plate.edges.value.as_str(),
-            elastic_modulus_pa: bending.elastic.modulus_pa,
-            poisson_ratio: bending.elastic.poisson,
-            taken_as_steel: bending.elastic.taken_as_steel,
-            series_error: bending.series_error(),
             device_points: tables.map(|tables| tables.points.len()),
             device_excess: tables.map(|tables| tables.excess),
             device_pressure_pa: match judged {
@@ -91,12 +108,38 @@ pub(super) fn judge(
                 Some(Judged::Moments { .. }) | None => None,
             },
             bent: why_not.is_none().then(|| shown(bending, &now, &bound)),
+            edges_carry: why_not.is_none().then(|| edges(bending, &states)).flatten(),
             why_not: why_not.clone(),
+            ..row_of(bending)
         });
         if why_not.is_none() {
             put(row, bending, (&now, &bound), limits);
         }
     }
+}
+
+/// What a plate is, without any number of its bending.
+fn row_of(bending: &Bending) -> PlateRow {
+    PlateRow {
+        side: "outward",
+        edges: bending.plate.edges.value.as_str(),
+        elastic_modulus_pa: bending.elastic.modulus_pa,
+        poisson_ratio: bending.elastic.poisson,
+        taken_as_steel: bending.elastic.taken_as_steel,
+        series_error: bending.series_error(),
+        device_points: None,
+        device_excess: None,
+        device_pressure_pa: None,
+        bent: None,
+        edges_carry: None,
+        why_not: None,
+    }
+}
+
+fn edges(bending: &Bending, states: &States<1>) -> Option<EdgeRow> {
+    let all = bending.reactions(&states.estimate, 0)?;
+    let [edge_base_n_m, edge_side_n_m, edge_top_n_m, corner_lower_n, corner_upper_n] = all;
+    Some(EdgeRow { edge_base_n_m, edge_side_n_m, edge_top_n_m, corner_lower_n, corner_upper_n })
 }
 
 fn shown(bending: &Bending, now: &Bent, bound: &Bent) -> BentRow {

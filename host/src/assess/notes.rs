@@ -6,7 +6,7 @@ use super::judged;
 use super::part::single;
 use super::request::{Request, Source};
 use super::securing;
-use crate::compile::{Bending, HEIGHT_MAX_M, Judged, cover_pressure_pa, judged};
+use crate::compile::{Bending, HEIGHT_MAX_M, Inward, Judged, cover_pressure_pa, judged};
 use crate::inverse::first_reached;
 use crate::tank::{Axis, Capacity, Hatch, Part as Stated, Rating, Secured, TankFile, Vessel};
 use crate::units::Quantity::{Length, Pressure, Temperature};
@@ -60,8 +60,12 @@ pub(crate) fn not_judged(file: &TankFile, desk: &Desk, units: UnitSystem) -> Vec
 pub(crate) fn plates_not_judged(parts: &[PartRow]) -> Vec<NotJudged> {
     let mut found = Vec::new();
     for row in parts {
-        for why in row.plates.iter().filter_map(|plate| plate.why_not.as_ref()) {
-            found.push(NotJudged { name: row.name.clone(), why: format!("outward: {why}") });
+        let withheld = row
+            .plates
+            .iter()
+            .filter_map(|plate| plate.why_not.as_ref().map(|why| format!("{}: {why}", plate.side)));
+        for why in withheld {
+            found.push(NotJudged { name: row.name.clone(), why });
         }
     }
     found
@@ -100,14 +104,26 @@ fn by_what(judged: &Judged, units: UnitSystem) -> String {
 pub(crate) fn plate_cautions(file: &TankFile, units: UnitSystem, who: &str) -> Vec<String> {
     let (mut found, mut upright) = (Vec::new(), false);
     for (part, judged) in file.parts.iter().zip(judged(file)) {
-        let plates = Bending::of_part(part);
+        let (plates, inward) = (Bending::of_part(part), Bending::inward_of_part(part));
         let name = part.name();
-        match &judged {
+        match &judged.outward {
             Some(judged) => found.push(format!("{name}: {who} {}", by_what(judged, units))),
             None if plates.is_empty() => {}
             None => found.push(format!("{name}: the device does not judge the plate")),
         }
-        for bending in plates {
+        match judged.inward {
+            Some(Inward::Suction(pa)) => found.push(format!(
+                "{name}: {who} the plate inward by the suction at its highest edge taken as even, \
+                 up to {}",
+                format(pa, Pressure, units)
+            )),
+            Some(Inward::Unjudged(why)) => {
+                found.push(format!("{name}: the device does not judge the plate inward: {why}"));
+            }
+            None if inward.is_empty() => {}
+            None => found.push(format!("{name}: the device does not judge the plate inward")),
+        }
+        for bending in plates.into_iter().chain(inward) {
             if bending.elastic.taken_as_steel {
                 found.push(format!(
                     "{name}: no material is stated, the plate is taken as steel, 200 GPa and 0.3"

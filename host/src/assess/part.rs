@@ -8,7 +8,7 @@ use super::document::{Capacity, Judgement, Limits, Loads, Lowest, PartRow, PartT
 use super::request::Request;
 use super::securing;
 use crate::compile::{
-    self, Bending, Judged, about_centroid, cover_pressure_pa, judged, without_plates,
+    self, Bending, Plates, about_centroid, cover_pressure_pa, judged, without_plates,
 };
 use crate::inverse::{self, PartLimits};
 use crate::tank::{self, Part as Stated, PartKind, Plane, Rating, TankFile};
@@ -25,14 +25,16 @@ pub(super) fn rows(file: &TankFile, desk: &Desk, request: &Request) -> Vec<PartR
     let parts = file.parts.iter().zip(&desk.plan().parts);
     let states = desk.as_seen(Lane([level_m]));
     let plates_judged = judged(file);
-    let judged = |((stated, part), judged): ((&Stated, &Part), &Option<Judged>)| {
+    let judged = |((stated, part), judged): ((&Stated, &Part), &Plates)| {
         let plates = Bending::of_part(stated);
-        if plates.is_empty() {
+        let inward = Bending::inward_of_part(stated);
+        if plates.is_empty() && inward.is_empty() {
             return row(file, desk, stated, part, level_m);
         }
         let part = without_plates(stated, part);
         let mut row = row(file, desk, stated, &part, level_m);
-        bending::judge(desk, (&plates, judged.as_ref()), &part, &states, &mut row);
+        bending::judge(desk, (&plates, judged.outward.as_ref()), &part, &states, &mut row);
+        bending::inward::judge(desk, (&inward, judged.inward), &part, &states, &mut row);
         row
     };
     parts.zip(&plates_judged).map(judged).collect()

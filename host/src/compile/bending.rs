@@ -3,11 +3,11 @@
 
 mod device;
 
-pub(crate) use device::{Judged, judged};
+pub(crate) use device::{Inward, Judged, Plates, judged};
 
 use crate::plate::{
-    DEFLECTION_PER_THICKNESS_MAX, Direction, Edges, Outline, Place, SPAN_PER_THICKNESS_MIN,
-    Weighted, rigidity_n_m, solve,
+    DEFLECTION_PER_THICKNESS_MAX, Direction, Edge, Edges, Outline, Place, ReactionAt,
+    SPAN_PER_THICKNESS_MIN, Table, Weighted, rigidity_n_m, solve,
 };
 use crate::tank::{Capacity, Elastic, Panel, PanelPlate, Part as Stated, Rating, outline};
 use std::collections::VecDeque;
@@ -36,10 +36,20 @@ struct Solved {
     series_error: f64,
     moments: Vec<(Place, Direction, Weighted)>,
     deflections: Vec<Weighted>,
+    reactions: Vec<ReactionAt>,
 }
 
 /// What the functions follow from.
 type Key = (Outline, Edges, f64);
+
+/// A weighting with the sign that even pressure from the liquid gives its moment.
+fn outward(weight: &Table) -> Table {
+    if weight.total() < 0.0 {
+        Table::new(weight.points().map(|(s_m, w)| (s_m, -w)))
+    } else {
+        weight.clone()
+    }
+}
 
 /// The last plates solved: an inverse question compiles one file many times.
 static SOLVED: Mutex<VecDeque<(Key, Arc<Solved>)>> = Mutex::new(VecDeque::new());
@@ -59,8 +69,11 @@ fn solved(key: Key) -> Option<Arc<Solved>> {
     let moments = solution.moments.into_iter();
     let new = Arc::new(Solved {
         series_error: solution.series_error,
-        moments: moments.map(|one| (one.place, one.direction, one.weight.split())).collect(),
+        moments: moments
+            .map(|one| (one.place, one.direction, outward(&one.weight).split()))
+            .collect(),
         deflections: solution.deflections.iter().map(|one| one.weight.split()).collect(),
+        reactions: solution.reactions,
     });
     if let Ok(mut kept) = SOLVED.lock() {
         kept.truncate(KEPT - 1);
@@ -72,7 +85,7 @@ fn solved(key: Key) -> Option<Arc<Solved>> {
 /// What bends most.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(crate) struct Bent {
-    /// Largest moment by size, N m/m.
+    /// Largest moment, N m/m; positive in the direction that was asked for.
     pub(crate) moment_n: f64,
     /// Where it stands.
     pub(crate) place: Place,
@@ -86,6 +99,11 @@ impl Bending {
     /// The plates among the outward capacities of a part.
     pub(crate) fn of_part(stated: &Stated) -> Vec<Self> {
         Self::among(stated, stated.capacity())
+    }
+
+    /// The plates among the inward capacities of a part.
+    pub(crate) fn inward_of_part(stated: &Stated) -> Vec<Self> {
+        Self::among(stated, stated.capacity_inward())
     }
 
     fn among(stated: &Stated, ratings: &[Rating]) -> Vec<Self> {
@@ -120,20 +138,55 @@ impl Bending {
         self.solved.series_error
     }
 
-    /// Moment and deflection under one pressure, the given lane of it.
+    /// Reaction of largest size at the base, a side and the top under one pressure, N/m, and of a
+    /// lower and an upper corner, N; `None` where the series gives none.
+    pub(crate) fn reactions<const N: usize>(
+        &self,
+        pressure: &Pressure<N>,
+        lane: usize,
+    ) -> Option<[f64; 5]> {
+        let edges = [Edge::Base, Edge::Side, Edge::Top, Edge::LowerCorner, Edge::UpperCorner];
+        let each = edges.map(|edge| {
+            let own = self.solved.reactions.iter().filter(|one| one.edge == edge);
+            let loads = own.map(|one| self.load(&one.weight, pressure, lane));
+            loads.max_by(|a, b| a.abs().total_cmp(&b.abs())).unwrap_or(0.0)
+        });
+        (!self.solved.reactions.is_empty()).then_some(each)
+    }
+
+    /// Largest outward moment and deflection under one pressure, the given lane of it.
     pub(crate) fn under<const N: usize>(&self, pressure: &Pressure<N>, lane: usize) -> Bent {
-        self.most(|weight| self.load(&weight.whole, pressure, lane).abs())
+        self.most(|weight| [self.load(&weight.whole, pressure, lane); 2], 1.0)
     }
 
     /// The largest that any pressure between the lower and the upper state gives.
     pub(crate) fn bound<const N: usize>(&self, states: &States<N>, lane: usize) -> Bent {
+        self.most(|weight| self.between(weight, states, lane), 1.0)
+    }
+
+    /// Largest inward moment under one pressure.
+    pub(crate) fn inward<const N: usize>(&self, pressure: &Pressure<N>, lane: usize) -> Bent {
+        self.most(|weight| [self.load(&weight.whole, pressure, lane); 2], -1.0)
+    }
+
+    /// Likewise of any pressure between the lower and the upper state.
+    pub(crate) fn inward_bound<const N: usize>(&self, states: &States<N>, lane: usize) -> Bent {
+        self.most(|weight| self.between(weight, states, lane), -1.0)
+    }
+
+    /// The largest and the least load that any pressure between the lower and the upper state
+    /// gives.
+    fn between<const N: usize>(
+        &self,
+        weight: &Weighted,
+        states: &States<N>,
+        lane: usize,
+    ) -> [f64; 2] {
         let (upper, lower) = (&states.upper, &states.lower);
-        self.most(|weight| {
-            let at = |table, pressure| self.load(table, pressure, lane);
-            let most = at(&weight.positive, upper) - at(&weight.negative, lower);
-            let least = at(&weight.positive, lower) - at(&weight.negative, upper);
-            most.abs().max(least.abs())
-        })
+        let at = |table, pressure| self.load(table, pressure, lane);
+        let most = at(&weight.positive, upper) - at(&weight.negative, lower);
+        let least = at(&weight.positive, lower) - at(&weight.negative, upper);
+        [most, least]
     }
 
     /// The influence function of a moment: its table up the slope, with both parts.
@@ -145,15 +198,19 @@ impl Bending {
         moments.find(|(place, direction, _)| here(place, *direction)).map(|(.., weight)| weight)
     }
 
-    fn most(&self, load: impl Fn(&Weighted) -> f64) -> Bent {
+    /// What bends most, outward or inward by `sign`; the deflection either way.
+    fn most(&self, load: impl Fn(&Weighted) -> [f64; 2], sign: f64) -> Bent {
+        let signed = |[most, least]: [f64; 2]| if sign < 0.0 { -least } else { most };
+        let deflections = self.solved.deflections.iter().map(&load);
+        let sized = deflections.map(|[most, least]| most.abs().max(least.abs()));
         let mut bent = Bent {
             moment_n: 0.0,
             place: Place { x_m: 0.0, s_m: 0.0 },
             direction: Direction::Up,
-            deflection_n_m2: self.solved.deflections.iter().map(&load).fold(0.0, f64::max),
+            deflection_n_m2: sized.fold(0.0, f64::max),
         };
         for (place, direction, weight) in &self.solved.moments {
-            let moment_n = load(weight);
+            let moment_n = signed(load(weight));
             if moment_n > bent.moment_n {
                 bent = Bent { moment_n, place: *place, direction: *direction, ..bent };
             }
@@ -162,12 +219,7 @@ impl Bending {
     }
 
     /// `integral p w ds` by the one formula: the surfaces as heights up the slope.
-    fn load<const N: usize>(
-        &self,
-        table: &crate::plate::Table,
-        pressure: &Pressure<N>,
-        lane: usize,
-    ) -> f64 {
+    fn load<const N: usize>(&self, table: &Table, pressure: &Pressure<N>, lane: usize) -> f64 {
         let mut load = f64::from(pressure.gas_pa.lane(lane)) * table.total();
         for surface in pressure.surfaces() {
             let step_n_m3 = f64::from(surface.step_n_m3.lane(lane));

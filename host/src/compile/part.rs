@@ -1,6 +1,6 @@
 //! Parts: geometry, and in each direction the smallest of equal capacities.
 
-use super::bending::Judged;
+use super::bending::{Inward, Judged, Plates};
 use super::curved::{self, MESH_ERROR_MAX, PLACES, Table};
 use super::faults::Faults;
 use super::number::{located, single};
@@ -27,7 +27,7 @@ const SIDEWAYS_MAX: f64 = 1e-4;
 pub(super) fn part(
     file: &TankFile,
     stated: &Stated,
-    plate: Option<&Judged>,
+    plates: &Plates,
     numbers: &mut Vec<f32, NUMBERS_MAX>,
     faults: &mut Faults,
 ) -> Option<Part> {
@@ -39,7 +39,7 @@ pub(super) fn part(
         Stated::Course(course) => Some(self::course(file, course, faults)?),
         Stated::Panel(panel) => {
             let shape = plane_shape(&panel.plane, &mut list);
-            shape.and_then(|shape| bent(&panel.plane, shape, plate, &mut list))
+            shape.and_then(|shape| bent(&panel.plane, shape, plates.outward.as_ref(), &mut list))
         }
         Stated::Hatch(hatch) => plane(hatch, file, &mut list),
         Stated::Curved(part) => {
@@ -56,8 +56,8 @@ pub(super) fn part(
         geometry,
         bottom_m: single(heights.bottom_m),
         top_m: single(heights.top_m),
-        outward: with_plates(plate, capacities(stated, true)),
-        inward: capacities(stated, false),
+        outward: with_plates(plates.outward.as_ref(), capacities(stated, true)),
+        inward: with_inward(plates.inward, capacities(stated, false)),
         designed_for: Vec::new(),
         outside: outside_mask(file, stated.name()),
     };
@@ -125,17 +125,30 @@ fn with_plates(plate: Option<&Judged>, mut capacities: Capacities) -> Capacities
             capacities.moment_n_m = strake_core::part::Stated::new(single(moment_n));
         }
         Some(Judged::Level(pressure_pa) | Judged::Substitute(pressure_pa, _)) => {
-            let pressure_pa = single(pressure_pa * (1.0 - ROUNDING));
-            let least = capacities.pressure_pa.filter(|stated_pa| stated_pa.get() < pressure_pa);
-            capacities.pressure_pa = least.or_else(|| strake_core::part::Stated::new(pressure_pa));
+            put_pressure(&mut capacities, *pressure_pa);
         }
     }
     capacities
 }
 
+/// With what stands for the inward plates.
+fn with_inward(plate: Option<Inward>, mut capacities: Capacities) -> Capacities {
+    if let Some(Inward::Suction(pressure_pa)) = plate {
+        put_pressure(&mut capacities, pressure_pa);
+    }
+    capacities
+}
+
+fn put_pressure(capacities: &mut Capacities, pressure_pa: f64) {
+    let pressure_pa = single(pressure_pa * (1.0 - ROUNDING));
+    let least = capacities.pressure_pa.filter(|stated_pa| stated_pa.get() < pressure_pa);
+    capacities.pressure_pa = least.or_else(|| strake_core::part::Stated::new(pressure_pa));
+}
+
 /// The part without what stands for its plates, for the desk, which has their moments.
 pub(crate) fn without_plates(stated: &Stated, part: &Part) -> Part {
-    Part { outward: capacities(stated, true), ..part.clone() }
+    let [outward, inward] = [true, false].map(|outward| capacities(stated, outward));
+    Part { outward, inward, ..part.clone() }
 }
 
 /// What a table of a mesh cannot hold.

@@ -22,7 +22,8 @@ pub(super) fn solve(radius_m: f64, clamped: bool, poisson: f64) -> Result<Soluti
     let (fine, coarse) = (fine?, coarse?);
     let moments = fine.moments(radius_m);
     let series_error = difference(&moments, &coarse.moments(radius_m), 2.0 * radius_m);
-    Ok(Solution { moments, deflections: fine.deflections(radius_m), series_error })
+    let deflections = fine.deflections(radius_m);
+    Ok(Solution { moments, deflections, reactions: Vec::new(), series_error })
 }
 
 /// One function at one radius: value, curvatures along and across the radius, twist.

@@ -61,6 +61,11 @@ pub struct Governing {
 }
 
 impl Governing {
+    /// The weighting of each point up the slope, on a slope with that sine.
+    pub fn tables(&self, sine: f64) -> impl Iterator<Item = Table> + '_ {
+        self.points.iter().map(move |nodes| table(nodes, sine))
+    }
+
     /// Nodes of all points.
     #[must_use]
     pub fn nodes(&self) -> usize {
@@ -147,6 +152,11 @@ struct Chosen {
     under: [Vec<f64>; 2],
 }
 
+/// The table that the plan's nodes are.
+fn table(nodes: &[[f32; 2]], sine: f64) -> Table {
+    Table::new(nodes.iter().map(|&[y_m, w]| (f64::from(y_m) / sine, f64::from(w) * sine)))
+}
+
 #[expect(clippy::cast_possible_truncation, reason = "numbers of a plan")]
 const fn single(value: f64) -> f32 {
     value as f32
@@ -212,10 +222,8 @@ impl Search {
         nodes.iter().map(|&(s_m, w)| [single(s_m * sine), single(w / sine)]).collect()
     }
 
-    /// The table that the plan's nodes are.
     fn table(&self, nodes: &[[f32; 2]]) -> Table {
-        let (_, sine) = self.scale;
-        Table::new(nodes.iter().map(|&[y_m, w]| (f64::from(y_m) / sine, f64::from(w) * sine)))
+        table(nodes, self.scale.1)
     }
 
     fn add(&mut self, nodes: &[(f64, f64)]) {

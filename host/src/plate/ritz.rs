@@ -33,7 +33,8 @@ pub(super) fn solve(
     let coarse = Ritz::new(width_m, length_m, edges, poisson, (across - 2, up - 4))?;
     let moments = fine.moments();
     let series_error = difference(&moments, &coarse.moments(), length_m);
-    Ok(Solution { moments, deflections: fine.deflections(), series_error })
+    let deflections = fine.deflections();
+    Ok(Solution { moments, deflections, reactions: Vec::new(), series_error })
 }
 
 /// A plate of one order.

@@ -10,8 +10,8 @@
 //! ```
 
 use super::{
-    DeflectionAt, Direction, Edges, MomentAt, Place, STRETCHES, Solution, Table, difference, float,
-    rectangle,
+    DeflectionAt, Direction, Edge, Edges, MomentAt, POINT_STRETCHES, Place, ReactionAt, STRETCHES,
+    Solution, Table, difference, float, rectangle,
 };
 use std::f64::consts::PI;
 
@@ -22,7 +22,8 @@ pub(super) fn solve(width_m: f64, length_m: f64, poisson: f64) -> Solution {
     let [fine, coarse] = TERMS.map(|terms| Series::new(width_m, length_m, poisson, terms));
     let moments = fine.moments();
     let series_error = difference(&moments, &coarse.moments(), length_m);
-    Solution { moments, deflections: fine.deflections(), series_error }
+    let (deflections, reactions) = (fine.deflections(), fine.reactions());
+    Solution { moments, deflections, reactions, series_error }
 }
 
 /// The part across the width of one term at one place, times `a^4` (value), `a^3` (first), ...
@@ -30,6 +31,7 @@ struct Across {
     value: f64,
     first: f64,
     second: f64,
+    third: f64,
 }
 
 impl Across {
@@ -44,11 +46,12 @@ impl Across {
             value: 1.0 - a * cosh + 0.5 * v * sinh,
             first: -a * sinh + 0.5 * (sinh + v * cosh),
             second: -a * cosh + 0.5 * (2.0 * cosh + v * sinh),
+            third: -a * sinh + 0.5 * (3.0 * sinh + v * cosh),
         }
     }
 }
 
-struct Series {
+pub(super) struct Series {
     width_m: f64,
     length_m: f64,
     poisson: f64,
@@ -58,7 +61,7 @@ struct Series {
 }
 
 impl Series {
-    fn new(width_m: f64, length_m: f64, poisson: f64, terms: usize) -> Self {
+    pub(super) fn new(width_m: f64, length_m: f64, poisson: f64, terms: usize) -> Self {
         let turn = 2 * STRETCHES;
         let sines = (0..turn).map(|k| (PI * float(k) / float(STRETCHES)).sin()).collect();
         Self { width_m, length_m, poisson, terms, sines }
@@ -93,6 +96,36 @@ impl Series {
             DeflectionAt { place, weight }
         };
         places.into_iter().map(at).collect()
+    }
+
+    fn reactions(&self) -> Vec<ReactionAt> {
+        let half_m = 0.5 * self.width_m;
+        let at = |edge, x_m, s_m| self.reaction(edge, Place { x_m, s_m });
+        let mut found = vec![at(Edge::Base, 0.0, 0.0), at(Edge::Top, 0.0, self.length_m)];
+        let heights = (1..POINT_STRETCHES).map(|i| float(i) / float(POINT_STRETCHES));
+        found.extend(heights.map(|share| at(Edge::Side, half_m, share * self.length_m)));
+        found.push(at(Edge::LowerCorner, half_m, 0.0));
+        found.push(at(Edge::UpperCorner, half_m, self.length_m));
+        found
+    }
+
+    /// `V = -D (w_nnn + (2 - nu) w_ntt)` of an edge, n its outward normal (art. 22, eq. g); the
+    /// corner force `2 D (1 - nu) w_xs` (eq. i), as it holds the corner down.
+    pub(super) fn reaction(&self, edge: Edge, place: Place) -> ReactionAt {
+        let nu = self.poisson;
+        let weight = self.table(place, |alpha, across, phase| {
+            let (sine, cosine) = phase.sin_cos();
+            match edge {
+                Edge::Side => sine * (across.third - (2.0 - nu) * across.first) / alpha,
+                Edge::Base => (across.value - (2.0 - nu) * across.second) / alpha,
+                Edge::Top => -cosine * (across.value - (2.0 - nu) * across.second) / alpha,
+                Edge::LowerCorner | Edge::UpperCorner => {
+                    let sign = if edge == Edge::LowerCorner { -1.0 } else { 1.0 };
+                    sign * 2.0 * (1.0 - nu) * across.first * cosine / (alpha * alpha)
+                }
+            }
+        });
+        ReactionAt { edge, place, weight }
     }
 
     /// `w(s) = 2/L sum k_n sin(a_n s)` as a table; `pick` gives `k_n`.

@@ -1,4 +1,5 @@
-use super::{Direction, Edges, Outline, PlateError, Solution, Table, float, solve};
+use super::supported;
+use super::{Direction, Edge, Edges, Outline, Place, PlateError, Solution, Table, float, solve};
 
 fn rectangle(width_m: f64, length_m: f64, edges: Edges) -> Solution {
     solve(Outline::Rectangle { width_m, length_m }, edges, 0.3).unwrap()
@@ -238,5 +239,48 @@ fn what_is_no_plate_is_refused() {
         (Outline::Circle { diameter_m: -1.0 }, Edges::Clamped, 0.3, PlateError::Size),
     ] {
         assert_eq!(solve(outline, edges, nu).unwrap_err(), error);
+    }
+}
+
+/// The edges carry the load, less what holds the corners down; moments about the base agree, too.
+/// Square, uniform: 0.420 q a at the middle of an edge, 0.065 q a² at a corner (Theory of Plates
+/// and Shells, table 8).
+#[test]
+fn the_edges_of_a_supported_plate_carry_its_load() {
+    const POINTS: usize = 100;
+    for (width_m, level_m) in [(1.0, 1e9), (1.0, 1.0), (1.6, 0.6), (0.5, 1.7)] {
+        let series = supported::Series::new(width_m, 1.0, 0.3, 512);
+        let load = |weight: &Table| weight.ramp(level_m) / level_m;
+        let at = |edge, x_m, s_m| load(&series.reaction(edge, Place { x_m, s_m }).weight);
+        // The middle rule, each half of the width counted twice.
+        let share = |i: usize| (float(i) + 0.5) / float(POINTS);
+        let across = |edge, s_m| -> f64 {
+            let each = (0..POINTS).map(|i| at(edge, 0.5 * width_m * share(i), s_m));
+            each.sum::<f64>() * width_m / float(POINTS)
+        };
+        let sides = (0..POINTS).map(|i| (share(i), at(Edge::Side, 0.5 * width_m, share(i))));
+        let sides: Vec<(f64, f64)> = sides.collect();
+        let side: f64 = 2.0 * sides.iter().map(|one| one.1).sum::<f64>() / float(POINTS);
+        let turned: f64 = 2.0 * sides.iter().map(|one| one.0 * one.1).sum::<f64>() / float(POINTS);
+        let (base, top) = (across(Edge::Base, 0.0), across(Edge::Top, 1.0));
+        let corner = |edge, s_m| 2.0 * at(edge, 0.5 * width_m, s_m);
+        let (lower, upper) = (corner(Edge::LowerCorner, 0.0), corner(Edge::UpperCorner, 1.0));
+        // Pressure from one at the base to zero at the level.
+        let wet = level_m.min(1.0);
+        let force = width_m * wet * (1.0 - 0.5 * wet / level_m);
+        let moment = width_m * wet * wet * (0.5 - wet / (3.0 * level_m));
+        let carried = base + side + top - lower - upper;
+        assert!((carried / force - 1.0).abs() < 5e-3, "{width_m} {level_m}: {carried} {force}");
+        let about_base = turned + top - upper;
+        assert!((about_base / moment - 1.0).abs() < 5e-3, "{about_base} {moment}");
+        if (width_m - 1.0).abs() < 1e-9 && level_m > 1e8 {
+            for (edge, x_m, s_m) in
+                [(Edge::Base, 0.0, 0.0), (Edge::Top, 0.0, 1.0), (Edge::Side, 0.5, 0.5)]
+            {
+                let found = at(edge, x_m, s_m);
+                assert!((found - 0.420).abs() < 1e-3, "{edge:?}: {found}");
+            }
+            assert!((0.5 * lower - 0.065).abs() < 5e-4 && (0.5 * upper - 0.065).abs() < 5e-4);
+        }
     }
 }

@@ -4,7 +4,7 @@ use super::Sheet;
 use crate::assess::document::PartRow;
 use crate::page::Page;
 use crate::tank::PanelPlate;
-use crate::units::Quantity::{Length, Pressure};
+use crate::units::Quantity::{Force, Length, LineLoad, Pressure};
 use crate::units::UnitSystem;
 
 /// Pound-force, exact (NIST SP 811).
@@ -29,7 +29,7 @@ pub(super) fn lines(sheet: &Sheet<'_>, page: &mut Page, row: &PartRow) {
     for plate in &row.plates {
         let Some(bent) = plate.bent else {
             let why = plate.why_not.as_deref().unwrap_or("no number");
-            page.paragraph("  plate: ", &format!("not judged, {why}."));
+            page.paragraph("  plate: ", &format!("not judged {}, {why}.", plate.side));
             continue;
         };
         let (moment, modulus) = match sheet.units {
@@ -46,10 +46,11 @@ pub(super) fn lines(sheet: &Sheet<'_>, page: &mut Page, row: &PartRow) {
         page.paragraph(
             "  plate: ",
             &format!(
-                "{}, true moments by series (error {:.1e}); largest {moment} {}, {} up the slope \
+                "{}, true moments by series (error {:.1e}); largest{} {moment} {}, {} up the slope \
                  and {} sideways; sags by {}, at the bound {}, with {modulus} and {}.",
                 plate.edges,
                 plate.series_error,
+                if plate.side == "inward" { " inward" } else { "" },
                 bent.bending_direction,
                 sheet.show(bent.bending_at_slope_m, Length),
                 sheet.show(bent.bending_at_x_m, Length),
@@ -58,5 +59,19 @@ pub(super) fn lines(sheet: &Sheet<'_>, page: &mut Page, row: &PartRow) {
                 plate.poisson_ratio,
             ),
         );
+        if let Some(edges) = &plate.edges_carry {
+            page.paragraph(
+                "  edges: ",
+                &format!(
+                    "the plate presses on its base by {}, on a side by up to {}, on its top by {}; \
+                     each lower corner is held down by {}, each upper one by {}.",
+                    sheet.show(edges.edge_base_n_m, LineLoad),
+                    sheet.show(edges.edge_side_n_m, LineLoad),
+                    sheet.show(edges.edge_top_n_m, LineLoad),
+                    sheet.show(edges.corner_lower_n, Force),
+                    sheet.show(edges.corner_upper_n, Force),
+                ),
+            );
+        }
     }
 }

@@ -5,7 +5,7 @@ use super::{Bending, Key};
 use crate::compile::faults::Faults;
 use crate::compile::part::{outside_mask, part};
 use crate::plate::governing::{Checked, Governing, choose};
-use crate::plate::{DEFLECTION_PER_THICKNESS_MAX, rigidity_n_m};
+use crate::plate::{DEFLECTION_PER_THICKNESS_MAX, Table, rigidity_n_m};
 use crate::tank::TankFile;
 use std::collections::VecDeque;
 use std::sync::{Arc, Mutex};
@@ -31,6 +31,25 @@ pub(crate) enum Judged {
     Substitute(f64, &'static str),
 }
 
+/// What stands for the plates of a panel on the device, outward and inward.
+#[derive(Clone, Debug, Default)]
+pub(crate) struct Plates {
+    /// `None` without a plate for which the theory holds.
+    pub(crate) outward: Option<Judged>,
+    /// Likewise.
+    pub(crate) inward: Option<Inward>,
+}
+
+/// What stands for the inward plates of a panel.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(crate) enum Inward {
+    /// Suction at which, even over the plate, its moment is the capacity, less what the liquid
+    /// that presses outward may turn inward elsewhere, Pa.
+    Suction(f64),
+    /// No such pressure is left, and why.
+    Unjudged(&'static str),
+}
+
 /// What the tables follow from: each plate with the factors of its moments and deflections, length
 /// and sine, numbers.
 type Question = (Vec<(Key, [u64; 2])>, [u64; 2], usize);
@@ -40,25 +59,24 @@ static ANSWERED: Mutex<VecDeque<(Question, Option<Arc<Governing>>)>> = Mutex::ne
 /// Answers kept: two for each part of a tank.
 const KEPT: usize = 2 * crate::tank::MAX_PARTS;
 
-/// What stands for the plates of each part, in the order of the file; `None` of a part without any
-/// for which the theory holds. Upright plates share what the shapes leave of the plan's numbers.
-pub(crate) fn judged(file: &TankFile) -> Vec<Option<Judged>> {
-    let all: Vec<(Vec<Bending>, bool)> = file
-        .parts
-        .iter()
-        .map(|stated| {
-            let plates = Bending::of_part(stated).into_iter();
-            let sound = plates.filter(|one| one.too_thick().is_none()).collect();
-            (sound, outside_mask(file, stated.name()) != 0)
-        })
-        .collect();
+/// What stands for the plates of each part, in the order of the file. Upright plates share what the
+/// shapes leave of the plan's numbers.
+pub(crate) fn judged(file: &TankFile) -> Vec<Plates> {
+    let sound = |plates: Vec<Bending>| -> Vec<Bending> {
+        plates.into_iter().filter(|one| one.too_thick().is_none()).collect()
+    };
+    let all = file.parts.iter().map(|stated| {
+        let outside = outside_mask(file, stated.name()) != 0;
+        (sound(Bending::of_part(stated)), outside)
+    });
+    let all: Vec<(Vec<Bending>, bool)> = all.collect();
     let wants = |(plates, outside): &(Vec<Bending>, bool)| {
         !outside && plates.iter().any(|one| one.sine > 0.0)
     };
     let mut sharing = all.iter().filter(|one| wants(one)).count();
     let mut left = if sharing > 0 { NUMBERS_MAX.saturating_sub(of_shapes(file)) } else { 0 };
     let mut found = Vec::with_capacity(all.len());
-    for one in &all {
+    for (stated, one) in file.parts.iter().zip(&all) {
         let own = if wants(one) { left / sharing.max(1) } else { 0 };
         let judged = of_panel(&one.0, one.1, own);
         if wants(one) {
@@ -67,7 +85,10 @@ pub(crate) fn judged(file: &TankFile) -> Vec<Option<Judged>> {
         if let Some(Judged::Moments { tables, .. }) = &judged {
             left -= left.min(NODE_NUMBERS * tables.nodes());
         }
-        found.push(judged);
+        let inward = sound(Bending::inward_of_part(stated));
+        let inward = inward.iter().map(|plate| plate.suction(judged.as_ref()));
+        let inward = inward.min_by(|a, b| a.pressure_pa().total_cmp(&b.pressure_pa()));
+        found.push(Plates { outward: judged, inward });
     }
     found
 }
@@ -77,7 +98,7 @@ fn of_shapes(file: &TankFile) -> usize {
     let (mut numbers, mut faults) = (heapless::Vec::new(), Faults::default());
     for stated in &file.parts {
         // What does not fit is a finding when the plan is made.
-        let _ = part(file, stated, None, &mut numbers, &mut faults);
+        let _ = part(file, stated, &Plates::default(), &mut numbers, &mut faults);
     }
     numbers.len()
 }
@@ -138,7 +159,93 @@ fn tables(plates: &[Bending], moment_n: f64, numbers: usize) -> Option<Arc<Gover
     answer
 }
 
+/// How much of what tables judge outward may bend a point inward.
+struct Reversal {
+    tables: Vec<Table>,
+    levels_m: Vec<f64>,
+    /// Largest moment of the tables under even unit pressure.
+    even: f64,
+}
+
+impl Reversal {
+    fn new(outward: &Judged, (length_m, sine): (f64, f64)) -> Option<Self> {
+        let Judged::Moments { tables, .. } = outward else { return None };
+        let tables: Vec<Table> = tables.tables(sine).collect();
+        let levels_m = (1..=512).map(|i| length_m * f64::from(i) / 512.0).collect();
+        let even = tables.iter().map(Table::total).fold(0.0, f64::max);
+        Some(Self { tables, levels_m, even })
+    }
+
+    /// The least number `r` for which the moment turned inward is at most `r` times that of one
+    /// of the tables, whatever the level: then for every sum of layers.
+    fn of(&self, weight: &Table) -> f64 {
+        let turned: Vec<f64> = self.levels_m.iter().map(|&h_m| -weight.ramp(h_m)).collect();
+        let against = |table: &Table| {
+            let ratios = self.levels_m.iter().zip(&turned).map(|(&h_m, &turned)| {
+                let own = table.ramp(h_m);
+                match (turned > 0.0, own > 0.0) {
+                    (false, true) => 0.0,
+                    (true, true) => turned / own,
+                    // A table below zero covers nothing.
+                    (_, false) => f64::INFINITY,
+                }
+            });
+            ratios.fold(0.0, f64::max)
+        };
+        // A little for what lies between two levels.
+        1.02 * self.tables.iter().map(against).fold(f64::INFINITY, f64::min)
+    }
+}
+
+impl Inward {
+    /// The suction; nothing where it is not judged.
+    fn pressure_pa(self) -> f64 {
+        match self {
+            Self::Suction(pressure_pa) => pressure_pa,
+            Self::Unjudged(_) => 0.0,
+        }
+    }
+}
+
 impl Bending {
+    /// The suction that stands for an inward plate beside what judges it outward.
+    ///
+    /// With `p >= -v` an inward moment is at most `v W` (where liquid may stand outside: `v
+    /// integral w+`) and what the outward pressure turns inward at that point. Tables that carry
+    /// `C` outward leave at most `r (C + v W)` of it, `r` the largest ratio over all loads; a
+    /// pressure `q` at the lowest edge at most `q integral w-`.
+    fn suction(&self, outward: Option<&Judged>) -> Inward {
+        let moment_n = self.plate.moment_n();
+        if self.sine <= 0.0 {
+            // Evenly pressed.
+            return Inward::Suction(self.even_pa(false));
+        }
+        let Some(outward) = outward else {
+            return Inward::Unjudged("its moments need an outward plate beside it");
+        };
+        let [moment, deflection] = self.factors(moment_n);
+        let moments = self.solved.moments.iter().map(|(.., weight)| (weight, moment));
+        let all = moments.chain(self.solved.deflections.iter().map(|weight| (weight, deflection)));
+        let reversal = Reversal::new(outward, (self.length_m, self.sine));
+        let suction = |(weight, scale): (&crate::plate::Weighted, f64)| {
+            let (up, down) = (scale * weight.positive.total(), scale * weight.negative.total());
+            match (outward, &reversal) {
+                (Judged::Moments { moment_n: outward_n, .. }, Some(reversal)) => {
+                    let ratio = scale * reversal.of(&weight.whole);
+                    (moment_n - ratio * outward_n) / ((up - down).abs() + ratio * reversal.even)
+                }
+                (Judged::Substitute(pa, _) | Judged::Level(pa), _) => (moment_n - pa * down) / up,
+                (Judged::Moments { .. }, None) => 0.0,
+            }
+        };
+        let least = all.map(suction).fold(f64::INFINITY, f64::min);
+        if least > 0.0 {
+            Inward::Suction(least)
+        } else {
+            Inward::Unjudged("what the liquid turns inward may alone be more than it carries")
+        }
+    }
+
     /// Factors that make its moments, and its deflections times the rigidity, moments of which
     /// `moment_n` is the limit.
     fn factors(&self, moment_n: f64) -> [f64; 2] {

@@ -7,18 +7,14 @@ fn checked(solution: &Solution) -> Vec<Checked<'_>> {
     moments.map(|one| Checked { weight: &one.weight, scale: 1.0 }).collect()
 }
 
-fn table(nodes: &[[f32; 2]], sine: f64) -> Table {
-    Table::new(nodes.iter().map(|&[y, w]| (f64::from(y) / sine, f64::from(w) * sine)))
-}
-
 /// A sum of loads: even, and linear from surfaces down.
 fn load(weight: &Table, even: f64, surfaces: &[(f64, f64)]) -> f64 {
     surfaces.iter().fold(even * weight.total(), |sum, (h, step)| sum + step * weight.ramp(*h))
 }
 
 fn judged(governing: &Governing, sine: f64, even: f64, surfaces: &[(f64, f64)]) -> f64 {
-    let points = governing.points.iter();
-    points.map(|one| load(&table(one, sine), even, surfaces)).fold(f64::NEG_INFINITY, f64::max)
+    let points = governing.tables(sine);
+    points.map(|one| load(&one, even, surfaces)).fold(f64::NEG_INFINITY, f64::max)
 }
 
 const SIDES: [(f64, f64); 5] = [(1.0, 1.2), (1.0, 2.4), (1.0, 1.0), (3.0, 1.0), (1.0, 6.0)];

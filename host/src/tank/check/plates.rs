@@ -9,7 +9,7 @@ use crate::tank::read::section::Sink;
 pub(super) fn all(draft: &Draft, sink: &Sink) {
     for part in &draft.parts {
         let Part::Panel(panel) = part else { continue };
-        for rating in &panel.capacity {
+        for rating in panel.capacity.iter().chain(&panel.capacity_inward) {
             if let Capacity::Panel(plate) = &rating.capacity.value {
                 solved(panel, rating.capacity.span, sink);
                 free_top(panel, plate.edges.value, plate.edges.span, sink);

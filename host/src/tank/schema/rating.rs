@@ -99,8 +99,8 @@ pub(super) static PANEL_OUTWARD: Table = rating(
 
 pub(super) static PANEL_INWARD: Table = rating(
     "inward_capacity_of_panel",
-    &[EVERY, &[FORCES]],
-    &[Rule::OneOf(&["force", "pressure", "none"]), BASED],
+    &[EVERY, &[FORCES, may("plate", Holds::Table(&PANEL_PLATE), "The panel as a flat plate.")]],
+    &[Rule::OneOf(&["plate", "force", "pressure", "none"]), BASED],
 );
 
 pub(super) static HATCH_OUTWARD: Table = rating(

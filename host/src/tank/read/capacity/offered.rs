@@ -19,7 +19,8 @@ pub(super) fn offered(bearer: Bearer, inward: bool) -> &'static [&'static str] {
         (PartKind::Course, false) => &["plate", "hoop_tension", "designed_for", "pressure", "none"],
         (PartKind::Course | PartKind::Curved, true) => &["pressure", "none"],
         (PartKind::Panel, false) => &["plate", "force", "pressure", "designed_for", "none"],
-        (PartKind::Panel, true) | (PartKind::Curved, false) => &["force", "pressure", "none"],
+        (PartKind::Panel, true) => &["plate", "force", "pressure", "none"],
+        (PartKind::Curved, false) => &["force", "pressure", "none"],
         (PartKind::Hatch, false) => &[
             "bolt",
             "latch",
