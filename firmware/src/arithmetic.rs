@@ -33,13 +33,6 @@ pub fn loads(plan: &Plan, resolved: &Resolved, part: &mut dyn FnMut(usize, &Part
     evaluate::loads(plan, &[*resolved], part);
 }
 
-/// Loads of one part of the plan under one reading; `None` beyond the last part.
-#[must_use]
-#[inline(never)]
-pub fn part_loads(plan: &Plan, index: usize, resolved: &Resolved) -> Option<PartLoads<1>> {
-    evaluate::part_loads(plan, index, &[*resolved])
-}
-
 /// Heights of the surface that a reading allows: [`evaluate::levels_m`].
 #[must_use]
 #[inline(never)]

@@ -95,14 +95,14 @@ fn each_load<const N: usize>(
     let states = pressures(plan, resolved);
     let mut digest = Digest::new();
     // One room for each kind of part: what a kind does not have stays zero in its own.
-    let (mut of_course, mut of_plane) = (PartLoads::NONE, PartLoads::NONE);
+    let [mut of_course, mut of_plane] = [PartLoads::NONE; 2];
     for (index, one) in plan.parts.iter().enumerate() {
         let loads = match one.geometry {
             Geometry::Course { .. } => &mut of_course,
             Geometry::Plane { .. } => &mut of_plane,
             Geometry::Curved(_) => {
                 // Rare: its own room is made anew.
-                each_curved(plan, one, &states, &mut digest, &mut |loads| part(index, loads));
+                each_curved(plan, (index, one), &states, &mut digest, part);
                 continue;
             }
         };
@@ -118,15 +118,15 @@ fn each_load<const N: usize>(
 #[inline(never)]
 fn each_curved<const N: usize>(
     plan: &Plan,
-    one: &Part,
+    (index, one): (usize, &Part),
     states: &States<N>,
     digest: &mut Digest<N>,
-    take: &mut dyn FnMut(&PartLoads<N>),
+    part: &mut dyn FnMut(usize, &PartLoads<N>),
 ) {
     let mut loads = PartLoads::NONE;
     evaluate_into(plan, one, states, &mut loads);
     digest.add(one, &loads);
-    take(&loads);
+    part(index, &loads);
 }
 
 #[cfg(test)]

@@ -80,6 +80,15 @@ impl Stated {
         }
     }
 
+    /// Zero where there is none.
+    #[inline]
+    const fn bits(stated: Option<Self>) -> u32 {
+        match stated {
+            Some(stated) => stated.0.get(),
+            None => 0,
+        }
+    }
+
     /// The number.
     #[must_use]
     #[inline]
@@ -116,11 +125,13 @@ impl Capacities {
     #[must_use]
     #[inline]
     pub const fn is_empty(&self) -> bool {
-        self.pressure_pa.is_none()
-            && self.hoop_tension_n_m.is_none()
-            && self.force_n.is_none()
-            && self.bolt_n.is_none()
-            && self.moment_n_m.is_none()
+        // Zero is none; no jump for each of them.
+        Stated::bits(self.pressure_pa)
+            | Stated::bits(self.hoop_tension_n_m)
+            | Stated::bits(self.force_n)
+            | Stated::bits(self.bolt_n)
+            | Stated::bits(self.moment_n_m)
+            == 0
     }
 }
 

@@ -49,6 +49,9 @@ pub struct Resultant<const N: usize> {
     pub foot_moment_n_m: Lane<N>,
     /// Pressure at the part's lowest point, Pa gauge.
     pub foot_pa: Lane<N>,
+    /// Force and moment about the level line through the lowest point, N and N m, on the piece
+    /// below each of two cuts; zero where there is none.
+    pub below: [[Lane<N>; 2]; 2],
 }
 
 impl<const N: usize> Pressure<N> {
@@ -87,15 +90,28 @@ impl<const N: usize> Pressure<N> {
 
     /// Resultant on a whole plane part: the one formula for its weightings at once.
     #[must_use]
-    #[inline]
     pub fn on(&self, face: &Face<'_>) -> Resultant<N> {
+        self.on_pieces(face, [None; 2])
+    }
+
+    /// [`Pressure::on`], and what stands on the pieces below up to two cuts.
+    #[must_use]
+    // One function in every image, called for three states.
+    #[inline(never)]
+    pub fn on_pieces(&self, face: &Face<'_>, cuts: [Option<&Cut>; 2]) -> Resultant<N> {
         let force_n = self.gas_pa * face.shape.area_m2();
         let mut found = Resultant {
             force_n,
             moment_n_m: Lane::ZERO,
             foot_moment_n_m: force_n * face.shape.centroid_up_m(),
             foot_pa: self.gas_pa,
+            below: [[Lane::ZERO; 2]; 2],
         };
+        for (below, cut) in found.below.iter_mut().zip(cuts) {
+            if let Some(cut) = cut {
+                *below = [self.gas_pa * cut.area_m2, self.gas_pa * cut.static_m3];
+            }
+        }
         for surface in self.surfaces() {
             let y_m = surface.height_m - face.bottom_m;
             if y_m.none_positive() {
@@ -107,25 +123,12 @@ impl<const N: usize> Pressure<N> {
             found.force_n = found.force_n + step_n_m3 * wetted.q0;
             found.moment_n_m = found.moment_n_m + step_n_m3 * wetted.q1;
             found.foot_moment_n_m = found.foot_moment_n_m + step_n_m3 * wetted.q2;
-        }
-        found
-    }
-
-    /// Force and moment about the level line through the lowest point, N and N m, on the piece of a
-    /// plane part below a cut.
-    #[must_use]
-    #[inline]
-    pub fn below(&self, cut: &Cut, face: &Face<'_>) -> [Lane<N>; 2] {
-        let dry = cut.dry(face.shape);
-        let mut found = dry.map(|integral| self.gas_pa * integral);
-        for surface in self.surfaces() {
-            let y_m = surface.height_m - face.bottom_m;
-            if y_m.none_positive() {
-                continue;
-            }
-            let wetted = cut.wetted(face, dry, y_m);
-            for (sum, integral) in found.iter_mut().zip(wetted) {
-                *sum = *sum + surface.step_n_m3 * integral;
+            for (below, cut) in found.below.iter_mut().zip(cuts) {
+                if let Some(cut) = cut {
+                    let [q0, q2] = cut.wetted(face, y_m, &wetted);
+                    let [force, moment] = *below;
+                    *below = [force + step_n_m3 * q0, moment + step_n_m3 * q2];
+                }
             }
         }
         found

@@ -74,11 +74,13 @@ impl Shape {
     }
 
     /// Distance of the centroid from the lowest point, up the slope, m; zero for a level shape.
+    // The third number of each: one load.
     #[must_use]
+    #[inline]
     pub const fn centroid_up_m(&self) -> f32 {
         match self {
             Self::Circle(circle) => circle.radius_m(),
-            Self::Rectangle(rectangle) => 0.5 * rectangle.sides_m()[1],
+            Self::Rectangle(rectangle) => rectangle.centroid_m,
             Self::Pieces(pieces) => pieces.centroid_m,
             Self::Level { .. } => 0.0,
         }
@@ -146,7 +148,7 @@ pub struct Cut {
     pub y_m: f32,
     /// Area below the cut, m².
     pub area_m2: f32,
-    /// `integral s dA` below the cut, m³; never positive.
+    /// `integral t dA` below the cut, m³; never negative.
     pub static_m3: f32,
     /// `q0` and `q2` of a surface that stands at the cut.
     full: [f32; 2],
@@ -154,22 +156,15 @@ pub struct Cut {
 
 impl Cut {
     /// A cut `y_m` above the lowest point of `face`, with the area (m²) and first moment of area
-    /// about the level line through the centroid (m³) below it.
+    /// about the level line through the lowest point (m³) below it.
     #[must_use]
     pub fn new(face: &Face<'_>, y_m: f32, area_m2: f32, static_m3: f32) -> Self {
         let Wetted { q0, q2, .. } = face.wetted(Lane([y_m]));
         Self { y_m, area_m2, static_m3, full: [q0.lane(0), q2.lane(0)] }
     }
 
-    /// Area (m²) below the cut and its first moment about the level line through the lowest point
-    /// (m³).
-    #[must_use]
-    #[inline]
-    pub const fn dry(&self, shape: &Shape) -> [f32; 2] {
-        [self.area_m2, self.static_m3 + shape.centroid_up_m() * self.area_m2]
-    }
-
-    /// `q0` and `q2` over the piece below the cut; `dry` is [`Cut::dry`].
+    /// `q0` and `q2` over the piece below the cut; `whole` is the whole shape under the same
+    /// surface.
     ///
     /// Above the cut the piece is covered and both grow linearly with the surface.
     #[must_use]
@@ -177,18 +172,21 @@ impl Cut {
     pub fn wetted<const N: usize>(
         &self,
         face: &Face<'_>,
-        [area_m2, foot_static_m3]: [f32; 2],
         y_m: Lane<N>,
+        whole: &Wetted<N>,
     ) -> [Lane<N>; 2] {
-        let above = (y_m - self.y_m).ramp();
-        // Where every lane is covered the stored integrals are the same bits, without the root.
+        let above = y_m - self.y_m;
+        // Where every lane is covered, or none, what is known is the same bits without the root.
         let [q0, q2] = if above.all_positive() {
             self.full.map(Lane::splat)
+        } else if above.none_positive() {
+            [whole.q0, whole.q2]
         } else {
             let lower = face.wetted(y_m.at_most(Lane::splat(self.y_m)));
             [lower.q0, lower.q2]
         };
-        [q0 + above * area_m2, q2 + above * foot_static_m3]
+        let above = above.ramp();
+        [q0 + above * self.area_m2, q2 + above * self.static_m3]
     }
 }
 

@@ -90,7 +90,14 @@ impl<B: Board> Served for Device<B> {
         self.in_force?;
         let reading = self.reading?;
         let one = self.memory.plan.parts.get(usize::from(part))?;
-        let of = arithmetic::part_loads(&self.memory.plan, usize::from(part), &reading)?;
+        // All of them, in the one place that is compiled for it, and one kept.
+        let mut found = None;
+        arithmetic::loads(&self.memory.plan, &reading, &mut |index, loads| {
+            if index == usize::from(part) {
+                found = Some(*loads);
+            }
+        });
+        let of = found?;
         let state = |threshold| {
             MachineId::of_part(part, threshold)
                 .map_or(0, |id| self.memory.state.machine(id).state.number())

@@ -177,21 +177,19 @@ fn weighting(straight: Straight, plane: &Plane) -> WeightingNumbers {
 }
 
 /// The piece of a surface below a line `s_m` up the slope from its centroid: height of the line
-/// above the lowest point (m), area (m²) and first moment of area (m³). `None` when the line misses
-/// the surface or touches its end, or that is level.
+/// above the lowest point (m), area (m²) and first moment of area about that point (m³). `None`
+/// when the line misses the surface or touches its end, or that is level.
 fn cut(plane: &Plane, s_m: f64) -> Option<[f32; 3]> {
     /// Of the length: what lies beyond a line so near to an end is nothing, but for rounding.
     const TOUCH: f64 = 1e-6;
-    let centroid_m = plane.centroid_up_m();
-    let up_m = s_m + centroid_m;
+    let up_m = s_m + plane.centroid_up_m();
     let length_m = plane.shape.length_m();
     // Not a number where the weighting is nothing.
     if plane.is_level() || !(up_m > TOUCH * length_m && up_m < (1.0 - TOUCH) * length_m) {
         return None;
     }
     let [area_m2, first_m3] = plane.pieces().below(up_m);
-    let static_m3 = first_m3 - centroid_m * area_m2;
-    Some([single(up_m * plane.sine()), single(area_m2), single(static_m3)])
+    Some([single(up_m * plane.sine()), single(area_m2), single(first_m3)])
 }
 
 /// The weighting of the moment about the centroid; of a level surface nothing.

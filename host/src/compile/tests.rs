@@ -159,7 +159,7 @@ fn bolts_and_their_cuts_against_counting() {
     }
 }
 
-/// Area and first moment below a line, by strips.
+/// Area and first moment about the lowest point below a line, by strips.
 fn below(shape: &Shape, s_m: f64) -> (f64, f64) {
     let half = 0.5 * shape.length_m();
     let strips = 200_000;
@@ -171,7 +171,7 @@ fn below(shape: &Shape, s_m: f64) -> (f64, f64) {
             Shape::Circle { diameter_m } => 2.0 * (0.25 * diameter_m * diameter_m - s * s).sqrt(),
             _ => shape.width_m(),
         };
-        sums = (sums.0 + b * width, sums.1 + b * s * width);
+        sums = (sums.0 + b * width, sums.1 + b * (s + half) * width);
     }
     sums
 }
@@ -182,7 +182,7 @@ fn the_lower_half_of_a_disc() {
     let [y_m, area_m2, static_m3] = super::about_centroid(&disc).cut.unwrap();
     assert!(near(y_m, 0.33, 1e-6));
     assert!(near(area_m2, 0.5 * PI * 0.33 * 0.33, 1e-6));
-    assert!(near(static_m3, -2.0 / 3.0 * 0.33_f64.powi(3), 1e-6));
+    assert!(near(static_m3, (0.5 * PI - 2.0 / 3.0) * 0.33_f64.powi(3), 1e-6));
 }
 
 #[test]

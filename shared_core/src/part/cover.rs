@@ -28,12 +28,21 @@ pub struct Weighting {
     foot: f32,
     /// Per metre up the slope.
     slope: f32,
-    /// Where it changes sign, if that lies on the cover.
-    cut: Option<Cut>,
+    sign: Sign,
 }
 
-/// A pressure on a cover and its resultant.
-pub(crate) type Pressing<'a, const N: usize> = (&'a Pressure<N>, &'a Resultant<N>);
+/// What a bound has to know of a weighting.
+#[derive(Clone, Copy, Debug, PartialEq)]
+enum Sign {
+    /// Of its load, which is all that counts where it is the same on the whole cover.
+    Positive,
+    Negative,
+    /// Where it changes on the cover.
+    Changes(Cut),
+}
+
+/// Force and moment about the level line through the lowest point.
+type Pair<const N: usize> = [Lane<N>; 2];
 
 /// A reaction under the estimate, its largest and its least signed value.
 pub(crate) type Reaction<const N: usize> = [Lane<N>; 3];
@@ -66,13 +75,19 @@ impl Weighting {
     /// A weighting on a shape.
     #[must_use]
     pub fn new(numbers: &WeightingNumbers, face: &Face<'_>) -> Self {
-        let cut =
-            numbers.cut.map(|[y_m, area_m2, static_m3]| Cut::new(face, y_m, area_m2, static_m3));
-        Self { foot: numbers.foot, slope: numbers.slope, cut }
+        let WeightingNumbers { foot, slope, cut } = *numbers;
+        let sign = match cut {
+            Some([y_m, area_m2, static_m3]) => {
+                Sign::Changes(Cut::new(face, y_m, area_m2, static_m3))
+            }
+            None if foot + slope * face.shape.centroid_up_m() >= 0.0 => Sign::Positive,
+            None => Sign::Negative,
+        };
+        Self { foot, slope, sign }
     }
 
     fn numbers(&self) -> WeightingNumbers {
-        let cut = self.cut.map(|cut| [cut.y_m, cut.area_m2, cut.static_m3]);
+        let cut = self.cut().map(|cut| [cut.y_m, cut.area_m2, cut.static_m3]);
         WeightingNumbers { foot: self.foot, slope: self.slope, cut }
     }
 
@@ -95,35 +110,40 @@ impl Weighting {
     #[must_use]
     pub fn under<const N: usize>(&self, face: &Face<'_>, states: &States<N>) -> [Lane<N>; 3] {
         let States { estimate, upper, lower, .. } = states;
-        let [most, least] = [upper, lower].map(|state| state.on(face));
-        let [most, least] = self.bounds(face, [(upper, &most), (lower, &least)]);
-        [self.of(&estimate.on(face)), most, least]
+        let on = |state: &Pressure<N>| state.on_pieces(face, [self.cut(), None]);
+        let wholes = [estimate, upper, lower].map(on);
+        let [_, below_upper, below_lower] = wholes.map(|whole| whole.below);
+        let ([below_upper, _], [below_lower, _]) = (below_upper, below_lower);
+        self.reaction(wholes.each_ref(), [below_upper, below_lower])
     }
 
-    /// Largest and least signed load between an upper and a lower pressure on the shape.
-    fn bounds<const N: usize>(
+    /// Its load of the estimate, the largest and the least signed one between the upper and the
+    /// lower pressure; `below` is what both put on the piece below the cut.
+    #[inline]
+    fn reaction<const N: usize>(
         &self,
-        face: &Face<'_>,
-        bounding: [Pressing<'_, N>; 2],
-    ) -> [Lane<N>; 2] {
-        let whole = bounding.map(|(_, whole)| self.of(whole));
-        let (ordered, positive_first) = match &self.cut {
-            None => (whole, self.foot + self.slope * face.shape.centroid_up_m() >= 0.0),
-            Some(cut) => {
-                let [below_upper, below_lower] = bounding.map(|(pressure, _)| {
-                    straight(self.foot, self.slope, pressure.below(cut, face))
-                });
-                let [of_upper, of_lower] = whole;
+        [middle, upper, lower]: [&Resultant<N>; 3],
+        below: [Pair<N>; 2],
+    ) -> Reaction<N> {
+        let (middle, upper, lower) = (self.of(middle), self.of(upper), self.of(lower));
+        match &self.sign {
+            Sign::Positive => [middle, upper, lower],
+            Sign::Negative => [middle, lower, upper],
+            Sign::Changes(_) => {
+                let [of_upper, of_lower] = below.map(|pair| straight(self.foot, self.slope, pair));
                 // The first is the largest where the weighting is positive below the cut.
-                let crossed = [
-                    below_upper + (of_lower - below_lower),
-                    below_lower + (of_upper - below_upper),
-                ];
-                (crossed, self.slope < 0.0)
+                let first = of_upper + (lower - of_lower);
+                let second = of_lower + (upper - of_upper);
+                if self.slope < 0.0 { [middle, first, second] } else { [middle, second, first] }
             }
-        };
-        let [first, second] = ordered;
-        if positive_first { ordered } else { [second, first] }
+        }
+    }
+
+    const fn cut(&self) -> Option<&Cut> {
+        match &self.sign {
+            Sign::Changes(cut) => Some(cut),
+            Sign::Positive | Sign::Negative => None,
+        }
     }
 
     /// Whether it is in range and its cut lies where it changes sign: a bound needs it there.
@@ -136,14 +156,14 @@ impl Weighting {
         let area_m2 = shape.area_m2();
         let (far, off_m) = ([-1.0e6, 1.0e6], slack_m * sine);
         all_within(&[(self.foot, far), (self.slope, far)])
-            && match &self.cut {
+            && match self.cut() {
                 None => !(zero_m > slack_m && zero_m < length_m - slack_m),
                 // A level cover has none.
                 Some(cut) => all_within(&[
                     (sine, [f32::MIN_POSITIVE, 1.0]),
                     (cut.y_m - zero_m * sine, [-off_m, off_m]),
                     (cut.area_m2, [0.0, area_m2]),
-                    (cut.static_m3, [-area_m2 * length_m, 0.0]),
+                    (cut.static_m3, [0.0, area_m2 * length_m]),
                 ]),
             }
     }
@@ -211,34 +231,16 @@ impl Cover {
         ]) && self.weightings.iter().all(|one| one.is_sound(shape, sine))
     }
 
-    /// The reaction with a weighting: of the estimate, largest and least. The weight of the cover
-    /// acts at the centroid; where it relieves it counts only when it was measured.
-    #[inline]
-    pub(crate) fn reaction<const N: usize>(
-        &self,
-        weighting: &Weighting,
-        face: &Face<'_>,
-        pressings: &[Pressing<'_, N>; 3],
-    ) -> Reaction<N> {
-        let [middle, upper, lower] = *pressings;
-        let [most, least] = weighting.bounds(face, [upper, lower]);
-        let mut found = [weighting.of(middle.1), most, least];
-        if self.weight_n != 0.0 {
-            self.add_weight(weighting, face, &mut found);
-        }
-        found
-    }
-
     /// The weight of the cover acts at the centroid; where it relieves it counts only when it was
     /// measured.
     #[inline(never)]
     fn add_weight<const N: usize>(
         &self,
-        weighting: &Weighting,
+        [foot, slope]: [f32; 2],
         face: &Face<'_>,
         found: &mut Reaction<N>,
     ) {
-        let at_centroid = weighting.foot + weighting.slope * face.shape.centroid_up_m();
+        let at_centroid = foot + slope * face.shape.centroid_up_m();
         let added_n = at_centroid * self.weight_n;
         for (index, sum) in found.iter_mut().enumerate() {
             // The least value is relieved by what adds to the others.
@@ -254,44 +256,86 @@ impl Cover {
     #[must_use]
     pub fn each<const N: usize>(&self, face: &Face<'_>, states: &States<N>) -> [[Lane<N>; 3]; 3] {
         let States { estimate, upper, lower, .. } = states;
-        let wholes = [estimate, upper, lower].map(|state| state.on(face));
-        let [middle, most, least] = &wholes;
-        let pressings = [(estimate, middle), (upper, most), (lower, least)];
-        let [first, second] = self.weightings.map(|one| self.reaction(&one, face, &pressings));
-        let [moment, _] = self.reactions(face, &pressings);
+        let wholes = [
+            estimate.on(face),
+            upper.on_pieces(face, self.cuts()),
+            lower.on_pieces(face, self.cuts()),
+        ];
+        let [first, second] = self.both(face, wholes.each_ref());
+        let [moment, _] = self.reactions(face, states, wholes.each_ref());
         [moment, first, second]
     }
 
+    /// Where its two weightings change sign.
+    #[inline]
+    pub(crate) const fn cuts(&self) -> [Option<&Cut>; 2] {
+        let [first, second] = &self.weightings;
+        [first.cut(), second.cut()]
+    }
+
+    /// The reactions with the two weightings.
+    #[inline]
+    fn both<const N: usize>(
+        &self,
+        face: &Face<'_>,
+        wholes: [&Resultant<N>; 3],
+    ) -> [Reaction<N>; 2] {
+        let [_, upper, lower] = wholes;
+        let pieces = upper.below.into_iter().zip(lower.below);
+        let mut found = [[Lane::ZERO; 3]; 2];
+        let weightings = self.weightings.iter().zip(pieces);
+        for (found, (weighting, (of_upper, of_lower))) in found.iter_mut().zip(weightings) {
+            *found = weighting.reaction(wholes, [of_upper, of_lower]);
+            if self.weight_n != 0.0 {
+                self.add_weight([weighting.foot, weighting.slope], face, found);
+            }
+        }
+        found
+    }
+
     /// Moment about the hinge or pivot, and what the bolts or pins carry: the largest and, last,
-    /// the least. Zero where there is none.
+    /// the least. Zero where there is none. The resultants are those of the estimate, the upper and
+    /// the lower of the states, the last two with the pieces below [`Self::cuts`].
     pub(crate) fn reactions<const N: usize>(
         &self,
         face: &Face<'_>,
-        pressings: &[Pressing<'_, N>; 3],
+        states: &States<N>,
+        wholes: [&Resultant<N>; 3],
     ) -> [Reaction<N>; 2] {
         let none = [Lane::ZERO; 3];
         match self.held {
             Held::Otherwise => return [none; 2],
             Held::Plate(nodes) => {
-                let states = pressings.map(|(state, _)| state);
-                return [plate::moments(nodes.of(face.numbers), face.bottom_m, states), none];
+                let States { estimate, upper, lower, .. } = states;
+                let three = [estimate, upper, lower];
+                return [plate::moments(nodes.of(face.numbers), face.bottom_m, three), none];
             }
             Held::Bolts(_) | Held::Line | Held::Side => {}
         }
-        let [first, second] = &self.weightings;
-        let first = self.reaction(first, face, pressings);
-        let second = self.reaction(second, face, pressings);
+        let [first, second] = self.both(face, wholes);
         if self.held == Held::Line {
             return [first, second];
         }
         let [[a, a_most, a_least], [b, b_most, b_least]] = [first, second];
         let held = [a.at_least(b), a_most.at_least(b_most), a_least.at_most(b_least)];
-        let moment = if self.held == Held::Side {
-            let even = Weighting { foot: self.arm_m, slope: 0.0, cut: None };
-            self.reaction(&even, face, pressings)
-        } else {
-            none
-        };
+        let moment = if self.held == Held::Side { self.about_side(face, wholes) } else { none };
         [moment, held]
+    }
+
+    /// Moment about a hinge line at the side: an even weighting.
+    #[inline(never)]
+    fn about_side<const N: usize>(
+        &self,
+        face: &Face<'_>,
+        wholes: [&Resultant<N>; 3],
+    ) -> Reaction<N> {
+        let mut found = [Lane::ZERO; 3];
+        for (found, whole) in found.iter_mut().zip(wholes) {
+            *found = whole.force_n * self.arm_m;
+        }
+        if self.weight_n != 0.0 {
+            self.add_weight([self.arm_m, 0.0], face, &mut found);
+        }
+        found
     }
 }

@@ -116,7 +116,7 @@ pub fn prism<const N: usize>(kind: RowKind, row: &Row, y_m: Lane<N>) -> Lane<N> 
 }
 
 /// `integral from 0 to x of (d + side t) (c0 + c1 t + c2 t²) / sqrt(t) dt`.
-#[inline]
+#[inline(never)]
 fn rooted<const N: usize>([c0, c1, c2]: [f32; 3], x: Lane<N>, d: Lane<N>, side: f32) -> Lane<N> {
     let along = x * side;
     let first = (d * 2.0 + along * (2.0 / 3.0)) * c0;

@@ -1,7 +1,7 @@
 //! One part under the three pressure states: its loads and its utilisation.
 
 use super::{
-    Capacities, Curved, DESIGN_PRESSURE_FLOOR_PA, DesignState, Geometry, Part, Stated,
+    Capacities, Cover, Curved, DESIGN_PRESSURE_FLOOR_PA, DesignState, Geometry, Part, Stated,
     UTILISATION_MAX,
 };
 use crate::lane::Lane;
@@ -107,21 +107,30 @@ pub fn evaluate<const N: usize>(plan: &Plan, part: &Part, states: &States<N>) ->
 /// [`evaluate`] into room that is already there: on the device a copy costs as much as a part. The
 /// room must come from [`PartLoads::NONE`] or from a part of the same kind: what the kind does not
 /// have is not written.
-#[inline(never)]
+#[inline]
 pub(crate) fn evaluate_into<const N: usize>(
     plan: &Plan,
     part: &Part,
     states: &States<N>,
     loads: &mut PartLoads<N>,
 ) {
-    let less;
-    let states = if part.outside == 0 {
-        states
+    if part.outside == 0 {
+        judge(plan, part, states, loads);
     } else {
-        less = acting(plan, part, states);
-        &less
-    };
-    judge(plan, part, states, loads);
+        judge_against_outside(plan, part, states, loads);
+    }
+}
+
+/// Rare, and its copy of the states needs room: apart from the others.
+#[cold]
+#[inline(never)]
+fn judge_against_outside<const N: usize>(
+    plan: &Plan,
+    part: &Part,
+    states: &States<N>,
+    loads: &mut PartLoads<N>,
+) {
+    judge(plan, part, &acting(plan, part, states), loads);
 }
 
 /// The states as they act on one part: those of the tank, less the liquid that stands against the
@@ -144,42 +153,79 @@ pub fn acting<const N: usize>(plan: &Plan, part: &Part, states: &States<N>) -> S
     with
 }
 
+#[inline]
 fn judge<const N: usize>(plan: &Plan, part: &Part, states: &States<N>, loads: &mut PartLoads<N>) {
-    let States { estimate, upper, lower, .. } = states;
     match &part.geometry {
         Geometry::Course { half_diameter_m, design_point_m, .. } => {
-            let point_m = Lane::splat(*design_point_m);
-            loads.estimate.put_course(estimate.at(point_m), *half_diameter_m);
-            loads.outward.put_course(upper.at(point_m), *half_diameter_m);
-            loads.inward.put_course(lower.at(point_m), *half_diameter_m);
+            judge_course(part, [*half_diameter_m, *design_point_m], states, loads);
         }
         Geometry::Plane { shape, cover, .. } => {
             let face = Face { shape, numbers: &plan.numbers, bottom_m: part.bottom_m };
-            let middle = estimate.on(&face);
-            let most = upper.on(&face);
-            let least = lower.on(&face);
-            loads.estimate.put_plane(largest_pressure(part, estimate, &middle), middle.force_n);
-            loads.estimate.moment_centroid_n_m = middle.moment_n_m;
-            loads.outward.put_plane(largest_pressure(part, upper, &most), most.force_n);
-            loads.inward.put_plane(least_pressure(part, lower), least.force_n);
-            let pressings = [(estimate, &middle), (upper, &most), (lower, &least)];
-            let [moment, held] = match cover {
-                None => [[Lane::ZERO; 3]; 2],
-                Some(cover) => cover.reactions(&face, &pressings),
-            };
-            [loads.estimate.bolt_n, loads.outward.bolt_n, loads.inward.bolt_n] = held;
-            [loads.estimate.moment_n_m, loads.outward.moment_n_m, loads.inward.moment_n_m] = moment;
+            judge_plane(part, &face, cover.as_ref(), states, loads);
         }
         Geometry::Curved(curved) => judge_curved(plan, part, curved, states, loads),
     }
-    // Zero where no capacity is stated.
-    [loads.utilisation, loads.utilisation_bound] =
-        outward_utilisation(part, [estimate, upper], [&loads.estimate, &loads.outward]);
-    loads.utilisation_inward = if part.judged_inward() {
-        inward_utilisation(part, lower, &loads.inward)
-    } else {
-        Lane::ZERO
+}
+
+/// The loads of a course of half a diameter (m) at its design point (m).
+#[inline(never)]
+fn judge_course<const N: usize>(
+    part: &Part,
+    [half_diameter_m, design_point_m]: [f32; 2],
+    states: &States<N>,
+    loads: &mut PartLoads<N>,
+) {
+    let States { estimate, upper, lower, .. } = states;
+    let point_m = Lane::splat(design_point_m);
+    loads.estimate.put_course(estimate.at(point_m), half_diameter_m);
+    loads.outward.put_course(upper.at(point_m), half_diameter_m);
+    loads.inward.put_course(lower.at(point_m), half_diameter_m);
+
+    let mut largest = [Lane::ZERO; 2];
+    let tensions = [&loads.estimate, &loads.outward].map(|loads| loads.hoop_tension_n_m);
+    compare(&mut largest, part.outward.hoop_tension_n_m, tensions);
+    if part.outward.pressure_pa.is_some() {
+        // The stated pressure of a course holds for all of it, not for its design point alone.
+        let pressures = [estimate, upper].map(|state| course_pressure(part, state));
+        compare(&mut largest, part.outward.pressure_pa, pressures);
+    }
+    [loads.utilisation, loads.utilisation_bound] = outward(part, [estimate, upper], largest);
+    loads.utilisation_inward = Lane::ZERO;
+    if part.judged_inward() {
+        // The design point is the worst of a course outwards; inwards that is where least stands
+        // against the gas.
+        let pressure_pa = least_pressure(part, lower);
+        let mut largest = [Lane::ZERO];
+        compare(&mut largest, part.inward.pressure_pa, [-pressure_pa]);
+        compare(&mut largest, part.inward.hoop_tension_n_m, [-(pressure_pa * half_diameter_m)]);
+        loads.utilisation_inward = within(largest);
+    }
+}
+
+#[inline(never)]
+fn judge_plane<const N: usize>(
+    part: &Part,
+    face: &Face<'_>,
+    cover: Option<&Cover>,
+    states: &States<N>,
+    loads: &mut PartLoads<N>,
+) {
+    let States { estimate, upper, lower, .. } = states;
+    let cuts = cover.map_or([None; 2], Cover::cuts);
+    let middle = &estimate.on(face);
+    let most = &upper.on_pieces(face, cuts);
+    let least = &lower.on_pieces(face, cuts);
+    loads.estimate.put_plane(largest_pressure(part, estimate, middle), middle.force_n);
+    loads.estimate.moment_centroid_n_m = middle.moment_n_m;
+    loads.outward.put_plane(largest_pressure(part, upper, most), most.force_n);
+    loads.inward.put_plane(least_pressure(part, lower), least.force_n);
+    let [moment, held] = match cover {
+        None => [[Lane::ZERO; 3]; 2],
+        Some(cover) => cover.reactions(face, states, [middle, most, least]),
     };
+    [loads.estimate.bolt_n, loads.outward.bolt_n, loads.inward.bolt_n] = held;
+    [loads.estimate.moment_n_m, loads.outward.moment_n_m, loads.inward.moment_n_m] = moment;
+    utilise(part, states, loads);
 }
 
 /// `sqrt(a² + b²)` of two that are not negative; the squares would not fit.
@@ -214,9 +260,9 @@ fn judge_curved<const N: usize>(
     }
     loads.estimate.force_n = size;
     loads.outward.force_n = largest;
-    loads.estimate.pressure_pa = extremes(part, estimate, Lane::at_least);
-    loads.outward.pressure_pa = extremes(part, upper, Lane::at_least);
-    loads.inward.pressure_pa = extremes(part, lower, Lane::at_most);
+    [_, loads.estimate.pressure_pa] = extremes(part, estimate);
+    [_, loads.outward.pressure_pa] = extremes(part, upper);
+    [loads.inward.pressure_pa, _] = extremes(part, lower);
     if curved.places > 0 {
         let tensions = |hoop| curved.tensions(hoop, &plan.numbers, part.bottom_m, states);
         let found = tensions(true).with(&tensions(false));
@@ -224,6 +270,7 @@ fn judge_curved<const N: usize>(
         loads.outward.hoop_tension_n_m = found.most;
         loads.inward.hoop_tension_n_m = found.least;
     }
+    utilise(part, states, loads);
 }
 
 /// Largest pressure on a plane part. Without liquid outside the pressure falls with height, and the
@@ -234,125 +281,144 @@ fn largest_pressure<const N: usize>(
     state: &Pressure<N>,
     whole: &Resultant<N>,
 ) -> Lane<N> {
-    if part.outside == 0 { whole.foot_pa } else { extremes(part, state, Lane::at_least) }
+    if part.outside == 0 {
+        return whole.foot_pa;
+    }
+    let [_, most] = extremes(part, state);
+    most
 }
 
 /// Least pressure on a part; without liquid outside it stands at the top.
 #[inline]
 fn least_pressure<const N: usize>(part: &Part, state: &Pressure<N>) -> Lane<N> {
     if part.outside == 0 {
-        state.at(Lane::splat(part.top_m))
-    } else {
-        extremes(part, state, Lane::at_most)
+        return state.at(Lane::splat(part.top_m));
     }
+    let [least, _] = extremes(part, state);
+    least
 }
 
-/// The extreme pressure difference on a part: it stands at an end or at a surface between them.
-fn extremes<const N: usize>(
-    part: &Part,
-    state: &Pressure<N>,
-    pick: impl Fn(Lane<N>, Lane<N>) -> Lane<N>,
-) -> Lane<N> {
+/// Least and largest pressure difference on a part: each stands at an end or at a surface between
+/// them.
+#[inline(never)]
+fn extremes<const N: usize>(part: &Part, state: &Pressure<N>) -> [Lane<N>; 2] {
     let (bottom, top) = (Lane::splat(part.bottom_m), Lane::splat(part.top_m));
-    let mut found = pick(state.at(bottom), state.at(top));
+    let at_bottom = state.at(bottom);
+    let (mut least, mut most) = (at_bottom, at_bottom);
+    let mut take = |z_m| {
+        let found = state.at(z_m);
+        least = least.at_most(found);
+        most = most.at_least(found);
+    };
+    take(top);
     for surface in state.surfaces() {
-        found = pick(found, state.at(surface.height_m.at_least(bottom).at_most(top)));
+        take(surface.height_m.at_least(bottom).at_most(top));
     }
-    found
-}
-
-/// Largest ratio of a load to its capacity under each state; zero where the loads act inwards.
-#[inline]
-fn outward_utilisation<const N: usize, const K: usize>(
-    part: &Part,
-    states: [&Pressure<N>; K],
-    loads: [&Loads<N>; K],
-) -> [Lane<N>; K] {
-    let mut pressure_pa = loads.map(|loads| loads.pressure_pa);
-    if let Geometry::Course { .. } = part.geometry
-        && part.outward.pressure_pa.is_some()
-    {
-        // The stated pressure of a course holds for all of it, not for its design point alone.
-        pressure_pa = states.map(|state| course_pressure(part, state));
-    }
-    let mut utilisation = ratio(&part.outward, pressure_pa, loads, 1.0);
-    for design in &part.designed_for {
-        for (largest, state) in utilisation.iter_mut().zip(states) {
-            *largest = largest.at_least(design_ratio(part, state, design));
-        }
-    }
-    utilisation.map(|largest| largest.at_most(Lane::splat(UTILISATION_MAX)))
+    [least, most]
 }
 
 #[inline(never)]
 fn course_pressure<const N: usize>(part: &Part, state: &Pressure<N>) -> Lane<N> {
     if part.outside == 0 {
-        state.at(Lane::splat(part.bottom_m))
-    } else {
-        extremes(part, state, Lane::at_least)
+        return state.at(Lane::splat(part.bottom_m));
     }
+    let [_, most] = extremes(part, state);
+    most
 }
 
+/// The utilisations of a plane or curved part by its loads; zero where no capacity is stated.
 #[inline(never)]
-fn inward_utilisation<const N: usize>(
-    part: &Part,
-    state: &Pressure<N>,
-    loads: &Loads<N>,
-) -> Lane<N> {
-    let pressure_pa = least_pressure(part, state);
-    let mut loads = *loads;
-    if let Geometry::Course { half_diameter_m, .. } = part.geometry {
-        // The design point is the worst of a course outwards; inwards that is where least stands
-        // against the gas.
-        loads.hoop_tension_n_m = pressure_pa * half_diameter_m;
+fn utilise<const N: usize>(part: &Part, states: &States<N>, loads: &mut PartLoads<N>) {
+    let bounding = [&loads.estimate, &loads.outward];
+    let mut largest = [Lane::ZERO; 2];
+    compare_all(&mut largest, &part.outward, bounding, |load| load);
+    [loads.utilisation, loads.utilisation_bound] =
+        outward(part, [&states.estimate, &states.upper], largest);
+    let mut largest = [Lane::ZERO];
+    if part.judged_inward() {
+        compare_all(&mut largest, &part.inward, [&loads.inward], |load| -load);
     }
-    let [largest] = ratio(&part.inward, [pressure_pa], [&loads], -1.0);
-    largest.at_most(Lane::splat(UTILISATION_MAX))
+    loads.utilisation_inward = within(largest);
 }
 
-/// `max over the stated capacities of sign * load / capacity`, not below zero, for each of the
-/// loads.
+/// [`compare`] for every load that plane and curved parts have.
 #[inline]
-fn ratio<const N: usize, const K: usize>(
+fn compare_all<const N: usize, const K: usize>(
+    largest: &mut [Lane<N>; K],
     capacities: &Capacities,
-    pressure_pa: [Lane<N>; K],
     loads: [&Loads<N>; K],
-    sign: f32,
-) -> [Lane<N>; K] {
-    let mut largest = [Lane::ZERO; K];
-    let mut compare = |capacity: Option<Stated>, loads: [Lane<N>; K]| {
-        let Some(capacity) = capacity else { return };
-        for (largest, load) in largest.iter_mut().zip(loads) {
-            *largest = largest.at_least(load * sign / Lane::splat(capacity.get()));
+    signed: impl Fn(Lane<N>) -> Lane<N>,
+) {
+    compare(largest, capacities.pressure_pa, loads.map(|loads| signed(loads.pressure_pa)));
+    compare(largest, capacities.hoop_tension_n_m, loads.map(|l| signed(l.hoop_tension_n_m)));
+    compare(largest, capacities.force_n, loads.map(|loads| signed(loads.force_n)));
+    compare(largest, capacities.bolt_n, loads.map(|loads| signed(loads.bolt_n)));
+    compare(largest, capacities.moment_n_m, loads.map(|loads| signed(loads.moment_n_m)));
+}
+
+/// The largest so far, or the ratio of a load to its capacity where that is larger.
+#[inline]
+fn compare<const N: usize, const K: usize>(
+    largest: &mut [Lane<N>; K],
+    capacity: Option<Stated>,
+    loads: [Lane<N>; K],
+) {
+    let Some(capacity) = capacity else { return };
+    for (largest, load) in largest.iter_mut().zip(loads) {
+        *largest = largest.at_least(load / Lane::splat(capacity.get()));
+    }
+}
+
+/// Outward utilisations by the capacities and by the states that the part was designed for.
+#[inline]
+fn outward<const N: usize>(
+    part: &Part,
+    states: [&Pressure<N>; 2],
+    mut largest: [Lane<N>; 2],
+) -> [Lane<N>; 2] {
+    if !part.designed_for.is_empty() {
+        for (largest, state) in largest.iter_mut().zip(states) {
+            *largest = largest.at_least(design_ratio(part, state));
         }
-    };
-    compare(capacities.pressure_pa, pressure_pa);
-    compare(capacities.hoop_tension_n_m, loads.map(|loads| loads.hoop_tension_n_m));
-    compare(capacities.force_n, loads.map(|loads| loads.force_n));
-    compare(capacities.bolt_n, loads.map(|loads| loads.bolt_n));
-    compare(capacities.moment_n_m, loads.map(|loads| loads.moment_n_m));
+    }
+    largest.map(|largest| within([largest]))
+}
+
+#[inline]
+fn within<const N: usize>([utilisation]: [Lane<N>; 1]) -> Lane<N> {
+    utilisation.at_most(Lane::splat(UTILISATION_MAX))
+}
+
+/// Largest ratio of the pressure to a design pressure over the heights of the part, not below zero.
+/// Both are straight between their kinks, so the ratio is extreme at a kink of either or at an end.
+#[inline(never)]
+fn design_ratio<const N: usize>(part: &Part, state: &Pressure<N>) -> Lane<N> {
+    let mut largest = Lane::ZERO;
+    for design in &part.designed_for {
+        // Where the floor of the design pressure sets in.
+        let floor_m = design.level_m
+            - crate::lane::ramp(DESIGN_PRESSURE_FLOOR_PA - design.gas_pa) / design.weight_n_m3;
+        let own = [part.bottom_m, part.top_m, design.level_m, floor_m].map(Lane::splat);
+        let surfaces = state.surfaces().iter().map(|surface| surface.height_m);
+        for height_m in own.into_iter().chain(surfaces) {
+            largest = largest.at_least(design_ratio_at(part, state, design, height_m));
+        }
+    }
     largest
 }
 
-/// Largest ratio of the pressure to the design pressure over the heights of the part. Both are
-/// straight between their kinks, so the ratio is extreme at a kink of either or at an end.
-fn design_ratio<const N: usize>(part: &Part, state: &Pressure<N>, design: &DesignState) -> Lane<N> {
+/// The ratio at a height, or at the part's end that is nearest to it.
+#[inline(never)]
+fn design_ratio_at<const N: usize>(
+    part: &Part,
+    state: &Pressure<N>,
+    design: &DesignState,
+    height_m: Lane<N>,
+) -> Lane<N> {
     let (bottom, top) = (Lane::splat(part.bottom_m), Lane::splat(part.top_m));
-    let at = |z_m: Lane<N>| {
-        let designed =
-            (Lane::splat(design.level_m) - z_m).ramp() * design.weight_n_m3 + design.gas_pa;
-        state.at(z_m) / designed.at_least(Lane::splat(DESIGN_PRESSURE_FLOOR_PA))
-    };
-    let mut largest = at(bottom).at_least(at(top));
-    largest = largest.at_least(at(Lane::splat(design.level_m).at_least(bottom).at_most(top)));
-    // Where the floor of the design pressure sets in.
-    let floor_m = design.level_m
-        - crate::lane::ramp(DESIGN_PRESSURE_FLOOR_PA - design.gas_pa) / design.weight_n_m3;
-    largest = largest.at_least(at(Lane::splat(floor_m).at_least(bottom).at_most(top)));
-    for surface in state.surfaces() {
-        largest = largest.at_least(at(surface.height_m.at_least(bottom).at_most(top)));
-    }
-    largest.ramp()
+    let z_m = height_m.at_least(bottom).at_most(top);
+    let designed = (Lane::splat(design.level_m) - z_m).ramp() * design.weight_n_m3 + design.gas_pa;
+    state.at(z_m) / designed.at_least(Lane::splat(DESIGN_PRESSURE_FLOOR_PA))
 }
 
 #[cfg(test)]

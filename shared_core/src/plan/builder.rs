@@ -182,7 +182,7 @@ pub(crate) fn bolted_disc(
             // Segment of a circle below the chord at s.
             let chord = (radius * radius - s * s).sqrt();
             let area = PI * radius * radius - radius * radius * (s / radius).acos() + s * chord;
-            let first = -2.0 / 3.0 * chord * chord * chord;
+            let first = radius * area - 2.0 / 3.0 * chord * chord * chord;
             [((radius + s) * sine_64) as f32, area as f32, first as f32]
         })
     };
@@ -226,7 +226,7 @@ pub(crate) fn bolted_rectangle(
         (2.0 * s.abs() < length).then(|| {
             let wetted = 0.5 * length + s;
             let y = wetted * f64::from(sine);
-            let first = width * (s * s - 0.25 * length * length) / 2.0;
+            let first = 0.5 * width * wetted * wetted;
             [y as f32, (width * wetted) as f32, first as f32]
         })
     };

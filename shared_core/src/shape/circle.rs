@@ -43,10 +43,10 @@ pub struct Circle {
     pub(super) area_m2: f32,
     /// Height of the highest above the lowest point, m.
     pub(super) rise_m: f32,
-    /// Half the level width over half the length up the slope.
-    aspect: f32,
     /// Half the length up the slope, m.
     radius_m: f32,
+    /// Half the level width over half the length up the slope.
+    aspect: f32,
     /// `1 / (r sin)`, 1/m.
     per_half_rise: f32,
     /// `r³ sin`, m³.
@@ -100,9 +100,19 @@ impl Circle {
 }
 
 /// `m(u)`, `m1(u)` and `m2(u)` of a surface `a = 1 + u` radii above the lowest point.
-#[expect(clippy::inline_always, reason = "the call would cost a fifth of what it does")]
-#[inline(always)]
+#[inline]
 pub(super) fn unit<const N: usize>(a: Lane<N>) -> [Lane<N>; 3] {
+    if (Lane::splat(2.0) - a).none_positive() {
+        // Covered in every lane: the same bits, and nothing of what a surface on the disc needs.
+        let (m, m1) = ((a - 1.0) * PI, Lane::splat(-PI / 4.0));
+        return [m, m1, m + m1];
+    }
+    unit_on_disc(a)
+}
+
+// One function in every image, apart from what covered discs take.
+#[inline(never)]
+fn unit_on_disc<const N: usize>(a: Lane<N>) -> [Lane<N>; 3] {
     let u = a - 1.0;
     // Distance of the surface from the nearer end of the vertical diameter: zero when dry or
     // covered. Below the centre it is `a` itself, which keeps all digits at first wetting.
@@ -118,7 +128,8 @@ pub(super) fn unit<const N: usize>(a: Lane<N>) -> [Lane<N>; 3] {
     [m, m1, u.positive_selects(m + m1, m2)]
 }
 
-#[inline]
+#[expect(clippy::inline_always, reason = "a call would cost half of what it does")]
+#[inline(always)]
 fn polynomial<const N: usize>(coefficients: &[f32; 6], x: Lane<N>) -> Lane<N> {
     let [c0, c1, c2, c3, c4, c5] = *coefficients;
     ((((x * c5 + c4) * x + c3) * x + c2) * x + c1) * x + c0

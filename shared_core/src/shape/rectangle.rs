@@ -18,6 +18,8 @@ pub struct Rectangle {
     pub(super) area_m2: f32,
     /// Height of the upper above the lower side, m.
     pub(super) rise_m: f32,
+    /// Half the length.
+    pub(super) centroid_m: f32,
     width_m: f32,
     length_m: f32,
     sine: f32,
@@ -32,6 +34,7 @@ impl Rectangle {
         Self {
             area_m2: width_m * length_m,
             rise_m: length_m * sine,
+            centroid_m: 0.5 * length_m,
             width_m,
             length_m,
             sine,

@@ -141,5 +141,6 @@ fn cut(outline: Outline, sine: f64, s_m: f64) -> Option<[f32; 3]> {
         }
         _ => return None,
     };
-    (sine > 0.0).then(|| [(s_m + half_m) * sine, area_m2, static_m3].map(single))
+    let first_m3 = static_m3 + half_m * area_m2;
+    (sine > 0.0).then(|| [(s_m + half_m) * sine, area_m2, first_m3].map(single))
 }

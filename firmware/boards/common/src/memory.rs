@@ -84,10 +84,17 @@ unsafe extern "C" fn __aeabi_memset(to: *mut u8, bytes: usize, byte: u32) {
     // SAFETY: below `bytes`, which the caller promises to be writable.
     unsafe {
         if to.addr().is_multiple_of(WORD) {
-            while at < bytes & !(2 * WORD - 1) {
-                ptr::write_volatile(to.wrapping_add(at).cast::<u32>(), word);
-                ptr::write_volatile(to.wrapping_add(at + WORD).cast::<u32>(), word);
-                at += 2 * WORD;
+            while at < bytes & !(8 * WORD - 1) {
+                let words = to.wrapping_add(at).cast::<u32>();
+                ptr::write_volatile(words, word);
+                ptr::write_volatile(words.wrapping_add(1), word);
+                ptr::write_volatile(words.wrapping_add(2), word);
+                ptr::write_volatile(words.wrapping_add(3), word);
+                ptr::write_volatile(words.wrapping_add(4), word);
+                ptr::write_volatile(words.wrapping_add(5), word);
+                ptr::write_volatile(words.wrapping_add(6), word);
+                ptr::write_volatile(words.wrapping_add(7), word);
+                at += 8 * WORD;
             }
             while at < bytes & !(WORD - 1) {
                 ptr::write_volatile(to.wrapping_add(at).cast::<u32>(), word);

@@ -32,8 +32,8 @@ pub struct WeightingNumbers {
     /// Per metre up the slope.
     pub slope: f32,
     /// Where it changes sign: height above the cover's lowest point (m), area below (m²) and first
-    /// moment of that area about the level line through the centroid (m³). `None` where it keeps
-    /// its sign on the cover.
+    /// moment of that area about the level line through the lowest point (m³). `None` where it
+    /// keeps its sign on the cover.
     pub cut: Option<[f32; 3]>,
 }
 

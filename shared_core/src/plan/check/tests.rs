@@ -177,7 +177,7 @@ fn bolts_are_cut_where_their_share_changes_sign() {
         BoltPattern { cuts: [None, high], ..good },
         BoltPattern { cuts: [Some([y_m + 0.01, area_m2, static_m3]), high], ..good },
         BoltPattern { cuts: [Some([y_m, 1.0e30, static_m3]), high], ..good },
-        BoltPattern { cuts: [Some([y_m, area_m2, -1.0e38]), high], ..good },
+        BoltPattern { cuts: [Some([y_m, area_m2, 1.0e38]), high], ..good },
         BoltPattern { cuts: [Some([y_m, area_m2, f32::NAN]), high], ..good },
     ] {
         broken(E::Geometry, |p| p.parts[0] = with(&pattern));
@@ -199,7 +199,7 @@ fn covers_of_every_kind_are_checked() {
     let shape = Shape::Rectangle(Rectangle::new(0.8, 1.2, 1.0));
     let cut = |t_m: f32| {
         let area_m2 = 0.8 * t_m;
-        Some([t_m, area_m2, area_m2 * (0.5 * t_m - 0.6)])
+        Some([t_m, area_m2, 0.5 * area_m2 * t_m])
     };
     let good = CoverNumbers {
         held: Held::Side,
