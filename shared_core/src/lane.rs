@@ -26,12 +26,22 @@ impl<const N: usize> Lane<N> {
     #[must_use]
     #[inline(always)]
     pub const fn splat(value: f32) -> Self {
+        if N == 1 {
+            let mut lane = [0.0; N];
+            put_first(&mut lane, value);
+            return Self(lane);
+        }
         Self([value; N])
     }
 
     #[must_use]
     #[inline(always)]
     fn map(mut self, f: impl Fn(f32) -> f32) -> Self {
+        if N == 1 {
+            let value = f(self.lane(0));
+            put_first(&mut self.0, value);
+            return self;
+        }
         for x in &mut self.0 {
             *x = f(*x);
         }
@@ -41,6 +51,11 @@ impl<const N: usize> Lane<N> {
     #[must_use]
     #[inline(always)]
     fn zip(mut self, other: Self, f: impl Fn(f32, f32) -> f32) -> Self {
+        if N == 1 {
+            let value = f(self.lane(0), other.lane(0));
+            put_first(&mut self.0, value);
+            return self;
+        }
         for (a, &b) in self.0.iter_mut().zip(&other.0) {
             *a = f(*a, b);
         }
@@ -86,6 +101,9 @@ impl<const N: usize> Lane<N> {
     #[must_use]
     #[inline(always)]
     pub fn positive_selects(self, then: Self, otherwise: Self) -> Self {
+        if N == 1 {
+            return if self.lane(0) > 0.0 { then } else { otherwise };
+        }
         let mut chosen = otherwise;
         for ((slot, &yes), &switch) in chosen.0.iter_mut().zip(&then.0).zip(&self.0) {
             *slot = if switch > 0.0 { yes } else { *slot };
@@ -98,6 +116,9 @@ impl<const N: usize> Lane<N> {
     #[expect(clippy::unnecessary_fold, reason = "the short form leaves a loop for one lane")]
     #[inline(always)]
     pub fn all_positive(self) -> bool {
+        if N == 1 {
+            return self.lane(0) > 0.0;
+        }
         self.0.into_iter().fold(true, |all, x| all && x > 0.0)
     }
 
@@ -106,6 +127,10 @@ impl<const N: usize> Lane<N> {
     #[expect(clippy::unnecessary_fold, reason = "the short form leaves a loop for one lane")]
     #[inline(always)]
     pub fn none_positive(self) -> bool {
+        if N == 1 {
+            // What is not a number is not positive.
+            return !self.all_positive();
+        }
         !self.0.into_iter().fold(false, |any, x| any || x > 0.0)
     }
 
@@ -114,6 +139,14 @@ impl<const N: usize> Lane<N> {
     #[inline(always)]
     pub fn lane(&self, index: usize) -> f32 {
         self.0.get(index).copied().unwrap_or(0.0)
+    }
+}
+
+/// One lane is written without a loop: compiled for size, a loop of one stays a loop.
+#[inline(always)]
+const fn put_first(lanes: &mut [f32], value: f32) {
+    if let Some(first) = lanes.first_mut() {
+        *first = value;
     }
 }
 

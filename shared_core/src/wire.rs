@@ -86,7 +86,7 @@ pub trait Message<'a>: Field + serde::Deserialize<'a> {
     /// [`REPLY_FRAME_BYTES`] long. Returns its length with the closing zero, or `None` when `out`
     /// is too short.
     fn encode(&self, out: &mut [u8]) -> Option<usize> {
-        frame::build(Self::KIND.number(), out, |body| self.put(body))
+        frame::build(Self::KIND.number(), out, &mut |body| self.put(body))
     }
 }
 

@@ -66,7 +66,7 @@ pub(crate) fn frame(bytes: &[u8]) -> Vec<u8> {
     let body = unstuffed(&raw).unwrap_or_else(|| std::mem::take(&mut raw));
     let (&kind, body) = body.split_first().unwrap_or((&1, &[]));
     let mut out = vec![0; body.len() + 64 + body.len() / 100];
-    let len = strake_core::wire::frame::build(kind, &mut out, |writer| writer.raw(body));
+    let len = strake_core::wire::frame::build(kind, &mut out, &mut |writer| writer.raw(body));
     out.truncate(len.unwrap_or(0));
     out
 }

@@ -54,7 +54,7 @@ impl<B: Board> Device<B> {
             beat_ms: 0,
             pace: Pace::default(),
             flush_at_ms: None,
-            faults: FaultLog::default(),
+            faults: FaultLog::new(),
             start_up: None,
             journal_failing: false,
             button_down: false,

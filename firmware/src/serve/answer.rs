@@ -128,7 +128,7 @@ fn read_plan<S: Served>(
     let left = usize::try_from(length.saturating_sub(read.offset)).unwrap_or(usize::MAX);
     let bytes = left.min(usize::from(read.length.min(PLAN_DATA_BYTES)));
     let mut result = Ok(());
-    outbox.build(Kind::PlanData.number(), |body| {
+    outbox.build(Kind::PlanData.number(), &mut |body| {
         read.fingerprint.put(body);
         read.offset.put(body);
         body.length(bytes);

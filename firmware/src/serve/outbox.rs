@@ -21,13 +21,12 @@ impl Outbox {
     }
 
     /// Puts a message in. A frame that does not fit is dropped; every message is shorter.
-    pub(super) fn put<'m>(&mut self, message: &impl Message<'m>) {
-        self.length = message.encode(&mut self.buffer).unwrap_or_default();
-        self.sent = 0;
+    pub(super) fn put<'m, M: Message<'m>>(&mut self, message: &M) {
+        self.build(M::KIND.number(), &mut |body| message.put(body));
     }
 
     /// Puts a message in whose body `write` builds.
-    pub(super) fn build(&mut self, kind: u8, write: impl FnOnce(&mut Writer<'_>)) {
+    pub(super) fn build(&mut self, kind: u8, write: &mut dyn FnMut(&mut Writer<'_>)) {
         self.length = frame::build(kind, &mut self.buffer, write).unwrap_or_default();
         self.sent = 0;
     }

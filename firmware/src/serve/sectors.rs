@@ -97,7 +97,7 @@ fn put_data<S: Served>(
     outbox: &mut Outbox,
 ) -> Result<(), Refusal> {
     let mut result = Ok(());
-    outbox.build(Kind::SectorData.number(), |body| {
+    outbox.build(Kind::SectorData.number(), &mut |body| {
         request.ticket.put(body);
         run.unit.put(body);
         body.length(run.bytes);

@@ -71,7 +71,9 @@ impl<P: Port> Client<P> {
     /// # Errors
     /// As [`Self::connect`].
     pub fn hello(&mut self) -> Result<&Identity, LinkError> {
-        self.identity = self.ask(&Hello { protocol: PROTOCOL_VERSION }, |_: &Identity| true)?;
+        let is_sound =
+            |identity: &Identity| identity.firmware.is_text() && identity.device_id.is_text();
+        self.identity = self.ask(&Hello { protocol: PROTOCOL_VERSION }, is_sound)?;
         self.same(Versioned::Protocol, PROTOCOL_VERSION, self.identity.protocol)?;
         Ok(&self.identity)
     }

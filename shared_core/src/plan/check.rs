@@ -97,6 +97,7 @@ const WINDOW_MS: core::ops::RangeInclusive<u32> = 1_000..=4 * 3_600_000;
 /// Longest delay, ms (24 days: half the range of a 32-bit tick).
 const DELAY_MS_MAX: u32 = 24 * 86_400_000;
 
+#[inline(never)]
 fn within(value: f32, low: f32, high: f32) -> bool {
     low <= value && value <= high
 }
@@ -124,6 +125,7 @@ impl Plan {
     ///
     /// # Errors
     /// The first rule broken.
+    #[inline(never)]
     pub fn check(&self) -> Result<(), PlanError> {
         self.check_site()?;
         self.check_liquid()?;
@@ -196,6 +198,7 @@ impl Plan {
         require(sound, PlanError::Liquid)
     }
 
+    #[inline(never)]
     fn check_part(&self, part: &Part) -> Result<(), PlanError> {
         let known = (1_u16 << self.outside.len()) - 1;
         require(u16::from(part.outside) & !known == 0, PlanError::Outside)?;

@@ -95,16 +95,28 @@ pub fn decode(bytes: &[u8]) -> Result<(PlanHeader, Plan), PlanError> {
         return Err(PlanError::TooLarge);
     }
     let mut plan = Plan::empty();
-    let header = decode_into(&mut { bytes }, &mut plan)?;
+    let header = decode_with(&mut { bytes }, &mut plan, take_text)?;
     Ok((header, plan))
 }
 
 /// Reads a plan from wherever its bytes come, over what `plan` holds, and checks it. The device has
-/// no room for a second plan or for all the bytes; after an error it reads the old one again.
+/// no room for a second plan or for all the bytes; after an error it reads the old one again. It
+/// asks for no text: the header's device is left empty, the names are passed over.
 ///
 /// # Errors
 /// What is wrong with the bytes or the numbers. `plan` is then no plan.
 pub fn decode_into(bytes: &mut dyn Fetch, plan: &mut Plan) -> Result<PlanHeader, PlanError> {
+    decode_with(bytes, plan, pass_text)
+}
+
+/// Takes a name, or only its bytes.
+type TakeText = fn(&mut Reader<'_>) -> Option<Name>;
+
+fn decode_with(
+    bytes: &mut dyn Fetch,
+    plan: &mut Plan,
+    text: TakeText,
+) -> Result<PlanHeader, PlanError> {
     let mut source = Reader::new(bytes);
     let mut start = [0; 4];
     source.fill(&mut start);
@@ -116,9 +128,9 @@ pub fn decode_into(bytes: &mut dyn Fetch, plan: &mut Plan) -> Result<PlanHeader,
     if format != PLAN_FORMAT {
         return Err(PlanError::Format);
     }
-    let header = take(&mut source, plan).ok_or(PlanError::Damaged)?;
+    let header = take(&mut source, plan, text).ok_or(PlanError::Damaged)?;
     for _ in 0..=plan.parts.len() {
-        take_text(&mut source).ok_or(PlanError::Names)?;
+        text(&mut source).ok_or(PlanError::Names)?;
     }
     source.whole().ok_or(PlanError::Names)?;
     sections::take(&mut source, plan).ok_or(PlanError::Damaged)?;
@@ -126,9 +138,9 @@ pub fn decode_into(bytes: &mut dyn Fetch, plan: &mut Plan) -> Result<PlanHeader,
     Ok(header)
 }
 
-fn take(source: &mut Reader<'_>, plan: &mut Plan) -> Option<PlanHeader> {
+fn take(source: &mut Reader<'_>, plan: &mut Plan, text: TakeText) -> Option<PlanHeader> {
     let mut header =
-        PlanHeader { serial: source.u64(), device_id: take_text(source)?, provisional: false };
+        PlanHeader { serial: source.u64(), device_id: text(source)?, provisional: false };
     plan.gravity_m_s2 = source.f32();
     plan.shell_top_m = source.f32();
     plan.overflow_m = source.f32();
@@ -182,7 +194,7 @@ fn names_and_rest(
     let mut plan = Plan::empty();
     let mut rest = bytes.get(4..).ok_or(PlanError::NotAPlan)?;
     let mut source = Reader::new(&mut rest);
-    take(&mut source, &mut plan).ok_or(PlanError::Damaged)?;
+    take(&mut source, &mut plan, take_text).ok_or(PlanError::Damaged)?;
     for index in 0..plan.parts.len() {
         let name: Name = take_text(&mut source).ok_or(PlanError::Names)?;
         part(index, &name);
@@ -206,6 +218,14 @@ fn take_text(source: &mut Reader<'_>) -> Option<Name> {
     let text = bytes.get_mut(..usize::from(source.u8()))?;
     source.fill(text);
     core::str::from_utf8(text).ok()?.try_into().ok()
+}
+
+/// Passes over a name.
+fn pass_text(source: &mut Reader<'_>) -> Option<Name> {
+    let mut bytes = [0; NAME_BYTES_MAX];
+    let text = bytes.get_mut(..usize::from(source.u8()))?;
+    source.fill(text);
+    Some(Name::new())
 }
 
 fn count(length: usize) -> Result<u8, PlanError> {

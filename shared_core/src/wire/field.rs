@@ -114,7 +114,7 @@ impl Field for &[u8] {
 
 impl Field for Text {
     fn put(&self, out: &mut Writer<'_>) {
-        self.as_str().as_bytes().put(out);
+        self.as_bytes().put(out);
     }
 }
 

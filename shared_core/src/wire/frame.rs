@@ -30,7 +30,9 @@ pub enum FrameError {
 
 /// Builds a frame in `out`: `write` puts the body. Returns its length with the closing zero, or
 /// `None` when `out` is too short. `out` is working space too: a few bytes more than the frame.
-pub fn build(kind: u8, out: &mut [u8], write: impl FnOnce(&mut Writer<'_>)) -> Option<usize> {
+// One function for every message, or each has its own copy.
+#[inline(never)]
+pub fn build(kind: u8, out: &mut [u8], write: &mut dyn FnMut(&mut Writer<'_>)) -> Option<usize> {
     let start = cobs::overhead(out.len());
     let mut writer = Writer::new(out.get_mut(start..)?);
     writer.raw(&[kind]);

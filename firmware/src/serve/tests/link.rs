@@ -23,7 +23,7 @@ impl Link {
 
     pub(super) fn push_raw(&mut self, kind: u8, body: &[u8]) {
         let mut out = [0; 300];
-        let length = frame::build(kind, &mut out, |writer| writer.raw(body)).unwrap();
+        let length = frame::build(kind, &mut out, &mut |writer| writer.raw(body)).unwrap();
         self.incoming.extend(&out[..length]);
     }
 

@@ -118,8 +118,8 @@ impl Track {
     }
 
     /// Distance of a count from the base.
-    pub(super) fn off_base(&self, count: i32) -> u64 {
-        (i64::from(count) - i64::from(self.base)).unsigned_abs()
+    pub(super) const fn off_base(&self, count: i32) -> u32 {
+        count.abs_diff(self.base)
     }
 
     /// Goes on in steps of another size, from the last count on.

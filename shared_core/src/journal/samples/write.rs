@@ -80,13 +80,17 @@ impl Lane {
     /// The predictor that takes the fewest bits for these counts, and how many it spares.
     fn best(&self, counts: impl Iterator<Item = i32>) -> (Predictor, u32) {
         let weights = self.track.weigh(counts);
-        let each = || weights.iter().copied().zip(Predictor::ALL);
-        let now = each().find(|&(_, predictor)| predictor == self.predictor);
-        let least = each().min_by_key(|&(bits, _)| bits);
-        match (now, least) {
-            (Some((now, _)), Some((bits, predictor))) if bits < now => (predictor, now - bits),
-            _ => (self.predictor, 0),
+        let mut now = 0;
+        let (mut least, mut best) = (u32::MAX, self.predictor);
+        for (bits, predictor) in weights.into_iter().zip(Predictor::ALL) {
+            if predictor == self.predictor {
+                now = bits;
+            }
+            if bits < least {
+                (least, best) = (bits, predictor);
+            }
         }
+        if least < now { (best, now - least) } else { (self.predictor, 0) }
     }
 
     fn write(&mut self, channel: Channel, out: &mut BitWriter<'_>) {
@@ -126,8 +130,8 @@ impl Chain {
     fn write_head(&mut self, samples: &[Sample], out: &mut BitWriter<'_>) -> Option<Steady> {
         let (first, rest) = samples.split_first()?;
         let anchor = !self.anchored;
-        let levels = counts(samples.iter().map(|sample| sample.level));
-        let temperatures = counts(samples.iter().map(|sample| sample.temperature));
+        let levels = counts(samples, |sample| sample.level);
+        let temperatures = counts(samples, |sample| sample.temperature);
         if anchor {
             self.write_anchor_time(first, rest.first(), out);
             self.level.write_track(first.level, levels.clone(), out);
@@ -245,31 +249,39 @@ fn write_off(scale: &mut Scale, off: i64, out: &mut BitWriter<'_>) {
     }
 }
 
-/// The counts that are written.
-fn counts(channels: impl Iterator<Item = Channel> + Clone) -> impl Iterator<Item = i32> + Clone {
+/// The counts of a channel that are written. One type for every channel: what is done with them is
+/// compiled once.
+fn counts(
+    samples: &[Sample],
+    channel: fn(&Sample) -> Channel,
+) -> impl Iterator<Item = i32> + Clone {
+    let channels = samples.iter().map(channel);
     channels.filter(|&channel| !Status::of(channel).absent).map(|channel| channel.count_16)
 }
 
 /// Largest step, a divisor of the track's own, on which all the counts lie; 0 when the track has
 /// none and all counts equal its base.
 fn common_step(track: &Track, counts: impl Iterator<Item = i32>) -> u32 {
-    let divisor = |mut a: u64, mut b: u64| {
+    let divisor = |mut a: u32, mut b: u32| {
         while let Some(rest) = a.checked_rem(b) {
             (a, b) = (b, rest);
         }
         a
     };
-    let step = counts.fold(track.step().into(), |step, count| divisor(step, track.off_base(count)));
-    // Distances lie below 2^32.
-    u32::try_from(step).unwrap_or(1)
+    counts.fold(track.step(), |step, count| divisor(step, track.off_base(count)))
 }
 
 /// Rice parameter that suits the differences between these counts.
-fn usual_k(counts: impl Iterator<Item = i32> + Clone, step: u32) -> u32 {
-    let pairs = counts.clone().zip(counts.skip(1));
-    let (sum, n) = pairs.fold((0_u64, 0_u64), |(sum, n), (a, b)| {
-        (sum + (i64::from(b) - i64::from(a)).unsigned_abs(), n + 1)
-    });
-    let steps = (2 * sum).checked_div(n * u64::from(step)).unwrap_or(4);
-    Scale::of_mean(steps).k()
+fn usual_k(counts: impl Iterator<Item = i32>, step: u32) -> u32 {
+    // A sum that does not fit only makes the parameter less fitting.
+    let (mut sum, mut n) = (0_u32, 0_u32);
+    let mut before = None;
+    for count in counts {
+        if let Some(before) = before.replace(count) {
+            sum = sum.saturating_add(count.abs_diff(before));
+            n += 1;
+        }
+    }
+    let steps = sum.saturating_mul(2).checked_div(n.saturating_mul(step)).unwrap_or(4);
+    Scale::of_mean(steps.into()).k()
 }

@@ -80,7 +80,7 @@ proptest! {
         }
         body.truncate(body.len() - cut.min(body.len()));
         let mut out = [0; 300];
-        let length = frame::build(kind, &mut out, |writer| writer.raw(&body)).unwrap();
+        let length = frame::build(kind, &mut out, &mut |writer| writer.raw(&body)).unwrap();
         let opened = frame::open(&mut out[..length - 1]).unwrap();
         prop_assert_eq!((opened.kind, opened.body), (kind, body.as_slice()));
         every_way(opened.body);
