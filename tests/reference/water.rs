@@ -31,12 +31,12 @@ fn degrees(cold_c: f64, hot_c: f64) -> Vec<f64> {
 pub(crate) fn examples() -> Outcome {
     let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("../configs");
     let mut seen = 0;
-    for entry in std::fs::read_dir(folder)? {
+    for entry in std::fs::read_dir(&folder)? {
         let path = entry?.path();
         if path.extension().is_none_or(|end| end != "toml") {
             continue;
         }
-        let file = tank::parse("example.toml", &std::fs::read(&path)?)
+        let file = tank::parse_in(&folder, "example.toml", &std::fs::read(&path)?)
             .map_err(|found| found.to_text(false))?;
         let plain = |liquid: &&Liquid| {
             liquid.name.value.contains("water")
